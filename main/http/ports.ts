@@ -1,0 +1,82 @@
+import type { Engine } from "#shared/api/engine.ts";
+import type {
+  AppendAnswer,
+  AppendRequest,
+  ExportAnswer,
+  ExportRequest,
+  FolderAnswer,
+  HelloAnswer,
+  IntakeRequest,
+  JobState,
+  LogAnswer,
+  ScanLookAnswer,
+  ServerEvent,
+  ShelfAnswer,
+  SpecimenPatch,
+} from "#shared/api/routes.ts";
+import type { PassState, PassSummary, SpecimenRecord } from "#shared/api/specimen.ts";
+
+/** Specimens and passes on disk. Errors are tagged (`shared/errors.ts`). */
+export interface LibraryPort {
+  shelf(): Promise<ShelfAnswer>;
+  specimen(id: string): Promise<SpecimenRecord>;
+  changeSpecimen(id: string, patch: SpecimenPatch): Promise<SpecimenRecord>;
+  removeSpecimen(id: string, force: boolean): Promise<void>;
+  createPass(specimen: string, annotator: string): Promise<PassSummary>;
+  readLog(specimen: string, pass: string, from: number): Promise<LogAnswer>;
+  /** Resolves once the lines are on disk and synced. */
+  appendLog(specimen: string, pass: string, request: AppendRequest): Promise<AppendAnswer>;
+  keepBranch(specimen: string, pass: string, lines: readonly string[], name: string): Promise<PassSummary>;
+  rebuildLog(specimen: string, pass: string, lines: readonly string[]): Promise<AppendAnswer>;
+  claimPass(specimen: string, pass: string, window: string): Promise<boolean>;
+  releasePass(specimen: string, pass: string, window: string): Promise<void>;
+  setPassState(specimen: string, pass: string, state: PassState): Promise<PassSummary>;
+}
+
+/** Long work with progress and cancel; states go out as events. */
+export interface JobsPort {
+  startIntake(request: IntakeRequest): Promise<{ job: string }>;
+  openDemo(): Promise<{ job: string }>;
+  cancel(job: string): Promise<void>;
+  jobs(): readonly JobState[];
+}
+
+export interface ScansPort {
+  look(path: string): Promise<ScanLookAnswer>;
+}
+
+export interface FoldersPort {
+  list(path: string | undefined): Promise<FolderAnswer>;
+}
+
+export interface ExportPort {
+  /** Writes to the request's path, or gives the bytes when it has none. */
+  exportTrees(
+    request: ExportRequest,
+  ): Promise<ExportAnswer | { name: string; type: string; bytes: Uint8Array; lost: readonly string[] }>;
+}
+
+export interface EventsPort {
+  /** Calls `listener` for each event until the returned function is called. */
+  subscribe(listener: (event: ServerEvent) => void): () => void;
+}
+
+/** Files of the built page, by path under the build root; undefined when there is none. */
+export interface PagePort {
+  read(path: string): Promise<{ bytes: Uint8Array; type: string } | undefined>;
+}
+
+/** All abilities the request handler has; it knows neither Node nor Electron. */
+export interface Ports {
+  readonly hello: () => HelloAnswer;
+  readonly library: LibraryPort;
+  readonly engine: Engine;
+  readonly jobs: JobsPort;
+  readonly scans: ScansPort;
+  readonly folders: FoldersPort;
+  readonly exports: ExportPort;
+  readonly events: EventsPort;
+  readonly page: PagePort;
+  /** The page of this window is open (`seen`) or closing (`left`). */
+  readonly windows: { seen(window: string): void; left(window: string): void };
+}

@@ -1,0 +1,11 @@
+/** What a shell can do for the page; one implementation per shell, chosen at the entry point. */
+export interface Capabilities {
+  readonly shell: "electron" | "loopback";
+  /** Asks the person for a scan (file or folder) on this computer; null = they changed their mind. */
+  pickScan(): Promise<string | null>;
+  /** Asks where to save; null = cancelled; "download" = the page offers the bytes itself. */
+  pickSavePath(suggestedName: string): Promise<string | "download" | null>;
+  /** Path of a dropped file; null when the shell cannot know it. */
+  pathOfDropped(file: unknown): string | null;
+  showInFolder(path: string): Promise<void>;
+}

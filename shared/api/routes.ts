@@ -1,0 +1,189 @@
+import type { Handedness, ShelfSpecimen, SpecimenFacts } from "#shared/api/specimen.ts";
+import type { LogHead } from "#shared/log/records.ts";
+import type { Polarity } from "#shared/tracing/strand-request.ts";
+import type { Landmarks } from "#shared/trees/document.ts";
+import type { SourceDtype } from "#shared/volume/dtype.ts";
+
+/**
+ * Every route: method and path. `:name` is a path parameter. Bodies are JSON unless said; binary answers are frames
+ * (`frame.ts`). Request and answer types stand beside each other below or in `engine.ts`.
+ */
+export const ROUTES = {
+  hello: { method: "GET", path: "/api/hello" }, // -> HelloAnswer
+  events: { method: "GET", path: "/api/events" }, // -> JSON Lines of ServerEvent, one stream per window (?window=)
+  shelf: { method: "GET", path: "/api/shelf" }, // -> ShelfAnswer
+  listFolder: { method: "POST", path: "/api/folders/list" }, // FolderRequest -> FolderAnswer
+  lookAtScan: { method: "POST", path: "/api/scans/look" }, // {path} -> ScanLookAnswer
+  startIntake: { method: "POST", path: "/api/intake" }, // IntakeRequest -> {job}
+  openDemo: { method: "POST", path: "/api/demo" }, // {} -> {job} (specimen id in the job's result; at once when it exists)
+  cancelJob: { method: "POST", path: "/api/jobs/:job/cancel" }, // {} -> {}
+  specimen: { method: "GET", path: "/api/specimens/:specimen" }, // -> SpecimenRecord
+  changeSpecimen: { method: "PATCH", path: "/api/specimens/:specimen" }, // SpecimenPatch -> SpecimenRecord
+  removeSpecimen: { method: "DELETE", path: "/api/specimens/:specimen" }, // refused while it has passes with edits, unless {force:true}
+  picture: { method: "GET", path: "/api/specimens/:specimen/picture" }, // -> frame SectionHeader: small projection
+  createPass: { method: "POST", path: "/api/specimens/:specimen/passes" }, // {annotator} -> PassSummary
+  readLog: { method: "GET", path: "/api/passes/:specimen/:pass/log" }, // ?from=seq -> LogAnswer
+  appendLog: { method: "POST", path: "/api/passes/:specimen/:pass/log" }, // AppendRequest -> AppendAnswer
+  keepBranch: { method: "POST", path: "/api/passes/:specimen/:pass/branches" }, // {lines, name} -> {pass: PassSummary} the window's forked log as a recovered pass
+  rebuildLog: { method: "POST", path: "/api/passes/:specimen/:pass/rebuild" }, // {lines} -> AppendAnswer; only when the disk has no journal
+  claimPass: { method: "POST", path: "/api/passes/:specimen/:pass/claim" }, // {window} -> {writer: boolean}
+  releasePass: { method: "POST", path: "/api/passes/:specimen/:pass/release" }, // {window} -> {}
+  finishPass: { method: "POST", path: "/api/passes/:specimen/:pass/state" }, // {state} -> PassSummary
+  section: { method: "POST", path: "/api/engine/section" },
+  value: { method: "POST", path: "/api/engine/value" }, // {specimen, at} -> ValueAnswer
+  histogram: { method: "POST", path: "/api/engine/histogram" }, // {specimen} -> HistogramAnswer
+  snap: { method: "POST", path: "/api/engine/snap" },
+  openGuide: { method: "POST", path: "/api/engine/guide/open" },
+  previewGuide: { method: "POST", path: "/api/engine/guide/preview" },
+  closeGuide: { method: "POST", path: "/api/engine/guide/close" }, // {session} -> {}
+  solve: { method: "POST", path: "/api/engine/solve" },
+  strip: { method: "POST", path: "/api/engine/strip" },
+  film: { method: "POST", path: "/api/engine/film" },
+  surface: { method: "POST", path: "/api/engine/surface" },
+  exportTrees: { method: "POST", path: "/api/export" }, // ExportRequest -> ExportAnswer, or the file's bytes when `path` is absent
+  bye: { method: "POST", path: "/api/bye" }, // {window}: the page is closing
+} as const;
+
+export type RouteName = keyof typeof ROUTES;
+
+/** Header that carries the per-run token; the page takes it from the URL fragment and keeps it in session storage. */
+export const TOKEN_HEADER = "x-tautline-token";
+
+export interface HelloAnswer {
+  readonly name: "Tautline";
+  readonly version: string;
+  readonly shell: "electron" | "loopback";
+  readonly library: string;
+}
+
+export interface ShelfAnswer {
+  readonly specimens: readonly ShelfSpecimen[];
+  /** Things in the library folder that could not be read, one sentence each. */
+  readonly problems: readonly string[];
+}
+
+export interface FolderRequest {
+  /** Absent: the folder to begin in. */
+  readonly path?: string;
+}
+
+export interface FolderAnswer {
+  readonly path: string;
+  readonly parent: string | null;
+  readonly entries: readonly { readonly name: string; readonly path: string; readonly folder: boolean; readonly bytes: number }[];
+}
+
+export type ScanWarningCode =
+  | "no-unit"
+  | "no-spacing"
+  | "bad-spacing"
+  | "spacing-one"
+  | "anisotropic"
+  | "spacing-range"
+  | "size-range"
+  | "no-frame";
+
+/** What a scan's header says; spacing in millimetres, null exactly when unsettled. */
+export interface ScanInfo {
+  readonly family: string;
+  readonly name: string;
+  readonly bytes: number;
+  readonly size: readonly [number, number, number];
+  readonly spacing: readonly [number, number, number] | null;
+  readonly headerSpacing: readonly [number, number, number] | null;
+  readonly unit: string | null;
+  readonly dtype: SourceDtype;
+  readonly range: { readonly min: number; readonly max: number; readonly sampled: boolean };
+  readonly frame: "LPS" | "scan";
+  readonly warnings: readonly { readonly code: ScanWarningCode; readonly message: string }[];
+}
+
+export interface ScanLookAnswer {
+  readonly info: ScanInfo;
+  /** The middle slice, uint8, at most 512 a side, base64. */
+  readonly slice: { readonly width: number; readonly height: number; readonly data: string };
+  readonly histogram: { readonly min: number; readonly max: number; readonly counts: readonly number[] };
+  /** Type conversions and other things that intake would do, one sentence each. */
+  readonly conversions: readonly string[];
+  readonly suggestedPolarity: Polarity;
+}
+
+export interface IntakeRequest {
+  readonly path: string;
+  readonly name: string;
+  /** Millimetres; always sent by the window (a person confirmed it). */
+  readonly spacing: readonly [number, number, number];
+  readonly handedness: Handedness;
+  /** The person saw the mirrored view as the right one: the slice order is reversed on the way in. */
+  readonly mirror?: boolean;
+  readonly polarity: Polarity;
+  readonly facts: SpecimenFacts;
+}
+
+export interface SpecimenPatch {
+  readonly name?: string;
+  readonly facts?: SpecimenFacts;
+  readonly landmarks?: Landmarks;
+  readonly polarity?: Polarity;
+  readonly display?: { readonly low: number; readonly high: number };
+  readonly blurFwhmMm?: number | null;
+  readonly handedness?: Handedness;
+}
+
+export interface LogAnswer {
+  readonly epoch: string;
+  /** Lines from `from` on, without newlines. */
+  readonly lines: readonly string[];
+  readonly head: LogHead;
+  /** Hash of the line before `from`, for checking that a base is on the chain; empty at 0. */
+  readonly before: string;
+}
+
+export interface AppendRequest {
+  readonly window: string;
+  readonly epoch: string;
+  /** The chain's end that the lines continue. */
+  readonly base: LogHead;
+  readonly lines: readonly string[];
+}
+
+/** `appended`: on disk and synced. `known`: these lines are already there (a resend). */
+export interface AppendAnswer {
+  readonly outcome: "appended" | "known";
+  readonly head: LogHead;
+}
+
+export type ExportFormat = "chordae" | "graphml" | "vtp" | "tables" | "labels";
+
+export interface ExportRequest {
+  readonly specimen: string;
+  readonly pass: string;
+  readonly format: ExportFormat;
+  /** Where to write; a folder for `tables`. Absent: the bytes come back (a zip for `tables`). */
+  readonly path?: string;
+}
+
+export interface ExportAnswer {
+  readonly written: readonly string[];
+  readonly lost: readonly string[];
+}
+
+export type ServerEvent =
+  | { readonly event: "job"; readonly job: JobState }
+  | { readonly event: "shelf" } // something on the shelf changed
+  | { readonly event: "pass"; readonly pass: string; readonly head: LogHead } // the journal grew
+  | { readonly event: "beat" }; // every few seconds, so that a dead stream is noticed
+
+export interface JobState {
+  readonly id: string;
+  readonly what: "intake" | "demo" | "export";
+  readonly state: "running" | "done" | "failed" | "cancelled";
+  /** 0-1 */
+  readonly progress: number;
+  /** What is being done now, in words. */
+  readonly step: string;
+  readonly bytesPerSecond: number | null;
+  readonly secondsLeft: number | null;
+  readonly result?: { readonly specimen: string };
+  readonly error?: { readonly tag: string; readonly message: string };
+}

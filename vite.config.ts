@@ -1,0 +1,9 @@
+import preact from "@preact/preset-vite";
+import { defineConfig } from "vite";
+
+export default defineConfig({
+  plugins: [preact({ prefreshEnabled: false, devToolsEnabled: false })],
+  base: "./",
+  publicDir: false,
+  build: { outDir: "../dist/page", emptyOutDir: true, target: "chrome120", assetsInlineLimit: 0, chunkSizeWarningLimit: 1500 },
+});
