@@ -1,0 +1,241 @@
+import { gaussianKernels } from "#shared/tracing/ridge/gaussian-kernels.ts";
+import { type BlockScale, createRidgeScratch, ridgeBlockInto } from "#shared/tracing/ridge/ridge-block.ts";
+import { type RidgeScale, ridgeScales, sigmaVoxels } from "#shared/tracing/ridge/scales.ts";
+import type { Polarity } from "#shared/tracing/strand-request.ts";
+import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
+
+/** Side of a ridge tile, voxels of its level; tile (i, j, k) starts at voxel (32 i, 32 j, 32 k). */
+export const RIDGE_TILE_SIDE = 32;
+export const RIDGE_TILE_VOXELS = RIDGE_TILE_SIDE ** 3;
+
+/** The multi-scale ridge measure over one tile. */
+export interface RidgeTile {
+  /** shape [32, 32, 32], z y x, x fastest; grey values of contrast; the strongest answer over the scales of the working level. */
+  readonly strength: Float32Array;
+  /** shape [32, 32, 32]; which of the working level's scales answered most strongly. */
+  readonly scale: Uint8Array;
+}
+
+/** Gives ridge tiles; the same tile is the same numbers, however and whenever it was made, so any cache may stand between. */
+export interface RidgeTiles {
+  readonly polarity: Polarity;
+  /** Scales of a working level, ascending; `scale` of a tile counts in it. */
+  scales(level: number): readonly RidgeScale[];
+  /** Tile (i, j, k) of a level; tiles over or beyond the edge see the edge voxels repeated. Borrowed: not to be written to. */
+  tile(level: number, i: number, j: number, k: number): RidgeTile;
+}
+
+/** Strongest answer of the scales that live on one level, on that level's own grid. */
+interface OwnAnswer {
+  readonly strength: Float32Array;
+  readonly scale: Uint8Array;
+}
+
+/**
+ * The ridge tiles of a pyramid, computed when asked for and kept up to `keepTiles` per kind, the oldest dropped first.
+ * Scales of coarser levels are computed on their own grid and carried to the working grid by linear interpolation.
+ */
+export function createRidgeTiles(pyramid: VoxelPyramid, polarity: Polarity, keepTiles = 512): RidgeTiles {
+  const sign = polarity === "bright" ? 1 : -1;
+  const scratch = createRidgeScratch();
+  const scalesOfLevel = new Map<number, readonly RidgeScale[]>();
+  const blockScales = new Map<string, BlockScale>();
+  const kept = new Map<string, RidgeTile>();
+  const own = new Map<string, OwnAnswer>();
+  let input = new Float32Array(0);
+  const answer = new Float32Array(RIDGE_TILE_VOXELS);
+
+  const scales = (level: number) => {
+    const known = scalesOfLevel.get(level);
+    if (known) return known;
+    const made = ridgeScales(pyramid, level);
+    scalesOfLevel.set(level, made);
+    return made;
+  };
+
+  const blockScale = (scale: RidgeScale): BlockScale => {
+    const key = `${scale.level} ${scale.sigmaMm}`;
+    let made = blockScales.get(key);
+    if (!made) {
+      const [vx, vy, vz] = sigmaVoxels(pyramid, scale);
+      const [sx, sy, sz] = pyramid.levels[scale.level]!.spacing;
+      const n = scale.sigmaMm * scale.sigmaMm;
+      made = {
+        kernels: [gaussianKernels(vx), gaussianKernels(vy), gaussianKernels(vz)],
+        normalise: [n / (sx * sx), n / (sy * sy), n / (sz * sz), n / (sx * sy), n / (sx * sz), n / (sy * sz)],
+      };
+      blockScales.set(key, made);
+    }
+    return made;
+  };
+
+  /** The tile of one level for those scales of a working level that live on it; null when there are none. */
+  const ownTile = (working: number, level: number, i: number, j: number, k: number): OwnAnswer | null => {
+    const list = scales(working);
+    const here = list.flatMap((scale, index) => (scale.level === level ? [index] : []));
+    if (here.length === 0) return null;
+    // Scales of a level above the working level are the same for every working level: only their numbers differ.
+    const key = `${working} ${level} ${i} ${j} ${k}`;
+    const known = own.get(key);
+    if (known) return known;
+    const strength = new Float32Array(RIDGE_TILE_VOXELS);
+    const scale = new Uint8Array(RIDGE_TILE_VOXELS).fill(here[0]!);
+    for (const index of here) {
+      const made = blockScale(list[index]!);
+      const reach = made.kernels.map((kernel) => kernel.reach) as [number, number, number];
+      const size: [number, number, number] = [
+        RIDGE_TILE_SIDE + 2 * reach[0],
+        RIDGE_TILE_SIDE + 2 * reach[1],
+        RIDGE_TILE_SIDE + 2 * reach[2],
+      ];
+      const voxels = size[0] * size[1] * size[2];
+      if (input.length < voxels) input = new Float32Array(voxels);
+      const start: [number, number, number] = [
+        i * RIDGE_TILE_SIDE - reach[0],
+        j * RIDGE_TILE_SIDE - reach[1],
+        k * RIDGE_TILE_SIDE - reach[2],
+      ];
+      pyramid.readBoxInto(level, start, size, input);
+      ridgeBlockInto(input, [RIDGE_TILE_SIDE, RIDGE_TILE_SIDE, RIDGE_TILE_SIDE], made, sign, answer, scratch);
+      for (let v = 0; v < RIDGE_TILE_VOXELS; v++) {
+        if (answer[v]! > strength[v]!) {
+          strength[v] = answer[v]!;
+          scale[v] = index;
+        }
+      }
+    }
+    const made = { strength, scale };
+    own.set(key, made);
+    dropOldest(own, keepTiles);
+    return made;
+  };
+
+  return {
+    polarity,
+    scales,
+    tile(level, i, j, k) {
+      const key = `${level} ${i} ${j} ${k}`;
+      const known = kept.get(key);
+      if (known) return known;
+      const base = ownTile(level, level, i, j, k);
+      const strength = base ? base.strength.slice() : new Float32Array(RIDGE_TILE_VOXELS);
+      const scale = base ? base.scale.slice() : new Uint8Array(RIDGE_TILE_VOXELS);
+      for (let coarse = level + 1; coarse < pyramid.levels.length; coarse++)
+        raiseByCoarse(pyramid, level, coarse, [i, j, k], (a, b, c) => ownTile(level, coarse, a, b, c), strength, scale);
+      const made = { strength, scale };
+      kept.set(key, made);
+      dropOldest(kept, keepTiles);
+      return made;
+    },
+  };
+}
+
+/** Lets go of the entries that were put in first. */
+function dropOldest<V>(map: Map<string, V>, most: number): void {
+  for (const key of map.keys()) {
+    if (map.size <= most) return;
+    map.delete(key);
+  }
+}
+
+/**
+ * Raises a tile to the answers of a coarser level, interpolated linearly. The weights depend on the voxel's own index alone
+ * (halves, quarters, ...: exact in floating point), so tiles have no seams. A coarse value beyond the edge is the edge's.
+ */
+function raiseByCoarse(
+  pyramid: VoxelPyramid,
+  level: number,
+  coarse: number,
+  tile: readonly [number, number, number],
+  ownTile: (i: number, j: number, k: number) => OwnAnswer | null,
+  strength: Float32Array,
+  scale: Uint8Array,
+): void {
+  const fine = pyramid.levels[level]!;
+  const top = pyramid.levels[coarse]!;
+  const n = RIDGE_TILE_SIDE;
+  const low = [new Int32Array(n), new Int32Array(n), new Int32Array(n)];
+  const high = [new Int32Array(n), new Int32Array(n), new Int32Array(n)];
+  const weight = [new Float64Array(n), new Float64Array(n), new Float64Array(n)];
+  const first = [0, 0, 0];
+  const count = [0, 0, 0];
+  for (let axis = 0; axis < 3; axis++) {
+    const ratio = top.factor[axis]! / fine.factor[axis]!;
+    const last = top.size[axis]! - 1;
+    for (let v = 0; v < n; v++) {
+      const at = (tile[axis]! * n + v + 0.5) / ratio - 0.5;
+      const below = Math.floor(at);
+      low[axis]![v] = Math.min(Math.max(below, 0), last);
+      high[axis]![v] = Math.min(Math.max(below + 1, 0), last);
+      weight[axis]![v] = at - below;
+    }
+    first[axis] = low[axis]![0]!;
+    count[axis] = high[axis]![n - 1]! - first[axis]! + 1;
+  }
+  const [cx, cy, cz] = count as [number, number, number];
+  const box = new Float32Array(cx * cy * cz);
+  const boxScale = new Uint8Array(cx * cy * cz);
+  if (!gatherInto(first, count, ownTile, box, boxScale)) return;
+  let v = 0;
+  for (let z = 0; z < n; z++) {
+    const za = (low[2]![z]! - first[2]!) * cy;
+    const zb = (high[2]![z]! - first[2]!) * cy;
+    const wz = weight[2]![z]!;
+    for (let y = 0; y < n; y++) {
+      const ya = low[1]![y]! - first[1]!;
+      const yb = high[1]![y]! - first[1]!;
+      const wy = weight[1]![y]!;
+      const aa = (za + ya) * cx;
+      const ab = (za + yb) * cx;
+      const ba = (zb + ya) * cx;
+      const bb = (zb + yb) * cx;
+      for (let x = 0; x < n; x++, v++) {
+        const xa = low[0]![x]! - first[0]!;
+        const xb = high[0]![x]! - first[0]!;
+        const wx = weight[0]![x]!;
+        const p = box[aa + xa]! + wx * (box[aa + xb]! - box[aa + xa]!);
+        const q = box[ab + xa]! + wx * (box[ab + xb]! - box[ab + xa]!);
+        const r = box[ba + xa]! + wx * (box[ba + xb]! - box[ba + xa]!);
+        const s = box[bb + xa]! + wx * (box[bb + xb]! - box[bb + xa]!);
+        const pq = p + wy * (q - p);
+        const rs = r + wy * (s - r);
+        const value = Math.fround(pq + wz * (rs - pq));
+        if (value > strength[v]!) {
+          strength[v] = value;
+          scale[v] = boxScale[((wz < 0.5 ? za : zb) + (wy < 0.5 ? ya : yb)) * cx + (wx < 0.5 ? xa : xb)]!;
+        }
+      }
+    }
+  }
+}
+
+/** Copies a box of a level's own answers out of its tiles; false when the level has none. */
+function gatherInto(
+  first: readonly number[],
+  count: readonly number[],
+  ownTile: (i: number, j: number, k: number) => OwnAnswer | null,
+  box: Float32Array,
+  boxScale: Uint8Array,
+): boolean {
+  const n = RIDGE_TILE_SIDE;
+  const [cx, cy, cz] = count as [number, number, number];
+  const [fx, fy, fz] = first as [number, number, number];
+  for (let k = Math.floor(fz / n); k * n < fz + cz; k++)
+    for (let j = Math.floor(fy / n); j * n < fy + cy; j++)
+      for (let i = Math.floor(fx / n); i * n < fx + cx; i++) {
+        const tile = ownTile(i, j, k);
+        if (!tile) return false;
+        const x0 = Math.max(fx, i * n);
+        const x1 = Math.min(fx + cx, i * n + n);
+        for (let z = Math.max(fz, k * n); z < Math.min(fz + cz, k * n + n); z++)
+          for (let y = Math.max(fy, j * n); y < Math.min(fy + cy, j * n + n); y++) {
+            const from = ((z - k * n) * n + (y - j * n)) * n + (x0 - i * n);
+            const to = ((z - fz) * cy + (y - fy)) * cx + (x0 - fx);
+            for (let x = 0; x < x1 - x0; x++) {
+              box[to + x] = tile.strength[from + x]!;
+              boxScale[to + x] = tile.scale[from + x]!;
+            }
+          }
+      }
+  return true;
+}
