@@ -1,0 +1,48 @@
+import { bytesAnswer, jsonAnswer } from "#main/http/answers.ts";
+import { id, windowName } from "#main/http/engine-shapes.ts";
+import { eventStream } from "#main/http/event-stream.ts";
+import type { RouteHandlers } from "#main/http/handler.ts";
+import { COMMON_HEADERS } from "#main/http/headers.ts";
+import { emptyRequest, exportRequest, folderRequest, intakeRequest, lookRequest, windowRequest } from "#main/http/library-shapes.ts";
+import type { Ports } from "#main/http/ports.ts";
+import { readJson } from "#main/http/read-body.ts";
+
+/** Header of an export that comes back as bytes: the JSON list of what the format loses, percent-encoded. */
+export const LOST_HEADER = "x-tautline-lost";
+
+/** Scans on this computer, long work, export, and the life of a window. */
+export function workRoutes(ports: Ports): RouteHandlers {
+  const { folders, scans, jobs, exports, windows } = ports;
+  return {
+    listFolder: async (c) => jsonAnswer(await folders.list((await readJson(c.req.raw, folderRequest)).path)),
+    lookAtScan: async (c) => jsonAnswer(await scans.look((await readJson(c.req.raw, lookRequest)).path)),
+    startIntake: async (c) => jsonAnswer(await jobs.startIntake(await readJson(c.req.raw, intakeRequest))),
+    openDemo: async (c) => {
+      await readJson(c.req.raw, emptyRequest);
+      return jsonAnswer(await jobs.openDemo());
+    },
+    cancelJob: async (c) => {
+      await readJson(c.req.raw, emptyRequest);
+      await jobs.cancel(id(c.req.param("job"), "path.job"));
+      return jsonAnswer({});
+    },
+    events: async (c) => {
+      const window = windowName(c.req.query("window"), "query.window");
+      // HEAD asks for the headers alone: no window is there to be counted.
+      if (c.req.method === "HEAD") return new Response(null, { headers: { ...COMMON_HEADERS, "content-type": "application/jsonl" } });
+      return eventStream(ports, window, c.req.raw.signal);
+    },
+    bye: async (c) => {
+      windows.left((await readJson(c.req.raw, windowRequest)).window);
+      return jsonAnswer({});
+    },
+    exportTrees: async (c) => {
+      const result = await exports.exportTrees(await readJson(c.req.raw, exportRequest));
+      if (!("bytes" in result)) return jsonAnswer(result);
+      return bytesAnswer(new Uint8Array(result.bytes), result.type, {
+        "content-disposition": `attachment; filename*=UTF-8''${encodeURIComponent(result.name)}`,
+        [LOST_HEADER]: encodeURIComponent(JSON.stringify(result.lost)),
+      });
+    },
+  };
+}
