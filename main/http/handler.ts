@@ -74,4 +74,3 @@ async function pageFile(ports: Ports, pathname: string): Promise<Response> {
   const caching = path.startsWith("assets/") ? { "cache-control": "private, max-age=31536000, immutable" } : undefined;
   return bytesAnswer(new Uint8Array(file.bytes), file.type, caching);
 }
-

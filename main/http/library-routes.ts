@@ -25,7 +25,8 @@ export function libraryRoutes({ library, hello }: Ports): RouteHandlers {
     hello: async () => jsonAnswer(hello()),
     shelf: async () => jsonAnswer(await library.shelf()),
     specimen: async (c) => jsonAnswer(await library.specimen(specimenOf(c))),
-    changeSpecimen: async (c) => jsonAnswer(await library.changeSpecimen(specimenOf(c), await readJson(c.req.raw, specimenPatch))),
+    changeSpecimen: async (c) =>
+      jsonAnswer(await library.changeSpecimen(specimenOf(c), await readJson(c.req.raw, specimenPatch))),
     removeSpecimen: async (c) => {
       const { force } = await readJson(c.req.raw, forceRequest);
       await library.removeSpecimen(specimenOf(c), force === true);

@@ -21,8 +21,8 @@ import type { Landmarks, UnknownKeys } from "#shared/trees/document.ts";
 /** A path on this computer; the shell's own folders rule decides whether it may be read. */
 const path = text(4096, 1);
 /** What a person types into one line; control characters would break lists and reports. */
-// biome-ignore lint/suspicious/noControlCharactersInRegex: refusing control characters is the point
-const line = (most: number) => matching(new RegExp(`^[^\\u0000-\\u001f\\u007f]{1,${most}}$`, "u"), `one line of 1 to ${most} characters`);
+const line = (most: number) =>
+  matching(new RegExp(`^[^\\u0000-\\u001f\\u007f]{1,${most}}$`, "u"), `one line of 1 to ${most} characters`);
 const words = text(500);
 const hash = matching(/^[0-9a-f]{64}$/, "a SHA-256 in hexadecimal");
 

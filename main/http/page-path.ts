@@ -21,5 +21,8 @@ export function pagePath(pathname: string): string {
 }
 
 function refusedPath(): TautlineError<"bad-request"> {
-  return new TautlineError("bad-request", "The address does not name a file of the page.", { what: "path refused", where: "path" });
+  return new TautlineError("bad-request", "The address does not name a file of the page.", {
+    what: "path refused",
+    where: "path",
+  });
 }

@@ -3,7 +3,14 @@ import { id, windowName } from "#main/http/engine-shapes.ts";
 import { eventStream } from "#main/http/event-stream.ts";
 import type { RouteHandlers } from "#main/http/handler.ts";
 import { COMMON_HEADERS } from "#main/http/headers.ts";
-import { emptyRequest, exportRequest, folderRequest, intakeRequest, lookRequest, windowRequest } from "#main/http/library-shapes.ts";
+import {
+  emptyRequest,
+  exportRequest,
+  folderRequest,
+  intakeRequest,
+  lookRequest,
+  windowRequest,
+} from "#main/http/library-shapes.ts";
 import type { Ports } from "#main/http/ports.ts";
 import { readJson } from "#main/http/read-body.ts";
 
@@ -29,7 +36,8 @@ export function workRoutes(ports: Ports): RouteHandlers {
     events: async (c) => {
       const window = windowName(c.req.query("window"), "query.window");
       // HEAD asks for the headers alone: no window is there to be counted.
-      if (c.req.method === "HEAD") return new Response(null, { headers: { ...COMMON_HEADERS, "content-type": "application/jsonl" } });
+      if (c.req.method === "HEAD")
+        return new Response(null, { headers: { ...COMMON_HEADERS, "content-type": "application/jsonl" } });
       return eventStream(ports, window, c.req.raw.signal);
     },
     bye: async (c) => {

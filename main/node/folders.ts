@@ -29,7 +29,8 @@ export function folders(begin: () => string = homedir): FoldersPort {
       } catch (error) {
         const code = (error as NodeJS.ErrnoException).code;
         if (code === undefined) throw error;
-        const reason = code === "ENOENT" ? "it does not exist" : code === "ENOTDIR" ? "it is a file" : `the system refused (${code})`;
+        const reason =
+          code === "ENOENT" ? "it does not exist" : code === "ENOTDIR" ? "it is a file" : `the system refused (${code})`;
         throw new TautlineError("not-found", `The folder cannot be listed: ${reason}. Choose another one.`, {
           what: "folder",
           id: basename(folder),

@@ -47,7 +47,15 @@ export class Jobs {
   start(what: JobState["what"], work: JobWork): { job: string } {
     const id = this.#options.newId();
     const abort = new AbortController();
-    const state: JobState = { id, what, state: "running", progress: 0, step: "Beginning", bytesPerSecond: null, secondsLeft: null };
+    const state: JobState = {
+      id,
+      what,
+      state: "running",
+      progress: 0,
+      step: "Beginning",
+      bytesPerSecond: null,
+      secondsLeft: null,
+    };
     let settle = () => {};
     const ended = new Promise<void>((resolve) => {
       settle = resolve;

@@ -78,13 +78,22 @@ export class Journal {
       const { ends, hashes, header } = this.#known;
       if (from > ends.length) {
         const what = `the log ends at seq ${ends.length - 1}`;
-        throw new TautlineError("bad-request", `Lines from seq ${from} were asked for, but ${what}.`, { what, where: "query.from" });
+        throw new TautlineError("bad-request", `Lines from seq ${from} were asked for, but ${what}.`, {
+          what,
+          where: "query.from",
+        });
       }
       const start = from === 0 ? 0 : ends[from - 1]!;
       const size = ends[ends.length - 1]!;
       const bytes = (await this.#files.read(this.#path, start, size)) ?? new Uint8Array(0);
       if (bytes.length !== size - start) {
-        throw unreadable(basename(this.#path), `${size} bytes`, `${start + bytes.length}`, undefined, "The file was changed outside.");
+        throw unreadable(
+          basename(this.#path),
+          `${size} bytes`,
+          `${start + bytes.length}`,
+          undefined,
+          "The file was changed outside.",
+        );
       }
       const lines = new TextDecoder().decode(bytes).split("\n").slice(0, -1);
       return { epoch: header.epoch, lines, head: headOf(this.#known), before: from === 0 ? "" : hashes[from - 1]! };
@@ -187,7 +196,8 @@ function scan(file: string, bytes: Uint8Array): Known {
   const { lines, torn } = splitLog(new TextDecoder().decode(bytes));
   const chained = readChain(lines, undefined, file);
   const first = chained[0]?.record;
-  if (first?.kind !== "header") throw unreadable(file, "a header line", bytes.length === 0 ? "an empty file" : "a torn line", "line 1");
+  if (first?.kind !== "header")
+    throw unreadable(file, "a header line", bytes.length === 0 ? "an empty file" : "a torn line", "line 1");
   let end = 0;
   const ends = lines.map((line) => {
     end += Buffer.byteLength(line) + 1;

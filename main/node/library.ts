@@ -1,3 +1,4 @@
+import { join } from "node:path";
 import type { LibraryPort } from "#main/http/ports.ts";
 import { writeFault } from "#main/node/disk-fault.ts";
 import type { FilePort } from "#main/node/file-port.ts";
@@ -39,6 +40,14 @@ export class Library implements LibraryPort {
     this.passes = new PassStore({ ...options, layout: this.layout });
   }
 
+  /** Removes what a killed process left half-removed. Call it once, with the lease, before anything else. */
+  async removeLeftovers(): Promise<void> {
+    const { files } = this.#options;
+    for (const { name } of (await files.list(this.layout.specimens)) ?? []) {
+      if (name.endsWith(UNFINISHED)) await files.remove(join(this.layout.specimens, name));
+    }
+  }
+
   async shelf(): Promise<ShelfAnswer> {
     const specimens: ShelfSpecimen[] = [];
     const problems: string[] = [];
@@ -50,7 +59,8 @@ export class Library implements LibraryPort {
         for (const pass of await this.passes.ids(id)) {
           await this.passes.summary(id, pass).then(
             (summary) => passes.push(summary),
-            (error) => void (isTautlineError(error, "not-found") || problems.push(`${specimen.name}, pass ${pass}: ${sentence(error)}`)),
+            (error) =>
+              void (isTautlineError(error, "not-found") || problems.push(`${specimen.name}, pass ${pass}: ${sentence(error)}`)),
           );
         }
         passes.sort((a, b) => a.annotator.localeCompare(b.annotator) || a.number - b.number);

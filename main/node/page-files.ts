@@ -24,7 +24,8 @@ export function pageFiles(root: string): PagePort {
         if (!isBelow(await realpath(root), real)) return undefined;
         return { bytes: await readFile(real), type };
       } catch (error) {
-        if (["ENOENT", "ENOTDIR", "EISDIR", "ENAMETOOLONG"].includes((error as NodeJS.ErrnoException).code ?? "")) return undefined;
+        if (["ENOENT", "ENOTDIR", "EISDIR", "ENAMETOOLONG"].includes((error as NodeJS.ErrnoException).code ?? ""))
+          return undefined;
         throw error;
       }
     },

@@ -1,5 +1,5 @@
-import { readJsonFile } from "#main/node/whole-file.ts";
 import type { FilePort } from "#main/node/file-port.ts";
+import { readJsonFile } from "#main/node/whole-file.ts";
 import type { PassState } from "#shared/api/specimen.ts";
 import { unreadable } from "#shared/errors.ts";
 
@@ -22,7 +22,13 @@ export async function readPassFile(files: FilePort, path: string): Promise<PassF
   const { format, version, state } = (value ?? {}) as Partial<PassFile>;
   if (format !== NEW_PASS.format) throw unreadable("pass.json", `format ${NEW_PASS.format}`, `format ${String(format)}`);
   if (version !== NEW_PASS.version) {
-    throw unreadable("pass.json", "version 1", `version ${String(version)}`, undefined, "It was written by a newer version of the program.");
+    throw unreadable(
+      "pass.json",
+      "version 1",
+      `version ${String(version)}`,
+      undefined,
+      "It was written by a newer version of the program.",
+    );
   }
   if (state !== "under-way" && state !== "finished") throw unreadable("pass.json", "state under-way or finished", String(state));
   return value as PassFile;

@@ -7,8 +7,9 @@ import { writeJson } from "#main/node/whole-file.ts";
 import type { PassSummary } from "#shared/api/specimen.ts";
 import { TautlineError } from "#shared/errors.ts";
 import { readChain } from "#shared/log/chain.ts";
+import { PassHistory } from "#shared/log/history.ts";
 import { hashOfLine, lineOf } from "#shared/log/line.ts";
-import { LOG_FORMAT, LOG_VERSION, type LogHeader, type LogRecord } from "#shared/log/records.ts";
+import { LOG_FORMAT, LOG_VERSION, type LogHeader } from "#shared/log/records.ts";
 
 export interface PassStoreOptions {
   readonly files: FilePort;
@@ -52,7 +53,7 @@ export class PassStore {
     const kept = this.#summaries.get(`${specimen}/${pass}`);
     if (kept?.key === key) return kept.summary;
     const { lines } = await journal.read(0);
-    const summary = summarise(journal.header, lines.map((line) => JSON.parse(line) as LogRecord), file);
+    const summary = summarise(PassHistory.fromLines(lines, "journal.jsonl"), file);
     this.#summaries.set(`${specimen}/${pass}`, { key, summary });
     return summary;
   }
@@ -66,7 +67,8 @@ export class PassStore {
   /** A new pass that repeats the records of `lines` (a whole log) under a header of its own. @throws unreadable-input */
   async adopt(specimen: string, lines: readonly string[], file: PassFile): Promise<PassSummary> {
     const [first, ...rest] = readChain(lines, undefined, "The log sent").map(({ record }) => record);
-    if (first?.kind !== "header") throw new TautlineError("bad-request", "The log sent is empty.", { what: "no lines", where: "body.lines" });
+    if (first?.kind !== "header")
+      throw new TautlineError("bad-request", "The log sent is empty.", { what: "no lines", where: "body.lines" });
     const header = await this.#newHeader(specimen, first.body.annotator);
     const chained = [this.#headerLine(header)];
     for (const record of rest) chained.push(lineOf({ ...record, prev: hashOfLine(chained[chained.length - 1]!) }));
@@ -79,7 +81,11 @@ export class PassStore {
     const first = readChain(lines, undefined, "The log sent")[0]?.record;
     if (first?.kind !== "header" || first.body.pass !== pass || first.body.specimen !== specimen) {
       const found = first?.kind === "header" ? `pass ${first.body.pass}` : "no header";
-      throw new TautlineError("conflict", `The log sent belongs to another pass (${found}).`, { what: "pass", expected: pass, found });
+      throw new TautlineError("conflict", `The log sent belongs to another pass (${found}).`, {
+        what: "pass",
+        expected: pass,
+        found,
+      });
     }
     await mayWrite();
     await files.makeFolder(layout.pass(specimen, pass));
@@ -141,6 +147,16 @@ export class PassStore {
 
   #headerLine(body: LogHeader): string {
     const session = createId(this.#options.random);
-    return lineOf({ seq: 0, parent: 0, prev: "", t: this.#options.now(), mono: 0, session, kind: "header", label: "Pass begun", body });
+    return lineOf({
+      seq: 0,
+      parent: 0,
+      prev: "",
+      t: this.#options.now(),
+      mono: 0,
+      session,
+      kind: "header",
+      label: "Pass begun",
+      body,
+    });
   }
 }

@@ -58,10 +58,13 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
   const emit: Events["emit"] = (event) => events.emit(event);
   const library = new Library({ root, files, random, now: Date.now, mayWrite: () => lease.check(), emit });
   const jobs = new Jobs({ now: Date.now, newId: () => createId(random), emit, onFault });
-  const abilities = await options.abilities(library).catch(async (error) => {
-    await lease.release();
-    throw error;
-  });
+  const abilities = await library
+    .removeLeftovers()
+    .then(() => options.abilities(library))
+    .catch(async (error) => {
+      await lease.release();
+      throw error;
+    });
   const windows = new WindowLife({
     graceMs: options.graceMs,
     onLeft: (window) => library.claims.releaseAll(window),

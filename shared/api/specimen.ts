@@ -71,6 +71,8 @@ export interface PassSummary {
   readonly changed: number;
   /** True when the generator made it. */
   readonly synthetic: boolean;
+  /** Set on a branch that was kept when two logs of a pass went different ways. */
+  readonly name?: string;
 }
 
 export interface ShelfSpecimen {
