@@ -1,0 +1,40 @@
+import type { IntakeProgress } from "#main/intake/progress.ts";
+import type { ScanChoice } from "#main/intake/slice-source.ts";
+import type { IntakeRequest, ScanLookAnswer } from "#shared/api/routes.ts";
+import type { SpecimenRecord } from "#shared/api/specimen.ts";
+import type { ErrorBody } from "#shared/errors.ts";
+import type { Polarity } from "#shared/tracing/strand-request.ts";
+
+/** A scan to be taken in, with all that the worker cannot know by itself. */
+export interface IntakeOrder extends Omit<IntakeRequest, "polarity"> {
+  readonly library: string;
+  /** Fresh id of the specimen. */
+  readonly id: string;
+  /** UTC milliseconds. */
+  readonly created: number;
+  /** Absent: as the values suggest. */
+  readonly polarity?: Polarity;
+  readonly choice?: ScanChoice;
+}
+
+/** A finished intake. */
+export interface IntakeOutcome {
+  readonly record: SpecimenRecord;
+  readonly bytesRead: number;
+  readonly bytesWritten: number;
+  readonly seconds: number;
+}
+
+/** What the worker is started for (its `workerData`). */
+export type WorkerTask =
+  | { readonly task: "intake"; readonly order: IntakeOrder }
+  | { readonly task: "look"; readonly path: string; readonly choice?: ScanChoice };
+
+/** To the worker. */
+export type WorkerRequest = { readonly stop: true };
+
+/** From the worker; the last message is `done` or `failed`. */
+export type WorkerMessage =
+  | { readonly type: "progress"; readonly progress: IntakeProgress }
+  | { readonly type: "done"; readonly result: IntakeOutcome | ScanLookAnswer }
+  | { readonly type: "failed"; readonly error: ErrorBody };

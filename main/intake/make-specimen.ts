@@ -1,0 +1,181 @@
+import { join } from "node:path";
+import type { CrashPoint } from "#main/intake/crash-points.ts";
+import { fullDisk, sourceChanged } from "#main/intake/intake-faults.ts";
+import { type IntakeProgress, ProgressMeter } from "#main/intake/progress.ts";
+import type { SliceSource } from "#main/intake/slice-source.ts";
+import { spooled } from "#main/intake/spool.ts";
+import { storeBytes, writeStore, writeWhole } from "#main/intake/store/store-writer.ts";
+import { diskFiles, type WriteFiles } from "#main/intake/store/write-files.ts";
+import { surveySource } from "#main/intake/survey-source.ts";
+import type { Handedness, SpecimenFacts, SpecimenRecord } from "#shared/api/specimen.ts";
+import type { Vec3 } from "#shared/geometry/types.ts";
+import type { Polarity } from "#shared/tracing/strand-request.ts";
+import { BYTES_OF_DTYPE } from "#shared/volume/dtype.ts";
+import { gridOf } from "#shared/volume/scan-header.ts";
+import { STORE_NAME } from "#shared/volume/store/layout.ts";
+import { chooseStoredType, type StoredType, storedTypeOf } from "#shared/volume/stored-type.ts";
+
+export interface SpecimenOptions {
+  /** The library's folder; it exists. */
+  readonly library: string;
+  /** Fresh, 16 to 26 characters of lower-case ASCII. */
+  readonly id: string;
+  readonly name: string;
+  /** UTC milliseconds. */
+  readonly created: number;
+  /** Millimetres, settled by the header or by a person. */
+  readonly spacing: Vec3;
+  readonly handedness: Handedness;
+  /** The slice order is reversed on the way in: the scan's file showed the specimen mirrored. */
+  readonly mirror?: boolean;
+  /** Absent: as the values suggest. */
+  readonly polarity?: Polarity;
+  readonly facts: SpecimenFacts;
+  readonly synthetic: boolean;
+  /** Width of the scan's blur where it is known (generated data); null = not estimated. */
+  readonly blurFwhmMm?: number | null;
+}
+
+/** What the surroundings of an intake provide; all may be left out. */
+export interface IntakeHooks {
+  readonly files?: WriteFiles;
+  readonly signal?: AbortSignal;
+  /** Monotonic milliseconds. */
+  readonly now?: () => number;
+  onProgress?(progress: IntakeProgress): void;
+  /** Reached at each named moment; tests stop here. */
+  at?(point: CrashPoint): void | Promise<void>;
+}
+
+export interface SpecimenResult {
+  readonly record: SpecimenRecord;
+  readonly bytesRead: number;
+  readonly bytesWritten: number;
+  readonly seconds: number;
+}
+
+/** Folder of a library that holds intakes under way; whatever is in it after a restart is debris. */
+export const UNFINISHED = "unfinished";
+
+/**
+ * Makes a specimen of a scan: store, pyramid, hash and `specimen.json` grow in the library's `unfinished` folder, are synced, and
+ * take their place under `specimens` by one rename, so that a half-made specimen never stands there. On failure or cancel
+ * everything made is removed. The source is only read; that it did not change meanwhile is checked at the end.
+ * @throws disk-full, write-failed, unreadable-input, cancelled.
+ */
+export async function makeSpecimen(
+  given: SliceSource,
+  options: SpecimenOptions,
+  hooks: IntakeHooks = {},
+): Promise<SpecimenResult> {
+  const files = hooks.files ?? diskFiles;
+  const now = hooks.now ?? (() => performance.now());
+  const at = async (point: CrashPoint) => hooks.at?.(point);
+  const began = now();
+  const { library, id } = options;
+  const work = join(library, UNFINISHED, id);
+  const { header } = given;
+  const before = await given.fingerprint();
+  const meter = new ProgressMeter(given, now, hooks.onProgress, storedTypeOf(header.dtype) === null);
+  const grid = gridOf(header, options.spacing);
+  const mustSpool = options.mirror === true && !given.seekable;
+  let source = given;
+  await refuseFullDisk(files, library, header, grid, mustSpool);
+  try {
+    await files.makeFolder(join(library, UNFINISHED));
+    await files.makeFolder(work);
+    await at("folder-made");
+    if (mustSpool) source = await spooled(given, join(work, "unpacked.raw"), files, hooks.signal);
+    const stored = await settleType(source, meter, hooks.signal);
+    meter.begin("Taking in the scan");
+    const made = await writeStore({
+      source,
+      grid,
+      dtype: stored.dtype,
+      mirror: options.mirror === true,
+      name: options.name,
+      folder: join(work, STORE_NAME),
+      files,
+      ...(hooks.signal ? { signal: hooks.signal } : {}),
+      at,
+      onSlices: (done) => meter.slices(done),
+    });
+    if ((await given.fingerprint()) !== before) throw sourceChanged(given.name);
+    if (mustSpool) await files.remove(join(work, "unpacked.raw"));
+    const record: SpecimenRecord = {
+      format: "tautline-specimen",
+      version: 1,
+      id,
+      name: options.name,
+      created: options.created,
+      synthetic: options.synthetic,
+      source: { name: given.name, family: header.family, bytes: given.bytes, dtype: header.dtype },
+      volume: {
+        sha256: made.sha256,
+        dtype: stored.dtype,
+        ...grid,
+        handedness: options.handedness,
+        blurFwhmMm: options.blurFwhmMm ?? null,
+        range: made.range,
+      },
+      conversions: conversionsOf(header.notes, stored, options),
+      polarity: options.polarity ?? made.suggestedPolarity,
+      display: made.display,
+      facts: options.facts,
+      landmarks: {},
+    };
+    await writeWhole(files, join(work, "specimen.json"), JSON.stringify(record, null, 2));
+    await at("record-written");
+    for (const folder of [work, join(library, UNFINISHED)]) await files.syncFolder(folder);
+    await at("folders-synced");
+    await files.makeFolder(join(library, "specimens"));
+    await files.rename(work, join(library, "specimens", id));
+    await at("renamed");
+    for (const folder of [join(library, "specimens"), join(library, UNFINISHED), library]) await files.syncFolder(folder);
+    await at("name-synced");
+    return { record, bytesRead: given.bytesRead(), bytesWritten: made.bytesWritten, seconds: (now() - began) / 1000 };
+  } catch (error) {
+    await files.remove(work).catch(() => {}); // the first error is the one to show; debris goes at the next start
+    throw error;
+  } finally {
+    if (source !== given) await source.close();
+  }
+}
+
+/** Removes what interrupted intakes left. Call it once after the library's lease was taken, before any intake. */
+export async function removeUnfinished(library: string, files: WriteFiles = diskFiles): Promise<void> {
+  await files.remove(join(library, UNFINISHED));
+}
+
+async function settleType(source: SliceSource, meter: ProgressMeter, signal?: AbortSignal): Promise<StoredType> {
+  const known = storedTypeOf(source.header.dtype);
+  if (known) return known;
+  meter.begin("Looking at every value");
+  const survey = await surveySource(source, { signal, onSlices: (done) => meter.slices(done) });
+  return chooseStoredType(source.header.dtype, survey.facts(), source.name);
+}
+
+function conversionsOf(notes: readonly string[], stored: StoredType, options: SpecimenOptions): string[] {
+  const sentences = [...notes];
+  if (stored.sentence) sentences.push(stored.sentence);
+  if (options.mirror)
+    sentences.push("The order of slices was reversed on the way in, because the file showed the specimen mirrored.");
+  return sentences;
+}
+
+/** Room for what the file system itself needs besides. */
+const MARGIN_BYTES = 64 * 1024 * 1024;
+
+async function refuseFullDisk(
+  files: WriteFiles,
+  library: string,
+  header: SliceSource["header"],
+  grid: ReturnType<typeof gridOf>,
+  mustSpool: boolean,
+): Promise<void> {
+  const voxels = header.size[0] * header.size[1] * header.size[2];
+  const widest = storedTypeOf(header.dtype)?.dtype ?? "float32";
+  const needed = storeBytes(grid, widest) + (mustSpool ? voxels * BYTES_OF_DTYPE[header.dtype] : 0) + MARGIN_BYTES;
+  const free = await files.freeBytes(library);
+  if (free < needed) throw fullDisk(library, needed, free);
+}

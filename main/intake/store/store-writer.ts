@@ -1,0 +1,145 @@
+import { createHash } from "node:crypto";
+import type { CrashPoint } from "#main/intake/crash-points.ts";
+import { stopIfAborted } from "#main/intake/read-file.ts";
+import type { SliceSource } from "#main/intake/slice-source.ts";
+import { gatherBuffers, LevelWriter } from "#main/intake/store/level-writer.ts";
+import type { StoreSink } from "#main/intake/store/shard-writer.ts";
+import type { WriteFiles } from "#main/intake/store/write-files.ts";
+import { BYTES_OF_DTYPE, type StoredDtype } from "#shared/volume/dtype.ts";
+import type { VolumeGrid } from "#shared/volume/grid.ts";
+import { type PyramidLevel, pyramidLevels } from "#shared/volume/pyramid.ts";
+import { CHUNK_SIDE, chunkBytes, chunkGrid, INDEX_BYTES, levelFolder, shardGrid } from "#shared/volume/store/layout.ts";
+import { arrayMetadata, groupMetadata } from "#shared/volume/store/store-metadata.ts";
+import { convertInto } from "#shared/volume/stored-type.ts";
+import { displayWindow, suggestPolarity, ValueSurvey } from "#shared/volume/value-survey.ts";
+
+export interface StoreOrder {
+  readonly source: SliceSource;
+  readonly grid: VolumeGrid;
+  readonly dtype: StoredDtype;
+  /** True: the last slice of the source becomes the first. The source must be seekable. */
+  readonly mirror: boolean;
+  readonly name: string;
+  /** Folder to make; its parent exists. */
+  readonly folder: string;
+  readonly files: WriteFiles;
+  readonly signal?: AbortSignal;
+  at(point: CrashPoint): void | Promise<void>;
+  /** After each slice: slices done so far. */
+  onSlices(done: number): void;
+}
+
+export interface StoreResult {
+  /** SHA-256 (hex) of the stored level 0: C order z, y, x, little-endian. */
+  readonly sha256: string;
+  readonly range: { readonly min: number; readonly max: number };
+  readonly display: { readonly low: number; readonly high: number };
+  readonly suggestedPolarity: "bright" | "dark";
+  readonly bytesWritten: number;
+}
+
+/** Slices of level 0 held at once are kept below this; thinner slabs mean more, smaller writes. */
+const SLAB_BYTES = 256 * 1024 * 1024;
+
+/** Slices held at once: a divisor of 32, at least 2 so that a coarser slice always has both its parents. */
+export function slabPlanesFor(planeBytes: number): number {
+  let planes = CHUNK_SIDE;
+  while (planes > 2 && planes * planeBytes > SLAB_BYTES) planes /= 2;
+  return planes;
+}
+
+/** Bytes that the store of a grid takes on disk, all levels, metadata left out. */
+export function storeBytes(grid: VolumeGrid, dtype: StoredDtype): number {
+  return pyramidLevels(grid).reduce((sum, level) => {
+    const [z, y, x] = chunkGrid(level.size);
+    const [sz, sy, sx] = shardGrid(level.size);
+    return sum + z * y * x * chunkBytes(dtype) + sz * sy * sx * INDEX_BYTES;
+  }, 0);
+}
+
+/** Writes the whole store of a scan in one pass over its slices; every file is synced. Nothing is removed on failure. */
+export async function writeStore(order: StoreOrder): Promise<StoreResult> {
+  const { files, folder, grid, dtype } = order;
+  let bytesWritten = 0;
+  const folders = new Set<string>([folder]);
+  const count = (bytes: number) => {
+    bytesWritten += bytes;
+  };
+  const sink: StoreSink = { files, folder, dtype, folders, at: order.at, count };
+  await files.makeFolder(folder);
+  const levels = pyramidLevels(grid);
+  const planeBytes = grid.size[0] * grid.size[1] * BYTES_OF_DTYPE[dtype];
+  const writer = new LevelWriter(sink, levels, 0, slabPlanesFor(planeBytes), gatherBuffers(dtype));
+  const survey = new ValueSurvey(grid.size[0] * grid.size[1] * grid.size[2]);
+  const hash = createHash("sha256");
+  try {
+    let done = 0;
+    for await (const { plane } of slicesInOrder(order)) {
+      stopIfAborted(order.signal, "taking in the scan");
+      const out = writer.nextPlane;
+      convertInto(plane, out);
+      survey.add(out);
+      hash.update(new Uint8Array(out.buffer, out.byteOffset, out.byteLength));
+      await writer.planeReady();
+      order.onSlices(++done);
+    }
+    await writer.finish();
+  } catch (error) {
+    await writer.abandon();
+    throw error;
+  }
+  await order.at("levels-written");
+  const sha256 = hash.digest("hex");
+  await writeMetadata(order, levels, sha256);
+  await order.at("metadata-written");
+  for (const made of folders) await files.syncFolder(made);
+  const facts = survey.facts();
+  const sample = survey.sortedSample();
+  return {
+    sha256,
+    range: { min: facts.min, max: facts.max },
+    display: displayWindow(sample),
+    suggestedPolarity: suggestPolarity(sample),
+    bytesWritten,
+  };
+}
+
+async function writeMetadata(order: StoreOrder, levels: readonly PyramidLevel[], sha256: string): Promise<void> {
+  for (const level of levels) {
+    const text = JSON.stringify(arrayMetadata(level, order.dtype), null, 2);
+    await writeWhole(order.files, `${order.folder}/${levelFolder(level.level)}/zarr.json`, text);
+  }
+  const group = groupMetadata(order.name, order.grid, levels, sha256);
+  await writeWhole(order.files, `${order.folder}/zarr.json`, JSON.stringify(group, null, 2));
+}
+
+/** Writes a small new file and syncs it. */
+export async function writeWhole(files: WriteFiles, path: string, text: string): Promise<void> {
+  const handle = await files.create(path);
+  try {
+    await handle.write(new TextEncoder().encode(`${text}\n`), 0);
+    await handle.sync();
+  } finally {
+    await handle.close();
+  }
+}
+
+/** Slices one by one as they will be stored: forwards, or backwards in runs where the order is reversed. */
+async function* slicesInOrder(order: StoreOrder): AsyncGenerator<{ plane: Parameters<typeof convertInto>[0] }> {
+  const { source, mirror, signal } = order;
+  const [nx, ny, nz] = source.header.size;
+  const voxels = nx * ny;
+  if (!mirror) {
+    for await (const run of source.readPlanes(0, nz, signal))
+      for (let k = 0; k < run.count; k++) yield { plane: run.data.subarray(k * voxels, (k + 1) * voxels) };
+    return;
+  }
+  const step = Math.max(1, Math.floor((8 * 1024 * 1024) / (voxels * BYTES_OF_DTYPE[source.header.dtype])));
+  for (let end = nz; end > 0; end -= step) {
+    // Runs of one call are valid one at a time, so slices of a block are kept until the block can be given backwards.
+    const block: Parameters<typeof convertInto>[0][] = [];
+    for await (const run of source.readPlanes(Math.max(0, end - step), end, signal))
+      for (let k = 0; k < run.count; k++) block.push(run.data.slice(k * voxels, (k + 1) * voxels));
+    while (block.length > 0) yield { plane: block.pop()! };
+  }
+}
