@@ -32,7 +32,13 @@ const TIE_BUDGET = 20_000;
  * @param shouldStop asked now and then; true ends the search with the bounds proven so far.
  * @source Sanfeliu & Fu, IEEE Trans SMC 1983;13:353-362; Bunke & Allermann, Pattern Recognit Lett 1983;1:245-253
  */
-export function editDistance(a: CanonicalTree, b: CanonicalTree, costs: CostModel, origin: OriginRule, shouldStop: () => boolean = () => false): EditDistance {
+export function editDistance(
+  a: CanonicalTree,
+  b: CanonicalTree,
+  costs: CostModel,
+  origin: OriginRule,
+  shouldStop: () => boolean = () => false,
+): EditDistance {
   const swapped = a.nodes.length > b.nodes.length;
   const [rows, columns] = swapped ? [b, a] : [a, b];
   const problem = editProblem(rows, columns, costs);
@@ -61,7 +67,9 @@ function nearestMap(problem: EditProblem): Int32Array {
   const width = problem.b.size;
   const map = new Int32Array(problem.a.size).fill(-1);
   const used = new Uint8Array(width);
-  const pairs = Array.from(problem.displacement.keys()).sort((x, y) => problem.displacement[x]! - problem.displacement[y]! || x - y);
+  const pairs = Array.from(problem.displacement.keys()).sort(
+    (x, y) => problem.displacement[x]! - problem.displacement[y]! || x - y,
+  );
   for (const at of pairs) {
     const [i, j] = [Math.floor(at / width), at % width];
     if (map[i]! >= 0 || used[j] || problem.nodeSubstitution[at]! >= 2) continue;

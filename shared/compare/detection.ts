@@ -1,0 +1,95 @@
+import { affinities } from "#shared/compare/affinity.ts";
+import { type CanonicalTree, canonicalTree } from "#shared/compare/canonical.ts";
+import { bestMatching } from "#shared/compare/edit-distance/assignment.ts";
+import { type ComparedSet, type ComparedTree, centreline } from "#shared/compare/input.ts";
+import { resample } from "#shared/geometry/polyline.ts";
+import { SegmentGrid } from "#shared/geometry/segment-grid.ts";
+import type { Vec3 } from "#shared/geometry/types.ts";
+
+export interface Detection {
+  readonly count: {
+    readonly true: number;
+    readonly missed: number;
+    readonly extra: number;
+    readonly recall: number | null;
+    readonly precision: number | null;
+  };
+  readonly length: { readonly recall: number | null; readonly precision: number | null };
+  readonly reasons: Readonly<Record<string, string>>;
+}
+
+/**
+ * How many of A's strands B has, one to one by affinity, a pair being true when at least half of each lies within
+ * tolerance of the other; and the same by length. Strands are those of the canonical form, so that waypoints do not count.
+ * @param step sampling step, millimetres.
+ */
+export function detection(a: ComparedSet, b: ComparedSet, mergeMm: number, toleranceMm: number, step: number): Detection {
+  const [linesA, linesB] = [canonicalLines(a, mergeMm), canonicalLines(b, mergeMm)];
+  const table = affinities(linesA, linesB, step);
+  const matched = bestMatching(linesA.length, linesB.length, table.affinity);
+  let found = 0;
+  matched.forEach((j, i) => {
+    if (
+      j >= 0 &&
+      shareWithin(linesA[i]!, [linesB[j]!], toleranceMm, step) >= 0.5 &&
+      shareWithin(linesB[j]!, [linesA[i]!], toleranceMm, step) >= 0.5
+    )
+      found += 1;
+  });
+  const reasons: Record<string, string> = {};
+  if (linesA.length === 0) reasons.recall = "The reference has no strand.";
+  if (linesB.length === 0) reasons.precision = "The compared side has no strand.";
+  return {
+    count: {
+      true: found,
+      missed: linesA.length - found,
+      extra: linesB.length - found,
+      recall: linesA.length === 0 ? null : found / linesA.length,
+      precision: linesB.length === 0 ? null : found / linesB.length,
+    },
+    length: {
+      recall: linesA.length === 0 ? null : shareWithin(linesA.flat(), linesB, toleranceMm, step),
+      precision: linesB.length === 0 ? null : shareWithin(linesB.flat(), linesA, toleranceMm, step),
+    },
+    reasons,
+  };
+}
+
+/** Centrelines of the canonical strands of all trees of a set; shape [strands][members][points]. */
+function canonicalLines(set: ComparedSet, mergeMm: number): (readonly Vec3[])[][] {
+  return set.trees.flatMap((tree) => linesOfCanonical(tree, canonicalTree(tree, mergeMm)));
+}
+
+/** Centrelines of each canonical strand, one per member strand, as the tree has them. */
+export function linesOfCanonical(tree: ComparedTree, canonical: CanonicalTree): (readonly Vec3[])[][] {
+  const nodes = new Map(tree.nodes.map((node) => [node.id, node]));
+  const strands = new Map(tree.strands.map((strand) => [strand.id, strand]));
+  return canonical.strands.map((strand) =>
+    strand.members.map((id) => {
+      const member = strands.get(id)!;
+      return centreline(member, nodes.get(member.from), nodes.get(member.to));
+    }),
+  );
+}
+
+/** Share (by length) of lines that lies within `reach` of any of the other lines; 1 for lines without length that touch. */
+function shareWithin(
+  lines: readonly (readonly Vec3[])[],
+  others: readonly (readonly (readonly Vec3[])[])[],
+  reach: number,
+  step: number,
+): number {
+  const grid = new SegmentGrid(others.flat(), Math.max(reach, 0.5));
+  let all = 0;
+  let near = 0;
+  for (const line of lines) {
+    const samples = resample(line, step);
+    for (let k = 1; k < samples.length; k++) {
+      const [p, q] = [samples[k - 1]!, samples[k]!];
+      const piece = Math.hypot(q[0] - p[0], q[1] - p[1], q[2] - p[2]);
+      all += piece;
+      if (grid.nearest([(p[0] + q[0]) / 2, (p[1] + q[1]) / 2, (p[2] + q[2]) / 2]).distance <= reach) near += piece;
+    }
+  }
+  return all === 0 ? 0 : near / all;
+}
