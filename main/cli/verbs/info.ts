@@ -1,0 +1,41 @@
+import { wholeOption } from "#main/cli/number-option.ts";
+import type { Verb } from "#main/cli/verb.ts";
+import { scanInfo } from "#main/intake/scan-info.ts";
+import type { ScanInfo } from "#shared/api/routes.ts";
+
+/** `tautline info`: what a scan says about itself, and what to doubt. */
+export const info: Verb = {
+  name: "info",
+  summary: "size, voxel size, unit and value range of a scan, with warnings",
+  help: `tautline info <volume> [--channel n] [--time n] [--json]
+
+Reads an NRRD file, a multi-page TIFF file, an OME-Zarr folder or a specimen's folder, and says what its header
+and values are. An odd or missing voxel size is a warning here (exit 0); data shorter than the header says is not (exit 2).
+
+  --channel n, --time n  which one to read where a scan has several, from 0`,
+  options: { channel: { type: "string" }, time: { type: "string" } },
+  positionals: [1, 1],
+  async run({ positionals, options, io, say }) {
+    const channel = wholeOption(options, "channel", 0);
+    const time = wholeOption(options, "time", 0);
+    const choice = { ...(channel === undefined ? {} : { channel }), ...(time === undefined ? {} : { time }) };
+    const found = await scanInfo(positionals[0]!, { choice, signal: io.signal });
+    for (const warning of found.warnings) say(`${found.name}: ${warning.message}`);
+    return { json: found, text: inWords(found), exit: 0 };
+  },
+};
+
+function inWords(found: ScanInfo): string {
+  const [x, y, z] = found.size;
+  const spacing = found.spacing ? `${found.spacing.join(" x ")} mm` : "not settled by the header";
+  const asWritten = found.headerSpacing ? `${found.headerSpacing.join(", ")} ${found.unit ?? "(no unit)"}` : "none";
+  const lines = [
+    `${found.name}: ${found.family}, ${found.bytes} bytes`,
+    `size        ${x} x ${y} x ${z} voxels, ${found.dtype}`,
+    `voxel size  ${spacing}`,
+    `in header   ${asWritten}`,
+    `values      ${found.range.min} to ${found.range.max}${found.range.sampled ? " (of a sample of slices)" : ""}`,
+    `frame       ${found.frame === "LPS" ? "LPS (left, posterior, superior)" : "the scan's own axes"}`,
+  ];
+  return lines.join("\n");
+}

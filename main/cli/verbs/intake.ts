@@ -1,0 +1,139 @@
+import { randomBytes } from "node:crypto";
+import { basename, join } from "node:path";
+import { wholeOption, wordOption } from "#main/cli/number-option.ts";
+import { givenSpacing, SPACING_HELP, SPACING_OPTIONS, settledSpacing } from "#main/cli/spacing-option.ts";
+import type { Verb, VerbCall } from "#main/cli/verb.ts";
+import { removeUnfinished } from "#main/intake/make-specimen.ts";
+import { openScan } from "#main/intake/open-scan.ts";
+import type { IntakeProgress } from "#main/intake/progress.ts";
+import { runIntake } from "#main/intake/run-intake.ts";
+import { diskFiles } from "#main/node/disk-files.ts";
+import { createId } from "#main/node/layout.ts";
+import { processFacts, takeLease } from "#main/node/lease.ts";
+import type { SpecimenFacts } from "#shared/api/specimen.ts";
+import { TautlineError } from "#shared/errors.ts";
+
+/** `tautline intake`: makes a specimen of a scan. */
+export const intake: Verb = {
+  name: "intake",
+  summary: "take a scan into a library as a specimen",
+  help: `tautline intake <volume> --library DIR [--spacing sx,sy,sz --unit um] [options] [--json]
+
+Copies a scan into the library as a store that opens at any size, with its hash. The scan itself is only read. A voxel size
+that the header leaves open, or that looks odd, must be given; nothing is guessed. Stopped at any moment, the library
+is as it was; start the same command again.
+
+  --library DIR          the library's folder; it is made when it is not there
+${SPACING_HELP}
+  --name TEXT            the specimen's name (the file's name when not given)
+  --handedness H         confirmed or unknown (unknown when not given): whether someone has seen that it is not mirrored
+  --mirror               reverse the order of slices: the file shows the specimen mirrored
+  --polarity P           bright or dark strings (as the values suggest when not given)
+  --channel n, --time n  which one to read where a scan has several, from 0
+  --species, --fixation, --medium, --state TEXT, --pressure mmHg   facts of the specimen`,
+  options: {
+    library: { type: "string" },
+    ...SPACING_OPTIONS,
+    name: { type: "string" },
+    handedness: { type: "string" },
+    mirror: { type: "boolean" },
+    polarity: { type: "string" },
+    channel: { type: "string" },
+    time: { type: "string" },
+    species: { type: "string" },
+    fixation: { type: "string" },
+    medium: { type: "string" },
+    state: { type: "string" },
+    pressure: { type: "string" },
+  },
+  positionals: [1, 1],
+  async run(call) {
+    const { positionals, options, io, say } = call;
+    const path = positionals[0]!;
+    if (typeof options.library !== "string" || options.library === "")
+      throw new TautlineError("misuse", "intake needs --library DIR, the folder that holds the specimens.", {
+        what: "--library",
+      });
+    const library = options.library;
+    const handedness = wordOption(options, "handedness", ["confirmed", "unknown"] as const) ?? "unknown";
+    const polarity = wordOption(options, "polarity", ["bright", "dark"] as const);
+    const channel = wholeOption(options, "channel", 0);
+    const time = wholeOption(options, "time", 0);
+    const choice = { ...(channel === undefined ? {} : { channel }), ...(time === undefined ? {} : { time }) };
+    const facts = givenFacts(options);
+    const given = givenSpacing(options);
+    const source = await openScan(path, choice);
+    const { header } = source;
+    await source.close();
+    const spacing = settledSpacing(header, source.name, given, { strict: true, say });
+    const files = diskFiles();
+    const random = (count: number) => new Uint8Array(randomBytes(count));
+    await files.makeFolder(library);
+    const lease = await takeLease({ files, path: join(library, "lease.json"), what: "intake", facts: processFacts(), random });
+    try {
+      await removeUnfinished(library);
+      const order = {
+        path,
+        library,
+        id: createId(random),
+        created: Date.now(),
+        name: typeof options.name === "string" && options.name !== "" ? options.name : plainName(path),
+        spacing,
+        handedness,
+        mirror: options.mirror === true,
+        ...(polarity ? { polarity } : {}),
+        facts,
+        choice,
+      };
+      const made = await runIntake(order, { signal: io.signal, onProgress: progressLine(say) });
+      const { record } = made;
+      const json = {
+        specimen: record.id,
+        sha256: record.volume.sha256,
+        seconds: made.seconds,
+        bytesRead: made.bytesRead,
+        bytesWritten: made.bytesWritten,
+        peakMemoryBytes: process.resourceUsage().maxRSS * 1024,
+        conversions: record.conversions,
+      };
+      for (const sentence of record.conversions) say(`${source.name}: ${sentence}`);
+      const text = `${record.name} is specimen ${record.id} of ${library}\nsha256 ${record.volume.sha256}`;
+      return { json, text, exit: 0 };
+    } finally {
+      await lease.release();
+    }
+  },
+};
+
+function givenFacts(options: VerbCall["options"]): SpecimenFacts {
+  const text = (key: string) => (typeof options[key] === "string" && options[key] !== "" ? { [key]: options[key] } : {});
+  const pressure = options.pressure === undefined ? undefined : Number(options.pressure);
+  if (pressure !== undefined && (!Number.isFinite(pressure) || options.pressure === ""))
+    throw new TautlineError("misuse", `--pressure must be a number of mmHg, found '${String(options.pressure)}'.`, {
+      what: "--pressure",
+    });
+  return {
+    ...text("species"),
+    ...text("fixation"),
+    ...text("medium"),
+    ...text("state"),
+    ...(pressure === undefined ? {} : { pressure }),
+  };
+}
+
+function plainName(path: string): string {
+  return basename(path).replace(/(\.ome)?\.(nrrd|nhdr|tiff?|zarr)$/i, "") || basename(path);
+}
+
+/** A line at each tenth of the way, so that a log of a long intake stays short. */
+function progressLine(say: (line: string) => void): (progress: IntakeProgress) => void {
+  let told = -1;
+  return ({ progress, step, bytesPerSecond, secondsLeft }) => {
+    const tenth = Math.floor(progress * 10);
+    if (tenth === told) return;
+    told = tenth;
+    const rate = bytesPerSecond === null ? "" : `, ${(bytesPerSecond / 1e6).toFixed(0)} MB/s`;
+    const left = secondsLeft === null ? "" : `, ${secondsLeft} s left`;
+    say(`${step}: ${tenth * 10} %${rate}${left}`);
+  };
+}
