@@ -6,20 +6,14 @@ const KEPT = 20;
 /** Progress goes out at most this often. */
 const TELL_EVERY_MS = 200;
 
-/** How far a job is: 0-1, what it is doing in words, and bytes done of bytes in all where bytes are its measure. */
-export interface Progress {
-  readonly progress: number;
-  readonly step: string;
-  readonly bytesDone?: number;
-  readonly bytesTotal?: number;
-}
+/** How far a job is; rate and time left are null until they can be told. */
+export type Progress = Pick<JobState, "progress" | "step" | "bytesPerSecond" | "secondsLeft">;
 
 /** The work of a job: reports as it goes, stops at the signal, gives the specimen it made. */
 export type JobWork = (report: (progress: Progress) => void, signal: AbortSignal) => Promise<{ specimen: string } | undefined>;
 
 interface Job {
   state: JobState;
-  readonly begun: number;
   told: number;
   readonly abort: AbortController;
   readonly ended: Promise<void>;
@@ -60,16 +54,11 @@ export class Jobs {
     const ended = new Promise<void>((resolve) => {
       settle = resolve;
     });
-    const job: Job = { state, begun: this.#options.now(), told: 0, abort, ended };
+    const job: Job = { state, told: 0, abort, ended };
     this.#jobs.set(id, job);
     this.#tell(job);
     void this.#run(job, work).finally(settle);
     return { job: id };
-  }
-
-  /** A job that is done already: what was asked for is there. */
-  startDone(what: JobState["what"], result: { specimen: string }): { job: string } {
-    return this.start(what, async () => result);
   }
 
   states(): readonly JobState[] {
@@ -104,7 +93,8 @@ export class Jobs {
     try {
       const result = await work((progress) => {
         if (job.state.state !== "running") return;
-        job.state = { ...job.state, progress: clamp(progress.progress), step: progress.step, ...this.#pace(job, progress) };
+        const { step, bytesPerSecond, secondsLeft } = progress;
+        job.state = { ...job.state, progress: clamp(progress.progress), step, bytesPerSecond, secondsLeft };
         if (now() - job.told >= TELL_EVERY_MS) this.#tell(job);
       }, job.abort.signal);
       this.#end(job, { state: "done", progress: 1, step: "Done", ...(result ? { result } : {}) });
@@ -114,16 +104,6 @@ export class Jobs {
       const { tag, message } = encodeError(error);
       this.#end(job, { state: "failed", step: "Failed", error: { tag, message } });
     }
-  }
-
-  #pace(job: Job, { progress, bytesDone }: Progress): Pick<JobState, "bytesPerSecond" | "secondsLeft"> {
-    const seconds = (this.#options.now() - job.begun) / 1000;
-    // The first second says little about the rest.
-    if (seconds < 1) return { bytesPerSecond: null, secondsLeft: null };
-    return {
-      bytesPerSecond: bytesDone === undefined ? null : bytesDone / seconds,
-      secondsLeft: progress > 0.01 ? (seconds * (1 - progress)) / progress : null,
-    };
   }
 
   #end(job: Job, last: Partial<JobState>): void {

@@ -72,6 +72,11 @@ export class Journal {
     return headOf(this.#known);
   }
 
+  /** Hash of the line `seq`; undefined when the log does not reach that far. */
+  hashAt(seq: number): string | undefined {
+    return this.#known.hashes[seq];
+  }
+
   /** Lines from seq `from` on. @throws bad-request when the log does not reach that far. */
   read(from: number): Promise<LogAnswer> {
     return this.#turns.take(async () => {

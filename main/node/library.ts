@@ -132,7 +132,7 @@ export class Library implements LibraryPort {
         holder: "another window",
       });
     }
-    const answer = await (await this.passes.journal(specimen, pass)).append(request);
+    const answer = await this.passes.append(specimen, pass, request);
     if (answer.outcome === "appended") this.#options.emit({ event: "pass", pass, head: answer.head });
     return answer;
   }

@@ -28,10 +28,8 @@ export interface LoopbackOptions {
 
 export interface Loopback {
   readonly port: number;
-  /** Address of the page without the token. */
+  /** Scheme, address and port. */
   readonly origin: string;
-  /** Address of the page; the fragment, which no browser sends anywhere, carries the token. */
-  readonly url: string;
   /** Ends the server within a bound; the port is free afterwards. */
   close(): Promise<void>;
 }
@@ -56,7 +54,6 @@ export async function serveLoopback(options: LoopbackOptions): Promise<Loopback>
   return {
     port,
     origin: `http://${host}`,
-    url: `http://${host}/#token=${options.token}`,
     close: () =>
       new Promise((resolve) => {
         server.close(() => resolve());

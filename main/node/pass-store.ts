@@ -2,14 +2,18 @@ import type { FilePort } from "#main/node/file-port.ts";
 import { Journal, type WriterCheck } from "#main/node/journal.ts";
 import { createId, type LibraryLayout, type RandomBytes } from "#main/node/layout.ts";
 import { NEW_PASS, type PassFile, readPassFile } from "#main/node/pass-file.ts";
+import { PassFolds } from "#main/node/pass-folds.ts";
 import { summarise } from "#main/node/pass-summary.ts";
 import { writeJson } from "#main/node/whole-file.ts";
+import type { AppendAnswer, AppendRequest } from "#shared/api/routes.ts";
 import type { PassSummary } from "#shared/api/specimen.ts";
 import { TautlineError } from "#shared/errors.ts";
 import { readChain } from "#shared/log/chain.ts";
 import { PassHistory } from "#shared/log/history.ts";
 import { hashOfLine, lineOf } from "#shared/log/line.ts";
 import { LOG_FORMAT, LOG_VERSION, type LogHeader } from "#shared/log/records.ts";
+import type { Curve } from "#shared/trees/document.ts";
+import type { Operation } from "#shared/trees/operations.ts";
 
 export interface PassStoreOptions {
   readonly files: FilePort;
@@ -20,14 +24,23 @@ export interface PassStoreOptions {
   readonly mayWrite: WriterCheck;
 }
 
+/** An edit that a pass begins with. */
+export interface FirstEdit {
+  readonly operation: Operation;
+  readonly label: string;
+  readonly curves: readonly Curve[];
+}
+
 /** The passes of a library: their journals, opened once and kept, and what is said beside them. */
 export class PassStore {
   readonly #options: PassStoreOptions;
   readonly #journals = new Map<string, Promise<Journal>>();
+  readonly #folds: PassFolds;
   readonly #summaries = new Map<string, { key: string; summary: PassSummary }>();
 
   constructor(options: PassStoreOptions) {
     this.#options = options;
+    this.#folds = new PassFolds(options.files);
   }
 
   /** The pass's journal. @throws not-found, unreadable-input */
@@ -52,16 +65,38 @@ export class PassStore {
     const key = `${journal.head.hash} ${JSON.stringify(file)}`;
     const kept = this.#summaries.get(`${specimen}/${pass}`);
     if (kept?.key === key) return kept.summary;
-    const { lines } = await journal.read(0);
-    const summary = summarise(PassHistory.fromLines(lines, "journal.jsonl"), file);
+    const summary = summarise(await this.#folds.history(layout.pass(specimen, pass), journal), file);
     this.#summaries.set(`${specimen}/${pass}`, { key, summary });
     return summary;
+  }
+
+  /** The history of a pass as it stands on disk. @throws not-found, unreadable-input */
+  async history(specimen: string, pass: string): Promise<PassHistory> {
+    return this.#folds.history(this.#options.layout.pass(specimen, pass), await this.journal(specimen, pass));
+  }
+
+  /** Appends to a pass's journal; see {@link Journal.append}. A snapshot follows when one is due. */
+  async append(specimen: string, pass: string, request: AppendRequest): Promise<AppendAnswer> {
+    const journal = await this.journal(specimen, pass);
+    const answer = await journal.append(request);
+    // Not awaited: the window shows "saved" once the journal is synced.
+    void this.#folds.snapshot(this.#options.layout.pass(specimen, pass), journal);
+    return answer;
   }
 
   /** A new pass with nothing but its header. */
   async create(specimen: string, annotator: string): Promise<PassSummary> {
     const header = await this.#newHeader(specimen, annotator);
     return this.#begin([this.#headerLine(header)], NEW_PASS, header);
+  }
+
+  /** A new pass that begins with one edit. */
+  async createFilled(specimen: string, annotator: string, file: PassFile, first: FirstEdit): Promise<PassSummary> {
+    const header = await this.#newHeader(specimen, annotator);
+    const stamp = { t: this.#options.now(), mono: 0, session: createId(this.#options.random) };
+    const { history, lines } = PassHistory.begin(header, stamp);
+    lines.push(...history.commit(first.operation, first.label, first.curves, stamp));
+    return this.#begin(lines, file, header);
   }
 
   /** A new pass that repeats the records of `lines` (a whole log) under a header of its own. @throws unreadable-input */
@@ -104,6 +139,7 @@ export class PassStore {
   /** Closes the journals of a specimen, or all. */
   async close(specimen?: string): Promise<void> {
     const within = specimen === undefined ? "" : this.#options.layout.specimen(specimen);
+    this.#folds.forget(within);
     for (const [path, journal] of this.#journals) {
       if (!path.startsWith(within)) continue;
       this.#journals.delete(path);

@@ -1,0 +1,38 @@
+import type { Progress } from "#main/node/jobs.ts";
+import type { FirstEdit } from "#main/node/pass-store.ts";
+import type { Engine } from "#shared/api/engine.ts";
+import type { IntakeRequest, ScanLookAnswer } from "#shared/api/routes.ts";
+import type { SpecimenRecord } from "#shared/api/specimen.ts";
+
+/** What a new specimen needs that no worker can know by itself. */
+export interface SpecimenOrder {
+  /** The library's folder. */
+  readonly library: string;
+  /** Fresh id of the specimen. */
+  readonly id: string;
+  /** UTC milliseconds. */
+  readonly created: number;
+}
+
+export interface WorkHooks {
+  readonly signal: AbortSignal;
+  onProgress(progress: Progress): void;
+}
+
+export interface DemoPass {
+  readonly annotator: string;
+  first(): Promise<FirstEdit>;
+}
+
+/** What the entry points bring in from the engine's and the intake's folders. */
+export interface Abilities {
+  readonly engine: Engine;
+  look(path: string): Promise<ScanLookAnswer>;
+  runIntake(order: SpecimenOrder & IntakeRequest, hooks: WorkHooks): Promise<{ readonly record: SpecimenRecord }>;
+  /** Makes the demo valve's specimen. */
+  runDemo(order: SpecimenOrder, hooks: WorkHooks): Promise<{ readonly record: SpecimenRecord }>;
+  /** The invented passes of the demo valve, which `specimen` holds; each is made when it is asked for. */
+  demoPasses(specimen: SpecimenRecord): Promise<readonly DemoPass[]>;
+  /** Asks the engine to let go of a specimen's store before its folder is removed. */
+  forgetSpecimen?(specimen: string): Promise<void>;
+}

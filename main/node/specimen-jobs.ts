@@ -1,0 +1,63 @@
+import type { JobsPort } from "#main/http/ports.ts";
+import type { Abilities, SpecimenOrder } from "#main/node/abilities.ts";
+import { hideFolders } from "#main/node/hide-folders.ts";
+import type { Jobs, JobWork } from "#main/node/jobs.ts";
+import type { Library } from "#main/node/library.ts";
+import { NEW_PASS } from "#main/node/pass-file.ts";
+import type { ServerEvent } from "#shared/api/routes.ts";
+
+export interface SpecimenJobsOptions {
+  readonly root: string;
+  readonly library: Library;
+  readonly abilities: Abilities;
+  readonly jobs: Jobs;
+  readonly newId: () => string;
+  /** UTC milliseconds. */
+  readonly now: () => number;
+  readonly emit: (event: ServerEvent) => void;
+}
+
+/** The jobs that make specimens: intake and the demo valve. */
+export function specimenJobs(options: SpecimenJobsOptions): JobsPort {
+  const { root, library, abilities, jobs, emit } = options;
+  const order = (): SpecimenOrder => ({ library: root, id: options.newId(), created: options.now() });
+  let demo: string | null = null;
+
+  /** A demo whose making was interrupted is completed, not made twice. */
+  const makeDemo: JobWork = async (onProgress, signal) => {
+    const { specimens } = await library.shelf();
+    const found = specimens.find(({ specimen }) => specimen.synthetic);
+    const specimen = found?.specimen ?? (await abilities.runDemo(order(), { onProgress, signal })).record;
+    const there = new Set(found?.passes.filter(({ synthetic }) => synthetic).map(({ annotator }) => annotator));
+    for (const { annotator, first } of await abilities.demoPasses(specimen)) {
+      if (there.has(annotator)) continue;
+      const file = { ...NEW_PASS, synthetic: true, state: "finished" } as const;
+      await library.passes.createFilled(specimen.id, annotator, file, await first());
+    }
+    emit({ event: "shelf" });
+    return { specimen: specimen.id };
+  };
+
+  async function openDemo(): Promise<{ job: string }> {
+    const running = jobs.states().find(({ id, state }) => id === demo && state === "running");
+    demo = running?.id ?? jobs.start("demo", makeDemo).job;
+    return { job: demo };
+  }
+
+  return {
+    async startIntake(request) {
+      return jobs.start("intake", async (onProgress, signal) => {
+        try {
+          const { record } = await abilities.runIntake({ ...request, ...order() }, { onProgress, signal });
+          emit({ event: "shelf" });
+          return { specimen: record.id };
+        } catch (error) {
+          throw hideFolders(hideFolders(error, request.path), root);
+        }
+      });
+    },
+    openDemo,
+    cancel: async (job) => jobs.cancel(job),
+    jobs: () => jobs.states(),
+  };
+}
