@@ -1,5 +1,5 @@
-import { type ComparedStrand, type ComparedTree, placeOf, strandLength } from "#shared/compare/input.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
+import { type PlainStrand, type PlainTree, placeOf, strandLength } from "#shared/trees/plain-trees.ts";
 
 /** Node types that the edit distance tells apart: all kinds of ends are one. */
 export type CanonicalType = "origin" | "fork" | "end";
@@ -39,16 +39,16 @@ export interface CanonicalTree {
  * lengths, and parallel strands that result are kept. A fork with only two strands stays.
  * @param merge millimetres, 0 = contract nothing.
  */
-export function canonicalTree(tree: ComparedTree, merge: number): CanonicalTree {
+export function canonicalTree(tree: PlainTree, merge: number): CanonicalTree {
   return contractForks(dissolveWaypoints(tree), merge);
 }
 
-function dissolveWaypoints(tree: ComparedTree): CanonicalTree {
+function dissolveWaypoints(tree: PlainTree): CanonicalTree {
   const byId = new Map(tree.nodes.map((node) => [node.id, node]));
   const strands = [...tree.strands]
     .filter((strand) => byId.has(strand.from) && byId.has(strand.to))
     .sort((a, b) => compareIds(a.id, b.id));
-  const incident = new Map<string, ComparedStrand[]>(tree.nodes.map((node) => [node.id, []]));
+  const incident = new Map<string, PlainStrand[]>(tree.nodes.map((node) => [node.id, []]));
   for (const strand of strands) {
     incident.get(strand.from)!.push(strand);
     if (strand.to !== strand.from) incident.get(strand.to)!.push(strand);

@@ -5,10 +5,10 @@ import { type Detection, detection } from "#shared/compare/detection.ts";
 import { type EditDistance, editDistance, type OriginRule } from "#shared/compare/edit-distance/edit-distance.ts";
 import { type EditStep, editScript } from "#shared/compare/edit-distance/script.ts";
 import { type CompareEvent, eventsOfPairs } from "#shared/compare/events/events.ts";
-import { type ComparedSet, type ComparedTree, centreline } from "#shared/compare/input.ts";
 import { type LineDistances, type Overlap, overlapOf } from "#shared/compare/overlap.ts";
-import { type RootedStrand, rootedStrands } from "#shared/compare/tree-lines.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
+import { centreline, type PlainSet, type PlainTree } from "#shared/trees/plain-trees.ts";
+import { type RootedStrand, rootedStrands } from "#shared/trees/rooted-strands.ts";
 
 export interface CompareOptions {
   readonly preset: CostPreset;
@@ -91,7 +91,7 @@ const AFFINITY_STEP_MM = 0.1;
  * bounds, the script, the events, overlap and distances; unmatched trees at full cost. Overlap, distances and detection
  * under `whole` measure each side against the whole other side.
  */
-export function compareSets(a: ComparedSet, b: ComparedSet, options: CompareOptions, timeLeft: TimeLeft): Comparison {
+export function compareSets(a: PlainSet, b: PlainSet, options: CompareOptions, timeLeft: TimeLeft): Comparison {
   const warnings: string[] = [];
   const costs = options.preset === "geometry" ? geometryCosts(options.positionScale) : structureCosts();
   const [linesA, linesB] = [a.trees.map(rootedStrands), b.trees.map(rootedStrands)];
@@ -200,14 +200,14 @@ function normalise(ged: number, a: number, b: number): NormalisedDistance {
   return { pair: a + b === 0 ? 0 : ged / (a + b), reference: a === 0 ? null : ged / a };
 }
 
-function nameOf(tree: ComparedTree): string {
+function nameOf(tree: PlainTree): string {
   return tree.name ? `${tree.name} (${tree.id})` : tree.id;
 }
 
 /** Sentences on trees left over that share a stretch with a tree already matched: one tree here, two there. */
 function splitsAndMerges(
-  a: ComparedSet,
-  b: ComparedSet,
+  a: PlainSet,
+  b: PlainSet,
   pairs: readonly (readonly [number, number])[],
   freeA: readonly number[],
   freeB: readonly number[],
@@ -235,8 +235,8 @@ function splitsAndMerges(
   return sentences;
 }
 
-function matchCrossLinks(a: ComparedSet, b: ComparedSet): Comparison["crossLinks"] {
-  const linesOf = (set: ComparedSet): (readonly Vec3[])[][] => {
+function matchCrossLinks(a: PlainSet, b: PlainSet): Comparison["crossLinks"] {
+  const linesOf = (set: PlainSet): (readonly Vec3[])[][] => {
     const nodes = new Map(set.trees.flatMap((tree) => tree.nodes).map((node) => [node.id, node]));
     return (set.crossLinks ?? []).map((link) => [centreline(link, nodes.get(link.from), nodes.get(link.to))]);
   };

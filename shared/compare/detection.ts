@@ -1,10 +1,10 @@
 import { affinities } from "#shared/compare/affinity.ts";
 import { type CanonicalTree, canonicalTree } from "#shared/compare/canonical.ts";
 import { bestMatching } from "#shared/compare/edit-distance/assignment.ts";
-import { type ComparedSet, type ComparedTree, centreline } from "#shared/compare/input.ts";
 import { resample } from "#shared/geometry/polyline.ts";
 import { SegmentGrid } from "#shared/geometry/segment-grid.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
+import { centreline, type PlainSet, type PlainTree } from "#shared/trees/plain-trees.ts";
 
 export interface Detection {
   readonly count: {
@@ -23,7 +23,7 @@ export interface Detection {
  * tolerance of the other; and the same by length. Strands are those of the canonical form, so that waypoints do not count.
  * @param step sampling step, millimetres.
  */
-export function detection(a: ComparedSet, b: ComparedSet, mergeMm: number, toleranceMm: number, step: number): Detection {
+export function detection(a: PlainSet, b: PlainSet, mergeMm: number, toleranceMm: number, step: number): Detection {
   const [linesA, linesB] = [canonicalLines(a, mergeMm), canonicalLines(b, mergeMm)];
   const table = affinities(linesA, linesB, step);
   const matched = bestMatching(linesA.length, linesB.length, table.affinity);
@@ -56,12 +56,12 @@ export function detection(a: ComparedSet, b: ComparedSet, mergeMm: number, toler
 }
 
 /** Centrelines of the canonical strands of all trees of a set; shape [strands][members][points]. */
-function canonicalLines(set: ComparedSet, mergeMm: number): (readonly Vec3[])[][] {
+function canonicalLines(set: PlainSet, mergeMm: number): (readonly Vec3[])[][] {
   return set.trees.flatMap((tree) => linesOfCanonical(tree, canonicalTree(tree, mergeMm)));
 }
 
 /** Centrelines of each canonical strand, one per member strand, as the tree has them. */
-export function linesOfCanonical(tree: ComparedTree, canonical: CanonicalTree): (readonly Vec3[])[][] {
+export function linesOfCanonical(tree: PlainTree, canonical: CanonicalTree): (readonly Vec3[])[][] {
   const nodes = new Map(tree.nodes.map((node) => [node.id, node]));
   const strands = new Map(tree.strands.map((strand) => [strand.id, strand]));
   return canonical.strands.map((strand) =>

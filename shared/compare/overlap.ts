@@ -1,9 +1,9 @@
-import type { RootedStrand } from "#shared/compare/tree-lines.ts";
-import { pathsToEnds } from "#shared/compare/tree-lines.ts";
 import { arcLengths } from "#shared/geometry/polyline.ts";
 import { SegmentGrid } from "#shared/geometry/segment-grid.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { mix } from "#shared/geometry/vec3.ts";
+import type { RootedStrand } from "#shared/trees/rooted-strands.ts";
+import { pathsToEnds } from "#shared/trees/rooted-strands.ts";
 
 /** Points of one strand at equal steps, with the radius there. */
 export interface SampledStrand {

@@ -2,11 +2,11 @@ import { type CanonicalTree, canonicalTree } from "#shared/compare/canonical.ts"
 import { geometryCosts } from "#shared/compare/costs.ts";
 import { editDistance } from "#shared/compare/edit-distance/edit-distance.ts";
 import { nearestNode, type UncoveredPart, uncoveredParts } from "#shared/compare/events/uncovered.ts";
-import { type ComparedSet, type ComparedTree, placeOf } from "#shared/compare/input.ts";
-import { rootedStrands } from "#shared/compare/tree-lines.ts";
 import { SegmentGrid } from "#shared/geometry/segment-grid.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
+import { type PlainSet, type PlainTree, placeOf } from "#shared/trees/plain-trees.ts";
+import { rootedStrands } from "#shared/trees/rooted-strands.ts";
 
 export type EventKind =
   | "missed-branch"
@@ -38,13 +38,13 @@ const CORRESPONDENCE_BUDGET = 4_000;
  * @param pairs [index in A, index in B] of matched trees. @param tolerance millimetres within which lines and places agree.
  */
 export function eventsOfPairs(
-  a: ComparedSet,
-  b: ComparedSet,
+  a: PlainSet,
+  b: PlainSet,
   pairs: readonly (readonly [number, number])[],
   tolerance: number,
   merge: number,
 ): CompareEvent[][] {
-  const partsOf = (own: ComparedSet, other: ComparedSet, pairList: readonly (readonly [number, number])[]): UncoveredPart[][] => {
+  const partsOf = (own: PlainSet, other: PlainSet, pairList: readonly (readonly [number, number])[]): UncoveredPart[][] => {
     const lines = other.trees.flatMap((tree, k) => rootedStrands(tree).map((strand) => ({ line: strand.line, tree: k })));
     const grid = new SegmentGrid(
       lines.map((entry) => entry.line),
@@ -95,8 +95,8 @@ export function eventsOfPairs(
 
 /** Names parts that another tree follows: two that answer each other are exchanged tails, a single one is joined differently. Gives the parts so explained. */
 function nameCrossings(
-  a: ComparedSet,
-  b: ComparedSet,
+  a: PlainSet,
+  b: PlainSet,
   pairs: readonly (readonly [number, number])[],
   missing: readonly UncoveredPart[][],
   added: readonly UncoveredPart[][],
@@ -137,7 +137,7 @@ function nameCrossings(
   return explained;
 }
 
-function nearestStrand(tree: ComparedTree, p: Vec3): string | null {
+function nearestStrand(tree: PlainTree, p: Vec3): string | null {
   const strands = rootedStrands(tree);
   const near = new SegmentGrid(
     strands.map((strand) => strand.line),
@@ -149,13 +149,13 @@ function nearestStrand(tree: ComparedTree, p: Vec3): string | null {
 
 /** Id of A's end to which an uncovered part of A leads and, within tolerance, one of B too; undefined when there is none. */
 function sharedEnd(
-  treeA: ComparedTree,
-  treeB: ComparedTree,
+  treeA: PlainTree,
+  treeB: PlainTree,
   gone: UncoveredPart,
   extra: UncoveredPart,
   tolerance: number,
 ): string | undefined {
-  const endsOf = (tree: ComparedTree, part: UncoveredPart) =>
+  const endsOf = (tree: PlainTree, part: UncoveredPart) =>
     tree.nodes.filter((node) => part.leadsTo.includes(node.id) && isEnd(node.kind));
   return endsOf(treeA, gone).find((end) => nearestNode(endsOf(treeB, extra), placeOf(end), tolerance) !== undefined)?.id;
 }
@@ -163,8 +163,8 @@ function sharedEnd(
 const isEnd = (kind: string) => kind !== "origin" && kind !== "fork" && kind !== "waypoint";
 
 function nameMissing(
-  treeA: ComparedTree,
-  treeB: ComparedTree,
+  treeA: PlainTree,
+  treeB: PlainTree,
   part: UncoveredPart,
   tolerance: number,
   settled: Set<string>,
@@ -191,8 +191,8 @@ function nameMissing(
 }
 
 function nameAdded(
-  treeA: ComparedTree,
-  treeB: ComparedTree,
+  treeA: PlainTree,
+  treeB: PlainTree,
   part: UncoveredPart,
   tolerance: number,
   settled: Set<string>,
@@ -219,7 +219,7 @@ function nameAdded(
 }
 
 /** A tree without some strands; forks left with two strands become waypoints, so that a missed branch leaves no trace in the join. */
-function withoutStrands(tree: ComparedTree, gone: ReadonlySet<string>): ComparedTree {
+function withoutStrands(tree: PlainTree, gone: ReadonlySet<string>): PlainTree {
   if (gone.size === 0) return tree;
   const strands = tree.strands.filter((strand) => !gone.has(strand.id));
   const degree = new Map<string, number>();

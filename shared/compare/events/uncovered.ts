@@ -1,8 +1,8 @@
-import type { RootedStrand } from "#shared/compare/tree-lines.ts";
 import { resample } from "#shared/geometry/polyline.ts";
 import type { SegmentGrid } from "#shared/geometry/segment-grid.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
+import type { RootedStrand } from "#shared/trees/rooted-strands.ts";
 
 /** A connected part of one tree that the other side's matching tree does not follow. */
 export interface UncoveredPart {

@@ -1,6 +1,6 @@
 import { describe, expect, it } from "vitest";
 import { type CompareOptions, compareSets } from "#shared/compare/compare-sets.ts";
-import type { ComparedSet, ComparedTree } from "#shared/compare/input.ts";
+import type { PlainSet, PlainTree } from "#shared/trees/plain-trees.ts";
 
 const OPTIONS: CompareOptions = {
   preset: "geometry",
@@ -16,7 +16,7 @@ const forever = () => 30_000;
 type Place = readonly [number, number, number];
 
 /** A tree from places: a trunk to a fork, and straight branches to the ends. */
-function fan(id: string, root: Place, fork: Place, ends: readonly Place[], name = ""): ComparedTree {
+function fan(id: string, root: Place, fork: Place, ends: readonly Place[], name = ""): PlainTree {
   const nodes = [
     { id: `${id}r`, kind: "origin", position: root },
     { id: `${id}b`, kind: "fork", position: fork },
@@ -55,8 +55,8 @@ const two = fan(
     [12, 0, 13],
   ],
 );
-const set = (...trees: ComparedTree[]): ComparedSet => ({ trees });
-const events = (a: ComparedSet, b: ComparedSet) => compareSets(a, b, OPTIONS, forever).pairs.flatMap((pair) => pair.events);
+const set = (...trees: PlainTree[]): PlainSet => ({ trees });
+const events = (a: PlainSet, b: PlainSet) => compareSets(a, b, OPTIONS, forever).pairs.flatMap((pair) => pair.events);
 
 describe("comparison of sets", () => {
   it("finds nothing between a set and itself", () => {
@@ -209,7 +209,7 @@ describe("events in an annotator's words", () => {
     const right = (tail: Place) => fan("r", [6, 0.6, 0], [4, 0.6, 6], [[9, 0.6, 12], tail]);
     const truth = set(left([7, 0, 16]), right([-1, 0.6, 16]));
     // The two tails cross near x = 3; the annotator followed the wrong one from there.
-    const bend = (tree: ComparedTree, via: Place): ComparedTree => ({
+    const bend = (tree: PlainTree, via: Place): PlainTree => ({
       ...tree,
       strands: tree.strands.map((strand) => {
         if (!strand.id.endsWith("s1")) return strand;
@@ -224,7 +224,7 @@ describe("events in an annotator's words", () => {
   });
 
   it("names a branch hung on another fork of the same tree", () => {
-    const chain = (third: string): ComparedTree => {
+    const chain = (third: string): PlainTree => {
       const places: Record<string, Place> = {
         r: [0, 0, 0],
         b: [0, 0, 5],

@@ -1,6 +1,6 @@
 import { describe, expect, it } from "vitest";
 import { measureOverlap, percentile, sampleStrand } from "#shared/compare/overlap.ts";
-import type { RootedStrand } from "#shared/compare/tree-lines.ts";
+import type { RootedStrand } from "#shared/trees/rooted-strands.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 
 // A line of 11 points with radius 1 against the same line 0.5 off that stops at 6. Definitions: Schaap et al., Med Image

@@ -1,7 +1,7 @@
-import type { ComparedTree } from "#shared/compare/input.ts";
+import type { PlainTree } from "#shared/trees/plain-trees.ts";
 
 /** A tree from text like "r-b b-1 b-2": r is the origin, letters are forks, digits ends. Places spread out so that geometry differs. */
-export function treeOf(text: string, id = "t1"): ComparedTree {
+export function treeOf(text: string, id = "t1"): PlainTree {
   const strands = text
     .split(" ")
     .filter(Boolean)
@@ -30,7 +30,7 @@ export function seededRandom(seed: number): () => number {
 }
 
 /** A random chordae-shaped tree: an origin, forks of two or three branches, ends; `size` nodes. */
-export function randomTree(random: () => number, size: number, id = "t1"): ComparedTree {
+export function randomTree(random: () => number, size: number, id = "t1"): PlainTree {
   const nodes: { id: string; kind: string; position: number[] }[] = [{ id: "n0", kind: "origin", position: [0, 0, 0] }];
   const strands: { id: string; from: string; to: string }[] = [];
   const degree = [0];

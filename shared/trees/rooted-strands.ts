@@ -1,9 +1,9 @@
-import { type ComparedNode, type ComparedStrand, type ComparedTree, centreline } from "#shared/compare/input.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
+import { centreline, type PlainNode, type PlainStrand, type PlainTree } from "#shared/trees/plain-trees.ts";
 
 /** A strand seen from the root: its centreline and radii run away from the root. */
 export interface RootedStrand {
-  readonly strand: ComparedStrand;
+  readonly strand: PlainStrand;
   readonly from: string;
   readonly to: string;
   /** shape [n >= 1], millimetres. */
@@ -18,9 +18,9 @@ export interface RootedStrand {
  * A tree's strands oriented from its root, breadth first; strands that the root does not reach follow, each component
  * oriented from its first node. A strand closing a loop is kept, oriented as it was found.
  */
-export function rootedStrands(tree: ComparedTree): RootedStrand[] {
+export function rootedStrands(tree: PlainTree): RootedStrand[] {
   const byId = new Map(tree.nodes.map((node) => [node.id, node]));
-  const incident = new Map<string, ComparedStrand[]>();
+  const incident = new Map<string, PlainStrand[]>();
   for (const strand of tree.strands)
     for (const end of new Set([strand.from, strand.to])) incident.set(end, [...(incident.get(end) ?? []), strand]);
   const out: RootedStrand[] = [];
@@ -48,10 +48,10 @@ export function rootedStrands(tree: ComparedTree): RootedStrand[] {
 }
 
 function orient(
-  strand: ComparedStrand,
+  strand: PlainStrand,
   from: string,
   to: string,
-  byId: ReadonlyMap<string, ComparedNode>,
+  byId: ReadonlyMap<string, PlainNode>,
   before: number,
 ): RootedStrand {
   const line = centreline(strand, byId.get(strand.from), byId.get(strand.to));
