@@ -180,12 +180,33 @@ export const ENVELOPE_CHECK: Check = objectOf({
   body: isPlainObject,
 });
 
-/** Checks of the records that a snapshot holds as tables. */
-export const TABLE_CHECKS = {
-  tree: isTree,
-  node: isNode,
-  strand: isStrand,
-  crossLink: isCrossLink,
+const counters = objectOf({ tree: isCount, node: isCount, strand: isCount, "cross-link": isCount, curve: isCount });
+
+/** Check of a snapshot, except header, curves and operations, which {@link BODY_CHECKS} knows. */
+export const SNAPSHOT_CHECK: Check = objectOf({
+  format: holds("a pass snapshot", (v) => v === "tautline-pass-snapshot"),
+  version: holds("version 1", (v) => v === 1),
+  seq: isCount,
+  hash: holds("a SHA-256 in hex", (v) => typeof v === "string" && /^[0-9a-f]{64}$/.test(v)),
+  header: isPlainObject,
+  trees: listOf(isTree),
+  nodes: listOf(isNode),
+  strands: listOf(isStrand),
+  crossLinks: listOf(isCrossLink),
   landmarks: isLandmarks,
-  dismissal: isDismissal,
-} as const;
+  dismissals: listOf(isDismissal),
+  curves: listOf(isPlainObject),
+  pointer: isCount,
+  operations: listOf(
+    objectOf({ seq: isCount, parent: isCount, t: isFiniteNumber, session: isText, label: isText, operation: isPlainObject }),
+  ),
+  onward: listOf(holds("two seqs", (v) => Array.isArray(v) && v.length === 2 && v.every(Number.isSafeInteger))),
+  marks: listOf(objectOf({ seq: isCount, name: isText, at: isCount, t: isFiniteNumber })),
+  counters,
+  effort: objectOf({
+    workMs: isFiniteNumber,
+    sessions: isCount,
+    last: orNull(objectOf({ session: isText, mono: isFiniteNumber, away: isBoolean })),
+  }),
+  changed: isFiniteNumber,
+});
