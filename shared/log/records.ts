@@ -1,7 +1,9 @@
 import type { Curve } from "#shared/trees/document.ts";
 import type { Operation } from "#shared/trees/operations.ts";
 
+/** Name in the header line of a pass's log. */
 export const LOG_FORMAT = "tautline-pass-log";
+/** Newest version of the log that this program writes and reads. */
 export const LOG_VERSION = 1;
 
 /** Body of line 0: names the pass, and an epoch that tells two logs of one pass apart. */

@@ -7,6 +7,7 @@ export type StrandId = `s${number}`;
 export type CrossLinkId = `x${number}`;
 export type CurveId = `c${number}`;
 
+/** Every kind of node; the three that are no ends come first. */
 export const NODE_KINDS = [
   "origin",
   "fork",

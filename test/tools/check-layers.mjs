@@ -3,11 +3,17 @@
 import { readdirSync } from "node:fs";
 import { createRequire } from "node:module";
 import { fileURLToPath } from "node:url";
-import { cruise } from "dependency-cruiser";
 
 const root = fileURLToPath(new URL("../..", import.meta.url));
 process.chdir(root);
 const require = createRequire(import.meta.url);
+// The import check's parser is never told that a file holds markup, and stops at the first tag: tell it by the file's name.
+// It must be told before the checker loads the parser.
+const swc = require("@swc/core");
+const parseFileSync = swc.parseFileSync;
+swc.parseFileSync = (file, settings) => parseFileSync(file, { ...settings, tsx: file.endsWith(".tsx") });
+const { cruise } = await import("dependency-cruiser");
+
 const { forbidden, options } = require("../../.dependency-cruiser.cjs");
 const LAYERED = ["shared", "main", "renderer"];
 

@@ -2,7 +2,9 @@ import { type AssignmentScratch, assignmentScratch, augmentRow } from "#shared/c
 import { type EditProblem, type FlatGraph, linkBetween } from "#shared/compare/edit-distance/problem.ts";
 import { halfStarCost } from "#shared/compare/edit-distance/star-cost.ts";
 
+/** A node whose image is still open. */
 export const UNDECIDED = -1;
+/** A node of A that is decided to be deleted. */
 export const DELETED = -2;
 
 /**
