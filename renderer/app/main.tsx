@@ -1,1 +1,44 @@
+import "#renderer/app/theme.css";
+import "#renderer/app/app.css";
+import { signal } from "@preact/signals";
+import { render } from "preact";
+import { App } from "#renderer/app/app.tsx";
+import { Notices } from "#renderer/app/notices.ts";
+import { fragmentOf } from "#renderer/app/place.ts";
+import { startTheme } from "#renderer/app/theme-choice.ts";
+import { Client } from "#renderer/client/client.ts";
+import { type DesktopBridge, desktopCapabilities } from "#renderer/client/electron-capabilities.ts";
+import { loopbackCapabilities } from "#renderer/client/loopback-capabilities.ts";
+import { takePageToken } from "#renderer/client/page-token.ts";
+
 document.title = "Tautline";
+startTheme();
+
+const client = new Client({
+  fetch: (input, init) => fetch(input, init),
+  token: takePageToken(window),
+  window: crypto.randomUUID().replaceAll("-", "").slice(0, 20),
+});
+const scanQuestion = signal<((path: string | null) => void) | null>(null);
+const askForScan = () =>
+  new Promise<string | null>((resolve) => {
+    scanQuestion.value = (path) => {
+      scanQuestion.value = null;
+      resolve(path);
+    };
+  });
+// The one place where the shells part.
+const bridge = (window as { tautline?: DesktopBridge }).tautline;
+const capabilities = bridge === undefined ? loopbackCapabilities(askForScan) : desktopCapabilities(bridge);
+
+const services = {
+  client,
+  capabilities,
+  notices: new Notices(),
+  goTo: (place: Parameters<typeof fragmentOf>[0]) => {
+    location.hash = fragmentOf(place);
+  },
+};
+client.connect();
+addEventListener("pagehide", () => client.bye());
+render(<App services={services} scanQuestion={scanQuestion} />, document.getElementById("app")!);

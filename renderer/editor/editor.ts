@@ -1,0 +1,279 @@
+import { batch, computed, effect, type ReadonlySignal, type Signal, signal } from "@preact/signals";
+import { NO_SELECTION, type Selection, selectLine, selectNode, stillThere } from "#renderer/editor/selection.ts";
+import { EditQueue } from "#renderer/editor/session/edit-queue.ts";
+import type { Intent, IntentPlace } from "#renderer/editor/session/intent.ts";
+import type { PassKeeper } from "#renderer/editor/session/pass-keeper.ts";
+import { performIntent } from "#renderer/editor/session/perform.ts";
+import type { Stage } from "#renderer/editor/session/stage.ts";
+import { afterLabelling, type Sticky, stickyOf } from "#renderer/editor/session/sticky-labels.ts";
+import { type AskSolve, StrandSolver } from "#renderer/editor/session/strand-solver.ts";
+import { type Guide, GuideFollower, type GuideSource } from "#renderer/editor/tracing/guide-follower.ts";
+import { type Projection, project, tipOf } from "#renderer/editor/tracing/projection.ts";
+import { type Aim, type AskSnap, type Snapped, Snapper } from "#renderer/editor/tracing/snapper.ts";
+import { NOTHING, type UnderWay } from "#renderer/editor/tracing/under-way.ts";
+import type { Pointing, Under } from "#renderer/editor/view-control.ts";
+import { roundPoint } from "#shared/geometry/types.ts";
+import { distance } from "#shared/geometry/vec3.ts";
+import type { EndKind, NodeId, TreeDocument } from "#shared/trees/document.ts";
+import type { Anchor } from "#shared/trees/edits/anchor.ts";
+import type { LineId } from "#shared/trees/edits/edit-plan.ts";
+import type { NodeLabels } from "#shared/trees/edits/node-labels.ts";
+
+/** What the editor needs of the rest of the program; fakes stand in for it in tests. */
+export interface EditorPlaces {
+  readonly keeper: PassKeeper;
+  readonly solve: AskSolve;
+  readonly snap: AskSnap;
+  readonly guide: GuideSource;
+  /** Resolves when the server may be asked again. */
+  readonly serverBack: () => Promise<void>;
+  /** An edit that could not be made; the person is told. */
+  readonly failed: (error: unknown) => void;
+  /** Keeps waiting intents over a reload. */
+  readonly keepWaiting: (waiting: readonly Intent[]) => void;
+  /** Intents that an earlier load of the page left waiting. */
+  readonly leftWaiting: readonly Intent[];
+}
+
+/** A node or pin that is being carried by keys: the next click puts it down. */
+export type Carried =
+  | { readonly kind: "node"; readonly id: NodeId }
+  | { readonly kind: "pin"; readonly line: LineId; readonly index: number };
+
+/** The pointer snaps to strings within so many screen pixels. */
+const REACH_PX = 9;
+/** Nearer to the last pin than this on the screen, an end key means that pin itself. */
+const AT_PIN_PX = 10;
+
+/** One pass being edited: what is under way, what waits, what is shown. It knows no screen and no server. */
+export class Editor {
+  readonly document: ReadonlySignal<TreeDocument>;
+  readonly selection: Signal<Selection> = signal(NO_SELECTION);
+  readonly sticky: Signal<Sticky>;
+  readonly carried: Signal<Carried | null> = signal(null);
+  readonly projection: ReadonlySignal<Projection>;
+  readonly keeper: PassKeeper;
+  /** Counts changes of the history, for what is read from the keeper directly. */
+  readonly revision = signal(0);
+  private readonly documentSignal: Signal<TreeDocument>;
+  private readonly underWaySignal: Signal<UnderWay> = signal<UnderWay>(NOTHING);
+  private readonly queue: EditQueue;
+  private readonly guideFollower: GuideFollower;
+  private readonly snapper: Snapper;
+  private readonly stage: Stage;
+  private readonly disposers: (() => void)[] = [];
+  private pointing: Pointing | null = null;
+  /** Which candidate in depth, and where the pointer was when it was chosen. */
+  private candidate: { readonly index: number; readonly at: Pointing } | null = null;
+
+  constructor(places: EditorPlaces) {
+    const { keeper } = places;
+    this.keeper = keeper;
+    this.documentSignal = signal(keeper.document);
+    this.document = this.documentSignal;
+    this.sticky = signal(stickyOf(keeper.document));
+    this.guideFollower = new GuideFollower(places.guide);
+    this.snapper = new Snapper(places.snap);
+    const underWay = this.underWaySignal;
+    this.stage = {
+      keeper,
+      solver: new StrandSolver(places.solve),
+      snap: places.snap,
+      sticky: () => this.sticky.value,
+      get underWay() {
+        return underWay.value;
+      },
+      set underWay(value) {
+        underWay.value = value;
+      },
+    };
+    this.queue = new EditQueue({
+      perform: (intent, stop) => performIntent(this.stage, intent, stop),
+      failed: (_, error) => places.failed(error),
+      serverBack: places.serverBack,
+      keep: places.keepWaiting,
+    });
+    this.projection = computed(() =>
+      project(
+        this.documentSignal.value,
+        this.underWaySignal.value,
+        this.queue.waiting.value.map((queued) => queued.intent),
+      ),
+    );
+    this.disposers.push(
+      keeper.onChange(() => this.historyChanged()),
+      effect(() => {
+        const { leg, kind } = this.projection.value;
+        const tip = tipOf(this.projection.value);
+        this.guideFollower.start(kind === "nothing" ? null : tip, leg);
+      }),
+    );
+    for (const intent of places.leftWaiting) this.queue.add(intent);
+  }
+
+  get underWay(): ReadonlySignal<UnderWay> {
+    return this.underWaySignal;
+  }
+  get waiting(): EditQueue["waiting"] {
+    return this.queue.waiting;
+  }
+  get serverAway(): ReadonlySignal<boolean> {
+    return this.queue.serverAway;
+  }
+  get guide(): ReadonlySignal<Guide | null> {
+    return this.guideFollower.guide;
+  }
+  get snapped(): ReadonlySignal<Snapped | null> {
+    return this.snapper.snapped;
+  }
+  get readOnly(): boolean {
+    return this.keeper.readOnly;
+  }
+
+  /** Asks for an edit. It is carried out in its turn; nothing is lost while the server is slow or away. */
+  do(intent: Intent): void {
+    if (!this.readOnly) this.queue.add(intent);
+  }
+
+  settled(): Promise<void> {
+    return this.queue.settled();
+  }
+
+  /** The pointer or keyboard cursor is here; null = it left the section. */
+  async point(pointing: Pointing | null): Promise<void> {
+    this.pointing = pointing;
+    if (pointing === null) {
+      this.snapper.leave();
+      await this.guideFollower.point(null);
+      return;
+    }
+    const snapped = await this.snapper.aimAt(this.aimOf(pointing));
+    if (snapped !== null && this.pointing === pointing) await this.guideFollower.point(snapped.point);
+  }
+
+  /** A click, or the key for one: puts down what is carried, sets a pin, goes on with an open end, selects, or starts a tree. */
+  click(pointing: Pointing): void {
+    const carried = this.carried.value;
+    if (carried !== null) {
+      this.putDown(carried, pointing);
+      return;
+    }
+    if (this.projection.value.kind === "nothing" && pointing.under !== null) {
+      this.select(pointing.under);
+      return;
+    }
+    this.do({ do: "pin", at: this.placeOf(pointing) });
+  }
+
+  /** Ends the strand under way: at the pointer, or at its last pin when the pointer is on that pin or off the section. */
+  end(kind: EndKind): void {
+    this.do({ do: "end", kind, at: this.endPlace() });
+  }
+
+  /** True when an end key would end at the last pin rather than at the pointer. */
+  endsAtPin(): boolean {
+    const { pointing } = this;
+    const tip = tipOf(this.projection.value);
+    return pointing === null || tip === null || distance(pointing.at, tip) <= AT_PIN_PX * pointing.mmPerPx;
+  }
+
+  /** Where a branch, join or link would be attached: what lies under the pointer, else the selection. */
+  anchor(): Anchor | null {
+    const under = this.pointing?.under ?? null;
+    if (under !== null) return anchorOf(under, this.pointing!);
+    const { node } = this.selection.value;
+    return node === undefined ? null : { node };
+  }
+
+  /** Takes the next candidate along the line of sight. */
+  nextCandidate(): void {
+    const { pointing } = this;
+    if (pointing === null) return;
+    const index = (this.candidateFor(pointing) ?? 0) + 1;
+    this.candidate = { index, at: pointing };
+    void this.point(pointing);
+  }
+
+  undo(): void {
+    if (this.readOnly || this.queue.takeBack()) return;
+    this.do({ do: "undo" });
+  }
+
+  redo(): void {
+    this.do({ do: "redo" });
+  }
+
+  select(under: Under): void {
+    const document = this.documentSignal.value;
+    if (under.kind === "node") {
+      this.selection.value = selectNode(document, under.id);
+      if (document.nodes.get(under.id)?.kind === "open") this.do({ do: "resume", node: under.id });
+    } else {
+      this.selection.value = selectLine(document, under.kind === "strand" ? under.id : under.strand);
+    }
+  }
+
+  /** Sets labels on nodes and remembers them for the next strings. */
+  labelNodes(nodes: readonly NodeId[], labels: NodeLabels, downwards = false): void {
+    this.sticky.value = afterLabelling(this.sticky.value, labels);
+    this.do({ do: "label", args: { nodes, node: labels, downwards } });
+  }
+
+  dispose(): void {
+    for (const dispose of this.disposers) dispose();
+    this.guideFollower.stop();
+  }
+
+  private putDown(carried: Carried, pointing: Pointing): void {
+    const place = this.placeOf(pointing);
+    const to = roundPoint("point" in place ? place.point : place.aim.at);
+    this.carried.value = null;
+    if (carried.kind === "node") this.do({ do: "move-node", args: { node: carried.id, to } });
+    else this.do({ do: "move-pin", args: { line: carried.line, index: carried.index, to } });
+  }
+
+  private endPlace(): IntentPlace | null {
+    return this.endsAtPin() ? null : this.placeOf(this.pointing!);
+  }
+
+  private placeOf(pointing: Pointing): IntentPlace {
+    const aim = this.aimOf(pointing);
+    const known = aim.snap ? this.snapper.known(aim) : null;
+    if (known !== null) return { point: known.point };
+    return aim.snap ? { aim } : { point: roundPoint(pointing.at) };
+  }
+
+  private aimOf(pointing: Pointing): Aim {
+    return {
+      at: pointing.at,
+      normal: pointing.normal,
+      slabMm: pointing.slabMm,
+      reachMm: REACH_PX * pointing.mmPerPx,
+      snap: !pointing.released && this.projection.value.leg === "guide",
+      candidate: this.candidateFor(pointing) ?? 0,
+    };
+  }
+
+  /** The chosen candidate holds while the pointer stays where it was chosen. */
+  private candidateFor(pointing: Pointing): number | null {
+    const chosen = this.candidate;
+    if (chosen === null) return null;
+    return distance(chosen.at.at, pointing.at) <= REACH_PX * pointing.mmPerPx ? chosen.index : null;
+  }
+
+  private historyChanged(): void {
+    batch(() => {
+      this.documentSignal.value = this.keeper.document;
+      this.revision.value += 1;
+      this.selection.value = stillThere(this.keeper.document, this.selection.value);
+    });
+  }
+}
+
+/** The place to attach something at what lies under the pointer; null on a cross-link, which carries no branches. */
+function anchorOf(under: Under, pointing: Pointing): Anchor | null {
+  if (under.kind === "node") return { node: under.id };
+  const line = under.kind === "strand" ? under.id : under.strand;
+  if (!line.startsWith("s")) return null;
+  return { strand: line as `s${number}`, near: under.kind === "strand" ? under.point : pointing.at };
+}

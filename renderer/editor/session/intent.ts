@@ -1,0 +1,32 @@
+import type { MendIntent } from "#renderer/editor/session/mends.ts";
+import type { Aim } from "#renderer/editor/tracing/snapper.ts";
+import type { PointMm } from "#shared/geometry/types.ts";
+import type { EndKind, NodeId, TreeDocument } from "#shared/trees/document.ts";
+import type { Anchor } from "#shared/trees/edits/anchor.ts";
+
+/** A place already known, or one that the engine still has to snap. */
+export type IntentPlace = { readonly point: PointMm } | { readonly aim: Aim };
+
+/**
+ * What the person asked for, as plain data: it can wait, be kept over a reload, and be shown before it is carried out. Ids in
+ * it are those of the moment; what they named may be gone when its turn comes, which is said and changes nothing.
+ */
+export type Intent =
+  // tracing
+  | { readonly do: "pin"; readonly at: IntentPlace }
+  | { readonly do: "end"; readonly kind: EndKind; readonly at: IntentPlace | null }
+  | { readonly do: "branch"; readonly from: Anchor }
+  | { readonly do: "link"; readonly to: Anchor }
+  | { readonly do: "resume"; readonly node: NodeId }
+  | { readonly do: "straight" }
+  | { readonly do: "back" }
+  | { readonly do: "leave" }
+  // mending
+  | MendIntent
+  | { readonly do: "join"; readonly end: NodeId; readonly to: Anchor }
+  | { readonly do: "take-in"; readonly incoming: TreeDocument; readonly name: string }
+  // history
+  | { readonly do: "undo" }
+  | { readonly do: "redo" }
+  | { readonly do: "jump"; readonly seq: number }
+  | { readonly do: "mark"; readonly name: string };

@@ -1,0 +1,77 @@
+import type { Intent } from "#renderer/editor/session/intent.ts";
+import { isMend, mendOf } from "#renderer/editor/session/mends.ts";
+import { performTracing } from "#renderer/editor/session/perform-tracing.ts";
+import { inOne, type MakePlan, makeEdit, type Stage } from "#renderer/editor/session/stage.ts";
+import { NOTHING, underWayAfter } from "#renderer/editor/tracing/under-way.ts";
+import { TautlineError } from "#shared/errors.ts";
+import type { NodeId, TreeDocument } from "#shared/trees/document.ts";
+import type { Anchor } from "#shared/trees/edits/anchor.ts";
+import { joinStrands } from "#shared/trees/edits/join-strands.ts";
+import { placeOnLine } from "#shared/trees/edits/place-on-line.ts";
+import { strandOf } from "#shared/trees/edits/refusal.ts";
+import { startBranch } from "#shared/trees/edits/start-branch.ts";
+import { takeInTrees } from "#shared/trees/edits/take-in-trees.ts";
+
+/** Carries out one intent: at most one edit, or one move of the history. What is under way follows. */
+export async function performIntent(stage: Stage, intent: Intent, signal: AbortSignal): Promise<void> {
+  if (isMend(intent)) {
+    const { plan, label } = mendOf(intent);
+    await makeEdit(stage, label, plan, signal);
+    dropIfGone(stage);
+    return;
+  }
+  switch (intent.do) {
+    case "join":
+      await makeEdit(stage, "Join strands", joinPlan(stage.keeper.document, intent.end, intent.to), signal);
+      dropIfGone(stage);
+      return;
+    case "take-in":
+      await makeEdit(
+        stage,
+        `Take in trees of ${intent.name}`,
+        (document, ids) => takeInTrees(document, ids, { incoming: intent.incoming }),
+        signal,
+      );
+      return;
+    case "undo":
+    case "redo": {
+      const before = stage.keeper.document;
+      await (intent.do === "undo" ? stage.keeper.undo() : stage.keeper.redo());
+      stage.underWay = underWayAfter(before, stage.keeper.document);
+      return;
+    }
+    case "jump":
+      await stage.keeper.jump(intent.seq);
+      stage.underWay = NOTHING;
+      return;
+    case "mark":
+      return stage.keeper.mark(intent.name);
+    default:
+      return performTracing(stage, intent, signal);
+  }
+}
+
+/** A loose end joined to a node, or to a fork made for it on a strand. */
+function joinPlan(document: TreeDocument, end: NodeId, to: Anchor): MakePlan {
+  if ("node" in to) return (now, ids) => joinStrands(now, ids, { a: end, b: to.node });
+  const { node } = placeOnLine(document, strandOf(document, to.strand), to.near);
+  if (node !== null) return (now, ids) => joinStrands(now, ids, { a: end, b: node });
+  return (now, ids) => {
+    const forked = startBranch(now, ids, { on: to });
+    const fork = forked.operation.changes.find((change) => change.table === "node" && change.from === null);
+    if (fork?.table !== "node") throw new TautlineError("internal", "The join made no fork.", { what: "join without a fork" });
+    return inOne(
+      () => forked,
+      (then, more) => joinStrands(then, more, { a: end, b: fork.id }),
+    )(now, ids);
+  };
+}
+
+/** What was under way ends when a mend took its node away or closed its end. */
+function dropIfGone(stage: Stage): void {
+  const { underWay, keeper } = stage;
+  const { nodes, strands } = keeper.document;
+  if (underWay.kind === "strand" && !nodes.has(underWay.tip)) stage.underWay = NOTHING;
+  if (underWay.kind === "branch" && "strand" in underWay.on && !strands.has(underWay.on.strand)) stage.underWay = NOTHING;
+  if (underWay.kind === "link" && "strand" in underWay.from && !strands.has(underWay.from.strand)) stage.underWay = NOTHING;
+}

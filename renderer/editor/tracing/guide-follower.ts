@@ -1,0 +1,120 @@
+import { type ReadonlySignal, signal } from "@preact/signals";
+import type { GuidePreviewAnswer } from "#shared/api/engine.ts";
+import { isTautlineError } from "#shared/errors.ts";
+import type { PointMm, Vec3 } from "#shared/geometry/types.ts";
+import { pointMm } from "#shared/geometry/types.ts";
+import type { LegKind } from "#shared/trees/document.ts";
+
+/** The live path from the last pin to the pointer. */
+export interface Guide {
+  readonly points: readonly Vec3[];
+  /** True while the exact path has not arrived and a coarse one, or a straight line, stands for it. */
+  readonly coarse: boolean;
+  readonly imageFit: number | null;
+  /** First and last point index of each stretch that leaves the string. */
+  readonly doubtful: readonly (readonly [number, number])[];
+}
+
+/** What the follower asks of the engine; null = a newer request took over. */
+export interface GuideSource {
+  open(from: PointMm): Promise<{ session: string } | null>;
+  preview(session: string, to: PointMm): Promise<GuidePreviewAnswer | null>;
+  close(session: string): Promise<unknown>;
+}
+
+/**
+ * Keeps one guide session at the last pin and previews the way to the pointer. A preview never decides anything: the
+ * committed curve is solved anew. Failures of a preview show no guide, and the next movement tries again.
+ */
+export class GuideFollower {
+  private readonly guideSignal = signal<Guide | null>(null);
+  private from: PointMm | null = null;
+  private to: PointMm | null = null;
+  private session: Promise<string | null> | null = null;
+  private leg: LegKind = "guide";
+
+  constructor(private readonly source: GuideSource) {}
+
+  get guide(): ReadonlySignal<Guide | null> {
+    return this.guideSignal;
+  }
+
+  /** Sets the pin that the guide starts from (null = none), and how the stretch runs. */
+  start(from: PointMm | null, leg: LegKind): void {
+    const same = from !== null && this.from !== null && samePlace(from, this.from) && leg === this.leg;
+    if (same) return;
+    const samePin = from !== null && this.from !== null && samePlace(from, this.from);
+    this.leg = leg;
+    this.from = from;
+    if (!samePin) this.closeSession();
+    this.guideSignal.value = null;
+    if (from !== null && leg === "guide" && this.session === null) this.openSession(from);
+    if (this.to !== null) void this.point(this.to);
+  }
+
+  /** The pointer is at `to`; null = nowhere. */
+  async point(to: PointMm | null): Promise<void> {
+    this.to = to;
+    const from = this.from;
+    if (to === null || from === null) {
+      this.guideSignal.value = null;
+      return;
+    }
+    if (this.leg === "straight") {
+      this.guideSignal.value = { points: [from, to], coarse: false, imageFit: null, doubtful: [] };
+      return;
+    }
+    const answer = await this.ask(from, to);
+    if (answer === null || this.from !== from || this.leg !== "guide" || this.to === null) return;
+    this.guideSignal.value = {
+      points: pointsOf(answer.points),
+      coarse: answer.coarse,
+      imageFit: answer.imageFit,
+      doubtful: answer.doubtful,
+    };
+  }
+
+  stop(): void {
+    this.start(null, "guide");
+    this.to = null;
+  }
+
+  private async ask(from: PointMm, to: PointMm, again = true): Promise<GuidePreviewAnswer | null> {
+    if (this.session === null) this.openSession(from);
+    try {
+      const session = await this.session;
+      if (session === null || this.from !== from) return null;
+      return await this.source.preview(session, to);
+    } catch (error) {
+      if (this.from !== from) return null;
+      // An idle session is closed by the engine: open it once more.
+      this.session = null;
+      if (again && isTautlineError(error, "not-found")) return this.ask(from, to, false);
+      this.guideSignal.value = null;
+      return null;
+    }
+  }
+
+  private openSession(from: PointMm): void {
+    const session = this.source.open(from).then((answer) => answer?.session ?? null);
+    session.catch(() => undefined);
+    this.session = session;
+  }
+
+  private closeSession(): void {
+    const session = this.session;
+    this.session = null;
+    if (session === null) return;
+    void session.then((id) => (id === null ? undefined : this.source.close(id))).catch(() => undefined);
+  }
+}
+
+function samePlace(a: Vec3, b: Vec3): boolean {
+  return a[0] === b[0] && a[1] === b[1] && a[2] === b[2];
+}
+
+function pointsOf(flat: readonly number[]): Vec3[] {
+  const points: Vec3[] = [];
+  for (let i = 0; i + 2 < flat.length; i += 3) points.push(pointMm(flat[i]!, flat[i + 1]!, flat[i + 2]!));
+  return points;
+}
