@@ -1,0 +1,52 @@
+import { clipToSlab } from "#renderer/section/clip-to-slab.ts";
+import { planeCrossings } from "#renderer/section/plane-crossings.ts";
+import { FADE_MM, type ProjectedScene, type ProjectedStrand } from "#renderer/section/project-scene.ts";
+import type { SectionInk } from "#renderer/section/section-ink.ts";
+import type { TextOnPicture } from "#renderer/section/text-on-picture.ts";
+import type { PaneSize } from "#renderer/section/view-plane.ts";
+
+/** Each tree's name once, beside what of it lies in the slab; the selected ones first, then those nearest the pane's middle. */
+export function drawLabels(
+  text: TextOnPicture,
+  scene: ProjectedScene,
+  size: PaneSize,
+  mmPerPx: number,
+  halfSlabMm: number,
+  ink: SectionInk,
+): void {
+  const places = new Map<string, { name: string; x: number; y: number; colour: string; rank: number }>();
+  for (const strand of scene.strands) {
+    const place = labelPlace(strand, mmPerPx, halfSlabMm, size);
+    if (place === null) continue;
+    const off = Math.hypot(place.x - size.width / 2, place.y - size.height / 2);
+    const rank = off - (strand.selected ? 1e6 : 0);
+    const before = places.get(strand.drawn.name);
+    if (before !== undefined && before.rank <= rank) continue;
+    places.set(strand.drawn.name, { name: strand.drawn.name, ...place, colour: ink.trees[strand.drawn.mark.colour]!, rank });
+  }
+  for (const { name, x, y, colour } of [...places.values()].sort((a, b) => a.rank - b.rank)) {
+    text.beside(name, x, y, 12, colour);
+  }
+}
+
+function labelPlace(
+  strand: ProjectedStrand,
+  mmPerPx: number,
+  halfSlabMm: number,
+  size: PaneSize,
+): { x: number; y: number } | null {
+  const crossing = planeCrossings(strand.seen, strand.drawn.radii, mmPerPx).find((place) => shown(place, size));
+  if (crossing !== undefined) return { x: crossing.x, y: crossing.y };
+  let longest: readonly number[] = [];
+  for (const run of clipToSlab(strand.seen, halfSlabMm, FADE_MM)) {
+    if (run.band === 0 && run.points.length > longest.length) longest = run.points;
+  }
+  if (longest.length < 4) return null;
+  const middle = 2 * Math.floor(longest.length / 4);
+  const place = { x: longest[middle]!, y: longest[middle + 1]! };
+  return shown(place, size) ? place : null;
+}
+
+function shown(place: { x: number; y: number }, size: PaneSize): boolean {
+  return place.x >= 0 && place.y >= 0 && place.x <= size.width && place.y <= size.height;
+}

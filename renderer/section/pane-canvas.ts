@@ -1,0 +1,44 @@
+import type { PaneSize } from "#renderer/section/view-plane.ts";
+
+/** Canvases stacked in a host that they fill, one canvas pixel per device pixel. */
+export class PaneCanvases {
+  readonly root: HTMLDivElement;
+  readonly layers: readonly HTMLCanvasElement[];
+  private readonly watcher: ResizeObserver;
+  private device = { width: 0, height: 0 };
+  size: PaneSize = { width: 0, height: 0, ratio: 1 };
+
+  /** @param resized called when the size in device pixels has changed; the canvases are then empty. */
+  constructor(host: HTMLElement, className: string, layers: number, resized: () => void) {
+    this.root = document.createElement("div");
+    this.root.className = className;
+    this.layers = Array.from({ length: layers }, () => document.createElement("canvas"));
+    this.root.append(...this.layers);
+    host.append(this.root);
+    this.watcher = new ResizeObserver((entries) => {
+      const entry = entries[entries.length - 1]!;
+      const exact = entry.devicePixelContentBoxSize?.[0];
+      const ratio = globalThis.devicePixelRatio || 1;
+      const width = exact?.inlineSize ?? Math.round(entry.contentRect.width * ratio);
+      const height = exact?.blockSize ?? Math.round(entry.contentRect.height * ratio);
+      if (width === this.device.width && height === this.device.height && ratio === this.size.ratio) return;
+      this.device = { width, height };
+      this.size = { width: width / ratio, height: height / ratio, ratio };
+      for (const canvas of this.layers) {
+        canvas.width = width;
+        canvas.height = height;
+      }
+      resized();
+    });
+    try {
+      this.watcher.observe(this.root, { box: "device-pixel-content-box" });
+    } catch {
+      this.watcher.observe(this.root);
+    }
+  }
+
+  dispose(): void {
+    this.watcher.disconnect();
+    this.root.remove();
+  }
+}
