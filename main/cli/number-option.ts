@@ -21,3 +21,12 @@ export function wordOption<T extends string>(options: VerbCall["options"], name:
 function wrong(what: string): TautlineError<"misuse"> {
   return new TautlineError("misuse", what, { what });
 }
+
+/** The value of an option as a finite number above `above` (or equal to it when `orEqual`); `fallback` when it is not given. @throws misuse */
+export function realOption<T>(options: VerbCall["options"], name: string, fallback: T, above = 0, orEqual = false): number | T {
+  const text = options[name];
+  if (text === undefined) return fallback;
+  const value = /^[-+]?(\d+\.?\d*|\.\d+)([eE][-+]?\d+)?$/.test(String(text)) ? Number(text) : Number.NaN;
+  if (Number.isFinite(value) && (value > above || (orEqual && value === above))) return value;
+  throw wrong(`--${name} must be a number ${orEqual ? "of at least" : "above"} ${above}, found '${String(text)}'.`);
+}

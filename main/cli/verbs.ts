@@ -1,6 +1,9 @@
 import type { Verb } from "#main/cli/verb.ts";
+import { check } from "#main/cli/verbs/check.ts";
+import { compare } from "#main/cli/verbs/compare.ts";
 import { info } from "#main/cli/verbs/info.ts";
 import { intake } from "#main/cli/verbs/intake.ts";
+import { measure } from "#main/cli/verbs/measure.ts";
 
 /** Every verb, in the order of the job. */
-export const VERBS: readonly Verb[] = [info, intake];
+export const VERBS: readonly Verb[] = [info, intake, measure, check, compare];
