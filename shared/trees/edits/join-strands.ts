@@ -1,12 +1,12 @@
-import { crossLinksAt, nodesOf, strandsAt } from "#shared/trees/adjacency.ts";
-import type { NodeId, TreeDocument, TreeId } from "#shared/trees/document.ts";
+import { crossLinksAt, strandsAt } from "#shared/trees/adjacency.ts";
+import type { NodeId, TreeDocument } from "#shared/trees/document.ts";
 import { forkIfBranching } from "#shared/trees/edits/anchor.ts";
 import { EditDraft } from "#shared/trees/edits/edit-draft.ts";
 import type { EditPlan } from "#shared/trees/edits/edit-plan.ts";
 import { continued, outwardRun } from "#shared/trees/edits/extend-strand.ts";
 import { isSamePlace, joinedRun } from "#shared/trees/edits/pin-run.ts";
 import { nodeOf, refusal, treeOf } from "#shared/trees/edits/refusal.ts";
-import { asKind, dissolveNode, isLooseEnd, partFrom, retag, withEndMoved } from "#shared/trees/edits/rewiring.ts";
+import { asKind, dissolveNode, isLooseEnd, partFrom, removeIfEmpty, retag, withEndMoved } from "#shared/trees/edits/rewiring.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 
 /**
@@ -74,9 +74,4 @@ function mergeTrees(draft: EditDraft, end: NodeId, target: NodeId): void {
   const [loser, winner] = rooted[0] ? [1, 0] : [0, 1];
   retag(draft, parts[loser]!, trees[winner]!.id);
   removeIfEmpty(draft, trees[loser]!.id);
-}
-
-/** Removes a tree that has no node left. */
-export function removeIfEmpty(draft: EditDraft, tree: TreeId): void {
-  if (nodesOf(draft.document, tree).length === 0) draft.removeTree(tree);
 }

@@ -3,18 +3,8 @@ import type { NodeId, StrandId, TreeDocument } from "#shared/trees/document.ts";
 import { type Anchor, anchorNode, forkIfBranching } from "#shared/trees/edits/anchor.ts";
 import { EditDraft } from "#shared/trees/edits/edit-draft.ts";
 import type { EditPlan } from "#shared/trees/edits/edit-plan.ts";
-import { removeIfEmpty } from "#shared/trees/edits/join-strands.ts";
 import { nodeOf, refusal, strandOf, treeOf } from "#shared/trees/edits/refusal.ts";
-import {
-  asKind,
-  isLooseEnd,
-  partFrom,
-  removePart,
-  retag,
-  rootSideOf,
-  tidyNode,
-  withEndMoved,
-} from "#shared/trees/edits/rewiring.ts";
+import { asKind, isLooseEnd, partFrom, retag, rootSideOf, tidyNode, withEndMoved } from "#shared/trees/edits/rewiring.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 
 export interface MoveBranchArgs {
@@ -52,18 +42,6 @@ export function moveBranch(document: TreeDocument, ids: IdSource, args: MoveBran
   draft.putStrand(withEndMoved(strandOf(draft.document, strand.id), end, target));
   if (wasEnd) draft.putNode(asKind(nodeOf(draft.document, target), "waypoint"));
   else forkIfBranching(draft, target);
-  leaveBehind(draft, end);
+  tidyNode(draft, end);
   return draft.finish("move-branch");
-}
-
-/** Sets right what the branch left; an end without strands that is no root goes. */
-function leaveBehind(draft: EditDraft, id: NodeId): void {
-  const node = nodeOf(draft.document, id);
-  const part = partFrom(draft.document, id);
-  if (part.strands.length === 0 && treeOf(draft.document, node.tree).root !== id) {
-    removePart(draft, part);
-    removeIfEmpty(draft, node.tree);
-    return;
-  }
-  tidyNode(draft, id);
 }

@@ -1,4 +1,4 @@
-import { crossLinksAt, otherEnd, strandsAt } from "#shared/trees/adjacency.ts";
+import { crossLinksAt, nodesOf, otherEnd, strandsAt } from "#shared/trees/adjacency.ts";
 import type { NodeId, NodeKind, Strand, StrandId, TreeDocument, TreeId, TreeNode } from "#shared/trees/document.ts";
 import type { EditDraft } from "#shared/trees/edits/edit-draft.ts";
 import { joinedRun, reversedRun, runOf, splitRun, strandWithRun } from "#shared/trees/edits/pin-run.ts";
@@ -102,14 +102,27 @@ export function dissolveNode(draft: EditDraft, id: NodeId): boolean {
   return true;
 }
 
-/** Sets right a node that lost a strand: an idle fork dissolves (a waypoint when a cross-link holds it), a fork with one strand is open. */
+/**
+ * Sets right a node that lost a strand: an idle fork dissolves (a waypoint when a cross-link holds it), a fork with one strand
+ * is open, and a node without strands that is no root goes, with its tree when it was the last.
+ */
 export function tidyNode(draft: EditDraft, id: NodeId): void {
   const { document } = draft;
   const node = nodeOf(document, id);
   const degree = strandsAt(document, id).length;
-  if (treeOf(document, node.tree).root === id || (node.kind !== "fork" && node.kind !== "waypoint")) return;
+  if (treeOf(document, node.tree).root === id) return;
+  if (degree === 0) {
+    removePart(draft, { nodes: [id], strands: [] });
+    removeIfEmpty(draft, node.tree);
+  }
+  if (node.kind !== "fork" && node.kind !== "waypoint") return;
   if (degree === 1) draft.putNode(asKind(node, "open"));
   if (degree === 2 && !dissolveNode(draft, id) && crossLinksAt(document, id).length > 0) draft.putNode(asKind(node, "waypoint"));
+}
+
+/** Removes a tree that has no node left. */
+export function removeIfEmpty(draft: EditDraft, tree: TreeId): void {
+  if (nodesOf(draft.document, tree).length === 0) draft.removeTree(tree);
 }
 
 /** Gives a part of a tree to another tree. */
