@@ -4,9 +4,10 @@ import { openNrrd } from "#main/intake/nrrd/nrrd-source.ts";
 import { openOmeZarr, zarrFolderOf } from "#main/intake/ome-zarr/ome-zarr-source.ts";
 import { asUnreadable, ReadFile } from "#main/intake/read-file.ts";
 import type { ScanChoice, SliceSource } from "#main/intake/slice-source.ts";
-import { isTiff, openTiff } from "#main/intake/tiff/tiff-source.ts";
+import { openTiff } from "#main/intake/tiff/tiff-source.ts";
 import { unreadable } from "#shared/errors.ts";
 import { isNrrd, latin1, quote } from "#shared/volume/nrrd/nrrd-fields.ts";
+import { isTiff } from "#shared/volume/tiff/tiff-entries.ts";
 
 /** What can be read, for messages. */
 export const READABLE = "an NRRD file (.nrrd, .nhdr), a multi-page TIFF file or an OME-Zarr folder";

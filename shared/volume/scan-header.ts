@@ -32,6 +32,8 @@ export interface ScanHeader {
   /** Unit columns, already in the frame below. */
   readonly direction: Matrix3;
   readonly frame: FrameName;
+  /** What a header without a whole voxel size does say about it, one sentence. */
+  readonly spacingRemark?: string;
   /** Other things a person should know, one sentence each. */
   readonly notes: readonly string[];
 }

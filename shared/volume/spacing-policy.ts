@@ -39,7 +39,7 @@ export function judgeSpacing(header: ScanHeader): SpacingVerdict {
     warn("no-unit", unit === null ? "The header names no unit of length." : `The header's unit '${unit}' is no known length.`);
   }
   const good = written?.every((s) => Number.isFinite(s) && s > 0) ?? false;
-  if (!written) warn("no-spacing", "The header gives no voxel size along every axis.");
+  if (!written) warn("no-spacing", header.spacingRemark ?? "The header does not give a voxel size along every axis.");
   else if (!good) warn("bad-spacing", `The header's voxel size is ${written.join(", ")}; each must be a positive number.`);
   const settled = good && header.mmPerUnit !== null;
   const spacing = settled ? headerSpacingMm(header) : null;
