@@ -59,7 +59,10 @@ export function projectScene(content: SectionContent, plane: ViewPlane, size: Pa
   const strands: ProjectedStrand[] = [];
   const pins: ProjectedPin[] = [];
   for (const drawn of drawnOnce(document)) {
-    const selected = drawn.id === selection.strand || (selection.tree !== undefined && drawn.tree === selection.tree);
+    const selected =
+      selection.strand === undefined
+        ? selection.tree !== undefined && drawn.tree === selection.tree
+        : drawn.id === selection.strand;
     if (drawn.id === selection.strand) {
       drawn.pins.forEach((position, index) => {
         const seen = toPane(plane, size, position);

@@ -1,5 +1,45 @@
-import type { SpaceContent, SpaceEvents } from "#renderer/space/space-content.ts";
-import { pointMm } from "#shared/geometry/types.ts";
+import "#renderer/space/space.css";
+import {
+  AmbientLight,
+  Color,
+  DirectionalLight,
+  Matrix4,
+  type Object3D,
+  PerspectiveCamera,
+  type Points,
+  Scene,
+  WebGLRenderer,
+} from "three";
+import { GlyphTextures } from "#renderer/space/glyph-textures.ts";
+import {
+  approached,
+  lookingAlong,
+  mmPerPixel,
+  OPENING_DEG,
+  type Orbit,
+  orbitAround,
+  shifted,
+  turned,
+  uprightOf,
+  viewerAxes,
+} from "#renderer/space/orbit.ts";
+import { pickInSpace } from "#renderer/space/pick.ts";
+import {
+  freePart,
+  guidePart,
+  nodesPart,
+  pinsPart,
+  planePart,
+  selectionPart,
+  strandsPart,
+  surfacePart,
+} from "#renderer/space/scene-parts.ts";
+import type { SpaceContent, SpaceEvents, SpaceHit } from "#renderer/space/space-content.ts";
+import { listenToSpace } from "#renderer/space/space-input.ts";
+import { type PointMm, pointMm } from "#shared/geometry/types.ts";
+import { cross } from "#shared/geometry/vec3.ts";
+import { coloursFrom, type ViewColours } from "#shared/marks/colours.ts";
+import { type DrawnStrand, drawnStrands } from "#shared/marks/drawn-strand.ts";
 
 export const EMPTY_SPACE: SpaceContent = {
   document: null,
@@ -14,34 +54,287 @@ export const EMPTY_SPACE: SpaceContent = {
   caption: "",
 };
 
+type PartName = "strands" | "nodes" | "selection" | "guide" | "pins" | "plane" | "surface";
+
+const NO_WEBGL = "This computer's browser offers no WebGL, so the view in space stays empty. All else works.";
+const LOST_WEBGL = "The graphics were lost for a moment; the view comes back by itself.";
+/** After this long without movement the full picture is drawn. */
+const STILL_AFTER_MS = 160;
+/** While moving, one surface point of so many is drawn. */
+const MOVING_SHARE = 4;
+
 /** The trees in space inside a host element, which it fills. Draws on change only; without WebGL it says so and stays still. */
 export class SpaceView {
+  /** False when this computer offers no WebGL; showing things then has no effect. */
+  readonly available: boolean;
+  readonly element = document.createElement("div");
   private content = EMPTY_SPACE;
-  /** False when this computer offers no WebGL; every method is then without effect. */
-  readonly available: boolean = false;
+  private orbit: Orbit = orbitAround(EMPTY_SPACE.bounds.centre, EMPTY_SPACE.bounds.radiusMm);
+  private drawn: DrawnStrand[] = [];
+  private readonly note = document.createElement("p");
+  private readonly renderer: WebGLRenderer | null;
+  private readonly scene = new Scene();
+  private readonly camera = new PerspectiveCamera(OPENING_DEG);
+  private readonly lamp = new DirectionalLight(0xffffff, 2.1);
+  private readonly glyphs = new GlyphTextures();
+  private readonly parts = new Map<PartName, Object3D>();
+  private readonly stale = new Set<PartName>();
+  private readonly watcher: ResizeObserver | null = null;
+  private readonly stopListening: () => void = () => undefined;
+  private size = { width: 0, height: 0 };
+  private frame = 0;
+  private stillTimer: ReturnType<typeof setTimeout> | undefined;
+  private moving = false;
+  /** The person has turned or zoomed: later bounds do not move the view. */
+  private touched = false;
 
   constructor(
-    readonly host: HTMLElement,
-    readonly events: SpaceEvents = {},
-  ) {}
-
-  show(change: Partial<SpaceContent>): void {
-    this.content = { ...this.content, ...change };
+    host: HTMLElement,
+    private readonly events: SpaceEvents = {},
+  ) {
+    this.element.className = "space-view";
+    this.note.className = "space-note";
+    this.note.hidden = true;
+    this.element.append(this.note);
+    host.append(this.element);
+    this.renderer = makeRenderer();
+    this.available = this.renderer !== null;
+    if (this.renderer === null) {
+      this.note.classList.add("alone");
+      this.say(NO_WEBGL);
+      return;
+    }
+    const { domElement } = this.renderer;
+    this.element.prepend(domElement);
+    this.element.tabIndex = 0;
+    this.element.setAttribute("role", "application");
+    this.element.setAttribute(
+      "aria-label",
+      "Trees in space. Arrow keys turn, with Shift in large steps, with Alt they move; plus and minus zoom, Home shows all.",
+    );
+    domElement.addEventListener("webglcontextlost", (event) => {
+      event.preventDefault();
+      this.say(LOST_WEBGL);
+    });
+    domElement.addEventListener("webglcontextrestored", () => {
+      this.say(this.content.caption);
+      this.redraw();
+    });
+    this.scene.add(this.lamp, new AmbientLight(0xffffff, 1.3));
+    this.watcher = new ResizeObserver(() => this.resize());
+    this.watcher.observe(this.element);
+    this.stopListening = listenToSpace(this.element, {
+      turn: (turnDeg, tiltDeg) => this.turn(turnDeg, tiltDeg),
+      shift: (dx, dy) => this.move(shifted(this.orbit, uprightOf(this.content.valve), dx, dy, this.size.height)),
+      zoom: (factor) => this.zoom(factor),
+      all: () => this.showAll(),
+      click: (x, y, modifiers) => this.events.click?.(this.pick(x, y), modifiers),
+      hover: (x, y) => {
+        const hit = this.pick(x, y);
+        this.element.dataset.over = hit === null ? "no" : "yes";
+        this.events.hover?.(hit);
+      },
+      leave: () => this.events.hover?.(null),
+    });
   }
 
-  /** Turns about the valve's axis (`aboutUpDeg`) and tilts. */
-  turn(_aboutUpDeg: number, _tiltDeg: number): void {}
+  /** Shows what is given and keeps the rest; drawn at the next frame. */
+  show(change: Partial<SpaceContent>): void {
+    const before = this.content;
+    this.content = { ...before, ...change };
+    const now = this.content;
+    if (!this.available) return;
+    if (now.document !== before.document) {
+      this.drawn = now.document === null ? [] : drawnStrands(now.document);
+      this.spoil("strands", "nodes", "selection");
+    }
+    if (now.selection !== before.selection) this.spoil("selection");
+    if (now.guide !== before.guide) this.spoil("guide");
+    if (now.pins !== before.pins) this.spoil("pins");
+    if (now.plane !== before.plane || now.picture !== before.picture) this.spoil("plane");
+    if (now.surface !== before.surface) this.spoil("surface");
+    if (now.bounds !== before.bounds && !this.touched) this.orbit = orbitAround(now.bounds.centre, now.bounds.radiusMm);
+    this.say(now.caption);
+    this.redraw();
+  }
+
+  /** Turns about the valve's axis (the viewer walks to the right for positive angles) and tilts. */
+  turn(turnDeg: number, tiltDeg: number): void {
+    this.move(turned(this.orbit, turnDeg, tiltDeg));
+  }
 
   /** Above 1 = closer. */
-  zoom(_factor: number): void {}
+  zoom(factor: number): void {
+    this.move(approached(this.orbit, factor));
+  }
 
-  /** Shows everything upright from the front. */
-  showAll(): void {}
+  /** Puts a place in the middle, keeping the direction and the distance. */
+  centreOn(target: PointMm): void {
+    this.move({ ...this.orbit, target });
+  }
 
-  /** Looks from where the section looks: along its line of sight. */
-  lookAlongSection(): void {}
+  /** Shows everything, upright, from the front. */
+  showAll(): void {
+    this.move(orbitAround(this.content.bounds.centre, this.content.bounds.radiusMm));
+    this.touched = false;
+  }
 
-  themeChanged(): void {}
+  /** Looks along the section's line of sight, at the middle of its plane. */
+  lookAlongSection(): void {
+    const { plane, valve } = this.content;
+    if (plane === null) return;
+    const away = cross(plane.right, plane.down);
+    this.move(lookingAlong({ ...this.orbit, target: plane.centre }, uprightOf(valve), away));
+  }
 
-  dispose(): void {}
+  /** Reads the theme's colours again (after a change of theme). */
+  themeChanged(): void {
+    this.spoil("strands", "nodes", "selection", "guide", "pins", "plane", "surface");
+    this.redraw();
+  }
+
+  dispose(): void {
+    cancelAnimationFrame(this.frame);
+    clearTimeout(this.stillTimer);
+    this.stopListening();
+    this.watcher?.disconnect();
+    for (const part of this.parts.values()) freePart(part);
+    this.parts.clear();
+    this.glyphs.dispose();
+    this.renderer?.dispose();
+    this.renderer?.forceContextLoss();
+    this.element.remove();
+  }
+
+  private move(orbit: Orbit): void {
+    this.orbit = orbit;
+    this.touched = true;
+    this.moving = true;
+    clearTimeout(this.stillTimer);
+    this.stillTimer = setTimeout(() => {
+      this.moving = false;
+      this.redraw();
+    }, STILL_AFTER_MS);
+    this.events.turned?.();
+    this.redraw();
+  }
+
+  private pick(x: number, y: number): SpaceHit | null {
+    if (this.renderer === null || this.size.width === 0) return null;
+    this.placeCamera();
+    const matrix = new Matrix4().multiplyMatrices(this.camera.projectionMatrix, this.camera.matrixWorldInverse);
+    const nodes = this.content.document?.nodes.values() ?? [];
+    const what = { strands: this.drawn, nodes, surface: this.content.surface };
+    return pickInSpace(what, { matrix: matrix.elements, ...this.size }, x, y);
+  }
+
+  private placeCamera(): void {
+    const { orbit, camera } = this;
+    const axes = viewerAxes(orbit, uprightOf(this.content.valve));
+    camera.aspect = this.size.width / Math.max(1, this.size.height);
+    camera.near = orbit.distanceMm / 100;
+    camera.far = orbit.distanceMm + 10 * Math.max(1, this.content.bounds.radiusMm);
+    camera.up.set(axes.up[0], axes.up[1], axes.up[2]);
+    camera.position.set(axes.eye[0], axes.eye[1], axes.eye[2]);
+    camera.lookAt(orbit.target[0], orbit.target[1], orbit.target[2]);
+    camera.updateProjectionMatrix();
+    camera.updateMatrixWorld();
+    const side = mmPerPixel(orbit, this.size.height) * this.size.height;
+    this.lamp.position.copy(camera.position);
+    this.lamp.position.x += axes.up[0] * side * 0.5 - axes.right[0] * side * 0.35;
+    this.lamp.position.y += axes.up[1] * side * 0.5 - axes.right[1] * side * 0.35;
+    this.lamp.position.z += axes.up[2] * side * 0.5 - axes.right[2] * side * 0.35;
+    this.lamp.target.position.set(orbit.target[0], orbit.target[1], orbit.target[2]);
+    this.lamp.target.updateMatrixWorld();
+  }
+
+  private spoil(...names: PartName[]): void {
+    for (const name of names) this.stale.add(name);
+  }
+
+  private rebuild(colours: ViewColours): void {
+    for (const name of this.stale) {
+      const before = this.parts.get(name);
+      if (before !== undefined) {
+        this.scene.remove(before);
+        freePart(before);
+        this.parts.delete(name);
+      }
+      const part = this.build(name, colours);
+      if (part === null) continue;
+      this.scene.add(part);
+      this.parts.set(name, part);
+    }
+    this.stale.clear();
+  }
+
+  private build(name: PartName, colours: ViewColours): Object3D | null {
+    const { document, guide, pins, plane, picture, surface, selection } = this.content;
+    const ratio = this.renderer?.getPixelRatio() ?? 1;
+    switch (name) {
+      case "strands":
+        return this.drawn.length === 0 ? null : strandsPart(this.drawn, colours);
+      case "nodes":
+        return document === null ? null : nodesPart(document.nodes.values(), colours, this.glyphs, ratio);
+      case "selection": {
+        const chosen = this.drawn.filter(
+          (strand) => strand.id === selection.strand || (selection.strand === undefined && strand.tree === selection.tree),
+        );
+        return chosen.length === 0 ? null : selectionPart(chosen, colours);
+      }
+      case "guide":
+        return guide === null || guide.length < 6 ? null : guidePart(guide, colours);
+      case "pins":
+        return pins.length === 0 ? null : pinsPart(pins, colours, this.glyphs, ratio);
+      case "plane":
+        return plane === null ? null : planePart(plane, picture, colours);
+      case "surface":
+        return surface === null ? null : surfacePart(surface, colours, ratio);
+    }
+  }
+
+  private resize(): void {
+    const { clientWidth: width, clientHeight: height } = this.element;
+    this.size = { width, height };
+    this.renderer?.setPixelRatio(globalThis.devicePixelRatio || 1);
+    this.renderer?.setSize(width, height, false);
+    this.spoil("nodes", "pins", "surface");
+    this.redraw();
+  }
+
+  private redraw(): void {
+    if (this.renderer === null || this.frame !== 0) return;
+    this.frame = requestAnimationFrame(() => {
+      this.frame = 0;
+      this.draw();
+    });
+  }
+
+  private draw(): void {
+    if (this.renderer === null || this.size.width === 0 || this.size.height === 0) return;
+    const style = getComputedStyle(this.element);
+    const colours = coloursFrom((name) => style.getPropertyValue(name));
+    this.scene.background = new Color(style.backgroundColor);
+    this.rebuild(colours);
+    const surface = this.parts.get("surface") as Points | undefined;
+    if (surface !== undefined) {
+      const count = surface.geometry.getAttribute("position").count;
+      surface.geometry.setDrawRange(0, this.moving ? Math.ceil(count / MOVING_SHARE) : count);
+    }
+    this.placeCamera();
+    this.renderer.render(this.scene, this.camera);
+  }
+
+  private say(words: string): void {
+    this.note.textContent = words;
+    this.note.hidden = words === "";
+  }
+}
+
+function makeRenderer(): WebGLRenderer | null {
+  try {
+    return new WebGLRenderer({ antialias: true, powerPreference: "low-power" });
+  } catch {
+    return null;
+  }
 }
