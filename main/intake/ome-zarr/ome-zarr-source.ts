@@ -38,11 +38,13 @@ export async function openOmeZarr(folder: string, choice: ScanChoice): Promise<S
   );
   const dtype = array.dtype as SourceDtype;
   if (!Object.hasOwn(BYTES_OF_DTYPE, dtype)) throw unreadable(name, "an integer or float type", String(array.dtype), image.path);
+  // The library takes sides from the metadata as they are.
+  const [shape, chunks]: unknown[] = [array.shape, array.chunks];
+  if (!isSides(shape) || !isSides(chunks) || chunks.length !== shape.length)
+    throw unreadable(name, "an array and chunks with positive whole sides", "others", image.path);
   const scan = scanOfOmeZarr(image, array.shape, dtype, choice, name);
   const chunkVoxels = array.chunks.reduce((product, side) => product * side, 1);
-  const goodChunks =
-    array.chunks.length === array.shape.length && array.chunks.every((side) => Number.isSafeInteger(side) && side > 0);
-  if (!goodChunks || chunkVoxels * BYTES_OF_DTYPE[dtype] > MOST_CHUNK_BYTES)
+  if (chunkVoxels * BYTES_OF_DTYPE[dtype] > MOST_CHUNK_BYTES)
     throw unreadable(name, `chunks of at most ${MOST_CHUNK_BYTES} bytes`, array.chunks.join(" x "), image.path);
   const [nx, ny] = scan.header.size;
   if (nx * ny * BYTES_OF_DTYPE[dtype] > 1024 ** 3)
@@ -62,6 +64,10 @@ export async function openOmeZarr(folder: string, choice: ScanChoice): Promise<S
     fingerprint: async () => (await folderFacts(levelFolder)).print,
     close: async () => {},
   };
+}
+
+function isSides(value: unknown): value is number[] {
+  return Array.isArray(value) && value.every((side) => Number.isSafeInteger(side) && side > 0);
 }
 
 async function* readPlanes(
