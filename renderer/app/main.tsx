@@ -7,9 +7,9 @@ import { Notices } from "#renderer/app/notices.ts";
 import { fragmentOf } from "#renderer/app/place.ts";
 import { startTheme } from "#renderer/app/theme-choice.ts";
 import { Client } from "#renderer/client/client.ts";
-import { type DesktopBridge, desktopCapabilities } from "#renderer/client/electron-capabilities.ts";
 import { loopbackCapabilities } from "#renderer/client/loopback-capabilities.ts";
 import { takePageToken } from "#renderer/client/page-token.ts";
+import { BRIDGE_NAME, type Bridge, desktopCapabilities } from "#shared/api/bridge.ts";
 
 document.title = "Tautline";
 startTheme();
@@ -28,7 +28,7 @@ const askForScan = () =>
     };
   });
 // The one place where the shells part.
-const bridge = (window as { tautline?: DesktopBridge }).tautline;
+const bridge = (window as { [BRIDGE_NAME]?: Bridge })[BRIDGE_NAME];
 const capabilities = bridge === undefined ? loopbackCapabilities(askForScan) : desktopCapabilities(bridge);
 
 const services = {

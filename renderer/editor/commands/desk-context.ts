@@ -1,0 +1,31 @@
+import type { Editor } from "#renderer/editor/editor.ts";
+import type { ViewControl } from "#renderer/editor/view-control.ts";
+
+/** What of the screen commands may open or change. */
+export interface ScreenControl {
+  readonly openPalette: () => void;
+  readonly openKeyHelp: () => void;
+  readonly openMenu: () => void;
+  readonly toggleHistory: () => void;
+  readonly openExport: () => void;
+  readonly openTakeIn: () => void;
+  readonly openAbout: () => void;
+  readonly openUpright: () => void;
+  readonly toggleTheme: () => void;
+  readonly backToShelf: () => void;
+  readonly finishPass: () => void;
+  readonly nameMark: () => void;
+  readonly renameTree: () => void;
+  /** The next (+1) or previous (-1) finding. */
+  readonly stepFinding: (by: 1 | -1) => void;
+  readonly dismissFinding: () => void;
+  /** Moves keyboard focus to the section. */
+  readonly focusSection: () => void;
+}
+
+/** What commands act on. */
+export interface DeskContext {
+  readonly editor: Editor;
+  readonly view: ViewControl;
+  readonly screen: ScreenControl;
+}

@@ -1,0 +1,144 @@
+import type { Command } from "#renderer/editor/commands/command.ts";
+import type { DeskContext } from "#renderer/editor/commands/desk-context.ts";
+import { END_WORDS } from "#renderer/editor/session/words.ts";
+import type { EndKind } from "#shared/trees/document.ts";
+
+const under = ({ view }: DeskContext) => view.pointing.value?.under ?? null;
+const kind = ({ editor }: DeskContext) => editor.projection.value.kind;
+const canEdit = ({ editor }: DeskContext) => !editor.readOnly;
+const isDrawing = (context: DeskContext) => canEdit(context) && (kind(context) === "strand" || kind(context) === "branch");
+
+function endCommand(name: string, key: string, end: Exclude<EndKind, "open">): Command<DeskContext> {
+  return {
+    name,
+    group: "Trace",
+    label: `End here: ${END_WORDS[end]}`,
+    keys: [key],
+    enabled: isDrawing,
+    perform: ({ editor }) => editor.end(end),
+    foot: (context) => (isDrawing(context) ? END_WORDS[end] : null),
+  };
+}
+
+/** The seven ends, one key each; they share one entry on the foot line. */
+export const END_COMMANDS: readonly Command<DeskContext>[] = [
+  endCommand("end-insertion", "I", "insertion"),
+  endCommand("end-ruptured", "R", "ruptured"),
+  endCommand("end-cut", "C", "cut"),
+  endCommand("end-lost", "L", "lost-end"),
+  endCommand("end-muscle", "M", "muscle-end"),
+  endCommand("end-wall", "W", "wall-end"),
+  endCommand("end-scan-edge", "E", "scan-edge"),
+];
+
+function clickWords(context: DeskContext): string | null {
+  const { editor } = context;
+  if (editor.carried.value !== null) return "put it down here";
+  const here = under(context);
+  switch (kind(context)) {
+    case "strand":
+      return "pin";
+    case "branch":
+      return "first pin of the branch";
+    case "link":
+      return "pin of the cross-link";
+    case "nothing":
+      if (here === null) return "start a tree: its origin";
+      if (here.kind === "node" && editor.document.value.nodes.get(here.id)?.kind === "open") return "go on from this open end";
+      return "select";
+  }
+}
+
+/** Everything that draws. What each does follows from what is under way; there are no modes to choose. */
+export const TRACE_COMMANDS: readonly Command<DeskContext>[] = [
+  {
+    name: "pin",
+    group: "Trace",
+    label: "Click at the keyboard cursor (pin, start, select)",
+    keys: ["Enter", "Space"],
+    enabled: () => true,
+    perform: ({ view }) => view.clickAtCursor(),
+    foot: (context) => (canEdit(context) ? clickWords(context) : null),
+  },
+  ...END_COMMANDS,
+  {
+    name: "branch",
+    group: "Trace",
+    label: "Branch from the strand or node here",
+    keys: ["B"],
+    enabled: (context) => canEdit(context) && context.editor.anchor() !== null,
+    perform: ({ editor }) => {
+      const from = editor.anchor();
+      if (from !== null) editor.do({ do: "branch", from });
+    },
+    foot: (context) => (canEdit(context) && under(context) !== null ? "branch from here" : null),
+  },
+  {
+    name: "cross-link",
+    group: "Trace",
+    label: "Cross-link: from the string here, or to it",
+    keys: ["X"],
+    enabled: (context) => canEdit(context) && context.editor.anchor() !== null,
+    perform: ({ editor }) => {
+      const to = editor.anchor();
+      if (to !== null) editor.do({ do: "link", to });
+    },
+    foot: (context) => {
+      if (!canEdit(context)) return null;
+      if (kind(context) === "link") return under(context) === null ? "join it to the string under the pointer" : "join it here";
+      return kind(context) === "nothing" && under(context) !== null ? "cross-link from here" : null;
+    },
+  },
+  {
+    name: "straight",
+    group: "Trace",
+    label: "Draw the next stretch straight, or along the image again",
+    keys: ["S"],
+    enabled: isDrawing,
+    perform: ({ editor }) => editor.do({ do: "straight" }),
+    foot: (context) =>
+      isDrawing(context)
+        ? context.editor.projection.value.leg === "straight"
+          ? "follow the image again"
+          : "next stretch straight"
+        : null,
+  },
+  {
+    name: "next-in-depth",
+    group: "Trace",
+    label: "Next string in depth under the pointer",
+    keys: ["D"],
+    enabled: ({ view }) => view.pointing.value !== null,
+    perform: ({ editor }) => editor.nextCandidate(),
+    foot: ({ editor }) => ((editor.snapped.value?.candidates ?? 0) > 1 ? "next string in depth" : null),
+  },
+  {
+    name: "take-back-pin",
+    group: "Trace",
+    label: "Take the last pin back",
+    keys: ["Backspace"],
+    enabled: (context) => canEdit(context) && kind(context) !== "nothing",
+    perform: ({ editor }) => editor.do({ do: "back" }),
+    foot: (context) => (canEdit(context) && kind(context) !== "nothing" ? "take a pin back" : null),
+  },
+  {
+    name: "leave",
+    group: "Trace",
+    label: "Leave the strand as it is (open), or put back what is carried",
+    keys: ["Escape"],
+    enabled: ({ editor }) =>
+      editor.projection.value.kind !== "nothing" ||
+      editor.carried.value !== null ||
+      editor.selection.value.tree !== undefined ||
+      editor.selection.value.strand !== undefined,
+    perform: ({ editor }) => {
+      if (editor.carried.value !== null) editor.carried.value = null;
+      else if (editor.projection.value.kind !== "nothing") editor.do({ do: "leave" });
+      else editor.selection.value = {};
+    },
+    foot: (context) => {
+      if (context.editor.carried.value !== null) return "put it back";
+      return kind(context) === "nothing" ? null : "leave it open";
+    },
+  },
+];
