@@ -19,7 +19,12 @@ export default defineConfig({
     projects: [
       {
         extends: true,
-        test: { name: "plain", include: ["test/{shared,main,tools}/**/*.test.ts"], environment: "node", testTimeout: 60_000 },
+        test: {
+          name: "plain",
+          include: ["test/{shared,main,tools,contract,security}/**/*.test.ts"],
+          environment: "node",
+          testTimeout: 60_000,
+        },
       },
       {
         extends: true,

@@ -1,12 +1,13 @@
 import { join } from "node:path";
 import { app, BrowserWindow, dialog, ipcMain, session } from "electron";
-import { registerScheme, SCHEME_ACCESS, serveScheme } from "#main/electron/app-scheme.ts";
+import { registerScheme, serveScheme } from "#main/electron/app-scheme.ts";
 import { bridgeActions } from "#main/electron/bridge-actions.ts";
 import { hostBridge } from "#main/electron/bridge-host.ts";
 import { keepAtHome, refusePermissions } from "#main/electron/content-rules.ts";
 import { desktopAbilities } from "#main/electron/desktop-abilities.ts";
 import { Disposers } from "#main/electron/disposers.ts";
 import { APP_URL } from "#main/electron/own-address.ts";
+import { SCHEME_ACCESS } from "#main/electron/scheme-access.ts";
 import { windowOptions } from "#main/electron/window-options.ts";
 import { createHandler } from "#main/http/handler.ts";
 import { programFiles } from "#main/node/program-files.ts";
