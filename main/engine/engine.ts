@@ -1,0 +1,221 @@
+import { randomUUID } from "node:crypto";
+import { availableParallelism } from "node:os";
+import { type CacheFigures, createCacheMemory, MOST_WORKERS } from "#main/engine/brick-cache.ts";
+import {
+  checkFilm,
+  checkInScan,
+  checkParameters,
+  checkPoint,
+  checkSection,
+  checkSnap,
+  checkSolve,
+  checkStrip,
+  checkTicket,
+  checkWhole,
+} from "#main/engine/check-request.ts";
+import type { EngineTasks, GuideRef, StoreRef, TaskKind } from "#main/engine/tasks.ts";
+import { WorkerPool } from "#main/engine/worker-pool.ts";
+import type { Engine, HistogramAnswer, Ticket } from "#shared/api/engine.ts";
+import type { SpecimenRecord } from "#shared/api/specimen.ts";
+import { TautlineError } from "#shared/errors.ts";
+
+export interface EngineOptions {
+  /** Folder and record of a specimen. @throws not-found */
+  readonly library: (specimen: string) => Promise<{ readonly folder: string; readonly record: Pick<SpecimenRecord, "volume"> }>;
+  /** The built worker, `engine-worker.mjs`. */
+  readonly workerUrl: URL;
+  /** Most memory for bricks, ridge tiles and fronts together; 512 MB when not given. */
+  readonly cacheBytes?: number;
+  /** Threads; as many as there are cores when not given, and never fewer than two. */
+  readonly workers?: number;
+}
+
+/** The engine of this process. */
+export interface LocalEngine extends Engine {
+  /** Lets go of a specimen's files and sessions, before its folder is removed or made anew. */
+  forget(specimen: string): Promise<void>;
+  /** For reports and tests: the cache, and what is queued or running now. */
+  figures(): Promise<CacheFigures & { readonly waiting: number; readonly running: number }>;
+  /** Ends a worker where it stands; it is started again. For tests. */
+  kill(worker: number): Promise<void>;
+}
+
+const DEFAULT_BYTES = 512 * 2 ** 20;
+/** Shares of the limit. */
+const BRICK_SHARE = 0.45;
+const RIDGE_SHARE = 0.25;
+const FRONT_SHARE = 0.3;
+/** A guide session ends when nobody asked it for anything this long. */
+const IDLE_MS = 120_000;
+const MOST_SESSIONS = 64;
+
+interface OpenSession {
+  readonly ref: GuideRef;
+  readonly specimen: string;
+  used: number;
+}
+
+/**
+ * Starts the engine: worker threads over one brick cache.
+ *
+ * Supersession: requests of one window, one lane *and one kind* (section, strip, snap, preview ...) form a line, whose numbers
+ * count up. A newer one drops the older ones that are not answered yet, at once and with `superseded`; one that comes after a
+ * newer one still under way is dropped itself. Kinds do not drop each other, so that a window may count each of them by
+ * itself. In the lane `job` nothing is ever dropped.
+ *
+ * Workers: with two, one traces (guides, snapping, solving, surfaces, histograms) and one shows (sections, strips, films,
+ * values). With more, solving, surfaces and histograms have one to themselves, and the others show.
+ */
+export function createEngine(options: EngineOptions): LocalEngine {
+  const workers = Math.min(Math.max(options.workers ?? availableParallelism(), 2), MOST_WORKERS);
+  const bytes = options.cacheBytes ?? DEFAULT_BYTES;
+  const memory = createCacheMemory(BRICK_SHARE * bytes, workers);
+  const stop = new SharedArrayBuffer(4 * workers);
+  const alone = workers > 2;
+  const guide = [0];
+  const job = [alone ? 1 : 0];
+  const show = Array.from({ length: workers - (alone ? 2 : 1) }, (_, n) => n + (alone ? 2 : 1));
+  const ridgeShare = (worker: number) => (!alone && worker === 0 ? 1 : worker === 0 ? 0.6 : worker === 1 ? 0.4 : 0);
+  const pool = new WorkerPool(options.workerUrl, workers, stop, (worker) => ({
+    worker,
+    memory,
+    stop,
+    ridgeBytes: worker === 0 || (alone && worker === 1) ? RIDGE_SHARE * bytes * ridgeShare(worker) : 0,
+    frontBytes: worker === 0 ? FRONT_SHARE * bytes : 0,
+  }));
+
+  const stores = new Map<string, Promise<StoreRef>>();
+  const histograms = new Map<string, Promise<HistogramAnswer>>();
+  const sessions = new Map<string, OpenSession>();
+  let storeNumbers = 0;
+
+  const sweep = setInterval(() => {
+    for (const [session, { used }] of sessions) if (performance.now() - used > IDLE_MS) endSession(session);
+  }, IDLE_MS / 4);
+  sweep.unref();
+
+  /** A specimen's store; known ones are answered without asking the library again. */
+  function storeOf(specimen: string): Promise<StoreRef> {
+    const known = stores.get(specimen);
+    if (known) return known;
+    const opened = options.library(specimen).then(({ folder, record }): StoreRef => {
+      storeNumbers++;
+      return { number: storeNumbers, folder, volume: record.volume };
+    });
+    stores.set(specimen, opened);
+    opened.catch(() => stores.delete(specimen));
+    return opened;
+  }
+
+  async function onLine<K extends TaskKind>(
+    kind: K,
+    able: readonly number[],
+    ticket: Ticket,
+    specimen: string,
+    input: EngineTasks[K]["input"],
+    check?: (store: StoreRef) => void,
+  ): Promise<EngineTasks[K]["answer"]> {
+    const store = await storeOf(specimen);
+    check?.(store);
+    const { window, lane, number } = ticket;
+    const line = lane === "job" ? {} : { line: `${window} ${lane} ${kind}`, lane, number };
+    return pool.run(kind, store, input, { workers: able, ...line });
+  }
+
+  function endSession(session: string): void {
+    if (sessions.delete(session)) pool.tell({ type: "close-guide", session }, guide[0]);
+  }
+
+  function sessionOf(name: string): OpenSession {
+    const session = sessions.get(name);
+    if (session) {
+      session.used = performance.now();
+      return session;
+    }
+    throw new TautlineError("not-found", `The guide session ${name} is not open any more. Set out from the last pin again.`, {
+      what: "guide session",
+      id: name,
+    });
+  }
+
+  return {
+    async section(request) {
+      checkSection(request);
+      return onLine("section", show, request.ticket, request.specimen, request);
+    },
+    async strip(request) {
+      checkStrip(request);
+      return onLine("strip", show, request.ticket, request.specimen, request);
+    },
+    async film(request) {
+      checkFilm(request);
+      return onLine("film", show, request.ticket, request.specimen, request);
+    },
+    async surface(request) {
+      checkTicket(request.ticket);
+      checkWhole("limit", request.limit, 1, 2_000_000);
+      checkParameters({ polarity: request.polarity, blurFwhmMm: null });
+      return onLine("surface", job, request.ticket, request.specimen, request);
+    },
+    async value(specimen, at) {
+      checkPoint("at", at);
+      return pool.run("value", await storeOf(specimen), at, { workers: show, urgent: true });
+    },
+    async histogram(specimen) {
+      const known = histograms.get(specimen);
+      if (known) return known;
+      const made = storeOf(specimen).then((store) => pool.run("histogram", store, null, { workers: job }));
+      histograms.set(specimen, made);
+      made.catch(() => histograms.delete(specimen));
+      return made;
+    },
+    async snap(request) {
+      checkSnap(request);
+      checkParameters({ polarity: request.polarity, blurFwhmMm: null });
+      return onLine("snap", guide, request.ticket, request.specimen, request);
+    },
+    async openGuide({ ticket, specimen, from, parameters }) {
+      checkTicket(ticket);
+      checkParameters(parameters);
+      const store = await storeOf(specimen);
+      checkInScan("from", from, store.volume);
+      if (sessions.size >= MOST_SESSIONS) endSession(sessions.keys().next().value!);
+      const ref: GuideRef = { session: randomUUID(), from, parameters };
+      sessions.set(ref.session, { ref, specimen, used: performance.now() });
+      // Not waited for: the session is made while its first preview is on its way, which meets the same fault if there is one.
+      pool.run("open-guide", store, ref, { workers: guide }).catch(() => {});
+      return { session: ref.session };
+    },
+    async previewGuide({ ticket, session, to }) {
+      checkTicket(ticket);
+      const { ref, specimen } = sessionOf(session);
+      return onLine("preview-guide", guide, ticket, specimen, { guide: ref, to }, ({ volume }) => checkInScan("to", to, volume));
+    },
+    async closeGuide(session) {
+      endSession(session);
+    },
+    async solve(request) {
+      checkTicket(request.ticket);
+      return onLine("solve", job, request.ticket, request.specimen, request, ({ volume }) => checkSolve(request, volume));
+    },
+    async forget(specimen) {
+      const opened = stores.get(specimen);
+      stores.delete(specimen);
+      histograms.delete(specimen);
+      for (const [name, session] of sessions) if (session.specimen === specimen) endSession(name);
+      if (!opened) return;
+      const store = await opened;
+      await Promise.all(Array.from({ length: workers }, (_, worker) => pool.run("forget", store, null, { workers: [worker] })));
+    },
+    async figures() {
+      const cache = await pool.run("figures", null, null, { workers: show, urgent: true });
+      return { ...cache, waiting: pool.load.waiting, running: pool.load.running };
+    },
+    kill: (worker) => pool.kill(worker),
+    async close() {
+      clearInterval(sweep);
+      sessions.clear();
+      await pool.close();
+    },
+  };
+}

@@ -1,0 +1,83 @@
+import { performance } from "node:perf_hooks";
+import type { GuideRef } from "#main/engine/tasks.ts";
+import type { TraceContexts } from "#main/engine/trace-contexts.ts";
+import type { GuidePreviewAnswer } from "#shared/api/engine.ts";
+import type { PointMm } from "#shared/geometry/types.ts";
+import { type GuideFronts, growGuideFronts, openGuideFronts } from "#shared/tracing/guide/guide-fronts.ts";
+import { previewGuide } from "#shared/tracing/guide/guide-preview.ts";
+import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
+
+/** How long a preview may wait for each front, finest first; together well under what feels slow. */
+const PATIENCE_MS = [25, 40, 40];
+/** How long fronts grow between two looks for messages. */
+const SLICE_MS = 6;
+
+interface Session {
+  readonly guide: GuideFronts;
+  readonly store: number;
+  growing: boolean;
+}
+
+/**
+ * The guide session of a worker. Only the session used last keeps its fronts, since they take the worker's whole share of
+ * memory; another one that is used again grows anew from its pin.
+ */
+export class GuideSessions {
+  readonly #contexts: TraceContexts;
+  readonly #bytes: number;
+  #name = "";
+  #session: Session | null = null;
+
+  constructor(contexts: TraceContexts, bytes: number) {
+    this.#contexts = contexts;
+    this.#bytes = bytes;
+  }
+
+  /** True while fronts can grow between messages. */
+  get growing(): boolean {
+    return this.#session?.growing ?? false;
+  }
+
+  open(store: number, pyramid: VoxelPyramid, ref: GuideRef): Session {
+    if (this.#session && this.#name === ref.session) return this.#session;
+    // Let go before the next fronts are made, so that both are not held at once.
+    this.#session = null;
+    const context = this.#contexts.of(store, pyramid, ref.parameters.polarity);
+    this.#session = { guide: openGuideFronts(context, ref.from, this.#bytes), store, growing: true };
+    this.#name = ref.session;
+    return this.#session;
+  }
+
+  preview(
+    store: number,
+    pyramid: VoxelPyramid,
+    ref: GuideRef,
+    to: PointMm,
+    signal: { readonly aborted: boolean },
+  ): GuidePreviewAnswer {
+    const { guide } = this.open(store, pyramid, ref);
+    const until: number[] = [];
+    return previewGuide(guide, to, (front) => {
+      until[front] ??= performance.now() + (PATIENCE_MS[front] ?? 0);
+      return signal.aborted || performance.now() > until[front]!;
+    });
+  }
+
+  /** Lets the fronts grow for some milliseconds. */
+  grow(): void {
+    const session = this.#session;
+    if (!session?.growing) return;
+    const until = performance.now() + SLICE_MS;
+    // A fault stops the growth; the next preview meets it again and reports it to the person who asked.
+    session.growing = false;
+    session.growing = growGuideFronts(session.guide, () => performance.now() > until);
+  }
+
+  close(session: string): void {
+    if (this.#name === session) this.#session = null;
+  }
+
+  forget(store: number): void {
+    if (this.#session?.store === store) this.#session = null;
+  }
+}

@@ -1,0 +1,100 @@
+import type { BrickCache } from "#main/engine/brick-cache.ts";
+import { type CachedPyramid, cachedPyramid } from "#main/engine/cached-pyramid.ts";
+import { GuideSessions } from "#main/engine/guide-sessions.ts";
+import type { EngineTasks, StoreRef, TaskKind } from "#main/engine/tasks.ts";
+import { TraceContexts } from "#main/engine/trace-contexts.ts";
+import type { SolvedCurve } from "#shared/api/engine.ts";
+import { TautlineError } from "#shared/errors.ts";
+import { snap } from "#shared/tracing/guide/snap.ts";
+import { solveStrand } from "#shared/tracing/solve-strand.ts";
+import type { TracedCurve } from "#shared/tracing/strand-request.ts";
+import { scanHistogram } from "#shared/volume/scan-histogram.ts";
+import { section } from "#shared/volume/section.ts";
+import { film, strip } from "#shared/volume/strip.ts";
+import { surfacePoints } from "#shared/volume/surface-points.ts";
+import { valueAt } from "#shared/volume/value-at.ts";
+
+/** Bins of the histogram that is shown. */
+const BINS = 256;
+
+type Signal = { readonly aborted: boolean };
+type Input<K extends TaskKind> = EngineTasks[K]["input"];
+
+/** A worker's bench: its open stores and sessions, and what it does for each kind of task. */
+export class TaskRunner {
+  readonly #cache: BrickCache;
+  readonly #stores = new Map<number, CachedPyramid>();
+  readonly #contexts: TraceContexts;
+  readonly guides: GuideSessions;
+
+  constructor(cache: BrickCache, ridgeBytes: number, frontBytes: number) {
+    this.#cache = cache;
+    this.#contexts = new TraceContexts(ridgeBytes);
+    this.guides = new GuideSessions(this.#contexts, frontBytes);
+  }
+
+  run(kind: TaskKind, store: StoreRef | null, input: unknown, signal: Signal): EngineTasks[TaskKind]["answer"] {
+    if (kind === "figures") return this.#cache.figures();
+    if (store === null) throw new TautlineError("internal", "A task came without its scan.", { what: `${kind} without store` });
+    if (kind === "forget") return this.#forget(store.number);
+    const pyramid = this.#pyramid(store);
+    switch (kind) {
+      case "section":
+        return section(pyramid, input as Input<"section">, signal);
+      case "strip":
+        return strip(pyramid, input as Input<"strip">, signal);
+      case "film":
+        return film(pyramid, input as Input<"film">, signal);
+      case "surface":
+        return surfacePoints(pyramid, input as Input<"surface">, signal);
+      case "value":
+        return valueAt(pyramid, input as Input<"value">);
+      case "histogram":
+        return scanHistogram(pyramid, store.volume.range, BINS, signal);
+      case "snap": {
+        const request = input as Input<"snap">;
+        return snap(this.#contexts.of(store.number, pyramid, request.polarity), request, signal);
+      }
+      case "solve": {
+        const { strands, parameters } = input as Input<"solve">;
+        const context = this.#contexts.of(store.number, pyramid, parameters.polarity);
+        return { curves: strands.map((strand) => curveOf(solveStrand(pyramid, strand, parameters, signal, context))) };
+      }
+      case "open-guide":
+        this.guides.open(store.number, pyramid, input as Input<"open-guide">);
+        return null;
+      case "preview-guide": {
+        const { guide, to } = input as Input<"preview-guide">;
+        return this.guides.preview(store.number, pyramid, guide, to, signal);
+      }
+    }
+  }
+
+  /** Closes a store's files and drops what was made of it. */
+  #forget(store: number): null {
+    this.guides.forget(store);
+    this.#contexts.forget(store);
+    this.#stores.get(store)?.close();
+    this.#stores.delete(store);
+    return null;
+  }
+
+  #pyramid(store: StoreRef): CachedPyramid {
+    let pyramid = this.#stores.get(store.number);
+    if (!pyramid) {
+      pyramid = cachedPyramid(this.#cache, store.folder, store.volume, store.number);
+      this.#stores.set(store.number, pyramid);
+    }
+    return pyramid;
+  }
+}
+
+function curveOf(curve: TracedCurve): SolvedCurve {
+  return {
+    points: Array.from(curve.points),
+    radii: Array.from(curve.radii, (radius) => (Number.isNaN(radius) ? null : radius)),
+    madeBy: curve.madeBy,
+    imageFit: curve.imageFit,
+    followed: curve.followed,
+  };
+}

@@ -1,0 +1,84 @@
+import type { CacheFigures, CacheMemory } from "#main/engine/brick-cache.ts";
+import type {
+  FilmHeader,
+  FilmRequest,
+  GuidePreviewAnswer,
+  HistogramAnswer,
+  SectionHeader,
+  SectionRequest,
+  SnapAnswer,
+  SnapRequest,
+  SolvedCurve,
+  SolveRequest,
+  StripHeader,
+  StripRequest,
+  SurfaceHeader,
+  SurfaceRequest,
+  ValueAnswer,
+} from "#shared/api/engine.ts";
+import type { BinaryFrame } from "#shared/api/frame.ts";
+import type { SpecimenVolume } from "#shared/api/specimen.ts";
+import type { ErrorBody } from "#shared/errors.ts";
+import type { PointMm } from "#shared/geometry/types.ts";
+import type { TraceParameters } from "#shared/tracing/strand-request.ts";
+
+/** A specimen's store as workers know it; a store that is forgotten and opened again has another number. */
+export interface StoreRef {
+  readonly number: number;
+  /** The specimen's folder. */
+  readonly folder: string;
+  readonly volume: SpecimenVolume;
+}
+
+/** A guide session; complete, so that any worker can make it (again) from this alone. */
+export interface GuideRef {
+  readonly session: string;
+  readonly from: PointMm;
+  readonly parameters: TraceParameters;
+}
+
+/** What a worker computes: input and answer of each kind of task. */
+export interface EngineTasks {
+  section: { input: SectionRequest; answer: BinaryFrame<SectionHeader> };
+  strip: { input: StripRequest; answer: BinaryFrame<StripHeader> };
+  film: { input: FilmRequest; answer: BinaryFrame<FilmHeader> };
+  surface: { input: SurfaceRequest; answer: BinaryFrame<SurfaceHeader> };
+  value: { input: PointMm; answer: ValueAnswer };
+  histogram: { input: null; answer: HistogramAnswer };
+  snap: { input: SnapRequest; answer: SnapAnswer };
+  solve: { input: SolveRequest; answer: { curves: readonly SolvedCurve[] } };
+  "open-guide": { input: GuideRef; answer: null };
+  "preview-guide": { input: { guide: GuideRef; to: PointMm }; answer: GuidePreviewAnswer };
+  figures: { input: null; answer: CacheFigures };
+  forget: { input: null; answer: null };
+}
+
+export type TaskKind = keyof EngineTasks;
+
+/** Messages to a worker. */
+export type ToWorker =
+  | {
+      readonly type: "run";
+      readonly id: number;
+      readonly kind: TaskKind;
+      readonly store: StoreRef | null;
+      readonly input: unknown;
+    }
+  | { readonly type: "close-guide"; readonly session: string };
+
+/** Messages from a worker. */
+export type FromWorker =
+  | { readonly type: "ready" }
+  | { readonly type: "done"; readonly id: number; readonly answer: unknown }
+  | { readonly type: "failed"; readonly id: number; readonly error: ErrorBody };
+
+/** What a worker is started with. */
+export interface WorkerStart {
+  readonly worker: number;
+  readonly memory: CacheMemory;
+  /** shape [workers]; the id of the task that the worker of that number is to stop. */
+  readonly stop: SharedArrayBuffer;
+  /** Bytes this worker may keep for ridge tiles and grey values, and for the fronts of guide sessions. */
+  readonly ridgeBytes: number;
+  readonly frontBytes: number;
+}
