@@ -2,7 +2,7 @@
 // which neither the page nor the sandbox allows. `node test/tools/make-schema-check.mjs` writes the file anew; a test compares.
 import { readFileSync, writeFileSync } from "node:fs";
 import { fileURLToPath } from "node:url";
-import Ajv2020 from "ajv/dist/2020.js";
+import { Ajv2020 } from "ajv/dist/2020.js";
 import standaloneCode from "ajv/dist/standalone/index.js";
 
 const at = (path) => fileURLToPath(new URL(`../../${path}`, import.meta.url));
@@ -12,7 +12,7 @@ export const CHECK_PATH = at("shared/formats/chordae/schema-check.generated.ts")
 /** The source text of the compiled check. It must import nothing: keywords that need a helper of the library are refused. */
 export function makeSchemaCheck() {
   const schema = JSON.parse(readFileSync(SCHEMA_PATH, "utf8"));
-  const ajv = new Ajv2020.default({
+  const ajv = new Ajv2020({
     code: { source: true, esm: true, lines: true },
     strict: true,
     allowUnionTypes: true,

@@ -1,5 +1,5 @@
 import { readFileSync } from "node:fs";
-import Ajv2020 from "ajv/dist/2020.js";
+import { Ajv2020 } from "ajv/dist/2020.js";
 import { describe, expect, it } from "vitest";
 import { validate } from "#shared/formats/chordae/schema-check.generated.ts";
 import { sampleFile } from "#test/shared/formats/chordae/sample-file.ts";
@@ -16,7 +16,7 @@ describe("the compiled check of the tree file's schema", () => {
   });
 
   it("judges as the schema library itself does", () => {
-    const live = new Ajv2020.default({ allowUnionTypes: true, strictTypes: false }).compile(
+    const live = new Ajv2020({ allowUnionTypes: true, strictTypes: false }).compile(
       JSON.parse(readFileSync(SCHEMA_PATH, "utf8")),
     );
     const values: unknown[] = [sampleFile(), {}, null, [], { ...sampleFile(), trees: [{}] }, { ...sampleFile(), volume: 3 }];
