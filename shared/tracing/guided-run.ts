@@ -1,0 +1,111 @@
+import type { Vec3 } from "#shared/geometry/types.ts";
+import { centreCurve } from "#shared/tracing/centring.ts";
+import { ridgeNoiseFloor } from "#shared/tracing/cost.ts";
+import { pointFits } from "#shared/tracing/image-fit.ts";
+import { localToIndex } from "#shared/tracing/local-frame.ts";
+import { ridgeAtVoxel } from "#shared/tracing/pin-ridge.ts";
+import { arcLengths, interpolateAlong, medianOf, resample, runningMedian } from "#shared/tracing/polyline.ts";
+import { measureHalfWidths, radiiOf } from "#shared/tracing/radius.ts";
+import { finestSpacing } from "#shared/tracing/ridge/scales.ts";
+import { smoothInto } from "#shared/tracing/smooth.ts";
+import type { TraceContext } from "#shared/tracing/trace-context.ts";
+
+/** A stretch followed in the image, centred and measured. Millimetres along the voxel axes. */
+export interface MeasuredCurve {
+  /** shape [n, 3]. */
+  readonly points: Float64Array;
+  /** shape [n]; NaN = below resolution. */
+  readonly radii: Float64Array;
+  /** shape [n], 0 to 1. */
+  readonly fits: Float64Array;
+}
+
+/** Points across a bend: the curve is centred at steps of a voxel, or a quarter of a thick string's radius. */
+function knotStep(context: TraceContext, radii: Float64Array): number {
+  const typical = medianOf([...radii].filter(Number.isFinite));
+  return Math.max(finestSpacing(context.pyramid, 0), 0.25 * typical);
+}
+
+/**
+ * Centres a path in its string and measures it: rounds of centring with the radii of the ridge's scales, then with the
+ * measured half widths.
+ * @param path shape [n, 3], from voxel to voxel, n >= 2. @param from, to where the curve begins and ends exactly.
+ */
+export function centrePath(
+  context: TraceContext,
+  path: Float64Array,
+  from: Vec3,
+  to: Vec3,
+  nodeRadiiMm: readonly [number, number],
+  fwhmMm: number | null,
+): MeasuredCurve {
+  const level = context.workingLevel;
+  const grid = context.pyramid.levels[level]!;
+  const n = path.length / 3;
+  const scaleRadii = new Float64Array(n);
+  for (let i = 0; i < n; i++) {
+    const index = localToIndex(grid, [path[3 * i]!, path[3 * i + 1]!, path[3 * i + 2]!]);
+    scaleRadii[i] = ridgeAtVoxel(context, level, Math.round(index[0]), Math.round(index[1]), Math.round(index[2])).radiusMm;
+  }
+  const steady = runningMedian(scaleRadii, 6);
+  const stepMm = knotStep(context, steady);
+  const start = path.slice();
+  start.set(from, 0);
+  start.set(to, 3 * (n - 1));
+  const arc = arcLengths(start);
+  const pathStep = n > 1 ? arc[n - 1]! / (n - 1) : stepMm;
+  smoothInto(
+    start,
+    new Float64Array(n).fill(1),
+    new Float64Array(n).fill(((2 * finestSpacing(context.pyramid, level)) / pathStep) ** 4),
+    start,
+  );
+  const points = resample(start, stepMm);
+  const options = {
+    sign: context.sign,
+    noiseFloor: ridgeNoiseFloor(context.levels),
+    stepMm,
+    nodeRadiiMm,
+  } as const;
+  const least = 0.75 * finestSpacing(context.pyramid, 0);
+  let curve = centreCurve(
+    context.sampler,
+    { points, radii: interpolateAlong(arcLengths(start), steady, arcLengths(points)) },
+    { ...options, rounds: 3 },
+  );
+  const first = measureHalfWidths(context.sampler, curve.points, curve.radii, context.sign);
+  const half = Math.max(3, Math.round(medianOf([...curve.radii]) / stepMm));
+  const measured = runningMedian(first.halfWidths, 2 * half);
+  const refined = curve.radii.map((guess, i) =>
+    Number.isFinite(measured[i]!) ? Math.max(least, Math.min(Math.max(measured[i]!, 0.5 * guess), 1.6 * guess)) : guess,
+  );
+  curve = centreCurve(context.sampler, { points: curve.points, radii: refined }, { ...options, rounds: 2 });
+  const final = measureHalfWidths(context.sampler, curve.points, curve.radii, context.sign);
+  return {
+    points: curve.points,
+    radii: radiiOf(final, stepMm, fwhmMm),
+    fits: pointFits(final.contrasts, context.levels.noise),
+  };
+}
+
+/** Radii along a curve that is not to be moved. @param points shape [n, 3], millimetres along the voxel axes. */
+export function radiiAlong(context: TraceContext, points: Float64Array, fwhmMm: number | null): Float64Array {
+  const level = context.workingLevel;
+  const grid = context.pyramid.levels[level]!;
+  const guesses = (at: Float64Array) => {
+    const out = new Float64Array(at.length / 3);
+    for (let i = 0; i < out.length; i++) {
+      const index = localToIndex(grid, [at[3 * i]!, at[3 * i + 1]!, at[3 * i + 2]!]);
+      const inside = index.map((value, axis) => Math.min(Math.max(Math.round(value), 0), grid.size[axis]! - 1));
+      out[i] = ridgeAtVoxel(context, level, inside[0]!, inside[1]!, inside[2]!).radiusMm;
+    }
+    return out;
+  };
+  const stepMm = knotStep(context, guesses(points));
+  const knots = resample(points, stepMm);
+  let radii = runningMedian(guesses(knots), 6);
+  const first = runningMedian(measureHalfWidths(context.sampler, knots, radii, context.sign).halfWidths, 4);
+  radii = radii.map((guess, i) => (Number.isFinite(first[i]!) ? Math.min(Math.max(first[i]!, 0.5 * guess), 1.6 * guess) : guess));
+  const measured = radiiOf(measureHalfWidths(context.sampler, knots, radii, context.sign), stepMm, fwhmMm);
+  return interpolateAlong(arcLengths(knots), measured, arcLengths(points));
+}

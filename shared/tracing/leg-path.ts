@@ -1,0 +1,99 @@
+import type { Vec3 } from "#shared/geometry/types.ts";
+import { costScale, createCostTiles } from "#shared/tracing/cost.ts";
+import { indexToLocal, localToIndex } from "#shared/tracing/local-frame.ts";
+import { createTileDomain, indexOfVoxel, tileBox, voxelOfIndex } from "#shared/tracing/minimal-path/domain.ts";
+import { meetFronts } from "#shared/tracing/minimal-path/meet.ts";
+import { ridgeNearPin } from "#shared/tracing/pin-ridge.ts";
+import { arcLengths } from "#shared/tracing/polyline.ts";
+import type { StopSignal, TraceContext } from "#shared/tracing/trace-context.ts";
+
+/** Most voxels of a box; its arrays are touched only where the fronts go. */
+const MOST_BOX_VOXELS = 24 * 2 ** 20;
+/** Most voxels that the two fronts of one leg settle. */
+const MOST_SETTLED = 4_000_000;
+/** Distance of the waypoints through which a path found on a coarser level is followed on the finer one. */
+const WINDOW_MM = 2.5;
+
+/** Places along a path, shape [n, 3], millimetres along the voxel axes, voxel centres; null when no path was found. */
+export type LegPath = Float64Array | null;
+
+/**
+ * The cheapest path between two places on a level. The box comes from the two places alone and grows while the path leans on
+ * a side of it; what is too large for one box is first followed on the next coarser level and then in windows.
+ * @param expectedRidge how strongly the string answers at its pins, grey values.
+ */
+export function legPath(
+  context: TraceContext,
+  level: number,
+  from: Vec3,
+  to: Vec3,
+  expectedRidge: number,
+  signal: StopSignal,
+): LegPath {
+  const { pyramid } = context;
+  const grid = pyramid.levels[level]!;
+  const a = localToIndex(grid, from);
+  const b = localToIndex(grid, to);
+  const apart = Math.hypot(to[0] - from[0], to[1] - from[1], to[2] - from[2]);
+  const costs = createCostTiles(pyramid, context.ridges, level, costScale(context.levels, context.sign, expectedRidge));
+  for (let marginMm = Math.max(1, 0.3 * apart); ; marginMm *= 2) {
+    const low = ([0, 1, 2] as const).map((k) => Math.min(a[k], b[k]) - marginMm / grid.spacing[k]) as [number, number, number];
+    const high = ([0, 1, 2] as const).map((k) => Math.max(a[k], b[k]) + marginMm / grid.spacing[k]) as [number, number, number];
+    const box = tileBox(grid, low, high);
+    if (box.size[0] * box.size[1] * box.size[2] > MOST_BOX_VOXELS) break;
+    const domain = createTileDomain(pyramid, costs, box);
+    const met = meetFronts(domain, voxelOfIndex(domain, a), voxelOfIndex(domain, b), MOST_SETTLED, () => signal.aborted);
+    if (met.kind === "over-budget") break;
+    if (met.kind !== "met") return null;
+    const points = new Float64Array(met.path.length * 3);
+    let leans = false;
+    met.path.forEach((voxel, i) => {
+      const index = indexOfVoxel(domain, voxel);
+      points.set(indexToLocal(grid, index), 3 * i);
+      leans ||= ([0, 1, 2] as const).some(
+        (k) =>
+          (index[k] === box.start[k] && box.start[k] > 0) ||
+          (index[k] === box.start[k] + box.size[k] - 1 && box.start[k] + box.size[k] < grid.size[k]),
+      );
+    });
+    if (!leans) return points;
+  }
+  if (level + 1 >= pyramid.levels.length) return null;
+  const coarse = legPath(context, level + 1, from, to, expectedRidge, signal);
+  return coarse && inWindows(context, level, from, to, coarse, expectedRidge, signal);
+}
+
+/** Follows a path of the coarser level on `level`, from one waypoint on it to the next. */
+function inWindows(
+  context: TraceContext,
+  level: number,
+  from: Vec3,
+  to: Vec3,
+  coarse: Float64Array,
+  expectedRidge: number,
+  signal: StopSignal,
+): LegPath {
+  const arc = arcLengths(coarse);
+  const length = arc[arc.length - 1]!;
+  const windows = Math.max(1, Math.round(length / WINDOW_MM));
+  if (windows === 1) return coarse;
+  const parts: Float64Array[] = [];
+  let at = 0;
+  let start = from;
+  for (let w = 1; w <= windows; w++) {
+    while (at < arc.length - 1 && arc[at]! < (length * w) / windows) at++;
+    const waypoint: Vec3 = [coarse[3 * at]!, coarse[3 * at + 1]!, coarse[3 * at + 2]!];
+    const end = w === windows ? to : ridgeNearPin(context, level, waypoint).at;
+    const part = legPath(context, level, start, end, expectedRidge, signal);
+    if (!part) return signal.aborted ? null : coarse;
+    parts.push(w === 1 ? part : part.subarray(3));
+    start = end;
+  }
+  const out = new Float64Array(parts.reduce((sum, part) => sum + part.length, 0));
+  let offset = 0;
+  for (const part of parts) {
+    out.set(part, offset);
+    offset += part.length;
+  }
+  return out;
+}

@@ -1,0 +1,202 @@
+import { TautlineError } from "#shared/errors.ts";
+import { roundMm, type Vec3 } from "#shared/geometry/types.ts";
+import { distance } from "#shared/geometry/vec3.ts";
+import { centrePath, type MeasuredCurve, radiiAlong } from "#shared/tracing/guided-run.ts";
+import { meanFit } from "#shared/tracing/image-fit.ts";
+import { type LegPath, legPath } from "#shared/tracing/leg-path.ts";
+import { fromLocal, localToIndex, toLocal } from "#shared/tracing/local-frame.ts";
+import { passNearPin } from "#shared/tracing/pass-near-pin.ts";
+import { followableStrength, type PinRidge, ridgeAtVoxel, ridgeNearPin } from "#shared/tracing/pin-ridge.ts";
+import { arcLengths, interpolateAlong, resample } from "#shared/tracing/polyline.ts";
+import type { StrandRequest, TracedCurve, TraceParameters } from "#shared/tracing/strand-request.ts";
+import { createTraceContext, type StopSignal, type TraceContext } from "#shared/tracing/trace-context.ts";
+import type { MadeBy } from "#shared/trees/document.ts";
+import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
+
+/** A leg must stand out from the noise along this share of its length, or it counts as not followed. */
+const FOLLOWED_SHARE = 0.5;
+
+interface Stretch {
+  readonly how: MadeBy;
+  readonly points: Float64Array;
+  readonly radii: Float64Array;
+  /** Image fit, and the length it stands for; null where the image was not asked. */
+  readonly fit: number | null;
+}
+
+/**
+ * The committed centreline of one strand, a function of pins, scan and parameters alone: the same numbers whatever was
+ * computed before. Points are half the smallest voxel spacing apart, rounded to 1e-6 mm; the ends are exactly the nodes;
+ * each pin lies within one local diameter. A stretch that the image does not show is straight and makes `followed` false.
+ * @param context kept between calls to reuse ridge tiles; must belong to the same pyramid and polarity.
+ * @throws TautlineError `cancelled` when the signal is aborted; `misuse` when the legs do not match the pins.
+ */
+export function solveStrand(
+  pyramid: VoxelPyramid,
+  request: StrandRequest,
+  parameters: TraceParameters,
+  signal: StopSignal = { aborted: false },
+  context: TraceContext = createTraceContext(pyramid, parameters.polarity),
+): TracedCurve {
+  const pins = [request.from, ...request.via, request.to];
+  const legs = request.legs ?? pins.slice(1).map(() => "guide" as const);
+  if (legs.length !== pins.length - 1) {
+    const what = `a strand with ${pins.length} pins has ${pins.length - 1} legs, found ${legs.length}`;
+    throw new TautlineError("misuse", what, { what });
+  }
+  const local = pins.map((pin) => toLocal(pyramid.grid, pin));
+  const outStepMm = Math.min(...pyramid.grid.spacing) / 2;
+  let followed = true;
+  const paths: (LegPath | "straight")[] = [];
+  const ridges = local.map((pin, i) =>
+    legs[i] === "guide" || legs[i - 1] === "guide" ? ridgeNearPin(context, context.workingLevel, pin) : null,
+  );
+  for (let leg = 0; leg < legs.length; leg++) {
+    if (legs[leg] === "straight") {
+      paths.push("straight");
+      continue;
+    }
+    const path = guidedLeg(context, local, ridges, legs, leg, signal);
+    stopIfAborted(signal);
+    if (!path) followed = false;
+    paths.push(path ?? "straight");
+  }
+  const stretches: Stretch[] = [];
+  for (let leg = 0; leg < paths.length; ) {
+    if (paths[leg] === "straight") {
+      stretches.push(straightStretch(local[leg]!, local[leg + 1]!, outStepMm));
+      leg++;
+      continue;
+    }
+    let end = leg;
+    while (end < paths.length && paths[end] !== "straight") end++;
+    stretches.push(guidedStretch(context, local, ridges, paths.slice(leg, end) as Float64Array[], leg, parameters, outStepMm));
+    stopIfAborted(signal);
+    leg = end;
+  }
+  return assemble(pyramid, request, stretches, followed);
+}
+
+function stopIfAborted(signal: StopSignal): void {
+  if (signal.aborted) throw new TautlineError("cancelled", "Tracing was stopped.", { what: "trace" });
+}
+
+/** The path of one guided leg, or null when the image does not show a string between its pins. */
+function guidedLeg(
+  context: TraceContext,
+  local: readonly Vec3[],
+  ridges: readonly (PinRidge | null)[],
+  legs: readonly string[],
+  leg: number,
+  signal: StopSignal,
+): LegPath {
+  // Pins between two guided legs only show the way; nodes and pins beside a straight leg are where the path must begin.
+  const anchor = (pin: number, otherLeg: number): Vec3 => (legs[otherLeg] === "guide" ? ridges[pin]!.at : local[pin]!);
+  const from = anchor(leg, leg - 1);
+  const to = anchor(leg + 1, leg + 1);
+  if (distance(from, to) === 0) return null;
+  const expected = Math.min(ridges[leg]!.strength, ridges[leg + 1]!.strength);
+  const path = legPath(context, context.workingLevel, from, to, expected, signal);
+  if (!path || path.length < 6) return path && Float64Array.of(...from, ...to);
+  return followedShare(context, path) >= FOLLOWED_SHARE ? path : null;
+}
+
+/** Share of a path's points whose ridge answer is that of a string. */
+function followedShare(context: TraceContext, path: Float64Array): number {
+  const grid = context.pyramid.levels[context.workingLevel]!;
+  const least = followableStrength(context);
+  const n = path.length / 3;
+  let count = 0;
+  for (let i = 0; i < n; i++) {
+    const index = localToIndex(grid, [path[3 * i]!, path[3 * i + 1]!, path[3 * i + 2]!]);
+    const x = Math.round(index[0]);
+    const y = Math.round(index[1]);
+    const z = Math.round(index[2]);
+    if (ridgeAtVoxel(context, context.workingLevel, x, y, z).strength >= least) count++;
+  }
+  return count / n;
+}
+
+function straightStretch(from: Vec3, to: Vec3, stepMm: number): Stretch {
+  const points = resample(Float64Array.of(...from, ...to), stepMm);
+  return { how: "straight", points, radii: new Float64Array(points.length / 3).fill(Number.NaN), fit: null };
+}
+
+/** Legs that follow each other in the image, as one smooth curve from its first pin to its last. */
+function guidedStretch(
+  context: TraceContext,
+  local: readonly Vec3[],
+  ridges: readonly (PinRidge | null)[],
+  paths: readonly Float64Array[],
+  firstLeg: number,
+  parameters: TraceParameters,
+  stepMm: number,
+): Stretch {
+  const lastPin = firstLeg + paths.length;
+  const joined = new Float64Array(paths.reduce((sum, path) => sum + path.length, -3 * (paths.length - 1)));
+  let at = 0;
+  paths.forEach((path, i) => {
+    const part = i === 0 ? path : path.subarray(3);
+    joined.set(part, at);
+    at += part.length;
+  });
+  const nodeRadii = [ridges[firstLeg]!.radiusMm, ridges[lastPin]!.radiusMm] as const;
+  const curve: MeasuredCurve = centrePath(context, joined, local[firstLeg]!, local[lastPin]!, nodeRadii, parameters.blurFwhmMm);
+  let points = resample(curve.points, stepMm);
+  const arc = arcLengths(curve.points);
+  const share = arcLengths(points);
+  const whole = share[share.length - 1]!;
+  const onKnots = whole > 0 ? share.map((s) => (s / whole) * arc[arc.length - 1]!) : share;
+  const radii = interpolateAlong(arc, curve.radii, onKnots);
+  for (let pin = firstLeg + 1; pin < lastPin; pin++) points = passNearPin(points, radii, local[pin]!, ridges[pin]!.radiusMm);
+  return { how: "guide", points, radii, fit: meanFit(curve.points, curve.fits) };
+}
+
+/** One curve from its stretches, in the specimen's frame and rounded; stretches share their joints. */
+function assemble(pyramid: VoxelPyramid, request: StrandRequest, stretches: readonly Stretch[], followed: boolean): TracedCurve {
+  const total = stretches.reduce((sum, stretch) => sum + stretch.radii.length - 1, 1);
+  const points = new Float64Array(3 * total);
+  const radii = new Float64Array(total).fill(Number.NaN);
+  const madeBy: [number, number, MadeBy][] = [];
+  let at = 0;
+  let fitSum = 0;
+  let fitLength = 0;
+  for (const stretch of stretches) {
+    const n = stretch.radii.length;
+    for (let i = 0; i < n; i++) {
+      const p = fromLocal(pyramid.grid, [stretch.points[3 * i]!, stretch.points[3 * i + 1]!, stretch.points[3 * i + 2]!]);
+      for (let c = 0; c < 3; c++) points[3 * (at + i) + c] = roundMm(p[c]!);
+      if (Number.isFinite(stretch.radii[i]!)) radii[at + i] = roundMm(stretch.radii[i]!);
+    }
+    const last = madeBy[madeBy.length - 1];
+    if (last && last[2] === stretch.how) last[1] = at + n - 1;
+    else madeBy.push([at, at + n - 1, stretch.how]);
+    if (stretch.fit !== null) {
+      const length = arcLengths(stretch.points)[n - 1]!;
+      fitSum += stretch.fit * length;
+      fitLength += length;
+    }
+    at += n - 1;
+  }
+  points.set(request.from, 0);
+  points.set(request.to, 3 * (total - 1));
+  const imageFit = followed && fitLength > 0 ? roundMm(fitSum / fitLength) : null;
+  return { points, radii, madeBy, imageFit, followed };
+}
+
+/**
+ * Radii along a finished centreline that has none, millimetres rounded to 1e-6; NaN = below resolution or no edge.
+ * @param points shape [n, 3], order xyz, millimetres in the specimen's frame; borrowed, not moved.
+ */
+export function measureRadii(
+  pyramid: VoxelPyramid,
+  points: Float64Array,
+  parameters: TraceParameters,
+  context: TraceContext = createTraceContext(pyramid, parameters.polarity),
+): Float64Array {
+  const local = new Float64Array(points.length);
+  for (let i = 0; i < points.length; i += 3) local.set(toLocal(pyramid.grid, [points[i]!, points[i + 1]!, points[i + 2]!]), i);
+  return radiiAlong(context, local, parameters.blurFwhmMm).map((radius) =>
+    Number.isFinite(radius) ? roundMm(radius) : Number.NaN,
+  );
+}

@@ -1,0 +1,48 @@
+import { type GreyLevels, greyLevels } from "#shared/tracing/grey-levels.ts";
+import { createRidgeTiles, type RidgeTiles } from "#shared/tracing/ridge/ridge-tiles.ts";
+import { finestSpacing } from "#shared/tracing/ridge/scales.ts";
+import { createSampler, type Sampler } from "#shared/tracing/sampler.ts";
+import type { Polarity } from "#shared/tracing/strand-request.ts";
+import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
+
+/** What all tracing on one scan and polarity shares. Caches only: no answer depends on what is in it. */
+export interface TraceContext {
+  readonly pyramid: VoxelPyramid;
+  readonly sign: 1 | -1;
+  readonly levels: GreyLevels;
+  readonly ridges: RidgeTiles;
+  readonly sampler: Sampler;
+  /** The level that paths are searched on. */
+  readonly workingLevel: number;
+}
+
+/** Something that tells long work to stop; an AbortSignal is one. */
+export interface StopSignal {
+  readonly aborted: boolean;
+}
+
+/** Finest strings have 0.1 to 0.15 mm: two to three voxels of this size see them, finer ones add only work. */
+const WORKING_SPACING_MM = 0.05;
+
+/** The context of a scan and polarity; keep it as long as the scan is in use: it holds the ridge tiles already made. */
+export function createTraceContext(
+  pyramid: VoxelPyramid,
+  polarity: Polarity,
+  ridges: RidgeTiles = createRidgeTiles(pyramid, polarity),
+): TraceContext {
+  return {
+    pyramid,
+    sign: polarity === "bright" ? 1 : -1,
+    levels: greyLevels(pyramid, polarity),
+    ridges,
+    sampler: createSampler(pyramid),
+    workingLevel: workingLevel(pyramid),
+  };
+}
+
+/** The coarsest level that still shows the finest strings (spacing at most 0.05 mm), or the scan itself. */
+export function workingLevel(pyramid: Pick<VoxelPyramid, "levels">): number {
+  let level = 0;
+  while (level + 1 < pyramid.levels.length && finestSpacing(pyramid, level + 1) <= WORKING_SPACING_MM * (1 + 1e-9)) level++;
+  return level;
+}
