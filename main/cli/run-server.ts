@@ -66,7 +66,7 @@ async function runLoopback(program: ProgramFiles, options: ServerOptions, hasEle
     graceMs: options.graceMs,
     onAllLeft: () => ended.abort(),
     onFault,
-    abilities: () => serverAbilities(root),
+    abilities: serverAbilities,
   }).catch(async (error) => {
     const instance = isTautlineError(error, "held-elsewhere") ? await findInstance(state, root) : null;
     if (!instance) throw error;

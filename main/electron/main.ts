@@ -48,7 +48,7 @@ try {
     graceMs: 0,
     onAllLeft: () => {},
     onFault,
-    abilities: () => desktopAbilities(root),
+    abilities: desktopAbilities,
   });
   disposers.add(() => workplace.close());
 

@@ -28,7 +28,7 @@ export interface WorkplaceOptions {
   readonly onAllLeft: () => void;
   readonly onFault: (error: unknown) => void;
   /** Called once the lease is ours. */
-  readonly abilities: () => Promise<Abilities>;
+  readonly abilities: (library: Library) => Promise<Abilities>;
 }
 
 /** The library opened for writing with everything the handler needs. */
@@ -61,7 +61,7 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
       onRemove: async (specimen) => abilities.forgetSpecimen?.(specimen),
     });
     await library.removeLeftovers();
-    const abilities = await options.abilities();
+    const abilities = await options.abilities(library);
     const jobs = new Jobs({ now, newId, emit, onFault });
     const windows = new WindowLife({
       graceMs: options.graceMs,
@@ -80,7 +80,7 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
           }),
       },
       folders: folders(),
-      exports: exportTrees({ library, files, version: options.version, now }),
+      exports: exportTrees({ library, files, softwareVersion: options.version }),
       events,
       page: pageFiles(options.page),
       windows,
