@@ -1,3 +1,4 @@
+import { extendedPyramid } from "#shared/tracing/extended-pyramid.ts";
 import { type GreyLevels, greyLevels } from "#shared/tracing/grey-levels.ts";
 import { createRidgeTiles, type RidgeTiles } from "#shared/tracing/ridge/ridge-tiles.ts";
 import { finestSpacing } from "#shared/tracing/ridge/scales.ts";
@@ -7,6 +8,7 @@ import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 
 /** What all tracing on one scan and polarity shares. Caches only: no answer depends on what is in it. */
 export interface TraceContext {
+  /** The scan's pyramid, continued to the widest scale. */
   readonly pyramid: VoxelPyramid;
   readonly sign: 1 | -1;
   readonly levels: GreyLevels;
@@ -26,10 +28,11 @@ const WORKING_SPACING_MM = 0.05;
 
 /** The context of a scan and polarity; keep it as long as the scan is in use: it holds the ridge tiles already made. */
 export function createTraceContext(
-  pyramid: VoxelPyramid,
+  scan: VoxelPyramid,
   polarity: Polarity,
-  ridges: RidgeTiles = createRidgeTiles(pyramid, polarity),
+  ridges: RidgeTiles = createRidgeTiles(extendedPyramid(scan), polarity),
 ): TraceContext {
+  const pyramid = extendedPyramid(scan);
   return {
     pyramid,
     sign: polarity === "bright" ? 1 : -1,

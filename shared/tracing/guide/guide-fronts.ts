@@ -12,7 +12,7 @@ const BYTES_PER_VOXEL = 13;
 /** Shares of a session's bytes for the working level, the next coarser one and the one after that. */
 const SHARES = [0.6, 0.25, 0.15];
 /** Voxels settled between two looks at whether to stop. */
-const BITE = 512;
+const BITE = 64;
 
 /** A front of a session on one level. */
 export interface GuideFront {
