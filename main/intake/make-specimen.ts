@@ -4,7 +4,7 @@ import { fullDisk, sourceChanged } from "#main/intake/intake-faults.ts";
 import { type IntakeProgress, ProgressMeter } from "#main/intake/progress.ts";
 import type { SliceSource } from "#main/intake/slice-source.ts";
 import { spooled } from "#main/intake/spool.ts";
-import { storeBytes, writeStore, writeWhole } from "#main/intake/store/store-writer.ts";
+import { slabPlanesFor, storeBytes, writeStore, writeWhole } from "#main/intake/store/store-writer.ts";
 import { diskFiles, type WriteFiles } from "#main/intake/store/write-files.ts";
 import { surveySource } from "#main/intake/survey-source.ts";
 import type { Handedness, SpecimenFacts, SpecimenRecord } from "#shared/api/specimen.ts";
@@ -34,6 +34,8 @@ export interface SpecimenOptions {
   readonly synthetic: boolean;
   /** Width of the scan's blur where it is known (generated data); null = not estimated. */
   readonly blurFwhmMm?: number | null;
+  /** Slices held at once (2, 4 ... 32); absent: as many as suit the slices' size. */
+  readonly slabPlanes?: number;
 }
 
 /** What the surroundings of an intake provide; all may be left out. */
@@ -88,6 +90,7 @@ export async function makeSpecimen(
     if (mustSpool) source = await spooled(given, join(work, "unpacked.raw"), files, hooks.signal);
     const stored = await settleType(source, meter, hooks.signal);
     meter.begin("Taking in the scan");
+    const planeBytes = grid.size[0] * grid.size[1] * BYTES_OF_DTYPE[stored.dtype];
     const made = await writeStore({
       source,
       grid,
@@ -95,6 +98,7 @@ export async function makeSpecimen(
       mirror: options.mirror === true,
       name: options.name,
       folder: join(work, STORE_NAME),
+      slabPlanes: options.slabPlanes ?? slabPlanesFor(planeBytes),
       files,
       ...(hooks.signal ? { signal: hooks.signal } : {}),
       at,

@@ -22,6 +22,8 @@ export interface StoreOrder {
   readonly name: string;
   /** Folder to make; its parent exists. */
   readonly folder: string;
+  /** Slices held at once, see {@link slabPlanesFor}. */
+  readonly slabPlanes: number;
   readonly files: WriteFiles;
   readonly signal?: AbortSignal;
   at(point: CrashPoint): void | Promise<void>;
@@ -68,8 +70,7 @@ export async function writeStore(order: StoreOrder): Promise<StoreResult> {
   const sink: StoreSink = { files, folder, dtype, folders, at: order.at, count };
   await files.makeFolder(folder);
   const levels = pyramidLevels(grid);
-  const planeBytes = grid.size[0] * grid.size[1] * BYTES_OF_DTYPE[dtype];
-  const writer = new LevelWriter(sink, levels, 0, slabPlanesFor(planeBytes), gatherBuffers(dtype));
+  const writer = new LevelWriter(sink, levels, 0, order.slabPlanes, gatherBuffers(dtype));
   const survey = new ValueSurvey(grid.size[0] * grid.size[1] * grid.size[2]);
   const hash = createHash("sha256");
   try {

@@ -1,13 +1,19 @@
 import { createHash } from "node:crypto";
-import { readdir, readFile } from "node:fs/promises";
+import { readdir, readFile, stat } from "node:fs/promises";
 import { join } from "node:path";
 import FileSystemStore from "@zarrita/storage/fs";
 import { describe, expect, it } from "vitest";
 import * as zarr from "zarrita";
+import { sourceFromSlabs } from "#main/intake/generated-source.ts";
 import { makeSpecimen, type SpecimenOptions } from "#main/intake/make-specimen.ts";
 import { openScan } from "#main/intake/open-scan.ts";
+import type { IntakeProgress } from "#main/intake/progress.ts";
+import { slabPlanesFor, storeBytes } from "#main/intake/store/store-writer.ts";
 import { parseSpecimenRecord } from "#shared/api/specimen-record.ts";
-import { bytesOf, scratchFolder, seeded, writeNrrd } from "#test/main/intake/written-by-hand.ts";
+import { plainGrid } from "#shared/volume/grid.ts";
+import { gatherVoxels } from "#test/main/intake/gather-voxels.ts";
+import { breachesOfOmeZarr } from "#test/main/intake/ome-zarr/check-ome-zarr.ts";
+import { bytesOf, type HandNrrd, SETTLED, scratchFolder, seeded, writeNrrd } from "#test/main/intake/written-by-hand.ts";
 
 const options = (library: string): SpecimenOptions => ({
   library,
@@ -89,4 +95,191 @@ describe("a specimen made of an NRRD", () => {
       spacing = spacing.map((s, axis) => (halve[axis] ? 2 * s : s));
     }
   });
+
+  const small = (more: Partial<HandNrrd>): HandNrrd => ({
+    sizes: [4, 3, 5],
+    type: "ushort",
+    dtype: "uint16",
+    values: ramp(60),
+    ...more,
+  });
+
+  async function takeIn(folder: string, order: HandNrrd, more: Partial<SpecimenOptions> = {}) {
+    const source = await openScan(await writeNrrd(folder, "a.nrrd", order));
+    try {
+      const made = await makeSpecimen(source, { ...options(folder), ...more });
+      return { ...made, store: join(folder, "specimens", made.record.id, "scan.ome.zarr") };
+    } finally {
+      await source.close();
+    }
+  }
+
+  it.each([
+    ["one shard", [40, 30, 20]],
+    ["several shards and levels", [530, 70, 66]],
+  ] as const)("of %s keeps the published rules of OME-Zarr 0.5", async (_, sizes) => {
+    const { store } = await takeIn(await scratchFolder(), small({ sizes, values: ramp(sizes[0] * sizes[1] * sizes[2]) }));
+    expect(await breachesOfOmeZarr(store)).toEqual([]);
+  });
+
+  it("has each level's scale and translation where the voxels' centres are", async () => {
+    const lines = [...SETTLED.filter((line) => !line.startsWith("space origin")), "space origin: (1,2,3)"];
+    const { store } = await takeIn(await scratchFolder(), small({ sizes: [130, 65, 3], values: ramp(130 * 65 * 3), lines }));
+    const group = JSON.parse(await readFile(join(store, "zarr.json"), "utf8"));
+    const transforms = group.attributes.ome.multiscales[0].datasets.map(
+      (d: { coordinateTransformations: unknown }) => d.coordinateTransformations,
+    );
+    // By hand: a halved axis has its first centre half a child voxel further in; z is never halved (3 slices).
+    const expected = [
+      [
+        [0.04, 0.04, 0.04],
+        [3, 2, 1],
+      ],
+      [
+        [0.04, 0.08, 0.08],
+        [3, 2.02, 1.02],
+      ],
+    ];
+    expect(transforms.length).toBe(expected.length);
+    for (const [k, [scale, translation]] of expected.entries()) {
+      expect(transforms[k][0]).toMatchObject({ type: "scale" });
+      for (const axis of [0, 1, 2]) {
+        expect(transforms[k][0].scale[axis]).toBeCloseTo(scale![axis]!, 12);
+        expect(transforms[k][1].translation[axis]).toBeCloseTo(translation![axis]!, 12);
+      }
+    }
+  });
+
+  it("is read back by the program with the same voxels, spacing and frame, oblique or not", async () => {
+    for (const directions of ["(0.04,0,0) (0,0.04,0) (0,0,0.04)", "(0,0.04,0) (-0.04,0,0) (0,0,0.04)"]) {
+      const folder = await scratchFolder();
+      const lines = ["space: RAS", `space directions: ${directions}`, "space origin: (1,2,3)", 'space units: "mm" "mm" "mm"'];
+      const { record } = await takeIn(folder, small({ lines }));
+      const again = await openScan(join(folder, "specimens", record.id));
+      expect(await gatherVoxels(again)).toEqual(ramp(60));
+      const { header } = again;
+      expect([header.headerSpacing, header.origin, header.direction, header.frame]).toEqual([
+        record.volume.spacing,
+        record.volume.origin,
+        record.volume.direction,
+        "LPS",
+      ]);
+      expect(record.volume.origin).toEqual([-1, -2, 3]);
+    }
+  });
+
+  // The first of int16, uint16, float32 that holds every value exactly; else float32 with its greatest rounding; else refused.
+  it.each([
+    ["int8", "int8", [-128, 127], "int16", /int8 are kept as int16; no value changes/],
+    ["int32", "int", [-5, 30000], "int16", /no value changes/],
+    ["uint32", "uint", [0, 32768, 65535], "uint16", /no value changes/],
+    ["uint32", "uint", [0, 65536, 16777216], "float32", /no value changes/],
+    ["int32", "int", [-1, 40000], "float32", /no value changes/],
+    ["uint32", "uint", [0, 16777217], "float32", /change by up to 1\./],
+    ["int64", "int64", [-32768, 32767], "int16", /no value changes/],
+    ["uint64", "uint64", [0, 60000], "uint16", /no value changes/],
+    ["uint64", "uint64", [0, 2 ** 52 + 3], "float32", /change by up to 3\./],
+    ["float64", "double", [-3, 5], "int16", /no value changes/],
+    ["float64", "double", [0.5, 1.25], "float32", /no value changes/],
+    ["float64", "double", [0.1, 7], "float32", /change by up to 1\.49e-9/],
+  ] as const)("of %s voxels (%s %j) is kept as %s and says so", async (dtype, type, sample, stored, sentence) => {
+    for (const gzip of [false, true]) {
+      const values = Array.from({ length: 60 }, (_, k) => sample[k % sample.length]!);
+      const { record, store } = await takeIn(await scratchFolder(), small({ dtype, type, values, gzip }));
+      expect(record.volume.dtype).toBe(stored);
+      expect(record.conversions.join(" ")).toMatch(sentence);
+      const expected = stored === "float32" ? values.map(Math.fround) : values;
+      expect((await level(store, "0")).data).toEqual(expected);
+    }
+  });
+
+  it("of values beyond float32 is refused", async () => {
+    const order = small({ dtype: "float64", type: "double", values: ramp(60).map((v) => (v === 7 ? 1e39 : v)) });
+    await expect(takeIn(await scratchFolder(), order)).rejects.toThrow(/expected values that float32 can hold/);
+  });
+
+  it("reads the voxels of its source once, twice where the stored type depends on them", async () => {
+    const kept = await takeIn(await scratchFolder(), small({}));
+    expect(kept.bytesRead).toBe(120);
+    const judged = await takeIn(await scratchFolder(), small({ dtype: "int32", type: "int" }));
+    expect(judged.bytesRead).toBe(2 * 240);
+  });
+
+  it("of a mirrored scan has its slices in reverse order in the same frame, from a compressed file too", async () => {
+    for (const gzip of [false, true]) {
+      const folder = await scratchFolder();
+      const { record, store } = await takeIn(folder, small({ gzip }), { mirror: true });
+      const planes = [4, 3, 2, 1, 0].flatMap((z) => ramp(60).slice(z * 12, z * 12 + 12));
+      expect((await level(store, "0")).data).toEqual(planes);
+      expect(record.volume.sha256).toBe(
+        createHash("sha256")
+          .update(bytesOf(planes, "uint16", true))
+          .digest("hex"),
+      );
+      expect(record.volume.direction).toEqual([1, 0, 0, 0, 1, 0, 0, 0, 1]);
+      expect(record.conversions.join(" ")).toMatch(/reversed/);
+      expect(await readdir(join(folder, "specimens", record.id))).toEqual(["scan.ome.zarr", "specimen.json"]);
+      expect(await readdir(join(folder, "unfinished"))).toEqual([]);
+    }
+  });
+
+  it("takes the person's spacing, and turns the origin by the same factor where the unit was missing", async () => {
+    const lines = ["space: LPS", "space directions: (40,0,0) (0,40,0) (0,0,40)", "space origin: (400,0,-80)"];
+    const { record } = await takeIn(await scratchFolder(), small({ lines }), { spacing: [0.04, 0.04, 0.04] });
+    expect(record.volume.spacing).toEqual([0.04, 0.04, 0.04]);
+    expect(record.volume.origin.map((v) => Number(v.toFixed(9)))).toEqual([0.4, 0, -0.08]);
+  });
+
+  it("of thick planes is written in thinner slabs with the same bytes", async () => {
+    // Budgets are computed by hand: 32 planes up to 256 MiB, fewer above, never fewer than two.
+    expect([2 ** 20, 2 ** 23, 2 ** 24, 2 ** 25, 2 ** 30].map(slabPlanesFor)).toEqual([32, 32, 16, 8, 2]);
+    const random = seeded(3);
+    const grid = plainGrid([70, 50, 90], [0.04, 0.04, 0.04]);
+    const voxels = Uint16Array.from({ length: 70 * 50 * 90 }, () => Math.floor(random() * 65536));
+    const stores: Record<string, string>[] = [];
+    for (const slabPlanes of [32, 8, 2]) {
+      const folder = await scratchFolder();
+      const source = sourceFromSlabs("v", grid, "uint16", (z0, z1, out) => out.set(voxels.subarray(z0 * 3500, z1 * 3500)));
+      await makeSpecimen(source, { ...options(folder), slabPlanes });
+      const store = join(folder, "specimens", options(folder).id, "scan.ome.zarr");
+      const files: Record<string, string> = {};
+      for (const name of (await readdir(store, { recursive: true })).map(String).sort())
+        if (/\/c\//.test(name) && !(await stat(join(store, name))).isDirectory())
+          files[name] = createHash("sha256")
+            .update(await readFile(join(store, name)))
+            .digest("hex");
+      stores.push(files);
+    }
+    expect(Object.keys(stores[0]!).length).toBeGreaterThan(2);
+    expect(stores[1]).toEqual(stores[0]);
+    expect(stores[2]).toEqual(stores[0]);
+  });
+
+  it("takes the disk room that was foretold, and at most 1.42 times its voxels when every side is 500 or more", async () => {
+    const { bytesWritten } = await takeIn(await scratchFolder(), small({ sizes: [130, 65, 33], values: ramp(130 * 65 * 33) }));
+    expect(storeBytes(plainGrid([130, 65, 33], [0.04, 0.04, 0.04]), "uint16")).toBe(bytesWritten);
+    for (const [size, most] of [
+      [[500, 500, 500], 1.42],
+      [[1000, 1000, 1000], 1.3],
+      [[2000, 2000, 1000], 1.2],
+    ] as const)
+      expect(storeBytes(plainGrid(size, [0.02, 0.02, 0.02]), "uint16") / (size[0] * size[1] * size[2] * 2)).toBeLessThan(most);
+  });
+
+  it("tells its progress from 0 to 1 with rate and time left by a given clock", async () => {
+    const folder = await scratchFolder();
+    const grid = plainGrid([8, 8, 10], [0.04, 0.04, 0.04]);
+    const told: IntakeProgress[] = [];
+    let clock = 0;
+    const source = sourceFromSlabs("v", grid, "uint8", (_a, _b, out) => out.fill(1));
+    await makeSpecimen(source, options(folder), { now: () => (clock += 500), onProgress: (p) => told.push(p) });
+    expect(told[0]).toEqual({ progress: 0, step: "Taking in the scan", bytesPerSecond: null, secondsLeft: null });
+    expect(told.at(-1)).toMatchObject({ progress: 1, secondsLeft: 0 });
+    expect(told.map((p) => p.progress)).toEqual([...told.map((p) => p.progress)].sort((a, b) => a - b));
+    expect(told.some((p) => p.bytesPerSecond !== null && p.bytesPerSecond > 0 && p.secondsLeft !== null)).toBe(true);
+  });
 });
+
+function ramp(count: number): number[] {
+  return Array.from({ length: count }, (_, k) => k % 50);
+}
