@@ -142,7 +142,7 @@ export class Outbox {
         }
         const final = isFinal(error);
         this.say(this.stateAfter(error, final));
-        if (final) return;
+        if (final || this.closing.signal.aborted) return;
         this.wake = new AbortController();
         await this.places.wait(pause, this.wake.signal);
         pause = Math.min(pause * 2, LONGEST_WAIT_MS);
@@ -163,7 +163,8 @@ export class Outbox {
       }
     }
     if (this.mustReconcile) return this.reconcileAgain();
-    if (this.storeBehind && this.fresh.length > 0) {
+    if (this.storeBehind) {
+      if (this.fresh.length === 0) return this.allSaved();
       await this.sendPastStore();
       return true;
     }
@@ -174,7 +175,10 @@ export class Outbox {
       await this.places.store.acknowledge(waiting.base.seq + waiting.lines.length);
       return true;
     }
-    if (this.fresh.length > 0) return true;
+    return this.fresh.length > 0 || this.allSaved();
+  }
+
+  private allSaved(): false {
     this.unconfirmed = 0;
     this.say({ kind: "saved", at: this.savedAt });
     return false;
@@ -235,8 +239,10 @@ export class Outbox {
   /** Lets the browser's store have what went past it, when it works again. */
   private async catchUp(): Promise<void> {
     try {
-      await reconcile(this.places);
+      const result = await reconcile(this.places);
       this.storeBehind = false;
+      // Lines merely taken are those that this window sent past its store.
+      if (result.outcome === "replaced" || result.outcome === "rebuilt") this.places.reconciled(result);
     } catch {
       // Still failing; the journal has the lines.
     }

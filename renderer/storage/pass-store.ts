@@ -61,6 +61,13 @@ export class PassStore {
     await this.database.lines.where("[pass+state+seq]").between(first, last, true, true).modify({ state: "acknowledged" });
   }
 
+  /** Marks all lines after `seq` as waiting again: the journal has lost them (an older copy was put back). */
+  async unconfirmAfter(seq: number): Promise<void> {
+    const first = [this.pass, "acknowledged", seq + 1];
+    const last = [this.pass, "acknowledged", Infinity];
+    await this.database.lines.where("[pass+state+seq]").between(first, last, true, true).modify({ state: "waiting" });
+  }
+
   /** The outbox: lines that wait, with the line they follow. Null when none do. */
   async waiting(): Promise<WaitingLines | null> {
     const { passes, lines } = this.database;

@@ -68,8 +68,9 @@ async function settle(places: ReconcilePlaces, stored: StoredLog, disk: DiskPart
       await store.acknowledge(disk.view.head.seq);
       return { outcome: "agreed" };
     case "send":
-      // Lines whose answer was lost on the way are on disk already.
+      // Lines whose answer was lost on the way are on disk already; lines that an older copy of the journal lacks go again.
       await store.acknowledge(disk.view.head.seq);
+      await store.unconfirmAfter(disk.view.head.seq);
       return { outcome: "agreed" };
     case "take": {
       const added = disk.lines.slice(relation.from - disk.from);
@@ -121,20 +122,30 @@ function diskPart(answer: LogAnswer, from: number): DiskPart {
 async function keepBoth(places: ReconcilePlaces, stored: StoredLog, common: number): Promise<Reconciled> {
   const { store, sender, now, branchName } = places;
   const own = stored.lines.slice(common + 1);
+  // Read first, so that nothing but this browser's store can fail between keeping the branch and taking the journal.
+  const disk = await sender.readLog(0);
   let branch: KeptBranch | null = null;
   let aside: number | undefined;
   if (holdsWork(own, common + 1)) {
     const t = now();
     const name = branchName(t);
-    aside = (await store.setAside(name, t)).id;
+    aside = await asideOnce(store, stored, name, t);
     const pass = await sender.keepBranch(stored.lines, name);
     branch = { pass, name, common, lines: own.length };
   }
-  const disk = await sender.readLog(0);
   await store.replaceWithDisk(disk.epoch, disk.lines);
   // On disk as a pass of its own: the copy here has done its service.
   if (aside !== undefined) await store.dropRecovered(aside);
   return { outcome: "replaced", branch };
+}
+
+/** Sets the stored log aside, unless an earlier try did. */
+async function asideOnce(store: PassStore, stored: StoredLog, name: string, t: number): Promise<number | undefined> {
+  const last = stored.lines[stored.lines.length - 1];
+  const same = (await store.recovered()).find(
+    ({ lines }) => lines.length === stored.lines.length && lines[lines.length - 1] === last,
+  );
+  return (same ?? (await store.setAside(name, t))).id;
 }
 
 async function rebuild(places: ReconcilePlaces, stored: StoredLog): Promise<Reconciled> {
