@@ -1,5 +1,4 @@
-import { createRidgeTiles, RIDGE_TILE_VOXELS } from "#shared/tracing/ridge/ridge-tiles.ts";
-import { createSampler } from "#shared/tracing/sampler.ts";
+import { RIDGE_TILE_VOXELS } from "#shared/tracing/ridge/ridge-tiles.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 import { createTraceContext, type TraceContext } from "#shared/tracing/trace-context.ts";
 import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
@@ -29,8 +28,7 @@ export class TraceContexts {
       const share = this.#bytes / MOST_CONTEXTS;
       const tiles = Math.max(32, Math.floor((0.7 * share) / BYTES_PER_TILE));
       const bricks = Math.max(32, Math.floor((0.3 * share) / BYTES_PER_BRICK));
-      const made = createTraceContext(pyramid, polarity, createRidgeTiles(pyramid, polarity, tiles));
-      context = { ...made, sampler: createSampler(pyramid, bricks) };
+      context = createTraceContext(pyramid, polarity, { ridgeTiles: tiles, bricks });
     }
     this.#kept.set(key, context);
     if (this.#kept.size > MOST_CONTEXTS) this.#kept.delete(this.#kept.keys().next().value!);

@@ -60,7 +60,8 @@ export function measureHalfWidths(sampler: Sampler, points: Float64Array, radii:
   const halfWidths = new Float64Array(n);
   const contrasts = new Float64Array(n);
   for (let i = 0; i < n; i++) {
-    contrasts[i] = Math.max(0, smoothInside[i]! - smoothOutside[i]!);
+    // Not a number where the scan holds none.
+    contrasts[i] = Math.max(0, smoothInside[i]! - smoothOutside[i]!) || 0;
     halfWidths[i] =
       contrasts[i]! > 0 ? edgeRadius(profiles[i]!, (smoothInside[i]! + smoothOutside[i]!) / 2, rim[i]!) : Number.NaN;
   }

@@ -26,19 +26,23 @@ export interface StopSignal {
 /** Finest strings have 0.1 to 0.15 mm: two to three voxels of this size see them, finer ones add only work. */
 const WORKING_SPACING_MM = 0.05;
 
+/** How much a context may keep; no answer depends on it. */
+export interface TraceCaches {
+  /** Ridge tiles per kind (164 KB each, two kinds). */
+  readonly ridgeTiles?: number;
+  /** Bricks of grey values (144 KB each). */
+  readonly bricks?: number;
+}
+
 /** The context of a scan and polarity; keep it as long as the scan is in use: it holds the ridge tiles already made. */
-export function createTraceContext(
-  scan: VoxelPyramid,
-  polarity: Polarity,
-  ridges: RidgeTiles = createRidgeTiles(extendedPyramid(scan), polarity),
-): TraceContext {
+export function createTraceContext(scan: VoxelPyramid, polarity: Polarity, caches: TraceCaches = {}): TraceContext {
   const pyramid = extendedPyramid(scan);
   return {
     pyramid,
     sign: polarity === "bright" ? 1 : -1,
     levels: greyLevels(pyramid, polarity),
-    ridges,
-    sampler: createSampler(pyramid),
+    ridges: createRidgeTiles(pyramid, polarity, caches.ridgeTiles),
+    sampler: createSampler(pyramid, caches.bricks),
     workingLevel: workingLevel(pyramid),
   };
 }

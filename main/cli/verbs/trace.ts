@@ -1,0 +1,140 @@
+import { stat } from "node:fs/promises";
+import { basename, dirname } from "node:path";
+import { wordOption } from "#main/cli/number-option.ts";
+import { type OpenVoxels, openVoxels } from "#main/cli/open-voxels.ts";
+import { readTreeFile } from "#main/cli/read-tree-file.ts";
+import { givenSpacing, SPACING_HELP, SPACING_OPTIONS } from "#main/cli/spacing-option.ts";
+import { traceFile } from "#main/cli/trace-file.ts";
+import type { Verb, VerbCall } from "#main/cli/verb.ts";
+import { diskFiles } from "#main/node/disk-files.ts";
+import { writeWhole } from "#main/node/whole-file.ts";
+import { TautlineError, unreadable } from "#shared/errors.ts";
+import { type ChordaeFile, frameOf } from "#shared/formats/chordae/chordae-file.ts";
+import { writeChordaeFile } from "#shared/formats/chordae/write-chordae-file.ts";
+import { isInside } from "#shared/volume/grid.ts";
+
+/** `tautline trace`: turns pins and a scan into traced strands. */
+export const trace: Verb = {
+  name: "trace",
+  summary: "follow the strings of a scan between the pins of a tree file",
+  help: `tautline trace <volume or specimen folder> --pins P --out T [options] [--json]
+
+Fills in the centrelines, radii and image fit of strands and cross-links that have none, from the pins of P and the scan, and
+radii where only these are missing. Nothing else of P is changed. The result depends on pins, scan and parameters alone.
+Exit 1 when a strand could not be followed and was written straight.
+
+  --pins P            tree file whose strands need not have points
+  --out T             tree file to write; written whole or not at all
+  --polarity P        bright or dark strings (as the values suggest when not given)
+${SPACING_HELP}
+  --other-scan        trace even though P belongs to another scan`,
+  options: {
+    pins: { type: "string" },
+    out: { type: "string" },
+    polarity: { type: "string" },
+    ...SPACING_OPTIONS,
+    "other-scan": { type: "boolean" },
+  },
+  positionals: [1, 1],
+  async run(call) {
+    const { positionals, options, say } = call;
+    const began = performance.now();
+    const pinsPath = pathOption(options, "pins");
+    const outPath = pathOption(options, "out");
+    const polarityGiven = wordOption(options, "polarity", ["bright", "dark"] as const);
+    const given = givenSpacing(options);
+    await refuseUnwritable(outPath);
+    const pins = await readTreeFile(pinsPath);
+    const voxels = await openVoxels(positionals[0]!, given, call);
+    try {
+      refuseOtherScan(pins, pinsPath, voxels, options["other-scan"] === true, say);
+      refuseOutside(pins, pinsPath, voxels);
+      if (pins.frame !== undefined && frameOf(pins) !== voxels.pyramid.grid.frame)
+        say(
+          `${pinsPath}: its places are in frame ${frameOf(pins)}, the scan's in ${voxels.pyramid.grid.frame}; taken as they are.`,
+        );
+      const polarity = polarityGiven ?? voxels.suggestedPolarity;
+      if (!polarityGiven) say(`strings are taken to be ${polarity}; --polarity says otherwise.`);
+      const blurFwhmMm = voxels.blurFwhmMm !== undefined ? voxels.blurFwhmMm : (pins.volume?.blurFwhm ?? null);
+      say(
+        blurFwhmMm === null
+          ? "blur of the scan unknown: radii stay as measured."
+          : `radii corrected for a blur of ${blurFwhmMm} mm.`,
+      );
+      const traced = await traceFile(pins, voxels.pyramid, { polarity, blurFwhmMm }, call.io.signal, say);
+      await writeWhole(diskFiles(), outPath, new TextEncoder().encode(writeChordaeFile(traced.file)));
+      const seconds = (performance.now() - began) / 1000;
+      const lines = traced.strands.map(
+        ({ id, length, meanRadius, imageFit }) =>
+          `${id}  ${length.toFixed(3)} mm  radius ${meanRadius?.toFixed(3) ?? "-"}  fit ${imageFit?.toFixed(2) ?? "straight"}`,
+      );
+      lines.push(
+        `${traced.strands.length} traced, ${traced.failed.length} could not be followed, ${seconds.toFixed(1)} s: ${outPath}`,
+      );
+      return {
+        json: { strands: traced.strands, failed: traced.failed, seconds },
+        text: lines.join("\n"),
+        exit: traced.failed.length > 0 ? 1 : 0,
+      };
+    } finally {
+      await voxels.close();
+    }
+  },
+};
+
+function pathOption(options: VerbCall["options"], name: string): string {
+  const value = options[name];
+  if (typeof value === "string" && value !== "") return value;
+  const what = `trace needs --${name} with the name of a tree file.`;
+  throw new TautlineError("misuse", what, { what });
+}
+
+/** Said before hours of work rather than after. */
+async function refuseUnwritable(path: string): Promise<void> {
+  const folder = await stat(dirname(path)).catch(() => undefined);
+  const found = await stat(path).catch(() => undefined);
+  if (folder?.isDirectory() && !found?.isDirectory()) return;
+  const what = found?.isDirectory()
+    ? `--out ${path} is a folder; name a file.`
+    : `--out ${path}: there is no folder ${dirname(path)}.`;
+  throw new TautlineError("misuse", what, { what });
+}
+
+function refuseOtherScan(
+  pins: ChordaeFile,
+  path: string,
+  voxels: OpenVoxels,
+  allowed: boolean,
+  say: (line: string) => void,
+): void {
+  const expected = pins.volume?.sha256 ?? null;
+  if (expected === null) {
+    say(`${path}: does not say which scan it belongs to; taken as belonging to this one.`);
+    return;
+  }
+  const related = [expected, pins.volume?.derivedFrom?.sha256];
+  if (related.includes(voxels.sha256) || (voxels.derivedFrom !== null && related.includes(voxels.derivedFrom))) return;
+  if (allowed) {
+    say(`${path}: belongs to another scan; traced on this one as asked.`);
+    return;
+  }
+  const message = `${path}: its trees belong to the scan ${expected.slice(0, 12)}..., this scan is ${voxels.sha256.slice(0, 12)}... Name the right scan, or give --other-scan to trace on this one.`;
+  throw new TautlineError("other-scan", message, { file: path, expected, found: voxels.sha256 });
+}
+
+function refuseOutside(pins: ChordaeFile, path: string, voxels: OpenVoxels): void {
+  const { grid } = voxels.pyramid;
+  const refuse = (where: string, p: readonly number[]) =>
+    unreadable(
+      basename(path),
+      "places inside the scan",
+      `(${p.join(", ")}) mm, which is outside`,
+      where,
+      "Check voxel size, unit and frame of scan and file.",
+    );
+  const lines = [...pins.trees.flatMap((tree) => tree.strands), ...(pins.crossLinks ?? [])];
+  for (const tree of pins.trees)
+    for (const node of tree.nodes) if (!isInside(grid, node.position)) throw refuse(`node ${node.id}`, node.position);
+  for (const line of lines)
+    for (const [i, pin] of (line.via ?? []).entries()) if (!isInside(grid, pin)) throw refuse(`${line.id}.via[${i}]`, pin);
+}
