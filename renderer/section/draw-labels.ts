@@ -1,7 +1,7 @@
 import { clipToSlab } from "#renderer/section/clip-to-slab.ts";
 import { planeCrossings } from "#renderer/section/plane-crossings.ts";
 import { FADE_MM, type ProjectedScene, type ProjectedStrand } from "#renderer/section/project-scene.ts";
-import type { SectionInk } from "#renderer/section/section-ink.ts";
+import { nameColour, type SectionInk } from "#renderer/section/section-ink.ts";
 import type { TextOnPicture } from "#renderer/section/text-on-picture.ts";
 import type { PaneSize } from "#renderer/section/view-plane.ts";
 
@@ -14,7 +14,7 @@ export function drawLabels(
   halfSlabMm: number,
   ink: SectionInk,
 ): void {
-  const places = new Map<string, { name: string; x: number; y: number; colour: string; rank: number }>();
+  const places = new Map<string, LabelPlace & { name: string; colour: string; rank: number }>();
   for (const strand of scene.strands) {
     const place = labelPlace(strand, mmPerPx, halfSlabMm, size);
     if (place === null) continue;
@@ -24,26 +24,28 @@ export function drawLabels(
     if (before !== undefined && before.rank <= rank) continue;
     places.set(strand.drawn.name, { name: strand.drawn.name, ...place, colour: ink.trees[strand.drawn.mark.colour]!, rank });
   }
-  for (const { name, x, y, colour } of [...places.values()].sort((a, b) => a.rank - b.rank)) {
-    text.beside(name, x, y, 12, colour);
+  for (const { name, x, y, gap, colour } of [...places.values()].sort((a, b) => a.rank - b.rank)) {
+    text.beside(name, x, y, gap, nameColour(ink, colour));
   }
 }
 
-function labelPlace(
-  strand: ProjectedStrand,
-  mmPerPx: number,
-  halfSlabMm: number,
-  size: PaneSize,
-): { x: number; y: number } | null {
+interface LabelPlace {
+  readonly x: number;
+  readonly y: number;
+  /** Room to keep between the place and the text, CSS pixels. */
+  readonly gap: number;
+}
+
+function labelPlace(strand: ProjectedStrand, mmPerPx: number, halfSlabMm: number, size: PaneSize): LabelPlace | null {
   const crossing = planeCrossings(strand.seen, strand.drawn.radii, mmPerPx).find((place) => shown(place, size));
-  if (crossing !== undefined) return { x: crossing.x, y: crossing.y };
+  if (crossing !== undefined) return { x: crossing.x, y: crossing.y, gap: Math.min(60, crossing.longPx + 8) };
   let longest: readonly number[] = [];
   for (const run of clipToSlab(strand.seen, halfSlabMm, FADE_MM)) {
     if (run.band === 0 && run.points.length > longest.length) longest = run.points;
   }
   if (longest.length < 4) return null;
   const middle = 2 * Math.floor(longest.length / 4);
-  const place = { x: longest[middle]!, y: longest[middle + 1]! };
+  const place = { x: longest[middle]!, y: longest[middle + 1]!, gap: 12 };
   return shown(place, size) ? place : null;
 }
 

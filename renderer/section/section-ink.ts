@@ -3,6 +3,9 @@ import { coloursFrom, type ViewColours } from "#shared/marks/colours.ts";
 /** Colours of the pane, and the casing that keeps lines readable on any grey. */
 export interface SectionInk extends ViewColours {
   readonly casing: string;
+  /** Texts on the picture, and their casing: pictures are dark in every theme. */
+  readonly text: string;
+  readonly textCasing: string;
   readonly font: string;
 }
 
@@ -11,7 +14,18 @@ export function sectionInk(element: Element): SectionInk {
   const style = getComputedStyle(element);
   const colours = coloursFrom((name) => style.getPropertyValue(name));
   const family = style.fontFamily || "sans-serif";
-  return { ...colours, casing: casingFor(colours.ink), font: `500 12px ${family}` };
+  return {
+    ...colours,
+    casing: casingFor(colours.ink),
+    text: "#f4f2ee",
+    textCasing: "rgb(0 0 0 / 75%)",
+    font: `500 12px ${family}`,
+  };
+}
+
+/** A tree's colour for its name on the picture: itself where it is light enough to read there. */
+export function nameColour(ink: SectionInk, colour: string): string {
+  return relativeLightness(colour) > 0.45 ? colour : ink.text;
 }
 
 /** Dark casing under light lines, light casing under dark ones: lines and texts are on the ink's side of grey. */

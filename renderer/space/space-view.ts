@@ -69,7 +69,7 @@ export class SpaceView {
   readonly available: boolean;
   readonly element = document.createElement("div");
   private content = EMPTY_SPACE;
-  private orbit: Orbit = orbitAround(EMPTY_SPACE.bounds.centre, EMPTY_SPACE.bounds.radiusMm);
+  private orbit: Orbit = orbitAround(EMPTY_SPACE.bounds.centre, EMPTY_SPACE.bounds.radiusMm, 1);
   private drawn: DrawnStrand[] = [];
   private readonly note = document.createElement("p");
   private readonly renderer: WebGLRenderer | null;
@@ -153,7 +153,7 @@ export class SpaceView {
     if (now.pins !== before.pins) this.spoil("pins");
     if (now.plane !== before.plane || now.picture !== before.picture) this.spoil("plane");
     if (now.surface !== before.surface) this.spoil("surface");
-    if (now.bounds !== before.bounds && !this.touched) this.orbit = orbitAround(now.bounds.centre, now.bounds.radiusMm);
+    if (now.bounds !== before.bounds && !this.touched) this.orbit = this.whole();
     this.say(now.caption);
     this.redraw();
   }
@@ -175,7 +175,7 @@ export class SpaceView {
 
   /** Shows everything, upright, from the front. */
   showAll(): void {
-    this.move(orbitAround(this.content.bounds.centre, this.content.bounds.radiusMm));
+    this.move(this.whole());
     this.touched = false;
   }
 
@@ -204,6 +204,12 @@ export class SpaceView {
     this.renderer?.dispose();
     this.renderer?.forceContextLoss();
     this.element.remove();
+  }
+
+  /** The view of everything in the pane as it is now. */
+  private whole(): Orbit {
+    const { centre, radiusMm } = this.content.bounds;
+    return orbitAround(centre, radiusMm, this.size.height === 0 ? 1 : this.size.width / this.size.height);
   }
 
   private move(orbit: Orbit): void {
@@ -296,6 +302,7 @@ export class SpaceView {
   private resize(): void {
     const { clientWidth: width, clientHeight: height } = this.element;
     this.size = { width, height };
+    if (!this.touched) this.orbit = this.whole();
     this.renderer?.setPixelRatio(globalThis.devicePixelRatio || 1);
     this.renderer?.setSize(width, height, false);
     this.spoil("nodes", "pins", "surface");

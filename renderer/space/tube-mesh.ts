@@ -8,7 +8,7 @@ export interface Tube {
   readonly radii: ArrayLike<number>;
   /** Linear red, green, blue, 0-1. */
   readonly colour: readonly [number, number, number];
-  /** Lengths of line and gap, millimetres; empty = unbroken. */
+  /** Lengths of line and gap, millimetres; empty = unbroken. Gaps show as dark bands. */
   readonly dashMm: readonly number[];
 }
 
@@ -20,7 +20,9 @@ export interface TubeMesh {
   readonly indices: Uint32Array;
 }
 
-const SIDES = 6;
+const SIDES = 8;
+/** Gaps of a line pattern are bands of this share of the colour: a tube in pieces would read as a broken string. */
+const GAP_SHARE = 0.28;
 
 /** One mesh of many tubes with open ends; points nearer together than `stepMm` are thinned out (ends stay). */
 export function tubeMesh(tubes: readonly Tube[], thinnestMm: number, stepMm: number): TubeMesh {
@@ -29,9 +31,9 @@ export function tubeMesh(tubes: readonly Tube[], thinnestMm: number, stepMm: num
   const colours: number[] = [];
   const indices: number[] = [];
   for (const tube of tubes) {
-    for (const piece of dashPieces(thinned(tube, thinnestMm, stepMm), tube.dashMm)) {
+    for (const { rings, gap } of dashPieces(thinned(tube, thinnestMm, stepMm), tube.dashMm)) {
       const first = positions.length / 3;
-      piece.forEach((ring, k) => {
+      rings.forEach((ring, k) => {
         for (let s = 0; s < SIDES; s++) {
           const angle = (2 * Math.PI * s) / SIDES;
           const c = Math.cos(angle);
@@ -40,7 +42,7 @@ export function tubeMesh(tubes: readonly Tube[], thinnestMm: number, stepMm: num
             const n = ring.u[axis]! * c + ring.w[axis]! * d;
             positions.push(ring.at[axis]! + n * ring.radius);
             normals.push(n);
-            colours.push(tube.colour[axis]!);
+            colours.push(tube.colour[axis]! * (gap ? GAP_SHARE : 1));
           }
           if (k === 0) continue;
           const a = first + (k - 1) * SIDES + s;
@@ -94,20 +96,23 @@ function thinned(tube: Tube, thinnestMm: number, stepMm: number): Ring[] {
   return rings;
 }
 
-/** The parts of a tube that a line pattern leaves, cut at ring level with one ring more at each cut. */
-function dashPieces(rings: readonly Ring[], dashMm: readonly number[]): Ring[][] {
-  if (dashMm.length === 0) return rings.length > 1 ? [[...rings]] : [];
-  const pieces: Ring[][] = [];
-  const total = rings[rings.length - 1]?.s ?? 0;
+interface Piece {
+  readonly rings: readonly Ring[];
+  readonly gap: boolean;
+}
+
+/** A tube cut into the lines and gaps of its pattern, with a ring at each cut. */
+function dashPieces(rings: readonly Ring[], dashMm: readonly number[]): Piece[] {
+  if (rings.length < 2) return [];
+  if (dashMm.length === 0) return [{ rings, gap: false }];
+  const pieces: Piece[] = [];
+  const total = rings[rings.length - 1]!.s;
   let start = 0;
   for (let k = 0; start < total; k++) {
-    const length = dashMm[k % dashMm.length]!;
-    if (k % 2 === 0) {
-      const end = Math.min(total, start + length);
-      const inner = rings.filter((ring) => ring.s > start && ring.s < end);
-      pieces.push([ringAt(rings, start), ...inner, ringAt(rings, end)]);
-    }
-    start += length;
+    const end = Math.min(total, start + dashMm[k % dashMm.length]!);
+    const inner = rings.filter((ring) => ring.s > start && ring.s < end);
+    pieces.push({ rings: [ringAt(rings, start), ...inner, ringAt(rings, end)], gap: k % 2 === 1 });
+    start = end;
   }
   return pieces;
 }
