@@ -21,7 +21,7 @@ export default defineConfig({
         extends: true,
         test: {
           name: "plain",
-          include: ["test/{shared,main,tools,contract,security}/**/*.test.ts"],
+          include: ["test/{shared,main,tools,contract}/**/*.test.ts"],
           environment: "node",
           testTimeout: 60_000,
         },

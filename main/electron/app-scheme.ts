@@ -1,11 +1,10 @@
 import { app, protocol } from "electron";
-import { APP_SCHEME } from "#main/electron/own-address.ts";
+import { APP_SCHEME, SCHEME_PRIVILEGES } from "#main/electron/own-address.ts";
 import type { Handler } from "#main/http/handler.ts";
 
-/** Makes the scheme a standard, secure one; once, before the app is ready. No bypass of the content rules. */
+/** Makes the scheme a standard, secure one; once, before the app is ready. */
 export function registerScheme(): void {
-  const privileges = { standard: true, secure: true, supportFetchAPI: true, stream: true };
-  protocol.registerSchemesAsPrivileged([{ scheme: APP_SCHEME, privileges }]);
+  protocol.registerSchemesAsPrivileged([{ scheme: APP_SCHEME, privileges: { ...SCHEME_PRIVILEGES } }]);
 }
 
 /** Answers the scheme's requests with the one handler. @returns undoes it */

@@ -6,8 +6,11 @@ export type RuledContents = Pick<WebContents, "setWindowOpenHandler"> & {
   on(event: string, listener: (event: Pick<Event, "preventDefault">, ...details: unknown[]) => void): unknown;
 };
 
-/** Keeps contents on the app's own pages: no other address in any frame, no new window, no guest page. */
-export function keepAtHome(contents: RuledContents): void {
+/**
+ * Keeps contents on the app's own pages: no other address in any frame, no new window, no guest page.
+ * @param askToOpen gets the address of a link that wanted a new window; the person is asked about the system's browser
+ */
+export function keepAtHome(contents: RuledContents, askToOpen: (address: string) => void): void {
   const refuseForeign = (event: Pick<Event, "preventDefault"> & { url?: string }, ...details: unknown[]) => {
     const address = event.url ?? (typeof details[0] === "string" ? details[0] : "");
     if (!isOwnAddress(address)) event.preventDefault();
@@ -16,7 +19,10 @@ export function keepAtHome(contents: RuledContents): void {
   contents.on("will-redirect", refuseForeign);
   contents.on("will-frame-navigate", refuseForeign);
   contents.on("will-attach-webview", (event) => event.preventDefault());
-  contents.setWindowOpenHandler(() => ({ action: "deny" }));
+  contents.setWindowOpenHandler(({ url }) => {
+    askToOpen(url);
+    return { action: "deny" };
+  });
 }
 
 /** Permissions a page may have. None: the program needs no camera, place, notification or device. */

@@ -6,6 +6,8 @@ import { hostBridge } from "#main/electron/bridge-host.ts";
 import { keepAtHome, refusePermissions } from "#main/electron/content-rules.ts";
 import { desktopAbilities } from "#main/electron/desktop-abilities.ts";
 import { Disposers } from "#main/electron/disposers.ts";
+import { externalOpening } from "#main/electron/external-opening.ts";
+import { openExternal } from "#main/electron/open-external.ts";
 import { APP_URL } from "#main/electron/own-address.ts";
 import { SCHEME_ACCESS } from "#main/electron/scheme-access.ts";
 import { windowOptions } from "#main/electron/window-options.ts";
@@ -25,7 +27,9 @@ registerScheme();
 if (!app.requestSingleInstanceLock()) app.exit(0);
 
 // Rules for every page and session there will ever be.
-app.on("web-contents-created", (_event, contents) => keepAtHome(contents));
+app.on("web-contents-created", (_event, contents) => {
+  keepAtHome(contents, (address) => void openExternal(address, externalOpening).catch(onFault));
+});
 app.on("session-created", (created) => refusePermissions(created));
 app.on("window-all-closed", () => app.quit());
 app.on("will-quit", (event) => {

@@ -13,10 +13,16 @@ export function externalAddress(address: string): string | null {
   return plain ? url.href : null;
 }
 
-/** Opens an address in the system's browser when it may be opened; the only place that does. Resolves false when it may not. */
-export async function openExternal(address: string, open: (address: string) => Promise<void>): Promise<boolean> {
+export interface ExternalOpening {
+  /** Asks the person; nothing leaves the program without a yes. */
+  confirm(address: string): Promise<boolean>;
+  open(address: string): Promise<void>;
+}
+
+/** Opens an address in the system's browser when it may be opened and the person says so; the only place that does. */
+export async function openExternal(address: string, { confirm, open }: ExternalOpening): Promise<boolean> {
   const allowed = externalAddress(address);
-  if (allowed === null) return false;
+  if (allowed === null || !(await confirm(allowed))) return false;
   await open(allowed);
   return true;
 }

@@ -1,6 +1,8 @@
 /** The app's own scheme and host; every page, script and request of the window has this address. */
 export const APP_SCHEME = "tautline";
 export const APP_HOST = "app";
+/** A standard, secure scheme, as pages, storage and fetch need it; the content policy applies to it as to any other. */
+export const SCHEME_PRIVILEGES = { standard: true, secure: true, supportFetchAPI: true, stream: true } as const;
 export const APP_URL = `${APP_SCHEME}://${APP_HOST}/`;
 
 /**
