@@ -15,7 +15,8 @@ export class WheelSteps {
     }
     if (Math.sign(deltaPx) !== Math.sign(this.travel)) this.travel = 0;
     this.travel += deltaPx;
-    const steps = Math.trunc(this.travel / SMOOTH_STEP_PX);
+    // + 0 takes the sign off a zero.
+    const steps = Math.trunc(this.travel / SMOOTH_STEP_PX) + 0;
     this.travel -= steps * SMOOTH_STEP_PX;
     return steps;
   }

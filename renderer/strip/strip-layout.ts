@@ -24,9 +24,11 @@ export function stripLayout(width: number, height: number): StripLayout {
   const y = WORD_PX;
   const rows = Math.max(0, height - 2 * WORD_PX);
   const room = Math.max(0, width - AXIS_PX - 2 * GAP_PX - 2);
-  const side = Math.max(0, Math.min(96, Math.floor(room * 0.3), rows));
+  const wanted = Math.max(0, Math.min(96, Math.floor(room * 0.3), rows));
   const profileWidth = Math.min(90, Math.floor(room * 0.28));
-  const stripWidth = Math.max(Math.min(LEAST_STRIP_PX, room), room - side - profileWidth);
+  // A narrow pane gives up the film first, then the profile keeps what the strip can spare.
+  const side = room - wanted - profileWidth < LEAST_STRIP_PX ? 0 : wanted;
+  const stripWidth = Math.max(0, room - side - profileWidth);
   const axis = { x: 0, y, width: AXIS_PX, height: rows };
   const strip = { x: AXIS_PX, y, width: stripWidth, height: rows };
   const profile = { x: strip.x + stripWidth + GAP_PX, y, width: profileWidth, height: rows };

@@ -14,13 +14,13 @@ export interface ViewColours {
 
 /**
  * Colours on dark grounds. The eight tree colours were found by search, not by taste alone: in OKLab (Ottosson 2020) any two
- * of them, and each of them and the accent, stay at least 0.09 apart for full colour vision and for simulated red, green and
+ * of them, and each of them and the accent, stay at least 0.08 apart for full colour vision and for simulated red, green and
  * blue blindness (Machado et al. 2009, severity 1), and each has a contrast of 4.5:1 or more against the grounds they stand on.
  * Eight hues are more than dichromats can name, so a tree is told by its line pattern as well.
  * @source own search; the bounds are checked by a test
  */
 export const DARK_COLOURS: ViewColours = {
-  trees: ["#d1a818", "#6daada", "#e8728b", "#f0ef9f", "#6580da", "#988813", "#b2cda2", "#aaf4fd"],
+  trees: ["#d1a818", "#6daada", "#e8728b", "#f0ef9f", "#6883dd", "#988813", "#b2cda2", "#aaf4fd"],
   accent: "#5ad1e6",
   ink: "#eceae6",
   paper: "#141517",
