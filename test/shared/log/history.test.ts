@@ -5,7 +5,13 @@ import { PassHistory, type Stamp } from "#shared/log/history.ts";
 import type { Curve, NodeId, TreeId } from "#shared/trees/document.ts";
 import type { Operation } from "#shared/trees/operations.ts";
 
-const FIELDS = { pass: "p0000000000000001", specimen: "hb07aaaaaaaaaaaa", annotator: "AN-1", number: 1, epoch: "e0000000000000001" };
+const FIELDS = {
+  pass: "p0000000000000001",
+  specimen: "hb07aaaaaaaaaaaa",
+  annotator: "AN-1",
+  number: 1,
+  epoch: "e0000000000000001",
+};
 
 function clock(session = "w1"): () => Stamp {
   let mono = 0;
@@ -22,7 +28,12 @@ function tree(number: number, x: number): Operation {
     code: "start-tree",
     changes: [
       { table: "tree", id, from: null, to: { id, name: `ALPM-0${number}`, root } },
-      { table: "node", id: root, from: null, to: { id: root, tree: id, kind: "origin", position: pointMm(x, 0, 0), site: "head" } },
+      {
+        table: "node",
+        id: root,
+        from: null,
+        to: { id: root, tree: id, kind: "origin", position: pointMm(x, 0, 0), site: "head" },
+      },
     ],
   };
 }
