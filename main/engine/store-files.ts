@@ -55,7 +55,7 @@ export class StoreFiles {
     const from = this.#shard(shardPath(level, ...shard));
     const whole = chunkBytes(this.#dtype);
     const offset = from.index.offsets[number]!;
-    if (offset === ABSENT || from.index.lengths[number] !== whole || offset + whole > from.bytes) {
+    if (offset === ABSENT || from.index.lengths[number] !== whole || offset + whole > from.bytes - INDEX_BYTES) {
       const found = offset === ABSENT ? "none" : `${from.index.lengths[number]} bytes at ${offset} of ${from.bytes}`;
       throw unreadable(from.file, `a chunk of ${whole} bytes`, found, `chunk ${number}`, DAMAGED);
     }

@@ -2,9 +2,10 @@ import { mkdirSync, mkdtempSync, rmSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { dirname, join } from "node:path";
 import type { SpecimenRecord } from "#shared/api/specimen.ts";
-import type { StoredArray } from "#shared/volume/dtype.ts";
+import type { StoredArray, StoredDtype } from "#shared/volume/dtype.ts";
 import type { VolumeGrid } from "#shared/volume/grid.ts";
 import { memoryPyramid } from "#shared/volume/memory-pyramid.ts";
+import { pyramidLevels } from "#shared/volume/pyramid.ts";
 
 // A writer of stores that shares no code with the program's: the layout written down once more from the Zarr v3 sharding
 // codec (shards of 64 x 512 x 512, inner chunks of 32^3, raw little-endian, index at the end with crc32c).
@@ -72,6 +73,16 @@ export function writeSpecimen(parent: string, id: string, grid: VolumeGrid, voxe
     min = Math.min(min, value);
     max = Math.max(max, value);
   }
+  return { folder, record: writeRecord(folder, id, grid, pyramid.dtype, { min, max }) };
+}
+
+function writeRecord(
+  folder: string,
+  id: string,
+  grid: VolumeGrid,
+  dtype: StoredDtype,
+  range: { min: number; max: number },
+): SpecimenRecord {
   const record: SpecimenRecord = {
     format: "tautline-specimen",
     version: 1,
@@ -79,23 +90,39 @@ export function writeSpecimen(parent: string, id: string, grid: VolumeGrid, voxe
     name: "HB-07",
     created: 0,
     synthetic: true,
-    source: { name: "made by a test", family: "generated", bytes: voxels.byteLength, dtype: pyramid.dtype },
-    volume: {
-      ...grid,
-      sha256: "00",
-      dtype: pyramid.dtype,
-      handedness: "unknown",
-      blurFwhmMm: null,
-      range: { min, max },
-    },
+    source: { name: "made by a test", family: "generated", bytes: 0, dtype },
+    volume: { ...grid, sha256: "00", dtype, handedness: "unknown", blurFwhmMm: null, range },
     conversions: [],
     polarity: "bright",
-    display: { low: min, high: max },
+    display: { low: range.min, high: range.max },
     facts: {},
     landmarks: {} as SpecimenRecord["landmarks"],
   };
   writeFileSync(join(folder, "specimen.json"), JSON.stringify(record));
-  return { folder, record };
+  return record;
+}
+
+/**
+ * Writes a specimen far larger than its files: every chunk of a shard is the same bytes in the file, which the index may say
+ * (the sharding codec does not forbid that chunks share bytes). For tests of memory, not of values.
+ */
+export function writeVastSpecimen(parent: string, id: string, grid: VolumeGrid): TestSpecimen {
+  const folder = join(parent, id);
+  const chunk = new Uint16Array(32 ** 3);
+  for (let n = 0; n < chunk.length; n++) chunk[n] = n % 1000;
+  const index = new DataView(new ArrayBuffer(512 * 16 + 4));
+  for (let n = 0; n < 512; n++) index.setBigUint64(n * 16 + 8, BigInt(chunk.byteLength), true);
+  index.setUint32(512 * 16, crc32c(new Uint8Array(index.buffer, 0, 512 * 16)), true);
+  const shard = Buffer.concat([new Uint8Array(chunk.buffer), new Uint8Array(index.buffer)]);
+  for (const { level, size } of pyramidLevels(grid))
+    for (let z = 0; z * 64 < size[2]; z++)
+      for (let y = 0; y * 512 < size[1]; y++)
+        for (let x = 0; x * 512 < size[0]; x++) {
+          const file = join(folder, "scan.ome.zarr", String(level), "c", String(z), String(y), String(x));
+          mkdirSync(dirname(file), { recursive: true });
+          writeFileSync(file, shard);
+        }
+  return { folder, record: writeRecord(folder, id, grid, "uint16", { min: 0, max: 999 }) };
 }
 
 /** A folder that is gone after the test. */
