@@ -1,6 +1,6 @@
 import { basename, dirname } from "node:path";
 import type { FilePort } from "#main/node/file-port.ts";
-import { isTautlineError, TautlineError } from "#shared/errors.ts";
+import { isTautlineError, TautlineError, unreadable } from "#shared/errors.ts";
 
 /**
  * The typed error for a failed write. Messages name the file, never the whole path, since they cross to pages.
@@ -28,4 +28,36 @@ export async function writeFault(files: FilePort, path: string, error: unknown, 
     { file, reason: code, next },
     error,
   );
+}
+
+/** Makes a folder. @throws disk-full, write-failed */
+export async function makeFolder(files: FilePort, folder: string): Promise<void> {
+  try {
+    await files.makeFolder(folder);
+  } catch (error) {
+    throw await writeFault(files, folder, error);
+  }
+}
+
+/** Bytes of a file; undefined when there is none. @param name for the message @throws unreadable-input when the system refuses */
+export async function readOrTell(
+  files: FilePort,
+  path: string,
+  name: string,
+  start?: number,
+  end?: number,
+): Promise<Uint8Array | undefined> {
+  try {
+    return await files.read(path, start, end);
+  } catch (error) {
+    const { code } = error as { code?: unknown };
+    if (typeof code !== "string") throw error;
+    throw unreadable(
+      name,
+      "a file that can be read",
+      `that the system refuses (${code})`,
+      undefined,
+      "Check the library's disk.",
+    );
+  }
 }

@@ -1,5 +1,6 @@
 import { basename, dirname, isAbsolute, join, relative, sep } from "node:path";
 import type { ExportPort } from "#main/http/ports.ts";
+import { makeFolder } from "#main/node/disk-fault.ts";
 import { type ExportedFile, writeFormat } from "#main/node/export-formats.ts";
 import type { FilePort } from "#main/node/file-port.ts";
 import type { Library } from "#main/node/library.ts";
@@ -30,7 +31,7 @@ export function exportTrees({ library, files, softwareVersion }: ExportOptions):
       if (path === undefined) return { ...download(written, stem), lost };
       const target = checkedTarget(path, library.layout.root);
       const places = written.map((file) => (format === "tables" ? join(target, file.name) : target));
-      await files.makeFolder(format === "tables" ? target : dirname(target));
+      await makeFolder(files, format === "tables" ? target : dirname(target));
       for (const [i, file] of written.entries()) await writeWhole(files, places[i]!, file.bytes);
       return { written: places, lost };
     },

@@ -1,5 +1,5 @@
 import { basename } from "node:path";
-import { writeFault } from "#main/node/disk-fault.ts";
+import { readOrTell, writeFault } from "#main/node/disk-fault.ts";
 import type { AppendFile, FilePort } from "#main/node/file-port.ts";
 import { Turns } from "#main/node/turns.ts";
 import { writeWhole } from "#main/node/whole-file.ts";
@@ -60,7 +60,7 @@ export class Journal {
 
   /** Opens the journal and checks its chain; undefined when there is none. @throws unreadable-input where the chain is broken. */
   static async open(files: FilePort, path: string, mayWrite: WriterCheck): Promise<Journal | undefined> {
-    const bytes = await files.read(path);
+    const bytes = await readOrTell(files, path, basename(path));
     return bytes && new Journal(files, path, mayWrite, scan(basename(path), bytes));
   }
 
@@ -90,7 +90,7 @@ export class Journal {
       }
       const start = from === 0 ? 0 : ends[from - 1]!;
       const size = ends[ends.length - 1]!;
-      const bytes = (await this.#files.read(this.#path, start, size)) ?? new Uint8Array(0);
+      const bytes = (await readOrTell(this.#files, this.#path, basename(this.#path), start, size)) ?? new Uint8Array(0);
       if (bytes.length !== size - start) {
         throw unreadable(
           basename(this.#path),

@@ -2,7 +2,7 @@ import { readFileSync } from "node:fs";
 import { hostname } from "node:os";
 import { dirname } from "node:path";
 import { setTimeout as wait } from "node:timers/promises";
-import { writeFault } from "#main/node/disk-fault.ts";
+import { makeFolder, writeFault } from "#main/node/disk-fault.ts";
 import type { FilePort } from "#main/node/file-port.ts";
 import { createId, type RandomBytes } from "#main/node/layout.ts";
 import { TautlineError } from "#shared/errors.ts";
@@ -73,7 +73,7 @@ export async function takeLease(options: LeaseOptions): Promise<Lease> {
     nonce,
     what,
   });
-  await files.makeFolder(dirname(path));
+  await makeFolder(files, dirname(path));
   await underLock(options, async () => {
     const holder = await readLease(files, path);
     if (holder && isAlive(holder, facts)) throw heldBy(holder);

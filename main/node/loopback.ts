@@ -6,15 +6,15 @@ import type { Handler } from "#main/http/handler.ts";
 
 const ADDRESS = "127.0.0.1";
 
-/** Bounds on what a connection may cost. */
-const LIMITS = {
+/** Bounds on what a connection may cost; times in milliseconds. */
+export const CONNECTION_LIMITS = {
   maxHeaderSize: 16 * 1024,
   headersTimeout: 10_000,
   requestTimeout: 120_000,
   keepAliveTimeout: 10_000,
   connectionsCheckingInterval: 5_000,
 } as const;
-const MOST_CONNECTIONS = 128;
+export const MOST_CONNECTIONS = 128;
 /** Open requests get this long to end when the server closes. */
 const CLOSE_WITHIN_MS = 1_000;
 
@@ -24,6 +24,8 @@ export interface LoopbackOptions {
   /** Taken when it is free; any other otherwise. 0 = any. */
   readonly preferredPort: number;
   readonly token: string;
+  /** Other bounds than {@link CONNECTION_LIMITS}. */
+  readonly limits?: Partial<Record<keyof typeof CONNECTION_LIMITS, number>>;
 }
 
 export interface Loopback {
@@ -38,7 +40,7 @@ export interface Loopback {
 export async function serveLoopback(options: LoopbackOptions): Promise<Loopback> {
   let handler: Handler | null = null;
   const listener = getRequestListener((request) => handler!(request), { overrideGlobalObjects: false });
-  const server = createServer(LIMITS, (incoming, outgoing) => {
+  const server = createServer({ ...CONNECTION_LIMITS, ...options.limits }, (incoming, outgoing) => {
     // A target that is no path ("http://other/", "*") is for proxies; this is none.
     if (!incoming.url?.startsWith("/")) {
       outgoing.writeHead(400, { connection: "close" }).end();

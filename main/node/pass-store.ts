@@ -1,3 +1,4 @@
+import { makeFolder } from "#main/node/disk-fault.ts";
 import type { FilePort } from "#main/node/file-port.ts";
 import { Journal, type WriterCheck } from "#main/node/journal.ts";
 import { createId, type LibraryLayout, type RandomBytes } from "#main/node/layout.ts";
@@ -123,7 +124,7 @@ export class PassStore {
       });
     }
     await mayWrite();
-    await files.makeFolder(layout.pass(specimen, pass));
+    await makeFolder(files, layout.pass(specimen, pass));
     const path = layout.journal(specimen, pass);
     return this.#open(path, () => Journal.create(files, path, lines, mayWrite), pass);
   }
@@ -161,7 +162,7 @@ export class PassStore {
     const { files, layout, mayWrite } = this.#options;
     const { specimen, pass } = header;
     await mayWrite();
-    await files.makeFolder(layout.pass(specimen, pass));
+    await makeFolder(files, layout.pass(specimen, pass));
     files.reach("pass:after-folder");
     // The journal comes last: a folder without one is no pass, so a killed process leaves none half-made.
     if (file !== NEW_PASS) await writeJson(files, layout.passFile(specimen, pass), file);

@@ -1,5 +1,5 @@
 import { dirname } from "node:path";
-import { writeFault } from "#main/node/disk-fault.ts";
+import { readOrTell, writeFault } from "#main/node/disk-fault.ts";
 import type { FilePort } from "#main/node/file-port.ts";
 import { unreadable } from "#shared/errors.ts";
 
@@ -38,7 +38,7 @@ export function writeJson(files: FilePort, path: string, value: unknown): Promis
 
 /** The JSON value in a file; undefined when there is no such file. @throws unreadable-input */
 export async function readJsonFile(files: FilePort, path: string, name: string): Promise<unknown> {
-  const bytes = await files.read(path);
+  const bytes = await readOrTell(files, path, name);
   if (!bytes) return undefined;
   try {
     return JSON.parse(new TextDecoder("utf-8", { fatal: true }).decode(bytes));

@@ -2,7 +2,7 @@ import { randomBytes } from "node:crypto";
 import { join } from "node:path";
 import type { Ports } from "#main/http/ports.ts";
 import type { Abilities } from "#main/node/abilities.ts";
-import { writeFault } from "#main/node/disk-fault.ts";
+import { makeFolder } from "#main/node/disk-fault.ts";
 import { diskFiles } from "#main/node/disk-files.ts";
 import { Events } from "#main/node/events.ts";
 import { exportTrees } from "#main/node/export-trees.ts";
@@ -46,9 +46,7 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
   const files = diskFiles();
   const random = (count: number) => new Uint8Array(randomBytes(count));
   const newId = () => createId(random);
-  await files.makeFolder(join(root, "specimens")).catch(async (error) => {
-    throw await writeFault(files, root, error);
-  });
+  await makeFolder(files, join(root, "specimens"));
   const lease = await takeLease({ files, path: join(root, "lease.json"), what: "server", facts: processFacts(), random });
   try {
     const events = new Events();

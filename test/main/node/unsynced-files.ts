@@ -26,6 +26,8 @@ export class UnsyncedFiles implements FilePort {
   stopAt: { readonly point: CrashPoint; readonly nth: number } | null = null;
   /** Bytes that still fit; writes beyond fail with ENOSPC after writing what fits. */
   room = Number.POSITIVE_INFINITY;
+  /** Refuses everything that changes the disk, with this code. */
+  refuses: string | null = null;
   /** Fails syncs of files while true. */
   syncFails = false;
 
@@ -73,11 +75,13 @@ export class UnsyncedFiles implements FilePort {
 
   async makeFolder(folder: string): Promise<void> {
     this.#live();
+    this.#writable(folder);
     for (let at = folder; at !== "/"; at = dirname(at)) this.#folders.add(at);
   }
 
   async create(path: string, bytes: Uint8Array): Promise<void> {
     this.#live();
+    this.#writable(path);
     if (this.#names.has(path)) throw fault("EEXIST", path);
     if (!this.#folders.has(dirname(path))) throw fault("ENOENT", path);
     const inode = { bytes: new Uint8Array(0), synced: new Uint8Array(0) };
@@ -104,6 +108,7 @@ export class UnsyncedFiles implements FilePort {
 
   async rename(from: string, to: string): Promise<void> {
     this.#live();
+    this.#writable(from);
     if (this.#folders.has(from)) {
       for (const folder of [...this.#folders]) {
         if (folder !== from && !folder.startsWith(`${from}/`)) continue;
@@ -125,6 +130,7 @@ export class UnsyncedFiles implements FilePort {
 
   async remove(path: string): Promise<void> {
     this.#live();
+    this.#writable(path);
     for (const name of [...this.#names.keys()]) if (name === path || name.startsWith(`${path}/`)) this.#names.delete(name);
     for (const name of [...this.#folders]) if (name === path || name.startsWith(`${path}/`)) this.#folders.delete(name);
   }
@@ -135,6 +141,7 @@ export class UnsyncedFiles implements FilePort {
     return {
       append: async (bytes) => {
         this.#live();
+        this.#writable(path);
         this.#write(inode, bytes, path);
       },
       sync: async () => {
@@ -144,6 +151,7 @@ export class UnsyncedFiles implements FilePort {
       },
       truncate: async (size) => {
         this.#live();
+        this.#writable(path);
         inode.bytes = inode.bytes.slice(0, size);
       },
       close: async () => {},
@@ -175,6 +183,10 @@ export class UnsyncedFiles implements FilePort {
     const inode = this.#names.get(path);
     if (!inode) throw fault("ENOENT", path);
     return inode;
+  }
+
+  #writable(path: string): void {
+    if (this.refuses !== null) throw fault(this.refuses, path);
   }
 
   #live(): void {
