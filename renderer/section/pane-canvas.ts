@@ -19,8 +19,8 @@ export class PaneCanvases {
       const entry = entries[entries.length - 1]!;
       const exact = entry.devicePixelContentBoxSize?.[0];
       const ratio = globalThis.devicePixelRatio || 1;
-      const width = exact?.inlineSize ?? Math.round(entry.contentRect.width * ratio);
-      const height = exact?.blockSize ?? Math.round(entry.contentRect.height * ratio);
+      const width = devicePixels(exact?.inlineSize, entry.contentRect.width * ratio);
+      const height = devicePixels(exact?.blockSize, entry.contentRect.height * ratio);
       if (width === this.device.width && height === this.device.height && ratio === this.size.ratio) return;
       this.device = { width, height };
       this.size = { width: width / ratio, height: height / ratio, ratio };
@@ -41,4 +41,9 @@ export class PaneCanvases {
     this.watcher.disconnect();
     this.root.remove();
   }
+}
+
+/** The browser's own count where it agrees with the ratio to a pixel (an emulated ratio does not reach it), else the rounded one. */
+function devicePixels(exact: number | undefined, scaled: number): number {
+  return exact !== undefined && Math.abs(exact - scaled) < 1 ? exact : Math.round(scaled);
 }
