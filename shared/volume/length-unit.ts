@@ -1,27 +1,31 @@
-const PREFIX: Readonly<Record<string, number>> = {
-  pico: 1e-12,
-  nano: 1e-9,
-  micro: 1e-6,
-  milli: 1e-3,
-  centi: 1e-2,
-  deci: 1e-1,
-  "": 1,
-};
+const PREFIXES: ReadonlyMap<string, number> = new Map([
+  ["pico", 1e-9],
+  ["nano", 1e-6],
+  ["micro", 1e-3],
+  ["milli", 1],
+  ["centi", 10],
+  ["deci", 100],
+  ["", 1000],
+]);
 
-const SYMBOLS: Readonly<Record<string, number>> = {
-  nm: 1e-6,
-  um: 1e-3,
-  "\u00b5m": 1e-3, // micro sign
-  "\u03bcm": 1e-3, // Greek mu
-  micron: 1e-3,
-  microns: 1e-3,
-  mm: 1,
-  cm: 10,
-  m: 1000,
-  inch: 25.4,
-  inches: 25.4,
-  angstrom: 1e-7,
-};
+const SYMBOLS: ReadonlyMap<string, number> = new Map([
+  ["nm", 1e-6],
+  ["um", 1e-3],
+  ["\u00b5m", 1e-3], // micro sign
+  ["\u03bcm", 1e-3], // Greek mu
+  ["mm", 1],
+  ["cm", 10],
+  ["m", 1000],
+]);
+
+/** Words that stand for themselves in any letter case. */
+const WORDS: ReadonlyMap<string, number> = new Map([
+  ["micron", 1e-3],
+  ["microns", 1e-3],
+  ["inch", 25.4],
+  ["inches", 25.4],
+  ["angstrom", 1e-7],
+]);
 
 const METRE = /^(pico|nano|micro|milli|centi|deci|)(?:metre|meter)s?$/;
 
@@ -31,16 +35,10 @@ const METRE = /^(pico|nano|micro|milli|centi|deci|)(?:metre|meter)s?$/;
  * @source UDUNITS-2 names as OME-Zarr asks for; SI symbols and words as NRRD headers carry them.
  */
 export function mmPerUnit(word: string | null | undefined): number | null {
-  const trimmed = word?.trim() ?? "";
-  const symbol = SYMBOLS[trimmed] ?? (/^[A-Za-z]{5,}$/.test(trimmed) ? SYMBOLS[trimmed.toLowerCase()] : undefined);
-  if (symbol !== undefined) return symbol;
-  const match = METRE.exec(trimmed.toLowerCase());
-  return match ? cleanProduct(PREFIX[match[1]!]!) : null;
-}
-
-/** Metres to millimetres without the last-bit error of a product such as 1e-6 * 1000. */
-function cleanProduct(metres: number): number {
-  return Number(`${metres.toExponential().split("e")[0]}e${Number(metres.toExponential().split("e")[1]) + 3}`);
+  const symbol = word?.trim() ?? "";
+  const lower = symbol.toLowerCase();
+  const prefix = METRE.exec(lower)?.[1];
+  return SYMBOLS.get(symbol) ?? WORDS.get(lower) ?? (prefix === undefined ? null : PREFIXES.get(prefix)!);
 }
 
 /** `value` of a unit that is `factor` millimetres, in millimetres. Dividing by a whole number of parts keeps 40 um at exactly 0.04 mm. */
