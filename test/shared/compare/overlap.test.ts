@@ -1,7 +1,7 @@
 import { describe, expect, it } from "vitest";
 import { measureOverlap, percentile, sampleStrand } from "#shared/compare/overlap.ts";
-import type { RootedStrand } from "#shared/trees/rooted-strands.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
+import type { RootedStrand } from "#shared/trees/rooted-strands.ts";
 
 // A line of 11 points with radius 1 against the same line 0.5 off that stops at 6. Definitions: Schaap et al., Med Image
 // Anal 2009;13:701-714 (from memory); values recomputed by an independent program.
