@@ -13,9 +13,7 @@ import {
 } from "#main/http/library-shapes.ts";
 import type { Ports } from "#main/http/ports.ts";
 import { readJson } from "#main/http/read-body.ts";
-
-/** Header of an export that comes back as bytes: the JSON list of what the format loses, percent-encoded. */
-export const LOST_HEADER = "x-tautline-lost";
+import { LOST_HEADER } from "#shared/api/routes.ts";
 
 /** Scans on this computer, long work, export, and the life of a window. */
 export function workRoutes(ports: Ports): RouteHandlers {

@@ -36,7 +36,6 @@ export function FolderDialog({ list, done }: FolderDialogProps) {
       setFailure(error instanceof Error ? error.message : String(error));
     }
   };
-  // biome-ignore lint/correctness/useExhaustiveDependencies: the first listing only
   useEffect(() => void show(), []);
 
   const foot = (

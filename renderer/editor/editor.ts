@@ -14,6 +14,7 @@ import { NOTHING, type UnderWay } from "#renderer/editor/tracing/under-way.ts";
 import type { Pointing, Under } from "#renderer/editor/view-control.ts";
 import { roundPoint } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
+import { otherEnd, strandsAt } from "#shared/trees/adjacency.ts";
 import type { EndKind, NodeId, TreeDocument } from "#shared/trees/document.ts";
 import type { Anchor } from "#shared/trees/edits/anchor.ts";
 import type { LineId } from "#shared/trees/edits/edit-plan.ts";
@@ -192,6 +193,24 @@ export class Editor {
     const index = (this.candidateFor(pointing) ?? 0) + 1;
     this.candidate = { index, at: pointing };
     void this.point(pointing);
+  }
+
+  /** Takes hold of a pin of the strand under way, by its place in the projection; nothing while it still waits. */
+  carryPinUnderWay(index: number): void {
+    const underWay = this.underWaySignal.value;
+    const { pins, settled } = this.projection.value;
+    if (underWay.kind !== "strand" || settled < pins.length) return;
+    const document = this.documentSignal.value;
+    const strand = strandsAt(document, underWay.tip)[0];
+    if (index === pins.length - 1 || strand === undefined) {
+      this.carried.value = { kind: "node", id: underWay.tip };
+    } else if (index === 0) {
+      this.carried.value = { kind: "node", id: otherEnd(strand, underWay.tip) };
+    } else {
+      // Pins count from `from`; the projection counts towards the tip.
+      const pin = strand.to === underWay.tip ? index - 1 : strand.via.length - index;
+      this.carried.value = { kind: "pin", line: strand.id, index: pin };
+    }
   }
 
   undo(): void {

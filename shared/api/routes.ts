@@ -163,6 +163,9 @@ export interface ExportRequest {
   readonly path?: string;
 }
 
+/** Header beside exported bytes: what the format could not carry, as URI-encoded JSON (a list of sentences). */
+export const LOST_HEADER = "x-tautline-lost";
+
 export interface ExportAnswer {
   readonly written: readonly string[];
   readonly lost: readonly string[];

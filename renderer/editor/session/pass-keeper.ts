@@ -32,5 +32,7 @@ export interface PassKeeper {
   mark(name: string): Promise<void>;
   /** Calls `listener` whenever the history changed, also by lines that came from the journal. */
   onChange(listener: () => void): () => void;
+  /** Resolves when every edit made so far is on disk, or cannot be for now. */
+  settled(): Promise<void>;
   close(): Promise<void>;
 }

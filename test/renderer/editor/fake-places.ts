@@ -53,6 +53,7 @@ export class MemoryKeeper implements PassKeeper {
   redo = async () => this.took(this.history.redo(this.stamp()));
   jump = async (seq: number) => this.took(this.history.jump(seq, this.stamp()));
   mark = async (name: string) => this.took(this.history.mark(name, this.stamp()));
+  settled = async () => undefined;
   close = async () => undefined;
   onChange(listener: () => void) {
     this.listeners.add(listener);

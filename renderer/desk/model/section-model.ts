@@ -21,7 +21,8 @@ export interface FollowedLine {
 
 export interface SectionPlaces {
   readonly client: Client;
-  readonly specimen: SpecimenRecord;
+  /** Read again at each use: landmarks may come later. */
+  readonly specimen: { readonly value: SpecimenRecord };
   readonly followed: () => FollowedLine | null;
 }
 
@@ -29,7 +30,6 @@ export interface SectionPlaces {
 const REST_MS = 90;
 /** A tangent is taken over this length of the line to either side, millimetres. */
 const TANGENT_MM = 0.3;
-export const SLABS_MM = [0, 0.1, 0.2, 0.4, 0.8, 1.5, 3] as const;
 
 /** What the section shows, and the picture for it: the newest plane wins, half resolution while moving. */
 export class SectionModel implements ViewControl {
@@ -43,16 +43,21 @@ export class SectionModel implements ViewControl {
   readonly rulerShown = signal(false);
   readonly low: Signal<number>;
   readonly high: Signal<number>;
+  /** Size of the pane, CSS pixels. */
+  readonly paneSize: Signal<{ readonly width: number; readonly height: number }> = signal({ width: 0, height: 0 });
   readonly histogram: Signal<HistogramAnswer | null> = signal(null);
   private view: SectionView | null = null;
+  /** True once the pane had a size: before, "all" could not be judged. */
+  private sized = false;
   private rest: ReturnType<typeof setTimeout> | null = null;
-  private readonly specimen: SpecimenRecord;
-
   constructor(private readonly places: SectionPlaces) {
-    this.specimen = places.specimen;
-    this.low = signal(places.specimen.display.low);
-    this.high = signal(places.specimen.display.high);
-    if (places.specimen.polarity === "dark") this.slabMode.value = "mean";
+    this.low = signal(this.specimen.display.low);
+    this.high = signal(this.specimen.display.high);
+    if (this.specimen.polarity === "dark") this.slabMode.value = "mean";
+  }
+
+  private get specimen(): SpecimenRecord {
+    return this.places.specimen.value;
   }
 
   attach(view: SectionView): void {
@@ -218,6 +223,14 @@ export class SectionModel implements ViewControl {
   private fixed(name: PlaneName): PlaneAxes {
     const kind = name === "across" || name === "along" ? "flat" : name;
     return fixedAxes(kind, this.specimen.volume.direction, valveAxes(this.specimen.landmarks));
+  }
+
+  /** The pane has another size. */
+  resized(size: { readonly width: number; readonly height: number }): void {
+    this.paneSize.value = size;
+    if (this.plane.value === null || !this.sized) this.showAll();
+    else this.changed();
+    this.sized = size.width > 0;
   }
 
   /** Draws what is known now and asks for its picture. */

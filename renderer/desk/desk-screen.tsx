@@ -1,0 +1,39 @@
+import { useEffect, useMemo } from "preact/hooks";
+import { FootLine } from "#renderer/desk/lines/foot-line.tsx";
+import { HeadLine } from "#renderer/desk/lines/head-line.tsx";
+import { deskContext } from "#renderer/desk/model/desk-context.ts";
+import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
+import { listenToKeys } from "#renderer/desk/model/keys.ts";
+import { SectionPane } from "#renderer/desk/panes/section-pane.tsx";
+import { SpacePane } from "#renderer/desk/panes/space-pane.tsx";
+import { StripPane } from "#renderer/desk/panes/strip-pane.tsx";
+import { DeskSheets } from "#renderer/desk/sheets/desk-sheets.tsx";
+import { HistoryDrawer } from "#renderer/desk/side/history-drawer.tsx";
+import { SidePanel } from "#renderer/desk/side/side-panel.tsx";
+
+/** The desk: head line, strip, section, space with the list below it, foot line; sheets and the history over them. */
+export function DeskScreen({ model }: { readonly model: DeskModel }) {
+  const context = useMemo(() => deskContext(model), [model]);
+  useEffect(() => listenToKeys(context), [context]);
+  return (
+    <div class="desk">
+      <HeadLine model={model} context={context} />
+      {model.editor.readOnly ? (
+        <div class="banner" role="status">
+          Another window has this pass open for writing. This one shows it as it grows; nothing can be changed here.
+        </div>
+      ) : null}
+      <main class="desk-panes">
+        <StripPane model={model} />
+        <SectionPane model={model} />
+        <div class="desk-right">
+          <SpacePane model={model} />
+          <SidePanel model={model} context={context} />
+        </div>
+        {model.historyShown.value ? <HistoryDrawer model={model} /> : null}
+      </main>
+      <FootLine context={context} />
+      <DeskSheets model={model} context={context} />
+    </div>
+  );
+}

@@ -1,0 +1,88 @@
+import { computed, type ReadonlySignal, type Signal, signal } from "@preact/signals";
+import type { Services } from "#renderer/app/services.ts";
+import { type ShownFinding, shownFindings } from "#renderer/desk/model/findings.ts";
+import { type FollowedLine, SectionModel } from "#renderer/desk/model/section-model.ts";
+import { serverBack } from "#renderer/desk/model/server-back.ts";
+import { keepWaiting, leftWaiting } from "#renderer/desk/model/waiting-store.ts";
+import { Editor } from "#renderer/editor/editor.ts";
+import type { PassKeeper } from "#renderer/editor/session/pass-keeper.ts";
+import type { PassSummary, SpecimenRecord } from "#shared/api/specimen.ts";
+import { arcLengths } from "#shared/geometry/polyline.ts";
+import { type Measures, measureTrees } from "#shared/measure/measure-trees.ts";
+import type { TraceParameters } from "#shared/tracing/strand-request.ts";
+import type { CrossLinkId, StrandId } from "#shared/trees/document.ts";
+import { polylineOf } from "#shared/trees/geometry.ts";
+import { plainFromDocument } from "#shared/trees/plain-from-document.ts";
+
+export type SheetName = "palette" | "keys" | "menu" | "export" | "take-in" | "about" | "mark" | "rename" | "dismiss" | "upright";
+
+export interface DeskFacts {
+  readonly services: Services;
+  readonly specimen: SpecimenRecord;
+  readonly pass: PassSummary;
+  readonly keeper: PassKeeper;
+}
+
+/** Everything one open desk holds: the editor, the section, and what of the screen is open. */
+export class DeskModel {
+  readonly services: Services;
+  readonly specimen: Signal<SpecimenRecord>;
+  readonly pass: Signal<PassSummary>;
+  readonly editor: Editor;
+  readonly section: SectionModel;
+  readonly sheet: Signal<SheetName | null> = signal(null);
+  readonly historyShown = signal(false);
+  readonly tab: Signal<"trees" | "findings"> = signal<"trees" | "findings">("trees");
+  readonly findings: ReadonlySignal<readonly ShownFinding[]>;
+  readonly findingAt: Signal<string | null> = signal(null);
+  readonly measures: ReadonlySignal<Measures>;
+
+  constructor(facts: DeskFacts) {
+    const { services, specimen, pass, keeper } = facts;
+    const { client, notices } = services;
+    const parameters: TraceParameters = { polarity: specimen.polarity, blurFwhmMm: specimen.volume.blurFwhmMm };
+    this.services = services;
+    this.specimen = signal(specimen);
+    this.pass = signal(pass);
+    this.editor = new Editor({
+      keeper,
+      solve: async (strands, stop) => (await client.solve(specimen.id, strands, parameters, stop)).curves,
+      snap: ({ at, normal, slabMm, reachMm }) =>
+        client.snap({ specimen: specimen.id, at, normal, slabMm, reachMm, polarity: specimen.polarity }),
+      guide: {
+        open: (from) => client.openGuide(specimen.id, from, parameters),
+        preview: (session, to) => client.previewGuide(session, to),
+        close: (session) => client.closeGuide(session),
+      },
+      serverBack: () => serverBack(client),
+      failed: (error) => notices.failed(error),
+      keepWaiting: (waiting) => keepWaiting(pass.id, waiting),
+      leftWaiting: leftWaiting(pass.id),
+    });
+    this.section = new SectionModel({ client, specimen: this.specimen, followed: () => this.followed() });
+    this.measures = computed(() => measureTrees(plainFromDocument(this.editor.document.value)));
+    this.findings = computed(() => shownFindings(this.editor.document.value));
+  }
+
+  /** The line that across and along planes follow: the live guide, else the selected strand. */
+  followed(): FollowedLine | null {
+    const guide = this.editor.guide.value;
+    if (guide !== null && guide.points.length > 1) {
+      const at = arcLengths(guide.points);
+      const doubtful = guide.doubtful.map(([a, b]) => [at[a] ?? 0, at[b] ?? 0] as const);
+      return { points: guide.points, doubtful };
+    }
+    const { strand } = this.editor.selection.value;
+    const document = this.editor.document.value;
+    const line = strand?.startsWith("x")
+      ? document.crossLinks.get(strand as CrossLinkId)
+      : document.strands.get(strand as StrandId);
+    return line === undefined ? null : { points: polylineOf(document, line), doubtful: [] };
+  }
+
+  dispose(): void {
+    this.editor.dispose();
+    this.section.detach();
+    void this.editor.keeper.close();
+  }
+}

@@ -1,0 +1,40 @@
+import { commandFor, commandNamed } from "#renderer/editor/commands/command-table.ts";
+import type { DeskContext } from "#renderer/editor/commands/desk-context.ts";
+import { textOfPress } from "#renderer/editor/commands/shortcut.ts";
+
+/** Keys that a focused control uses itself. */
+const CONTROL_KEYS = ["Enter", "Space", "Tab", "Home", "End", "PageUp", "PageDown"];
+
+/** Runs commands by their keys, as long as no text is being typed and no sheet is open; the returned function ends it. */
+export function listenToKeys(context: DeskContext): () => void {
+  const onKey = (event: KeyboardEvent) => {
+    if (event.defaultPrevented || document.querySelector("dialog[open]") !== null) return;
+    const text = textOfPress(event);
+    const target = event.target instanceof HTMLElement ? event.target : null;
+    if (isTyping(target) && !(event.ctrlKey && event.key.toLowerCase() === "k")) return;
+    if (isControl(target) && (CONTROL_KEYS.includes(text) || text.includes("Arrow"))) return;
+    const command = commandFor(event);
+    if (command === null) return;
+    // A key of ours never falls through to the browser, also when it can do nothing now.
+    event.preventDefault();
+    if (command.enabled(context)) void command.perform(context);
+  };
+  addEventListener("keydown", onKey);
+  return () => removeEventListener("keydown", onKey);
+}
+
+/** Runs a command chosen in a menu by its name. */
+export function runCommand(context: DeskContext, name: string): void {
+  const command = commandNamed(name);
+  if (command?.enabled(context)) void command.perform(context);
+}
+
+function isTyping(target: HTMLElement | null): boolean {
+  if (target === null) return false;
+  if (target.isContentEditable || target instanceof HTMLTextAreaElement || target instanceof HTMLSelectElement) return true;
+  return target instanceof HTMLInputElement && !["checkbox", "radio", "button", "range"].includes(target.type);
+}
+
+function isControl(target: HTMLElement | null): boolean {
+  return target?.closest("button, a, input, [role=slider], [role=option], [role=tab], [role=treeitem]") != null;
+}

@@ -1,0 +1,20 @@
+import type { Intent } from "#renderer/editor/session/intent.ts";
+
+const keyOf = (pass: string) => `tautline-waiting-${pass}`;
+
+/** Keeps what waits over a reload of this window. Trees being taken in are left out: their file is still there. */
+export function keepWaiting(pass: string, waiting: readonly Intent[]): void {
+  const plain = waiting.filter((intent) => intent.do !== "take-in");
+  if (plain.length === 0) sessionStorage.removeItem(keyOf(pass));
+  else sessionStorage.setItem(keyOf(pass), JSON.stringify(plain));
+}
+
+/** What an earlier load of this window left waiting; nothing when it cannot be read. */
+export function leftWaiting(pass: string): Intent[] {
+  try {
+    const value: unknown = JSON.parse(sessionStorage.getItem(keyOf(pass)) ?? "[]");
+    return Array.isArray(value) ? (value as Intent[]) : [];
+  } catch {
+    return [];
+  }
+}

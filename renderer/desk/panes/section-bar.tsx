@@ -1,0 +1,93 @@
+import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
+import { Contrast } from "#renderer/desk/panes/contrast.tsx";
+import { nextSlab, SLABS_MM } from "#renderer/editor/commands/view-commands.ts";
+import { mmText } from "#renderer/editor/session/words.ts";
+import type { PlaneName } from "#renderer/editor/view-control.ts";
+
+const PLANES: readonly (readonly [PlaneName, string])[] = [
+  ["flat", "flat (1)"],
+  ["front", "front (2)"],
+  ["side", "side (3)"],
+  ["across", "across the string (4)"],
+  ["along", "along the string (5)"],
+];
+
+/** What the section shows: which plane, how thick, which greys. */
+export function SectionBar({ model }: { readonly model: DeskModel }) {
+  const { section } = model;
+  const slab = section.slabMm.value;
+  return (
+    <div class="section-bar" role="toolbar" aria-label="Section view">
+      <fieldset class="joined">
+        <legend class="unseen">Plane</legend>
+        {PLANES.map(([name, title]) => (
+          <button
+            key={name}
+            type="button"
+            class="button"
+            aria-pressed={section.planeName.value === name}
+            title={title}
+            onClick={() => section.showPlane(name)}
+          >
+            {name}
+          </button>
+        ))}
+      </fieldset>
+      <fieldset class="joined">
+        <legend class="unseen">Slab</legend>
+        <button
+          type="button"
+          class="button"
+          aria-label="Thinner slab"
+          title="Thinner slab ([)"
+          disabled={slab <= 0}
+          onClick={() => section.setSlab(nextSlab(slab, -1))}
+        >
+          −
+        </button>
+        <output class="slab-size figures">{slab === 0 ? "no slab" : `slab ${mmText(slab)}`}</output>
+        <button
+          type="button"
+          class="button"
+          aria-label="Thicker slab"
+          title="Thicker slab (])"
+          disabled={slab >= SLABS_MM.at(-1)!}
+          onClick={() => section.setSlab(nextSlab(slab, 1))}
+        >
+          +
+        </button>
+        <button
+          type="button"
+          class="button"
+          title="Slab shows the maximum, or the mean (\)"
+          onClick={() => section.setSlabMode(section.slabMode.value === "max" ? "mean" : "max")}
+        >
+          {section.slabMode.value === "max" ? "maximum" : "mean"}
+        </button>
+      </fieldset>
+      <Contrast model={model} />
+      <span class="spring" />
+      <button
+        type="button"
+        class="button"
+        aria-pressed={section.rulerShown.value}
+        title="Ruler (Shift + R)"
+        onClick={() => section.toggleRuler()}
+      >
+        ruler
+      </button>
+      <fieldset class="joined">
+        <legend class="unseen">Scale</legend>
+        <button type="button" class="button" aria-label="Farther" title="Farther (-)" onClick={() => section.zoom(0.8)}>
+          −
+        </button>
+        <button type="button" class="button" title="Show the whole plane (Home)" onClick={() => section.showAll()}>
+          all
+        </button>
+        <button type="button" class="button" aria-label="Closer" title="Closer (+)" onClick={() => section.zoom(1.25)}>
+          +
+        </button>
+      </fieldset>
+    </div>
+  );
+}

@@ -1,0 +1,99 @@
+import { effect } from "@preact/signals";
+import { useEffect, useRef } from "preact/hooks";
+import { theme } from "#renderer/app/theme-choice.ts";
+import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
+import { lineFacts } from "#renderer/desk/model/line-facts.ts";
+import type { StripSizes } from "#renderer/strip/strip-content.ts";
+import { EMPTY_STRIP, StripView } from "#renderer/strip/strip-view.ts";
+import { nearestOnPolyline } from "#shared/geometry/polyline.ts";
+
+/** The section counts as standing on the strand while it is this near to it, millimetres. */
+const ON_STRAND_MM = 1;
+
+/** The selected strand laid straight, with its radius and the film of across sections. */
+export function StripPane({ model }: { readonly model: DeskModel }) {
+  const host = useRef<HTMLDivElement>(null);
+  useEffect(() => mountStrip(host.current!, model), [model]);
+  return <section class="pane strip-pane" aria-label="Strip: the selected strand laid straight" ref={host} />;
+}
+
+function mountStrip(host: HTMLElement, model: DeskModel): () => void {
+  const { editor, section, services } = model;
+  let turn = 0;
+  let sizes: StripSizes | null = null;
+  let asked = "";
+
+  const view = new StripView(host, {
+    place: (atMm) => {
+      const line = model.followed();
+      const plane = section.plane.value;
+      if (line === null || plane === null) return;
+      section.planeName.value = "across";
+      section.acrossAt(line, atMm, plane);
+    },
+    turn: (deg) => {
+      turn = deg;
+      view.show({ turn });
+      void ask(true);
+    },
+    resized: (wanted) => {
+      sizes = wanted;
+      void ask(true);
+    },
+  });
+
+  const ask = async (again = false) => {
+    const facts = lineFacts(editor.document.value, editor.selection.value);
+    const wanted = sizes ?? view.sizes;
+    if (facts === null || wanted.strip.height < 2) return;
+    const low = section.low.value;
+    const high = section.high.value;
+    const key = JSON.stringify([facts.curve, turn, wanted, low, high]);
+    if (key === asked && !again) return;
+    asked = key;
+    const specimen = model.specimen.value.id;
+    const points = facts.points.flatMap((point) => [...point]);
+    const { halfWidthMm, filmHalfWidthMm } = EMPTY_STRIP;
+    view.show({ state: { kind: "loading" } });
+    try {
+      const [image, film] = await Promise.all([
+        services.client.strip({ specimen, points, ...wanted.strip, halfWidthMm, turn, low, high }),
+        services.client.film({ specimen, points, ...wanted.film, halfWidthMm: filmHalfWidthMm, low, high }),
+      ]);
+      if (asked !== key) return;
+      view.show({ ...(image === null ? {} : { image }), ...(film === null ? {} : { film }), state: { kind: "ready" } });
+    } catch (error) {
+      if (asked === key) view.show({ state: { kind: "error", message: error instanceof Error ? error.message : String(error) } });
+    }
+  };
+
+  const stops = [
+    effect(() => {
+      const facts = lineFacts(editor.document.value, editor.selection.value);
+      section.low.value;
+      section.high.value;
+      if (facts === null) {
+        asked = "";
+        view.show({ ...EMPTY_STRIP, turn });
+        return;
+      }
+      const { points: _, curve: __, ...shown } = facts;
+      view.show(shown);
+      void ask();
+    }),
+    effect(() => {
+      const plane = section.plane.value;
+      const facts = lineFacts(editor.document.value, editor.selection.value);
+      const near = plane === null || facts === null ? null : nearestOnPolyline(facts.points, plane.centre);
+      view.show({ position: near !== null && near.distance <= ON_STRAND_MM ? near.at : null });
+    }),
+    effect(() => {
+      theme.value;
+      view.themeChanged();
+    }),
+  ];
+  return () => {
+    for (const stop of stops) stop();
+    view.dispose();
+  };
+}

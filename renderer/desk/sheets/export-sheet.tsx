@@ -1,0 +1,93 @@
+import { useState } from "preact/hooks";
+import { CAUTIONS } from "#renderer/app/about-sheet.tsx";
+import { Sheet } from "#renderer/app/sheet.tsx";
+import { exportFileName, exportTrees } from "#renderer/desk/model/export-trees.ts";
+import type { DeskSheetProps } from "#renderer/desk/sheets/desk-sheets.tsx";
+import type { ExportFormat } from "#shared/api/routes.ts";
+
+const FORMATS: readonly { readonly format: ExportFormat; readonly title: string; readonly words: string }[] = [
+  {
+    format: "chordae",
+    title: "Tree file (.chordae.json)",
+    words: "Everything: trees, radii, pins, labels, landmarks. Loses nothing but the history.",
+  },
+  {
+    format: "graphml",
+    title: "GraphML",
+    words: "Nodes, strands with their polylines, labels. Loses radii per point, pins and landmarks.",
+  },
+  {
+    format: "vtp",
+    title: "VTK PolyData (.vtp)",
+    words: "Centrelines with a radius at each point. Loses labels, pins, node kinds and landmarks.",
+  },
+  {
+    format: "tables",
+    title: "Tables (.csv, zipped)",
+    words: "Nodes, strands and trees with their measures, units in the column names. Loses the centrelines.",
+  },
+  {
+    format: "labels",
+    title: "Label volume (.nrrd)",
+    words: "Tubes at the measured radii on the scan's own grid. Loses structure, labels and sub-voxel places.",
+  },
+];
+
+/** Writes the trees out; each format says what it loses, and what was lost is said again afterwards. */
+export function ExportSheet({ model, close }: DeskSheetProps) {
+  const [format, setFormat] = useState<ExportFormat>("chordae");
+  const [busy, setBusy] = useState(false);
+  const { services, editor } = model;
+  const waiting = editor.waiting.value.length > 0 || editor.keeper.saved.value.kind !== "saved";
+  const run = async () => {
+    setBusy(true);
+    try {
+      const done = await exportTrees(model, format);
+      if (done !== null) {
+        services.notices.news(done.text, done.actions);
+        close();
+      }
+    } catch (error) {
+      services.notices.failed(error);
+    } finally {
+      setBusy(false);
+    }
+  };
+  const foot = (
+    <>
+      <button type="button" class="button" onClick={close}>
+        Cancel
+      </button>
+      <button type="button" class="button main" disabled={busy} onClick={() => void run()}>
+        {busy ? "Writing" : "Export"}
+      </button>
+    </>
+  );
+  return (
+    <Sheet title="Export the trees" close={close} foot={foot}>
+      <fieldset class="radio-list">
+        <legend class="unseen">Format</legend>
+        {FORMATS.map((entry) => (
+          <label key={entry.format} class="radio-row">
+            <input
+              type="radio"
+              name="format"
+              value={entry.format}
+              checked={format === entry.format}
+              onChange={() => setFormat(entry.format)}
+            />
+            <span>
+              <strong>{entry.title}</strong>
+              <span class="soft">{entry.words}</span>
+            </span>
+          </label>
+        ))}
+      </fieldset>
+      <p class="soft">
+        File: <span class="figures">{exportFileName(model, format)}</span>
+      </p>
+      {waiting ? <p class="warn">Some edits are not saved yet. The export waits for them.</p> : null}
+      <p class="soft small">{CAUTIONS.join(" ")}</p>
+    </Sheet>
+  );
+}

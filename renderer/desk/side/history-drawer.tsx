@@ -1,0 +1,83 @@
+import { useEffect, useRef } from "preact/hooks";
+import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
+import type { HistoryEntry } from "#shared/log/history.ts";
+
+const PLACE_WORDS = { past: "", ahead: "undone, redo brings it back", aside: "on an undone branch" } as const;
+
+/** Every edit ever made, the newest first: click to go there. Undone branches stay. */
+export function HistoryDrawer({ model }: { readonly model: DeskModel }) {
+  const { editor } = model;
+  editor.revision.value;
+  const entries = [...editor.keeper.entries()].reverse();
+  const here = useRef<HTMLButtonElement>(null);
+  useEffect(() => here.current?.scrollIntoView({ block: "nearest" }), []);
+  const go = (seq: number) => editor.do({ do: "jump", seq });
+  return (
+    <aside class="pane history-drawer" aria-label="History">
+      <header class="row">
+        <h2>History</h2>
+        <span class="spring" />
+        {editor.readOnly ? null : (
+          <button type="button" class="button" title="Name this point (Shift + M)" onClick={() => (model.sheet.value = "mark")}>
+            mark
+          </button>
+        )}
+        <button
+          type="button"
+          class="button plain"
+          aria-label="Close the history"
+          onClick={() => (model.historyShown.value = false)}
+        >
+          ✕
+        </button>
+      </header>
+      <ol class="history-list">
+        {entries.map((entry, i) => (
+          <li key={entry.seq}>
+            {i === 0 || dayOf(entry) !== dayOf(entries[i - 1]!) ? <p class="history-day soft">{dayOf(entry)}</p> : null}
+            <button
+              {...(entry.isPointer ? { ref: here } : {})}
+              type="button"
+              class={`history-row ${entry.place}`}
+              aria-current={entry.isPointer ? "step" : undefined}
+              disabled={editor.readOnly}
+              title={PLACE_WORDS[entry.place]}
+              onClick={() => go(entry.seq)}
+            >
+              <span class="figures soft">{timeOf(entry)}</span>
+              <span>
+                {entry.label}
+                {entry.marks.map((mark) => (
+                  <span key={mark} class="tag">
+                    {mark}
+                  </span>
+                ))}
+                {entry.place === "past" ? null : <span class="unseen"> ({PLACE_WORDS[entry.place]})</span>}
+              </span>
+            </button>
+          </li>
+        ))}
+        <li>
+          <button
+            type="button"
+            class="history-row past"
+            disabled={editor.readOnly}
+            aria-current={editor.keeper.pointer === 0 ? "step" : undefined}
+            onClick={() => go(0)}
+          >
+            <span class="figures soft" />
+            <span>Before the first edit</span>
+          </button>
+        </li>
+      </ol>
+    </aside>
+  );
+}
+
+function timeOf(entry: HistoryEntry): string {
+  return new Date(entry.t).toLocaleTimeString("en-GB");
+}
+
+function dayOf(entry: HistoryEntry): string {
+  return new Date(entry.t).toLocaleDateString("en-GB", { weekday: "short", day: "numeric", month: "long", year: "numeric" });
+}
