@@ -3,6 +3,7 @@ import type { ScanChoice } from "#main/intake/slice-source.ts";
 import type { IntakeRequest, ScanLookAnswer } from "#shared/api/routes.ts";
 import type { SpecimenRecord } from "#shared/api/specimen.ts";
 import type { ErrorBody } from "#shared/errors.ts";
+import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 
 /** A scan to be taken in, with all that the worker cannot know by itself. */
@@ -25,10 +26,22 @@ export interface IntakeOutcome {
   readonly seconds: number;
 }
 
+/** The demo valve to be made. */
+export type DemoOrder = Pick<IntakeOrder, "library" | "id" | "created">;
+
+/** The demo valve's specimen and its invented annotators' passes. */
+export interface DemoOutcome extends IntakeOutcome {
+  readonly passes: readonly { readonly annotator: string; readonly file: ChordaeFile }[];
+}
+
 /** What the worker is started for (its `workerData`). */
 export type WorkerTask =
   | { readonly task: "intake"; readonly order: IntakeOrder }
+  | { readonly task: "demo"; readonly order: DemoOrder }
+  | { readonly task: "demo-passes"; readonly sha256: string }
   | { readonly task: "look"; readonly path: string; readonly choice?: ScanChoice };
+
+export type WorkerResult = IntakeOutcome | DemoOutcome | DemoOutcome["passes"] | ScanLookAnswer;
 
 /** To the worker. */
 export type WorkerRequest = { readonly stop: true };
@@ -36,5 +49,5 @@ export type WorkerRequest = { readonly stop: true };
 /** From the worker; the last message is `done` or `failed`. */
 export type WorkerMessage =
   | { readonly type: "progress"; readonly progress: IntakeProgress }
-  | { readonly type: "done"; readonly result: IntakeOutcome | ScanLookAnswer }
+  | { readonly type: "done"; readonly result: WorkerResult }
   | { readonly type: "failed"; readonly error: ErrorBody };

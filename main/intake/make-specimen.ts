@@ -10,6 +10,7 @@ import { surveySource } from "#main/intake/survey-source.ts";
 import type { Handedness, SpecimenFacts, SpecimenRecord } from "#shared/api/specimen.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
+import type { Landmarks } from "#shared/trees/document.ts";
 import { BYTES_OF_DTYPE } from "#shared/volume/dtype.ts";
 import { gridOf } from "#shared/volume/scan-header.ts";
 import { STORE_NAME } from "#shared/volume/store/layout.ts";
@@ -31,6 +32,8 @@ export interface SpecimenOptions {
   /** Absent: as the values suggest. */
   readonly polarity?: Polarity;
   readonly facts: SpecimenFacts;
+  /** Where they are known (generated data). */
+  readonly landmarks?: Landmarks;
   readonly synthetic: boolean;
   /** Width of the scan's blur where it is known (generated data); null = not estimated. */
   readonly blurFwhmMm?: number | null;
@@ -126,7 +129,7 @@ export async function makeSpecimen(
       polarity: options.polarity ?? made.suggestedPolarity,
       display: made.display,
       facts: options.facts,
-      landmarks: {},
+      landmarks: options.landmarks ?? {},
     };
     await writeWhole(files, join(work, "specimen.json"), JSON.stringify(record, null, 2));
     await at("record-written");

@@ -1,7 +1,16 @@
 import { existsSync } from "node:fs";
 import { fileURLToPath } from "node:url";
 import { Worker } from "node:worker_threads";
-import type { IntakeOrder, IntakeOutcome, WorkerMessage, WorkerRequest, WorkerTask } from "#main/intake/intake-messages.ts";
+import type {
+  DemoOrder,
+  DemoOutcome,
+  IntakeOrder,
+  IntakeOutcome,
+  WorkerMessage,
+  WorkerRequest,
+  WorkerResult,
+  WorkerTask,
+} from "#main/intake/intake-messages.ts";
 import type { IntakeProgress } from "#main/intake/progress.ts";
 import type { ScanChoice } from "#main/intake/slice-source.ts";
 import type { ScanLookAnswer } from "#shared/api/routes.ts";
@@ -15,6 +24,16 @@ export interface RunHooks {
 /** Takes a scan in, in a thread of its own. On failure or cancel nothing is left in the library. @throws as `makeSpecimen` */
 export async function runIntake(order: IntakeOrder, hooks: RunHooks = {}): Promise<IntakeOutcome> {
   return (await runWorker({ task: "intake", order }, hooks)) as IntakeOutcome;
+}
+
+/** Makes the demo valve's specimen, in a thread of its own. @throws as `makeSpecimen` */
+export async function runDemo(order: DemoOrder, hooks: RunHooks = {}): Promise<DemoOutcome> {
+  return (await runWorker({ task: "demo", order }, hooks)) as DemoOutcome;
+}
+
+/** The demo valve's invented passes alone, in a thread of its own. */
+export async function runDemoPasses(sha256: string, hooks: RunHooks = {}): Promise<DemoOutcome["passes"]> {
+  return (await runWorker({ task: "demo-passes", sha256 }, hooks)) as DemoOutcome["passes"];
 }
 
 /** Looks at a scan in a thread of its own. @throws unreadable-input, cancelled */
@@ -33,7 +52,7 @@ function workerFile(): URL {
   return url;
 }
 
-function runWorker(task: WorkerTask, hooks: RunHooks): Promise<IntakeOutcome | ScanLookAnswer> {
+function runWorker(task: WorkerTask, hooks: RunHooks): Promise<WorkerResult> {
   return new Promise((resolve, reject) => {
     if (hooks.signal?.aborted) {
       reject(new TautlineError("cancelled", "Stopped.", { what: task.task }));

@@ -1,5 +1,7 @@
 import { parentPort, workerData } from "node:worker_threads";
-import type { WorkerMessage, WorkerTask } from "#main/intake/intake-messages.ts";
+import type { WorkerMessage, WorkerResult, WorkerTask } from "#main/intake/intake-messages.ts";
+import { demoPasses, makeDemo } from "#main/intake/make-demo.ts";
+import type { IntakeProgress } from "#main/intake/progress.ts";
 import { lookAtScan } from "#main/intake/scan-info.ts";
 import { takeIn } from "#main/intake/take-in.ts";
 import { encodeError } from "#shared/errors.ts";
@@ -10,12 +12,22 @@ const tell = (message: WorkerMessage) => port.postMessage(message);
 const stop = new AbortController();
 port.on("message", () => stop.abort());
 
+async function perform(work: WorkerTask): Promise<WorkerResult> {
+  const hooks = { signal: stop.signal, onProgress: (progress: IntakeProgress) => tell({ type: "progress", progress }) };
+  switch (work.task) {
+    case "intake":
+      return takeIn(work.order, hooks);
+    case "demo":
+      return makeDemo(work.order, hooks);
+    case "demo-passes":
+      return demoPasses(work.sha256);
+    case "look":
+      return lookAtScan(work.path, { signal: stop.signal, ...(work.choice ? { choice: work.choice } : {}) });
+  }
+}
+
 try {
-  const work = workerData as WorkerTask;
-  const result =
-    work.task === "intake"
-      ? await takeIn(work.order, { signal: stop.signal, onProgress: (progress) => tell({ type: "progress", progress }) })
-      : await lookAtScan(work.path, { signal: stop.signal, ...(work.choice ? { choice: work.choice } : {}) });
+  const result = await perform(workerData as WorkerTask);
   tell({ type: "done", result });
 } catch (error) {
   const body = encodeError(error);

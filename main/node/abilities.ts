@@ -1,8 +1,8 @@
 import type { Progress } from "#main/node/jobs.ts";
-import type { FirstEdit } from "#main/node/pass-store.ts";
 import type { Engine } from "#shared/api/engine.ts";
 import type { IntakeRequest, ScanLookAnswer } from "#shared/api/routes.ts";
 import type { SpecimenRecord } from "#shared/api/specimen.ts";
+import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
 
 /** What a new specimen needs that no worker can know by itself. */
 export interface SpecimenOrder {
@@ -19,9 +19,10 @@ export interface WorkHooks {
   onProgress(progress: Progress): void;
 }
 
+/** An invented annotator's pass over the demo valve. */
 export interface DemoPass {
   readonly annotator: string;
-  first(): Promise<FirstEdit>;
+  readonly file: ChordaeFile;
 }
 
 /** What the entry points bring in from the engine's and the intake's folders. */
@@ -30,9 +31,12 @@ export interface Abilities {
   look(path: string): Promise<ScanLookAnswer>;
   runIntake(order: SpecimenOrder & IntakeRequest, hooks: WorkHooks): Promise<{ readonly record: SpecimenRecord }>;
   /** Makes the demo valve's specimen. */
-  runDemo(order: SpecimenOrder, hooks: WorkHooks): Promise<{ readonly record: SpecimenRecord }>;
-  /** The invented passes of the demo valve, which `specimen` holds; each is made when it is asked for. */
-  demoPasses(specimen: SpecimenRecord): Promise<readonly DemoPass[]>;
+  runDemo(
+    order: SpecimenOrder,
+    hooks: WorkHooks,
+  ): Promise<{ readonly record: SpecimenRecord; readonly passes: readonly DemoPass[] }>;
+  /** The demo valve's passes alone; its stored voxels have this hash. */
+  runDemoPasses(sha256: string): Promise<readonly DemoPass[]>;
   /** Asks the engine to let go of a specimen's store before its folder is removed. */
   forgetSpecimen?(specimen: string): Promise<void>;
 }

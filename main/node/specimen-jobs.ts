@@ -4,7 +4,16 @@ import { hideFolders } from "#main/node/hide-folders.ts";
 import type { Jobs, JobWork } from "#main/node/jobs.ts";
 import type { Library } from "#main/node/library.ts";
 import { NEW_PASS } from "#main/node/pass-file.ts";
+import type { FirstEdit } from "#main/node/pass-store.ts";
 import type { ServerEvent } from "#shared/api/routes.ts";
+import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
+import { documentFromFile } from "#shared/formats/chordae/document-from-file.ts";
+import { emptyDocument } from "#shared/trees/document.ts";
+import { takeInTrees } from "#shared/trees/edits/take-in-trees.ts";
+import { IdSource, NO_IDS_YET } from "#shared/trees/ids.ts";
+
+/** The demo valve has the passes of three invented annotators. */
+const DEMO_ANNOTATORS = 3;
 
 export interface SpecimenJobsOptions {
   readonly root: string;
@@ -27,15 +36,18 @@ export function specimenJobs(options: SpecimenJobsOptions): JobsPort {
   const makeDemo: JobWork = async (onProgress, signal) => {
     const { specimens } = await library.shelf();
     const found = specimens.find(({ specimen }) => specimen.synthetic);
-    const specimen = found?.specimen ?? (await abilities.runDemo(order(), { onProgress, signal })).record;
     const there = new Set(found?.passes.filter(({ synthetic }) => synthetic).map(({ annotator }) => annotator));
-    for (const { annotator, first } of await abilities.demoPasses(specimen)) {
+    if (found && there.size >= DEMO_ANNOTATORS) return { specimen: found.specimen.id };
+    const made = found
+      ? { record: found.specimen, passes: await abilities.runDemoPasses(found.specimen.volume.sha256) }
+      : await abilities.runDemo(order(), { onProgress, signal });
+    for (const { annotator, file } of made.passes) {
       if (there.has(annotator)) continue;
-      const file = { ...NEW_PASS, synthetic: true, state: "finished" } as const;
-      await library.passes.createFilled(specimen.id, annotator, file, await first());
+      const about = { ...NEW_PASS, synthetic: true, state: "finished" } as const;
+      await library.passes.createFilled(made.record.id, annotator, about, editOfFile(file));
     }
     emit({ event: "shelf" });
-    return { specimen: specimen.id };
+    return { specimen: made.record.id };
   };
 
   async function openDemo(): Promise<{ job: string }> {
@@ -60,4 +72,10 @@ export function specimenJobs(options: SpecimenJobsOptions): JobsPort {
     cancel: async (job) => jobs.cancel(job),
     jobs: () => jobs.states(),
   };
+}
+
+/** A file's trees as the first edit of a pass. */
+function editOfFile(file: ChordaeFile): FirstEdit {
+  const { operation, curves } = takeInTrees(emptyDocument(), new IdSource(NO_IDS_YET), { incoming: documentFromFile(file) });
+  return { operation, curves, label: "Synthetic trees taken in" };
 }
