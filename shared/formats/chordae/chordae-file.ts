@@ -42,11 +42,9 @@ export interface FileSpecimen extends Open {
   readonly state?: string | null;
 }
 
-export interface FileNode extends Open {
-  readonly id: string;
+/** What a node is, beside its id and place. */
+export interface NodeLabels {
   readonly kind: NodeKind;
-  /** Millimetres, in the file's frame. */
-  readonly position: Vec3;
   readonly certainty?: Certainty;
   readonly site?: OriginSite;
   readonly muscle?: Muscle;
@@ -55,6 +53,12 @@ export interface FileNode extends Open {
   readonly segment?: Segment;
   readonly zone?: Zone;
   readonly cleft?: boolean;
+}
+
+export interface FileNode extends NodeLabels, Open {
+  readonly id: string;
+  /** Millimetres, in the file's frame. */
+  readonly position: Vec3;
 }
 
 /** What strands and cross-links have in common. */

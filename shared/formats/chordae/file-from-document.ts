@@ -109,7 +109,8 @@ function pointsOf(curve: Curve): Vec3[] {
   );
 }
 
-function fileLandmarks(landmarks: Landmarks): FileLandmarks | undefined {
+/** Landmarks as a file holds them; undefined when there are none. */
+export function fileLandmarks(landmarks: Landmarks): FileLandmarks | undefined {
   const { annulus, freeEdges, commissures, muscleHeads, more } = landmarks;
   const file = present({
     annulus: annulus && { closed: annulus.closed, points: annulus.points.map(roundPoint) },

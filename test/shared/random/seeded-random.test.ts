@@ -38,13 +38,22 @@ describe("seeded random numbers", () => {
     expect(take(new SeededRandom(0)).some((value) => value !== 0)).toBe(true);
   });
 
+  it("come the same one by one and many at once", () => {
+    const single = new SeededRandom(5);
+    const many = new SeededRandom(5);
+    const out = new Uint32Array(999);
+    many.fill(out);
+    expect([...out]).toEqual(Array.from(out, () => single.uint32()));
+    expect(many.uint32()).toBe(single.uint32());
+  });
+
   it("spread evenly, and normally", () => {
     const random = new SeededRandom(3);
     const n = 100_000;
     const bins = new Array<number>(10).fill(0);
     for (let i = 0; i < n; i++) bins[random.below(10)]! += 1;
     // Five standard deviations of a binomial count.
-    for (const count of bins) expect(Math.abs(count - n / 10)).toBeLessThan(5 * Math.sqrt((n * 0.1) * 0.9));
+    for (const count of bins) expect(Math.abs(count - n / 10)).toBeLessThan(5 * Math.sqrt(n * 0.1 * 0.9));
     let sum = 0;
     let squares = 0;
     for (let i = 0; i < n; i++) {
