@@ -54,14 +54,16 @@ export function arcLengthsOfPins(points: readonly Vec3[], pins: readonly Vec3[])
     best = next;
   }
   const indices = new Array<number>(pins.length);
-  indices[pins.length - 1] = best.indexOf(Math.min(...best));
+  indices[pins.length - 1] = best.reduce((least, cost, i) => (cost < best[least]! ? i : least), 0);
   for (let k = pins.length - 1; k > 0; k--) indices[k - 1] = choice[k]![indices[k]!]!;
   const along = arcLengths(points);
   let last = 0;
   return indices.map((index, k) => {
     const first = Math.max(0, index - 1);
-    const around = points.slice(first, index + 2);
-    last = Math.max(last, along[first]! + nearestOnPolyline(around, pins[k]!).at);
+    const near = along[first]! + nearestOnPolyline(points.slice(first, index + 2), pins[k]!).at;
+    // Not beyond the next pin's point, so that it can keep that point.
+    const next = indices[k + 1];
+    last = Math.min(Math.max(last, near), next === undefined ? Number.POSITIVE_INFINITY : along[next]!);
     return last;
   });
 }
