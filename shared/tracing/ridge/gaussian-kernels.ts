@@ -28,9 +28,10 @@ export function gaussianKernels(sigma: number): GaussianKernels {
     first[k] = k * g;
     second[k] = (k * k - s2) * g;
   }
-  // Where the Gaussian is too narrow to reach the neighbour, only the differences are left.
-  if (!(first[1]! > 1e-12)) first[1] = 1;
-  if (!(second[1]! > 1e-12)) {
+  // Where the Gaussian is too narrow to reach the neighbour, only the differences are left. (From sigma 1 on the second
+  // derivative at the neighbour is negative: that is no sign of it.)
+  if (!(smooth[1]! > 1e-12)) {
+    first[1] = 1;
     second.fill(0);
     second[1] = 1;
   }
