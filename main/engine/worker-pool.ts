@@ -33,8 +33,9 @@ interface Seat {
   broken: boolean;
 }
 
-/** A worker that dies so often without finishing anything will not be started again. */
+/** A worker that dies so often without finishing anything is left alone for a while; its tasks fail meanwhile. */
 const MOST_DEATHS = 3;
+const REST_MS = 5000;
 
 /**
  * Runs tasks on worker threads, one at a time each; everything that waits is queued here, so that dropping it costs nothing.
@@ -188,8 +189,19 @@ export class WorkerPool {
     if (task)
       settle(task, fault("A part of the engine failed and was started again; try once more.", `engine worker: ${reason}`));
     seat.deaths++;
-    if (seat.deaths > MOST_DEATHS) seat.broken = true;
-    else seat.thread = this.#spawn(n);
+    if (seat.deaths > MOST_DEATHS) {
+      seat.broken = true;
+      setTimeout(() => this.#tryAgain(n), REST_MS).unref();
+    } else seat.thread = this.#spawn(n);
+    this.#dispatch();
+  }
+
+  #tryAgain(n: number): void {
+    if (this.#closed) return;
+    const seat = this.#seats[n]!;
+    seat.thread = this.#spawn(n);
+    seat.broken = false;
+    seat.deaths = MOST_DEATHS;
     this.#dispatch();
   }
 }

@@ -5,7 +5,11 @@ import type { MadeBy } from "#shared/trees/document.ts";
 
 export type Lane = "section" | "guide" | "space" | "job";
 
-/** Every heavy request says whose it is; a newer number of the same window and lane supersedes an older one. */
+/**
+ * Every heavy request says whose it is. A newer number of the same window, lane and kind of request (section, strip, snap,
+ * preview ...) supersedes an older one that is not answered yet; kinds do not drop each other, so each may be counted by
+ * itself. In the lane `job` nothing is superseded.
+ */
 export interface Ticket {
   readonly window: string;
   readonly lane: Lane;
@@ -28,13 +32,13 @@ export interface SectionRequest {
   readonly ticket: Ticket;
   readonly specimen: string;
   readonly plane: PlaneMm;
-  /** Thickness of the slab along the normal, millimetres; 0 = a plane without thickness. */
+  /** Thickness of the slab along the normal, half of it to each side of the plane, millimetres; 0 = a plane without thickness. */
   readonly slabMm: number;
   readonly slabMode: "max" | "mean";
   /** Grey values shown as 0 and 255. */
   readonly low: number;
   readonly high: number;
-  /** `moving` may answer from a coarser level. */
+  /** `moving` may answer from a coarser level; the answer has the pixels asked for, so ask for half of them a side. */
   readonly quality: "moving" | "still";
 }
 
