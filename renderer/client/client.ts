@@ -148,7 +148,7 @@ export class Client {
     signal?: AbortSignal,
   ): Promise<{ curves: readonly SolvedCurve[] }> {
     this.jobNumber += 1;
-    const ticket: Ticket = { window: `${this.window}.solve-${this.jobNumber}`, lane: "job", number: this.jobNumber };
+    const ticket: Ticket = { window: `${this.window}-solve-${this.jobNumber}`, lane: "job", number: this.jobNumber };
     const body = { ticket, specimen, strands, parameters };
     return this.json("solve", signal === undefined ? { body } : { body, signal }, RANK.guide);
   }
@@ -208,7 +208,7 @@ export class Client {
     // Lines of one lane must not supersede each other on the server, so each is a window of its own there.
     return this.newest.run(
       line,
-      (number) => send({ window: `${this.window}.${line.replaceAll(" ", "-")}`, lane, number }),
+      (number) => send({ window: `${this.window}-${line.replaceAll(" ", "-")}`, lane, number }),
       atOnce,
     );
   }

@@ -32,8 +32,8 @@ export function lookAtTrees(bytes: Uint8Array, name: string, specimen: SpecimenR
       sentence: "The file does not say which scan its trees belong to. Check that they lie on the strings.",
     };
   }
-  const related = [own, file.volume?.derivedFrom?.sha256].filter((hash) => hash !== undefined);
-  const mine = [volume.sha256, volume.derivedFrom?.sha256];
+  const related = [own, file.volume?.derivedFrom?.sha256].filter((hash) => typeof hash === "string");
+  const mine: readonly (string | undefined)[] = [volume.sha256, volume.derivedFrom?.sha256];
   if (related.some((hash) => mine.includes(hash))) return { name, document, scan: "same", sentence: null };
   const sentence = `The trees were traced on another scan (${file.volume?.name ?? "without a name"}, voxels ${own.slice(0, 12)}); this one is ${specimen.name}, voxels ${volume.sha256.slice(0, 12)}.`;
   return { name, document, scan: "other", sentence };
