@@ -10,6 +10,7 @@ import {
   isPlainObject,
   isText,
   listOf,
+  numberList,
   type OptionalCheck,
   objectOf,
   oneOf,
@@ -127,8 +128,8 @@ const headerFields: Fields<LogHeader> = {
 
 const curveFields: Fields<CurveBody> = {
   id: id("curve"),
-  points: listOf(isFiniteNumber),
-  radii: listOf(orNull(isFiniteNumber)),
+  points: numberList(false),
+  radii: numberList(true),
   madeBy: listOf(
     holds(
       "[first index, last index, guide, follow, straight or edited]",

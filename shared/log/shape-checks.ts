@@ -71,6 +71,18 @@ export function listOf(item: Check): Check {
   };
 }
 
+/** Check for a list of finite numbers (`mayBeNull`: or null); quick, since curves are long. */
+export function numberList(mayBeNull: boolean): Check {
+  return (value, where) => {
+    if (!Array.isArray(value)) throw new ShapeFault(where, "a list", value);
+    for (let i = 0; i < value.length; i++) {
+      const entry: unknown = value[i];
+      if (typeof entry === "number" ? Number.isFinite(entry) : mayBeNull && entry === null) continue;
+      throw new ShapeFault(`${where}[${i}]`, mayBeNull ? "a finite number or null" : "a finite number", entry);
+    }
+  };
+}
+
 /** Check for an object with exactly these keys (those marked optional may be missing; no others may be there). */
 export function objectOf<Keys extends string>(fields: Readonly<Record<Keys, Check | OptionalCheck>>): Check {
   const entries = Object.entries(fields) as [Keys, Check | OptionalCheck][];
