@@ -25,7 +25,7 @@ export function sectionInk(element: Element): SectionInk {
 
 /** A tree's colour for its name on the picture: itself where it is light enough to read there. */
 export function nameColour(ink: SectionInk, colour: string): string {
-  return relativeLightness(colour) > 0.45 ? colour : ink.text;
+  return relativeLightness(colour) > 0.49 ? colour : ink.text;
 }
 
 /** Dark casing under light lines, light casing under dark ones: lines and texts are on the ink's side of grey. */

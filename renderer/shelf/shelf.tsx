@@ -1,10 +1,144 @@
+import "#renderer/shelf/shelf.css";
+import { useEffect, useMemo, useState } from "preact/hooks";
+import { AboutSheet } from "#renderer/app/about-sheet.tsx";
 import type { Services } from "#renderer/app/services.ts";
+import { setTheme, theme } from "#renderer/app/theme-choice.ts";
+import { AddScanSheet } from "#renderer/shelf/add-scan/add-scan-sheet.tsx";
+import { FirstSteps } from "#renderer/shelf/first-steps.tsx";
+import { JobCard } from "#renderer/shelf/job-card.tsx";
+import { ShelfModel } from "#renderer/shelf/shelf-model.ts";
+import { SpecimenRow } from "#renderer/shelf/specimen-row.tsx";
+import { plural } from "#renderer/shelf/words.ts";
 
 export interface ShelfProps {
   readonly services: Services;
 }
 
+const STEPS_KEY = "tautline-first-steps";
+
 /** The start screen: specimens of the library with their passes, and the ways to add a scan. */
-export function Shelf(_props: ShelfProps) {
-  return <main class="shelf" aria-label="Shelf" />;
+export function Shelf({ services }: ShelfProps) {
+  const { client, capabilities, notices } = services;
+  const model = useMemo(() => new ShelfModel(client, (error) => notices.failed(error)), [client, notices]);
+  useEffect(() => model.start(), [model]);
+  const [adding, setAdding] = useState<{ readonly path: string } | null>(null);
+  const [about, setAbout] = useState(false);
+  const [steps, setSteps] = useState(() => localStorage.getItem(STEPS_KEY) !== "put away");
+  const [over, setOver] = useState(false);
+  const answer = model.answer.value;
+  const jobs = model.jobs.value.filter(({ state }) => state === "running" || state === "failed");
+  const demoRuns = jobs.some(({ what, state }) => what === "demo" && state === "running");
+
+  const drop = (event: DragEvent) => {
+    setOver(false);
+    const file = event.dataTransfer?.files[0];
+    if (file === undefined) return;
+    event.preventDefault();
+    const path = capabilities.pathOfDropped(file);
+    if (path !== null) setAdding({ path });
+    else {
+      notices.news(`A browser does not tell where '${file.name}' lies. Type or choose its path.`);
+      setAdding({ path: "" });
+    }
+  };
+
+  return (
+    <main
+      class={over ? "shelf dropping" : "shelf"}
+      aria-label="Shelf"
+      onDragOver={(event) => {
+        if (!event.dataTransfer?.types.includes("Files")) return;
+        event.preventDefault();
+        setOver(true);
+      }}
+      onDragLeave={(event) => event.currentTarget === event.target && setOver(false)}
+      onDrop={drop}
+    >
+      <header class="shelf-head">
+        <h1>Tautline</h1>
+        <p class="soft">{answer === null ? "" : plural(answer.specimens.length, "specimen")}</p>
+        <div class="shelf-actions">
+          <button type="button" class="button main" onClick={() => setAdding({ path: "" })}>
+            Add a scan
+          </button>
+          <button type="button" class="button" disabled={demoRuns} onClick={() => void model.openDemo()}>
+            Open the demo valve
+          </button>
+          <button type="button" class="button plain" onClick={() => setTheme(theme.value === "dark" ? "light" : "dark")}>
+            {theme.value === "dark" ? "Light theme" : "Dark theme"}
+          </button>
+          <button type="button" class="button plain" onClick={() => setAbout(true)}>
+            About
+          </button>
+        </div>
+      </header>
+      <div class="shelf-body">
+        {steps ? (
+          <FirstSteps
+            putAway={() => {
+              localStorage.setItem(STEPS_KEY, "put away");
+              setSteps(false);
+            }}
+          />
+        ) : null}
+        <div aria-live="polite">
+          {jobs.map((job) => (
+            <JobCard key={job.id} job={job} model={model} />
+          ))}
+        </div>
+        {model.failure.value === null ? null : (
+          <div class="shelf-job failed" role="alert">
+            <div>
+              <h3>The library could not be read</h3>
+              <p>{model.failure.value}</p>
+            </div>
+            <button type="button" class="button" onClick={() => void model.load()}>
+              Try again
+            </button>
+          </div>
+        )}
+        {answer === null && model.failure.value === null ? <p class="soft shelf-wait">Reading the library …</p> : null}
+        {answer !== null && answer.specimens.length === 0 && jobs.length === 0 ? (
+          <p class="shelf-wait">
+            The shelf is empty. Add a scan from this computer{capabilities.shell === "electron" ? ", drop one here," : ""} or open
+            the demo valve.
+          </p>
+        ) : null}
+        <ul class="shelf-rows" aria-label="Specimens">
+          {answer?.specimens.map((shown) => (
+            <SpecimenRow
+              key={shown.specimen.id}
+              shown={shown}
+              services={services}
+              fresh={model.made.value === shown.specimen.id}
+              reload={() => model.load()}
+            />
+          ))}
+        </ul>
+        {answer !== null && answer.problems.length > 0 ? (
+          <section class="shelf-problems" aria-label="What could not be read">
+            <h3>In the library folder, but not readable</h3>
+            <ul>
+              {answer.problems.map((problem) => (
+                <li key={problem}>{problem}</li>
+              ))}
+            </ul>
+          </section>
+        ) : null}
+      </div>
+      {adding === null ? null : (
+        <AddScanSheet
+          client={client}
+          capabilities={capabilities}
+          path={adding.path}
+          close={() => setAdding(null)}
+          begun={(job) => {
+            model.begun(job);
+            setAdding(null);
+          }}
+        />
+      )}
+      {about ? <AboutSheet client={client} close={() => setAbout(false)} /> : null}
+    </main>
+  );
 }

@@ -1,0 +1,119 @@
+import { useEffect, useRef, useState } from "preact/hooks";
+import type { Services } from "#renderer/app/services.ts";
+import { NewPass } from "#renderer/shelf/new-pass.tsx";
+import { RemoveSheet } from "#renderer/shelf/remove-sheet.tsx";
+import { SpecimenPicture } from "#renderer/shelf/specimen-picture.tsx";
+import { dateWords, factsWords, passWords, sidesWords, spacingWords, voxelsWords } from "#renderer/shelf/words.ts";
+import type { PassSummary, ShelfSpecimen } from "#shared/api/specimen.ts";
+
+export interface SpecimenRowProps {
+  readonly shown: ShelfSpecimen;
+  readonly services: Services;
+  /** Just made by a job: brought into view, and its next step gets the focus. */
+  readonly fresh: boolean;
+  readonly reload: () => Promise<void>;
+}
+
+/** One specimen: its picture, what is known of it, its passes. */
+export function SpecimenRow({ shown, services, fresh, reload }: SpecimenRowProps) {
+  const [asking, setAsking] = useState<"pass" | "remove" | null>(null);
+  const row = useRef<HTMLLIElement>(null);
+  const newPass = useRef<HTMLButtonElement>(null);
+  useEffect(() => {
+    if (!fresh) return;
+    row.current?.scrollIntoView({ block: "nearest" });
+    newPass.current?.focus();
+  }, [fresh]);
+  const { specimen, passes, incomplete } = shown;
+  const { volume } = specimen;
+  const facts = factsWords(specimen.facts);
+  const open = (pass: PassSummary) => services.goTo({ screen: "desk", specimen: specimen.id, pass: pass.id });
+  const known = [
+    ...new Set(
+      [...passes]
+        .sort((a, b) => b.changed - a.changed)
+        .filter((p) => !p.synthetic)
+        .map((p) => p.annotator),
+    ),
+  ];
+  const close = () => {
+    setAsking(null);
+    newPass.current?.focus();
+  };
+  return (
+    <li ref={row} class={fresh ? "shelf-row pane fresh" : "shelf-row pane"} aria-labelledby={`specimen-${specimen.id}`}>
+      <SpecimenPicture client={services.client} shown={shown} />
+      <div class="shelf-about">
+        <h2 id={`specimen-${specimen.id}`}>
+          {specimen.name}
+          {specimen.synthetic ? <span class="shelf-tag">synthetic</span> : null}
+          {incomplete ? <span class="shelf-tag">being taken in</span> : null}
+        </h2>
+        <p>
+          {voxelsWords(volume.size)} of {spacingWords(volume.spacing)}
+        </p>
+        <p>{sidesWords(volume.size, volume.spacing)}</p>
+        {facts === "" ? null : <p class="soft">{facts}</p>}
+        {volume.handedness === "unknown" ? (
+          <p class="soft" title="Nobody has confirmed that the scan is not a mirror image">
+            handedness not confirmed
+          </p>
+        ) : null}
+        <button type="button" class="button plain shelf-quiet" onClick={() => setAsking("remove")}>
+          Remove …<span class="unseen"> {specimen.name}</span>
+        </button>
+      </div>
+      <div class="shelf-passes">
+        {passes.length === 0 ? <p class="soft">No passes yet. Start one to trace on this scan.</p> : null}
+        <ul>
+          {passes.map((pass) => (
+            <li key={pass.id}>
+              <div>
+                <p class="shelf-pass-name">
+                  {pass.annotator}, pass {pass.number}
+                  {pass.synthetic ? <span class="shelf-tag">synthetic</span> : null}
+                  <span class={pass.state === "finished" ? "shelf-state done" : "shelf-state"}>
+                    {pass.state === "finished" ? "finished" : "under way"}
+                  </span>
+                </p>
+                <p class="soft">
+                  {passWords(pass)} · <span class="shelf-date">{dateWords(pass.changed)}</span>
+                </p>
+              </div>
+              <button type="button" class="button" onClick={() => open(pass)}>
+                Open
+                <span class="unseen">
+                  {" "}
+                  {pass.annotator}, pass {pass.number} of {specimen.name}
+                </span>
+              </button>
+            </li>
+          ))}
+        </ul>
+        {asking === "pass" ? (
+          <NewPass
+            specimen={specimen.id}
+            known={known}
+            close={close}
+            create={async (annotator) => open(await services.client.createPass(specimen.id, annotator))}
+          />
+        ) : (
+          <button type="button" class="button" ref={newPass} onClick={() => setAsking("pass")}>
+            New pass<span class="unseen"> on {specimen.name}</span>
+          </button>
+        )}
+      </div>
+      {asking === "remove" ? (
+        <RemoveSheet
+          shown={shown}
+          close={() => setAsking(null)}
+          remove={async (force) => {
+            await services.client.removeSpecimen(specimen.id, force);
+            await reload();
+            services.notices.news(`${specimen.name} was removed.`);
+          }}
+        />
+      ) : null}
+    </li>
+  );
+}
