@@ -13,6 +13,7 @@ export interface Effort {
   readonly last: { readonly session: string; readonly mono: number; readonly away: boolean } | null;
 }
 
+/** Before the first record. */
 export const NO_EFFORT: Effort = { workMs: 0, sessions: 0, last: null };
 
 /**

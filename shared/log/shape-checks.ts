@@ -29,14 +29,20 @@ export function holds(expected: string, test: (value: unknown) => boolean): Chec
   };
 }
 
+/** Check for text. */
 export const isText = holds("text", (v) => typeof v === "string");
+/** Check for three finite numbers (a place in millimetres, order xyz). */
 export const isFinite3 = holds(
   "three finite numbers",
   (v) => Array.isArray(v) && v.length === 3 && v.every((n) => typeof n === "number" && Number.isFinite(n)),
 );
+/** Check for a finite number. */
 export const isFiniteNumber = holds("a finite number", (v) => typeof v === "number" && Number.isFinite(v));
+/** Check for true or false. */
 export const isBoolean = holds("true or false", (v) => typeof v === "boolean");
+/** Check for a whole number, 0 or more. */
 export const isCount = holds("a whole number, 0 or more", (v) => Number.isSafeInteger(v) && (v as number) >= 0);
+/** Check for an object that is no list. */
 export const isPlainObject = holds("an object", (v) => typeof v === "object" && v !== null && !Array.isArray(v));
 
 /** Check for one of `words`. */

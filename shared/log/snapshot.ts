@@ -8,7 +8,9 @@ import type { CurveBody, LogHead, LogHeader } from "#shared/log/records.ts";
 import { ShapeFault } from "#shared/log/shape-checks.ts";
 import type { CrossLink, Dismissal, Landmarks, Strand, Tree, TreeNode } from "#shared/trees/document.ts";
 
+/** What a snapshot calls itself. */
 export const SNAPSHOT_FORMAT = "tautline-pass-snapshot";
+/** Version of the snapshot's form; any other is passed over. */
 export const SNAPSHOT_VERSION = 1;
 /** A snapshot is due when this many records were written since the last one. */
 export const RECORDS_PER_SNAPSHOT = 200;

@@ -1,6 +1,7 @@
 import type { CrossLinkId, CurveId, NodeId, StrandId, TreeDocument, TreeId } from "#shared/trees/document.ts";
 import type { Operation } from "#shared/trees/operations.ts";
 
+/** The form of ids, by table. */
 export interface IdOfTable {
   tree: TreeId;
   node: NodeId;
@@ -8,6 +9,7 @@ export interface IdOfTable {
   "cross-link": CrossLinkId;
   curve: CurveId;
 }
+/** Tables whose records have ids. */
 export type IdTable = keyof IdOfTable;
 
 const LETTER: Readonly<Record<IdTable, string>> = { tree: "t", node: "n", strand: "s", "cross-link": "x", curve: "c" };
@@ -16,6 +18,7 @@ const TABLE_OF_LETTER: Readonly<Record<string, IdTable>> = { t: "tree", n: "node
 /** The highest counter ever used, by table; 0 = none yet. */
 export type IdCounters = Readonly<Record<IdTable, number>>;
 
+/** Counters of a log that named nothing yet. */
 export const NO_IDS_YET: IdCounters = { tree: 0, node: 0, strand: 0, "cross-link": 0, curve: 0 };
 
 /** True for an id of the log's form: its letter and a positive counter without leading zeros. */

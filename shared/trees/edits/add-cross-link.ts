@@ -8,6 +8,7 @@ import { crossLinkOf, nodeOf, refusal } from "#shared/trees/edits/refusal.ts";
 import { dissolveNode } from "#shared/trees/edits/rewiring.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 
+/** Where a cross-link runs. */
 export interface AddCrossLinkArgs {
   readonly from: Anchor;
   readonly to: Anchor;

@@ -9,6 +9,7 @@ import { isLooseEnd, partFrom, retag, splitStrand, tidyNode, withEndMoved } from
 import type { IdSource } from "#shared/trees/ids.ts";
 import { nextTreeName } from "#shared/trees/names.ts";
 
+/** Where a strand is cut. */
 export interface CutArgs {
   readonly strand: StrandId;
   /** The cut is at the place nearest to this point; at one of the strand's nodes the strand is cut off there. */

@@ -4,6 +4,7 @@ import type { EditPlan } from "#shared/trees/edits/edit-plan.ts";
 import { refusal } from "#shared/trees/edits/refusal.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 
+/** A finding and what is said of it. */
 export interface DismissFindingArgs {
   /** The finding's stable text, made of its code and place. */
   readonly key: string;

@@ -8,6 +8,7 @@ import { nodeOf, refusal } from "#shared/trees/edits/refusal.ts";
 import { asKind, isLooseEnd } from "#shared/trees/edits/rewiring.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 
+/** How and where a strand ends. */
 export interface EndStrandArgs {
   readonly node: NodeId;
   readonly kind: EndKind;

@@ -10,6 +10,7 @@ import { nodeOf, refusal, strandOf, treeOf } from "#shared/trees/edits/refusal.t
 import { partFrom, retag, rootSideOf, type TreePart, withEndMoved } from "#shared/trees/edits/rewiring.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 
+/** The crossing: a place on each of two strands. */
 export interface ExchangeTailsArgs {
   readonly a: { readonly strand: StrandId; readonly near: Vec3 };
   readonly b: { readonly strand: StrandId; readonly near: Vec3 };

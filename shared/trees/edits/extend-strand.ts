@@ -9,6 +9,7 @@ import { nodeOf, refusal } from "#shared/trees/edits/refusal.ts";
 import { asKind, isLooseEnd } from "#shared/trees/edits/rewiring.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 
+/** The next pin, and how to get there. */
 export interface ExtendArgs {
   /** The end that goes on, or the node from which a new strand starts. */
   readonly node: NodeId;

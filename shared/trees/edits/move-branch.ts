@@ -7,6 +7,7 @@ import { nodeOf, refusal, strandOf, treeOf } from "#shared/trees/edits/refusal.t
 import { asKind, isLooseEnd, partFrom, retag, rootSideOf, tidyNode, withEndMoved } from "#shared/trees/edits/rewiring.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 
+/** A branch and its new place. */
 export interface MoveBranchArgs {
   readonly strand: StrandId;
   readonly to: Anchor;

@@ -6,6 +6,7 @@ import { nodeOf, treeOf } from "#shared/trees/edits/refusal.ts";
 import { asKind } from "#shared/trees/edits/rewiring.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 
+/** The new origin and what is known of it. */
 export interface ReRootArgs {
   readonly node: NodeId;
   readonly site: OriginSite;

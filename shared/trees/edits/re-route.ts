@@ -7,6 +7,7 @@ import { placeOnLine } from "#shared/trees/edits/place-on-line.ts";
 import { refusal, strandOf } from "#shared/trees/edits/refusal.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 
+/** The stretch and its new way. */
 export interface ReRouteArgs {
   readonly strand: StrandId;
   /** Two places on the strand, in either order; what lies between is drawn anew. */

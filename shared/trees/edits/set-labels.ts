@@ -12,6 +12,7 @@ export interface StrandLabels {
   readonly certainty?: Certainty | null;
 }
 
+/** What gets which labels. */
 export interface SetLabelsArgs {
   readonly nodes?: readonly NodeId[];
   readonly node?: NodeLabels;

@@ -5,6 +5,7 @@ import type { EditPlan } from "#shared/trees/edits/edit-plan.ts";
 import { refusal, strandOf } from "#shared/trees/edits/refusal.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 
+/** A stretch of a strand and its radius. */
 export interface SetRadiusArgs {
   readonly strand: StrandId;
   /** First and last point of the stretch, both included. */

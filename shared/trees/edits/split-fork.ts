@@ -9,6 +9,7 @@ import { withEndMoved } from "#shared/trees/edits/rewiring.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 import { orientTree } from "#shared/trees/orientation.ts";
 
+/** A fork and what moves to the new one. */
 export interface SplitForkArgs {
   readonly node: NodeId;
   /** The strands, two or more, that start at the new fork. */

@@ -8,6 +8,7 @@ import { nodeOf, refusal } from "#shared/trees/edits/refusal.ts";
 import { asKind, isLooseEnd } from "#shared/trees/edits/rewiring.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 
+/** Where a branch starts and goes. */
 export interface StartBranchArgs {
   readonly on: Anchor;
   /** First pin of the branch; left out: the fork is made and the branch is still to come. */

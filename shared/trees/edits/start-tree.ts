@@ -6,6 +6,7 @@ import { freeName } from "#shared/trees/edits/rename-tree.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 import { nextTreeName } from "#shared/trees/names.ts";
 
+/** The origin of a new tree. */
 export interface StartTreeArgs {
   readonly at: Vec3;
   readonly site: OriginSite;
