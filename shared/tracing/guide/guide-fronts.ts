@@ -11,6 +11,8 @@ import type { PyramidLevel } from "#shared/volume/pyramid.ts";
 const BYTES_PER_VOXEL = 13;
 /** Shares of a session's bytes for the working level, the next coarser one and the one after that. */
 const SHARES = [0.6, 0.25, 0.15];
+/** How far each front may fall behind: coarser ones run ahead, so that something can be shown soon and far away. */
+const HASTE = [1, 0.5, 0.25];
 /** Voxels settled between two looks at whether to stop. */
 const BITE = 64;
 
@@ -68,18 +70,22 @@ function boxAround(grid: PyramidLevel, index: Vec3, voxels: number): ReturnType<
 }
 
 /**
- * Lets the fronts grow until `shouldStop`, the one that has come least far first.
+ * Lets the fronts grow until `shouldStop`, in turns: a coarser one is let come twice as far as the next finer one.
  * @returns false when none can grow any more.
  */
 export function growGuideFronts(guide: GuideFronts, shouldStop: () => boolean): boolean {
   for (;;) {
-    let next: GuideFront | null = null;
-    for (const each of guide.fronts) {
-      if (!each.front.exhausted && (next === null || each.front.reach < next.front.reach)) next = each;
+    let next: Front | null = null;
+    let least = Number.POSITIVE_INFINITY;
+    for (const [n, { front }] of guide.fronts.entries()) {
+      const come = front.reach * HASTE[n]!;
+      if (front.exhausted || come >= least) continue;
+      next = front;
+      least = come;
     }
     if (next === null) return false;
     if (shouldStop()) return true;
-    expandFront(next.front, BITE);
+    expandFront(next, BITE);
   }
 }
 
