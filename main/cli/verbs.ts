@@ -4,7 +4,9 @@ import { compare } from "#main/cli/verbs/compare.ts";
 import { info } from "#main/cli/verbs/info.ts";
 import { intake } from "#main/cli/verbs/intake.ts";
 import { measure } from "#main/cli/verbs/measure.ts";
+import { phantom } from "#main/cli/verbs/phantom.ts";
+import { score } from "#main/cli/verbs/score.ts";
 import { trace } from "#main/cli/verbs/trace.ts";
 
 /** Every verb, in the order of the job. */
-export const VERBS: readonly Verb[] = [info, intake, trace, measure, check, compare];
+export const VERBS: readonly Verb[] = [info, intake, trace, measure, check, compare, score, phantom];

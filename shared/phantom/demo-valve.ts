@@ -36,9 +36,17 @@ export function demoValve(): DemoValve {
   return { ...specimen, passes, errors, note: "Synthetic valve made by the program's generator, voxels of 100 um." };
 }
 
+/** Trees of the whole valve. */
+export const VALVE_TREES = 20;
+
+/** Voxels of the smallest grid that holds the whole valve. */
+export function valveSize(spacingMm: number): [number, number, number] {
+  return BOX.size.map((length) => Math.ceil(length / spacingMm - 1e-9)) as [number, number, number];
+}
+
 /** True when a grid of this size holds the whole valve. */
 export function holdsValve(size: readonly [number, number, number], spacingMm: number): boolean {
-  return size.every((n, axis) => n * spacingMm >= BOX.size[axis]! - 1e-9);
+  return valveSize(spacingMm).every((least, axis) => size[axis]! >= least);
 }
 
 /**
@@ -84,8 +92,7 @@ export function lookOf(seed: number, noise: number, blurFwhmMm: number): ScanLoo
 }
 
 function gridOf(spacingMm: number, size?: readonly [number, number, number]): VolumeGrid {
-  const least = BOX.size.map((length) => Math.ceil(length / spacingMm - 1e-9)) as unknown as [number, number, number];
-  const grid = plainGrid(size ?? least, [spacingMm, spacingMm, spacingMm]);
+  const grid = plainGrid(size ?? valveSize(spacingMm), [spacingMm, spacingMm, spacingMm]);
   const origin = BOX.from.map((from, axis) => from + BOX.size[axis]! / 2 - ((grid.size[axis]! - 1) * spacingMm) / 2);
   return { ...grid, origin: roundPoint(pointMm(origin[0]!, origin[1]!, origin[2]!)) };
 }

@@ -208,7 +208,7 @@ function tornTree(plot: Plot, name: string, head: MuscleHead, sign: number): Fil
 
 /** A false chorda: from a muscle head to the wall. */
 function falseTree(plot: Plot, name: string, head: MuscleHead): FileTree {
-  const at = wallAt(Math.PI * 0.66, 6.2);
+  const at = wallAt(Math.PI * 0.79, 5.2);
   const end: PlannedEnd = {
     at: scale(at, 0.985),
     radius: 0.22,
@@ -294,7 +294,8 @@ function strandTo(tree: FileTree, k: number): FileTree["strands"][number] {
   return tree.strands.find((strand) => strand.to === leaves[k]!.id)!;
 }
 
-function meetingPlace(a: readonly Vec3[], b: readonly Vec3[]): Vec3 {
+/** The place half way between two lines where they come nearest to each other. */
+export function meetingPlace(a: readonly Vec3[], b: readonly Vec3[]): Vec3 {
   let best: Vec3 = a[0]!;
   let least = Number.POSITIVE_INFINITY;
   for (const p of a) {
