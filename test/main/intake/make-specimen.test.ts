@@ -58,13 +58,17 @@ describe("a specimen made of an NRRD", () => {
     ["int16", "short", [131, 40, 33], (r: number) => Math.floor(r * 65536) - 32768],
     ["uint8", "uchar", [66, 130, 3], (r: number) => Math.floor(r * 256)],
     ["float32", "float", [65, 66, 67], (r: number) => Math.fround(r * 10 - 5)],
-  ] as const)("has in zarrita, level by level, what a naive pyramid of %s gives", async (dtype, type, sizes, value) => {
+    // Slices 2.5 times as far apart as voxels: z is not halved until the others have caught up.
+    ["uint16", "uint16", [200, 131, 70], (r: number) => Math.floor(r * 65536), [0.04, 0.04, 0.1]],
+    ["uint16", "uint16", [70, 131, 140], (r: number) => Math.floor(r * 65536), [0.08, 0.04, 0.04]],
+  ] as const)("has in zarrita, level by level, what a naive pyramid of %s gives", async (dtype, type, sizes, value, voxel?) => {
     const folder = await scratchFolder();
     const random = seeded(7);
     const values = Array.from({ length: sizes[0] * sizes[1] * sizes[2] }, () => value(random()));
     const path = await writeNrrd(folder, "a.nrrd", { sizes, type, dtype, values });
     const source = await openScan(path);
-    const { record } = await makeSpecimen(source, options(folder));
+    const given: readonly [number, number, number] = voxel ?? [0.04, 0.04, 0.04];
+    const { record } = await makeSpecimen(source, { ...options(folder), spacing: given });
     await source.close();
     const home = join(folder, "specimens", record.id);
     expect(parseSpecimenRecord(JSON.parse(await readFile(join(home, "specimen.json"), "utf8")), "specimen.json")).toEqual(record);
@@ -80,7 +84,7 @@ describe("a specimen made of an NRRD", () => {
     const store = join(home, "scan.ome.zarr");
     const levels = (await readdir(store)).filter((name) => /^\d+$/.test(name)).length;
     let now = { values, size: [sizes[2], sizes[1], sizes[0]] as number[] };
-    let spacing = [1, 1, 1];
+    let spacing = [given[2], given[1], given[0]];
     for (let k = 0; ; k++) {
       const found = await level(store, String(k));
       expect(found.shape).toEqual(now.size);
