@@ -196,6 +196,7 @@ export class Outbox {
   private async reconcileAgain(): Promise<boolean> {
     const result = await reconcile(this.places);
     this.mustReconcile = false;
+    if (result.outcome === "replaced" || result.outcome === "taken") await this.strandFresh();
     await this.countWaiting();
     if (result.outcome !== "agreed") this.places.reconciled(result);
     return true;
@@ -203,17 +204,24 @@ export class Outbox {
 
   private async keepFresh(): Promise<void> {
     if (this.fresh.length === 0) return;
-    const { store, branchName, now } = this.places;
+    const { store } = this.places;
     const lines = [...this.fresh];
     try {
       await store.appendWaiting(lines);
     } catch (error) {
       if (!isTautlineError(error, "held-elsewhere")) throw storageFault(error);
-      // They follow nothing that is kept here; they are not thrown away all the same.
-      await store.setAside(branchName(now()), now(), lines);
-      this.fresh.splice(0, lines.length);
+      await this.strandFresh();
       throw error;
     }
+    this.fresh.splice(0, lines.length);
+  }
+
+  /** Lines that follow nothing that is kept here any more: not sent, but not thrown away either. */
+  private async strandFresh(): Promise<void> {
+    const lines = [...this.fresh];
+    if (lines.length === 0) return;
+    const { store, branchName, now } = this.places;
+    await store.setAside(branchName(now()), now(), lines);
     this.fresh.splice(0, lines.length);
   }
 

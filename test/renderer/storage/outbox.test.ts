@@ -328,6 +328,31 @@ describe("opening a pass", () => {
   });
 });
 
+describe("an edit made in the moment in which the journal is taken", () => {
+  it("is set aside, and the outbox goes on", async () => {
+    const box = outbox();
+    await box.open();
+    await box.settled();
+    const other = PassHistory.fromLines(journal.lines);
+    journal.lines.push(...edit(other, 30));
+    const keep = journal.keepBranch.bind(journal);
+    const late: string[] = [];
+    journal.keepBranch = async (lines, name) => {
+      late.push(...edit(history, 2));
+      box.put(late);
+      return keep(lines, name);
+    };
+    box.put(edit(history, 1));
+    await box.settled();
+    expect(box.state.kind).toBe("saved");
+    expect(await store.recovered()).toMatchObject([{ lines: late }]);
+    const anew = PassHistory.fromLines((await store.loadPass())!.lines);
+    box.put(edit(anew));
+    await box.settled();
+    expect(journal.lines).toHaveLength(3);
+  });
+});
+
 describe("a browser that cannot keep lines", () => {
   it("sends them past its store, and the store catches up when it works again", async () => {
     const box = outbox();
