@@ -10,6 +10,7 @@ import { type AskSolve, StrandSolver } from "#renderer/editor/session/strand-sol
 import { type Guide, GuideFollower, type GuideSource } from "#renderer/editor/tracing/guide-follower.ts";
 import { type Projection, project, tipOf } from "#renderer/editor/tracing/projection.ts";
 import { type Aim, type AskSnap, type Snapped, Snapper } from "#renderer/editor/tracing/snapper.ts";
+import { strandPassing } from "#renderer/editor/tracing/strand-passing.ts";
 import { NOTHING, type UnderWay } from "#renderer/editor/tracing/under-way.ts";
 import type { Pointing, Under } from "#renderer/editor/view-control.ts";
 import { roundPoint } from "#shared/geometry/types.ts";
@@ -45,6 +46,8 @@ export type Carried =
 const REACH_PX = 9;
 /** Nearer to the last pin than this on the screen, an end key means that pin itself. */
 const AT_PIN_PX = 10;
+/** A strand passes the pointer within so many screen pixels. */
+const PASSING_PX = 20;
 
 /** One pass being edited: what is under way, what waits, what is shown. It knows no screen and no server. */
 export class Editor {
@@ -178,10 +181,15 @@ export class Editor {
     return pointing === null || tip === null || distance(pointing.at, tip) <= AT_PIN_PX * pointing.mmPerPx;
   }
 
-  /** Where a branch, join or link would be attached: what lies under the pointer, else the selection. */
+  /**
+   * Where a branch, join or link would be attached: what lies under the pointer, else the strand that passes nearest to it
+   * (at a fork the traced curve cuts the corner), else the selected node.
+   */
   anchor(): Anchor | null {
-    const under = this.pointing?.under ?? null;
-    if (under !== null) return anchorOf(under, this.pointing!);
+    const { pointing } = this;
+    if (pointing?.under != null) return anchorOf(pointing.under, pointing);
+    const near = pointing === null ? null : strandPassing(this.documentSignal.value, pointing, PASSING_PX * pointing.mmPerPx);
+    if (near !== null) return near;
     const { node } = this.selection.value;
     return node === undefined ? null : { node };
   }

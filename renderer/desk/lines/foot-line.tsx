@@ -27,12 +27,12 @@ export function FootLine({ context }: { readonly context: DeskContext }) {
       )}
       {ends.length === 0 ? null : (
         <span class="foot-hint">
+          <span class="soft">{editor.endsAtPin() ? "end at the last pin:" : "end here:"}</span>{" "}
           {ends.map(({ command, words }) => (
             <Fragment key={command.name}>
               <span class="key">{shownShortcut(command.keys[0]!)}</span> {words}{" "}
             </Fragment>
           ))}
-          <span class="soft">{editor.endsAtPin() ? "ends at the last pin" : "ends at the pointer"}</span>
         </span>
       )}
       {others.map(({ command, words }) => (
@@ -41,7 +41,7 @@ export function FootLine({ context }: { readonly context: DeskContext }) {
         </span>
       ))}
       <span class="spring" />
-      <span class="foot-hint soft">
+      <span class="foot-hint soft foot-help">
         <span class="key">Alt</span> no snap <span class="key">Ctrl + K</span> all commands <span class="key">?</span> keys
       </span>
     </footer>

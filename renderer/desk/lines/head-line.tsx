@@ -3,7 +3,7 @@ import { countsOf } from "#renderer/desk/model/counts.ts";
 import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
 import type { DeskContext } from "#renderer/editor/commands/desk-context.ts";
 import type { SavedState } from "#renderer/editor/session/pass-keeper.ts";
-import { countOf, countText } from "#renderer/editor/session/words.ts";
+import { countOf } from "#renderer/editor/session/words.ts";
 
 export interface HeadLineProps {
   readonly model: DeskModel;
@@ -44,7 +44,7 @@ export function HeadLine({ model, context }: HeadLineProps) {
           </span>
         ) : null}
         <Saved state={editor.keeper.saved.value} />
-        <span class="soft figures">{countText(editor.keeper.edits)} edits</span>
+        <span class="soft figures">{countOf(editor.keeper.edits, "edit")}</span>
       </div>
       <div class="head-tools">
         <button

@@ -29,16 +29,17 @@ export function lineFacts(document: TreeDocument, selection: Selection): LineFac
   return last.facts;
 }
 
-/** The selected strand or cross-link; for a selected end, the strand that it ends. */
+/** The selected strand or cross-link; for a selected end, the strand that it ends; for a tree, its first strand. */
 export function selectedLine(document: TreeDocument, selection: Selection): Strand | CrossLink | null {
-  const { strand, node } = selection;
+  const { strand, node, tree } = selection;
   if (strand !== undefined) {
     return (
       (strand.startsWith("x") ? document.crossLinks.get(strand as CrossLinkId) : document.strands.get(strand as StrandId)) ?? null
     );
   }
-  if (node === undefined) return null;
-  const here = strandsAt(document, node);
+  const root = tree === undefined ? undefined : document.trees.get(tree)?.root;
+  const end = node ?? root;
+  const here = end == null ? [] : strandsAt(document, end);
   return here.length === 1 ? here[0]! : null;
 }
 

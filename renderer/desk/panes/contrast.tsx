@@ -1,7 +1,7 @@
 import { useEffect, useRef } from "preact/hooks";
 import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
 
-const WIDTH = 168;
+const WIDTH = 130;
 const HEIGHT = 26;
 
 /** The grey window over the scan's histogram: two handles to drag or move by keys, and one button for automatic. */

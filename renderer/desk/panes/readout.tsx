@@ -28,23 +28,46 @@ export function Readout({ model }: { readonly model: DeskModel }) {
   const ruler = section.ruler.value;
   const guide = editor.guide.value;
   return (
-    <div class="readout figures" aria-live="off">
-      <span>{at === undefined ? "" : `x ${at[0].toFixed(2)}  y ${at[1].toFixed(2)}  z ${at[2].toFixed(2)} mm`}</span>
-      <span>{at === undefined ? "" : `value ${grey.value === null ? "outside" : Math.round(grey.value * 1000) / 1000}`}</span>
-      {snapped !== null && snapped.candidates > 0 ? (
-        <span>
-          depth {snapped.depthMm >= 0 ? "+" : "−"}
-          {Math.abs(snapped.depthMm).toFixed(2)} mm
-          {snapped.candidates > 1 ? ` (${snapped.candidate + 1} of ${snapped.candidates})` : ""}
-        </span>
-      ) : null}
-      {guide === null || guide.imageFit === null ? null : (
-        <span class={guide.doubtful.length > 0 ? "warn" : ""}>
-          fit {guide.imageFit.toFixed(2)}
-          {guide.coarse ? " (coarse)" : guide.doubtful.length > 0 ? " leaves the string" : ""}
-        </span>
-      )}
-      {ruler === null ? null : <span class="ruler-length">ruler {mmText(distance(ruler.from, ruler.to), 2)}</span>}
+    <div class="section-foot">
+      <div class="readout figures" aria-live="off">
+        <span>{at === undefined ? "" : `x ${at[0].toFixed(2)}  y ${at[1].toFixed(2)}  z ${at[2].toFixed(2)} mm`}</span>
+        <span>{at === undefined ? "" : `value ${grey.value === null ? "outside" : Math.round(grey.value * 1000) / 1000}`}</span>
+        {snapped !== null && snapped.candidates > 0 ? (
+          <span>
+            depth {snapped.depthMm >= 0 ? "+" : "−"}
+            {Math.abs(snapped.depthMm).toFixed(2)} mm
+            {snapped.candidates > 1 ? ` (${snapped.candidate + 1} of ${snapped.candidates})` : ""}
+          </span>
+        ) : null}
+        {guide === null || guide.imageFit === null ? null : (
+          <span class={guide.doubtful.length > 0 ? "warn" : ""}>
+            fit {guide.imageFit.toFixed(2)}
+            {guide.coarse ? " (coarse)" : guide.doubtful.length > 0 ? " leaves the string" : ""}
+          </span>
+        )}
+        {ruler === null ? null : <span class="ruler-length">ruler {mmText(distance(ruler.from, ruler.to), 2)}</span>}
+      </div>
+      <button
+        type="button"
+        class="button"
+        aria-pressed={section.rulerShown.value}
+        title="Ruler (Shift + R)"
+        onClick={() => section.toggleRuler()}
+      >
+        ruler
+      </button>
+      <fieldset class="joined">
+        <legend class="unseen">Scale</legend>
+        <button type="button" class="button" aria-label="Farther" title="Farther (-)" onClick={() => section.zoom(0.8)}>
+          −
+        </button>
+        <button type="button" class="button" title="Show the whole plane (Home)" onClick={() => section.showAll()}>
+          all
+        </button>
+        <button type="button" class="button" aria-label="Closer" title="Closer (+)" onClick={() => section.zoom(1.25)}>
+          +
+        </button>
+      </fieldset>
     </div>
   );
 }

@@ -45,7 +45,9 @@ export function SectionBar({ model }: { readonly model: DeskModel }) {
         >
           −
         </button>
-        <output class="slab-size figures">{slab === 0 ? "no slab" : `slab ${mmText(slab)}`}</output>
+        <output class="slab-size figures" title="Thickness of the slab">
+          {slab === 0 ? "no slab" : mmText(slab)}
+        </output>
         <button
           type="button"
           class="button"
@@ -62,32 +64,10 @@ export function SectionBar({ model }: { readonly model: DeskModel }) {
           title="Slab shows the maximum, or the mean (\)"
           onClick={() => section.setSlabMode(section.slabMode.value === "max" ? "mean" : "max")}
         >
-          {section.slabMode.value === "max" ? "maximum" : "mean"}
+          {section.slabMode.value === "max" ? "max" : "mean"}
         </button>
       </fieldset>
       <Contrast model={model} />
-      <span class="spring" />
-      <button
-        type="button"
-        class="button"
-        aria-pressed={section.rulerShown.value}
-        title="Ruler (Shift + R)"
-        onClick={() => section.toggleRuler()}
-      >
-        ruler
-      </button>
-      <fieldset class="joined">
-        <legend class="unseen">Scale</legend>
-        <button type="button" class="button" aria-label="Farther" title="Farther (-)" onClick={() => section.zoom(0.8)}>
-          −
-        </button>
-        <button type="button" class="button" title="Show the whole plane (Home)" onClick={() => section.showAll()}>
-          all
-        </button>
-        <button type="button" class="button" aria-label="Closer" title="Closer (+)" onClick={() => section.zoom(1.25)}>
-          +
-        </button>
-      </fieldset>
     </div>
   );
 }

@@ -29,10 +29,10 @@ const ZONES: readonly (readonly [Zone, string])[] = [
   ["base", "base"],
 ];
 const SITES: readonly (readonly [OriginSite, string])[] = [
-  ["head", "muscle head"],
+  ["head", "head"],
   ["wall", "wall"],
   ["unseen", "unseen"],
-  ["scan-edge", "scan edge"],
+  ["scan-edge", "edge"],
 ];
 const MUSCLES: readonly (readonly [Muscle, string])[] = [
   ["antero-lateral", "antero-lateral"],

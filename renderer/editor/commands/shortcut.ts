@@ -39,7 +39,7 @@ const SHOWN: Readonly<Record<string, string>> = {
   ArrowUp: "↑",
   ArrowDown: "↓",
   Escape: "Esc",
-  Backspace: "⌫ Backspace",
+  Backspace: "⌫",
   Delete: "Del",
   PageUp: "Page up",
   PageDown: "Page down",

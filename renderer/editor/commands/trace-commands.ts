@@ -71,7 +71,8 @@ export const TRACE_COMMANDS: readonly Command<DeskContext>[] = [
       const from = editor.anchor();
       if (from !== null) editor.do({ do: "branch", from });
     },
-    foot: (context) => (canEdit(context) && under(context) !== null ? "branch from here" : null),
+    foot: (context) =>
+      canEdit(context) && context.view.pointing.value !== null && context.editor.anchor() !== null ? "branch from here" : null,
   },
   {
     name: "cross-link",

@@ -21,8 +21,8 @@ export const END_WORDS: Readonly<Record<Exclude<EndKind, "open">, string>> = {
   ruptured: "ruptured",
   cut: "cut",
   "lost-end": "lost",
-  "muscle-end": "muscle end",
-  "wall-end": "wall end",
+  "muscle-end": "muscle",
+  "wall-end": "wall",
   "scan-edge": "scan edge",
 };
 
