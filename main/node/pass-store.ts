@@ -1,3 +1,4 @@
+import { sep } from "node:path";
 import { makeFolder } from "#main/node/disk-fault.ts";
 import type { FilePort } from "#main/node/file-port.ts";
 import { Journal, type WriterCheck } from "#main/node/journal.ts";
@@ -139,8 +140,10 @@ export class PassStore {
 
   /** Closes the journals of a specimen, or all. */
   async close(specimen?: string): Promise<void> {
-    const within = specimen === undefined ? "" : this.#options.layout.specimen(specimen);
+    const within = specimen === undefined ? "" : `${this.#options.layout.specimen(specimen)}${sep}`;
     this.#folds.forget(within);
+    for (const key of this.#summaries.keys())
+      if (specimen === undefined || key.startsWith(`${specimen}/`)) this.#summaries.delete(key);
     for (const [path, journal] of this.#journals) {
       if (!path.startsWith(within)) continue;
       this.#journals.delete(path);
