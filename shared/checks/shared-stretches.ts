@@ -1,5 +1,5 @@
 import { resample } from "#shared/geometry/polyline.ts";
-import { SegmentGrid } from "#shared/geometry/segment-grid.ts";
+import { SegmentIndex } from "#shared/geometry/segment-index.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
 import type { PlainSet } from "#shared/trees/plain-trees.ts";
@@ -28,10 +28,7 @@ export function sharedStretches(set: PlainSet): SharedStretch[] {
   const strands = set.trees.flatMap((tree) =>
     rootedStrands(tree).map((rooted) => ({ tree: tree.id, rooted, radius: typicalRadius(rooted) })),
   );
-  const grid = new SegmentGrid(
-    strands.map((strand) => strand.rooted.line),
-    1,
-  );
+  const index = new SegmentIndex(strands.map((strand) => strand.rooted.line));
   const best = new Map<string, SharedStretch>();
   strands.forEach((one, i) => {
     const running = new Map<number, Vec3[]>();
@@ -57,7 +54,7 @@ export function sharedStretches(set: PlainSet): SharedStretch[] {
     };
     for (const p of resample(one.rooted.line, STEP_MM)) {
       const near = new Set<number>();
-      grid.within(p, one.radius, (j, d) => {
+      index.within(p, one.radius, (j, d) => {
         if (
           j !== i &&
           d < Math.min(one.radius, strands[j]!.radius) &&

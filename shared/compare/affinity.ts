@@ -1,6 +1,6 @@
 import { bestMatching } from "#shared/compare/edit-distance/assignment.ts";
 import { resample } from "#shared/geometry/polyline.ts";
-import { SegmentGrid } from "#shared/geometry/segment-grid.ts";
+import { SegmentIndex } from "#shared/geometry/segment-index.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 
 /** Reach of the affinity, millimetres: lines farther apart attract each other no more. */
@@ -47,7 +47,7 @@ function integrate(
   add: (item: number, other: number, gain: number, near: number) => void,
 ): void {
   const owner = others.flatMap((item, k) => item.map(() => k));
-  const grid = new SegmentGrid(others.flat(), AFFINITY_REACH_MM);
+  const index = new SegmentIndex(others.flat());
   items.forEach((item, i) => {
     for (const line of item) {
       const samples = resample(line, step);
@@ -57,7 +57,7 @@ function integrate(
         const middle: Vec3 = [(p[0] + q[0]) / 2, (p[1] + q[1]) / 2, (p[2] + q[2]) / 2];
         lengths[i]! += piece;
         const nearest = new Map<number, number>();
-        grid.within(middle, AFFINITY_REACH_MM, (found, d) => {
+        index.within(middle, AFFINITY_REACH_MM, (found, d) => {
           const other = owner[found]!;
           const known = nearest.get(other);
           if (known === undefined || d < known) nearest.set(other, d);

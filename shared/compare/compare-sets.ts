@@ -1,6 +1,6 @@
-import { affinities, matchByAffinity } from "#shared/compare/affinity.ts";
-import { canonicalTree } from "#shared/compare/canonical.ts";
-import { type CostPreset, geometryCosts, structureCosts } from "#shared/compare/costs.ts";
+import { type AffinityTable, affinities, matchByAffinity } from "#shared/compare/affinity.ts";
+import { type CanonicalTree, canonicalTree } from "#shared/compare/canonical.ts";
+import { type CostModel, type CostPreset, geometryCosts, structureCosts } from "#shared/compare/costs.ts";
 import { type Detection, detection } from "#shared/compare/detection.ts";
 import { type EditDistance, editDistance, type OriginRule } from "#shared/compare/edit-distance/edit-distance.ts";
 import { type EditStep, editScript } from "#shared/compare/edit-distance/script.ts";
@@ -86,6 +86,64 @@ export type TimeLeft = () => number;
 /** Sampling step of affinities, millimetres: well below their reach. */
 const AFFINITY_STEP_MM = 0.1;
 
+/** Which tree of B each tree of A is: index in B, -1 = none; and the affinities it was decided by. A single tree on each side is always paired. */
+function matchTrees(
+  linesA: readonly (readonly RootedStrand[])[],
+  linesB: readonly (readonly RootedStrand[])[],
+): { matched: Int32Array; table: AffinityTable } {
+  const lines = (strands: readonly RootedStrand[]) => strands.map((strand) => strand.line);
+  const table = affinities(linesA.map(lines), linesB.map(lines), AFFINITY_STEP_MM);
+  return { table, matched: linesA.length === 1 && linesB.length === 1 ? Int32Array.of(0) : matchByAffinity(table) };
+}
+
+/**
+ * Reference-normalised distances with other merge tolerances: of each of A's trees (null = unmatched) and of the whole set.
+ * Matching does not depend on the tolerance, so that it is done once.
+ */
+export function distancesAtMerges(
+  a: PlainSet,
+  b: PlainSet,
+  options: CompareOptions,
+  merges: readonly number[],
+  timeLeft: TimeLeft,
+): { readonly merge: number; readonly trees: readonly (number | null)[]; readonly whole: number | null }[] {
+  const costs = costsOf(options);
+  const { matched } = matchTrees(a.trees.map(rootedStrands), b.trees.map(rootedStrands));
+  return merges.map((merge) => {
+    const [canonA, canonB] = [a, b].map((set) => set.trees.map((tree) => canonicalTree(tree, merge))) as [
+      CanonicalTree[],
+      CanonicalTree[],
+    ];
+    const pairs = pairsOf(matched);
+    const found = inTurns(pairs.length, timeLeft, (k, shouldStop) =>
+      editDistance(canonA[pairs[k]![0]]!, canonB[pairs[k]![1]]!, costs, options.origin, shouldStop),
+    );
+    const trees = a.trees.map((_, i) => {
+      const k = pairs.findIndex((pair) => pair[0] === i);
+      return k < 0 ? null : normalise(found[k]!.ged, found[k]!.whole.a, found[k]!.whole.b).reference;
+    });
+    const total = found.reduce((sum, one) => sum + one.ged, unmatchedCost(canonA, canonB, matched));
+    return { merge, trees, whole: normalise(total, fullCost(canonA), fullCost(canonB)).reference };
+  });
+}
+
+function costsOf(options: CompareOptions): CostModel {
+  return options.preset === "geometry" ? geometryCosts(options.positionScale) : structureCosts();
+}
+
+function pairsOf(matched: Int32Array): (readonly [number, number])[] {
+  return [...matched].flatMap((j, i) => (j < 0 ? [] : [[i, j] as const]));
+}
+
+/** Cost of deleting or inserting all of these trees. */
+function fullCost(trees: readonly CanonicalTree[]): number {
+  return trees.reduce((sum, tree) => sum + tree.nodes.length + tree.strands.length, 0);
+}
+
+function unmatchedCost(canonA: readonly CanonicalTree[], canonB: readonly CanonicalTree[], matched: Int32Array): number {
+  return fullCost(canonA.filter((_, i) => matched[i]! < 0)) + fullCost(canonB.filter((_, j) => !matched.includes(j)));
+}
+
 /**
  * Compares two sets of trees, A being the reference: which tree is which by affinity, each pair's edit distance with proven
  * bounds, the script, the events, overlap and distances; unmatched trees at full cost. Overlap, distances and detection
@@ -93,12 +151,10 @@ const AFFINITY_STEP_MM = 0.1;
  */
 export function compareSets(a: PlainSet, b: PlainSet, options: CompareOptions, timeLeft: TimeLeft): Comparison {
   const warnings: string[] = [];
-  const costs = options.preset === "geometry" ? geometryCosts(options.positionScale) : structureCosts();
+  const costs = costsOf(options);
   const [linesA, linesB] = [a.trees.map(rootedStrands), b.trees.map(rootedStrands)];
-  const lines = (strands: readonly RootedStrand[]) => strands.map((strand) => strand.line);
-  const table = affinities(linesA.map(lines), linesB.map(lines), AFFINITY_STEP_MM);
-  const matched = a.trees.length === 1 && b.trees.length === 1 ? Int32Array.of(0) : matchByAffinity(table);
-  const pairs = [...matched].flatMap((j, i) => (j < 0 ? [] : [[i, j] as const]));
+  const { matched, table } = matchTrees(linesA, linesB);
+  const pairs = pairsOf(matched);
   const canonA = a.trees.map((tree) => canonicalTree(tree, options.merge));
   const canonB = b.trees.map((tree) => canonicalTree(tree, options.merge));
   const distances = inTurns(pairs.length, timeLeft, (k, shouldStop) =>
@@ -133,12 +189,8 @@ export function compareSets(a: PlainSet, b: PlainSet, options: CompareOptions, t
   const freeA = a.trees.map((_, i) => i).filter((i) => matched[i]! < 0);
   const freeB = b.trees.map((_, j) => j).filter((j) => !matched.includes(j));
   warnings.push(...splitsAndMerges(a, b, pairs, freeA, freeB, table.nearA, table.nearB, table.lengthA, table.lengthB));
-  const fullCost = (tree: { nodes: readonly unknown[]; strands: readonly unknown[] }) => tree.nodes.length + tree.strands.length;
-  const unmatched =
-    freeA.reduce((sum, i) => sum + fullCost(canonA[i]!), 0) + freeB.reduce((sum, j) => sum + fullCost(canonB[j]!), 0);
-  const total = (value: (pair: ComparedPair) => number) => compared.reduce((sum, pair) => sum + value(pair), unmatched);
-  const allA = canonA.reduce((sum, tree) => sum + fullCost(tree), 0);
-  const allB = canonB.reduce((sum, tree) => sum + fullCost(tree), 0);
+  const total = (value: (pair: ComparedPair) => number) =>
+    compared.reduce((sum, pair) => sum + value(pair), unmatchedCost(canonA, canonB, matched));
   return {
     costs: { preset: costs.preset, origin: options.origin, positionScale: costs.positionScale, merge: options.merge },
     pairs: compared,
@@ -153,8 +205,8 @@ export function compareSets(a: PlainSet, b: PlainSet, options: CompareOptions, t
       exact: compared.every((pair) => pair.exact),
       normalised: normalise(
         total((pair) => pair.ged),
-        allA,
-        allB,
+        fullCost(canonA),
+        fullCost(canonB),
       ),
       ...overlapOf(offsetBefore(linesA), offsetBefore(linesB), overlapOptions),
       detection: detection(a, b, options.merge, options.tolerance, AFFINITY_STEP_MM),

@@ -2,7 +2,7 @@ import { affinities } from "#shared/compare/affinity.ts";
 import { type CanonicalTree, canonicalTree } from "#shared/compare/canonical.ts";
 import { bestMatching } from "#shared/compare/edit-distance/assignment.ts";
 import { resample } from "#shared/geometry/polyline.ts";
-import { SegmentGrid } from "#shared/geometry/segment-grid.ts";
+import { SegmentIndex } from "#shared/geometry/segment-index.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { centreline, type PlainSet, type PlainTree } from "#shared/trees/plain-trees.ts";
 
@@ -79,7 +79,7 @@ function shareWithin(
   reach: number,
   step: number,
 ): number {
-  const grid = new SegmentGrid(others.flat(), Math.max(reach, 0.5));
+  const index = new SegmentIndex(others.flat());
   let all = 0;
   let near = 0;
   for (const line of lines) {
@@ -88,7 +88,7 @@ function shareWithin(
       const [p, q] = [samples[k - 1]!, samples[k]!];
       const piece = Math.hypot(q[0] - p[0], q[1] - p[1], q[2] - p[2]);
       all += piece;
-      if (grid.nearest([(p[0] + q[0]) / 2, (p[1] + q[1]) / 2, (p[2] + q[2]) / 2]).distance <= reach) near += piece;
+      if (index.nearest([(p[0] + q[0]) / 2, (p[1] + q[1]) / 2, (p[2] + q[2]) / 2]).distance <= reach) near += piece;
     }
   }
   return all === 0 ? 0 : near / all;

@@ -1,12 +1,13 @@
 import { arcLengths } from "#shared/geometry/polyline.ts";
-import { SegmentGrid } from "#shared/geometry/segment-grid.ts";
+import { SegmentIndex } from "#shared/geometry/segment-index.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { mix } from "#shared/geometry/vec3.ts";
 import type { RootedStrand } from "#shared/trees/rooted-strands.ts";
 import { pathsToEnds } from "#shared/trees/rooted-strands.ts";
 
-/** Points of one strand at equal steps, with the radius there. */
+/** A strand with the points on it that are measured, and the radius at each. */
 export interface SampledStrand {
+  readonly strand: RootedStrand;
   readonly points: readonly Vec3[];
   readonly radii: readonly (number | null)[];
 }
@@ -49,7 +50,7 @@ export interface OverlapOptions {
 export function sampleStrand(strand: RootedStrand, step: number): SampledStrand {
   const at = arcLengths(strand.line);
   const total = at[at.length - 1] ?? 0;
-  if (total === 0) return { points: strand.line.slice(0, 1), radii: strand.radii.slice(0, 1) };
+  if (total === 0) return { strand, points: strand.line.slice(0, 1), radii: strand.radii.slice(0, 1) };
   const pieces = Math.max(1, Math.ceil(total / step - 1e-9));
   const points: Vec3[] = [];
   const radii: (number | null)[] = [];
@@ -62,7 +63,11 @@ export function sampleStrand(strand: RootedStrand, step: number): SampledStrand 
     points.push(mix(strand.line[k - 1]!, strand.line[k]!, share));
     radii.push(mixRadius(strand.radii[k - 1] ?? null, strand.radii[k] ?? null, share));
   }
-  return { points, radii };
+  return { strand, points, radii };
+}
+
+function radiusAt(strand: RootedStrand, k: number, share: number): number | null {
+  return mixRadius(strand.radii[k] ?? null, strand.radii[Math.min(k + 1, strand.radii.length - 1)] ?? null, share);
 }
 
 function mixRadius(a: number | null, b: number | null, share: number): number | null {
@@ -74,7 +79,7 @@ function mixRadius(a: number | null, b: number | null, share: number): number | 
  * Overlap and distances of two sets of sampled strands, A being the reference. A point is inside when its distance to the
  * other side's polylines is at most the reference's radius at the nearest reference point.
  *
- * @param a, b samples of each strand; the polylines themselves are the samples' own.
+ * @param a, b the strands with the points to measure.
  * @param pathsA for OF: lists of strand indices from root to end.
  * @source a nearest-point variant of Schaap et al., Med Image Anal 2009;13:701-714, whose correspondence is ordered
  */
@@ -85,15 +90,9 @@ export function measureOverlap(
   options: OverlapOptions,
 ): { overlap: Overlap; distances: LineDistances } {
   const reasons: Record<string, string> = {};
-  const gridA = new SegmentGrid(
-    a.map((strand) => strand.points),
-    1,
-  );
-  const gridB = new SegmentGrid(
-    b.map((strand) => strand.points),
-    1,
-  );
-  const empty = gridA.segments === 0 || gridB.segments === 0;
+  const indexA = new SegmentIndex(a.map((sampled) => sampled.strand.line));
+  const indexB = new SegmentIndex(b.map((sampled) => sampled.strand.line));
+  const empty = indexA.segments === 0 || indexB.segments === 0;
   const thick = (radius: number | null) =>
     options.minimumDiameterMm !== null && radius !== null && 2 * radius >= options.minimumDiameterMm;
   const counts = { inside: 0, all: 0, thickInside: 0, thickAll: 0, noRadius: 0 };
@@ -112,7 +111,7 @@ export function measureOverlap(
   let insideCount = 0;
   const insideA = a.map((strand) =>
     strand.points.map((point, k) => {
-      const d = gridB.nearest(point).distance;
+      const d = indexB.nearest(point).distance;
       const radius = strand.radii[k] ?? null;
       const inside = d <= (radius ?? options.toleranceMm);
       if (Number.isFinite(d)) distancesA.push(d);
@@ -126,12 +125,9 @@ export function measureOverlap(
   );
   for (const strand of b) {
     for (const point of strand.points) {
-      const near = gridA.nearest(point);
-      const reference = near.segment < 0 ? undefined : a[gridA.lineOf[near.segment]!];
-      const k = near.segment < 0 ? 0 : gridA.pointOf[near.segment]!;
-      const radius = reference
-        ? mixRadius(reference.radii[k] ?? null, reference.radii[Math.min(k + 1, reference.radii.length - 1)] ?? null, near.share)
-        : null;
+      const near = indexA.nearest(point);
+      const radius =
+        near.segment < 0 ? null : radiusAt(a[indexA.lineOf[near.segment]!]!.strand, indexA.pointOf[near.segment]!, near.share);
       if (Number.isFinite(near.distance)) distancesB.push(near.distance);
       count(near.distance <= (radius ?? options.toleranceMm), radius);
     }

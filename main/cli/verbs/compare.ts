@@ -1,9 +1,8 @@
 import { realOption, wordOption } from "#main/cli/number-option.ts";
 import { readTreeFile } from "#main/cli/read-tree-file.ts";
+import { refuseOtherFrame, scanWarnings } from "#main/cli/same-scan.ts";
 import type { Verb } from "#main/cli/verb.ts";
 import { type Comparison, compareSets } from "#shared/compare/compare-sets.ts";
-import { TautlineError } from "#shared/errors.ts";
-import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
 
 /** Sampling step where A names no volume, millimetres. */
 const STEP_WITHOUT_VOLUME_MM = 0.02;
@@ -43,37 +42,24 @@ distance with proven bounds, the script, and the differences as events.
     const merge = realOption(options, "merge", 0.3, 0, true);
     const tolerance = realOption(options, "tolerance", 0.5);
     const minimumDiameter = realOption(options, "minimum-diameter", null);
-    const [a, b] = await Promise.all(positionals.map((path) => readTreeFile(path)));
-    const warnings = scanWarnings(a!, b!, positionals);
+    const named = await Promise.all(positionals.map(async (name) => ({ name, file: await readTreeFile(name) })));
+    const [reference, other] = [named[0]!, named[1]!];
+    refuseOtherFrame(reference, other);
+    const warnings = scanWarnings(reference, other);
     const timeLeft = () => (io.signal.aborted ? 0 : seconds * 1000 - (performance.now() - began));
-    const spacing = a!.volume?.spacing;
+    const spacing = reference.file.volume?.spacing;
     const step = spacing ? Math.min(...spacing) / 2 : STEP_WITHOUT_VOLUME_MM;
-    const found = compareSets(a!, b!, { preset, origin, positionScale, merge, tolerance, minimumDiameter, step }, timeLeft);
+    const found = compareSets(
+      reference.file,
+      other.file,
+      { preset, origin, positionScale, merge, tolerance, minimumDiameter, step },
+      timeLeft,
+    );
     const answer: Comparison = { ...found, warnings: [...warnings, ...found.warnings] };
     for (const warning of answer.warnings) say(`Warning: ${warning}`);
     return { json: answer, text: inWords(answer), exit: 0 };
   },
 };
-
-/** Warns of another scan; refuses another frame, in which places mean something else. */
-function scanWarnings(a: ChordaeFile, b: ChordaeFile, names: readonly string[]): string[] {
-  const [frameA, frameB] = [a.frame ?? "scan", b.frame ?? "scan"];
-  if (frameA !== frameB) {
-    throw new TautlineError(
-      "other-scan",
-      `${names[1]}: expected places in the frame ${frameA} like ${names[0]}, found ${frameB}. Trees in different frames cannot be compared.`,
-      {
-        file: names[1]!,
-        expected: frameA,
-        found: frameB,
-      },
-    );
-  }
-  const [hashA, hashB] = [a.volume?.sha256, b.volume?.sha256];
-  if (hashA && hashB && hashA !== hashB)
-    return [`${names[1]} belongs to another scan (voxels ${hashB.slice(0, 12)}...) than ${names[0]} (${hashA.slice(0, 12)}...).`];
-  return [];
-}
 
 function inWords({ pairs, onlyA, onlyB, whole, costs }: Comparison): string {
   const number = (value: number | null, digits = 3) => (value === null ? "-" : value.toFixed(digits));

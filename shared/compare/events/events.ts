@@ -2,7 +2,7 @@ import { type CanonicalTree, canonicalTree } from "#shared/compare/canonical.ts"
 import { geometryCosts } from "#shared/compare/costs.ts";
 import { editDistance } from "#shared/compare/edit-distance/edit-distance.ts";
 import { nearestNode, type UncoveredPart, uncoveredParts } from "#shared/compare/events/uncovered.ts";
-import { SegmentGrid } from "#shared/geometry/segment-grid.ts";
+import { SegmentIndex } from "#shared/geometry/segment-index.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
 import { type PlainSet, type PlainTree, placeOf } from "#shared/trees/plain-trees.ts";
@@ -46,12 +46,9 @@ export function eventsOfPairs(
 ): CompareEvent[][] {
   const partsOf = (own: PlainSet, other: PlainSet, pairList: readonly (readonly [number, number])[]): UncoveredPart[][] => {
     const lines = other.trees.flatMap((tree, k) => rootedStrands(tree).map((strand) => ({ line: strand.line, tree: k })));
-    const grid = new SegmentGrid(
-      lines.map((entry) => entry.line),
-      1,
-    );
+    const index = new SegmentIndex(lines.map((entry) => entry.line));
     const treeOfLine = lines.map((entry) => entry.tree);
-    return pairList.map(([i, j]) => uncoveredParts(i, rootedStrands(own.trees[i]!), grid, treeOfLine, j, tolerance));
+    return pairList.map(([i, j]) => uncoveredParts(i, rootedStrands(own.trees[i]!), index, treeOfLine, j, tolerance));
   };
   const missing = partsOf(a, b, pairs);
   const added = partsOf(
@@ -139,10 +136,7 @@ function nameCrossings(
 
 function nearestStrand(tree: PlainTree, p: Vec3): string | null {
   const strands = rootedStrands(tree);
-  const near = new SegmentGrid(
-    strands.map((strand) => strand.line),
-    1,
-  );
+  const near = new SegmentIndex(strands.map((strand) => strand.line));
   const found = near.nearest(p);
   return found.segment < 0 ? null : strands[near.lineOf[found.segment]!]!.strand.id;
 }

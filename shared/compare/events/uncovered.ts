@@ -1,5 +1,5 @@
 import { resample } from "#shared/geometry/polyline.ts";
-import type { SegmentGrid } from "#shared/geometry/segment-grid.ts";
+import type { SegmentIndex } from "#shared/geometry/segment-index.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
 import type { RootedStrand } from "#shared/trees/rooted-strands.ts";
@@ -28,12 +28,12 @@ const STEP_MM = 0.1;
 
 /**
  * The parts of a tree farther than `tolerance` from its matching tree, longer than `tolerance`, each as one.
- * @param grid all lines of the other set; @param treeOfLine tree number of each of its lines; @param match number of the matching tree.
+ * @param index all lines of the other set; @param treeOfLine tree number of each of its lines; @param match number of the matching tree.
  */
 export function uncoveredParts(
   tree: number,
   strands: readonly RootedStrand[],
-  grid: SegmentGrid,
+  index: SegmentIndex,
   treeOfLine: readonly number[],
   match: number,
   tolerance: number,
@@ -49,7 +49,7 @@ export function uncoveredParts(
     const samples = resample(strand.line, STEP_MM);
     let run: Run | null = null;
     samples.forEach((p, i) => {
-      const own = grid.nearest(p, (line) => treeOfLine[line] === match).distance;
+      const own = index.nearest(p, (line) => treeOfLine[line] === match).distance;
       if (own <= tolerance) {
         run = null;
         return;
@@ -88,7 +88,7 @@ export function uncoveredParts(
         strands: whole.map((run) => strands[run.strand]!.strand.id),
         nodes: whole.map((run) => strands[run.strand]!.to),
         leadsTo: [...new Set(members.map((run) => strands[run.strand]!.to))],
-        followedBy: follower(samples, grid, treeOfLine, match, tolerance),
+        followedBy: follower(samples, index, treeOfLine, match, tolerance),
       },
     ];
   });
@@ -96,7 +96,7 @@ export function uncoveredParts(
 
 function follower(
   samples: readonly Vec3[],
-  grid: SegmentGrid,
+  index: SegmentIndex,
   treeOfLine: readonly number[],
   match: number,
   tolerance: number,
@@ -104,7 +104,7 @@ function follower(
   const near = new Map<number, number>();
   for (const p of samples) {
     const seen = new Set<number>();
-    grid.within(p, tolerance, (line) => seen.add(treeOfLine[line]!));
+    index.within(p, tolerance, (line) => seen.add(treeOfLine[line]!));
     for (const other of seen) if (other !== match) near.set(other, (near.get(other) ?? 0) + 1);
   }
   const best = [...near].sort((x, y) => y[1] - x[1] || x[0] - y[0])[0];

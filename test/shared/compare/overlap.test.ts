@@ -23,8 +23,8 @@ const options = { step: 1, toleranceMm: 0.1, minimumDiameterMm: null };
 describe("overlap of centrelines", () => {
   it("has the tabulated values with the points as given", () => {
     const { overlap, distances } = measureOverlap(
-      [{ points: reference.line, radii: reference.radii }],
-      [{ points: other.line, radii: other.radii }],
+      [{ strand: reference, points: reference.line, radii: reference.radii }],
+      [{ strand: other, points: other.line, radii: other.radii }],
       [[0]],
       options,
     );
@@ -52,15 +52,21 @@ describe("overlap of centrelines", () => {
   });
 
   it("decides by the tolerance where the reference has no radius, and says how often", () => {
-    const bare = { points: reference.line, radii: new Array(11).fill(null) };
-    const { overlap } = measureOverlap([bare], [{ points: other.line, radii: other.radii }], [[0]], options);
+    const radii = new Array(11).fill(null);
+    const bare = { strand: { ...reference, radii }, points: reference.line, radii };
+    const { overlap } = measureOverlap([bare], [{ strand: other, points: other.line, radii: other.radii }], [[0]], options);
     expect(overlap.noRadiusShare).toBe(1);
     expect(overlap.ov).toBe(0);
     expect(overlap.reasons.ai).toBeTruthy();
   });
 
   it("gives no distance when a side is empty", () => {
-    const { overlap, distances } = measureOverlap([{ points: reference.line, radii: reference.radii }], [], [[0]], options);
+    const { overlap, distances } = measureOverlap(
+      [{ strand: reference, points: reference.line, radii: reference.radii }],
+      [],
+      [[0]],
+      options,
+    );
     expect(distances.mean).toBeNull();
     expect(overlap.ov).toBe(0);
     expect(overlap.of).toBe(0);
