@@ -2,6 +2,12 @@ import { type ReadonlySignal, signal } from "@preact/signals";
 import type { Client } from "#renderer/client/client.ts";
 import type { JobState, ShelfAnswer } from "#shared/api/routes.ts";
 
+/** Where the shelf's messages go. */
+export interface ShelfMessages {
+  failed(error: unknown): void;
+  news(text: string): void;
+}
+
 /** What the shelf asks of the server. */
 export type ShelfClient = Pick<Client, "shelf" | "onEvent" | "openDemo" | "cancelJob">;
 
@@ -20,7 +26,7 @@ export class ShelfModel {
 
   constructor(
     private readonly client: ShelfClient,
-    private readonly failed: (error: unknown) => void,
+    private readonly messages: ShelfMessages,
   ) {}
 
   get answer(): ReadonlySignal<ShelfAnswer | null> {
@@ -72,7 +78,7 @@ export class ShelfModel {
       const { job } = await this.client.openDemo();
       this.begun(job);
     } catch (error) {
-      this.failed(error);
+      this.messages.failed(error);
     }
   }
 
@@ -87,7 +93,7 @@ export class ShelfModel {
     try {
       await this.client.cancelJob(job);
     } catch (error) {
-      this.failed(error);
+      this.messages.failed(error);
     }
   }
 
@@ -104,6 +110,8 @@ export class ShelfModel {
     else if (ours && job.state === "done") {
       this.madeSignal.value = job.result?.specimen ?? null;
       void this.load();
+    } else if (ours && job.state === "cancelled") {
+      this.messages.news("Stopped. Nothing of it is left in the library.");
     }
     // A finished job of which this page knows nothing is kept: `begun` may come a moment later.
     const keep = job.state === "running" || job.state === "failed" || !ours;

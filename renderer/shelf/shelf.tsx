@@ -19,7 +19,7 @@ const STEPS_KEY = "tautline-first-steps";
 /** The start screen: specimens of the library with their passes, and the ways to add a scan. */
 export function Shelf({ services }: ShelfProps) {
   const { client, capabilities, notices } = services;
-  const model = useMemo(() => new ShelfModel(client, (error) => notices.failed(error)), [client, notices]);
+  const model = useMemo(() => new ShelfModel(client, notices), [client, notices]);
   useEffect(() => model.start(), [model]);
   const [adding, setAdding] = useState<{ readonly path: string } | null>(null);
   const [about, setAbout] = useState(false);
@@ -99,10 +99,22 @@ export function Shelf({ services }: ShelfProps) {
         )}
         {answer === null && model.failure.value === null ? <p class="soft shelf-wait">Reading the library …</p> : null}
         {answer !== null && answer.specimens.length === 0 && jobs.length === 0 ? (
-          <p class="shelf-wait">
-            The shelf is empty. Add a scan from this computer{capabilities.shell === "electron" ? ", drop one here," : ""} or open
-            the demo valve.
-          </p>
+          <section class="shelf-empty" aria-label="Nothing here yet">
+            <h2>The shelf is empty</h2>
+            <div>
+              <button type="button" class="button main" onClick={() => setAdding({ path: "" })}>
+                Add a scan from this computer
+              </button>
+              <button type="button" class="button" onClick={() => void model.openDemo()}>
+                Open the demo valve, no file needed
+              </button>
+            </div>
+            <p class="soft">
+              {capabilities.shell === "electron"
+                ? "A scan can also be dropped anywhere on this page."
+                : "Scans are read from this computer's disk and never leave it."}
+            </p>
+          </section>
         ) : null}
         <ul class="shelf-rows" aria-label="Specimens">
           {answer?.specimens.map((shown) => (

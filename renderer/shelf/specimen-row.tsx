@@ -36,10 +36,13 @@ export function SpecimenRow({ shown, services, fresh, reload }: SpecimenRowProps
         .map((p) => p.annotator),
     ),
   ];
-  const close = () => {
-    setAsking(null);
-    newPass.current?.focus();
-  };
+  // The question takes the button's place: the focus goes back to the button once it stands there again.
+  const asked = useRef(asking);
+  useEffect(() => {
+    if (asking === null && asked.current === "pass") newPass.current?.focus();
+    asked.current = asking;
+  }, [asking]);
+  const close = () => setAsking(null);
   return (
     <li ref={row} class={fresh ? "shelf-row pane fresh" : "shelf-row pane"} aria-labelledby={`specimen-${specimen.id}`}>
       <SpecimenPicture client={services.client} shown={shown} />

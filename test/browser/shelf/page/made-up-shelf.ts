@@ -1,0 +1,118 @@
+import type { ScanLookAnswer } from "#shared/api/routes.ts";
+import type { PassSummary, ShelfSpecimen, SpecimenRecord } from "#shared/api/specimen.ts";
+import { IDENTITY3, pointMm, sizeXyz, spacingMm } from "#shared/geometry/types.ts";
+
+export function specimenOf(id: string, change: Partial<SpecimenRecord> = {}): SpecimenRecord {
+  return {
+    format: "tautline-specimen",
+    version: 1,
+    id,
+    name: "HB-07",
+    created: 1_780_000_000_000,
+    synthetic: true,
+    source: { name: "HB-07", family: "generated", bytes: 60_000_000, dtype: "uint16" },
+    volume: {
+      sha256: "00",
+      dtype: "uint16",
+      size: sizeXyz(1040, 1040, 1310),
+      spacing: spacingMm(0.04, 0.04, 0.04),
+      origin: pointMm(0, 0, 0),
+      direction: IDENTITY3,
+      frame: "LPS",
+      handedness: "confirmed",
+      blurFwhmMm: 0.08,
+      range: { min: 0, max: 4095 },
+    },
+    conversions: [],
+    polarity: "bright",
+    display: { low: 0, high: 4095 },
+    facts: { species: "porcine valve", fixation: "fixed under load", medium: "air", pressure: 100, state: "closed" },
+    landmarks: {},
+    ...change,
+  };
+}
+
+export function passOf(specimen: string, annotator: string, change: Partial<PassSummary> = {}): PassSummary {
+  return {
+    id: `${specimen}-${annotator}`.toLowerCase(),
+    specimen,
+    annotator,
+    number: 1,
+    state: "under-way",
+    trees: 14,
+    openEnds: 3,
+    doubts: 2,
+    edits: 1204,
+    workMs: 130 * 60_000,
+    changed: 1_780_400_000_000,
+    synthetic: false,
+    ...change,
+  };
+}
+
+export function shelfOfTwo(): ShelfSpecimen[] {
+  const plain = specimenOf("b2", {
+    name: "K-112 right after fixation, second scan with the long name",
+    synthetic: false,
+    facts: {},
+    volume: { ...specimenOf("b2").volume, spacing: spacingMm(0.0325, 0.0325, 0.05), handedness: "unknown" },
+  });
+  return [
+    {
+      specimen: specimenOf("a1"),
+      passes: [
+        passOf("a1", "AN-1", { synthetic: true, state: "finished", openEnds: 0 }),
+        passOf("a1", "AN-2", { synthetic: true, state: "finished", openEnds: 0, doubts: 1 }),
+        passOf("a1", "MK", { trees: 1, edits: 0, workMs: 0, openEnds: 0, doubts: 0 }),
+      ],
+      incomplete: false,
+    },
+    { specimen: plain, passes: [], incomplete: true },
+  ];
+}
+
+/** A grey disc with a few dots, as the middle slice of a scan; asymmetric, so that a mirror image can be told. */
+export function sliceOf(side: number): { width: number; height: number; grey: Uint8Array } {
+  const grey = new Uint8Array(side * side);
+  for (let i = 0; i < grey.length; i++) {
+    const x = (i % side) / side - 0.5;
+    const y = Math.floor(i / side) / side - 0.5;
+    const ring = Math.abs(Math.hypot(x, y) - 0.36) < 0.02;
+    const dot =
+      Math.hypot(x - 0.15, y + 0.1) < 0.03 || Math.hypot(x - 0.05, y - 0.18) < 0.02 || Math.hypot(x - 0.2, y - 0.02) < 0.015;
+    grey[i] = (ring ? 120 : dot ? 225 : 38) + ((i * 7919) % 13);
+  }
+  return { width: side, height: side, grey };
+}
+
+/** @param settled whether the header gives a voxel size with a unit */
+export function lookOf(settled: boolean): ScanLookAnswer {
+  const { width, height, grey } = sliceOf(256);
+  let text = "";
+  for (const value of grey) text += String.fromCharCode(value);
+  return {
+    info: {
+      family: "NRRD",
+      name: "K-113.nrrd",
+      bytes: 2_834_000_000,
+      size: [1040, 1040, 1310],
+      spacing: settled ? [0.04, 0.04, 0.04] : null,
+      headerSpacing: [40, 40, 40],
+      unit: settled ? "um" : null,
+      dtype: "uint32",
+      range: { min: 0, max: 4095, sampled: true },
+      frame: "scan",
+      warnings: settled ? [] : [{ code: "no-unit", message: "The header names no unit of length." }],
+    },
+    slice: { width, height, data: btoa(text) },
+    histogram: {
+      min: 0,
+      max: 4095,
+      counts: Array.from({ length: 64 }, (_, i) =>
+        Math.round(90_000 * Math.exp(-((i - 9) ** 2) / 30) + 900 * Math.exp(-((i - 45) ** 2) / 50)),
+      ),
+    },
+    conversions: ["The voxels are uint32 and are stored as uint16, which holds every value exactly."],
+    suggestedPolarity: "bright",
+  };
+}
