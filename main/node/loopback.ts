@@ -11,7 +11,7 @@ export const CONNECTION_LIMITS = {
   maxHeaderSize: 16 * 1024,
   headersTimeout: 10_000,
   requestTimeout: 120_000,
-  keepAliveTimeout: 10_000,
+  keepAliveTimeout: 75_000,
   connectionsCheckingInterval: 5_000,
 } as const;
 export const MOST_CONNECTIONS = 128;

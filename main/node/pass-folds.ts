@@ -2,7 +2,7 @@ import { join } from "node:path";
 import type { FilePort } from "#main/node/file-port.ts";
 import type { Journal } from "#main/node/journal.ts";
 import { Turns } from "#main/node/turns.ts";
-import { readJsonFile, writeJson } from "#main/node/whole-file.ts";
+import { readJsonFile, writeWhole } from "#main/node/whole-file.ts";
 import { PassHistory } from "#shared/log/history.ts";
 import { historyFromSnapshot, RECORDS_PER_SNAPSHOT, snapshotOf } from "#shared/log/snapshot.ts";
 
@@ -44,7 +44,8 @@ export class PassFolds {
     if (journal.head.seq - newest < RECORDS_PER_SNAPSHOT) return;
     try {
       const snapshot = snapshotOf(await this.history(folder, journal));
-      await writeJson(this.#files, join(folder, `snapshot-${snapshot.seq}.json`), snapshot);
+      const bytes = new TextEncoder().encode(JSON.stringify(snapshot));
+      await writeWhole(this.#files, join(folder, `snapshot-${snapshot.seq}.json`), bytes);
       for (const seq of (await this.#snapshots(folder)).slice(SNAPSHOTS_KEPT)) {
         await this.#files.remove(join(folder, `snapshot-${seq}.json`));
       }

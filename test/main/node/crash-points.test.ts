@@ -99,3 +99,20 @@ describe.each<Stop>(["kill", "power-cut", "torn"])("a process that ends by %s", 
     expect(stops, `${point} is never reached`).toBeGreaterThan(0);
   });
 });
+
+describe("this test", () => {
+  it("finds lost edits when nothing is synced", async () => {
+    const files = new UnsyncedFiles();
+    const { library } = sampleLibrary(files);
+    await putSpecimen(files, library);
+    const { id } = await library.createPass(SPECIMEN, "AN-1");
+    const log = await library.readLog(SPECIMEN, id, 0);
+    const told = { ...nothingTold(), pass: id, saved: [...log.lines], epoch: log.epoch };
+    files.syncLies = true;
+    told.waiting = new SampleWriter(log).edit();
+    await send(library, told);
+    expect(told.saved).toHaveLength(2);
+    await checkAfter(files.afterStop("kill"), told);
+    await expect(checkAfter(files.afterStop("power-cut"), told)).rejects.toThrow();
+  });
+});

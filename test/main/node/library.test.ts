@@ -126,7 +126,7 @@ describe("Library", () => {
     files.tamper(snapshots().at(-1)!, () => new TextEncoder().encode("{"));
     expect(await sampleLibrary(files).library.shelf()).toEqual(expected);
     files.tamper(snapshots()[0]!, (bytes) =>
-      new TextEncoder().encode(new TextDecoder().decode(bytes).replace(/"hash": "../, '"hash": "00')),
+      new TextEncoder().encode(new TextDecoder().decode(bytes).replace(/"hash":"../, '"hash":"00')),
     );
     expect(await sampleLibrary(files).library.shelf()).toEqual(expected);
     for (const path of snapshots()) await files.remove(path);

@@ -28,6 +28,8 @@ export class UnsyncedFiles implements FilePort {
   room = Number.POSITIVE_INFINITY;
   /** Refuses everything that changes the disk, with this code. */
   refuses: string | null = null;
+  /** Syncs of files do nothing and say they did: a disk that lies, or a program that forgot to sync. */
+  syncLies = false;
   /** Fails syncs of files while true. */
   syncFails = false;
 
@@ -93,7 +95,7 @@ export class UnsyncedFiles implements FilePort {
     this.#live();
     const inode = this.#inode(path);
     if (this.syncFails) throw fault("EIO", path);
-    inode.synced = inode.bytes.slice();
+    if (!this.syncLies) inode.synced = inode.bytes.slice();
   }
 
   async syncFolder(folder: string): Promise<void> {
@@ -147,7 +149,7 @@ export class UnsyncedFiles implements FilePort {
       sync: async () => {
         this.#live();
         if (this.syncFails) throw fault("EIO", path);
-        inode.synced = inode.bytes.slice();
+        if (!this.syncLies) inode.synced = inode.bytes.slice();
       },
       truncate: async (size) => {
         this.#live();
