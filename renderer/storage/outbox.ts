@@ -22,6 +22,11 @@ export interface OutboxPlaces extends Omit<ReconcilePlaces, "store" | "sender"> 
   readonly changed: (state: OutboxState) => void;
   /** The log was brought together with the journal again while the pass was open: the history is to be opened anew. */
   readonly reconciled: (result: Exclude<Reconciled, { outcome: "agreed" }>) => void;
+  /**
+   * Lines that came while the log was being replaced follow nothing any more. They are not sent; they are among the store's
+   * recovered logs under `name`, and the person is to be told.
+   */
+  readonly setAside?: (name: string, lines: readonly string[]) => void;
 }
 
 const FIRST_WAIT_MS = 500;
@@ -220,9 +225,11 @@ export class Outbox {
   private async strandFresh(): Promise<void> {
     const lines = [...this.fresh];
     if (lines.length === 0) return;
-    const { store, branchName, now } = this.places;
-    await store.setAside(branchName(now()), now(), lines);
+    const { store, branchName, now, setAside } = this.places;
+    const name = branchName(now());
+    await store.setAside(name, now(), lines);
     this.fresh.splice(0, lines.length);
+    setAside?.(name, lines);
   }
 
   /** The browser's store fails (full, or switched off): lines go straight to the journal, which is the authority. */
