@@ -8,7 +8,7 @@ const LAYERS = [
   {
     name: "node",
     path: "^main/node/",
-    may: ["^shared/", "^main/(http|intake|engine)/"],
+    may: ["^shared/", "^main/http/"],
     packages: ["@hono/node-server", "hono", "fflate"],
     node: true,
   },

@@ -14,6 +14,7 @@ const FORBIDDEN: [file: string, line: string, rule: string][] = [
   ["main/http/c.ts", 'import "electron";', "http-imports-only-its-layers"],
   ["main/node/a.ts", 'import "electron";', "node-imports-only-its-layers"],
   ["main/node/b.ts", 'import "#renderer/app/x.ts";', "node-imports-only-its-layers"],
+  ["main/node/c.ts", 'import "#main/engine/x.ts";', "node-imports-only-its-layers"],
   ["main/intake/a.ts", 'import "#renderer/app/x.ts";', "intake-imports-only-its-layers"],
   ["main/engine/a.ts", 'import "#main/intake/x.ts";', "engine-imports-only-its-layers"],
   ["main/cli/a.ts", 'import "#main/electron/x.ts";', "cli-imports-only-its-layers"],
