@@ -13,10 +13,10 @@ import {
   surfaceRequest,
   valueRequest,
 } from "#main/http/engine-shapes.ts";
-import type { RouteHandlers } from "#main/http/handler.ts";
 import { pictureRequest } from "#main/http/picture.ts";
 import type { Ports } from "#main/http/ports.ts";
 import { readJson } from "#main/http/read-body.ts";
+import type { RouteHandlers } from "#main/http/route-handlers.ts";
 
 /** What the engine computes next to the voxels. */
 export function engineRoutes({ engine, library }: Ports): RouteHandlers {

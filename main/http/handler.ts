@@ -1,15 +1,14 @@
-import { type Context, Hono } from "hono";
+import { Hono } from "hono";
 import { type Access, refusedAccess } from "#main/http/access.ts";
 import { bytesAnswer, errorAnswer } from "#main/http/answers.ts";
 import { engineRoutes } from "#main/http/engine-routes.ts";
 import { libraryRoutes } from "#main/http/library-routes.ts";
 import { pagePath } from "#main/http/page-path.ts";
 import type { Ports } from "#main/http/ports.ts";
+import type { RouteHandlers } from "#main/http/route-handlers.ts";
 import { workRoutes } from "#main/http/work-routes.ts";
 import { ROUTES, type RouteName } from "#shared/api/routes.ts";
 import { isTautlineError, TautlineError } from "#shared/errors.ts";
-
-export type RouteHandlers = Partial<Record<RouteName, (context: Context) => Promise<Response>>>;
 
 export type Handler = (request: Request) => Promise<Response>;
 

@@ -1,6 +1,5 @@
 import { jsonAnswer } from "#main/http/answers.ts";
 import { id } from "#main/http/engine-shapes.ts";
-import type { RouteHandlers } from "#main/http/handler.ts";
 import {
   annotatorRequest,
   appendRequest,
@@ -13,6 +12,7 @@ import {
 } from "#main/http/library-shapes.ts";
 import type { Ports } from "#main/http/ports.ts";
 import { LOG_LIMIT_BYTES, readJson } from "#main/http/read-body.ts";
+import type { RouteHandlers } from "#main/http/route-handlers.ts";
 import { refuse } from "#main/http/shape.ts";
 
 /** Specimens, passes and their logs. */

@@ -1,7 +1,6 @@
 import { bytesAnswer, jsonAnswer } from "#main/http/answers.ts";
 import { id, windowName } from "#main/http/engine-shapes.ts";
 import { eventStream } from "#main/http/event-stream.ts";
-import type { RouteHandlers } from "#main/http/handler.ts";
 import { COMMON_HEADERS } from "#main/http/headers.ts";
 import {
   emptyRequest,
@@ -13,6 +12,7 @@ import {
 } from "#main/http/library-shapes.ts";
 import type { Ports } from "#main/http/ports.ts";
 import { readJson } from "#main/http/read-body.ts";
+import type { RouteHandlers } from "#main/http/route-handlers.ts";
 import { LOST_HEADER } from "#shared/api/routes.ts";
 
 /** Scans on this computer, long work, export, and the life of a window. */
