@@ -19,21 +19,21 @@ export function drawFrame(
 ): void {
   const bar = scaleBar(plane.mmPerPx, Math.min(180, size.width * 0.3));
   const y = size.height - EDGE_PX;
-  cased(to, ink.textCasing, ink.text, 2, () => {
+  cased(to, ink.casing, ink.ink, 2, () => {
     to.moveTo(EDGE_PX, y - 5);
     to.lineTo(EDGE_PX, y);
     to.lineTo(EDGE_PX + bar.px, y);
     to.lineTo(EDGE_PX + bar.px, y - 5);
   });
   text.reserve(EDGE_PX, y - 8, EDGE_PX + bar.px, y + 4);
-  text.at(bar.text, EDGE_PX + bar.px / 2, y - 13, "center", ink.text);
-  if (content.caption !== "") text.at(content.caption, size.width - EDGE_PX, y - 2, "right", ink.text);
+  text.at(bar.text, EDGE_PX + bar.px / 2, y - 13, "center", ink.ink);
+  if (content.caption !== "") text.at(content.caption, size.width - EDGE_PX, y - 2, "right", ink.ink);
   if (content.frame !== "LPS") return;
   const letters = edgeLetters(plane);
-  text.at(letters.top, size.width / 2, EDGE_PX, "center", ink.text);
-  text.at(letters.bottom, size.width / 2, size.height - EDGE_PX, "center", ink.text);
-  text.at(letters.left, EDGE_PX, size.height / 2, "left", ink.text);
-  text.at(letters.right, size.width - EDGE_PX, size.height / 2, "right", ink.text);
+  text.at(letters.top, size.width / 2, EDGE_PX, "center", ink.ink);
+  text.at(letters.bottom, size.width / 2, size.height - EDGE_PX, "center", ink.ink);
+  text.at(letters.left, EDGE_PX, size.height / 2, "left", ink.ink);
+  text.at(letters.right, size.width - EDGE_PX, size.height / 2, "right", ink.ink);
 }
 
 export function drawRuler(
@@ -50,7 +50,7 @@ export function drawRuler(
   const b = toPane(plane, size, end);
   const long = Math.hypot(b.x - a.x, b.y - a.y);
   const [nx, ny] = long === 0 ? [0, 7] : [(-(b.y - a.y) / long) * 7, ((b.x - a.x) / long) * 7];
-  cased(to, ink.textCasing, ink.text, 1.6, () => {
+  cased(to, ink.casing, ink.ink, 1.6, () => {
     to.moveTo(a.x, a.y);
     to.lineTo(b.x, b.y);
     for (const p of [a, b]) {
@@ -58,7 +58,7 @@ export function drawRuler(
       to.lineTo(p.x + nx, p.y + ny);
     }
   });
-  text.beside(lengthText(distance(from, end)), (a.x + b.x) / 2, (a.y + b.y) / 2, 14, ink.text, true);
+  text.beside(lengthText(distance(from, end)), (a.x + b.x) / 2, (a.y + b.y) / 2, 14, ink.ink, true);
 }
 
 /** The string that the pointer snaps to: a ring with four short rays, and its depth. */
@@ -77,7 +77,7 @@ export function drawSnap(
     to.arc(p.x, p.y, 6, 0, 2 * Math.PI);
     rays(to, p, 6, 11, Math.PI / 4);
   });
-  text.beside(depthText(content.snap.depthMm), p.x, p.y, 16, ink.text, true);
+  text.beside(depthText(content.snap.depthMm), p.x, p.y, 16, ink.ink, true);
 }
 
 /** The keyboard cursor: two facing arcs and rays that leave the middle free. */

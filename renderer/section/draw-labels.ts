@@ -1,7 +1,7 @@
 import { clipToSlab } from "#renderer/section/clip-to-slab.ts";
 import { planeCrossings } from "#renderer/section/plane-crossings.ts";
 import { FADE_MM, type ProjectedScene, type ProjectedStrand } from "#renderer/section/project-scene.ts";
-import { nameColour, type SectionInk } from "#renderer/section/section-ink.ts";
+import type { SectionInk } from "#renderer/section/section-ink.ts";
 import type { TextOnPicture } from "#renderer/section/text-on-picture.ts";
 import type { PaneSize } from "#renderer/section/view-plane.ts";
 
@@ -25,7 +25,7 @@ export function drawLabels(
     places.set(strand.drawn.name, { name: strand.drawn.name, ...place, colour: ink.trees[strand.drawn.mark.colour]!, rank });
   }
   for (const { name, x, y, gap, colour } of [...places.values()].sort((a, b) => a.rank - b.rank)) {
-    text.beside(name, x, y, gap, nameColour(ink, colour));
+    text.beside(name, x, y, gap, colour);
   }
 }
 

@@ -64,7 +64,7 @@ export class SectionView {
     private readonly events: SectionEvents = {},
     draggable: Draggable = (hit) => hit.kind !== "strand",
   ) {
-    this.canvases = new PaneCanvases(host, "section-view", 2, () => {
+    this.canvases = new PaneCanvases(host, "section-view on-picture", 2, () => {
       this.redraw(true);
       this.events.resized?.(this.size);
     });

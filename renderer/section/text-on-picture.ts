@@ -61,7 +61,7 @@ export class TextOnPicture {
     const middle = (box.top + box.bottom) / 2;
     this.to.textAlign = "left";
     this.to.lineJoin = "round";
-    this.to.strokeStyle = this.ink.textCasing;
+    this.to.strokeStyle = this.ink.casing;
     this.to.lineWidth = 3.5;
     this.to.strokeText(text, box.left, middle);
     this.to.fillStyle = colour;

@@ -31,6 +31,7 @@ const THINNEST_MM = 0.11;
 /** Rings of a tube stand this far apart. */
 const STEP_MM = 0.25;
 const DASH_UNIT_MM = 0.32;
+/** CSS pixels: three multiplies point sizes by the pixel ratio. */
 const GLYPH_PX = 17;
 
 /** Frees what a part holds on the graphics side. */
@@ -88,12 +89,7 @@ function tubesPart(tubes: readonly Tube[], thinnestMm: number): Mesh {
 }
 
 /** Nodes as glyphs of constant size on screen, one draw a kind. */
-export function nodesPart(
-  nodes: Iterable<TreeNode>,
-  colours: ViewColours,
-  textures: GlyphTextures,
-  pixelRatio: number,
-): Object3D {
+export function nodesPart(nodes: Iterable<TreeNode>, colours: ViewColours, textures: GlyphTextures): Object3D {
   const byKind = new Map<NodeKind, TreeNode[]>();
   for (const node of nodes) {
     const same = byKind.get(node.kind);
@@ -106,7 +102,7 @@ export function nodesPart(
     geometry.setAttribute("position", new BufferAttribute(Float32Array.from(same.flatMap((node) => [...node.position])), 3));
     const tints = same.flatMap((node) => rgb(kind === "open" ? colours.warn : colours.trees[treeMark(node.tree).colour]!));
     geometry.setAttribute("color", new BufferAttribute(Float32Array.from(tints), 3));
-    const size = (kind === "waypoint" ? GLYPH_PX * 0.7 : GLYPH_PX) * pixelRatio;
+    const size = kind === "waypoint" ? GLYPH_PX * 0.7 : GLYPH_PX;
     group.add(
       new Points(
         geometry,
@@ -140,12 +136,12 @@ export function planePart(plane: PlaneInSpace, picture: PictureInSpace | null, c
   return group;
 }
 
-export function surfacePart(points: Float32Array, colours: ViewColours, pixelRatio: number): Points {
+export function surfacePart(points: Float32Array, colours: ViewColours): Points {
   const geometry = new BufferGeometry();
   geometry.setAttribute("position", new BufferAttribute(points, 3));
   const material = new PointsMaterial({
     color: new Color(colours.ink),
-    size: 1.5 * pixelRatio,
+    size: 1.5,
     sizeAttenuation: false,
     transparent: true,
     opacity: 0.28,
@@ -155,16 +151,11 @@ export function surfacePart(points: Float32Array, colours: ViewColours, pixelRat
 }
 
 /** Pins of the strand under way. */
-export function pinsPart(
-  pins: SpaceContent["pins"],
-  colours: ViewColours,
-  textures: GlyphTextures,
-  pixelRatio: number,
-): Object3D {
+export function pinsPart(pins: SpaceContent["pins"], colours: ViewColours, textures: GlyphTextures): Object3D {
   const geometry = new BufferGeometry();
   geometry.setAttribute("position", new BufferAttribute(Float32Array.from(pins.flat()), 3));
   const map = textures.of("waypoint");
-  const size = GLYPH_PX * pixelRatio;
+  const size = GLYPH_PX;
   return new Points(
     geometry,
     new PointsMaterial({ map, color: colours.accent, size, sizeAttenuation: false, alphaTest: 0.35, transparent: true }),

@@ -60,8 +60,9 @@ const NO_WEBGL = "This computer's browser offers no WebGL, so the view in space 
 const LOST_WEBGL = "The graphics were lost for a moment; the view comes back by itself.";
 /** After this long without movement the full picture is drawn. */
 const STILL_AFTER_MS = 160;
-/** While moving, one surface point of so many is drawn. */
+/** While moving, one surface point of so many is drawn, and so much of the resolution each way. */
 const MOVING_SHARE = 4;
+const MOVING_RESOLUTION = 0.5;
 
 /** The trees in space inside a host element, which it fills. Draws on change only; without WebGL it says so and stays still. */
 export class SpaceView {
@@ -92,7 +93,7 @@ export class SpaceView {
     host: HTMLElement,
     private readonly events: SpaceEvents = {},
   ) {
-    this.element.className = "space-view";
+    this.element.className = "space-view on-picture";
     this.note.className = "space-note";
     this.note.hidden = true;
     this.element.append(this.note);
@@ -276,12 +277,11 @@ export class SpaceView {
 
   private build(name: PartName, colours: ViewColours): Object3D | null {
     const { document, guide, pins, plane, picture, surface, selection } = this.content;
-    const ratio = this.renderer?.getPixelRatio() ?? 1;
     switch (name) {
       case "strands":
         return this.drawn.length === 0 ? null : strandsPart(this.drawn, colours);
       case "nodes":
-        return document === null ? null : nodesPart(document.nodes.values(), colours, this.glyphs, ratio);
+        return document === null ? null : nodesPart(document.nodes.values(), colours, this.glyphs);
       case "selection": {
         const chosen = this.drawn.filter(
           (strand) => strand.id === selection.strand || (selection.strand === undefined && strand.tree === selection.tree),
@@ -291,11 +291,11 @@ export class SpaceView {
       case "guide":
         return guide === null || guide.length < 6 ? null : guidePart(guide, colours);
       case "pins":
-        return pins.length === 0 ? null : pinsPart(pins, colours, this.glyphs, ratio);
+        return pins.length === 0 ? null : pinsPart(pins, colours, this.glyphs);
       case "plane":
         return plane === null ? null : planePart(plane, picture, colours);
       case "surface":
-        return surface === null ? null : surfacePart(surface, colours, ratio);
+        return surface === null ? null : surfacePart(surface, colours);
     }
   }
 
@@ -303,9 +303,7 @@ export class SpaceView {
     const { clientWidth: width, clientHeight: height } = this.element;
     this.size = { width, height };
     if (!this.touched) this.orbit = this.whole();
-    this.renderer?.setPixelRatio(globalThis.devicePixelRatio || 1);
     this.renderer?.setSize(width, height, false);
-    this.spoil("nodes", "pins", "surface");
     this.redraw();
   }
 
@@ -328,6 +326,8 @@ export class SpaceView {
       const count = surface.geometry.getAttribute("position").count;
       surface.geometry.setDrawRange(0, this.moving ? Math.ceil(count / MOVING_SHARE) : count);
     }
+    const ratio = (globalThis.devicePixelRatio || 1) * (this.moving ? MOVING_RESOLUTION : 1);
+    if (this.renderer.getPixelRatio() !== ratio) this.renderer.setPixelRatio(ratio);
     this.placeCamera();
     this.renderer.render(this.scene, this.camera);
   }

@@ -23,7 +23,7 @@ const LEAST_STRIP_PX = 40;
 export function stripLayout(width: number, height: number): StripLayout {
   const y = WORD_PX;
   const rows = Math.max(0, height - 2 * WORD_PX);
-  const room = Math.max(0, width - AXIS_PX - 2 * GAP_PX - 2);
+  const room = Math.max(0, width - AXIS_PX - 3 * GAP_PX);
   const wanted = Math.max(0, Math.min(96, Math.floor(room * 0.3), rows));
   const profileWidth = Math.min(90, Math.floor(room * 0.28));
   // A narrow pane gives up the film first, then the profile keeps what the strip can spare.
@@ -73,6 +73,14 @@ export function filmSquares(film: Rect, at: readonly number[], lengthMm: number)
     floor = square.y + side + FILM_GAP_PX;
   }
   return squares;
+}
+
+/** Arc length that a place on the pane stands for: on the film its nearest section's, elsewhere the row's. */
+export function arcAtPlace(layout: StripLayout, at: readonly number[], x: number, y: number, lengthMm: number): number {
+  if (at.length === 0 || layout.film.width === 0 || x < layout.film.x) return arcAt(layout.strip, y, lengthMm);
+  const squares = filmSquares(layout.film, at, lengthMm);
+  const off = (i: number) => Math.abs(squares[i]!.y + squares[i]!.side / 2 - y);
+  return at[squares.reduce((best, _square, i) => (off(i) < off(best) ? i : best), 0)]!;
 }
 
 /** Round marks for an axis: 1, 2 or 5 times a power of ten apart, not nearer together than `leastPx`. */

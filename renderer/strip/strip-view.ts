@@ -1,7 +1,7 @@
 import "#renderer/strip/strip.css";
 import { drawStrip, type StripInk, StripPictures } from "#renderer/strip/draw-strip.ts";
 import type { StripContent, StripEvents, StripSizes } from "#renderer/strip/strip-content.ts";
-import { arcAt, type StripLayout, stripLayout } from "#renderer/strip/strip-layout.ts";
+import { arcAtPlace, type StripLayout, stripLayout } from "#renderer/strip/strip-layout.ts";
 import { coloursFrom } from "#shared/marks/colours.ts";
 
 export const EMPTY_STRIP: StripContent = {
@@ -56,7 +56,7 @@ export class StripView {
     this.facts.className = "strip-facts";
     this.note.className = "strip-note";
     this.note.setAttribute("role", "status");
-    this.stage.className = "strip-stage";
+    this.stage.className = "strip-stage on-picture";
     this.stage.tabIndex = 0;
     this.stage.setAttribute("role", "slider");
     this.stage.setAttribute("aria-orientation", "vertical");
@@ -106,8 +106,11 @@ export class StripView {
 
   private listen(): void {
     const { stage } = this;
-    const arc = (event: PointerEvent) =>
-      arcAt(this.layout.strip, event.clientY - stage.getBoundingClientRect().top, this.content.lengthMm);
+    const arc = (event: PointerEvent) => {
+      const box = stage.getBoundingClientRect();
+      const sections = this.content.film?.header.at ?? [];
+      return arcAtPlace(this.layout, sections, event.clientX - box.left, event.clientY - box.top, this.content.lengthMm);
+    };
     stage.addEventListener("pointerdown", (event) => {
       if (event.button !== 0 || !this.usable) return;
       stage.setPointerCapture(event.pointerId);
@@ -217,7 +220,7 @@ export class StripView {
   }
 
   private ink(): StripInk {
-    const style = getComputedStyle(this.element);
+    const style = getComputedStyle(this.stage);
     const colours = coloursFrom((name) => style.getPropertyValue(name));
     return { ...colours, soft: style.getPropertyValue("--soft").trim() || colours.ink, family: style.fontFamily };
   }

@@ -13,13 +13,13 @@ export interface ViewColours {
 }
 
 /**
- * Colours on dark grounds. The eight tree colours were found by search, not by taste alone: in OKLab (Ottosson 2020) any two
+ * Colours on pictures, which are dark in every theme. The eight tree colours were found by search, not by taste alone: in OKLab (Ottosson 2020) any two
  * of them, and each of them and the accent, stay at least 0.08 apart for full colour vision and for simulated red, green and
  * blue blindness (Machado et al. 2009, severity 1), and each has a contrast of 4.5:1 or more against the grounds they stand on.
  * Eight hues are more than dichromats can name, so a tree is told by its line pattern as well.
  * @source own search; the bounds are checked by a test
  */
-export const DARK_COLOURS: ViewColours = {
+export const PICTURE_COLOURS: ViewColours = {
   trees: ["#d1a818", "#6daada", "#e8728b", "#f0ef9f", "#6883dd", "#988813", "#b2cda2", "#aaf4fd"],
   accent: "#5ad1e6",
   ink: "#eceae6",
@@ -29,28 +29,17 @@ export const DARK_COLOURS: ViewColours = {
   warn: "#ff9175",
 };
 
-/** Colours on light grounds: the same bounds on distance, and a contrast of 3:1 or more against the grounds. @source own search */
-export const LIGHT_COLOURS: ViewColours = {
-  trees: ["#b5581f", "#292a85", "#6a1806", "#814328", "#6846a6", "#4d304e", "#358671", "#836db5"],
-  accent: "#0a6577",
-  ink: "#1e1d1b",
-  paper: "#e9e7e2",
-  pane: "#f7f6f3",
-  line: "#cbc7be",
-  warn: "#a82f12",
-};
-
-/** The colours as `read` gives them by custom property name; a missing or empty one falls back to the dark set. */
+/** The colours as `read` gives them by custom property name; a missing or empty one falls back to {@link PICTURE_COLOURS}. */
 export function coloursFrom(read: (property: string) => string): ViewColours {
   const or = (name: string, fallback: string) => read(name).trim() || fallback;
-  const trees = Array.from({ length: TREE_COLOURS }, (_, i) => or(`--tree-${i + 1}`, DARK_COLOURS.trees[i]!));
+  const trees = Array.from({ length: TREE_COLOURS }, (_, i) => or(`--tree-${i + 1}`, PICTURE_COLOURS.trees[i]!));
   return {
     trees,
-    accent: or("--accent", DARK_COLOURS.accent),
-    ink: or("--ink", DARK_COLOURS.ink),
-    paper: or("--paper", DARK_COLOURS.paper),
-    pane: or("--pane", DARK_COLOURS.pane),
-    line: or("--line", DARK_COLOURS.line),
-    warn: or("--warn", DARK_COLOURS.warn),
+    accent: or("--accent", PICTURE_COLOURS.accent),
+    ink: or("--ink", PICTURE_COLOURS.ink),
+    paper: or("--paper", PICTURE_COLOURS.paper),
+    pane: or("--pane", PICTURE_COLOURS.pane),
+    line: or("--line", PICTURE_COLOURS.line),
+    warn: or("--warn", PICTURE_COLOURS.warn),
   };
 }

@@ -1,5 +1,5 @@
 import { expect, test } from "vitest";
-import { arcAt, axisMarks, filmSquares, rowOf, stripLayout } from "#renderer/strip/strip-layout.ts";
+import { arcAt, arcAtPlace, axisMarks, filmSquares, rowOf, stripLayout } from "#renderer/strip/strip-layout.ts";
 
 test("the parts stand beside each other inside the pane at any size", () => {
   for (let width = 120; width <= 700; width += 23) {
@@ -37,4 +37,13 @@ test("axis marks are round, start at 0 and keep their distance", () => {
   expect(axisMarks(8.3, 600, 34)).toEqual([0, 0.5, 1, 1.5, 2, 2.5, 3, 3.5, 4, 4.5, 5, 5.5, 6, 6.5, 7, 7.5, 8]);
   expect(axisMarks(0.3, 600, 34)).toContain(0.3);
   expect(axisMarks(0, 600, 34)).toEqual([]);
+});
+
+test("a click on the film means the section under it, elsewhere the row", () => {
+  const layout = stripLayout(260, 700);
+  const at = Array.from({ length: layout.filmCount }, (_, k) => k * 0.05);
+  filmSquares(layout.film, at, 10).forEach(({ x, y, side }, k) => {
+    expect(arcAtPlace(layout, at, x + 3, y + side * 0.6, 10)).toBe(at[k]);
+  });
+  expect(arcAtPlace(layout, at, layout.strip.x + 3, layout.strip.y, 10)).toBeCloseTo(10, 9);
 });

@@ -1,6 +1,6 @@
 import { readFileSync } from "node:fs";
 import { expect, test } from "vitest";
-import { coloursFrom, DARK_COLOURS, LIGHT_COLOURS, type ViewColours } from "#shared/marks/colours.ts";
+import { coloursFrom, PICTURE_COLOURS } from "#shared/marks/colours.ts";
 
 type Rgb = readonly [number, number, number];
 
@@ -57,37 +57,34 @@ function nearestPair(colours: readonly string[], sight: readonly number[]): numb
 }
 
 const css = readFileSync(new URL("../../../renderer/app/theme.css", import.meta.url), "utf8");
-const [dark, light] = css.split(':root[data-theme="light"]');
-const inTheme = (part: string) => (name: string) => new RegExp(`${name}:\\s*(#[0-9a-f]{6})`).exec(part)?.[1] ?? "";
+const block = (selector: string) => new RegExp(`${selector} \\{([^}]*)\\}`).exec(css)?.[1] ?? "";
+const inBlock = (text: string, name: string) => new RegExp(`${name}:\\s*(#[0-9a-f]{6})`).exec(text)?.[1] ?? "";
+const onPicture = block("\\.on-picture");
+const root = block(":root");
 
-const THEMES: readonly (readonly [string, ViewColours, string, number])[] = [
-  ["dark", DARK_COLOURS, dark!, 4.5],
-  ["light", LIGHT_COLOURS, light!, 3],
-];
-
-test.each(THEMES)("the %s theme of the page has the colours of the pictures", (_name, colours, part) => {
-  expect(coloursFrom(inTheme(part))).toEqual(colours);
+test("the page's colours on pictures are those of the pictures, in both themes", () => {
+  const found = coloursFrom((name) => inBlock(onPicture, name) || inBlock(root, name));
+  expect(found).toEqual(PICTURE_COLOURS);
+  // The light theme does not touch the tree colours.
+  expect(block(':root\\[data-theme="light"\\]')).not.toContain("--tree-");
+  for (const name of ["--accent", "--warn", "--ink", "--pane", "--line"]) expect(inBlock(onPicture, name), name).not.toBe("");
 });
 
-test.each(THEMES)(
-  "tree colours of the %s theme stay apart from each other and from the accent in every sight",
-  (_name, colours) => {
-    for (const sight of Object.keys(SIGHTS)) {
-      expect(nearestPair([...colours.trees, colours.accent], SIGHTS[sight]!), sight).toBeGreaterThan(0.08);
-    }
-  },
-);
-
-// WCAG 2.2, 1.4.11: 3:1 for graphics; 1.4.3: 4.5:1 for text.
-test.each(THEMES)("colours of the %s theme stand out from their grounds", (_name, colours, part, least) => {
-  const grounds = [colours.pane, inTheme(part)("--well")];
-  for (const ground of grounds) {
-    for (const colour of colours.trees) expect(contrast(colour, ground), `${colour} on ${ground}`).toBeGreaterThanOrEqual(least);
-    expect(contrast(colours.ink, ground)).toBeGreaterThanOrEqual(4.5);
-    expect(contrast(colours.accent, ground), `accent on ${ground}`).toBeGreaterThanOrEqual(3);
+test("tree colours stay apart from each other and from the accent in every sight", () => {
+  for (const sight of Object.keys(SIGHTS)) {
+    expect(nearestPair([...PICTURE_COLOURS.trees, PICTURE_COLOURS.accent], SIGHTS[sight]!), sight).toBeGreaterThan(0.08);
   }
 });
 
-test("a missing property falls back to the dark set", () => {
-  expect(coloursFrom((name) => (name === "--accent" ? " #123456 " : ""))).toEqual({ ...DARK_COLOURS, accent: "#123456" });
+// WCAG 2.2, 1.4.3: 4.5:1 for texts; the names of trees are written in their colours.
+test("colours stand out from the grounds of pictures", () => {
+  for (const ground of ["#000000", inBlock(onPicture, "--pane"), inBlock(onPicture, "--well")]) {
+    for (const colour of [...PICTURE_COLOURS.trees, PICTURE_COLOURS.accent, PICTURE_COLOURS.ink, PICTURE_COLOURS.warn]) {
+      expect(contrast(colour, ground), `${colour} on ${ground}`).toBeGreaterThanOrEqual(4.5);
+    }
+  }
+});
+
+test("a missing property falls back to the colours of pictures", () => {
+  expect(coloursFrom((name) => (name === "--accent" ? " #123456 " : ""))).toEqual({ ...PICTURE_COLOURS, accent: "#123456" });
 });
