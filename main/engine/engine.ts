@@ -1,6 +1,7 @@
 import { randomUUID } from "node:crypto";
 import { availableParallelism } from "node:os";
 import { type CacheFigures, createCacheMemory, MOST_WORKERS } from "#main/engine/brick-cache.ts";
+import { Calls } from "#main/engine/calls.ts";
 import {
   checkFilm,
   checkInScan,
@@ -70,16 +71,16 @@ export function createEngine(options: EngineOptions): LocalEngine {
   const workers = Math.min(Math.max(options.workers ?? availableParallelism(), 2), MOST_WORKERS);
   const bytes = options.cacheBytes ?? DEFAULT_BYTES;
   const memory = createCacheMemory(BRICK_SHARE * bytes, workers);
-  const stop = new SharedArrayBuffer(4 * workers);
+  const calls = Calls.forWorkers(workers);
   const alone = workers > 2;
   const guide = [0];
   const job = [alone ? 1 : 0];
   const show = Array.from({ length: workers - (alone ? 2 : 1) }, (_, n) => n + (alone ? 2 : 1));
   const ridgeShare = (worker: number) => (!alone && worker === 0 ? 1 : worker === 0 ? 0.6 : worker === 1 ? 0.4 : 0);
-  const pool = new WorkerPool(options.workerUrl, workers, stop, (worker) => ({
+  const pool = new WorkerPool(options.workerUrl, workers, calls, (worker) => ({
     worker,
     memory,
-    stop,
+    calls: calls.memory,
     ridgeBytes: worker === 0 || (alone && worker === 1) ? RIDGE_SHARE * bytes * ridgeShare(worker) : 0,
     frontBytes: worker === 0 ? FRONT_SHARE * bytes : 0,
   }));

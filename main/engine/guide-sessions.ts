@@ -63,14 +63,19 @@ export class GuideSessions {
     });
   }
 
-  /** Lets the fronts grow for some milliseconds. */
-  grow(): void {
+  /** Lets go of the fronts' memory; they grow anew when the session is used again. */
+  rest(): void {
+    this.#session = null;
+  }
+
+  /** Lets the fronts grow for some milliseconds, or until `signal`. */
+  grow(signal: { readonly aborted: boolean }): void {
     const session = this.#session;
     if (!session?.growing) return;
     const until = performance.now() + SLICE_MS;
     // A fault stops the growth; the next preview meets it again and reports it to the person who asked.
     session.growing = false;
-    session.growing = growGuideFronts(session.guide, () => performance.now() > until);
+    session.growing = growGuideFronts(session.guide, () => signal.aborted || performance.now() > until);
   }
 
   close(session: string): void {

@@ -1,6 +1,7 @@
 import type { BrickCache } from "#main/engine/brick-cache.ts";
 import { type CachedPyramid, cachedPyramid } from "#main/engine/cached-pyramid.ts";
 import { GuideSessions } from "#main/engine/guide-sessions.ts";
+import { PlanesAhead } from "#main/engine/planes-ahead.ts";
 import type { EngineTasks, StoreRef, TaskKind } from "#main/engine/tasks.ts";
 import { TraceContexts } from "#main/engine/trace-contexts.ts";
 import type { SolvedCurve } from "#shared/api/engine.ts";
@@ -26,6 +27,7 @@ export class TaskRunner {
   readonly #stores = new Map<number, CachedPyramid>();
   readonly #contexts: TraceContexts;
   readonly guides: GuideSessions;
+  readonly planes = new PlanesAhead();
 
   constructor(cache: BrickCache, ridgeBytes: number, frontBytes: number) {
     this.#cache = cache;
@@ -39,8 +41,11 @@ export class TaskRunner {
     if (kind === "forget") return this.#forget(store.number);
     const pyramid = this.#pyramid(store);
     switch (kind) {
-      case "section":
-        return section(pyramid, input as Input<"section">, signal);
+      case "section": {
+        const shown = section(pyramid, input as Input<"section">, signal);
+        this.planes.shown(pyramid, store.number, input as Input<"section">);
+        return shown;
+      }
       case "strip":
         return strip(pyramid, input as Input<"strip">, signal);
       case "film":
@@ -57,6 +62,8 @@ export class TaskRunner {
       }
       case "solve": {
         const { strands, parameters } = input as Input<"solve">;
+        // Solving needs fronts of its own; both at once would not fit the limit.
+        this.guides.rest();
         const context = this.#contexts.of(store.number, pyramid, parameters.polarity);
         return { curves: strands.map((strand) => curveOf(solveStrand(pyramid, strand, parameters, signal, context))) };
       }
@@ -73,6 +80,7 @@ export class TaskRunner {
   /** Closes a store's files and drops what was made of it. */
   #forget(store: number): null {
     this.guides.forget(store);
+    this.planes.forget();
     this.#contexts.forget(store);
     this.#stores.get(store)?.close();
     this.#stores.delete(store);

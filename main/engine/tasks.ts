@@ -76,8 +76,8 @@ export type FromWorker =
 export interface WorkerStart {
   readonly worker: number;
   readonly memory: CacheMemory;
-  /** shape [workers]; the id of the task that the worker of that number is to stop. */
-  readonly stop: SharedArrayBuffer;
+  /** What the pool tells its workers while they compute; see `Calls`. */
+  readonly calls: SharedArrayBuffer;
   /** Bytes this worker may keep for ridge tiles and grey values, and for the fronts of guide sessions. */
   readonly ridgeBytes: number;
   readonly frontBytes: number;

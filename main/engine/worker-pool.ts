@@ -1,4 +1,5 @@
 import { Worker } from "node:worker_threads";
+import type { Calls } from "#main/engine/calls.ts";
 import type { EngineTasks, FromWorker, StoreRef, TaskKind, ToWorker, WorkerStart } from "#main/engine/tasks.ts";
 import { decodeError, TautlineError } from "#shared/errors.ts";
 
@@ -45,16 +46,16 @@ const REST_MS = 5000;
 export class WorkerPool {
   readonly #url: URL;
   readonly #start: (worker: number) => WorkerStart;
-  readonly #stop: Int32Array;
+  readonly #calls: Calls;
   readonly #seats: Seat[] = [];
   readonly #waiting: Task[] = [];
   #closed = false;
   #ids = 0;
 
-  constructor(url: URL, workers: number, stop: SharedArrayBuffer, start: (worker: number) => WorkerStart) {
+  constructor(url: URL, workers: number, calls: Calls, start: (worker: number) => WorkerStart) {
     this.#url = url;
     this.#start = start;
-    this.#stop = new Int32Array(stop);
+    this.#calls = calls;
     for (let n = 0; n < workers; n++) {
       this.#seats.push({ thread: this.#spawn(n), running: null, deaths: 0, broken: false });
     }
@@ -104,7 +105,7 @@ export class WorkerPool {
   }
 
   #nextId(): number {
-    // 0 means "nothing is to stop".
+    // No task is 0: that is what a worker's word says before any task was to stop.
     this.#ids = this.#ids >= 0x7fff_fffe ? 1 : this.#ids + 1;
     return this.#ids;
   }
@@ -128,7 +129,7 @@ export class WorkerPool {
     if (queued >= 0) this.#waiting.splice(queued, 1);
     else {
       const worker = this.#seats.findIndex((seat) => seat.running === task);
-      Atomics.store(this.#stop, worker, task.id);
+      this.#calls.stop(worker, task.id);
     }
     settle(task, supersededError(task));
   }
@@ -150,12 +151,13 @@ export class WorkerPool {
       }
       const seat = this.#seats[free]!;
       seat.running = task;
-      Atomics.store(this.#stop, free, 0);
+      this.#calls.come(free);
       seat.thread.postMessage(task.message);
     }
   }
 
   #spawn(n: number): Worker {
+    this.#calls.reset(n);
     const thread = new Worker(this.#url, { workerData: this.#start(n), name: `engine-${n}` });
     thread.on("message", (message: FromWorker) => this.#receive(n, message));
     let reason = "it ended";

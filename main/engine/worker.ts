@@ -1,16 +1,18 @@
-// A worker thread of the engine: one task at a time; between tasks the guide's fronts grow in slices.
+// A worker thread of the engine: one task at a time. Between tasks the guide's fronts grow and the planes ahead are fetched.
 import { parentPort, workerData } from "node:worker_threads";
 import { BrickCache } from "#main/engine/brick-cache.ts";
+import { Calls } from "#main/engine/calls.ts";
 import { TaskRunner } from "#main/engine/run-task.ts";
 import type { FromWorker, ToWorker, WorkerStart } from "#main/engine/tasks.ts";
 import { encodeError, isTautlineError } from "#shared/errors.ts";
 
 const start = workerData as WorkerStart;
 const port = parentPort!;
-const stop = new Int32Array(start.stop);
+const calls = new Calls(start.calls);
 // Clears what a dead thread of this number left in the cache, before anything else.
 const runner = new TaskRunner(new BrickCache(start.memory, start.worker), start.ridgeBytes, start.frontBytes);
-let growing = false;
+let idling = false;
+let received = 0;
 
 function post(message: FromWorker, transfer: ArrayBuffer[] = []): void {
   port.postMessage(message, transfer);
@@ -18,13 +20,9 @@ function post(message: FromWorker, transfer: ArrayBuffer[] = []): void {
 
 function run(message: Extract<ToWorker, { type: "run" }>): void {
   const { id, kind, store, input } = message;
-  const signal = {
-    get aborted() {
-      return Atomics.load(stop, start.worker) === id;
-    },
-  };
+  received++;
   try {
-    const answer = runner.run(kind, store, input, signal);
+    const answer = runner.run(kind, store, input, calls.signalOf(start.worker, id));
     const body = (answer as { body?: Uint8Array } | null)?.body;
     post({ type: "done", id, answer }, body ? [body.buffer as ArrayBuffer] : []);
   } catch (error) {
@@ -34,26 +32,29 @@ function run(message: Extract<ToWorker, { type: "run" }>): void {
   }
 }
 
-/** One slice of growth, then whatever message came in meanwhile, then the next slice. */
-function grow(): void {
-  growing = false;
+/** One slice of work ahead, then whatever message came in meanwhile, then the next slice. */
+function idle(): void {
+  idling = false;
+  const signal = calls.signalBeyond(start.worker, received);
   try {
-    runner.guides.grow();
+    if (runner.guides.growing) runner.guides.grow(signal);
+    else runner.planes.fetch(signal);
   } catch (error) {
+    // Nobody asked for this work: the request that needs it meets the same error and reports it.
     if (!isTautlineError(error)) console.error(error);
   }
-  growSoon();
+  idleSoon();
 }
 
-function growSoon(): void {
-  if (growing || !runner.guides.growing) return;
-  growing = true;
-  setImmediate(grow);
+function idleSoon(): void {
+  if (idling || !(runner.guides.growing || runner.planes.busy)) return;
+  idling = true;
+  setImmediate(idle);
 }
 
 port.on("message", (message: ToWorker) => {
   if (message.type === "run") run(message);
   else runner.guides.close(message.session);
-  growSoon();
+  idleSoon();
 });
 post({ type: "ready" });

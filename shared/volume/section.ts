@@ -5,7 +5,7 @@ import { add, cross, norm, normalise, scale } from "#shared/geometry/vec3.ts";
 import type { BrickPyramid } from "#shared/volume/bricks.ts";
 import type { PyramidLevel } from "#shared/volume/pyramid.ts";
 import { finestSpacing, type Lattice, latticeOnLevel, levelForPixel } from "#shared/volume/section/lattice.ts";
-import { type AbortSignalLike, sampleLatticeInto } from "#shared/volume/section/sample-lattice.ts";
+import { type AbortSignalLike, fetchLattice, sampleLatticeInto } from "#shared/volume/section/sample-lattice.ts";
 
 /** Most samples through a slab; a slab thicker than this many half voxels is shown from a coarser level. */
 export const MOST_SLAB_SAMPLES = 257;
@@ -22,15 +22,32 @@ export function section(
   request: Omit<SectionRequest, "ticket" | "specimen">,
   signal?: AbortSignalLike,
 ): BinaryFrame<SectionHeader> {
-  const { plane, slabMm, slabMode, quality } = request;
-  const pixel = Math.min(norm(plane.u), norm(plane.v));
-  let level = levelForPixel(bricks.levels, pixel, quality === "moving");
-  while (level + 1 < bricks.levels.length && slabSamples(bricks.levels[level]!, slabMm) > MOST_SLAB_SAMPLES) level++;
-  const samples = Math.min(slabSamples(bricks.levels[level]!, slabMm), MOST_SLAB_SAMPLES);
-  const lattice = latticeOnLevel(bricks.levels[level]!, slabLattice(plane, slabMm, samples));
+  const { plane, slabMode } = request;
+  const { level, lattice } = sectionLattice(bricks, request);
   const body = new Uint8Array(plane.width * plane.height);
   sampleLatticeInto(bricks, level, lattice, slabMode, request, body, signal);
   return { header: { dtype: "uint8", width: plane.width, height: plane.height, plane, level }, body };
+}
+
+/** Brings the bricks of a section into the cache without showing it: for planes that will probably be asked for next. */
+export function fetchSection(
+  bricks: BrickPyramid,
+  request: Pick<SectionRequest, "plane" | "slabMm" | "quality">,
+  signal: AbortSignalLike,
+): void {
+  const { level, lattice } = sectionLattice(bricks, request);
+  fetchLattice(bricks, level, lattice, signal);
+}
+
+/** The level a section is read from, and its samples in that level's voxel indices. */
+function sectionLattice(
+  { levels }: BrickPyramid,
+  { plane, slabMm, quality }: Pick<SectionRequest, "plane" | "slabMm" | "quality">,
+): { level: number; lattice: Lattice } {
+  let level = levelForPixel(levels, Math.min(norm(plane.u), norm(plane.v)), quality === "moving");
+  while (level + 1 < levels.length && slabSamples(levels[level]!, slabMm) > MOST_SLAB_SAMPLES) level++;
+  const samples = Math.min(slabSamples(levels[level]!, slabMm), MOST_SLAB_SAMPLES);
+  return { level, lattice: latticeOnLevel(levels[level]!, slabLattice(plane, slabMm, samples)) };
 }
 
 /** Samples through a slab on a level: odd, so that the plane itself is one of them; 1 for a plane without thickness. */

@@ -88,6 +88,33 @@ export function sampleLatticeInto(
     }
 }
 
+/**
+ * Loads the bricks of a lattice, tile by tile, and lets go of them again.
+ * @param signal looked at before each tile; when it says so the rest is left, which is no error.
+ */
+export function fetchLattice(bricks: BrickPyramid, level: number, lattice: Lattice, signal: AbortSignalLike): void {
+  const { size } = bricks.levels[level]!;
+  const { width, height, depth } = lattice;
+  const held = new Int32Array(bricks.mostHeld);
+  for (let j0 = 0; j0 < height; j0 += TILE)
+    for (let i0 = 0; i0 < width; i0 += TILE) {
+      const i1 = Math.min(i0 + TILE, width);
+      const j1 = Math.min(j0 + TILE, height);
+      const waiting: Block[] = [{ i0, i1, j0, j1, k0: 0, k1: depth }];
+      for (let block = waiting.pop(); block; block = waiting.pop()) {
+        if (signal.aborted) return;
+        const needed = bricksInBlock(size, bricks.depthShift, lattice, block);
+        if (needed === null) continue;
+        if (needed.count > bricks.mostHeld) {
+          waiting.push(...halves(block, lattice));
+          continue;
+        }
+        bricks.holdInto(level, needed.numbers, needed.count, held);
+        bricks.release();
+      }
+    }
+}
+
 /** A block cut in two across its longest side, measured in voxels. A single sample touches at most 8 bricks and is never cut. */
 function halves(block: Block, lattice: Lattice): [Block, Block] {
   const { i0, i1, j0, j1, k0, k1 } = block;

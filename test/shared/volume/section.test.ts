@@ -126,12 +126,12 @@ describe("A section", () => {
           high,
           slabMm,
           slabMode,
-          plane: planeThrough(turned, rotation(1.1, 0.3, -0.7), 0.033, 150, 131),
+          plane: planeThrough(turned, rotation(1.1, 0.3, -0.7), 0.042, 118, 103),
         };
         const found = section(bricksOf(pyramid, 12), request);
         const samples = slabMm === 0 ? 1 : 2 * Math.ceil(slabMm / 0.03) + 1;
         const expected = slowSection(turned, voxels, turned.size, [1, 1, 1], request, samples);
-        expect(found.header).toMatchObject({ width: 150, height: 131, level: 0, dtype: "uint8" });
+        expect(found.header).toMatchObject({ width: 118, height: 103, level: 0, dtype: "uint8" });
         let differing = 0;
         expected.forEach((value, n) => {
           // The last bit of a sum may round the other way just at a half.
@@ -140,7 +140,7 @@ describe("A section", () => {
           if (off === 1) differing++;
         });
         expect(differing).toBeLessThan(5);
-        expect(expected.filter((value) => value > 0).length).toBeGreaterThan(3000);
+        expect(expected.filter((value) => value > 0).length).toBeGreaterThan(2000);
         expect(expected.filter((value) => value === 0).length).toBeGreaterThan(1000);
       });
 
