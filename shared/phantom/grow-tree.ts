@@ -99,11 +99,10 @@ export function growTree(plan: PlannedTree, ids: FileIds, step: number, sway: nu
       ? normalise(add(subtract(at, before.position), scale(towards, distance(at, before.position))))
       : part.arrive;
     const through = isFork(part) ? undefined : part.through;
-    const length = distance(before.position, node.position);
     const points = stringCurve(
       before.position,
       node.position,
-      { ...(through && { through }), leave, ...(arrive && { arrive }), sway: sway * length, step },
+      { ...(through && { through }), leave, ...(arrive && { arrive }), sway, step },
       random,
     );
     strands.push({

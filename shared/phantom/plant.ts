@@ -1,14 +1,17 @@
 import type { FileStrand, FileTree } from "#shared/formats/chordae/chordae-file.ts";
-import type { Vec3 } from "#shared/geometry/types.ts";
+import { roundPoint, type Vec3 } from "#shared/geometry/types.ts";
 import { add, distance, scale } from "#shared/geometry/vec3.ts";
 import { Clearance } from "#shared/phantom/clearance.ts";
-import { FileIds, growTree, type PlannedTree } from "#shared/phantom/grow-tree.ts";
+import { endsOf, FileIds, growTree, type PlannedTree } from "#shared/phantom/grow-tree.ts";
 import type { Solids } from "#shared/phantom/solids.ts";
 import type { SeededRandom } from "#shared/random/seeded-random.ts";
 
-const TRIALS = 60;
+const TRIALS = 120;
 
-/** A place where two trees are meant to touch: no clearance is asked there. Millimetres. */
+/**
+ * A place where two trees are meant to touch: no clearance is asked there of the two strands that were planned through given
+ * places. Millimetres.
+ */
 export interface IntendedTouch {
   readonly trees: readonly [string, string];
   readonly at: Vec3;
@@ -47,18 +50,20 @@ export class Plot {
    * @returns the tree and the least gap to others, at most the gap asked for.
    */
   plant(plan: (random: SeededRandom) => PlannedTree, sway: number): { tree: FileTree; gap: number } {
-    let best: { tree: FileTree; gap: number; ids: FileIds } | undefined;
+    let best: { tree: FileTree; gap: number; ids: FileIds; routed: ReadonlySet<string> } | undefined;
     for (let trial = 0; trial < TRIALS && (best === undefined || best.gap < this.gap); trial++) {
       const ids = this.ids.copy();
-      const tree = growTree(plan(this.random), ids, this.step, sway * (1 - trial / TRIALS), this.random);
-      const gap = this.gapOf(tree, best?.gap ?? Number.NEGATIVE_INFINITY);
-      if (!best || gap > best.gap) best = { tree, gap, ids };
+      const planned = plan(this.random);
+      const tree = growTree(planned, ids, this.step, sway * (1 - trial / TRIALS), this.random);
+      const routed = routedStrands(planned, tree);
+      const gap = this.gapOf(tree, routed, best?.gap ?? Number.NEGATIVE_INFINITY);
+      if (!best || gap > best.gap) best = { tree, gap, ids, routed };
     }
-    const { tree, gap, ids } = best!;
+    const { tree, gap, ids, routed } = best!;
     this.ids = ids;
     this.trees.push(tree);
     for (const strand of tree.strands) {
-      this.clearance.occupy(tree.name!, strand.points!, strand.radii as number[]);
+      this.clearance.occupy(ownerOf(tree.name!, routed.has(strand.id)), strand.points!, strand.radii as number[]);
       this.solids.addTube("string", strand.points!, strand.radii as number[]);
     }
     return { tree, gap };
@@ -69,20 +74,24 @@ export class Plot {
     this.solids.addTube("string", [from, add(from, scale(direction, depth))], [radius, radius]);
   }
 
-  private gapOf(tree: FileTree, enough: number): number {
+  private gapOf(tree: FileTree, routed: ReadonlySet<string>, enough: number): number {
     const root = tree.nodes.find((node) => node.id === tree.root)!.position;
     const places = new Map(tree.nodes.map((node) => [node.id, node]));
     let least = this.gap;
     for (const strand of tree.strands) {
       const end = places.get(strand.to)!;
-      least = Math.min(least, this.strandGap(tree.name!, strand, root, end.kind === "fork" ? null : end.position));
+      least = Math.min(
+        least,
+        this.strandGap(routed.has(strand.id) ? tree.name! : null, strand, root, end.kind === "fork" ? null : end.position),
+      );
       if (least <= enough) return least;
     }
     return least;
   }
 
-  private strandGap(name: string, strand: FileStrand, root: Vec3, end: Vec3 | null): number {
-    const touches = this.touches.filter((touch) => touch.trees.includes(name));
+  /** @param name the tree's, for a strand that may touch another tree's; null for every other. */
+  private strandGap(name: string | null, strand: FileStrand, root: Vec3, end: Vec3 | null): number {
+    const touches = name === null ? [] : this.touches.filter((touch) => touch.trees.includes(name));
     let least = this.gap;
     for (let i = 0; i < strand.points!.length; i += 2) {
       const place = strand.points![i]!;
@@ -90,10 +99,24 @@ export class Plot {
       const gap = this.clearance.around(place, strand.radii![i] ?? 0, (owner) => {
         if (owner === MUSCLE) return near < this.nearMuscle;
         if (owner === LEAFLET) return near < this.nearLeaflet;
-        return touches.some((touch) => touch.trees.includes(owner) && distance(place, touch.at) < touch.reach);
+        return touches.some(
+          ({ trees, at, reach }) => trees.some((other) => owner === ownerOf(other, true)) && distance(place, at) < reach,
+        );
       });
       if (gap < least) least = gap;
     }
     return least;
   }
+}
+
+/** Strands planned through given places have an owner of their own. */
+function ownerOf(tree: string, routed: boolean): string {
+  return routed ? `${tree} routed` : tree;
+}
+
+function routedStrands(plan: PlannedTree, tree: FileTree): ReadonlySet<string> {
+  const ends = endsOf(plan.top).filter((end) => end.through);
+  const places = new Set(ends.map((end) => roundPoint(end.at).join(" ")));
+  const nodes = new Set(tree.nodes.filter((node) => places.has(node.position.join(" "))).map((node) => node.id));
+  return new Set(tree.strands.filter((strand) => nodes.has(strand.to)).map((strand) => strand.id));
 }

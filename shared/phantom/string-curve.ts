@@ -10,7 +10,7 @@ export interface CurveShape {
   /** Direction at the start and at the end, along the string; absent = towards the next place. */
   readonly leave?: Vec3;
   readonly arrive?: Vec3;
-  /** Greatest sideways sway of an otherwise straight run. */
+  /** Greatest sideways sway between two places, as a share of their distance. */
   readonly sway: number;
   /** Distance between the points of the result. */
   readonly step: number;
@@ -32,8 +32,8 @@ export function stringCurve(from: Vec3, to: Vec3, shape: CurveShape, random: See
     const ta = scale(normalise(startDirection), length);
     const tb = scale(normalise(endDirection), length);
     const [u, v] = perpendicularFrame(subtract(b, a));
-    const swayU = shape.sway * random.between(-1, 1);
-    const swayV = shape.sway * random.between(-1, 1);
+    const swayU = shape.sway * length * random.between(-1, 1);
+    const swayV = shape.sway * length * random.between(-1, 1);
     const count = Math.max(4, Math.ceil((2 * length) / shape.step));
     for (let i = k === 1 ? 0 : 1; i <= count; i++) {
       const t = i / count;

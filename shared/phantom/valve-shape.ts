@@ -25,7 +25,7 @@ export interface MuscleHead {
 export const HEADS: readonly MuscleHead[] = [
   { muscle: "antero-lateral", head: 1, centre: [6.4, -2.6, 10.4], radius: 2 },
   { muscle: "antero-lateral", head: 2, centre: [8.2, 2.4, 9.4], radius: 1.9 },
-  { muscle: "postero-medial", head: 1, centre: [-6.3, -2.6, 10.7], radius: 1.9 },
+  { muscle: "postero-medial", head: 1, centre: [-6.3, -2.6, 10.7], radius: 2 },
   { muscle: "postero-medial", head: 2, centre: [-9, 0.8, 9.2], radius: 1.4 },
   { muscle: "postero-medial", head: 3, centre: [-7, 3.6, 9.2], radius: 1.7 },
 ];

@@ -78,7 +78,7 @@ const DESIGNS: readonly Design[] = [
       0.5,
       0.36,
       ["posterior", 0.05, 1, 0.1],
-      fork(0.42, 0.26, ["posterior", 0.13, 0.86, 0.17], ["posterior", 0.21, 1, 0.13]),
+      fork(0.3, 0.26, ["posterior", 0.13, 0.86, 0.17], ["posterior", 0.21, 1, 0.13]),
     ),
   },
   {
@@ -87,7 +87,7 @@ const DESIGNS: readonly Design[] = [
     top: fork(
       0.5,
       0.4,
-      fork(0.42, 0.26, ["posterior", 0.33, 1, 0.13], ["posterior", 0.38, 0.86, 0.18]),
+      fork(0.3, 0.26, ["posterior", 0.33, 1, 0.13], ["posterior", 0.38, 0.86, 0.18]),
       fork(0.5, 0.24, ["posterior", 0.45, 1, 0.11], ["posterior", 0.51, 0.88, 0.14]),
     ),
   },
@@ -173,8 +173,10 @@ function fromHead(
 ): PlannedTree {
   const target = meanOf(top);
   const towards = normalise([target[0] - head.centre[0], target[1] - head.centre[1], 0]);
-  const spread: Vec3 = [random.between(-0.8, 0.8), random.between(-0.8, 0.8), 0];
-  const direction = normalise(add(add(scale(towards, 0.35), spread), [0, 0, 1]));
+  // A strut takes the middle of its head; the others find a place beside it.
+  const wide = strut ? 0.2 : 0.9;
+  const spread: Vec3 = [random.between(-wide, wide), random.between(-wide, wide), 0];
+  const direction = normalise(add(add(scale(towards, strut ? 0.1 : 0.4), spread), [0, 0, 1]));
   return {
     name,
     origin: add(head.centre, scale(direction, head.radius + 0.15)),
@@ -195,12 +197,12 @@ function fromWall(name: string, muscle: Muscle, origin: Vec3, top: PlannedPart):
 function tornTree(plot: Plot, name: string, head: MuscleHead, sign: number): FileTree {
   const held = endAt(["posterior", 0.83, 1, 0.13], sign);
   const torn: PlannedEnd = {
-    at: [10.6 * sign, 6.2, 19.2],
+    at: [11.2 * sign, 6.6, 19.4],
     radius: 0.14,
     labels: { kind: "ruptured" },
     arrive: normalise([0.5 * sign, 0.8, -0.7]),
   };
-  const top: PlannedFork = { share: 0.4, radius: 0.3, at: mix(head.centre, [9.4 * sign, 4.6, 22.5], 0.45), parts: [held, torn] };
+  const top: PlannedFork = { share: 0.4, radius: 0.3, at: [10 * sign, 5.2, 15.4], parts: [held, torn] };
   const { tree } = plot.plant((r) => fromHead(name, head, 0.36, top, undefined, r), 0.03);
   embedEnds(plot, tree, head.centre, top);
   return tree;
@@ -269,12 +271,21 @@ function touchOf(
   const goalA = endAt(crosses ? tb : ta, sign);
   const goalB = endAt(crosses ? ta : tb, sign);
   const start = heads[Math.min(heads.length, 3) - 1]!.centre;
-  const at = mix(start, mix(goalA.at, goalB.at, 0.5), 0.8);
+  const at = mix(start, mix(goalA.at, goalB.at, 0.5), 0.82);
   const apart = normalise(crosses ? cross(subtract(goalA.at, goalB.at), subtract(at, start)) : subtract(goalA.at, goalB.at));
-  const half = (ta[3] + tb[3]) * 1.05 * 0.5;
+  // The strings thin out from 1.15 of their last radius; here they are half way.
+  const half = (ta[3] + tb[3]) * 1.07 * 0.5;
   const up = normalise(subtract(mix(goalA.at, goalB.at, 0.5), start));
-  const along = crosses ? [0] : [-1, 1];
-  const through = (side: number) => along.map((s) => add(add(at, scale(up, s)), scale(apart, side * half)));
+  // Side by side they come together and part gently, or each would swing through the other.
+  const course = crosses
+    ? [[0, 1] as const]
+    : ([
+        [-1.6, 2.2],
+        [-0.7, 1],
+        [0.7, 1],
+        [1.6, 2.2],
+      ] as const);
+  const through = (side: number) => course.map(([s, wide]) => add(add(at, scale(up, s)), scale(apart, side * wide * half)));
   const { labels: labelsA, at: endA, arrive: arriveA } = goalA;
   const { labels: labelsB, at: endB, arrive: arriveB } = goalB;
   return {
@@ -314,7 +325,7 @@ export function meetingPlace(a: readonly Vec3[], b: readonly Vec3[]): Vec3 {
 function crossLink(plot: Plot, a: FileTree, b: FileTree, random: SeededRandom, step: number): FileLine {
   const from = a.nodes.find((node) => node.kind === "fork")!;
   const to = b.nodes.find((node) => node.kind === "fork")!;
-  const points = stringCurve(from.position, to.position, { sway: 0.1, step }, random);
+  const points = stringCurve(from.position, to.position, { sway: 0.02, step }, random);
   const radii = taperedRadii(points, 0.14, 0.12);
   plot.solids.addTube("string", points, radii);
   plot.clearance.occupy("x1", points, radii);
