@@ -64,6 +64,8 @@ export class Client {
   private readonly stateListeners = new Set<(state: ConnectionState) => void>();
   private state: ConnectionState = "connecting";
   private jobNumber = 0;
+  /** Lines whose newest section was asked for sharp. */
+  private readonly sharp = new Set<string>();
 
   constructor(private readonly places: ClientPlaces) {
     this.window = places.window;
@@ -106,11 +108,15 @@ export class Client {
   /** @param line which pane asks; each has its own order. */
   section(request: Unticketed<SectionRequest>, line = "section"): Newest<BinaryFrame<SectionHeader>> {
     const moving = request.quality === "moving";
+    // A sharp picture of a plane that was left is not waited for.
+    const atOnce = moving && this.sharp.has(line);
+    if (moving) this.sharp.delete(line);
+    else this.sharp.add(line);
     return this.inLine(
       "section",
       line,
       (ticket) => this.frame("section", { body: { ticket, ...request } }, RANK.section),
-      moving,
+      atOnce,
     );
   }
   strip(request: Unticketed<StripRequest>): Newest<BinaryFrame<StripHeader>> {

@@ -1,16 +1,16 @@
 import { batch, computed, effect, type ReadonlySignal, type Signal, signal } from "@preact/signals";
 import { NO_SELECTION, type Selection, selectLine, selectNode, stillThere } from "#renderer/editor/selection.ts";
 import { EditQueue } from "#renderer/editor/session/edit-queue.ts";
-import type { Intent, IntentPlace } from "#renderer/editor/session/intent.ts";
+import type { Intent, IntentPlace, LeavePlace } from "#renderer/editor/session/intent.ts";
 import type { PassKeeper } from "#renderer/editor/session/pass-keeper.ts";
 import { performIntent } from "#renderer/editor/session/perform.ts";
 import type { Stage } from "#renderer/editor/session/stage.ts";
 import { afterLabelling, type Sticky, stickyOf } from "#renderer/editor/session/sticky-labels.ts";
 import { type AskSolve, StrandSolver } from "#renderer/editor/session/strand-solver.ts";
 import { type Guide, GuideFollower, type GuideSource } from "#renderer/editor/tracing/guide-follower.ts";
+import { passing } from "#renderer/editor/tracing/passing.ts";
 import { type Projection, project, tipOf } from "#renderer/editor/tracing/projection.ts";
 import { type Aim, type AskSnap, type Snapped, Snapper } from "#renderer/editor/tracing/snapper.ts";
-import { strandPassing } from "#renderer/editor/tracing/strand-passing.ts";
 import { NOTHING, type UnderWay } from "#renderer/editor/tracing/under-way.ts";
 import type { Pointing, Under } from "#renderer/editor/view-control.ts";
 import { roundPoint } from "#shared/geometry/types.ts";
@@ -46,8 +46,6 @@ export type Carried =
 const REACH_PX = 9;
 /** Nearer to the last pin than this on the screen, an end key means that pin itself. */
 const AT_PIN_PX = 10;
-/** A strand passes the pointer within so many screen pixels. */
-const PASSING_PX = 20;
 
 /** One pass being edited: what is under way, what waits, what is shown. It knows no screen and no server. */
 export class Editor {
@@ -182,14 +180,20 @@ export class Editor {
   }
 
   /**
-   * Where a branch, join or link would be attached: what lies under the pointer, else the strand that passes nearest to it
-   * (at a fork the traced curve cuts the corner), else the selected node.
+   * Where a branch, join or link would be attached: what lies under the pointer, else what passes nearest to it (at a fork the
+   * traced curve cuts the corner), else the selected node. While edits wait, what is there is decided when its turn comes.
    */
-  anchor(): Anchor | null {
+  leavePlace(): LeavePlace | null {
     const { pointing } = this;
-    if (pointing?.under != null) return anchorOf(pointing.under, pointing);
-    const near = pointing === null ? null : strandPassing(this.documentSignal.value, pointing, PASSING_PX * pointing.mmPerPx);
-    if (near !== null) return near;
+    if (pointing !== null) {
+      const here = pointing.under === null ? null : anchorOf(pointing.under, pointing);
+      if (here !== null) return here;
+      const { at, normal, mmPerPx, slabMm } = pointing;
+      const sight = { at, normal, mmPerPx, slabMm };
+      if (this.queue.waiting.value.length > 0) return { passing: sight };
+      const near = passing(this.documentSignal.value, sight);
+      if (near !== null) return near;
+    }
     const { node } = this.selection.value;
     return node === undefined ? null : { node };
   }
@@ -222,8 +226,11 @@ export class Editor {
   }
 
   undo(): void {
-    if (this.readOnly || this.queue.takeBack()) return;
-    this.do({ do: "undo" });
+    if (this.readOnly) return;
+    const newest = this.queue.waiting.value.at(-1)?.intent.do;
+    const movesHistory = newest === "undo" || newest === "redo" || newest === "jump";
+    if (newest !== undefined && !movesHistory) this.queue.takeBack();
+    else this.do({ do: "undo" });
   }
 
   redo(): void {

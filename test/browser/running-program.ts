@@ -16,7 +16,7 @@ export interface RunningProgram {
 
 const ROOT = join(import.meta.dirname, "../..");
 /** Another build may be named for work on the tests themselves. */
-export const DIST = process.env["TAUTLINE_DIST"] ?? join(ROOT, "dist");
+export const DIST = process.env.TAUTLINE_DIST ?? join(ROOT, "dist");
 const START_MS = 30_000;
 
 export async function startProgram(folder?: string): Promise<RunningProgram> {

@@ -20,7 +20,12 @@ export const TRUE_NODES = {
 type NodeName = keyof typeof TRUE_NODES;
 
 /** Strands as polylines with a radius; a bend between nodes, as strings have. */
-export const TRUE_STRANDS: readonly { readonly from: NodeName; readonly to: NodeName; readonly radius: number; readonly bend: Point }[] = [
+export const TRUE_STRANDS: readonly {
+  readonly from: NodeName;
+  readonly to: NodeName;
+  readonly radius: number;
+  readonly bend: Point;
+}[] = [
   { from: "origin", to: "low", radius: 0.3, bend: at(3.22, 5.3) },
   { from: "low", to: "left", radius: 0.2, bend: at(2.1, 3.7) },
   { from: "low", to: "high", radius: 0.24, bend: at(3.95, 3.5) },
@@ -58,24 +63,33 @@ export async function writeSmallScan(folder: string): Promise<string> {
     const points = strandPoints(strand, 16);
     return points.slice(1).map((end, i) => ({ a: points[i]!, b: end, radius: strand.radius }));
   });
-  // A small generator with a fixed seed: the same noise each time.
-  let seed = 12_345;
-  const noise = () => {
-    seed = (Math.imul(seed, 1_664_525) + 1_013_904_223) >>> 0;
-    return seed / 2 ** 32 - 0.5;
-  };
-  for (let z = 0; z < nz; z++) {
-    for (let y = 0; y < ny; y++) {
-      for (let x = 0; x < nx; x++) {
-        const p: Point = [x * SPACING_MM, y * SPACING_MM, z * SPACING_MM];
-        let inside = 0;
-        for (const { a, b, radius } of segments) {
-          const edge = (radius - distanceToSegment(p, a, b)) / SPACING_MM + 0.5;
-          if (edge > inside) inside = Math.min(1, edge);
+  const inside = new Float32Array(voxels.length);
+  for (const { a, b, radius } of segments) {
+    const range = (axis: 0 | 1 | 2, size: number) => {
+      const reach = radius + 2 * SPACING_MM;
+      const first = Math.max(0, Math.floor((Math.min(a[axis], b[axis]) - reach) / SPACING_MM));
+      const last = Math.min(size - 1, Math.ceil((Math.max(a[axis], b[axis]) + reach) / SPACING_MM));
+      return [first, last] as const;
+    };
+    const [x0, x1] = range(0, nx);
+    const [y0, y1] = range(1, ny);
+    const [z0, z1] = range(2, nz);
+    for (let z = z0; z <= z1; z++) {
+      for (let y = y0; y <= y1; y++) {
+        for (let x = x0; x <= x1; x++) {
+          const p: Point = [x * SPACING_MM, y * SPACING_MM, z * SPACING_MM];
+          const edge = Math.min(1, (radius - distanceToSegment(p, a, b)) / SPACING_MM + 0.5);
+          const i = (z * ny + y) * nx + x;
+          if (edge > inside[i]!) inside[i] = edge;
         }
-        voxels[(z * ny + y) * nx + x] = Math.round(1000 + 2000 * inside + 120 * noise());
       }
     }
+  }
+  // A small generator with a fixed seed: the same noise each time.
+  let seed = 12_345;
+  for (let i = 0; i < voxels.length; i++) {
+    seed = (Math.imul(seed, 1_664_525) + 1_013_904_223) >>> 0;
+    voxels[i] = Math.round(1000 + 2000 * inside[i]! + 120 * (seed / 2 ** 32 - 0.5));
   }
   const header = [
     "NRRD0004",

@@ -34,27 +34,26 @@ function mountStrip(host: HTMLElement, model: DeskModel): () => void {
     turn: (deg) => {
       turn = deg;
       view.show({ turn });
-      void ask(true);
+      void ask();
     },
     resized: (wanted) => {
       sizes = wanted;
-      void ask(true);
+      void ask();
     },
   });
 
-  const ask = async (again = false) => {
+  const ask = async () => {
     const facts = lineFacts(editor.document.value, editor.selection.value);
     const wanted = sizes ?? view.sizes;
     if (facts === null || wanted.strip.height < 2) return;
     const low = section.low.value;
     const high = section.high.value;
     const key = JSON.stringify([facts.curve, turn, wanted, low, high]);
-    if (key === asked && !again) return;
+    if (key === asked) return;
     asked = key;
     const specimen = model.specimen.value.id;
     const points = facts.points.flatMap((point) => [...point]);
     const { halfWidthMm, filmHalfWidthMm } = EMPTY_STRIP;
-    view.show({ state: { kind: "loading" } });
     try {
       const [image, film] = await Promise.all([
         services.client.strip({ specimen, points, ...wanted.strip, halfWidthMm, turn, low, high }),

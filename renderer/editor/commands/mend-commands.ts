@@ -130,7 +130,7 @@ export const MEND_COMMANDS: readonly Command<DeskContext>[] = [
     enabled: (context) => canEdit(context) && selectedLooseEnd(context) !== null && under(context) !== null,
     perform: (context) => {
       const end = selectedLooseEnd(context);
-      const to = context.editor.anchor();
+      const to = context.editor.leavePlace();
       if (end !== null && to !== null) context.editor.do({ do: "join", end, to });
     },
     foot: (context) => {
@@ -168,8 +168,8 @@ export const MEND_COMMANDS: readonly Command<DeskContext>[] = [
     enabled: (context) => canEdit(context) && selectedStrand(context) !== null && under(context) !== null,
     perform: (context) => {
       const strand = selectedStrand(context);
-      const to = context.editor.anchor();
-      if (strand !== null && to !== null) context.editor.do({ do: "move-branch", args: { strand, to } });
+      const to = context.editor.leavePlace();
+      if (strand !== null && to !== null && !("passing" in to)) context.editor.do({ do: "move-branch", args: { strand, to } });
     },
   },
   {

@@ -66,22 +66,24 @@ export const TRACE_COMMANDS: readonly Command<DeskContext>[] = [
     group: "Trace",
     label: "Branch from the strand or node here",
     keys: ["B"],
-    enabled: (context) => canEdit(context) && context.editor.anchor() !== null,
+    enabled: (context) => canEdit(context) && context.editor.leavePlace() !== null,
     perform: ({ editor }) => {
-      const from = editor.anchor();
+      const from = editor.leavePlace();
       if (from !== null) editor.do({ do: "branch", from });
     },
     foot: (context) =>
-      canEdit(context) && context.view.pointing.value !== null && context.editor.anchor() !== null ? "branch from here" : null,
+      canEdit(context) && context.view.pointing.value !== null && context.editor.leavePlace() !== null
+        ? "branch from here"
+        : null,
   },
   {
     name: "cross-link",
     group: "Trace",
     label: "Cross-link: from the string here, or to it",
     keys: ["X"],
-    enabled: (context) => canEdit(context) && context.editor.anchor() !== null,
+    enabled: (context) => canEdit(context) && context.editor.leavePlace() !== null,
     perform: ({ editor }) => {
-      const to = editor.anchor();
+      const to = editor.leavePlace();
       if (to !== null) editor.do({ do: "link", to });
     },
     foot: (context) => {

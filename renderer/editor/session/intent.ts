@@ -1,4 +1,5 @@
 import type { MendIntent } from "#renderer/editor/session/mends.ts";
+import type { Sight } from "#renderer/editor/tracing/passing.ts";
 import type { Aim } from "#renderer/editor/tracing/snapper.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
 import type { EndKind, NodeId, TreeDocument } from "#shared/trees/document.ts";
@@ -6,6 +7,9 @@ import type { Anchor } from "#shared/trees/edits/anchor.ts";
 
 /** A place already known, or one that the engine still has to snap. */
 export type IntentPlace = { readonly point: PointMm } | { readonly aim: Aim };
+
+/** Where a branch or cross-link leaves: a node or strand, or whatever passes the pointer by the time it is carried out. */
+export type LeavePlace = Anchor | { readonly passing: Sight };
 
 /**
  * What the person asked for, as plain data: it can wait, be kept over a reload, and be shown before it is carried out. Ids in
@@ -15,15 +19,15 @@ export type Intent =
   // tracing
   | { readonly do: "pin"; readonly at: IntentPlace }
   | { readonly do: "end"; readonly kind: EndKind; readonly at: IntentPlace | null }
-  | { readonly do: "branch"; readonly from: Anchor }
-  | { readonly do: "link"; readonly to: Anchor }
+  | { readonly do: "branch"; readonly from: LeavePlace }
+  | { readonly do: "link"; readonly to: LeavePlace }
   | { readonly do: "resume"; readonly node: NodeId }
   | { readonly do: "straight" }
   | { readonly do: "back" }
   | { readonly do: "leave" }
   // mending
   | MendIntent
-  | { readonly do: "join"; readonly end: NodeId; readonly to: Anchor }
+  | { readonly do: "join"; readonly end: NodeId; readonly to: LeavePlace }
   | { readonly do: "take-in"; readonly incoming: TreeDocument; readonly name: string }
   // history
   | { readonly do: "undo" }

@@ -2,6 +2,7 @@ import type { Intent, IntentPlace } from "#renderer/editor/session/intent.ts";
 import { inOne, type MakePlan, makeEdit, type Stage, settlePlace } from "#renderer/editor/session/stage.ts";
 import { stickyEndLabels } from "#renderer/editor/session/sticky-labels.ts";
 import { KIND_WORDS, treeName } from "#renderer/editor/session/words.ts";
+import { settleAnchor } from "#renderer/editor/tracing/passing.ts";
 import { goingOnFrom, NOTHING, tipPlace, withOtherLeg } from "#renderer/editor/tracing/under-way.ts";
 import { TautlineError } from "#shared/errors.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
@@ -35,15 +36,13 @@ export async function performTracing(stage: Stage, intent: TracingIntent, signal
     case "end":
       return end(stage, intent.kind, intent.at, signal);
     case "branch": {
-      const node = nodeAt(document, intent.from);
-      stage.underWay =
-        node !== null
-          ? goingOnFrom(node)
-          : { kind: "branch", on: intent.from, point: pointOf(document, intent.from), leg: "guide" };
+      const on = settleAnchor(document, intent.from);
+      const node = nodeAt(document, on);
+      stage.underWay = node !== null ? goingOnFrom(node) : { kind: "branch", on, point: pointOf(document, on), leg: "guide" };
       return;
     }
     case "link":
-      return link(stage, intent.to, signal);
+      return link(stage, settleAnchor(document, intent.to), signal);
     case "resume":
       stage.underWay = goingOnFrom(nodeOf(document, intent.node).id);
       return;

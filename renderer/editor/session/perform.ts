@@ -2,6 +2,7 @@ import type { Intent } from "#renderer/editor/session/intent.ts";
 import { isMend, mendOf } from "#renderer/editor/session/mends.ts";
 import { performTracing } from "#renderer/editor/session/perform-tracing.ts";
 import { inOne, type MakePlan, makeEdit, type Stage } from "#renderer/editor/session/stage.ts";
+import { settleAnchor } from "#renderer/editor/tracing/passing.ts";
 import { NOTHING, underWayAfter } from "#renderer/editor/tracing/under-way.ts";
 import { TautlineError } from "#shared/errors.ts";
 import type { NodeId, TreeDocument } from "#shared/trees/document.ts";
@@ -22,7 +23,12 @@ export async function performIntent(stage: Stage, intent: Intent, signal: AbortS
   }
   switch (intent.do) {
     case "join":
-      await makeEdit(stage, "Join strands", joinPlan(stage.keeper.document, intent.end, intent.to), signal);
+      await makeEdit(
+        stage,
+        "Join strands",
+        joinPlan(stage.keeper.document, intent.end, settleAnchor(stage.keeper.document, intent.to)),
+        signal,
+      );
       dropIfGone(stage);
       return;
     case "take-in":

@@ -32,6 +32,8 @@ export class GuideFollower {
   private to: PointMm | null = null;
   private session: Promise<string | null> | null = null;
   private leg: LegKind = "guide";
+  /** Settles when no preview of the session is under way any more. */
+  private previews: Promise<unknown> = Promise.resolve();
 
   constructor(private readonly source: GuideSource) {}
 
@@ -84,7 +86,9 @@ export class GuideFollower {
     try {
       const session = await this.session;
       if (session === null || this.from !== from) return null;
-      return await this.source.preview(session, to);
+      const preview = this.source.preview(session, to);
+      this.previews = preview.catch(() => undefined);
+      return await preview;
     } catch (error) {
       if (this.from !== from) return null;
       // An idle session is closed by the engine: open it once more.
@@ -105,7 +109,9 @@ export class GuideFollower {
     const session = this.session;
     this.session = null;
     if (session === null) return;
-    void session.then((id) => (id === null ? undefined : this.source.close(id))).catch(() => undefined);
+    const previews = this.previews;
+    // A preview on its way to a closed session would come back as a failure.
+    void session.then((id) => previews.then(() => (id === null ? undefined : this.source.close(id)))).catch(() => undefined);
   }
 }
 

@@ -1,10 +1,9 @@
-import type { Intent, IntentPlace } from "#renderer/editor/session/intent.ts";
+import type { Intent, IntentPlace, LeavePlace } from "#renderer/editor/session/intent.ts";
 import type { UnderWay } from "#renderer/editor/tracing/under-way.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
 import { roundPoint } from "#shared/geometry/types.ts";
 import { strandsAt } from "#shared/trees/adjacency.ts";
 import type { LegKind, NodeId, TreeDocument } from "#shared/trees/document.ts";
-import type { Anchor } from "#shared/trees/edits/anchor.ts";
 import { outwardRun } from "#shared/trees/edits/extend-strand.ts";
 import { placeOnLine } from "#shared/trees/edits/place-on-line.ts";
 import { isLooseEnd } from "#shared/trees/edits/rewiring.ts";
@@ -77,7 +76,8 @@ function after(document: TreeDocument, before: Projection, intent: Intent): Proj
   }
 }
 
-function startAt(document: TreeDocument, anchor: Anchor, kind: "branch" | "link"): Projection {
+function startAt(document: TreeDocument, anchor: LeavePlace, kind: "branch" | "link"): Projection {
+  if ("passing" in anchor) return { kind, pins: [roundPoint(anchor.passing.at)], settled: 1, leg: "guide" };
   if ("node" in anchor) {
     const node = document.nodes.get(anchor.node);
     if (node === undefined) return NONE;

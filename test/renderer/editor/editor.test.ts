@@ -61,7 +61,7 @@ describe("tracing", () => {
     const { editor, keeper } = newEditor();
     await drawStrand(editor);
     await pointAtStrand(editor, 0, 3);
-    editor.do({ do: "branch", from: editor.anchor()! });
+    editor.do({ do: "branch", from: editor.leavePlace()! });
     await editor.settled();
     expect(kinds(editor)).toEqual(["insertion", "origin"]);
     await editor.point(at(3, 3));
@@ -116,7 +116,7 @@ describe("tracing", () => {
     const { editor } = newEditor();
     await drawStrand(editor);
     await pointAtStrand(editor, 0, 3);
-    editor.do({ do: "branch", from: editor.anchor()! });
+    editor.do({ do: "branch", from: editor.leavePlace()! });
     editor.click(at(3, 3));
     editor.do({ do: "back" });
     await editor.settled();
@@ -145,10 +145,10 @@ describe("tracing", () => {
     editor.end("insertion");
     await editor.settled();
     await pointAtStrand(editor, 0, 2.5);
-    editor.do({ do: "link", to: editor.anchor()! });
+    editor.do({ do: "link", to: editor.leavePlace()! });
     editor.click(at(2.5, 2));
     await pointAtStrand(editor, 1, 2.5, 5);
-    editor.do({ do: "link", to: editor.anchor()! });
+    editor.do({ do: "link", to: editor.leavePlace()! });
     await editor.settled();
     const [link] = [...editor.document.value.crossLinks.values()];
     expect(link!.via).toEqual([[2.5, 2, 0]]);
@@ -190,7 +190,7 @@ describe("labels", () => {
     const { editor } = newEditor();
     await drawStrand(editor);
     await pointAtStrand(editor, 0, 3);
-    editor.do({ do: "branch", from: editor.anchor()! });
+    editor.do({ do: "branch", from: editor.leavePlace()! });
     editor.click(at(3, 2));
     await editor.settled();
     editor.labelNodes([ofKind(editor, "fork")[0]!.id], { leaflet: "posterior" });
@@ -220,6 +220,22 @@ describe("waiting edits", () => {
       [2, 0, 0],
       [3, 0, 0],
     ]);
+  });
+
+  it("branch from a strand that is still being traced, once it is there", async () => {
+    const { editor, server } = newEditor();
+    server.held = true;
+    for (const x of [0, 2, 4]) editor.click(at(x, 0));
+    await editor.point(at(4, 0));
+    editor.end("insertion");
+    await editor.point(at(3, 0.2));
+    editor.do({ do: "branch", from: editor.leavePlace()! });
+    editor.click(at(3, 3));
+    server.release();
+    await editor.settled();
+    expect(server.failures).toEqual([]);
+    expect(kinds(editor)).toEqual(["fork", "insertion", "open", "origin"]);
+    expect(editor.document.value.trees.size).toBe(1);
   });
 
   it("wait for a server that is away, and are made when it is back", async () => {
@@ -327,7 +343,7 @@ describe("mending", () => {
     const { editor, server } = newEditor();
     await drawStrand(editor);
     await pointAtStrand(editor, 0, 3);
-    editor.do({ do: "branch", from: editor.anchor()! });
+    editor.do({ do: "branch", from: editor.leavePlace()! });
     editor.click(at(3, 3));
     editor.do({ do: "leave" });
     await editor.settled();
