@@ -58,7 +58,7 @@ describe("tautline phantom", () => {
     for (const [option, value, says] of [
       ["--size", "80,72", /three whole numbers/],
       ["--size", "8,8,8", /from 64/],
-      ["--trees", "50", /has room for/],
+      ["--trees", "500", /has room for/],
       ["--noise", "-1", /--noise/],
     ] as const) {
       const args = ["phantom", "--out", join(folder, "no"), "--seed", "1", option, value];
