@@ -13,7 +13,7 @@ import type { Landmarks, Muscle, Segment } from "#shared/trees/document.ts";
 import { NAME_PREFIX } from "#shared/trees/names.ts";
 import { plainGrid } from "#shared/volume/grid.ts";
 
-/** Smallest sides and largest number of trees for which strings stay thicker than a few voxels. */
+/** Below these a tree does not find room for strings of the least thickness. */
 export const LEAST_SIDE_VOXELS = 64;
 const LEAST_CELL_VOXELS = 32;
 
@@ -30,6 +30,8 @@ interface Layout {
   readonly cell: readonly [number, number];
   /** The smaller side of a cell; radii are shares of it. */
   readonly unit: number;
+  /** Radius that no string is below: a scan shows it two voxels wide. */
+  readonly thinnest: number;
   readonly leaflet: { readonly z: number; readonly thickness: number };
 }
 
@@ -101,7 +103,14 @@ function layoutOf(voxels: readonly [number, number, number], spacingMm: number, 
   }
   const cell = [size[0] / cells[0], size[1] / cells[1]] as const;
   const unit = Math.min(cell[0], cell[1], 0.5 * size[2]);
-  return { size, cells, cell, unit, leaflet: { z: 0.88 * size[2], thickness: Math.max(0.04 * size[2], 4 * spacingMm) } };
+  return {
+    size,
+    cells,
+    cell,
+    unit,
+    thinnest: spacingMm,
+    leaflet: { z: 0.88 * size[2], thickness: Math.max(0.04 * size[2], 4 * spacingMm) },
+  };
 }
 
 /** Middle of a tree's cell. */
@@ -203,10 +212,10 @@ function shapeOf(layout: Layout, k: number, crossing: PlannedEnd | undefined, ra
     const angle = first + free * (i + random.between(-0.12, 0.12));
     const far = unit * random.between(0.24, 0.36);
     const thin = i === count - 1 ? 0.02 : random.between(0.025, 0.035);
-    ends.push(endAt(layout, x + far * Math.cos(angle), y + far * Math.sin(angle), thin * unit));
+    ends.push(endAt(layout, x + far * Math.cos(angle), y + far * Math.sin(angle), Math.max(thin * unit, layout.thinnest)));
   }
   if (crossing) ends.push(crossing);
-  return { ends, radius: unit * random.between(0.06, 0.075) };
+  return { ends, radius: Math.max(unit * random.between(0.06, 0.075), 2 * layout.thinnest) };
 }
 
 function planOf(layout: Layout, k: number, shape: Shape, random: SeededRandom): PlannedTree {
@@ -247,7 +256,7 @@ function crossingOf(layout: Layout): { at: Vec3; ends: readonly [PlannedEnd, Pla
   const [bx] = middleOf(layout, 1);
   const wall = (ax + bx) / 2;
   const at: Vec3 = [wall, ay, 0.68 * layout.size[2]];
-  const radius = 0.027 * layout.unit;
+  const radius = Math.max(0.027 * layout.unit, layout.thinnest);
   const apart = 1.05 * radius * 1.08;
   const beyond = 0.1 * layout.cell[0];
   const reach = (x: number, side: number): PlannedEnd => {
