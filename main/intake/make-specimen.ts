@@ -35,7 +35,7 @@ export interface SpecimenOptions {
   /** Where they are known (generated data). */
   readonly landmarks?: Landmarks;
   readonly synthetic: boolean;
-  /** Width of the scan's blur where it is known (generated data); null = not estimated. */
+  /** Width of the scan's blur where it is known (generated data); absent = estimated from the scan's edges; null = left open. */
   readonly blurFwhmMm?: number | null;
   /** Slices held at once (2, 4 ... 32); absent: as many as suit the slices' size. */
   readonly slabPlanes?: number;
@@ -101,6 +101,7 @@ export async function makeSpecimen(
       mirror: options.mirror === true,
       name: options.name,
       folder: join(work, STORE_NAME),
+      estimateBlur: options.blurFwhmMm === undefined,
       slabPlanes: options.slabPlanes ?? slabPlanesFor(planeBytes),
       files,
       ...(hooks.signal ? { signal: hooks.signal } : {}),
@@ -122,7 +123,7 @@ export async function makeSpecimen(
         dtype: stored.dtype,
         ...grid,
         handedness: options.handedness,
-        blurFwhmMm: options.blurFwhmMm ?? null,
+        blurFwhmMm: options.blurFwhmMm === undefined ? made.blurFwhmMm : options.blurFwhmMm,
         range: made.range,
       },
       conversions: conversionsOf(header.notes, stored, options),

@@ -5,6 +5,8 @@ import type { SliceSource } from "#main/intake/slice-source.ts";
 import { gatherBuffers, LevelWriter } from "#main/intake/store/level-writer.ts";
 import type { StoreSink } from "#main/intake/store/shard-writer.ts";
 import type { WriteFiles } from "#main/intake/store/write-files.ts";
+import { roundMm } from "#shared/geometry/types.ts";
+import { EdgeBlurSurvey } from "#shared/volume/blur/edge-blur.ts";
 import { BYTES_OF_DTYPE, type StoredDtype } from "#shared/volume/dtype.ts";
 import type { VolumeGrid } from "#shared/volume/grid.ts";
 import { type PyramidLevel, pyramidLevels } from "#shared/volume/pyramid.ts";
@@ -24,6 +26,8 @@ export interface StoreOrder {
   readonly folder: string;
   /** Slices held at once, see {@link slabPlanesFor}. */
   readonly slabPlanes: number;
+  /** Estimate the scan's blur on the way. */
+  readonly estimateBlur: boolean;
   readonly files: WriteFiles;
   readonly signal?: AbortSignal;
   at(point: CrashPoint): void | Promise<void>;
@@ -37,6 +41,8 @@ export interface StoreResult {
   readonly range: { readonly min: number; readonly max: number };
   readonly display: { readonly low: number; readonly high: number };
   readonly suggestedPolarity: "bright" | "dark";
+  /** Full width at half maximum, millimetres; null when not asked for or the edges do not tell. */
+  readonly blurFwhmMm: number | null;
   readonly bytesWritten: number;
 }
 
@@ -72,6 +78,7 @@ export async function writeStore(order: StoreOrder): Promise<StoreResult> {
   const levels = pyramidLevels(grid);
   const writer = new LevelWriter(sink, levels, 0, order.slabPlanes, gatherBuffers(dtype));
   const survey = new ValueSurvey(grid.size[0] * grid.size[1] * grid.size[2]);
+  const edges = order.estimateBlur ? new EdgeBlurSurvey(grid.size, grid.spacing) : null;
   const hash = createHash("sha256");
   try {
     let done = 0;
@@ -80,6 +87,7 @@ export async function writeStore(order: StoreOrder): Promise<StoreResult> {
       const out = writer.nextPlane;
       convertInto(plane, out);
       survey.add(out);
+      edges?.add(done, out);
       hash.update(new Uint8Array(out.buffer, out.byteOffset, out.byteLength));
       await writer.planeReady();
       order.onSlices(++done);
@@ -96,11 +104,13 @@ export async function writeStore(order: StoreOrder): Promise<StoreResult> {
   for (const made of folders) await files.syncFolder(made);
   const facts = survey.facts();
   const sample = survey.sortedSample();
+  const blur = edges?.estimate() ?? null;
   return {
     sha256,
     range: { min: facts.min, max: facts.max },
     display: displayWindow(sample),
     suggestedPolarity: suggestPolarity(sample),
+    blurFwhmMm: blur === null ? null : roundMm(blur),
     bytesWritten,
   };
 }

@@ -26,6 +26,7 @@ const options = (id: string): SpecimenOptions => ({
   handedness: "confirmed",
   facts: {},
   synthetic: true,
+  blurFwhmMm: null, // an estimate would only cost time here
 });
 
 /** A library with one specimen in it, all of it safe. */

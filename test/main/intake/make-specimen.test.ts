@@ -10,6 +10,7 @@ import { openScan } from "#main/intake/open-scan.ts";
 import type { IntakeProgress } from "#main/intake/progress.ts";
 import { slabPlanesFor, storeBytes } from "#main/intake/store/store-writer.ts";
 import { parseSpecimenRecord } from "#shared/api/specimen-record.ts";
+import type { StoredArray } from "#shared/volume/dtype.ts";
 import { plainGrid } from "#shared/volume/grid.ts";
 import { gatherVoxels } from "#test/main/intake/gather-voxels.ts";
 import { breachesOfOmeZarr } from "#test/main/intake/ome-zarr/check-ome-zarr.ts";
@@ -24,6 +25,7 @@ const options = (library: string): SpecimenOptions => ({
   handedness: "confirmed",
   facts: {},
   synthetic: true,
+  blurFwhmMm: null,
 });
 
 /** Naive mean of the existing children, straight from the rule's words; values in z, y, x order. */
@@ -287,3 +289,34 @@ describe("a specimen made of an NRRD", () => {
 function ramp(count: number): number[] {
   return Array.from({ length: count }, (_, k) => k % 50);
 }
+
+describe("the blur of a specimen", () => {
+  it("is estimated where edges tell it, left open where not, and taken as given where it is known", async () => {
+    const grid = plainGrid([64, 64, 40], [0.1, 0.1, 0.1]);
+    // A cylinder along z with a linear rim of 3 voxels: about as wide as a Gaussian edge of sigma 3 / sqrt(12) (same variance).
+    const draw = (z0: number, z1: number, out: StoredArray) => {
+      for (let z = z0, k = 0; z < z1; z++)
+        for (let y = 0; y < 64; y++)
+          for (let x = 0; x < 64; x++, k++)
+            out[k] = 1000 + 10000 * Math.min(1, Math.max(0, (20 - Math.hypot(x - 32, y - 32)) / 3));
+    };
+    const source = () => sourceFromSlabs("c", grid, "uint16", draw);
+    const blurOf = async (more: Partial<SpecimenOptions>, from = source()) => {
+      const folder = await scratchFolder();
+      const { blurFwhmMm: _, ...open } = options(folder);
+      return (await makeSpecimen(from, { ...open, spacing: grid.spacing, ...more })).record.volume.blurFwhmMm;
+    };
+    const expected = (3 / Math.sqrt(12)) * 2 * Math.sqrt(2 * Math.log(2)) * 0.1;
+    const found = (await blurOf({}))!;
+    expect(Math.abs(found / expected - 1)).toBeLessThan(0.15); // a linear rim is no Gaussian edge
+    expect(found).toBe(Math.round(found * 1e6) / 1e6);
+    expect(await blurOf({ blurFwhmMm: 0.2 })).toBe(0.2);
+    expect(await blurOf({ blurFwhmMm: null })).toBeNull();
+    expect(
+      await blurOf(
+        {},
+        sourceFromSlabs("flat", grid, "uint16", (_a, _b, out) => out.fill(5)),
+      ),
+    ).toBeNull();
+  });
+});
