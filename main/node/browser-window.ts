@@ -59,15 +59,21 @@ export function windowArguments(browser: string, state: string, opener: string, 
   ];
 }
 
+/** A browser that cannot run here says so within this time; one that hands over to a running one ends well within it. */
+const FAILS_WITHIN_MS = 1_500;
+
 /** Opens the page in a window of the browser; the browser goes on by itself. Resolves false when it could not be started. */
 export function openWindow(browser: string, args: readonly string[]): Promise<boolean> {
   return new Promise((resolve) => {
     const child = spawn(browser, args, { detached: true, stdio: "ignore" });
-    child.once("error", () => resolve(false));
-    child.once("spawn", () => {
+    const timer = setTimeout(() => settle(true), FAILS_WITHIN_MS);
+    const settle = (opened: boolean) => {
+      clearTimeout(timer);
       child.unref();
-      resolve(true);
-    });
+      resolve(opened);
+    };
+    child.once("error", () => settle(false));
+    child.once("exit", (code) => settle(code === 0));
   });
 }
 

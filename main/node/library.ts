@@ -54,7 +54,12 @@ export class Library implements LibraryPort {
     for (const id of await this.#specimenIds()) {
       try {
         const specimen = await readSpecimenFile(this.#options.files, this.layout.specimenFile(id), id);
-        if (!specimen) continue;
+        if (!specimen) {
+          const passes = await this.passes.ids(id);
+          if (passes.length > 0)
+            problems.push(`specimens/${id} holds passes but no specimen.json: put the file back from a copy.`);
+          continue;
+        }
         const passes: PassSummary[] = [];
         for (const pass of await this.passes.ids(id)) {
           await this.passes.summary(id, pass).then(

@@ -50,6 +50,10 @@ describe("the browser for the page", () => {
 
   it("that cannot be started is told, not thrown", async () => {
     expect(await openWindow(join(folder, "none"), [])).toBe(false);
-    expect(await openWindow(await program("x"), [])).toBe(true);
+    expect(await openWindow(await program("hands-over"), [])).toBe(true);
+    await writeFile(await program("fails"), "#!/bin/sh\nexit 1\n");
+    expect(await openWindow(join(folder, "fails"), [])).toBe(false);
+    await writeFile(await program("stays"), "#!/bin/sh\nexec sleep 3\n");
+    expect(await openWindow(join(folder, "stays"), [])).toBe(true);
   });
 });

@@ -61,6 +61,14 @@ describe("Library", () => {
     for (const problem of problems) expect(problem).not.toContain("/library");
   });
 
+  it("reports passes whose specimen's record is gone", async () => {
+    const { files, library } = await begun();
+    await files.remove(library.layout.specimenFile(SPECIMEN));
+    const { specimens, problems } = await sampleLibrary(files).library.shelf();
+    expect(specimens).toEqual([]);
+    expect(problems).toEqual([expect.stringContaining("no specimen.json")]);
+  });
+
   it("keeps both sides of a fork: the window's becomes a pass of its own with all its edits", async () => {
     const { library, pass, log, append } = await begun();
     const here = new SampleWriter(log);
