@@ -189,8 +189,9 @@ export function createEngine(options: EngineOptions): LocalEngine {
     },
     async previewGuide({ ticket, session, to }) {
       checkTicket(ticket);
+      checkPoint("to", to);
       const { ref, specimen } = sessionOf(session);
-      return onLine("preview-guide", guide, ticket, specimen, { guide: ref, to }, ({ volume }) => checkInScan("to", to, volume));
+      return onLine("preview-guide", guide, ticket, specimen, { guide: ref, to });
     },
     async closeGuide(session) {
       endSession(session);

@@ -15,6 +15,7 @@ type Seen = Pick<SectionRequest, "plane" | "slabMm" | "quality">;
  */
 export class PlanesAhead {
   #last: { readonly key: string; readonly request: Seen } | null = null;
+  #step: Vec3 | null = null;
   #ahead: { readonly bricks: BrickPyramid; readonly request: Seen; readonly step: Vec3; next: number } | null = null;
 
   /** True while bricks can be fetched. */
@@ -27,10 +28,10 @@ export class PlanesAhead {
     const key = `${store} ${request.ticket.window}`;
     const last = this.#last;
     this.#last = { key, request };
-    this.#ahead = null;
-    if (last?.key !== key) return;
-    const step = stepAlongNormal(last.request.plane, request.plane);
-    if (step) this.#ahead = { bricks, request, step, next: 1 };
+    // The same plane again, sharper, comes after a step: its direction still counts.
+    const step = last?.key === key ? stepAlongNormal(last.request.plane, request.plane) : null;
+    if (step === null || norm(step) > 0) this.#step = step;
+    this.#ahead = this.#step ? { bricks, request, step: this.#step, next: 1 } : null;
   }
 
   /** Fetches one plane's bricks, or as many of them as there is time for. */
@@ -47,15 +48,16 @@ export class PlanesAhead {
 
   forget(): void {
     this.#last = null;
+    this.#step = null;
     this.#ahead = null;
   }
 }
 
-/** The step between two planes of the same shape that lie one behind the other; null when they do not. */
+/** The step between two planes of the same outline that lie one behind the other (0 for the same place); null when they do not. */
 function stepAlongNormal(a: Seen["plane"], b: Seen["plane"]): Vec3 | null {
   const same = (p: Vec3, q: Vec3) => norm(subtract(p, q)) <= 1e-9 + 1e-6 * norm(p);
-  if (a.width !== b.width || a.height !== b.height || !same(a.u, b.u) || !same(a.v, b.v)) return null;
+  if (!same(scale(a.u, a.width), scale(b.u, b.width)) || !same(scale(a.v, a.height), scale(b.v, b.height))) return null;
+  if (same(a.origin, b.origin)) return [0, 0, 0];
   const step = subtract(b.origin, a.origin);
-  const along = Math.abs(dot(step, normalise(cross(b.u, b.v))));
-  return along > 0 && along >= 0.99 * norm(step) ? step : null;
+  return Math.abs(dot(step, normalise(cross(b.u, b.v)))) >= 0.99 * norm(step) ? step : null;
 }

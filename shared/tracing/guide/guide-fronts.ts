@@ -5,6 +5,7 @@ import { createTileDomain, indexOfVoxel, type TileDomain, tileBox, voxelOfIndex 
 import { createFront, expandFront, type Front, hasReached, walkBack } from "#shared/tracing/minimal-path/front.ts";
 import { ridgeNearPin } from "#shared/tracing/pin-ridge.ts";
 import type { TraceContext } from "#shared/tracing/trace-context.ts";
+import { isInside } from "#shared/volume/grid.ts";
 import type { PyramidLevel } from "#shared/volume/pyramid.ts";
 
 /** Bytes a voxel of a front's box takes once it is visited: distance, mark and cost. */
@@ -97,10 +98,12 @@ export interface GuidePath {
 
 /**
  * The cheapest path from the pin to a place, from the finest front that has arrived there; fronts whose box holds the place
- * are let grow first, each until `shouldStop(n)` (n = 0 for the finest). Null when none arrives in time.
+ * are let grow first, each until `shouldStop(n)` (n = 0 for the finest). Null when none arrives in time, and outside the scan.
  */
 export function pathToPlace(guide: GuideFronts, to: PointMm, shouldStop: (front: number) => boolean): GuidePath | null {
-  const place = toLocal(guide.context.pyramid.grid, to);
+  const scan = guide.context.pyramid.grid;
+  if (!isInside(scan, to)) return null;
+  const place = toLocal(scan, to);
   for (const [n, { level, grid, domain, front }] of guide.fronts.entries()) {
     const index = localToIndex(grid, place);
     if (!([0, 1, 2] as const).every((k) => isWithin(index[k], domain.start[k], domain.size[k]))) continue;

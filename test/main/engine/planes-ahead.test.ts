@@ -58,7 +58,21 @@ describe("Planes ahead", () => {
     }
   });
 
-  test("does nothing after a turned plane, another window's plane or the same plane again", () => {
+  test("goes on in the same direction when the plane is asked for again at another resolution", () => {
+    const { bricks, held } = watched();
+    const ahead = new PlanesAhead();
+    ahead.shown(bricks, 1, request(140));
+    ahead.shown(bricks, 1, request(134));
+    const { plane } = request(134);
+    ahead.shown(bricks, 1, {
+      ...request(134),
+      plane: { ...plane, u: [2, 0, 0], v: [0, 2, 0], width: SIDE / 2, height: SIDE / 2 },
+    });
+    while (ahead.busy) ahead.fetch(never);
+    expect(held.size).toBeGreaterThan(0);
+  });
+
+  test("does nothing after a turned plane, another window's plane or the same plane as the first", () => {
     const { bricks } = watched();
     const ahead = new PlanesAhead();
     ahead.shown(bricks, 1, request(20));

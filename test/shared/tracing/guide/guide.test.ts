@@ -124,6 +124,14 @@ describe("A guide", () => {
     }
   });
 
+  test("draws a straight line to a pointer outside the scan, at once", () => {
+    const to = place([75, -20, 40]);
+    const never = () => {
+      throw new Error("a front was grown for a place outside the scan");
+    };
+    expect(previewGuide(grown, to, never)).toMatchObject({ coarse: true, imageFit: null });
+  });
+
   test("names the stretch where the string is cut as doubtful, and only that", () => {
     const from = openGuideFronts(context, place([...behind(40)]), 64e6);
     const { points, doubtful, imageFit } = previewGuide(from, place([...behind(110)]), patient);
