@@ -6,6 +6,13 @@ import { smoothInto } from "#shared/tracing/smooth.ts";
 
 /** Planes averaged to each side of the cutting plane. */
 const SLICES = 1;
+/**
+ * Scale of the search in radii. Noise moves the maximum of a solid cylinder about equally at 0.45 to 0.7 radii; the narrow end keeps
+ * two touching strings apart (their sum has two maxima only where the whole blur is below half their distance).
+ */
+const NARROW_SHARE = 0.45;
+/** A dark core under a bright rim has its maximum in the middle only at wide scales. */
+const WIDE_SHARE = 0.75;
 
 /** A curve on its way to the middle of its string. All in millimetres along the voxel axes. */
 export interface CentredCurve {
@@ -13,6 +20,8 @@ export interface CentredCurve {
   readonly points: Float64Array;
   /** shape [n]; radius used for the size of the window. */
   readonly radii: Float64Array;
+  /** shape [n]; the largest radius the string may have. */
+  readonly widestMm: Float64Array;
 }
 
 export interface CentringOptions {
@@ -25,17 +34,19 @@ export interface CentringOptions {
   readonly rounds: number;
   /** The radii that hold near the two nodes; within them the neighbours at a fork outweigh the string itself. */
   readonly nodeRadiiMm: readonly [number, number];
+  /** shape [m, 3]; the path that was found: places far from it belong to another string. */
+  readonly path: Float64Array;
 }
 
 /**
  * The curve moved to the middle of its string: at each point a plane normal to the tangent, in it the maximum of the image
- * smoothed at the radius' own scale (a Newton search of bounded step), then a smooth curve through the maxima, weighted by
+ * smoothed at half a radius (a Newton search of bounded step), then a smooth curve through the maxima, weighted by
  * how clearly each stands out; repeated. The ends stay where they are.
  * @source own derivation on Lindeberg 1998 (ridges of the image at scale r / sqrt 2) and penalised smoothing.
  */
 export function centreCurve(sampler: Sampler, start: CentredCurve, options: CentringOptions): CentredCurve {
   const patch = createCrossPatch();
-  let { points, radii } = start;
+  let { points, radii, widestMm } = start;
   for (let round = 0; round < options.rounds; round++) {
     const n = points.length / 3;
     const directions = tangents(points);
@@ -44,25 +55,69 @@ export function centreCurve(sampler: Sampler, start: CentredCurve, options: Cent
     const targets = points.slice();
     const weights = new Float64Array(n);
     const lambdas = new Float64Array(n);
+    const share = isHollow(sampler, points, directions, radii, options, patch) ? WIDE_SHARE : NARROW_SHARE;
     const step = n > 1 ? length / (n - 1) : options.stepMm;
     for (let i = 0; i < n; i++) {
       lambdas[i] = (smoothingLength(radii[i]!, options.stepMm) / step) ** 4;
       if (i === 0 || i === n - 1) continue;
-      weights[i] = centreAt(sampler, points, directions, i, radii[i]!, options, patch, targets);
+      weights[i] = centreAt(sampler, points, directions, i, radii[i]!, share, options, patch, targets);
       const near = Math.min(arc[i]! / options.nodeRadiiMm[0], (length - arc[i]!) / options.nodeRadiiMm[1]);
+      if (distanceTo(options.path, targets, i) > FARTHEST_RADII * radii[i]! + options.stepMm) weights[i] = 0;
       if (near < 1.2) weights[i] = weights[i]! * 0.03;
     }
     smoothInto(targets, weights, lambdas, targets);
     const next = resample(targets, options.stepMm);
-    radii = interpolateAlong(arcLengths(targets), radii, arcLengths(next));
+    const from = arcLengths(targets);
+    const to = arcLengths(next);
+    radii = interpolateAlong(from, radii, to);
+    widestMm = interpolateAlong(from, widestMm, to);
     points = next;
   }
-  return { points, radii };
+  return { points, radii, widestMm };
+}
+
+/** How far the centred curve may come from the path, in radii, besides a step. */
+const FARTHEST_RADII = 0.8;
+
+/** Distance of target i from the nearest point of the path. */
+function distanceTo(path: Float64Array, targets: Float64Array, i: number): number {
+  let least = Number.POSITIVE_INFINITY;
+  for (let k = 0; k < path.length; k += 3) {
+    const x = path[k]! - targets[3 * i]!;
+    const y = path[k + 1]! - targets[3 * i + 1]!;
+    const z = path[k + 2]! - targets[3 * i + 2]!;
+    least = Math.min(least, x * x + y * y + z * z);
+  }
+  return Math.sqrt(least);
 }
 
 /** How far smoothing reaches along the curve: about a radius, and never less than two voxels. */
 function smoothingLength(radiusMm: number, stepMm: number): number {
   return Math.max(1.2 * radiusMm, 2.5 * stepMm);
+}
+
+/** True when a third of the curve or more runs along the bottom of a hollow at the narrow scale: a dark core. */
+function isHollow(
+  sampler: Sampler,
+  points: Float64Array,
+  directions: Float64Array,
+  radii: Float64Array,
+  options: CentringOptions,
+  patch: CrossPatch,
+): boolean {
+  const n = points.length / 3;
+  const every = Math.max(1, Math.floor(n / 40));
+  let looked = 0;
+  let hollow = 0;
+  for (let i = 1; i < n - 1; i += every) {
+    const section = crossSection(sampler, points, directions, i, radii[i]!);
+    const sigma = Math.max((NARROW_SHARE * radii[i]!) / section.stepMm, 0.9);
+    const half = Math.ceil(2.7 * sigma);
+    samplePatchInto(sampler, section, half, SLICES, patch.reserve(half));
+    if (patch.findRidge(half, sigma, 0, options.sign).hollow) hollow++;
+    looked++;
+  }
+  return 3 * hollow >= looked && hollow > 0;
 }
 
 /** Writes the centre found about point i into `targets`; returns its weight, 0 to 1. */
@@ -72,13 +127,14 @@ function centreAt(
   directions: Float64Array,
   i: number,
   radiusMm: number,
+  share: number,
   options: CentringOptions,
   patch: CrossPatch,
   targets: Float64Array,
 ): number {
   const section = crossSection(sampler, points, directions, i, radiusMm);
   const radius = radiusMm / section.stepMm;
-  const sigma = Math.max(radius / Math.SQRT2, 0.9);
+  const sigma = Math.max(share * radius, 0.9);
   const bound = Math.max(0.6 * radius, 1);
   const half = Math.ceil(2.7 * sigma + bound);
   samplePatchInto(sampler, section, half, SLICES, patch.reserve(half));

@@ -1,5 +1,6 @@
 import type { GreyLevels } from "#shared/tracing/grey-levels.ts";
 import { RIDGE_TILE_SIDE, type RidgeTiles } from "#shared/tracing/ridge/ridge-tiles.ts";
+import { scalesUpTo } from "#shared/tracing/ridge/scales.ts";
 import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 
 /** Cost per millimetre on the strongest string; background costs 1. */
@@ -9,7 +10,7 @@ export const MOST_COST = 1;
 /** A solid cylinder's best ridge answer at unit contrast, exp(-1). */
 export const CYLINDER_PEAK = Math.exp(-1);
 /** Share of the plain intensity in the strength: small, so that muscle stays dear, yet forks and thick places stay passable. */
-const INTENSITY_SHARE = 0.1;
+const INTENSITY_SHARE = 0.06;
 /** Strength at which the cost is halfway, as a share of a string's expected ridge answer. */
 const HALFWAY_SHARE = 0.3;
 
@@ -20,6 +21,10 @@ export interface CostScale {
   readonly sign: 1 | -1;
   /** Strength (grey values) at which the cost is halfway between most and least. */
   readonly halfway: number;
+  /** Strength above which nothing gets cheaper, in units of `halfway`: a stronger neighbour is no shortcut. */
+  readonly enough: number;
+  /** Scales tuned to larger radii than this take no part, millimetres. */
+  readonly widestRadiusMm: number;
 }
 
 /**
@@ -34,9 +39,17 @@ export function ridgeNoiseFloor(levels: GreyLevels): number {
 /**
  * The cost scale for strings that answer with `expectedRidge` (grey values; see {@link CYLINDER_PEAK}), never below what
  * noise explains.
+ * @param widestRadiusMm largest radius the string may have: wider scales would see two strings side by side as one.
  */
-export function costScale(levels: GreyLevels, sign: 1 | -1, expectedRidge: number): CostScale {
-  return { background: levels.background, sign, halfway: Math.max(HALFWAY_SHARE * expectedRidge, ridgeNoiseFloor(levels)) };
+export function costScale(
+  levels: GreyLevels,
+  sign: 1 | -1,
+  expectedRidge: number,
+  widestRadiusMm: number = Number.POSITIVE_INFINITY,
+): CostScale {
+  const halfway = Math.max(HALFWAY_SHARE * expectedRidge, ridgeNoiseFloor(levels));
+  const enough = Math.max(1, Math.min(3, expectedRidge / halfway));
+  return { background: levels.background, sign, halfway, enough, widestRadiusMm };
 }
 
 /**
@@ -45,7 +58,7 @@ export function costScale(levels: GreyLevels, sign: 1 | -1, expectedRidge: numbe
  */
 export function costOf(ridge: number, value: number, scale: CostScale): number {
   const excess = INTENSITY_SHARE * Math.max(0, scale.sign * (value - scale.background));
-  const ratio = Math.min(3, ridge / scale.halfway);
+  const ratio = Math.min(scale.enough, ridge / scale.halfway);
   const lift = Math.min(1.5, excess / scale.halfway);
   return LEAST_COST + (MOST_COST - LEAST_COST) / (1 + ratio * ratio + lift * lift);
 }
@@ -62,10 +75,11 @@ export function createCostTiles(pyramid: VoxelPyramid, ridges: RidgeTiles, level
   const n = RIDGE_TILE_SIDE;
   const { size } = pyramid.levels[level]!;
   const values = new Float32Array(n * n * n);
+  const count = scalesUpTo(ridges.scales(level), scale.widestRadiusMm);
   return {
     level,
     tileInto(i, j, k, out) {
-      const { strength } = ridges.tile(level, i, j, k);
+      const { strength } = ridges.tile(level, i, j, k, count);
       pyramid.readBoxInto(level, [i * n, j * n, k * n], [n, n, n], values);
       const inX = Math.min(n, size[0] - i * n);
       const inY = Math.min(n, size[1] - j * n);

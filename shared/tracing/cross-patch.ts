@@ -4,6 +4,8 @@ export interface PatchRidge {
   v: number;
   /** Grey values; geometric mean of the two curvatures times sigma^2; 0 when there is no maximum. */
   response: number;
+  /** The middle of the patch is the bottom of a hollow at this scale. */
+  hollow: boolean;
 }
 
 /** Working memory for patches across a string. */
@@ -41,6 +43,7 @@ export function createCrossPatch(): CrossPatch {
       let u = 0;
       let v = 0;
       let response = 0;
+      let hollow = false;
       for (let round = 0; round < ROUNDS; round++) {
         gaussianTables(tables, 0, side, half, u, sigma);
         gaussianTables(tables, 3 * side, side, half, v, sigma);
@@ -75,6 +78,7 @@ export function createCrossPatch(): CrossPatch {
         huv *= -sign;
         // Here h is minus the Hessian: both curvatures positive at a maximum.
         const determinant = huu * hvv - huv * huv;
+        if (round === 0) hollow = determinant > 0 && huu + hvv < 0;
         const convex = huu + hvv > 0 && determinant > 0;
         response = convex ? sigma * sigma * Math.sqrt(determinant) : 0;
         let du: number;
@@ -104,7 +108,7 @@ export function createCrossPatch(): CrossPatch {
         }
         if (stride < 1e-3) break;
       }
-      return { u, v, response };
+      return { u, v, response, hollow };
     },
   };
 }

@@ -6,7 +6,7 @@ import { localToIndex } from "#shared/tracing/local-frame.ts";
 import { ridgeAtVoxel } from "#shared/tracing/pin-ridge.ts";
 import { arcLengths, interpolateAlong, medianOf, resample, runningMedian } from "#shared/tracing/polyline.ts";
 import { measureHalfWidths, radiiOf } from "#shared/tracing/radius.ts";
-import { finestSpacing } from "#shared/tracing/ridge/scales.ts";
+import { finestSpacing, scalesUpTo } from "#shared/tracing/ridge/scales.ts";
 import { smoothInto } from "#shared/tracing/smooth.ts";
 import type { TraceContext } from "#shared/tracing/trace-context.ts";
 
@@ -29,6 +29,7 @@ function knotStep(context: TraceContext, radii: Float64Array): number {
 /**
  * Centres a path in its string and measures it: rounds of centring with the radii of the ridge's scales, then with the
  * measured half widths.
+ * @param widestMm shape [n], the largest radius the string may have at each place of the path.
  * @param path shape [n, 3], from voxel to voxel, n >= 2. @param from, to where the curve begins and ends exactly.
  */
 export function centrePath(
@@ -37,6 +38,7 @@ export function centrePath(
   from: Vec3,
   to: Vec3,
   nodeRadiiMm: readonly [number, number],
+  widestMm: Float64Array,
   fwhmMm: number | null,
 ): MeasuredCurve {
   const level = context.workingLevel;
@@ -45,7 +47,15 @@ export function centrePath(
   const scaleRadii = new Float64Array(n);
   for (let i = 0; i < n; i++) {
     const index = localToIndex(grid, [path[3 * i]!, path[3 * i + 1]!, path[3 * i + 2]!]);
-    scaleRadii[i] = ridgeAtVoxel(context, level, Math.round(index[0]), Math.round(index[1]), Math.round(index[2])).radiusMm;
+    const count = scalesUpTo(context.ridges.scales(level), widestMm[i]!);
+    scaleRadii[i] = ridgeAtVoxel(
+      context,
+      level,
+      Math.round(index[0]),
+      Math.round(index[1]),
+      Math.round(index[2]),
+      count,
+    ).radiusMm;
   }
   const steady = runningMedian(scaleRadii, 6);
   const stepMm = knotStep(context, steady);
@@ -66,20 +76,27 @@ export function centrePath(
     noiseFloor: ridgeNoiseFloor(context.levels),
     stepMm,
     nodeRadiiMm,
+    path,
   } as const;
   const least = 0.75 * finestSpacing(context.pyramid, 0);
   let curve = centreCurve(
     context.sampler,
-    { points, radii: interpolateAlong(arcLengths(start), steady, arcLengths(points)) },
+    {
+      points,
+      radii: interpolateAlong(arcLengths(start), steady, arcLengths(points)),
+      widestMm: interpolateAlong(arcLengths(start), widestMm, arcLengths(points)),
+    },
     { ...options, rounds: 3 },
   );
   const first = measureHalfWidths(context.sampler, curve.points, curve.radii, context.sign);
   const half = Math.max(3, Math.round(medianOf([...curve.radii]) / stepMm));
   const measured = runningMedian(first.halfWidths, 2 * half);
   const refined = curve.radii.map((guess, i) =>
-    Number.isFinite(measured[i]!) ? Math.max(least, Math.min(Math.max(measured[i]!, 0.5 * guess), 1.6 * guess)) : guess,
+    Number.isFinite(measured[i]!)
+      ? Math.max(least, Math.min(Math.max(measured[i]!, 0.5 * guess), 1.6 * guess, curve.widestMm[i]!))
+      : guess,
   );
-  curve = centreCurve(context.sampler, { points: curve.points, radii: refined }, { ...options, rounds: 2 });
+  curve = centreCurve(context.sampler, { ...curve, radii: refined }, { ...options, rounds: 2 });
   const final = measureHalfWidths(context.sampler, curve.points, curve.radii, context.sign);
   return {
     points: curve.points,

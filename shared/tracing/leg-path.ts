@@ -14,20 +14,27 @@ const MOST_SETTLED = 4_000_000;
 /** Distance of the waypoints through which a path found on a coarser level is followed on the finer one. */
 const WINDOW_MM = 2.5;
 
+/** What the pins say about the string between them. */
+export interface ExpectedString {
+  /** How strongly the string answers, grey values. */
+  readonly ridge: number;
+  /** The largest radius it may have, millimetres. */
+  readonly widestRadiusMm: number;
+}
+
 /** Places along a path, shape [n, 3], millimetres along the voxel axes, voxel centres; null when no path was found. */
 export type LegPath = Float64Array | null;
 
 /**
  * The cheapest path between two places on a level. The box comes from the two places alone and grows while the path leans on
  * a side of it; what is too large for one box is first followed on the next coarser level and then in windows.
- * @param expectedRidge how strongly the string answers at its pins, grey values.
  */
 export function legPath(
   context: TraceContext,
   level: number,
   from: Vec3,
   to: Vec3,
-  expectedRidge: number,
+  expected: ExpectedString,
   signal: StopSignal,
 ): LegPath {
   const { pyramid } = context;
@@ -35,7 +42,12 @@ export function legPath(
   const a = localToIndex(grid, from);
   const b = localToIndex(grid, to);
   const apart = Math.hypot(to[0] - from[0], to[1] - from[1], to[2] - from[2]);
-  const costs = createCostTiles(pyramid, context.ridges, level, costScale(context.levels, context.sign, expectedRidge));
+  const costs = createCostTiles(
+    pyramid,
+    context.ridges,
+    level,
+    costScale(context.levels, context.sign, expected.ridge, expected.widestRadiusMm),
+  );
   for (let marginMm = Math.max(1, 0.3 * apart); ; marginMm *= 2) {
     const low = ([0, 1, 2] as const).map((k) => Math.min(a[k], b[k]) - marginMm / grid.spacing[k]) as [number, number, number];
     const high = ([0, 1, 2] as const).map((k) => Math.max(a[k], b[k]) + marginMm / grid.spacing[k]) as [number, number, number];
@@ -59,8 +71,8 @@ export function legPath(
     if (!leans) return points;
   }
   if (level + 1 >= pyramid.levels.length) return null;
-  const coarse = legPath(context, level + 1, from, to, expectedRidge, signal);
-  return coarse && inWindows(context, level, from, to, coarse, expectedRidge, signal);
+  const coarse = legPath(context, level + 1, from, to, expected, signal);
+  return coarse && inWindows(context, level, from, to, coarse, expected, signal);
 }
 
 /** Follows a path of the coarser level on `level`, from one waypoint on it to the next. */
@@ -70,7 +82,7 @@ function inWindows(
   from: Vec3,
   to: Vec3,
   coarse: Float64Array,
-  expectedRidge: number,
+  expected: ExpectedString,
   signal: StopSignal,
 ): LegPath {
   const arc = arcLengths(coarse);
@@ -84,7 +96,7 @@ function inWindows(
     while (at < arc.length - 1 && arc[at]! < (length * w) / windows) at++;
     const waypoint: Vec3 = [coarse[3 * at]!, coarse[3 * at + 1]!, coarse[3 * at + 2]!];
     const end = w === windows ? to : ridgeNearPin(context, level, waypoint).at;
-    const part = legPath(context, level, start, end, expectedRidge, signal);
+    const part = legPath(context, level, start, end, expected, signal);
     if (!part) return signal.aborted ? null : coarse;
     parts.push(w === 1 ? part : part.subarray(3));
     start = end;

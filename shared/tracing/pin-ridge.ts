@@ -18,16 +18,17 @@ export interface PinRidge {
 
 const FARTHEST_MM = 0.5;
 
-/** Ridge strength and radius at the voxel of a level, read from its tile. */
+/** Ridge strength and radius at the voxel of a level, read from its tile; of the first `count` scales when given. */
 export function ridgeAtVoxel(
   context: TraceContext,
   level: number,
   x: number,
   y: number,
   z: number,
+  count?: number,
 ): { strength: number; radiusMm: number } {
   const n = RIDGE_TILE_SIDE;
-  const tile = context.ridges.tile(level, Math.floor(x / n), Math.floor(y / n), Math.floor(z / n));
+  const tile = context.ridges.tile(level, Math.floor(x / n), Math.floor(y / n), Math.floor(z / n), count);
   const o = ((z & 31) * n + (y & 31)) * n + (x & 31);
   return { strength: tile.strength[o]!, radiusMm: radiusOfScale(context, level, tile, o) };
 }
@@ -63,8 +64,8 @@ export function ridgeNearPin(context: TraceContext, level: number, pin: Vec3): P
         if (d > reach) continue;
         const { strength, radiusMm } = ridgeAtVoxel(context, level, x, y, z);
         const radii = d / Math.max(radiusMm, 1.2 * least);
-        if (radii > 1.8) continue;
-        const score = strength * Math.exp(-1.5 * radii * radii);
+        if (radii > 1.5) continue;
+        const score = strength * Math.exp(-4 * radii * radii);
         if (score > best) {
           best = score;
           found = { at: indexToLocal(grid, [x, y, z]), strength, radiusMm, found: true };

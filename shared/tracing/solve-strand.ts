@@ -16,6 +16,11 @@ import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 /** A leg must stand out from the noise along this share of its length, or it counts as not followed. */
 const FOLLOWED_SHARE = 0.5;
 
+/** A string between two pins is at most this much thicker than at the thicker pin. */
+const ROOM_FOR_RADIUS = 1.6;
+/** Stands for no limit where a pin does not show its string. */
+const ANY_RADIUS_MM = 1000;
+
 interface Stretch {
   readonly how: MadeBy;
   readonly points: Float64Array;
@@ -95,7 +100,12 @@ function guidedLeg(
   const from = anchor(leg, leg - 1);
   const to = anchor(leg + 1, leg + 1);
   if (distance(from, to) === 0) return null;
-  const expected = Math.min(ridges[leg]!.strength, ridges[leg + 1]!.strength);
+  const a = ridges[leg]!;
+  const b = ridges[leg + 1]!;
+  const expected = {
+    ridge: Math.min(a.strength, b.strength),
+    widestRadiusMm: a.found && b.found ? ROOM_FOR_RADIUS * Math.max(a.radiusMm, b.radiusMm) : ANY_RADIUS_MM,
+  };
   const path = legPath(context, context.workingLevel, from, to, expected, signal);
   if (!path || path.length < 6) return path && Float64Array.of(...from, ...to);
   return followedShare(context, path) >= FOLLOWED_SHARE ? path : null;
@@ -141,7 +151,25 @@ function guidedStretch(
     at += part.length;
   });
   const nodeRadii = [ridges[firstLeg]!.radiusMm, ridges[lastPin]!.radiusMm] as const;
-  const curve: MeasuredCurve = centrePath(context, joined, local[firstLeg]!, local[lastPin]!, nodeRadii, parameters.blurFwhmMm);
+  // The widest radius at each place of the path, leg by leg, straight from pin to pin.
+  const widest = new Float64Array(joined.length / 3);
+  let place = 0;
+  paths.forEach((path, i) => {
+    const [a, b] = [ridges[firstLeg + i]!, ridges[firstLeg + i + 1]!].map((pin) =>
+      pin.found ? ROOM_FOR_RADIUS * pin.radiusMm : ANY_RADIUS_MM,
+    ) as [number, number];
+    const steps = path.length / 3 - 1;
+    for (let k = i === 0 ? 0 : 1; k <= steps; k++, place++) widest[place] = a + ((b - a) * k) / steps;
+  });
+  const curve: MeasuredCurve = centrePath(
+    context,
+    joined,
+    local[firstLeg]!,
+    local[lastPin]!,
+    nodeRadii,
+    widest,
+    parameters.blurFwhmMm,
+  );
   let points = resample(curve.points, stepMm);
   const arc = arcLengths(curve.points);
   const share = arcLengths(points);

@@ -17,7 +17,7 @@ export function bench(print: (line: string) => void, cpuMs: () => number): void 
     const out = new Float32Array(n ** 3);
     const scratch = createRidgeScratch();
     const normalise = Array.from({ length: 6 }, () => sigma * sigma) as [number, number, number, number, number, number];
-    const scale = { kernels: [kernel, kernel, kernel] as const, normalise };
+    const scale = { kernels: [kernel, kernel, kernel] as const, normalise, slope: [sigma, sigma, sigma] as const, damping: 0 };
     const times: number[] = [];
     for (let round = 0; round < 4; round++) {
       const start = cpuMs();

@@ -6,6 +6,13 @@ export interface BlockScale {
   readonly kernels: readonly [GaussianKernels, GaussianKernels, GaussianKernels];
   /** sigma^2 / (spacing_a spacing_b) for the pairs xx, yy, zz, xy, xz, yz: turns voxel derivatives into scale-normalised ones. */
   readonly normalise: readonly [number, number, number, number, number, number];
+  /** sigma / spacing along x, y, z: turns voxel slopes into scale-normalised ones. */
+  readonly slope: readonly [number, number, number];
+  /**
+   * How much a voxel away from the crest is damped: the measure is multiplied by m^2 / (m^2 + damping * slope^2). 0 = not at all
+   * (the published measure); 1 = to a half at one sigma from the crest.
+   */
+  readonly damping: number;
 }
 
 /** Plane buffers that the kernel writes over; grown on demand and reused between calls. */
@@ -21,7 +28,8 @@ export function createRidgeScratch(): RidgeScratch {
 /**
  * Fills `out` with the scale-normalised ridge measure sqrt(l1 l2) of one scale, where l1 >= l2 are the two largest
  * eigenvalues of minus the Hessian (bright strings) or of the Hessian (dark ones), and 0 where fewer than two are
- * positive. At the axis of a solid cylinder of radius r and contrast 1 it is r^2 / (2 s^2) exp(-r^2 / (2 s^2)).
+ * positive; damped away from the crest, where the slope across the string is not zero, so that the inside of a thick string's rim is no
+ * string of its own. At the axis of a solid cylinder of radius r and contrast 1 it is r^2 / (2 s^2) exp(-r^2 / (2 s^2)).
  * A voxel's value depends on the voxels within reach alone and is computed in a fixed order: blocks have no seams, bit for bit.
  * @param block grey values, shape [nz + 2 rz, ny + 2 ry, nx + 2 rx], x fastest, r = reach of the scale's kernels; borrowed.
  * @param size nx, ny, nz of the output, voxels.
@@ -67,7 +75,7 @@ export function ridgeBlockInto(
     twoAlongY(z1, wide, ny, ky, z1y0, z1y1);
     oneAlongY(z2, wide, ny, ky, z2y0);
     for (let y = 0; y < ny; y++)
-      rowOfRidge(z0y0, z0y1, z0y2, z1y0, z1y1, z2y0, y * wide, nx, kx, scale.normalise, polarity, out, (z * ny + y) * nx);
+      rowOfRidge(z0y0, z0y1, z0y2, z1y0, z1y1, z2y0, y * wide, nx, kx, scale, polarity, out, (z * ny + y) * nx);
   }
 }
 
@@ -178,7 +186,7 @@ function rowOfRidge(
   row: number,
   nx: number,
   kernel: GaussianKernels,
-  normalise: BlockScale["normalise"],
+  { normalise, slope, damping }: BlockScale,
   polarity: 1 | -1,
   out: Float32Array,
   to: number,
@@ -190,6 +198,7 @@ function rowOfRidge(
   const nxy = -polarity * normalise[3];
   const nxz = -polarity * normalise[4];
   const nyz = -polarity * normalise[5];
+  const [slopeX, slopeY, slopeZ] = slope;
   const s0 = smooth[0]!;
   const e0 = second[0]!;
   for (let x = 0; x < nx; x++) {
@@ -200,17 +209,29 @@ function rowOfRidge(
     let yz = s0 * z1y1[c]!;
     let xy = 0;
     let xz = 0;
+    let gx = 0;
+    let gy = s0 * z0y1[c]!;
+    let gz = s0 * z1y0[c]!;
     for (let k = 1; k <= reach; k++) {
       const up = c + k;
       const down = c - k;
       const s = smooth[k]!;
       const f = first[k]!;
-      xx += second[k]! * (z0y0[up]! + z0y0[down]!);
+      const a0 = z0y0[up]!;
+      const b0 = z0y0[down]!;
+      const a1 = z0y1[up]!;
+      const b1 = z0y1[down]!;
+      const a2 = z1y0[up]!;
+      const b2 = z1y0[down]!;
+      xx += second[k]! * (a0 + b0);
+      gx += f * (a0 - b0);
+      gy += s * (a1 + b1);
+      gz += s * (a2 + b2);
+      xy += f * (a1 - b1);
+      xz += f * (a2 - b2);
       yy += s * (z0y2[up]! + z0y2[down]!);
       zz += s * (z2y0[up]! + z2y0[down]!);
       yz += s * (z1y1[up]! + z1y1[down]!);
-      xy += f * (z0y1[up]! - z0y1[down]!);
-      xz += f * (z1y0[up]! - z1y0[down]!);
     }
     xx *= nxx;
     yy *= nyy;
@@ -232,12 +253,34 @@ function rowOfRidge(
     const d = zz - q;
     const p = Math.sqrt((a * a + b * b + d * d + 2 * (xy * xy + xz * xz + yz * yz)) / 6);
     let product = q * q;
+    let least = q;
     if (p > 0) {
       const half = (a * (b * d - yz * yz) - xy * (xy * d - yz * xz) + xz * (xy * yz - b * xz)) / (2 * p * p * p);
       const angle = Math.acos(Math.max(-1, Math.min(half, 1))) / 3;
-      const least = q + 2 * p * Math.cos(angle + (2 * Math.PI) / 3);
+      least = q + 2 * p * Math.cos(angle + (2 * Math.PI) / 3);
       product = e2 - least * (trace - least);
     }
-    out[to + x] = product > 0 ? Math.sqrt(product) : 0;
+    if (!(product > 0)) {
+      out[to + x] = 0;
+      continue;
+    }
+    gx *= slopeX;
+    gy *= slopeY;
+    gz *= slopeZ;
+    let slope2 = gx * gx + gy * gy + gz * gz;
+    // The slope along the string is no distance from its crest: g' adj(A - least I) g = (l1 - least)(l2 - least)(g along)^2.
+    const between = product - least * (trace - least) + least * least;
+    if (between > 1e-6 * product) {
+      const bx = xx - least;
+      const by = yy - least;
+      const bz = zz - least;
+      const along =
+        gx * gx * (by * bz - yz * yz) +
+        gy * gy * (bx * bz - xz * xz) +
+        gz * gz * (bx * by - xy * xy) +
+        2 * (gx * gy * (xz * yz - xy * bz) + gx * gz * (xy * yz - xz * by) + gy * gz * (xy * xz - yz * bx));
+      slope2 = Math.max(0, slope2 - Math.max(0, along / between));
+    }
+    out[to + x] = (Math.sqrt(product) * product) / (product + damping * slope2);
   }
 }

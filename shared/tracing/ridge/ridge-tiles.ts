@@ -8,6 +8,9 @@ import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 export const RIDGE_TILE_SIDE = 32;
 export const RIDGE_TILE_VOXELS = RIDGE_TILE_SIDE ** 3;
 
+/** A voxel one sigma from the crest answers half as strongly as the curvatures there alone would make it. */
+const DAMPING = 0.25;
+
 /** The multi-scale ridge measure over one tile. */
 export interface RidgeTile {
   /** shape [32, 32, 32], z y x, x fastest; grey values of contrast; the strongest answer over the scales of the working level. */
@@ -21,8 +24,11 @@ export interface RidgeTiles {
   readonly polarity: Polarity;
   /** Scales of a working level, ascending; `scale` of a tile counts in it. */
   scales(level: number): readonly RidgeScale[];
-  /** Tile (i, j, k) of a level; tiles over or beyond the edge see the edge voxels repeated. Borrowed: not to be written to. */
-  tile(level: number, i: number, j: number, k: number): RidgeTile;
+  /**
+   * Tile (i, j, k) of a level; tiles over or beyond the edge see the edge voxels repeated. Borrowed: not to be written to.
+   * @param count how many of the level's scales take part, finest first; all when not given.
+   */
+  tile(level: number, i: number, j: number, k: number, count?: number): RidgeTile;
 }
 
 /** Strongest answer of the scales that live on one level, on that level's own grid. */
@@ -32,7 +38,7 @@ interface OwnAnswer {
 }
 
 /**
- * The ridge tiles of a pyramid, computed when asked for and kept up to `keepTiles` per kind, the oldest dropped first.
+ * The ridge tiles of a pyramid, computed when asked for and kept up to `keepTiles` per kind; those used longest ago go first.
  * Scales of coarser levels are computed on their own grid and carried to the working grid by linear interpolation.
  */
 export function createRidgeTiles(pyramid: VoxelPyramid, polarity: Polarity, keepTiles = 512): RidgeTiles {
@@ -63,20 +69,21 @@ export function createRidgeTiles(pyramid: VoxelPyramid, polarity: Polarity, keep
       made = {
         kernels: [gaussianKernels(vx), gaussianKernels(vy), gaussianKernels(vz)],
         normalise: [n / (sx * sx), n / (sy * sy), n / (sz * sz), n / (sx * sy), n / (sx * sz), n / (sy * sz)],
+        slope: [scale.sigmaMm / sx, scale.sigmaMm / sy, scale.sigmaMm / sz],
+        damping: DAMPING,
       };
       blockScales.set(key, made);
     }
     return made;
   };
 
-  /** The tile of one level for those scales of a working level that live on it; null when there are none. */
-  const ownTile = (working: number, level: number, i: number, j: number, k: number): OwnAnswer | null => {
+  /** The tile of one level for those of the first `count` scales of a working level that live on it; null when there are none. */
+  const ownTile = (working: number, count: number, level: number, i: number, j: number, k: number): OwnAnswer | null => {
     const list = scales(working);
-    const here = list.flatMap((scale, index) => (scale.level === level ? [index] : []));
+    const here = list.flatMap((scale, index) => (index < count && scale.level === level ? [index] : []));
     if (here.length === 0) return null;
-    // Scales of a level above the working level are the same for every working level: only their numbers differ.
-    const key = `${working} ${level} ${i} ${j} ${k}`;
-    const known = own.get(key);
+    const key = `${working} ${here.length} ${level} ${i} ${j} ${k}`;
+    const known = recalled(own, key);
     if (known) return known;
     const strength = new Float32Array(RIDGE_TILE_VOXELS);
     const scale = new Uint8Array(RIDGE_TILE_VOXELS).fill(here[0]!);
@@ -113,15 +120,16 @@ export function createRidgeTiles(pyramid: VoxelPyramid, polarity: Polarity, keep
   return {
     polarity,
     scales,
-    tile(level, i, j, k) {
-      const key = `${level} ${i} ${j} ${k}`;
-      const known = kept.get(key);
+    tile(level, i, j, k, most) {
+      const count = Math.min(most ?? Number.POSITIVE_INFINITY, scales(level).length);
+      const key = `${count} ${level} ${i} ${j} ${k}`;
+      const known = recalled(kept, key);
       if (known) return known;
-      const base = ownTile(level, level, i, j, k);
+      const base = ownTile(level, count, level, i, j, k);
       const strength = base ? base.strength.slice() : new Float32Array(RIDGE_TILE_VOXELS);
       const scale = base ? base.scale.slice() : new Uint8Array(RIDGE_TILE_VOXELS);
       for (let coarse = level + 1; coarse < pyramid.levels.length; coarse++)
-        raiseByCoarse(pyramid, level, coarse, [i, j, k], (a, b, c) => ownTile(level, coarse, a, b, c), strength, scale);
+        raiseByCoarse(pyramid, level, coarse, [i, j, k], (a, b, c) => ownTile(level, count, coarse, a, b, c), strength, scale);
       const made = { strength, scale };
       kept.set(key, made);
       dropOldest(kept, keepTiles);
@@ -130,7 +138,17 @@ export function createRidgeTiles(pyramid: VoxelPyramid, polarity: Polarity, keep
   };
 }
 
-/** Lets go of the entries that were put in first. */
+/** The entry of a key, which then counts as the one used last. */
+function recalled<V>(map: Map<string, V>, key: string): V | undefined {
+  const value = map.get(key);
+  if (value !== undefined) {
+    map.delete(key);
+    map.set(key, value);
+  }
+  return value;
+}
+
+/** Lets go of the entries used longest ago. */
 function dropOldest<V>(map: Map<string, V>, most: number): void {
   for (const key of map.keys()) {
     if (map.size <= most) return;

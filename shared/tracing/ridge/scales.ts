@@ -66,3 +66,8 @@ export function sigmaVoxels(pyramid: Pick<VoxelPyramid, "levels">, scale: RidgeS
   };
   return [along(0), along(1), along(2)];
 }
+
+/** How many of a level's scales, finest first, are tuned to radii of at most `widestMm`; at least one. */
+export function scalesUpTo(scales: readonly RidgeScale[], widestMm: number): number {
+  return Math.max(1, scales.filter((scale) => radiusOfSigma(scale.sigmaMm) <= widestMm).length);
+}
