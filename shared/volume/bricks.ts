@@ -1,8 +1,9 @@
 import { createStored, type StoredArray, type StoredDtype } from "#shared/volume/dtype.ts";
 import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 
-/** Voxels along x and along y of a brick; 2 to the power of {@link BRICK_SHIFT}. */
+/** Voxels along x and along y of a brick. */
 export const BRICK_SIDE = 32;
+/** log2 of {@link BRICK_SIDE}. */
 export const BRICK_SHIFT = 5;
 
 /**

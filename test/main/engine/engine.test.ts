@@ -397,6 +397,13 @@ describe("The engine over worker threads", { timeout: 240_000 }, () => {
     expect(Buffer.compare(body, section(inMemory, request).body)).toBe(0);
   });
 
+  test("says `internal` when its worker cannot be started, instead of waiting for ever", async () => {
+    start({ workerUrl: new URL("./no-such-worker.mjs", import.meta.url) });
+    const tags = await Promise.all([1, 2].map((n) => tagOf(engine!.section(sectionRequest(n, { ticket: ticket("job") })))));
+    expect(tags).toEqual(["internal", "internal"]);
+    expect(await tagOf(engine!.histogram("hb-07"))).toBe("internal");
+  });
+
   test("answers what is under way with `cancelled` when it closes", async () => {
     start();
     const work = [heavy({ ticket: ticket("job") }), heavy({ ticket: ticket("job") })].map((request) =>
