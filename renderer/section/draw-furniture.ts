@@ -49,7 +49,7 @@ export function drawRuler(
   const a = toPane(plane, size, from);
   const b = toPane(plane, size, end);
   const long = Math.hypot(b.x - a.x, b.y - a.y);
-  const [nx, ny] = long === 0 ? [0, 7] : [(-(b.y - a.y) / long) * 7, ((b.x - a.x) / long) * 7];
+  const [nx, ny]: readonly [number, number] = long === 0 ? [0, 7] : [(-(b.y - a.y) / long) * 7, ((b.x - a.x) / long) * 7];
   cased(to, ink.casing, ink.ink, 1.6, () => {
     to.moveTo(a.x, a.y);
     to.lineTo(b.x, b.y);
@@ -58,7 +58,10 @@ export function drawRuler(
       to.lineTo(p.x + nx, p.y + ny);
     }
   });
-  text.beside(lengthText(distance(from, end)), (a.x + b.x) / 2, (a.y + b.y) / 2, 14, ink.ink, true);
+  // Beside the line's middle, above it where that is possible.
+  const side = ny < -1e-9 || (Math.abs(ny) <= 1e-9 && nx > 0) ? 2.2 : -2.2;
+  const align = Math.abs(ny) > Math.abs(nx) ? "center" : nx * side > 0 ? "left" : "right";
+  text.at(lengthText(distance(from, end)), (a.x + b.x) / 2 + nx * side, (a.y + b.y) / 2 + ny * side, align, ink.ink);
 }
 
 /** The string that the pointer snaps to: a ring with four short rays, and its depth. */

@@ -1,5 +1,5 @@
 import { clipToSlab } from "#renderer/section/clip-to-slab.ts";
-import { planeCrossings } from "#renderer/section/plane-crossings.ts";
+import { planeCrossings, type TubeOutline } from "#renderer/section/plane-crossings.ts";
 import { FADE_MM, type ProjectedScene, type ProjectedStrand } from "#renderer/section/project-scene.ts";
 import type { SectionInk } from "#renderer/section/section-ink.ts";
 import type { TextOnPicture } from "#renderer/section/text-on-picture.ts";
@@ -14,6 +14,7 @@ export function drawLabels(
   halfSlabMm: number,
   ink: SectionInk,
 ): void {
+  keepFree(text, scene, size, mmPerPx, halfSlabMm);
   const places = new Map<string, LabelPlace & { name: string; colour: string; rank: number }>();
   for (const strand of scene.strands) {
     const place = labelPlace(strand, mmPerPx, halfSlabMm, size);
@@ -29,6 +30,18 @@ export function drawLabels(
   }
 }
 
+/** Names do not cover the cross-sections of other strands, nor nodes that lie in the slab. */
+function keepFree(text: TextOnPicture, scene: ProjectedScene, size: PaneSize, mmPerPx: number, halfSlabMm: number): void {
+  const box = (x: number, y: number, half: number) => text.reserve(x - half, y - half, x + half, y + half);
+  for (const { seen, drawn } of scene.strands) {
+    // Three quarters: a name may touch the rim of a large cross-section.
+    for (const crossing of planeCrossings(seen, drawn.radii, mmPerPx)) {
+      if (shown(crossing, size)) box(crossing.x, crossing.y, crossing.shortPx * 0.75);
+    }
+  }
+  for (const { seen } of scene.nodes) if (Math.abs(seen.depthMm) <= halfSlabMm) box(seen.x, seen.y, 6);
+}
+
 interface LabelPlace {
   readonly x: number;
   readonly y: number;
@@ -38,7 +51,7 @@ interface LabelPlace {
 
 function labelPlace(strand: ProjectedStrand, mmPerPx: number, halfSlabMm: number, size: PaneSize): LabelPlace | null {
   const crossing = planeCrossings(strand.seen, strand.drawn.radii, mmPerPx).find((place) => shown(place, size));
-  if (crossing !== undefined) return { x: crossing.x, y: crossing.y, gap: Math.min(60, crossing.longPx + 8) };
+  if (crossing !== undefined) return { x: crossing.x, y: crossing.y, gap: Math.min(60, halfWidth(crossing) + 8) };
   let longest: readonly number[] = [];
   for (const run of clipToSlab(strand.seen, halfSlabMm, FADE_MM)) {
     if (run.band === 0 && run.points.length > longest.length) longest = run.points;
@@ -47,6 +60,11 @@ function labelPlace(strand: ProjectedStrand, mmPerPx: number, halfSlabMm: number
   const middle = 2 * Math.floor(longest.length / 4);
   const place = { x: longest[middle]!, y: longest[middle + 1]!, gap: 12 };
   return shown(place, size) ? place : null;
+}
+
+/** How far an outline reaches to either side. */
+function halfWidth({ longPx, shortPx, angle }: TubeOutline): number {
+  return Math.hypot(longPx * Math.cos(angle), shortPx * Math.sin(angle));
 }
 
 function shown(place: { x: number; y: number }, size: PaneSize): boolean {

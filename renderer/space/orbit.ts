@@ -28,11 +28,14 @@ export function uprightOf(valve: ValveAxes | null): Upright {
   return valve === null ? { up: [0, 0, 1], front: [0, 1, 0] } : { up: valve.up, front: frontDirection(valve) };
 }
 
-/** Everything within `radiusMm` of `centre` in view, from the front and a little from above. @param aspect width / height of the pane */
+/** The corners of a scan's box hold air: so much of its half diagonal is enough to see the whole valve. */
+const FILLED_SHARE = 0.8;
+
+/** The valve inside a scan of half diagonal `radiusMm` about `centre`, from the front and a little from above. @param aspect width / height of the pane */
 export function orbitAround(centre: PointMm, radiusMm: number, aspect: number): Orbit {
   const half = (OPENING_DEG * Math.PI) / 360;
   const narrower = aspect >= 1 || !(aspect > 0) ? half : Math.atan(Math.tan(half) * aspect);
-  const distanceMm = (Math.max(radiusMm, 1e-3) * 1.02) / Math.sin(narrower);
+  const distanceMm = (Math.max(radiusMm, 1e-3) * FILLED_SHARE) / Math.sin(narrower);
   return { target: centre, distanceMm, turnDeg: 0, tiltDeg: 12 };
 }
 

@@ -31,8 +31,9 @@ const THINNEST_MM = 0.11;
 /** Rings of a tube stand this far apart. */
 const STEP_MM = 0.25;
 const DASH_UNIT_MM = 0.32;
-/** CSS pixels: three multiplies point sizes by the pixel ratio. */
-const GLYPH_PX = 17;
+/** Side of a glyph in CSS pixels (three multiplies point sizes by the pixel ratio): it follows the zoom between these bounds. */
+const GLYPH_PX = { least: 8, most: 17 } as const;
+const GLYPH_MM = 1.1;
 
 /** Frees what a part holds on the graphics side. */
 export function freePart(part: Object3D): void {
@@ -102,14 +103,13 @@ export function nodesPart(nodes: Iterable<TreeNode>, colours: ViewColours, textu
     geometry.setAttribute("position", new BufferAttribute(Float32Array.from(same.flatMap((node) => [...node.position])), 3));
     const tints = same.flatMap((node) => rgb(kind === "open" ? colours.warn : colours.trees[treeMark(node.tree).colour]!));
     geometry.setAttribute("color", new BufferAttribute(Float32Array.from(tints), 3));
-    const size = kind === "waypoint" ? GLYPH_PX * 0.7 : GLYPH_PX;
     group.add(
       new Points(
         geometry,
         new PointsMaterial({
           map: textures.of(kind),
           vertexColors: true,
-          size,
+          size: GLYPH_PX.most,
           sizeAttenuation: false,
           alphaTest: 0.35,
           transparent: true,
@@ -136,6 +136,14 @@ export function planePart(plane: PlaneInSpace, picture: PictureInSpace | null, c
   return group;
 }
 
+/** Sets the size of a part's glyphs for a scale of the view. */
+export function sizeGlyphs(part: Object3D, mmPerPx: number): void {
+  part.traverse((object) => {
+    if (!(object instanceof Points) || !(object.material instanceof PointsMaterial)) return;
+    object.material.size = Math.min(GLYPH_PX.most, Math.max(GLYPH_PX.least, GLYPH_MM / mmPerPx));
+  });
+}
+
 export function surfacePart(points: Float32Array, colours: ViewColours): Points {
   const geometry = new BufferGeometry();
   geometry.setAttribute("position", new BufferAttribute(points, 3));
@@ -155,10 +163,16 @@ export function pinsPart(pins: SpaceContent["pins"], colours: ViewColours, textu
   const geometry = new BufferGeometry();
   geometry.setAttribute("position", new BufferAttribute(Float32Array.from(pins.flat()), 3));
   const map = textures.of("waypoint");
-  const size = GLYPH_PX;
   return new Points(
     geometry,
-    new PointsMaterial({ map, color: colours.accent, size, sizeAttenuation: false, alphaTest: 0.35, transparent: true }),
+    new PointsMaterial({
+      map,
+      color: colours.accent,
+      size: GLYPH_PX.most,
+      sizeAttenuation: false,
+      alphaTest: 0.35,
+      transparent: true,
+    }),
   );
 }
 

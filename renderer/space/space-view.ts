@@ -31,6 +31,7 @@ import {
   pinsPart,
   planePart,
   selectionPart,
+  sizeGlyphs,
   strandsPart,
   surfacePart,
 } from "#renderer/space/scene-parts.ts";
@@ -154,7 +155,7 @@ export class SpaceView {
     if (now.pins !== before.pins) this.spoil("pins");
     if (now.plane !== before.plane || now.picture !== before.picture) this.spoil("plane");
     if (now.surface !== before.surface) this.spoil("surface");
-    if (now.bounds !== before.bounds && !this.touched) this.orbit = this.whole();
+    if ((now.bounds !== before.bounds || now.valve !== before.valve) && !this.touched) this.orbit = this.whole();
     this.say(now.caption);
     this.redraw();
   }
@@ -209,8 +210,13 @@ export class SpaceView {
 
   /** The view of everything in the pane as it is now. */
   private whole(): Orbit {
-    const { centre, radiusMm } = this.content.bounds;
-    return orbitAround(centre, radiusMm, this.size.height === 0 ? 1 : this.size.width / this.size.height);
+    const { bounds, valve } = this.content;
+    // An upright valve turns about its own axis, not about the middle of the scan.
+    return orbitAround(
+      valve?.centre ?? bounds.centre,
+      bounds.radiusMm,
+      this.size.height === 0 ? 1 : this.size.width / this.size.height,
+    );
   }
 
   private move(orbit: Orbit): void {
@@ -325,6 +331,10 @@ export class SpaceView {
     if (surface !== undefined) {
       const count = surface.geometry.getAttribute("position").count;
       surface.geometry.setDrawRange(0, this.moving ? Math.ceil(count / MOVING_SHARE) : count);
+    }
+    for (const name of ["nodes", "pins"] as const) {
+      const part = this.parts.get(name);
+      if (part !== undefined) sizeGlyphs(part, mmPerPixel(this.orbit, this.size.height));
     }
     const ratio = (globalThis.devicePixelRatio || 1) * (this.moving ? MOVING_RESOLUTION : 1);
     if (this.renderer.getPixelRatio() !== ratio) this.renderer.setPixelRatio(ratio);

@@ -127,8 +127,10 @@ function drawProfile(to: CanvasRenderingContext2D, content: StripContent, rect: 
   }
   if (content.at.length === 0) return;
   to.fillStyle = ink.soft;
-  to.textAlign = "left";
-  to.fillText("0", rect.x, rect.y + rect.height + 11);
+  if (rect.width >= 48) {
+    to.textAlign = "left";
+    to.fillText("0", rect.x, rect.y + rect.height + 11);
+  }
   to.textAlign = "right";
   to.fillText(`${profile.fullMm}`, rect.x + rect.width, rect.y + rect.height + 11);
   to.textAlign = "center";
