@@ -18,7 +18,13 @@ export function parseSpecimenRecord(value: unknown, file: string): SpecimenRecor
   const record = value as Json;
   check(record.format === "tautline-specimen", "format", "'tautline-specimen'", record.format);
   if (typeof record.version === "number" && record.version > 1)
-    throw unreadable(file, "version 1", `version ${record.version}`, "version", "A newer Tautline wrote it; use that one.");
+    throw unreadable(
+      file,
+      "version 1",
+      `version ${record.version}`,
+      "version",
+      "It was written by a newer version of the program; use that one.",
+    );
   check(record.version === 1, "version", "1", record.version);
   for (const key of ["id", "name"]) check(isText(record[key]), key, "a text", record[key]);
   check(isCount(record.created), "created", "UTC milliseconds", record.created);

@@ -61,7 +61,9 @@ function orientedPlace(fields: Fields, columns: [Vec3, Vec3, Vec3], file: string
   const origins = originText === undefined ? [[0, 0, 0] as Vec3] : vectorsOf(originText, file, "space origin");
   const written = origins[0] ?? null;
   const usable = written?.every(Number.isFinite) ? written : null;
-  const notes = usable ? [] : ["The header's space origin is no place; the first voxel is put at 0, 0, 0."];
+  const notes: string[] = [];
+  if (!usable) notes.push("The header's space origin is no place; the first voxel is put at 0, 0, 0.");
+  if (space === "3d-left-handed") notes.push("The header names a left-handed space; check that the scan is not mirrored.");
   const lengths = columns.map((v) => norm(v)) as unknown as Vec3;
   const good = lengths.every((l) => Number.isFinite(l) && l > 0);
   const units = fields.has("spaceunits") ? wordsOf(fields.get("spaceunits")!) : null;

@@ -186,6 +186,23 @@ describe("tautline intake", () => {
     expect(stderr).toMatch(sentence);
   });
 
+  it("keeps what a person says of handedness, mirror and polarity", async () => {
+    const folder = await scratchFolder();
+    const path = await writeNrrd(folder, "a.nrrd", small(SETTLED));
+    const library = join(folder, "library");
+    const said = ["--handedness", "confirmed", "--mirror", "--polarity", "dark", "--name", "HB-07", "--spacing", "0.04"];
+    const { stdout } = await runVerb(["intake", path, "--library", library, ...said, "--json"]);
+    const { specimen, sha256 } = JSON.parse(stdout);
+    const record = JSON.parse(await readFile(join(library, "specimens", specimen, "specimen.json"), "utf8"));
+    expect(record).toMatchObject({ name: "HB-07", polarity: "dark", volume: { handedness: "confirmed" } });
+    const reversed = [4, 3, 2, 1, 0].flatMap((z) => SMALL.slice(z * 12, z * 12 + 12));
+    expect(sha256).toBe(
+      createHash("sha256")
+        .update(bytesOf(reversed, "uint16", true))
+        .digest("hex"),
+    );
+  });
+
   it("needs a library", async () => {
     const path = await writeNrrd(await scratchFolder(), "a.nrrd", small(SETTLED));
     expect((await runVerb(["intake", path])).stderr).toMatch(/--library/);

@@ -267,6 +267,30 @@ describe("an NRRD file", () => {
     expect(process.memoryUsage().arrayBuffers - before).toBeLessThan(64 * 1024 * 1024);
   });
 
+  it("with mutated or truncated gzip data gives a typed error or its voxels, never anything else", async () => {
+    const folder = await scratchFolder();
+    const noise = Array.from({ length: 24 }, (_, k) => (k * 40503) % 65536);
+    const whole = nrrdBytes(order(SETTLED, { gzip: true, values: noise }));
+    const start = whole.indexOf("\n\n") + 2;
+    const random = seeded(4);
+    let refused = 0;
+    for (let turn = 0; turn < 300; turn++) {
+      const bytes = Buffer.from(
+        turn % 3 === 0 ? whole.subarray(0, start + Math.floor(random() * (whole.length - start))) : whole,
+      );
+      if (bytes.length > start) bytes[start + Math.floor(random() * (bytes.length - start))] = Math.floor(random() * 256);
+      const path = join(folder, "fuzz.nrrd");
+      await writeFile(path, bytes);
+      try {
+        await voxelsOf(path);
+      } catch (error) {
+        expect((error as { tag?: string }).tag, `turn ${turn}: ${String(error)}`).toBe("unreadable-input");
+        refused++;
+      }
+    }
+    expect(refused).toBeGreaterThan(100);
+  });
+
   it("mutated or truncated anywhere in its header gives a typed error or a scan, never anything else", async () => {
     const folder = await scratchFolder();
     const whole = nrrdBytes(order([...SETTLED, "kinds: domain domain domain", "byte skip: 0"]));
