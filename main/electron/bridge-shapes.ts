@@ -1,5 +1,6 @@
 import { flag, list, object, oneOf, optional, refuse, type Shape, text } from "#main/http/shape.ts";
-import type { BridgeCall, BridgeCalls, MenuTable } from "#shared/api/bridge.ts";
+import type { BridgeCall, BridgeCalls } from "#shared/api/bridge.ts";
+import type { MenuTable } from "#shared/api/menu.ts";
 
 const words = text(200, 1);
 const command = object({ kind: oneOf("command"), name: words, label: words, shortcut: optional(text(60)), enabled: flag });

@@ -11,5 +11,6 @@ export function loopbackCapabilities(askForScan: () => Promise<string | null>): 
     pickSavePath: () => Promise.resolve("download"),
     pathOfDropped: () => null,
     showInFolder: () => Promise.resolve(),
+    menus: null,
   };
 }

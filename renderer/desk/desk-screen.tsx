@@ -4,6 +4,7 @@ import { HeadLine } from "#renderer/desk/lines/head-line.tsx";
 import { deskContext } from "#renderer/desk/model/desk-context.ts";
 import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
 import { listenToKeys } from "#renderer/desk/model/keys.ts";
+import { keepMenus } from "#renderer/desk/model/menus.ts";
 import { SectionPane } from "#renderer/desk/panes/section-pane.tsx";
 import { SpacePane } from "#renderer/desk/panes/space-pane.tsx";
 import { StripPane } from "#renderer/desk/panes/strip-pane.tsx";
@@ -15,6 +16,7 @@ import { SidePanel } from "#renderer/desk/side/side-panel.tsx";
 export function DeskScreen({ model }: { readonly model: DeskModel }) {
   const context = useMemo(() => deskContext(model), [model]);
   useEffect(() => listenToKeys(context), [context]);
+  useEffect(() => keepMenus(model.services.capabilities.menus, context), [model, context]);
   return (
     <div class="desk">
       <HeadLine model={model} context={context} />

@@ -1,3 +1,5 @@
+import type { MenuTable } from "#shared/api/menu.ts";
+
 /** What a shell can do for the page; one implementation per shell, chosen at the entry point. */
 export interface Capabilities {
   readonly shell: "electron" | "loopback";
@@ -8,4 +10,12 @@ export interface Capabilities {
   /** Path of a dropped file; null when the shell cannot know it. */
   pathOfDropped(file: unknown): string | null;
   showInFolder(path: string): Promise<void>;
+  /** The window's menus, where the shell has any. */
+  readonly menus: MenuCapability | null;
+}
+
+export interface MenuCapability {
+  show(table: MenuTable): Promise<void>;
+  /** Calls `listener` with the name of each command chosen, until the returned function is called. */
+  onChosen(listener: (name: string) => void): () => void;
 }

@@ -1,4 +1,4 @@
-import { commandFor, commandNamed } from "#renderer/editor/commands/command-table.ts";
+import { commandFor } from "#renderer/editor/commands/command-table.ts";
 import type { DeskContext } from "#renderer/editor/commands/desk-context.ts";
 import { textOfPress } from "#renderer/editor/commands/shortcut.ts";
 
@@ -21,12 +21,6 @@ export function listenToKeys(context: DeskContext): () => void {
   };
   addEventListener("keydown", onKey);
   return () => removeEventListener("keydown", onKey);
-}
-
-/** Runs a command chosen in a menu by its name. */
-export function runCommand(context: DeskContext, name: string): void {
-  const command = commandNamed(name);
-  if (command?.enabled(context)) void command.perform(context);
 }
 
 function isTyping(target: HTMLElement | null): boolean {

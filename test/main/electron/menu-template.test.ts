@@ -1,6 +1,6 @@
 import { describe, expect, it } from "vitest";
-import { menuTemplate } from "#main/electron/menu-template.ts";
-import type { MenuTable } from "#shared/api/bridge.ts";
+import { menuTemplate, shownAccelerator } from "#main/electron/menu-template.ts";
+import type { MenuTable } from "#shared/api/menu.ts";
 
 const table: MenuTable = {
   menus: [
@@ -29,6 +29,25 @@ describe("the application menu", () => {
   it("shows shortcuts without acting on them, since the page does", () => {
     const [edit] = menuTemplate(table, "linux", () => {});
     expect((edit!.submenu as object[])[0]).toMatchObject({ accelerator: "Ctrl+Z", registerAccelerator: false });
+  });
+
+  it("puts the page's words for keys into the menu's, and shows none that a menu could not read", () => {
+    const shown = (shortcut: string) => shownAccelerator(shortcut, "linux");
+    expect(["Ctrl+Shift+Z", "ArrowUp", "Alt+ArrowLeft", "?", "Space", "Enter", "+", "Ctrl++", "F1", "["].map(shown)).toEqual([
+      "Ctrl+Shift+Z",
+      "Up",
+      "Alt+Left",
+      "?",
+      "Space",
+      "Return",
+      "Plus",
+      "Ctrl+Plus",
+      "F1",
+      "[",
+    ]);
+    for (const shortcut of ["", "\u00e4", "Hyper+X", "F99", "Ctrl+"])
+      expect([shortcut, shown(shortcut)]).toEqual([shortcut, null]);
+    expect(shownAccelerator("Ctrl+Z", "darwin")).toBeNull();
   });
 
   it("begins with the application's own menu where the system has one", () => {
