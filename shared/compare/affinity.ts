@@ -6,6 +6,9 @@ import type { Vec3 } from "#shared/geometry/types.ts";
 /** Reach of the affinity, millimetres: lines farther apart attract each other no more. */
 export const AFFINITY_REACH_MM = 1;
 
+/** Step at which affinities sample lines, millimetres: well below their reach. */
+export const AFFINITY_STEP_MM = 0.1;
+
 /** Lines of one item (a tree, a strand): shape [lines][points]. */
 export type ItemLines = readonly (readonly Vec3[])[];
 

@@ -1,11 +1,8 @@
-import {
-  type CompareOptions,
-  type Comparison,
-  compareSets,
-  distancesAtMerges,
-  type TimeLeft,
-} from "#shared/compare/compare-sets.ts";
+import { comparePairs } from "#shared/compare/compare-pairs.ts";
+import { assembleComparison, distancesAtMerges, frameOfComparison } from "#shared/compare/compare-sets.ts";
+import type { CompareOptions, Comparison, TimeLeft } from "#shared/compare/comparison.ts";
 import type { EventKind } from "#shared/compare/events/events.ts";
+import { matchSets } from "#shared/compare/matched-sets.ts";
 import type { PlainSet } from "#shared/trees/plain-trees.ts";
 
 /** Limits at which reports give the accepted share. */
@@ -68,9 +65,11 @@ export function scoreCandidate(
   limit: number,
   timeLeft: TimeLeft,
 ): CandidateScore {
-  const main = compareSets(reference, candidate, options, timeLeft);
+  const matched = matchSets(reference, candidate);
+  const compared = comparePairs(matched, [...matched.pairs.keys()], options, timeLeft);
+  const main = assembleComparison(frameOfComparison(matched, options), compared.pairs, compared.warnings);
   const trees = scoredTrees(reference, main, limit);
-  const sensitivity = distancesAtMerges(reference, candidate, options, mergesOf(options.merge), timeLeft).map((at) => ({
+  const sensitivity = distancesAtMerges(matched, options, mergesOf(options.merge), timeLeft).map((at) => ({
     merge: at.merge,
     acceptedShare: trees.length === 0 ? null : at.trees.filter((distance) => isBelow(distance, limit)).length / trees.length,
     distance: at.whole,

@@ -52,3 +52,8 @@ export function centreline(strand: PlainStrand, from: PlainNode | undefined, to:
 export function strandLength(strand: PlainStrand, from: PlainNode | undefined, to: PlainNode | undefined): number {
   return polylineLength(centreline(strand, from, to));
 }
+
+/** A tree as messages call it: its name with its id, or the id alone. */
+export function nameOfTree(tree: PlainTree): string {
+  return tree.name ? `${tree.name} (${tree.id})` : tree.id;
+}

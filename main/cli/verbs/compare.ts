@@ -2,7 +2,8 @@ import { realOption, wordOption } from "#main/cli/number-option.ts";
 import { readTreeFile } from "#main/cli/read-tree-file.ts";
 import { refuseOtherFrame, scanWarnings } from "#main/cli/same-scan.ts";
 import type { Verb } from "#main/cli/verb.ts";
-import { type Comparison, compareSets } from "#shared/compare/compare-sets.ts";
+import { compareSets } from "#shared/compare/compare-sets.ts";
+import type { Comparison } from "#shared/compare/comparison.ts";
 
 /** Sampling step where A names no volume, millimetres. */
 const STEP_WITHOUT_VOLUME_MM = 0.02;

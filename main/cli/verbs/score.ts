@@ -6,7 +6,7 @@ import { type NamedTrees, refuseOtherFrame, scanWarnings } from "#main/cli/same-
 import type { Verb, VerbCall } from "#main/cli/verb.ts";
 import { diskFiles } from "#main/node/disk-files.ts";
 import { writeWhole } from "#main/node/whole-file.ts";
-import type { CompareOptions } from "#shared/compare/compare-sets.ts";
+import type { CompareOptions } from "#shared/compare/comparison.ts";
 import { TautlineError, unreadable } from "#shared/errors.ts";
 import { CHORDAE_EXTENSION, type ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
 import { failedGates, type Gates } from "#shared/score/gates.ts";

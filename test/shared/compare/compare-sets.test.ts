@@ -1,5 +1,6 @@
 import { describe, expect, it } from "vitest";
-import { type CompareOptions, compareSets } from "#shared/compare/compare-sets.ts";
+import { compareSets } from "#shared/compare/compare-sets.ts";
+import type { CompareOptions } from "#shared/compare/comparison.ts";
 import type { PlainSet, PlainTree } from "#shared/trees/plain-trees.ts";
 
 const OPTIONS: CompareOptions = {
