@@ -15,7 +15,7 @@ export function menuTable(context: DeskContext, commands: readonly Command<DeskC
     items: own
       .filter(({ name }) => !name.startsWith("cursor-"))
       .map(({ name, label, keys, enabled }) => ({
-        kind: "command",
+        kind: "command" as const,
         name,
         label,
         enabled: enabled(context),
