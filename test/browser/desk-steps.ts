@@ -9,10 +9,10 @@ export interface HeadLine {
 
 export async function headLine(page: Page): Promise<HeadLine> {
   const counts = (await page.locator(".counts").textContent()) ?? "";
-  const saved = (await page.locator(".saved-state").textContent()) ?? "";
+  const saved = (await page.locator(".saved-state .figures").textContent()) ?? "";
   const number = (text: string, pattern: RegExp) => Number((pattern.exec(text)?.[1] ?? "NaN").replace(/\s/g, ""));
   return {
-    edits: number(saved, /([\d\s]+) edits?$/),
+    edits: number(saved, /([\d\s]+) edits?/),
     trees: number(counts, /([\d\s]+) trees?/),
     open: number(counts, /(\d+) open/),
   };
@@ -50,8 +50,7 @@ export async function startPass(page: Page, annotator: string): Promise<void> {
 export async function deskReady(page: Page): Promise<void> {
   await page.locator(".section-view canvas").first().waitFor({ timeout: 60_000 });
   await page.locator(".saved-state").waitFor();
-  await page.waitForLoadState("networkidle").catch(() => undefined);
-  await page.waitForTimeout(800);
+  await page.waitForTimeout(1500);
 }
 
 /** Exports the tree file and gives where the browser put it. */

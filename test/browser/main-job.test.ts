@@ -30,7 +30,7 @@ async function traceByHand(hand: SectionHand): Promise<void> {
 
 interface Comparison {
   readonly pairs: readonly { readonly ged: number; readonly exact: boolean }[];
-  readonly overlap: { readonly meanDistance: number };
+  readonly whole: { readonly distances: { readonly mean: number } };
 }
 
 /** The program's own comparison, as a person runs it. */
@@ -105,7 +105,7 @@ describe("the main job in a real browser", () => {
     const result = JSON.parse(text) as Comparison;
     expect(result.pairs).toHaveLength(1);
     expect(result.pairs[0]).toMatchObject({ ged: 0, exact: true });
-    expect(result.overlap.meanDistance).toBeLessThan(SPACING_MM);
+    expect(result.whole.distances.mean).toBeLessThan(SPACING_MM);
   });
 
   it("met no fault on the way", () => {
