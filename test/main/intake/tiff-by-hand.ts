@@ -13,7 +13,7 @@ export interface HandTiff {
   readonly rowsPerStrip?: number;
   /** Side of square tiles, a multiple of 16. */
   readonly tile?: number;
-  readonly compression?: 1 | 8 | 32773;
+  readonly compression?: 1 | 5 | 8 | 32773;
   readonly predictor?: 1 | 2 | 3;
   /** Pixels per unit and unit code (1 none, 2 inch, 3 cm). */
   readonly resolution?: readonly [number, number, number];
@@ -57,7 +57,52 @@ function predicted(values: readonly number[], width: number, tiff: HandTiff): Ui
   return bytes;
 }
 
+/** LZW as TIFF 6.0, section 13 describes it: codes most significant bit first, wider once entries 511, 1023, 2047 are added. */
+function lzw(bytes: Uint8Array): Uint8Array {
+  const out: number[] = [];
+  let [held, bits, width] = [0, 0, 9];
+  const emit = (code: number) => {
+    held = held * 2 ** width + code;
+    bits += width;
+    while (bits >= 8) {
+      bits -= 8;
+      out.push(Math.floor(held / 2 ** bits));
+      held %= 2 ** bits;
+    }
+  };
+  let table = new Map<string, number>();
+  const reset = () => {
+    table = new Map(Array.from({ length: 256 }, (_, k) => [String.fromCharCode(k), k]));
+    table.set("clear", 256).set("end", 257);
+  };
+  reset();
+  emit(256);
+  let run = "";
+  for (const byte of bytes) {
+    const longer = run + String.fromCharCode(byte);
+    if (table.has(longer)) {
+      run = longer;
+      continue;
+    }
+    emit(table.get(run)!);
+    const entry = table.size;
+    table.set(longer, entry);
+    if (entry === 511 || entry === 1023 || entry === 2047) width++;
+    if (entry === 4094) {
+      emit(256);
+      reset();
+      width = 9;
+    }
+    run = String.fromCharCode(byte);
+  }
+  if (run !== "") emit(table.get(run)!);
+  emit(257);
+  if (bits > 0) out.push((held * 2 ** (8 - bits)) & 255);
+  return Uint8Array.from(out);
+}
+
 function packed(bytes: Uint8Array, compression: number): Uint8Array {
+  if (compression === 5) return lzw(bytes);
   if (compression === 8) return deflateSync(bytes);
   if (compression === 32773) {
     // PackBits with literal runs of one to 128 bytes only: valid, and all a decoder must know besides repeats.

@@ -48,6 +48,7 @@ describe("a multi-page TIFF", () => {
     ["tiles of 16", { tile: 16 }],
     ["deflate strips", { rowsPerStrip: 4, compression: 8 }],
     ["deflate tiles", { tile: 16, compression: 8 }],
+    ["LZW strips", { rowsPerStrip: 4, compression: 5 }],
     ["PackBits strips", { rowsPerStrip: 5, compression: 32773 }],
     ["64-bit offsets", { big: true, rowsPerStrip: 3 }],
   ];
@@ -60,6 +61,15 @@ describe("a multi-page TIFF", () => {
           expect(await voxelsOf(path), dtype).toEqual(pages.flat());
         }
       });
+
+  it("with LZW strips long enough to fill the table gives its values", async () => {
+    const random = seeded(8);
+    const page = Array.from({ length: 120 * 90 }, () => Math.floor(random() * 3000));
+    for (const predictor of [1, 2] as const) {
+      const path = await writeTiff({ width: 120, height: 90, pages: [page, page], dtype: "uint16", compression: 5, predictor });
+      expect(await voxelsOf(path)).toEqual([...page, ...page]);
+    }
+  });
 
   it.each([
     ["uint8", 2],
