@@ -29,7 +29,7 @@ export function uprightOf(valve: ValveAxes | null): Upright {
 }
 
 /** The corners of a scan's box hold air: so much of its half diagonal is enough to see the whole valve. */
-const FILLED_SHARE = 0.8;
+const FILLED_SHARE = 0.88;
 
 /** The valve inside a scan of half diagonal `radiusMm` about `centre`, from the front and a little from above. @param aspect width / height of the pane */
 export function orbitAround(centre: PointMm, radiusMm: number, aspect: number): Orbit {

@@ -1,16 +1,5 @@
 import "#renderer/space/space.css";
-import {
-  AmbientLight,
-  Color,
-  DirectionalLight,
-  Matrix4,
-  type Object3D,
-  PerspectiveCamera,
-  type Points,
-  Scene,
-  WebGLRenderer,
-} from "three";
-import { GlyphTextures } from "#renderer/space/glyph-textures.ts";
+import { AmbientLight, Color, DirectionalLight, Matrix4, PerspectiveCamera, Scene, WebGLRenderer } from "three";
 import {
   approached,
   lookingAlong,
@@ -24,23 +13,12 @@ import {
   viewerAxes,
 } from "#renderer/space/orbit.ts";
 import { pickInSpace } from "#renderer/space/pick.ts";
-import {
-  freePart,
-  guidePart,
-  nodesPart,
-  pinsPart,
-  planePart,
-  selectionPart,
-  sizeGlyphs,
-  strandsPart,
-  surfacePart,
-} from "#renderer/space/scene-parts.ts";
+import { SceneStore } from "#renderer/space/scene-store.ts";
 import type { SpaceContent, SpaceEvents, SpaceHit } from "#renderer/space/space-content.ts";
 import { listenToSpace } from "#renderer/space/space-input.ts";
 import { type PointMm, pointMm } from "#shared/geometry/types.ts";
 import { cross } from "#shared/geometry/vec3.ts";
-import { coloursFrom, type ViewColours } from "#shared/marks/colours.ts";
-import { type DrawnStrand, drawnStrands } from "#shared/marks/drawn-strand.ts";
+import { coloursFrom } from "#shared/marks/colours.ts";
 
 export const EMPTY_SPACE: SpaceContent = {
   document: null,
@@ -55,14 +33,12 @@ export const EMPTY_SPACE: SpaceContent = {
   caption: "",
 };
 
-type PartName = "strands" | "nodes" | "selection" | "guide" | "pins" | "plane" | "surface";
-
 const NO_WEBGL = "This computer's browser offers no WebGL, so the view in space stays empty. All else works.";
 const LOST_WEBGL = "The graphics were lost for a moment; the view comes back by itself.";
 /** After this long without movement the full picture is drawn. */
 const STILL_AFTER_MS = 160;
-/** While moving, one surface point of so many is drawn, and so much of the resolution each way. */
-const MOVING_SHARE = 4;
+/** While moving, such a share of the surface points is drawn, and such a share of the resolution each way. */
+const MOVING_SHARE = 1 / 4;
 const MOVING_RESOLUTION = 0.5;
 
 /** The trees in space inside a host element, which it fills. Draws on change only; without WebGL it says so and stays still. */
@@ -72,15 +48,12 @@ export class SpaceView {
   readonly element = document.createElement("div");
   private content = EMPTY_SPACE;
   private orbit: Orbit = orbitAround(EMPTY_SPACE.bounds.centre, EMPTY_SPACE.bounds.radiusMm, 1);
-  private drawn: DrawnStrand[] = [];
   private readonly note = document.createElement("p");
   private readonly renderer: WebGLRenderer | null;
   private readonly scene = new Scene();
   private readonly camera = new PerspectiveCamera(OPENING_DEG);
   private readonly lamp = new DirectionalLight(0xffffff, 2.1);
-  private readonly glyphs = new GlyphTextures();
-  private readonly parts = new Map<PartName, Object3D>();
-  private readonly stale = new Set<PartName>();
+  private readonly store = new SceneStore(this.scene);
   private readonly watcher: ResizeObserver | null = null;
   private readonly stopListening: () => void = () => undefined;
   private size = { width: 0, height: 0 };
@@ -146,15 +119,7 @@ export class SpaceView {
     this.content = { ...before, ...change };
     const now = this.content;
     if (!this.available) return;
-    if (now.document !== before.document) {
-      this.drawn = now.document === null ? [] : drawnStrands(now.document);
-      this.spoil("strands", "nodes", "selection");
-    }
-    if (now.selection !== before.selection) this.spoil("selection");
-    if (now.guide !== before.guide) this.spoil("guide");
-    if (now.pins !== before.pins) this.spoil("pins");
-    if (now.plane !== before.plane || now.picture !== before.picture) this.spoil("plane");
-    if (now.surface !== before.surface) this.spoil("surface");
+    this.store.changed(before, now);
     if ((now.bounds !== before.bounds || now.valve !== before.valve) && !this.touched) this.orbit = this.whole();
     this.say(now.caption);
     this.redraw();
@@ -191,7 +156,7 @@ export class SpaceView {
 
   /** Reads the theme's colours again (after a change of theme). */
   themeChanged(): void {
-    this.spoil("strands", "nodes", "selection", "guide", "pins", "plane", "surface");
+    this.store.changedColours();
     this.redraw();
   }
 
@@ -200,9 +165,7 @@ export class SpaceView {
     clearTimeout(this.stillTimer);
     this.stopListening();
     this.watcher?.disconnect();
-    for (const part of this.parts.values()) freePart(part);
-    this.parts.clear();
-    this.glyphs.dispose();
+    this.store.dispose();
     this.renderer?.dispose();
     this.renderer?.forceContextLoss();
     this.element.remove();
@@ -237,7 +200,7 @@ export class SpaceView {
     this.placeCamera();
     const matrix = new Matrix4().multiplyMatrices(this.camera.projectionMatrix, this.camera.matrixWorldInverse);
     const nodes = this.content.document?.nodes.values() ?? [];
-    const what = { strands: this.drawn, nodes, surface: this.content.surface };
+    const what = { strands: this.store.strands, nodes, surface: this.content.surface };
     return pickInSpace(what, { matrix: matrix.elements, ...this.size }, x, y);
   }
 
@@ -261,50 +224,6 @@ export class SpaceView {
     this.lamp.target.updateMatrixWorld();
   }
 
-  private spoil(...names: PartName[]): void {
-    for (const name of names) this.stale.add(name);
-  }
-
-  private rebuild(colours: ViewColours): void {
-    for (const name of this.stale) {
-      const before = this.parts.get(name);
-      if (before !== undefined) {
-        this.scene.remove(before);
-        freePart(before);
-        this.parts.delete(name);
-      }
-      const part = this.build(name, colours);
-      if (part === null) continue;
-      this.scene.add(part);
-      this.parts.set(name, part);
-    }
-    this.stale.clear();
-  }
-
-  private build(name: PartName, colours: ViewColours): Object3D | null {
-    const { document, guide, pins, plane, picture, surface, selection } = this.content;
-    switch (name) {
-      case "strands":
-        return this.drawn.length === 0 ? null : strandsPart(this.drawn, colours);
-      case "nodes":
-        return document === null ? null : nodesPart(document.nodes.values(), colours, this.glyphs);
-      case "selection": {
-        const chosen = this.drawn.filter(
-          (strand) => strand.id === selection.strand || (selection.strand === undefined && strand.tree === selection.tree),
-        );
-        return chosen.length === 0 ? null : selectionPart(chosen, colours);
-      }
-      case "guide":
-        return guide === null || guide.length < 6 ? null : guidePart(guide, colours);
-      case "pins":
-        return pins.length === 0 ? null : pinsPart(pins, colours, this.glyphs);
-      case "plane":
-        return plane === null ? null : planePart(plane, picture, colours);
-      case "surface":
-        return surface === null ? null : surfacePart(surface, colours);
-    }
-  }
-
   private resize(): void {
     const { clientWidth: width, clientHeight: height } = this.element;
     this.size = { width, height };
@@ -326,16 +245,8 @@ export class SpaceView {
     const style = getComputedStyle(this.element);
     const colours = coloursFrom((name) => style.getPropertyValue(name));
     this.scene.background = new Color(style.backgroundColor);
-    this.rebuild(colours);
-    const surface = this.parts.get("surface") as Points | undefined;
-    if (surface !== undefined) {
-      const count = surface.geometry.getAttribute("position").count;
-      surface.geometry.setDrawRange(0, this.moving ? Math.ceil(count / MOVING_SHARE) : count);
-    }
-    for (const name of ["nodes", "pins"] as const) {
-      const part = this.parts.get(name);
-      if (part !== undefined) sizeGlyphs(part, mmPerPixel(this.orbit, this.size.height));
-    }
+    this.store.refresh(this.content, colours);
+    this.store.fitTo(mmPerPixel(this.orbit, this.size.height), this.moving ? MOVING_SHARE : 1);
     const ratio = (globalThis.devicePixelRatio || 1) * (this.moving ? MOVING_RESOLUTION : 1);
     if (this.renderer.getPixelRatio() !== ratio) this.renderer.setPixelRatio(ratio);
     this.placeCamera();
