@@ -23,9 +23,10 @@ export async function run(args: readonly string[], verbs: readonly Verb[], io: C
     const { values, positionals } = parse(verb, rest);
     const result = await verb.run({ positionals, options: values, io, say: (line) => io.stderr(`${line}\n`) });
     if (io.signal.aborted) throw new TautlineError("cancelled", "Interrupted.", { what: verb.name });
-    io.stdout(
-      values.json === true ? `${JSON.stringify(result.json)}\n` : result.text.endsWith("\n") ? result.text : `${result.text}\n`,
-    );
+    for (const note of result.notes ?? []) io.stderr(`${note}\n`);
+    if (result.lines) io.stdout(result.lines.map((line) => `${line}\n`).join(""));
+    else if (values.json === true) io.stdout(`${JSON.stringify(result.json)}\n`);
+    else io.stdout(result.text.endsWith("\n") ? result.text : `${result.text}\n`);
     return result.exit;
   } catch (error) {
     if (io.signal.aborted) {

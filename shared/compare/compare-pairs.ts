@@ -13,15 +13,15 @@ import { nameOfTree } from "#shared/trees/plain-trees.ts";
  * The comparison of some of the matched pairs. A pair's answer does not depend on which others are asked for (short of the
  * time running out), so that pairs can be spread over threads and machines.
  * @param which numbers of pairs in `matched.pairs`.
+ * @returns the compared pairs and, beside each, sentences on what could not be done as asked.
  */
 export function comparePairs(
   matched: MatchedSets,
   which: readonly number[],
   options: CompareOptions,
   timeLeft: TimeLeft,
-): { pairs: ComparedPair[]; warnings: string[] } {
+): { pairs: ComparedPair[]; warnings: string[][] } {
   const { a, b, linesA, linesB, table } = matched;
-  const warnings: string[] = [];
   const costs = costsOf(options);
   const chosen = which.map((k) => matched.pairs[k]!);
   const canonical = chosen.map(
@@ -34,11 +34,6 @@ export function comparePairs(
   const pairs = chosen.map(([i, j], k): ComparedPair => {
     const found = distances[k]!;
     const [canonA, canonB] = canonical[k]!;
-    if (found.originFreed) {
-      warnings.push(
-        `${nameOfTree(a.trees[i]!)} against ${nameOfTree(b.trees[j]!)}: one of them has no single root, so the origins were not held.`,
-      );
-    }
     return {
       a: a.trees[i]!.id,
       b: b.trees[j]!.id,
@@ -53,6 +48,10 @@ export function comparePairs(
       events: events[which[k]!]!,
       ...overlapOf(linesA[i]!, linesB[j]!, overlapOptions(options)),
     };
+  });
+  const warnings = chosen.map(([i, j], k) => {
+    const freed = `${nameOfTree(a.trees[i]!)} against ${nameOfTree(b.trees[j]!)}: one of them has no single root, so the origins were not held.`;
+    return distances[k]!.originFreed ? [freed] : [];
   });
   return { pairs, warnings };
 }

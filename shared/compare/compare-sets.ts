@@ -18,7 +18,7 @@ import type { RootedStrand } from "#shared/trees/rooted-strands.ts";
 export function compareSets(a: PlainSet, b: PlainSet, options: CompareOptions, timeLeft: TimeLeft): Comparison {
   const matched = matchSets(a, b);
   const { pairs, warnings } = comparePairs(matched, [...matched.pairs.keys()], options, timeLeft);
-  return assembleComparison(frameOfComparison(matched, options), pairs, warnings);
+  return assembleComparison(frameOfComparison(matched, options), pairs, warnings.flat());
 }
 
 /** Everything of a comparison but its pairs; `whole` lacks what is summed over them. */

@@ -67,7 +67,7 @@ export function scoreCandidate(
 ): CandidateScore {
   const matched = matchSets(reference, candidate);
   const compared = comparePairs(matched, [...matched.pairs.keys()], options, timeLeft);
-  const main = assembleComparison(frameOfComparison(matched, options), compared.pairs, compared.warnings);
+  const main = assembleComparison(frameOfComparison(matched, options), compared.pairs, compared.warnings.flat());
   const trees = scoredTrees(reference, main, limit);
   const sensitivity = distancesAtMerges(matched, options, mergesOf(options.merge), timeLeft).map((at) => ({
     merge: at.merge,

@@ -1,15 +1,21 @@
+import { COMPARE_HELP, COMPARE_OPTIONS, compareOptionsOf } from "#main/cli/compare-options.ts";
 import { realOption, wordOption } from "#main/cli/number-option.ts";
 import { readTreeFile } from "#main/cli/read-tree-file.ts";
 import { refuseOtherFrame, scanWarnings } from "#main/cli/same-scan.ts";
-import type { Verb } from "#main/cli/verb.ts";
-import { compareSets } from "#shared/compare/compare-sets.ts";
-import type { Comparison } from "#shared/compare/comparison.ts";
+import { itemsOf, runShared, SHARE_HELP, SHARE_OPTIONS, shareLines } from "#main/cli/shares.ts";
+import type { SharedVerb } from "#main/cli/verb.ts";
+import { comparePairs } from "#shared/compare/compare-pairs.ts";
+import { assembleComparison, type ComparisonFrame, frameOfComparison } from "#shared/compare/compare-sets.ts";
+import type { ComparedPair, Comparison } from "#shared/compare/comparison.ts";
+import { matchSets } from "#shared/compare/matched-sets.ts";
 
-/** Sampling step where A names no volume, millimetres. */
-const STEP_WITHOUT_VOLUME_MM = 0.02;
+interface PairItem {
+  readonly pair: ComparedPair;
+  readonly warnings: readonly string[];
+}
 
 /** `tautline compare`: how far the trees of B are from those of A. */
-export const compare: Verb = {
+export const compare: SharedVerb = {
   name: "compare",
   summary: "two tree files: which tree is which, edit distance with proof, events, overlap, distances",
   help: `tautline compare A B [options] [--json]
@@ -19,46 +25,50 @@ distance with proven bounds, the script, and the differences as events.
 
   --costs geometry|structure   what an edit costs (geometry)
   --origin held|free           whether the two origins are mapped to each other (held)
-  --position-scale mm          displacement that costs as much as an insertion; geometry only (2)
-  --merge mm                   forks joined by shorter strands are one (0.3)
-  --tolerance mm               within which lines and places agree (0.5)
-  --minimum-diameter mm        stretches of A at least this thick count for OT (OT is not given without it)
-  --seconds s                  wall time for the whole call; bounds are proven when it ends (30)`,
+${COMPARE_HELP}
+  --seconds s                  wall time for the whole call; bounds are proven when it ends (30)
+${SHARE_HELP}`,
   options: {
     costs: { type: "string" },
     origin: { type: "string" },
-    "position-scale": { type: "string" },
-    merge: { type: "string" },
-    tolerance: { type: "string" },
-    "minimum-diameter": { type: "string" },
     seconds: { type: "string" },
+    ...COMPARE_OPTIONS,
+    ...SHARE_OPTIONS,
   },
   positionals: [2, 2],
-  async run({ positionals, options, io, say }) {
+  run: (call) => runShared(compare, call),
+
+  async share({ positionals, options }, share) {
     const began = performance.now();
     const seconds = realOption(options, "seconds", 30);
     const preset = wordOption(options, "costs", ["geometry", "structure"]) ?? "geometry";
     const origin = wordOption(options, "origin", ["held", "free"]) ?? "held";
-    const positionScale = realOption(options, "position-scale", 2);
-    const merge = realOption(options, "merge", 0.3, 0, true);
-    const tolerance = realOption(options, "tolerance", 0.5);
-    const minimumDiameter = realOption(options, "minimum-diameter", null);
     const named = await Promise.all(positionals.map(async (name) => ({ name, file: await readTreeFile(name) })));
     const [reference, other] = [named[0]!, named[1]!];
     refuseOtherFrame(reference, other);
-    const warnings = scanWarnings(reference, other);
-    const timeLeft = () => (io.signal.aborted ? 0 : seconds * 1000 - (performance.now() - began));
-    const spacing = reference.file.volume?.spacing;
-    const step = spacing ? Math.min(...spacing) / 2 : STEP_WITHOUT_VOLUME_MM;
-    const found = compareSets(
-      reference.file,
-      other.file,
-      { preset, origin, positionScale, merge, tolerance, minimumDiameter, step },
-      timeLeft,
+    const compareOptions = compareOptionsOf(options, reference.file, { preset, origin });
+    const matched = matchSets(reference.file, other.file);
+    const numbers = itemsOf(share, matched.pairs.length);
+    const found = comparePairs(matched, numbers, compareOptions, () => seconds * 1000 - (performance.now() - began));
+    const head = { files: positionals, options: compareOptions };
+    const frame = () => ({ ...frameOfComparison(matched, compareOptions), scanWarnings: scanWarnings(reference, other) });
+    const item = (k: number): PairItem => ({
+      pair: found.pairs[numbers.indexOf(k)]!,
+      warnings: found.warnings[numbers.indexOf(k)]!,
+    });
+    return shareLines("compare", share, head, matched.pairs.length, frame, item);
+  },
+
+  gather({ frame, items }) {
+    const { scanWarnings: ofScan, ...rest } = frame as ComparisonFrame & { scanWarnings: string[] };
+    const pairs = items as readonly PairItem[];
+    const warnings = [...ofScan, ...pairs.flatMap((item) => item.warnings)];
+    const answer = assembleComparison(
+      rest,
+      pairs.map((item) => item.pair),
+      warnings,
     );
-    const answer: Comparison = { ...found, warnings: [...warnings, ...found.warnings] };
-    for (const warning of answer.warnings) say(`Warning: ${warning}`);
-    return { json: answer, text: inWords(answer), exit: 0 };
+    return { json: answer, text: inWords(answer), exit: 0, notes: answer.warnings.map((warning) => `Warning: ${warning}`) };
   },
 };
 
