@@ -20,9 +20,12 @@ import type { Engine, HistogramAnswer, Ticket } from "#shared/api/engine.ts";
 import type { SpecimenRecord } from "#shared/api/specimen.ts";
 import { TautlineError } from "#shared/errors.ts";
 
+/** What the engine needs to know of a specimen. */
+export type OpenedRecord = Pick<SpecimenRecord, "volume" | "polarity">;
+
 export interface EngineOptions {
   /** Folder and record of a specimen. @throws not-found */
-  readonly library: (specimen: string) => Promise<{ readonly folder: string; readonly record: Pick<SpecimenRecord, "volume"> }>;
+  readonly library: (specimen: string) => Promise<{ readonly folder: string; readonly record: OpenedRecord }>;
   /** The built worker, `engine-worker.mjs`. */
   readonly workerUrl: URL;
   /** Most memory for bricks, ridge tiles and fronts together; 512 MB when not given. */
@@ -101,7 +104,7 @@ export function createEngine(options: EngineOptions): LocalEngine {
     if (known) return known;
     const opened = options.library(specimen).then(({ folder, record }): StoreRef => {
       storeNumbers++;
-      return { number: storeNumbers, folder, volume: record.volume };
+      return { number: storeNumbers, folder, volume: record.volume, polarity: record.polarity };
     });
     stores.set(specimen, opened);
     opened.catch(() => stores.delete(specimen));
@@ -165,7 +168,12 @@ export function createEngine(options: EngineOptions): LocalEngine {
     async histogram(specimen) {
       const known = histograms.get(specimen);
       if (known) return known;
-      const made = storeOf(specimen).then((store) => pool.run("histogram", store, null, { workers: job }));
+      const made = storeOf(specimen).then((store) => {
+        const answer = pool.run("histogram", store, null, { workers: job });
+        // Who asks for the histogram opens a desk, and will trace: the tracing worker gets ready. Faults show when it is asked.
+        pool.run("warm", store, null, { workers: guide }).catch(() => {});
+        return answer;
+      });
       histograms.set(specimen, made);
       made.catch(() => histograms.delete(specimen));
       return made;

@@ -67,6 +67,9 @@ export class TaskRunner {
         const context = this.#contexts.of(store.number, pyramid, parameters.polarity);
         return { curves: strands.map((strand) => curveOf(solveStrand(pyramid, strand, parameters, signal, context))) };
       }
+      case "warm":
+        this.#contexts.warm(store.number, pyramid, store.polarity);
+        return null;
       case "open-guide":
         this.guides.open(store.number, pyramid, input as Input<"open-guide">);
         return null;

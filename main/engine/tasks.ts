@@ -20,7 +20,7 @@ import type { BinaryFrame } from "#shared/api/frame.ts";
 import type { SpecimenVolume } from "#shared/api/specimen.ts";
 import type { ErrorBody } from "#shared/errors.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
-import type { TraceParameters } from "#shared/tracing/strand-request.ts";
+import type { Polarity, TraceParameters } from "#shared/tracing/strand-request.ts";
 
 /** A specimen's store as workers know it; a store that is forgotten and opened again has another number. */
 export interface StoreRef {
@@ -28,6 +28,8 @@ export interface StoreRef {
   /** The specimen's folder. */
   readonly folder: string;
   readonly volume: SpecimenVolume;
+  /** As the person confirmed it; requests carry their own. */
+  readonly polarity: Polarity;
 }
 
 /** A guide session; complete, so that any worker can make it (again) from this alone. */
@@ -47,6 +49,7 @@ export interface EngineTasks {
   histogram: { input: null; answer: HistogramAnswer };
   snap: { input: SnapRequest; answer: SnapAnswer };
   solve: { input: SolveRequest; answer: { curves: readonly SolvedCurve[] } };
+  warm: { input: null; answer: null };
   "open-guide": { input: GuideRef; answer: null };
   "preview-guide": { input: { guide: GuideRef; to: PointMm }; answer: GuidePreviewAnswer };
   figures: { input: null; answer: CacheFigures };

@@ -1,4 +1,4 @@
-import { RIDGE_TILE_VOXELS } from "#shared/tracing/ridge/ridge-tiles.ts";
+import { RIDGE_TILE_SIDE, RIDGE_TILE_VOXELS } from "#shared/tracing/ridge/ridge-tiles.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 import { createTraceContext, type TraceContext } from "#shared/tracing/trace-context.ts";
 import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
@@ -33,6 +33,13 @@ export class TraceContexts {
     this.#kept.set(key, context);
     if (this.#kept.size > MOST_CONTEXTS) this.#kept.delete(this.#kept.keys().next().value!);
     return context;
+  }
+
+  /** Makes a context and one ridge tile in the middle of the scan, so that the first pin does not wait for what all need. */
+  warm(store: number, pyramid: VoxelPyramid, polarity: Polarity): void {
+    const { ridges, workingLevel } = this.of(store, pyramid, polarity);
+    const middle = (axis: 0 | 1 | 2) => Math.floor(pyramid.levels[workingLevel]!.size[axis] / 2 / RIDGE_TILE_SIDE);
+    ridges.tile(workingLevel, middle(0), middle(1), middle(2));
   }
 
   forget(store: number): void {

@@ -8,7 +8,11 @@ import { type PointMm, pointMm } from "#shared/geometry/types.ts";
 import { bricksOf } from "#shared/volume/bricks.ts";
 import { plainGrid } from "#shared/volume/grid.ts";
 import { memoryPyramid } from "#shared/volume/memory-pyramid.ts";
+import { scanHistogram } from "#shared/volume/scan-histogram.ts";
 import { section } from "#shared/volume/section.ts";
+import { film, strip } from "#shared/volume/strip.ts";
+import { surfacePoints } from "#shared/volume/surface-points.ts";
+import { valueAt } from "#shared/volume/value-at.ts";
 import { scratchFolder, seeded, type TestSpecimen, writeSpecimen, writeVastSpecimen } from "#test/main/engine/write-store.ts";
 
 // Threads run the built worker (`npm run build`): Node 20 does not load TypeScript in a worker.
@@ -132,6 +136,20 @@ describe("The engine over worker threads", { timeout: 240_000 }, () => {
     }
   });
 
+  test("answers values, histogram, surface, strip and film as the kernels do over the scan in memory", async () => {
+    start();
+    const points = [10, 40, 80].flatMap((x) => [...windingString(x)]);
+    const shown = { ticket: ticket("space"), specimen: "hb-07", points, low: 900, high: 3000, halfWidthMm: 0.5 } as const;
+    const onStrip = { ...shown, width: 40, height: 90, turn: 20 };
+    const onFilm = { ...shown, count: 6, side: 24 };
+    const onSurface = { ticket: ticket("space"), specimen: "hb-07", limit: 500, polarity: "bright" } as const;
+    expect(await engine!.strip(onStrip)).toEqual(strip(inMemory, onStrip));
+    expect(await engine!.film(onFilm)).toEqual(film(inMemory, onFilm));
+    expect(await engine!.surface(onSurface)).toEqual(surfacePoints(inMemory, onSurface));
+    expect(await engine!.value("hb-07", windingString(50))).toEqual(valueAt(inMemory, windingString(50)));
+    expect(await engine!.histogram("hb-07")).toEqual(scanHistogram(inMemory, specimen.record.volume.range));
+  });
+
   test("many workers at once over a cache of few slots: every picture right, slots reused, nothing pinned afterwards", async () => {
     // 86 slots for four workers; the scan has 100 bricks and the vast one far more.
     start({ workers: 4, cacheBytes: 12 * MIB });
@@ -163,11 +181,13 @@ describe("The engine over worker threads", { timeout: 240_000 }, () => {
   test("workers that need the same bricks at the same time load each of them once", async () => {
     start({ workers: 2 });
     await engine!.section(sectionRequest(7, { plane: plane(7, 400, 400) }));
+    await quiet();
     const alone = (await engine!.figures()).loads;
     await engine!.close();
     start({ workers: 6, cacheBytes: 256 * MIB });
     const same = Array.from({ length: 24 }, () => sectionRequest(7, { plane: plane(7, 400, 400), ticket: ticket("job") }));
     await Promise.all(same.map((request) => engine!.section(request)));
+    await quiet();
     const figures = await engine!.figures();
     expect(alone).toBeGreaterThan(20);
     expect(figures.loads).toBe(alone);
@@ -186,6 +206,7 @@ describe("The engine over worker threads", { timeout: 240_000 }, () => {
         }),
       );
     await across(0);
+    await quiet();
     const before = process.memoryUsage().rss;
     let highest = before;
     for (let n = 1; n < 24; n++) {
