@@ -14,7 +14,7 @@ describe("the demo valve over the server", () => {
   const jobs: JobState[] = [];
   beforeAll(async () => {
     where = await place();
-    server = await startServer(where);
+    server = await startServer(where, ["--port", "0", "--grace", "600"]);
     const ended = followJobs(server, jobs);
     await server.call("POST", "/api/demo", {});
     await ended;
