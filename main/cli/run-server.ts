@@ -53,7 +53,7 @@ async function runElectron(binary: string, program: ProgramFiles, options: Serve
 async function runLoopback(program: ProgramFiles, options: ServerOptions, hasElectron: boolean, io: ServerIo): Promise<number> {
   const root = libraryFolder(options.library, io.env);
   const state = stateFolder(io.env);
-  const show = (instance: RunningInstance & { opener: string }, already: boolean) =>
+  const show = (instance: ShownInstance, already: boolean) =>
     showPage(instance, { already, state, hasElectron, open: options.open }, io);
   const ended = new AbortController();
   const onFault = (error: unknown) =>
@@ -83,16 +83,23 @@ async function runLoopback(program: ProgramFiles, options: ServerOptions, hasEle
     });
     try {
       const instance = { origin: loopback.origin, token };
-      await show({ ...instance, ...(await noteInstance(state, root, instance)) }, false);
+      // Where the private folder cannot be written, the page still opens by its address.
+      const { opener } = await noteInstance(state, root, instance).catch(() => ({ opener: null }));
+      await show({ ...instance, opener }, false);
       await Promise.race([aborted(io.signal), aborted(ended.signal)]);
     } finally {
       await loopback.close();
-      await forgetInstance(state, root);
+      await forgetInstance(state, root).catch(() => undefined);
     }
   } finally {
     await workplace.close();
   }
   return 0;
+}
+
+interface ShownInstance extends RunningInstance {
+  /** The private file that leads a browser to the page; null when it could not be written. */
+  readonly opener: string | null;
 }
 
 interface Showing {
@@ -103,21 +110,21 @@ interface Showing {
 }
 
 /** Opens the page where that is possible and says, in one line and the address, what happens instead of what one expects. */
-async function showPage(instance: RunningInstance & { opener: string }, showing: Showing, io: ServerIo): Promise<void> {
+async function showPage(instance: ShownInstance, showing: Showing, io: ServerIo): Promise<void> {
   const url = pageUrl(instance);
-  const browser = showing.open && hasDisplay(io.env) ? findBrowser(io.env) : null;
-  const opened = browser !== null && (await openWindow(browser, windowArguments(browser, showing.state, instance.opener, url)));
+  const { opener } = instance;
+  const browser = showing.open && opener !== null && hasDisplay(io.env) ? findBrowser(io.env) : null;
+  const opened =
+    browser !== null && opener !== null && (await openWindow(browser, windowArguments(browser, showing.state, opener, url)));
   const reason = showing.already
     ? "Tautline is already running on this library"
     : showing.hasElectron
       ? "Tautline is running"
       : "The Electron binary is not installed here";
-  const instead = opened
-    ? "the page opens in a browser window, served on this computer only."
-    : showing.open && !hasDisplay(io.env)
-      ? "there is no display either: open this address in a browser on this computer."
-      : "open this address in a browser on this computer.";
-  io.say(`${reason}: ${instead}`.replace("here: there is no display either:", "here and there is no display:"));
+  const byAddress = "open this address in a browser on this computer.";
+  const noDisplay = showing.open && !hasDisplay(io.env);
+  if (opened) io.say(`${reason}: the page opens in a browser window, served on this computer only.`);
+  else io.say(noDisplay ? `${reason} and there is no display: ${byAddress}` : `${reason}: ${byAddress}`);
   io.say(url);
 }
 

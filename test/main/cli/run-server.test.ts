@@ -81,6 +81,14 @@ describe("npm start without the Electron binary", () => {
     expect((await fetch(server.origin)).status).toBe(200);
   });
 
+  it("opens by its address also where the user's private folder cannot be written", async () => {
+    await writeFile(join(where.folder, "state"), "a file in its place");
+    const server = await start();
+    expect((await server.call("GET", "/api/hello")).status).toBe(200);
+    server.child.kill("SIGINT");
+    expect(await server.ended).toBe(0);
+  });
+
   it("takes another port when the preferred one is taken", async () => {
     const other = createServer();
     await new Promise<void>((resolve) => other.listen(0, "127.0.0.1", resolve));
