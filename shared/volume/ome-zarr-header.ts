@@ -104,10 +104,10 @@ export function scanOfOmeZarr(
     throw unreadable(file, `an array of ${image.axes.length} axes`, `${shape.length}`, image.path);
   if (!shape.every((side) => Number.isSafeInteger(side) && side >= 1 && side < 2 ** 31))
     throw unreadable(file, "sides from 1 to 2147483647", shape.join(" x "), image.path);
-  const isSpace = (axis: Axis) => axis.type === "space" || (axis.type === "" && /^[xyz]$/.test(axis.name));
+  const isSpace = (axis: Axis) => axis.type === "space" || (axis.type === "" && /^[xyz]$/i.test(axis.name));
   const space = image.axes.flatMap((axis, k) => (isSpace(axis) ? [k] : []));
   const names = space.map((k) => image.axes[k]!.name).join(", ");
-  if (names !== "z, y, x") throw unreadable(file, "axes of space z, y, x in this order", names || "none", "axes");
+  if (names.toLowerCase() !== "z, y, x") throw unreadable(file, "axes of space z, y, x in this order", names || "none", "axes");
   const selection = image.axes.map((axis, k): "space" | number => {
     if (space.includes(k)) return "space";
     const kind = axis.type === "time" ? "time" : "channel";

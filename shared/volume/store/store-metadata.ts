@@ -61,7 +61,8 @@ export function groupMetadata(
     };
   });
   const axes = ["z", "y", "x"].map((axis) => ({ name: axis, type: "space", unit: "millimeter" }));
-  const multiscale = { name, axes, datasets, type: "mean of the existing children" };
+  const description = "Each voxel is the mean of its existing children; integers are rounded half up.";
+  const multiscale = { name, axes, datasets, type: "mean", metadata: { description } };
   const { frame, origin, direction } = grid;
   return {
     zarr_format: 3,

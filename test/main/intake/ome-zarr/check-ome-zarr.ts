@@ -1,5 +1,5 @@
-// The rules of OME-Zarr 0.5 and Zarr v3 that a multiscale image must keep, from the published specifications (from memory):
-// OME-Zarr 0.5 "OME-Zarr Metadata" (multiscales, axes, coordinateTransformations) and Zarr v3 core (groups, arrays, codecs).
+// The rules of OME-Zarr 0.5 for images (its sections "axes", "coordinateTransformations" and "multiscales", MUST and SHOULD
+// alike) and those of Zarr v3 (core from memory; codecs `bytes` and `sharding_indexed`, version 1.0, read).
 import { readdir, readFile, stat } from "node:fs/promises";
 import { join } from "node:path";
 
@@ -21,6 +21,8 @@ export async function breachesOfOmeZarr(folder: string): Promise<string[]> {
   for (const image of multiscales ?? []) {
     must(image.version === undefined, "the version stands under 'ome', not in a multiscale, since 0.5");
     must(typeof image.name === "string", "a multiscale should have a name");
+    must(typeof image.type === "string", "a multiscale should name its way of downscaling");
+    must(typeof image.metadata === "object" && image.metadata !== null, "a multiscale should have metadata on its downscaling");
     const axes = image.axes as Json[];
     must(axes.length >= 2 && axes.length <= 5, "2 to 5 axes");
     must(new Set(axes.map((axis) => axis.name)).size === axes.length, "names of axes are unique");
@@ -35,8 +37,9 @@ export async function breachesOfOmeZarr(folder: string): Promise<string[]> {
       "axes of space come last",
     );
     must(spaces.length !== 3 || spaces.map((axis) => axis.name).join("") === "zyx", "three axes of space should be z, y, x");
-    // UDUNITS-2 names; the list of the specification is longer.
-    const units = ["angstrom", "nanometer", "micrometer", "millimeter", "centimeter", "meter"];
+    const prefixes = "atto centi deci exa femto giga hecto kilo mega micro milli nano peta pico tera yocto yotta zepto zetta";
+    const metres = ["", ...prefixes.split(" ")].map((prefix) => `${prefix}meter`);
+    const units = [...metres, "angstrom", "foot", "inch", "mile", "parsec", "yard"];
     must(
       spaces.every((axis) => units.includes(String(axis.unit))),
       "units of space are UDUNITS-2 names",
@@ -58,7 +61,7 @@ export async function breachesOfOmeZarr(folder: string): Promise<string[]> {
       must(array.zarr_format === 3 && array.node_type === "array", "a dataset is a Zarr v3 array");
       must(shape.length === axes.length, "an array has as many dimensions as axes");
       const names = array.dimension_names as string[] | undefined;
-      must(!names || names.join() === axes.map((axis) => axis.name).join(), "dimension_names equal the axes' names");
+      must(names?.join() === axes.map((axis) => axis.name).join(), "dimension_names are there and equal the axes' names");
       must(last === null || shape.every((side, k) => side <= last![k]!), "datasets go from the finest to the coarsest");
       last = shape;
       await checkArray(join(folder, path), array, must);
@@ -95,6 +98,12 @@ async function checkArray(folder: string, array: Json, must: (good: unknown, rul
   const codecs = array.codecs as { name: string; configuration: Json }[];
   const sharding = codecs.find((codec) => codec.name === "sharding_indexed");
   must(sharding && codecs.length === 1, "sharding is the only outer codec");
+  const voxels = (sharding!.configuration.codecs as { name: string; configuration?: Json }[])[0]!;
+  const oneByte = array.data_type === "uint8" || array.data_type === "int8";
+  must(
+    voxels.name === "bytes" && (oneByte || voxels.configuration?.endian === "little"),
+    "the voxels' codec says its byte order",
+  );
   const inner = sharding!.configuration.chunk_shape as number[];
   const outer = grid.configuration.chunk_shape;
   must(
