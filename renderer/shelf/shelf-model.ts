@@ -53,6 +53,11 @@ export class ShelfModel {
     });
   }
 
+  /** The person has gone on: the specimen made last is no news any more. */
+  forgetMade(): void {
+    this.madeSignal.value = null;
+  }
+
   /** Reads the shelf again; a call while one is under way makes one more afterwards. */
   async load(): Promise<void> {
     if (this.loading) {

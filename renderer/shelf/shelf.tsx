@@ -1,8 +1,9 @@
 import "#renderer/shelf/shelf.css";
-import { useEffect, useMemo, useState } from "preact/hooks";
+import { useEffect, useState } from "preact/hooks";
 import { AboutSheet } from "#renderer/app/about-sheet.tsx";
 import type { Services } from "#renderer/app/services.ts";
 import { setTheme, theme } from "#renderer/app/theme-choice.ts";
+import type { Client } from "#renderer/client/client.ts";
 import { AddScanSheet } from "#renderer/shelf/add-scan/add-scan-sheet.tsx";
 import { FirstSteps } from "#renderer/shelf/first-steps.tsx";
 import { JobCard } from "#renderer/shelf/job-card.tsx";
@@ -16,11 +17,27 @@ export interface ShelfProps {
 
 const STEPS_KEY = "tautline-first-steps";
 
+/** One model a window, also while another screen is shown: a job that fails meanwhile must still be told. */
+const models = new WeakMap<Client, ShelfModel>();
+
+function modelOf({ client, notices }: Services): ShelfModel {
+  let model = models.get(client);
+  if (model === undefined) {
+    model = new ShelfModel(client, notices);
+    model.start();
+    models.set(client, model);
+  }
+  return model;
+}
+
 /** The start screen: specimens of the library with their passes, and the ways to add a scan. */
 export function Shelf({ services }: ShelfProps) {
   const { client, capabilities, notices } = services;
-  const model = useMemo(() => new ShelfModel(client, notices), [client, notices]);
-  useEffect(() => model.start(), [model]);
+  const model = modelOf(services);
+  useEffect(() => {
+    void model.load();
+    return () => model.forgetMade();
+  }, [model]);
   const [adding, setAdding] = useState<{ readonly path: string } | null>(null);
   const [about, setAbout] = useState(false);
   const [steps, setSteps] = useState(() => localStorage.getItem(STEPS_KEY) !== "put away");

@@ -90,6 +90,8 @@ test("a running job shows until it is done, then its specimen is named and the s
   expect(model.jobs.value).toEqual([]);
   expect(model.made.value).toBe("a1");
   expect(loads).toBe(2);
+  model.forgetMade();
+  expect(model.made.value).toBeNull();
 });
 
 test("the end of a job is not lost when it comes before the answer that names the job", async () => {
