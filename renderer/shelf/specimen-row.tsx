@@ -1,5 +1,6 @@
 import { useEffect, useRef, useState } from "preact/hooks";
 import type { Services } from "#renderer/app/services.ts";
+import { HandednessSheet } from "#renderer/shelf/handedness-sheet.tsx";
 import { NewPass } from "#renderer/shelf/new-pass.tsx";
 import { RemoveSheet } from "#renderer/shelf/remove-sheet.tsx";
 import { SpecimenPicture } from "#renderer/shelf/specimen-picture.tsx";
@@ -16,7 +17,7 @@ export interface SpecimenRowProps {
 
 /** One specimen: its picture, what is known of it, its passes. */
 export function SpecimenRow({ shown, services, fresh, reload }: SpecimenRowProps) {
-  const [asking, setAsking] = useState<"pass" | "remove" | null>(null);
+  const [asking, setAsking] = useState<"pass" | "remove" | "handedness" | null>(null);
   const row = useRef<HTMLLIElement>(null);
   const newPass = useRef<HTMLButtonElement>(null);
   useEffect(() => {
@@ -58,8 +59,11 @@ export function SpecimenRow({ shown, services, fresh, reload }: SpecimenRowProps
         <p>{sidesWords(volume.size, volume.spacing)}</p>
         {facts === "" ? null : <p class="soft">{facts}</p>}
         {volume.handedness === "unknown" ? (
-          <p class="soft" title="Nobody has confirmed that the scan is not a mirror image">
+          <p class="soft">
             handedness not confirmed
+            <button type="button" class="button plain shelf-confirm" onClick={() => setAsking("handedness")}>
+              Confirm …<span class="unseen"> the handedness of {specimen.name}</span>
+            </button>
           </p>
         ) : null}
         <button type="button" class="button plain shelf-quiet" onClick={() => setAsking("remove")}>
@@ -106,10 +110,22 @@ export function SpecimenRow({ shown, services, fresh, reload }: SpecimenRowProps
           </button>
         )}
       </div>
+      {asking === "handedness" ? (
+        <HandednessSheet
+          client={services.client}
+          specimen={specimen}
+          close={close}
+          confirm={async () => {
+            await services.client.changeSpecimen(specimen.id, { handedness: "confirmed" });
+            await reload();
+            close();
+          }}
+        />
+      ) : null}
       {asking === "remove" ? (
         <RemoveSheet
           shown={shown}
-          close={() => setAsking(null)}
+          close={close}
           remove={async (force) => {
             await services.client.removeSpecimen(specimen.id, force);
             await reload();

@@ -173,6 +173,20 @@ test("a new pass asks for the annotator and opens on the desk; Escape takes the 
   await page.context().close();
 });
 
+test("handedness is confirmed on the shelf, but not while the mirror image is the one shown", async () => {
+  const page = await open("?later");
+  await page.getByRole("button", { name: /^Confirm … the handedness of K-112/ }).click();
+  const confirm = page.getByRole("button", { name: "Confirm: right as it is" });
+  await page.getByLabel("Show the mirror image").check();
+  expect(await page.getByRole("img", { name: "Mirror image of the projection" }).count()).toBe(1);
+  expect(await confirm.isDisabled()).toBe(true);
+  expect(await faults(page)).toEqual([]);
+  await page.getByLabel("Show the mirror image").uncheck();
+  await confirm.click();
+  await expect.poll(() => asked(page, "change")).toEqual([{ specimen: "b2", patch: { handedness: "confirmed" } }]);
+  await page.context().close();
+});
+
 test("a specimen with edited passes goes only after its name was typed", async () => {
   const page = await open("?later");
   await page.getByRole("button", { name: "Remove … HB-07" }).click();

@@ -62,6 +62,9 @@ const client = {
     asked.push({ what: "pass", detail: annotator });
     return passOf(specimen, annotator);
   },
+  changeSpecimen: async (specimen: string, patch: unknown) => {
+    asked.push({ what: "change", detail: { specimen, patch } });
+  },
   removeSpecimen: async (specimen: string, force: boolean) => {
     asked.push({ what: "remove", detail: { specimen, force } });
     specimens.splice(
