@@ -19,6 +19,8 @@ export function Sheet(props: SheetProps) {
     const before = document.activeElement;
     const shown = dialog.current!;
     if (!shown.open) shown.showModal();
+    // The first thing to fill in, rather than the button that closes.
+    shown.querySelector<HTMLElement>(".sheet-body :is(input, select, textarea)")?.focus();
     return () => {
       if (shown.open) shown.close();
       if (before instanceof HTMLElement) before.focus();
@@ -41,7 +43,9 @@ export function Sheet(props: SheetProps) {
           ✕
         </button>
       </header>
-      <div class="sheet-body">{props.children}</div>
+      <div class="sheet-body" tabIndex={0}>
+        {props.children}
+      </div>
       {props.foot === undefined ? null : <footer>{props.foot}</footer>}
     </dialog>
   );

@@ -15,8 +15,9 @@ async function tabTo(page: Page, name: RegExp, most = 60): Promise<void> {
   for (let i = 0; i < most; i++) {
     const found = await page.evaluate(() => {
       const element = document.activeElement as HTMLElement | null;
-      const label = element?.closest("label")?.textContent ?? "";
-      return `${element?.getAttribute("aria-label") ?? ""}|${element?.textContent ?? ""}|${label}`;
+      if (!element?.matches("button, input, select, a")) return "";
+      const label = element.closest("label")?.textContent ?? "";
+      return `${element.getAttribute("aria-label") ?? ""}|${element.textContent ?? ""}|${label}`;
     });
     if (found.split("|").some((text) => name.test(text.trim()))) return;
     await page.keyboard.press("Tab");

@@ -10,7 +10,7 @@ export function Readout({ model }: { readonly model: DeskModel }) {
   const grey = useSignal<number | null>(null);
   const pointing = section.pointing.value;
   const snapped = editor.snapped.value;
-  const at = snapped !== null && snapped.candidates > 0 ? snapped.point : pointing?.at;
+  const at = pointing?.at;
   useEffect(() => {
     if (at === undefined) {
       grey.value = null;

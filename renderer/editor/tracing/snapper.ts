@@ -40,6 +40,8 @@ export function choose(aim: Aim, candidates: readonly SnapCandidate[]): Snapped 
 export class Snapper {
   private readonly snappedSignal = signal<Snapped | null>(null);
   private last: { readonly aim: Aim; readonly snapped: Snapped } | null = null;
+  /** Counts departures, so that an answer that comes after one shows nothing. */
+  private left = 0;
 
   constructor(private readonly ask: AskSnap) {}
 
@@ -50,11 +52,12 @@ export class Snapper {
   /** The place for an aim; null when a newer aim took over. Without an answer the aimed place stands. */
   async aimAt(aim: Aim): Promise<Snapped | null> {
     if (!aim.snap) return this.keep(aim, choose(aim, []));
+    const { left } = this;
     try {
       const answer = await this.ask(aim);
-      return answer === null ? null : this.keep(aim, choose(aim, answer.candidates));
+      return answer === null || left !== this.left ? null : this.keep(aim, choose(aim, answer.candidates));
     } catch {
-      return this.keep(aim, choose(aim, []));
+      return left === this.left ? this.keep(aim, choose(aim, [])) : null;
     }
   }
 
@@ -64,6 +67,7 @@ export class Snapper {
   }
 
   leave(): void {
+    this.left += 1;
     this.snappedSignal.value = null;
     this.last = null;
   }
