@@ -32,8 +32,8 @@ export interface CentringOptions {
   /** Step between the points that are centred. */
   readonly stepMm: number;
   readonly rounds: number;
-  /** The radii that hold near the two nodes; within them the neighbours at a fork outweigh the string itself. */
-  readonly nodeRadiiMm: readonly [number, number];
+  /** Lengths from the two nodes along which other strings of a fork surround this one, so that its middle cannot be seen. */
+  readonly zonesMm: readonly [number, number];
   /** shape [m, 3]; the path that was found: places far from it belong to another string. */
   readonly path: Float64Array;
 }
@@ -61,9 +61,8 @@ export function centreCurve(sampler: Sampler, start: CentredCurve, options: Cent
       lambdas[i] = (smoothingLength(radii[i]!, options.stepMm) / step) ** 4;
       if (i === 0 || i === n - 1) continue;
       weights[i] = centreAt(sampler, points, directions, i, radii[i]!, share, options, patch, targets);
-      const near = Math.min(arc[i]! / options.nodeRadiiMm[0], (length - arc[i]!) / options.nodeRadiiMm[1]);
       if (distanceTo(options.path, targets, i) > FARTHEST_RADII * radii[i]! + options.stepMm) weights[i] = 0;
-      if (near < 1.2) weights[i] = weights[i]! * 0.03;
+      if (arc[i]! < options.zonesMm[0] || length - arc[i]! < options.zonesMm[1]) weights[i] = weights[i]! * IN_ZONE;
     }
     smoothInto(targets, weights, lambdas, targets);
     const next = resample(targets, options.stepMm);
@@ -75,6 +74,9 @@ export function centreCurve(sampler: Sampler, start: CentredCurve, options: Cent
   }
   return { points, radii, widestMm };
 }
+
+/** Weight of what is seen inside a fork: next to nothing, so that the strand runs on smoothly from where it is clear to its node. */
+const IN_ZONE = 0.001;
 
 /** How far the centred curve may come from the path, in radii, besides a step. */
 const FARTHEST_RADII = 0.8;

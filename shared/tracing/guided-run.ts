@@ -75,7 +75,7 @@ export function centrePath(
     sign: context.sign,
     noiseFloor: ridgeNoiseFloor(context.levels),
     stepMm,
-    nodeRadiiMm,
+    zonesMm: nodeZones(arc, steady, nodeRadiiMm),
     path,
   } as const;
   const least = 0.75 * finestSpacing(context.pyramid, 0);
@@ -103,6 +103,27 @@ export function centrePath(
     radii: radiiOf(final, stepMm, fwhmMm),
     fits: pointFits(final.contrasts, context.levels.noise),
   };
+}
+
+/**
+ * Lengths from both ends along which the string's own middle cannot be seen: while the radius seen along the path is that of
+ * a thicker neighbour at the fork, and at least the node's own radius.
+ * @param arc, radii shape [n], along the path.
+ */
+function nodeZones(arc: Float64Array, radii: Float64Array, nodeRadiiMm: readonly [number, number]): [number, number] {
+  const n = arc.length;
+  const length = arc[n - 1]!;
+  const middle: number[] = [];
+  for (let i = 0; i < n; i++) if (arc[i]! >= 0.3 * length && arc[i]! <= 0.7 * length) middle.push(radii[i]!);
+  const typical = middle.length > 0 ? medianOf(middle) : radii[n >> 1]!;
+  const thick = (i: number) => radii[i]! > 1.35 * typical;
+  let first = 0;
+  while (first < n - 1 && thick(first)) first++;
+  let last = n - 1;
+  while (last > 0 && thick(last)) last--;
+  const zone = (seen: number, nodeRadius: number) =>
+    Math.min(0.35 * length, Math.max(seen > 0 ? seen + typical : 0, 1.2 * nodeRadius));
+  return [zone(arc[first]!, nodeRadiiMm[0]), zone(length - arc[last]!, nodeRadiiMm[1])];
 }
 
 /** Radii along a curve that is not to be moved. @param points shape [n, 3], millimetres along the voxel axes. */
