@@ -1,6 +1,7 @@
 import type { Verb } from "#main/cli/verb.ts";
 import { check } from "#main/cli/verbs/check.ts";
 import { compare } from "#main/cli/verbs/compare.ts";
+import { convert } from "#main/cli/verbs/convert.ts";
 import { gather } from "#main/cli/verbs/gather.ts";
 import { info } from "#main/cli/verbs/info.ts";
 import { intake } from "#main/cli/verbs/intake.ts";
@@ -10,4 +11,4 @@ import { score } from "#main/cli/verbs/score.ts";
 import { trace } from "#main/cli/verbs/trace.ts";
 
 /** Every verb, in the order of the job. */
-export const VERBS: readonly Verb[] = [info, intake, trace, measure, check, compare, score, gather, phantom];
+export const VERBS: readonly Verb[] = [info, intake, trace, measure, check, compare, score, gather, convert, phantom];
