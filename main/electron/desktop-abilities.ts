@@ -1,6 +1,6 @@
 import { createEngine } from "#main/engine/engine.ts";
 import { removeUnfinished } from "#main/intake/make-specimen.ts";
-import { runDemo, runDemoPasses, runIntake, runLook } from "#main/intake/run-intake.ts";
+import { runDemo, runDemoPasses, runIntake, runLabels, runLook } from "#main/intake/run-intake.ts";
 import type { Abilities } from "#main/node/abilities.ts";
 import type { Library } from "#main/node/library.ts";
 
@@ -17,6 +17,7 @@ export async function desktopAbilities(library: Library): Promise<Abilities> {
     runIntake,
     runDemo,
     runDemoPasses: (sha256) => runDemoPasses(sha256),
+    runLabels: (file, path) => runLabels(file, path),
     forgetSpecimen: (specimen) => engine.forget(specimen),
   };
 }

@@ -39,9 +39,10 @@ export type WorkerTask =
   | { readonly task: "intake"; readonly order: IntakeOrder }
   | { readonly task: "demo"; readonly order: DemoOrder }
   | { readonly task: "demo-passes"; readonly sha256: string }
+  | { readonly task: "labels"; readonly file: ChordaeFile; readonly path: string }
   | { readonly task: "look"; readonly path: string; readonly choice?: ScanChoice };
 
-export type WorkerResult = IntakeOutcome | DemoOutcome | DemoOutcome["passes"] | ScanLookAnswer;
+export type WorkerResult = IntakeOutcome | DemoOutcome | DemoOutcome["passes"] | ScanLookAnswer | { readonly bytes: number };
 
 /** To the worker. */
 export type WorkerRequest = { readonly stop: true };

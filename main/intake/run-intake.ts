@@ -15,6 +15,7 @@ import type { IntakeProgress } from "#main/intake/progress.ts";
 import type { ScanChoice } from "#main/intake/slice-source.ts";
 import type { ScanLookAnswer } from "#shared/api/routes.ts";
 import { decodeError, TautlineError } from "#shared/errors.ts";
+import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
 
 export interface RunHooks {
   readonly signal?: AbortSignal;
@@ -34,6 +35,11 @@ export async function runDemo(order: DemoOrder, hooks: RunHooks = {}): Promise<D
 /** The demo valve's invented passes alone, in a thread of its own. */
 export async function runDemoPasses(sha256: string, hooks: RunHooks = {}): Promise<DemoOutcome["passes"]> {
   return (await runWorker({ task: "demo-passes", sha256 }, hooks)) as DemoOutcome["passes"];
+}
+
+/** Writes trees as a label volume to a new file, in a thread of its own. @throws as `writeLabels` */
+export async function runLabels(file: ChordaeFile, path: string, hooks: RunHooks = {}): Promise<void> {
+  await runWorker({ task: "labels", file, path }, hooks);
 }
 
 /** Looks at a scan in a thread of its own. @throws unreadable-input, cancelled */

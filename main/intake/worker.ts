@@ -4,6 +4,7 @@ import { demoPasses, makeDemo } from "#main/intake/make-demo.ts";
 import type { IntakeProgress } from "#main/intake/progress.ts";
 import { lookAtScan } from "#main/intake/scan-info.ts";
 import { takeIn } from "#main/intake/take-in.ts";
+import { writeLabels } from "#main/intake/write-labels.ts";
 import { encodeError } from "#shared/errors.ts";
 
 // The thread that reads, converts, hashes and writes, so that neither a window's server nor the command line stands still.
@@ -21,6 +22,8 @@ async function perform(work: WorkerTask): Promise<WorkerResult> {
       return makeDemo(work.order, hooks);
     case "demo-passes":
       return demoPasses(work.sha256);
+    case "labels":
+      return writeLabels(work.file, work.path, { signal: stop.signal });
     case "look":
       return lookAtScan(work.path, { signal: stop.signal, ...(work.choice ? { choice: work.choice } : {}) });
   }

@@ -37,6 +37,8 @@ export interface Abilities {
   ): Promise<{ readonly record: SpecimenRecord; readonly passes: readonly DemoPass[] }>;
   /** The demo valve's passes alone; its stored voxels have this hash. */
   runDemoPasses(sha256: string): Promise<readonly DemoPass[]>;
+  /** Writes trees as a label volume (NRRD, gzip) to a file that is not there yet; resolves once it is on the disk. */
+  runLabels(file: ChordaeFile, path: string): Promise<void>;
   /** Asks the engine to let go of a specimen's store before its folder is removed. */
   forgetSpecimen?(specimen: string): Promise<void>;
 }

@@ -25,6 +25,8 @@ export interface LibraryLayout {
   readonly root: string;
   readonly lease: string;
   readonly specimens: string;
+  /** What is being made; emptied at every start. */
+  readonly unfinished: string;
   specimen(id: string): string;
   specimenFile(id: string): string;
   store(id: string): string;
@@ -44,6 +46,7 @@ export function libraryLayout(root: string): LibraryLayout {
     root,
     lease: join(root, "lease.json"),
     specimens,
+    unfinished: join(root, "unfinished"),
     specimen,
     specimenFile: (id) => join(specimen(id), "specimen.json"),
     store: (id) => join(specimen(id), "scan.ome.zarr"),

@@ -81,7 +81,7 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
           }),
       },
       folders: folders(),
-      exports: exportTrees({ library, files, softwareVersion: options.version }),
+      exports: exportTrees({ library, files, softwareVersion: options.version, runLabels: abilities.runLabels, newId }),
       events,
       page: pageFiles(options.page),
       windows,

@@ -1,7 +1,7 @@
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import type { SectionHeader, SnapAnswer, SolvedCurve, ValueAnswer } from "#shared/api/engine.ts";
 import { decodeFrame } from "#shared/api/frame.ts";
-import { type JobState, type ServerEvent, type ShelfAnswer, TOKEN_HEADER } from "#shared/api/routes.ts";
+import { type JobState, LOST_HEADER, type ServerEvent, type ShelfAnswer, TOKEN_HEADER } from "#shared/api/routes.ts";
 import type { ShelfSpecimen } from "#shared/api/specimen.ts";
 import { parseChordaeBytes } from "#shared/formats/chordae/read-chordae-file.ts";
 import { type Place, place, type RunningServer, startServer } from "#test/main/cli/start-server.ts";
@@ -100,6 +100,22 @@ describe("the demo valve over the server", () => {
       const file = await exportOf(i);
       expect([file.annotator, file.trees.length]).toEqual([pass.annotator, 20]);
       expect(file.volume!.sha256).toBe(demo.specimen.volume.sha256);
+    }
+  });
+
+  it("exports every other format too, the labels on the scan's own grid", async () => {
+    for (const [format, begins] of [
+      ["graphml", "<?xml"],
+      ["vtp", "<?xml"],
+      ["tables", "PK"],
+      ["labels", "NRRD"],
+    ] as const) {
+      const answer = await post("/api/export", { specimen: demo.specimen.id, pass: demo.passes[0]!.id, format });
+      const bytes = new Uint8Array(await answer.arrayBuffer());
+      expect([format, answer.status, new TextDecoder().decode(bytes.subarray(0, begins.length))]).toEqual([format, 200, begins]);
+      expect(JSON.parse(decodeURIComponent(answer.headers.get(LOST_HEADER)!)).length).toBeGreaterThan(0);
+      if (format === "labels")
+        expect(new TextDecoder().decode(bytes.subarray(0, 2000))).toContain(`sizes: ${demo.specimen.volume.size.join(" ")}`);
     }
   });
 
