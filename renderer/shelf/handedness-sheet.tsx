@@ -1,32 +1,27 @@
-import { useEffect, useState } from "preact/hooks";
+import { useEffect, useRef, useState } from "preact/hooks";
 import { Sheet } from "#renderer/app/sheet.tsx";
 import type { Client } from "#renderer/client/client.ts";
-import { GreyPicture } from "#renderer/shelf/grey-picture.tsx";
-import type { SectionHeader } from "#shared/api/engine.ts";
-import type { BinaryFrame } from "#shared/api/frame.ts";
+import { mirroredPoints, scanBounds } from "#renderer/space/scan-bounds.ts";
+import { SpaceView } from "#renderer/space/space-view.ts";
 import type { SpecimenRecord } from "#shared/api/specimen.ts";
+import { normalise } from "#shared/geometry/vec3.ts";
 
 export interface HandednessSheetProps {
-  readonly client: Pick<Client, "picture">;
+  readonly client: Pick<Client, "surface">;
   readonly specimen: SpecimenRecord;
   /** Writes the confirmation; rejects with a sentence when that fails. */
   readonly confirm: () => Promise<void>;
   readonly close: () => void;
 }
 
-/** Confirming that a scan is no mirror image: its projection, a switch that shows the mirror image, and what follows from each. */
+/** Enough to know a valve by, few enough to turn without a graphics card. */
+const SURFACE_POINTS = 20_000;
+
+/** Confirming that a scan is no mirror image: a look at it in space, a switch to its mirror image, and what follows from each. */
 export function HandednessSheet({ client, specimen, confirm, close }: HandednessSheetProps) {
-  const [frame, setFrame] = useState<BinaryFrame<SectionHeader> | null>(null);
   const [mirrored, setMirrored] = useState(false);
   const [busy, setBusy] = useState(false);
   const [failure, setFailure] = useState<string | null>(null);
-  useEffect(() => {
-    client
-      .picture(specimen.id)
-      .then(setFrame)
-      // The question can be answered without the picture.
-      .catch(() => undefined);
-  }, [client, specimen.id]);
   const go = async () => {
     setBusy(true);
     try {
@@ -47,22 +42,14 @@ export function HandednessSheet({ client, specimen, confirm, close }: Handedness
     </>
   );
   return (
-    <Sheet title={`Handedness of ${specimen.name}`} close={close} foot={foot} kind="small-sheet">
+    <Sheet title={`Handedness of ${specimen.name}`} close={close} foot={foot} kind="scan-sheet">
       <div class="shelf-handedness">
-        {frame === null ? null : (
-          <GreyPicture
-            class="shelf-picture"
-            width={frame.header.width}
-            height={frame.header.height}
-            grey={frame.body}
-            mirrored={mirrored}
-            label={mirrored ? "Mirror image of the projection" : "Projection of the scan"}
-          />
-        )}
+        <LookInSpace client={client} specimen={specimen} mirrored={mirrored} />
         <div>
           <p>
             When slices were written in reversed order, the valve is its mirror image and the two papillary muscles trade places.
-            Compare the picture with the specimen or a photograph of it.
+            A flat picture cannot show it: turn the scan by dragging or with the arrow keys, and compare it with the specimen or
+            photographs of it.
           </p>
           <label class="scan-choice">
             <input type="checkbox" checked={mirrored} onChange={(event) => setMirrored(event.currentTarget.checked)} />
@@ -81,4 +68,42 @@ export function HandednessSheet({ client, specimen, confirm, close }: Handedness
       </div>
     </Sheet>
   );
+}
+
+/** Bright surface points of the scan, to be turned. */
+function LookInSpace({
+  client,
+  specimen,
+  mirrored,
+}: Pick<HandednessSheetProps, "client" | "specimen"> & { readonly mirrored: boolean }) {
+  const host = useRef<HTMLDivElement>(null);
+  const view = useRef<SpaceView | null>(null);
+  const [points, setPoints] = useState<Float32Array | null>(null);
+  const { id, polarity, volume } = specimen;
+  useEffect(() => {
+    const made = new SpaceView(host.current!);
+    made.show({ bounds: scanBounds(volume), caption: "Looking for the surface …" });
+    view.current = made;
+    let current = true;
+    client
+      .surface({ specimen: id, limit: SURFACE_POINTS, polarity })
+      .then((frame) => {
+        // Little-endian float32 in a body that need not be aligned.
+        if (current && frame !== null) setPoints(new Float32Array(frame.body.slice().buffer));
+      })
+      .catch((error: unknown) => current && made.show({ caption: error instanceof Error ? error.message : String(error) }));
+    return () => {
+      current = false;
+      view.current = null;
+      made.dispose();
+    };
+  }, [client, id, polarity, volume]);
+  useEffect(() => {
+    if (points === null) return;
+    const { direction: d } = volume;
+    const slices = normalise([d[2], d[5], d[8]]);
+    const surface = mirrored ? mirroredPoints(points, scanBounds(volume).centre, slices) : points;
+    view.current?.show({ surface, caption: mirrored ? "mirror image" : "as it was taken in" });
+  }, [points, mirrored, volume]);
+  return <div class="shelf-space" ref={host} />;
 }

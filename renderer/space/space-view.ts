@@ -1,5 +1,5 @@
 import "#renderer/space/space.css";
-import { AmbientLight, Color, DirectionalLight, Matrix4, PerspectiveCamera, Scene, WebGLRenderer } from "three";
+import { AmbientLight, Color, DirectionalLight, Fog, Matrix4, PerspectiveCamera, Scene, WebGLRenderer } from "three";
 import {
   approached,
   lookingAlong,
@@ -244,7 +244,11 @@ export class SpaceView {
     if (this.renderer === null || this.size.width === 0 || this.size.height === 0) return;
     const style = getComputedStyle(this.element);
     const colours = coloursFrom((name) => style.getPropertyValue(name));
-    this.scene.background = new Color(style.backgroundColor);
+    const ground = new Color(style.backgroundColor);
+    this.scene.background = ground;
+    // What lies farther away fades a little: the eye needs it to tell front from back in a cloud of points.
+    const { radiusMm } = this.content.bounds;
+    this.scene.fog = new Fog(ground, Math.max(0, this.orbit.distanceMm - radiusMm * 0.5), this.orbit.distanceMm + radiusMm * 1.5);
     this.store.refresh(this.content, colours);
     this.store.fitTo(mmPerPixel(this.orbit, this.size.height), this.moving ? MOVING_SHARE : 1);
     const ratio = (globalThis.devicePixelRatio || 1) * (this.moving ? MOVING_RESOLUTION : 1);

@@ -28,7 +28,8 @@ export function ConfirmForm({ info, draft, change, submit, id }: ConfirmFormProp
         <legend>Handedness</legend>
         <p class="soft">
           When a scanner writes its slices in reversed order, the valve becomes its mirror image and the two papillary muscles
-          trade places. If you know the specimen, compare the slice with it, seen from the first slice.
+          trade places. One slice alone does not show it: say it here if you know how the scanner writes, else leave it open and
+          confirm it later on the shelf, with a look in space.
         </p>
         <Choice name="handedness" value="unknown" now={draft.handedness} set={(handedness) => change({ handedness })}>
           not known yet; can be confirmed later

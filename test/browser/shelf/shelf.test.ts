@@ -177,8 +177,9 @@ test("handedness is confirmed on the shelf, but not while the mirror image is th
   const page = await open("?later");
   await page.getByRole("button", { name: /^Confirm … the handedness of K-112/ }).click();
   const confirm = page.getByRole("button", { name: "Confirm: right as it is" });
+  await page.getByText("as it was taken in").waitFor();
   await page.getByLabel("Show the mirror image").check();
-  expect(await page.getByRole("img", { name: "Mirror image of the projection" }).count()).toBe(1);
+  await page.getByText("mirror image", { exact: true }).waitFor();
   expect(await confirm.isDisabled()).toBe(true);
   expect(await faults(page)).toEqual([]);
   await page.getByLabel("Show the mirror image").uncheck();

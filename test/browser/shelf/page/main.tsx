@@ -35,6 +35,14 @@ const client = {
     header: { dtype: "uint8", width: picture.width, height: picture.height, level: 3 },
     body: picture.grey,
   }),
+  surface: async () => {
+    const points = new Float32Array(3 * 6000);
+    for (let i = 0; i < points.length; i += 3) {
+      // A screw: it differs from its mirror image from every side.
+      points.set([17 + 9 * Math.cos(i / 1200), 17 + 9 * Math.sin(i / 1200), 12 + i / 450 + ((i * 7) % 10) / 9], i);
+    }
+    return { header: { dtype: "float32", count: 6000, level: 3, threshold: 100 }, body: new Uint8Array(points.buffer) };
+  },
   onEvent: (listener: (event: ServerEvent) => void) => {
     listeners.add(listener);
     return () => listeners.delete(listener);
