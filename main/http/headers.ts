@@ -1,7 +1,6 @@
 /**
  * What a page may do. Loosenings of `default-src 'none'`, each with its reason:
- * - script-src, style-src, font-src 'self': the page's own files; nothing inline, no eval.
- * - img-src 'self' blob: - pictures that the page itself paints (section stills for reports) are blobs.
+ * - script-src, style-src, font-src, img-src 'self': the page's own files; nothing inline, no eval, no data or blob addresses.
  * - connect-src 'self': requests to the handler, nowhere else.
  * - worker-src 'self': the page's own worker files.
  */
@@ -10,7 +9,7 @@ export const CONTENT_SECURITY_POLICY = [
   "script-src 'self'",
   "style-src 'self'",
   "font-src 'self'",
-  "img-src 'self' blob:",
+  "img-src 'self'",
   "connect-src 'self'",
   "worker-src 'self'",
   "base-uri 'none'",

@@ -264,7 +264,7 @@ function expectStrictPolicy(policy: string | null): void {
   expect(rules.get("connect-src")).toEqual(["'self'"]);
   expect(rules.get("base-uri")).toEqual(["'none'"]);
   expect(rules.get("frame-ancestors")).toEqual(["'none'"]);
-  expect(policy).not.toMatch(/unsafe|\*|https?:/);
+  expect(policy).not.toMatch(/unsafe|\*|https?:|data:|blob:/);
 }
 
 async function* linesOf(answer: Response): AsyncGenerator<unknown> {
