@@ -12,7 +12,7 @@ export function startTheme(): void {
 }
 
 export function setTheme(name: ThemeName): void {
-  document.documentElement.dataset["theme"] = name;
+  document.documentElement.dataset.theme = name;
   localStorage.setItem(KEY, name);
   theme.value = name;
 }

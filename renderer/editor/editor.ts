@@ -11,7 +11,7 @@ import { type Guide, GuideFollower, type GuideSource } from "#renderer/editor/tr
 import { passing } from "#renderer/editor/tracing/passing.ts";
 import { type Projection, project, tipOf } from "#renderer/editor/tracing/projection.ts";
 import { type Aim, type AskSnap, type Snapped, Snapper } from "#renderer/editor/tracing/snapper.ts";
-import { NOTHING, type UnderWay } from "#renderer/editor/tracing/under-way.ts";
+import { isUnfinished, NOTHING, type UnderWay } from "#renderer/editor/tracing/under-way.ts";
 import type { Pointing, Under } from "#renderer/editor/view-control.ts";
 import { roundPoint } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
@@ -241,7 +241,7 @@ export class Editor {
     const document = this.documentSignal.value;
     if (under.kind === "node") {
       this.selection.value = selectNode(document, under.id);
-      if (document.nodes.get(under.id)?.kind === "open") this.do({ do: "resume", node: under.id });
+      if (isUnfinished(document, under.id)) this.do({ do: "resume", node: under.id });
     } else {
       this.selection.value = selectLine(document, under.kind === "strand" ? under.id : under.strand);
     }

@@ -2,17 +2,18 @@ import type { Command } from "#renderer/editor/commands/command.ts";
 import type { DeskContext } from "#renderer/editor/commands/desk-context.ts";
 import type { Editor } from "#renderer/editor/editor.ts";
 import { selectNode } from "#renderer/editor/selection.ts";
+import { isUnfinished } from "#renderer/editor/tracing/under-way.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
 import type { CrossLinkId, NodeId, StrandId } from "#shared/trees/document.ts";
 import { byCounter } from "#shared/trees/ids.ts";
 
 const always = () => true;
 
-/** Open ends in the order of their ids. */
+/** Open ends and origins without a strand, in the order of their ids. */
 export function openNodes(editor: Editor): NodeId[] {
   return [...editor.document.value.nodes.values()]
-    .filter((node) => node.kind === "open")
     .map((node) => node.id)
+    .filter((id) => isUnfinished(editor.document.value, id))
     .sort(byCounter);
 }
 

@@ -1,6 +1,7 @@
 import type { Command } from "#renderer/editor/commands/command.ts";
 import type { DeskContext } from "#renderer/editor/commands/desk-context.ts";
 import { END_WORDS } from "#renderer/editor/session/words.ts";
+import { isUnfinished } from "#renderer/editor/tracing/under-way.ts";
 import type { EndKind } from "#shared/trees/document.ts";
 
 const under = ({ view }: DeskContext) => view.pointing.value?.under ?? null;
@@ -44,7 +45,7 @@ function clickWords(context: DeskContext): string | null {
       return "pin of the cross-link";
     case "nothing":
       if (here === null) return "start a tree: its origin";
-      if (here.kind === "node" && editor.document.value.nodes.get(here.id)?.kind === "open") return "go on from this open end";
+      if (here.kind === "node" && isUnfinished(editor.document.value, here.id)) return "go on from here";
       return "select";
   }
 }

@@ -21,7 +21,13 @@ export function goingOnFrom(tip: NodeId): UnderWay {
   return { kind: "strand", tip, leg: "guide" };
 }
 
-/** The same, with the way the next stretch is made changed over; nothing and cross-links have no choice. */
+/** True for a node at which work waits: an open end, or an origin without a strand. */
+export function isUnfinished(document: TreeDocument, id: NodeId): boolean {
+  const kind = document.nodes.get(id)?.kind;
+  return kind === "open" || (kind === "origin" && strandsAt(document, id).length === 0);
+}
+
+/** What is under way with the way the next stretch is made changed over; nothing and cross-links have no choice. */
 export function withOtherLeg(underWay: UnderWay): UnderWay {
   if (underWay.kind !== "strand" && underWay.kind !== "branch") return underWay;
   return { ...underWay, leg: underWay.leg === "guide" ? "straight" : "guide" };
