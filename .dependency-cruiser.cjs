@@ -1,5 +1,15 @@
 // The table of layers in DEVELOPERS.md as rules. A folder may import itself and what its row names, nothing else.
-const PURE_PACKAGES = ["@noble/hashes", "fast-xml-parser", "fflate", "flatqueue"];
+const PURE_PACKAGES = [
+  "@noble/hashes",
+  "@stdlib/stats-base-dists-chisquare-quantile",
+  "@stdlib/stats-base-dists-f-quantile",
+  "@stdlib/stats-base-dists-normal-cdf",
+  "@stdlib/stats-base-dists-normal-quantile",
+  "@stdlib/stats-base-dists-t-quantile",
+  "fast-xml-parser",
+  "fflate",
+  "flatqueue",
+];
 
 /** Import paths a layer may reach besides its own; package names stand as npm names. */
 const LAYERS = [
