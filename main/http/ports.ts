@@ -77,6 +77,6 @@ export interface Ports {
   readonly exports: ExportPort;
   readonly events: EventsPort;
   readonly page: PagePort;
-  /** The page of this window is open (`seen`) or closing (`left`). */
+  /** An event stream of this window was opened (`seen`) or has ended (`left`); a window is open as long as it has one. */
   readonly windows: { seen(window: string): void; left(window: string): void };
 }

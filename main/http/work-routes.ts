@@ -1,6 +1,6 @@
 import { bytesAnswer, jsonAnswer } from "#main/http/answers.ts";
 import { id, windowName } from "#main/http/engine-shapes.ts";
-import { eventStream } from "#main/http/event-stream.ts";
+import { EventStreams } from "#main/http/event-stream.ts";
 import { COMMON_HEADERS } from "#main/http/headers.ts";
 import {
   emptyRequest,
@@ -17,7 +17,8 @@ import { LOST_HEADER } from "#shared/api/routes.ts";
 
 /** Scans on this computer, long work, export, and the life of a window. */
 export function workRoutes(ports: Ports): RouteHandlers {
-  const { folders, scans, jobs, exports, windows } = ports;
+  const { folders, scans, jobs, exports } = ports;
+  const streams = new EventStreams(ports);
   return {
     listFolder: async (c) => jsonAnswer(await folders.list((await readJson(c.req.raw, folderRequest)).path)),
     lookAtScan: async (c) => jsonAnswer(await scans.look((await readJson(c.req.raw, lookRequest)).path)),
@@ -36,10 +37,10 @@ export function workRoutes(ports: Ports): RouteHandlers {
       // HEAD asks for the headers alone: no window is there to be counted.
       if (c.req.method === "HEAD")
         return new Response(null, { headers: { ...COMMON_HEADERS, "content-type": "application/jsonl" } });
-      return eventStream(ports, window, c.req.raw.signal);
+      return streams.open(window, c.req.raw.signal);
     },
     bye: async (c) => {
-      windows.left((await readJson(c.req.raw, windowRequest)).window);
+      streams.close((await readJson(c.req.raw, windowRequest)).window);
       return jsonAnswer({});
     },
     exportTrees: async (c) => {

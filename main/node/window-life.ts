@@ -28,7 +28,7 @@ export class WindowLife {
     this.#streams.set(window, (this.#streams.get(window) ?? 0) + 1);
   }
 
-  /** Called when a stream ends and when a page says goodbye; one more call than streams does no harm. */
+  /** Called when a stream ends. */
   left(window: string): void {
     const streams = this.#streams.get(window);
     if (streams === undefined) return;
