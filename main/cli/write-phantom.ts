@@ -4,8 +4,9 @@ import { join } from "node:path";
 import { TautlineError } from "#shared/errors.ts";
 import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
 import { writeChordaeFile } from "#shared/formats/chordae/write-chordae-file.ts";
-import { humanPasses, pinsOf } from "#shared/phantom/human-passes.ts";
+import { humanPasses } from "#shared/phantom/human-passes.ts";
 import { type PhantomSpecimen, withVolumeHash } from "#shared/phantom/phantom-specimen.ts";
+import { pinsOf } from "#shared/phantom/pins.ts";
 import { nrrdHeaderText } from "#shared/volume/nrrd/write-nrrd-header.ts";
 
 /** Where everything of a phantom was written. */
@@ -28,7 +29,6 @@ export async function writePhantom(
   specimen: PhantomSpecimen,
   folder: string,
   seed: number,
-  softwareVersion: string | undefined,
   signal: AbortSignal,
   say: (line: string) => void,
 ): Promise<PhantomFiles> {
@@ -44,7 +44,8 @@ export async function writePhantom(
   const all = [files.volume, files.true, files.pins, ...files.passes, files.errors];
   try {
     const sha256 = await writeVolume(specimen, `${files.volume}${UNFINISHED}`, seed, signal, say);
-    const software = { name: "Tautline", ...(softwareVersion !== undefined && { version: softwareVersion }) };
+    // Without a version: the same options give the same bytes from one version to the next.
+    const software = { name: "Tautline" };
     const write = (path: string, file: ChordaeFile) =>
       writeFile(`${path}${UNFINISHED}`, writeChordaeFile({ ...withVolumeHash(file, sha256), software }));
     await write(files.true, { ...specimen.truth, annotator: "true", pass: 1 });

@@ -43,7 +43,7 @@ options give the same bytes.
     const trees = wholeOption(options, "trees", 1) ?? 4;
     const noise = realOption(options, "noise", 0.05, 0, true);
     const specimen = makeSpecimen(size, trees, noise, seed);
-    const files = await writePhantom(specimen, folder, seed, undefined, io.signal, say);
+    const files = await writePhantom(specimen, folder, seed, io.signal, say);
     const list = [files.volume, files.true, files.pins, ...files.passes, files.errors];
     const text = `a synthetic ${trees === 1 ? "tree" : `set of ${specimen.truth.trees.length} trees`} in ${specimen.grid.size.join(" x ")} voxels\n${list.join("\n")}`;
     return { json: { files }, text, exit: 0 };

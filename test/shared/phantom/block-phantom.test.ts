@@ -4,7 +4,8 @@ import { checkChordaeFile } from "#shared/formats/chordae/check-chordae-file.ts"
 import { writeChordaeFile } from "#shared/formats/chordae/write-chordae-file.ts";
 import { nearestOnPolyline } from "#shared/geometry/polyline.ts";
 import { blockPhantom, mostTrees } from "#shared/phantom/block-phantom.ts";
-import { humanPasses, pinsOf } from "#shared/phantom/human-passes.ts";
+import { humanPasses } from "#shared/phantom/human-passes.ts";
+import { pinsOf } from "#shared/phantom/pins.ts";
 import { smallestGap } from "#test/shared/phantom/gaps.ts";
 
 const block = (seed: number, trees = 4, n = 256) =>

@@ -2,6 +2,7 @@ import { describe, expect, it } from "vitest";
 import { isTautlineError, type TautlineError } from "#shared/errors.ts";
 import { parseChordaeBytes, parseChordaeFile } from "#shared/formats/chordae/read-chordae-file.ts";
 import { writeChordaeFile } from "#shared/formats/chordae/write-chordae-file.ts";
+import { SeededRandom } from "#shared/random/seeded-random.ts";
 import { sampleFile } from "#test/shared/formats/chordae/sample-file.ts";
 
 function refusal(text: string): TautlineError<"unreadable-input"> {
@@ -98,6 +99,20 @@ describe("a malformed tree file is refused, naming file, place, expected and fou
     const whole = JSON.stringify(sampleFile());
     for (let end = 0; end < whole.length; end += 7) refusal(whole.slice(0, end));
     expect(() => parseChordaeBytes(Uint8Array.of(0x7b, 0xff, 0x7d), "a.chordae.json")).toThrow(/UTF-8/);
+  });
+
+  it("files with a few bytes changed, unless they are still valid", () => {
+    const random = new SeededRandom(9);
+    const whole = new TextEncoder().encode(JSON.stringify(sampleFile()));
+    for (let k = 0; k < 2000; k++) {
+      const bytes = whole.slice();
+      for (let n = random.below(4); n >= 0; n--) bytes[random.below(bytes.length)] = random.below(256);
+      try {
+        parseChordaeBytes(bytes, "mutated.chordae.json");
+      } catch (error) {
+        if (!isTautlineError(error, "unreadable-input")) throw error;
+      }
+    }
   });
 
   it("says that a newer Tautline is needed for a newer version", () => {
