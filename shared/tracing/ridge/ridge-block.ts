@@ -15,14 +15,14 @@ export interface BlockScale {
   readonly damping: number;
 }
 
-/** Plane buffers that the kernel writes over; grown on demand and reused between calls. */
+/** Buffers that the kernel writes over; grown on demand and reused between calls. */
 export interface RidgeScratch {
-  planes: Float64Array;
+  values: Float64Array;
 }
 
 /** Scratch for {@link ridgeBlockInto}. */
 export function createRidgeScratch(): RidgeScratch {
-  return { planes: new Float64Array(0) };
+  return { values: new Float64Array(0) };
 }
 
 /**
@@ -52,146 +52,217 @@ export function ridgeBlockInto(
   const high = ny + 2 * ky.reach;
   const planeLength = wide * high;
   const bandLength = wide * ny;
-  const needed = 3 * planeLength + 6 * bandLength;
-  if (scratch.planes.length < needed) scratch.planes = new Float64Array(needed);
-  const all = scratch.planes;
+  const voxels = planeLength * (nz + 2 * kz.reach);
+  // Each buffer has one value to spare: the loops below run in steps of two.
+  const needed = voxels + 1 + 3 * (planeLength + 1) + 6 * (bandLength + 1) + 9 * (nx + 1);
+  if (scratch.values.length < needed) scratch.values = new Float64Array(needed);
   let at = 0;
   const take = (length: number) => {
-    at += length;
-    return all.subarray(at - length, at);
+    at += length + 1;
+    return scratch.values.subarray(at - length - 1, at);
   };
-  const z0 = take(planeLength);
-  const z1 = take(planeLength);
-  const z2 = take(planeLength);
-  const z0y0 = take(bandLength);
-  const z0y1 = take(bandLength);
-  const z0y2 = take(bandLength);
-  const z1y0 = take(bandLength);
-  const z1y1 = take(bandLength);
-  const z2y0 = take(bandLength);
+  const all = take(voxels);
+  all.set(block.length === voxels ? block : block.subarray(0, voxels));
+  const [z0, z1, z2] = [take(planeLength), take(planeLength), take(planeLength)];
+  const [z0y0, z0y1, z0y2] = [take(bandLength), take(bandLength), take(bandLength)];
+  const [z1y0, z1y1, z2y0] = [take(bandLength), take(bandLength), take(bandLength)];
+  const rows: RidgeRows = {
+    xx: take(nx),
+    yy: take(nx),
+    zz: take(nx),
+    xy: take(nx),
+    xz: take(nx),
+    yz: take(nx),
+    x: take(nx),
+    y: take(nx),
+    z: take(nx),
+  };
+  const y0 = wide * ky.reach;
   for (let z = 0; z < nz; z++) {
-    alongZ(block, (z + kz.reach) * planeLength, planeLength, kz, z0, z1, z2);
-    threeAlongY(z0, wide, ny, ky, z0y0, z0y1, z0y2);
-    twoAlongY(z1, wide, ny, ky, z1y0, z1y1);
-    oneAlongY(z2, wide, ny, ky, z2y0);
-    for (let y = 0; y < ny; y++)
-      rowOfRidge(z0y0, z0y1, z0y2, z1y0, z1y1, z2y0, y * wide, nx, kx, scale, polarity, out, (z * ny + y) * nx);
+    allThree(all, (z + kz.reach) * planeLength, planeLength, planeLength, kz, z0, z1, z2);
+    allThree(z0, y0, wide, bandLength, ky, z0y0, z0y1, z0y2);
+    smoothAnd(z1, y0, wide, bandLength, ky.reach, ky.smooth, ky.first, z1y0, z1y1);
+    smoothOnly(z2, y0, wide, bandLength, ky, z2y0);
+    for (let y = 0; y < ny; y++) {
+      const row = y * wide + kx.reach;
+      slopeAndCurve(z0y0, row, nx, kx, rows.x, rows.xx);
+      smoothAnd(z0y1, row, 1, nx, kx.reach, kx.smooth, kx.first, rows.y, rows.xy);
+      smoothAnd(z1y0, row, 1, nx, kx.reach, kx.smooth, kx.first, rows.z, rows.xz);
+      smoothOnly(z0y2, row, 1, nx, kx, rows.yy);
+      smoothOnly(z2y0, row, 1, nx, kx, rows.zz);
+      smoothOnly(z1y1, row, 1, nx, kx, rows.yz);
+      rowOfRidge(rows, nx, scale, polarity, out, (z * ny + y) * nx);
+    }
   }
 }
 
-function alongZ(
-  block: Float32Array,
-  base: number,
-  plane: number,
-  kernel: GaussianKernels,
+/** First and second derivatives along one row, shape [nx + 1] each. */
+interface RidgeRows {
+  readonly xx: Float64Array;
+  readonly yy: Float64Array;
+  readonly zz: Float64Array;
+  readonly xy: Float64Array;
+  readonly xz: Float64Array;
+  readonly yz: Float64Array;
+  readonly x: Float64Array;
+  readonly y: Float64Array;
+  readonly z: Float64Array;
+}
+
+/**
+ * Smoothed values, slopes and curvatures of `length` values from `start` on, along `stride`. Two values a turn share the
+ * kernel's loads; each value's own sum keeps its order, so that the result does not depend on where a block begins.
+ */
+function allThree(
+  from: Float64Array,
+  start: number,
+  stride: number,
+  length: number,
+  { reach, smooth, first, second }: GaussianKernels,
   out0: Float64Array,
   out1: Float64Array,
   out2: Float64Array,
 ): void {
-  const { reach, smooth, first, second } = kernel;
-  for (let j = 0; j < plane; j++) {
-    const c = block[base + j]!;
-    let s = smooth[0]! * c;
+  const w0 = smooth[0]!;
+  const c0 = second[0]!;
+  for (let j = 0; j < length; j += 2) {
+    const p = start + j;
+    let s = w0 * from[p]!;
+    let e = c0 * from[p]!;
     let d = 0;
-    let e = second[0]! * c;
-    for (let k = 1, up = base + j + plane, down = base + j - plane; k <= reach; k++, up += plane, down -= plane) {
-      const a = block[up]!;
-      const b = block[down]!;
-      const sum = a + b;
-      s += smooth[k]! * sum;
-      e += second[k]! * sum;
-      d += first[k]! * (a - b);
+    let s2 = w0 * from[p + 1]!;
+    let e2 = c0 * from[p + 1]!;
+    let d2 = 0;
+    for (let k = 1, up = p + stride, down = p - stride; k <= reach; k++, up += stride, down -= stride) {
+      const a = from[up]!;
+      const b = from[down]!;
+      const a2 = from[up + 1]!;
+      const b2 = from[down + 1]!;
+      const w = smooth[k]!;
+      const c = second[k]!;
+      const f = first[k]!;
+      s += w * (a + b);
+      e += c * (a + b);
+      d += f * (a - b);
+      s2 += w * (a2 + b2);
+      e2 += c * (a2 + b2);
+      d2 += f * (a2 - b2);
     }
     out0[j] = s;
     out1[j] = d;
     out2[j] = e;
+    out0[j + 1] = s2;
+    out1[j + 1] = d2;
+    out2[j + 1] = e2;
   }
 }
 
-function threeAlongY(
+/** Smoothed values and slopes, as {@link allThree}. */
+function smoothAnd(
   from: Float64Array,
-  wide: number,
-  ny: number,
-  kernel: GaussianKernels,
+  start: number,
+  stride: number,
+  length: number,
+  reach: number,
+  smooth: Float64Array,
+  first: Float64Array,
   out0: Float64Array,
+  out1: Float64Array,
+): void {
+  const w0 = smooth[0]!;
+  for (let j = 0; j < length; j += 2) {
+    const p = start + j;
+    let s = w0 * from[p]!;
+    let d = 0;
+    let s2 = w0 * from[p + 1]!;
+    let d2 = 0;
+    for (let k = 1, up = p + stride, down = p - stride; k <= reach; k++, up += stride, down -= stride) {
+      const a = from[up]!;
+      const b = from[down]!;
+      const a2 = from[up + 1]!;
+      const b2 = from[down + 1]!;
+      const w = smooth[k]!;
+      const f = first[k]!;
+      s += w * (a + b);
+      d += f * (a - b);
+      s2 += w * (a2 + b2);
+      d2 += f * (a2 - b2);
+    }
+    out0[j] = s;
+    out1[j] = d;
+    out0[j + 1] = s2;
+    out1[j + 1] = d2;
+  }
+}
+
+/** Smoothed values, as {@link allThree}. */
+function smoothOnly(
+  from: Float64Array,
+  start: number,
+  stride: number,
+  length: number,
+  { reach, smooth }: GaussianKernels,
+  out0: Float64Array,
+): void {
+  const w0 = smooth[0]!;
+  for (let j = 0; j < length; j += 2) {
+    const p = start + j;
+    let s = w0 * from[p]!;
+    let s2 = w0 * from[p + 1]!;
+    for (let k = 1, up = p + stride, down = p - stride; k <= reach; k++, up += stride, down -= stride) {
+      const w = smooth[k]!;
+      s += w * (from[up]! + from[down]!);
+      s2 += w * (from[up + 1]! + from[down + 1]!);
+    }
+    out0[j] = s;
+    out0[j + 1] = s2;
+  }
+}
+
+/** Slopes and curvatures along a row, as {@link allThree}. */
+function slopeAndCurve(
+  from: Float64Array,
+  start: number,
+  length: number,
+  { reach, first, second }: GaussianKernels,
   out1: Float64Array,
   out2: Float64Array,
 ): void {
-  const { reach, smooth, first, second } = kernel;
-  const length = wide * ny;
-  const shift = wide * reach;
-  for (let j = 0; j < length; j++) {
-    const c = from[j + shift]!;
-    let s = smooth[0]! * c;
+  const c0 = second[0]!;
+  for (let j = 0; j < length; j += 2) {
+    const p = start + j;
+    let e = c0 * from[p]!;
     let d = 0;
-    let e = second[0]! * c;
-    for (let k = 1, up = j + shift + wide, down = j + shift - wide; k <= reach; k++, up += wide, down -= wide) {
-      const a = from[up]!;
-      const b = from[down]!;
-      const sum = a + b;
-      s += smooth[k]! * sum;
-      e += second[k]! * sum;
-      d += first[k]! * (a - b);
+    let e2 = c0 * from[p + 1]!;
+    let d2 = 0;
+    for (let k = 1; k <= reach; k++) {
+      const a = from[p + k]!;
+      const b = from[p - k]!;
+      const a2 = from[p + 1 + k]!;
+      const b2 = from[p + 1 - k]!;
+      const c = second[k]!;
+      const f = first[k]!;
+      e += c * (a + b);
+      d += f * (a - b);
+      e2 += c * (a2 + b2);
+      d2 += f * (a2 - b2);
     }
-    out0[j] = s;
     out1[j] = d;
     out2[j] = e;
+    out1[j + 1] = d2;
+    out2[j + 1] = e2;
   }
 }
 
-function twoAlongY(
-  from: Float64Array,
-  wide: number,
-  ny: number,
-  kernel: GaussianKernels,
-  out0: Float64Array,
-  out1: Float64Array,
-): void {
-  const { reach, smooth, first } = kernel;
-  const length = wide * ny;
-  const shift = wide * reach;
-  for (let j = 0; j < length; j++) {
-    let s = smooth[0]! * from[j + shift]!;
-    let d = 0;
-    for (let k = 1, up = j + shift + wide, down = j + shift - wide; k <= reach; k++, up += wide, down -= wide) {
-      const a = from[up]!;
-      const b = from[down]!;
-      s += smooth[k]! * (a + b);
-      d += first[k]! * (a - b);
-    }
-    out0[j] = s;
-    out1[j] = d;
-  }
-}
-
-function oneAlongY(from: Float64Array, wide: number, ny: number, kernel: GaussianKernels, out0: Float64Array): void {
-  const { reach, smooth } = kernel;
-  const length = wide * ny;
-  const shift = wide * reach;
-  for (let j = 0; j < length; j++) {
-    let s = smooth[0]! * from[j + shift]!;
-    for (let k = 1, up = j + shift + wide, down = j + shift - wide; k <= reach; k++, up += wide, down -= wide)
-      s += smooth[k]! * (from[up]! + from[down]!);
-    out0[j] = s;
-  }
-}
-
+/** The measure along a row, from its derivatives. */
 function rowOfRidge(
-  z0y0: Float64Array,
-  z0y1: Float64Array,
-  z0y2: Float64Array,
-  z1y0: Float64Array,
-  z1y1: Float64Array,
-  z2y0: Float64Array,
-  row: number,
+  rows: RidgeRows,
   nx: number,
-  kernel: GaussianKernels,
   { normalise, slope, damping }: BlockScale,
   polarity: 1 | -1,
   out: Float32Array,
   to: number,
 ): void {
-  const { reach, smooth, first, second } = kernel;
   const nxx = -polarity * normalise[0];
   const nyy = -polarity * normalise[1];
   const nzz = -polarity * normalise[2];
@@ -199,46 +270,13 @@ function rowOfRidge(
   const nxz = -polarity * normalise[4];
   const nyz = -polarity * normalise[5];
   const [slopeX, slopeY, slopeZ] = slope;
-  const s0 = smooth[0]!;
-  const e0 = second[0]!;
   for (let x = 0; x < nx; x++) {
-    const c = row + x + reach;
-    let xx = e0 * z0y0[c]!;
-    let yy = s0 * z0y2[c]!;
-    let zz = s0 * z2y0[c]!;
-    let yz = s0 * z1y1[c]!;
-    let xy = 0;
-    let xz = 0;
-    let gx = 0;
-    let gy = s0 * z0y1[c]!;
-    let gz = s0 * z1y0[c]!;
-    for (let k = 1; k <= reach; k++) {
-      const up = c + k;
-      const down = c - k;
-      const s = smooth[k]!;
-      const f = first[k]!;
-      const a0 = z0y0[up]!;
-      const b0 = z0y0[down]!;
-      const a1 = z0y1[up]!;
-      const b1 = z0y1[down]!;
-      const a2 = z1y0[up]!;
-      const b2 = z1y0[down]!;
-      xx += second[k]! * (a0 + b0);
-      gx += f * (a0 - b0);
-      gy += s * (a1 + b1);
-      gz += s * (a2 + b2);
-      xy += f * (a1 - b1);
-      xz += f * (a2 - b2);
-      yy += s * (z0y2[up]! + z0y2[down]!);
-      zz += s * (z2y0[up]! + z2y0[down]!);
-      yz += s * (z1y1[up]! + z1y1[down]!);
-    }
-    xx *= nxx;
-    yy *= nyy;
-    zz *= nzz;
-    xy *= nxy;
-    xz *= nxz;
-    yz *= nyz;
+    const xx = nxx * rows.xx[x]!;
+    const yy = nyy * rows.yy[x]!;
+    const zz = nzz * rows.zz[x]!;
+    const xy = nxy * rows.xy[x]!;
+    const xz = nxz * rows.xz[x]!;
+    const yz = nyz * rows.yz[x]!;
     // Signs of the eigenvalues from the characteristic polynomial: most voxels have fewer than two positive ones.
     const trace = xx + yy + zz;
     const e2 = xx * yy + xx * zz + yy * zz - xy * xy - xz * xz - yz * yz;
@@ -264,9 +302,9 @@ function rowOfRidge(
       out[to + x] = 0;
       continue;
     }
-    gx *= slopeX;
-    gy *= slopeY;
-    gz *= slopeZ;
+    const gx = slopeX * rows.x[x]!;
+    const gy = slopeY * rows.y[x]!;
+    const gz = slopeZ * rows.z[x]!;
     let slope2 = gx * gx + gy * gy + gz * gz;
     // The slope along the string is no distance from its crest: g' adj(A - least I) g = (l1 - least)(l2 - least)(g along)^2.
     const between = product - least * (trace - least) + least * least;
