@@ -1,13 +1,14 @@
 import { batch, computed, effect, type ReadonlySignal, type Signal, signal } from "@preact/signals";
 import { NO_SELECTION, type Selection, selectLine, selectNode, stillThere } from "#renderer/editor/selection.ts";
 import { EditQueue } from "#renderer/editor/session/edit-queue.ts";
-import type { Intent, IntentPlace, LeavePlace } from "#renderer/editor/session/intent.ts";
+import type { Intent, LeavePlace } from "#renderer/editor/session/intent.ts";
 import type { PassKeeper } from "#renderer/editor/session/pass-keeper.ts";
 import { performIntent } from "#renderer/editor/session/perform.ts";
 import type { Stage } from "#renderer/editor/session/stage.ts";
 import { afterLabelling, type Sticky, stickyOf } from "#renderer/editor/session/sticky-labels.ts";
 import { type AskSolve, StrandSolver } from "#renderer/editor/session/strand-solver.ts";
 import { type Guide, GuideFollower, type GuideSource } from "#renderer/editor/tracing/guide-follower.ts";
+import type { IntentPlace } from "#renderer/editor/tracing/intent-place.ts";
 import { passing } from "#renderer/editor/tracing/passing.ts";
 import { type Projection, project, tipOf } from "#renderer/editor/tracing/projection.ts";
 import { type Aim, type AskSnap, type Snapped, Snapper } from "#renderer/editor/tracing/snapper.ts";

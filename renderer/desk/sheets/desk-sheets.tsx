@@ -10,12 +10,6 @@ import { TextSheet } from "#renderer/desk/sheets/text-sheet.tsx";
 import { UprightSheet } from "#renderer/desk/sheets/upright-sheet.tsx";
 import type { DeskContext } from "#renderer/editor/commands/desk-context.ts";
 
-export interface DeskSheetProps {
-  readonly model: DeskModel;
-  readonly context: DeskContext;
-  readonly close: () => void;
-}
-
 /** The sheet that is open, if any. */
 export function DeskSheets({ model, context }: { readonly model: DeskModel; readonly context: DeskContext }) {
   const close = () => {

@@ -1,4 +1,4 @@
-import type { DeskSheetProps } from "#renderer/desk/sheets/desk-sheets.tsx";
+import type { DeskSheetProps } from "#renderer/desk/sheets/sheet-props.ts";
 import { TextSheet } from "#renderer/desk/sheets/text-sheet.tsx";
 
 /** Sets a finding aside; the reason is kept with the trees. */

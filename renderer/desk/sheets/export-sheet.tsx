@@ -2,7 +2,7 @@ import { useState } from "preact/hooks";
 import { CAUTIONS } from "#renderer/app/about-sheet.tsx";
 import { Sheet } from "#renderer/app/sheet.tsx";
 import { exportFileName, exportTrees } from "#renderer/desk/model/export-trees.ts";
-import type { DeskSheetProps } from "#renderer/desk/sheets/desk-sheets.tsx";
+import type { DeskSheetProps } from "#renderer/desk/sheets/sheet-props.ts";
 import type { ExportFormat } from "#shared/api/routes.ts";
 
 const FORMATS: readonly { readonly format: ExportFormat; readonly title: string; readonly words: string }[] = [

@@ -1,5 +1,5 @@
 import { Sheet } from "#renderer/app/sheet.tsx";
-import type { DeskSheetProps } from "#renderer/desk/sheets/desk-sheets.tsx";
+import type { DeskSheetProps } from "#renderer/desk/sheets/sheet-props.ts";
 import { groupedCommands } from "#renderer/editor/commands/command-table.ts";
 import { shownShortcut } from "#renderer/editor/commands/shortcut.ts";
 

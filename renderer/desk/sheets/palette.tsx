@@ -1,6 +1,6 @@
 import { useEffect, useRef, useState } from "preact/hooks";
 import { Sheet } from "#renderer/app/sheet.tsx";
-import type { DeskSheetProps } from "#renderer/desk/sheets/desk-sheets.tsx";
+import type { DeskSheetProps } from "#renderer/desk/sheets/sheet-props.ts";
 import { COMMANDS } from "#renderer/editor/commands/command-table.ts";
 import { matching } from "#renderer/editor/commands/match-commands.ts";
 import { shownShortcut } from "#renderer/editor/commands/shortcut.ts";

@@ -1,7 +1,7 @@
 import { useState } from "preact/hooks";
 import { Sheet } from "#renderer/app/sheet.tsx";
 import { type LookedAtTrees, lookAtTrees } from "#renderer/desk/model/look-at-trees.ts";
-import type { DeskSheetProps } from "#renderer/desk/sheets/desk-sheets.tsx";
+import type { DeskSheetProps } from "#renderer/desk/sheets/sheet-props.ts";
 import { countOf } from "#renderer/editor/session/words.ts";
 
 /** Takes the trees of a file into this pass. Trees of another scan are asked about first. */

@@ -1,6 +1,6 @@
 import { Sheet } from "#renderer/app/sheet.tsx";
 import { addLandmark, LANDMARK_KINDS, landmarkCount, removeLandmarks } from "#renderer/desk/model/landmarks.ts";
-import type { DeskSheetProps } from "#renderer/desk/sheets/desk-sheets.tsx";
+import type { DeskSheetProps } from "#renderer/desk/sheets/sheet-props.ts";
 import { valveAxes } from "#shared/geometry/valve-axes.ts";
 
 /**

@@ -1,12 +1,8 @@
 import type { MendIntent } from "#renderer/editor/session/mends.ts";
+import type { IntentPlace } from "#renderer/editor/tracing/intent-place.ts";
 import type { Sight } from "#renderer/editor/tracing/passing.ts";
-import type { Aim } from "#renderer/editor/tracing/snapper.ts";
-import type { PointMm } from "#shared/geometry/types.ts";
 import type { EndKind, NodeId, TreeDocument } from "#shared/trees/document.ts";
 import type { Anchor } from "#shared/trees/edits/anchor.ts";
-
-/** A place already known, or one that the engine still has to snap. */
-export type IntentPlace = { readonly point: PointMm } | { readonly aim: Aim };
 
 /** Where a branch or cross-link leaves: a node or strand, or whatever passes the pointer by the time it is carried out. */
 export type LeavePlace = Anchor | { readonly passing: Sight };

@@ -1,7 +1,8 @@
-import type { Intent, IntentPlace } from "#renderer/editor/session/intent.ts";
+import type { Intent } from "#renderer/editor/session/intent.ts";
 import { inOne, type MakePlan, makeEdit, type Stage, settlePlace } from "#renderer/editor/session/stage.ts";
 import { stickyEndLabels } from "#renderer/editor/session/sticky-labels.ts";
 import { KIND_WORDS, treeName } from "#renderer/editor/session/words.ts";
+import type { IntentPlace } from "#renderer/editor/tracing/intent-place.ts";
 import { settleAnchor } from "#renderer/editor/tracing/passing.ts";
 import { goingOnFrom, NOTHING, tipPlace, withOtherLeg } from "#renderer/editor/tracing/under-way.ts";
 import { TautlineError } from "#shared/errors.ts";

@@ -1,7 +1,7 @@
-import type { IntentPlace } from "#renderer/editor/session/intent.ts";
 import type { PassKeeper } from "#renderer/editor/session/pass-keeper.ts";
 import type { Sticky } from "#renderer/editor/session/sticky-labels.ts";
 import type { StrandSolver } from "#renderer/editor/session/strand-solver.ts";
+import type { IntentPlace } from "#renderer/editor/tracing/intent-place.ts";
 import type { AskSnap } from "#renderer/editor/tracing/snapper.ts";
 import { choose } from "#renderer/editor/tracing/snapper.ts";
 import type { UnderWay } from "#renderer/editor/tracing/under-way.ts";

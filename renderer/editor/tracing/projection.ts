@@ -1,4 +1,5 @@
-import type { Intent, IntentPlace, LeavePlace } from "#renderer/editor/session/intent.ts";
+import type { Intent, LeavePlace } from "#renderer/editor/session/intent.ts";
+import type { IntentPlace } from "#renderer/editor/tracing/intent-place.ts";
 import type { UnderWay } from "#renderer/editor/tracing/under-way.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
 import { roundPoint } from "#shared/geometry/types.ts";
