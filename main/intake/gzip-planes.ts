@@ -1,6 +1,6 @@
 import { createReadStream } from "node:fs";
 import { basename } from "node:path";
-import { createGunzip } from "node:zlib";
+import { createGunzip, createUnzip } from "node:zlib";
 import { asUnreadable, stopIfAborted } from "#main/intake/read-file.ts";
 import { type PlaneRun, planesPerRun, swapBytes } from "#main/intake/slice-source.ts";
 import { TautlineError, unreadable } from "#shared/errors.ts";
@@ -15,6 +15,8 @@ export interface GzipLayout {
   readonly dtype: SourceDtype;
   readonly littleEndian: boolean;
   readonly sliceVoxels: number;
+  /** True: a zlib stream is taken as well. */
+  readonly zlib?: boolean;
 }
 
 /**
@@ -84,7 +86,7 @@ export class GzipPlanes {
   async *#inflate(part: number, signal?: AbortSignal): AsyncGenerator<Buffer, void, void> {
     const { path, offset } = this.layout.parts[part]!;
     const file = createReadStream(path, { start: offset, highWaterMark: 1024 * 1024 });
-    const gunzip = createGunzip({ chunkSize: 256 * 1024 });
+    const gunzip = (this.layout.zlib ? createUnzip : createGunzip)({ chunkSize: 256 * 1024 });
     file.on("data", (chunk) => {
       this.#bytesRead += chunk.length;
     });
@@ -100,7 +102,7 @@ export class GzipPlanes {
       const found = code === "Z_BUF_ERROR" ? "one that ends early" : "damaged data";
       throw unreadable(
         basename(path),
-        "a whole gzip stream",
+        this.layout.zlib ? "a whole zlib or gzip stream" : "a whole gzip stream",
         found,
         "compressed voxels",
         "The file was cut short or changed on the way; copy it again.",

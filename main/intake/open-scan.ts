@@ -1,11 +1,13 @@
 import { stat } from "node:fs/promises";
 import { basename, join } from "node:path";
+import { openMetaImage } from "#main/intake/meta-image/meta-image-source.ts";
 import { openNrrd } from "#main/intake/nrrd/nrrd-source.ts";
 import { openOmeZarr, zarrFolderOf } from "#main/intake/ome-zarr/ome-zarr-source.ts";
 import { asUnreadable, ReadFile } from "#main/intake/read-file.ts";
 import type { ScanChoice, SliceSource } from "#main/intake/slice-source.ts";
 import { openTiff } from "#main/intake/tiff/tiff-source.ts";
 import { unreadable } from "#shared/errors.ts";
+import { isMetaImage } from "#shared/volume/meta-image/meta-image-fields.ts";
 import { isNrrd, latin1, quote } from "#shared/volume/nrrd/nrrd-fields.ts";
 import { isTiff } from "#shared/volume/tiff/tiff-entries.ts";
 
@@ -41,6 +43,7 @@ export async function openScan(path: string, choice: ScanChoice = {}): Promise<S
   if (head.length === 0) throw unreadable(basename(path), READABLE, "an empty file");
   if (isNrrd(head)) return openNrrd(path);
   if (isTiff(head)) return openTiff(path);
+  if (isMetaImage(head)) return openMetaImage(path);
   const name = basename(path);
   if (name === "zarr.json" || name === ".zattrs" || name === ".zgroup") return openScan(join(path, ".."), choice);
   throw unreadable(name, READABLE, familyByMagic(head) ?? `a file that begins with ${quote(latin1(head.subarray(0, 16)))}`);
@@ -59,7 +62,6 @@ function familyByMagic(head: Uint8Array): string | null {
   const text = latin1(head);
   if (head.length >= 132 && text.slice(128, 132) === "DICM") return "a DICOM file";
   if (head.length >= 348 && /^(n\+1|ni1)\0$/.test(text.slice(344, 348))) return "a NIfTI-1 file";
-  if (/^(ObjectType|NDims)\s*=/.test(text)) return "a MetaImage header";
   if (head[0] === 0x1f && head[1] === 0x8b) return "a gzip file";
   if (text.startsWith("\x89PNG")) return "a PNG picture";
   if (text.startsWith("BM")) return "a BMP picture";

@@ -12,7 +12,18 @@ import type { SourceDtype } from "#shared/volume/dtype.ts";
 import type { FrameName, VolumeGrid } from "#shared/volume/grid.ts";
 import { toMm } from "#shared/volume/length-unit.ts";
 
-export type ScanFamily = "NRRD" | "TIFF" | "OME-Zarr" | "generated";
+export type ScanFamily =
+  | "NRRD"
+  | "MetaImage"
+  | "NIfTI-1"
+  | "DICOM"
+  | "TIFF"
+  | "TIFF slices"
+  | "PNG slices"
+  | "BMP slices"
+  | "OME-Zarr"
+  | "raw"
+  | "generated";
 
 /** What a scan file says about its voxels, every family alike; nothing here is guessed. */
 export interface ScanHeader {
