@@ -63,12 +63,22 @@ export function eventsOfPairs(
     const gone = missing[k]!.filter((part) => !exchanged.has(part));
     const extra = added[k]!.filter((part) => !exchanged.has(part));
     const settled = new Set<string>();
+    // Strands that only one side has are left out of the joins; one that merely ends elsewhere is on both sides and stays.
+    const [onlyA, onlyB] = [new Set<string>(), new Set<string>()];
+    const leaveOut = (event: CompareEvent, part: UncoveredPart, out: Set<string>) => {
+      events[k]!.push(event);
+      if (event.event === "missed-branch" || event.event === "extra-branch") for (const id of part.strands) out.add(id);
+    };
+    for (const part of missing[k]!) if (exchanged.has(part)) for (const id of part.strands) onlyA.add(id);
+    for (const part of added[k]!) if (exchanged.has(part)) for (const id of part.strands) onlyB.add(id);
     for (const part of gone) {
       // The same end reached by another way is one error, not a branch missed and another made up.
       const rerouted = extra.find((other) => sharedEnd(treeA, treeB, part, other, tolerance) !== undefined);
       if (rerouted) {
         extra.splice(extra.indexOf(rerouted), 1);
         settled.add(`a ${sharedEnd(treeA, treeB, part, rerouted, tolerance)}`);
+        for (const id of part.strands) onlyA.add(id);
+        for (const id of rerouted.strands) onlyB.add(id);
         events[k]!.push({
           event: "joined-differently",
           a: part.firstStrand,
@@ -76,12 +86,11 @@ export function eventsOfPairs(
           at: part.start,
           length: part.length,
         });
-      } else events[k]!.push(nameMissing(treeA, treeB, part, tolerance, settled));
+      } else leaveOut(nameMissing(treeA, treeB, part, tolerance, settled), part, onlyA);
     }
-    for (const part of extra) events[k]!.push(nameAdded(treeA, treeB, part, tolerance, settled));
-    const cutA = withoutStrands(treeA, new Set(missing[k]!.flatMap((part) => part.strands)));
-    const cutB = withoutStrands(treeB, new Set(added[k]!.flatMap((part) => part.strands)));
-    events[k]!.push(...compareJoins(canonicalTree(cutA, merge), canonicalTree(cutB, merge), tolerance, settled));
+    for (const part of extra) leaveOut(nameAdded(treeA, treeB, part, tolerance, settled), part, onlyB);
+    const [restA, restB] = [withoutStrands(treeA, onlyA), withoutStrands(treeB, onlyB)];
+    events[k]!.push(...compareJoins(canonicalTree(restA, merge), canonicalTree(restB, merge), tolerance, settled));
     if (treeA.name && treeB.name && treeA.name !== treeB.name) {
       const root = treeA.nodes.find((node) => node.id === treeA.root) ?? treeA.nodes[0];
       if (root) events[k]!.push({ event: "renamed", a: treeA.id, b: treeB.id, at: placeOf(root), length: 0 });

@@ -205,6 +205,19 @@ describe("events in an annotator's words", () => {
     expect(Math.abs(found[0]!.length - Math.hypot(1, 2))).toBeLessThan(0.2);
   });
 
+  it("names a strand ended short once where only one other strand leaves its fork", () => {
+    const short = fan(
+      "t2",
+      [10, 0, 0],
+      [10, 0, 6],
+      [
+        [8, 0, 13],
+        [11, 0, 9.5],
+      ],
+    );
+    expect(events(set(two), set(short)).map((event) => event.event)).toEqual(["short-end"]);
+  });
+
   it("names tails exchanged between two trees at a crossing once", () => {
     const left = (tail: Place) => fan("l", [0, 0, 0], [2, 0, 6], [[-3, 0, 12], tail]);
     const right = (tail: Place) => fan("r", [6, 0.6, 0], [4, 0.6, 6], [[9, 0.6, 12], tail]);
