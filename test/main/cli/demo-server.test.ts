@@ -1,3 +1,5 @@
+import { readdir } from "node:fs/promises";
+import { join } from "node:path";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import type { SectionHeader, SnapAnswer, SolvedCurve, ValueAnswer } from "#shared/api/engine.ts";
 import { decodeFrame } from "#shared/api/frame.ts";
@@ -15,23 +17,35 @@ describe("the demo valve over the server", () => {
   beforeAll(async () => {
     where = await place();
     server = await startServer(where, ["--port", "0", "--grace", "600"]);
-    const ended = followJobs(server, jobs);
-    await server.call("POST", "/api/demo", {});
-    await ended;
-    const { answer } = await server.call<ShelfAnswer>("GET", "/api/shelf");
-    expect(answer.problems).toEqual([]);
-    demo = answer.specimens[0]!;
-  }, 180_000);
+  }, 60_000);
   afterAll(async () => {
     server?.child.kill("SIGTERM");
     await server?.ended;
     await where?.remove();
   });
+
+  it("leaves nothing when it is stopped while it is made", async () => {
+    const { answer } = await server.call<{ job: string }>("POST", "/api/demo", {});
+    const states: JobState[] = [];
+    const ended = followJobs(server, states, answer.job);
+    await expect.poll(() => states.some(({ progress }) => progress > 0), { timeout: 60_000 }).toBe(true);
+    await server.call("POST", `/api/jobs/${answer.job}/cancel`, {});
+    await ended;
+    expect(states.at(-1)).toMatchObject({ state: "cancelled" });
+    expect((await server.call<ShelfAnswer>("GET", "/api/shelf")).answer).toEqual({ specimens: [], problems: [] });
+    expect(await readdir(join(where.library, "unfinished"))).toEqual([]);
+  });
+
   const post = (path: string, body: object) =>
     fetch(server.origin + path, { method: "POST", headers: { [TOKEN_HEADER]: server.token }, body: JSON.stringify(body) });
   const ticket = (lane: string, number: number) => ({ window: "w1", lane, number });
 
-  it("is made with progress, labelled synthetic, with three finished passes of twenty trees", () => {
+  it("is made with progress, labelled synthetic, with three finished passes of twenty trees", async () => {
+    const { answer: started } = await server.call<{ job: string }>("POST", "/api/demo", {});
+    await followJobs(server, jobs, started.job);
+    const { answer } = await server.call<ShelfAnswer>("GET", "/api/shelf");
+    expect(answer.problems).toEqual([]);
+    demo = answer.specimens[0]!;
     expect(jobs.at(-1)).toMatchObject({ what: "demo", state: "done", result: { specimen: demo.specimen.id } });
     const progress = jobs.map((job) => job.progress);
     expect(progress).toEqual([...progress].sort((a, b) => a - b));
@@ -41,7 +55,7 @@ describe("the demo valve over the server", () => {
       ["AN-1", "AN-2", "AN-3"].map((annotator) => [annotator, true, "finished"]),
     );
     for (const { trees } of demo.passes) expect(trees).toBe(20);
-  });
+  }, 180_000);
 
   it("shows a section, dark outside the scan, and the value under the pointer", async () => {
     const { volume, display } = demo.specimen;
