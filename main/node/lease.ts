@@ -24,7 +24,7 @@ export interface LeaseRecord {
   /** UTC milliseconds of the last renewal. */
   readonly heartbeat: number;
   readonly nonce: string;
-  /** `server` or the command line's verb. */
+  /** What holds it, in words: the server, the desktop program, or the command line's verb. */
   readonly what: string;
 }
 

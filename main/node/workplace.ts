@@ -47,7 +47,8 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
   const random = (count: number) => new Uint8Array(randomBytes(count));
   const newId = () => createId(random);
   await makeFolder(files, join(root, "specimens"));
-  const lease = await takeLease({ files, path: join(root, "lease.json"), what: "server", facts: processFacts(), random });
+  const what = options.shell === "electron" ? "the desktop program" : "the server";
+  const lease = await takeLease({ files, path: join(root, "lease.json"), what, facts: processFacts(), random });
   try {
     const events = new Events();
     const emit: Events["emit"] = (event) => events.emit(event);

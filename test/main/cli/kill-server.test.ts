@@ -63,5 +63,5 @@ describe("a server killed by kill -9 while edits come in", () => {
     expect(saved.length).toBeGreaterThan(KILLS * 7);
     const { answer: shelf } = await server.call<{ problems: string[] }>("GET", "/api/shelf");
     expect(shelf.problems).toEqual([]);
-  });
+  }, 180_000);
 });
