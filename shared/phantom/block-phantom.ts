@@ -1,11 +1,11 @@
 import type { NodeLabels } from "#shared/formats/chordae/chordae-file.ts";
 import { roundPoint, type Vec3 } from "#shared/geometry/types.ts";
 import { add, mix, normalise, scale, subtract } from "#shared/geometry/vec3.ts";
-import { lookOf } from "#shared/phantom/demo-valve.ts";
 import type { PlannedEnd, PlannedFork, PlannedPart, PlannedTree } from "#shared/phantom/grow-tree.ts";
 import { type PhantomSpecimen, truthFile } from "#shared/phantom/phantom-specimen.ts";
 import { LEAFLET, MUSCLE, Plot } from "#shared/phantom/plant.ts";
 import { scanOfSolids } from "#shared/phantom/render-scan.ts";
+import { lookOf, PHANTOM_FACTS } from "#shared/phantom/scan-look.ts";
 import { Solids } from "#shared/phantom/solids.ts";
 import { type Crossing, meetingPlace } from "#shared/phantom/valve-trees.ts";
 import { SeededRandom } from "#shared/random/seeded-random.ts";
@@ -70,14 +70,7 @@ export function blockPhantom(options: {
     }
   }
   const blurFwhmMm = 1.75 * spacingMm;
-  const facts = {
-    species: "porcine",
-    fixation: "fixed under load (synthetic)",
-    medium: "none (synthetic)",
-    pressure: 100,
-    state: "closed",
-  };
-  const about = { name, grid, blurFwhmMm, facts, landmarks: landmarksOf(layout, trees) };
+  const about = { name, grid, blurFwhmMm, facts: PHANTOM_FACTS, landmarks: landmarksOf(layout, trees) };
   return {
     ...about,
     dtype: "uint16",

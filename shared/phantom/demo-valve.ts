@@ -3,7 +3,8 @@ import { pointMm, roundPoint } from "#shared/geometry/types.ts";
 import { type HumanError, type HumanPass, humanPasses } from "#shared/phantom/human-passes.ts";
 import { type PhantomSpecimen, truthFile } from "#shared/phantom/phantom-specimen.ts";
 import { Plot } from "#shared/phantom/plant.ts";
-import { type ScanLook, scanOfSolids } from "#shared/phantom/render-scan.ts";
+import { scanOfSolids } from "#shared/phantom/render-scan.ts";
+import { lookOf, PHANTOM_FACTS } from "#shared/phantom/scan-look.ts";
 import { Solids } from "#shared/phantom/solids.ts";
 import { addValveBody, annulusAt, HEADS, leafletAt } from "#shared/phantom/valve-shape.ts";
 import { plantValve } from "#shared/phantom/valve-trees.ts";
@@ -68,14 +69,7 @@ export function valvePhantom(options: {
   addValveBody(solids, plot.clearance);
   const { crossing, crossLinks } = plantValve(plot, random, spacingMm);
   const blurFwhmMm = 1.7 * spacingMm;
-  const facts = {
-    species: "porcine",
-    fixation: "fixed under load (synthetic)",
-    medium: "none (synthetic)",
-    pressure: 100,
-    state: "closed",
-  };
-  const about = { name, grid, blurFwhmMm, facts, landmarks: valveLandmarks() };
+  const about = { name, grid, blurFwhmMm, facts: PHANTOM_FACTS, landmarks: valveLandmarks() };
   return {
     ...about,
     dtype: "uint16",
@@ -83,12 +77,6 @@ export function valvePhantom(options: {
     truth: truthFile(about, plot.trees, crossLinks) as ChordaeFile,
     crossings: [crossing],
   };
-}
-
-/** Grey values of a phantom; `noise` as a share of a string's contrast. */
-export function lookOf(seed: number, noise: number, blurFwhmMm: number): ScanLook {
-  const contrast = { string: 24000, muscle: 19500, leaflet: 17500 };
-  return { seed, background: 9000, contrast, noise: noise * contrast.string, blurFwhmMm, ring: 420, fibre: 0.07 };
 }
 
 function gridOf(spacingMm: number, size?: readonly [number, number, number]): VolumeGrid {

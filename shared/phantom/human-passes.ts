@@ -43,7 +43,7 @@ export function humanPasses(
   const { truth, crossings, grid } = specimen;
   const hand = Math.min(0.03, 0.5 * grid.spacing[0]);
   const mistakes: ((trees: readonly FileTree[]) => { trees: FileTree[]; errors: Mistake[] })[] = [
-    (trees) => missThinBranch(trees, crossings),
+    (trees) => missThinBranch(trees, crossings, new Set(truth.crossLinks?.flatMap(({ from, to }) => [from, to]))),
     (trees) => exchangeTails(trees, crossings),
     (trees) => lowForkAndShortEnd(trees, crossings),
   ];
@@ -146,11 +146,25 @@ function replaceTree(trees: readonly FileTree[], tree: FileTree): FileTree[] {
   return trees.map((other) => (other.id === tree.id ? tree : other));
 }
 
-/** The thinnest end branch that parts from one other strand: gone with its fork, which nobody sees without it. */
-function missThinBranch(trees: readonly FileTree[], crossings: readonly Crossing[]): { trees: FileTree[]; errors: Mistake[] } {
+/**
+ * The thinnest end branch that parts from one other strand: gone with its fork, which nobody sees without it.
+ * @param linked nodes that cross-links end at; these stay.
+ */
+function missThinBranch(
+  trees: readonly FileTree[],
+  crossings: readonly Crossing[],
+  linked: ReadonlySet<string>,
+): { trees: FileTree[]; errors: Mistake[] } {
   const spared = new Set(crossings.flatMap((crossing) => crossing.strands));
   const candidates = branchesOf(trees).filter(
-    (b) => b.to.kind === "insertion" && b.siblings.length === 1 && b.before && !spared.has(b.strand.id) && b.length > 1,
+    (b) =>
+      b.to.kind === "insertion" &&
+      b.siblings.length === 1 &&
+      b.before !== undefined &&
+      b.length > 1 &&
+      !spared.has(b.strand.id) &&
+      !linked.has(b.from.id) &&
+      !linked.has(b.to.id),
   );
   const missed = candidates.sort((a, b) => a.strand.radii!.at(-1)! - b.strand.radii!.at(-1)!)[0];
   if (!missed) return { trees: [...trees], errors: [] };

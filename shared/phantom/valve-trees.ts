@@ -131,7 +131,7 @@ export function plantValve(plot: Plot, random: SeededRandom, step: number): { cr
   }
   const strands = [strandTo(planted.get("ALPM-06")!, 2), strandTo(planted.get("ALPM-07")!, 0)] as const;
   const crossing = { at: meetingPlace(strands[0].points!, strands[1].points!), strands: [strands[0].id, strands[1].id] as const };
-  return { crossing, crossLinks: [crossLink(plot, planted.get("ALPM-03")!, planted.get("ALPM-08")!, random, step)] };
+  return { crossing, crossLinks: [crossLink(plot, planted.get("ALPM-04")!, planted.get("ALPM-05")!, random, step)] };
 }
 
 /** Heads share the work: designs of a muscle's second head go on to its third where it has one. */

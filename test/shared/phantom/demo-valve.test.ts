@@ -1,4 +1,5 @@
 import { describe, expect, it } from "vitest";
+import { compareSets } from "#shared/compare/compare-sets.ts";
 import { checkChordaeFile } from "#shared/formats/chordae/check-chordae-file.ts";
 import { documentFromFile } from "#shared/formats/chordae/document-from-file.ts";
 import { valveAxes } from "#shared/geometry/valve-axes.ts";
@@ -47,6 +48,31 @@ describe("the demo valve HB-07", () => {
     const meant = ["ALPM-06 ALPM-07", "PMPM-06 PMPM-07"];
     expect(smallestGap(valve.truth, (a, b) => meant.includes(pair(a, b)))).toBeGreaterThan(0.15);
     for (const name of meant) expect(Math.abs(smallestGap(valve.truth, (a, b) => pair(a, b) !== name))).toBeLessThan(0.15);
+  });
+
+  it("keeps the cross-link clear of every tree but the two it joins", () => {
+    const [link] = valve.truth.crossLinks!;
+    const joined = new Set(nodes.filter((node) => node.id === link!.from || node.id === link!.to));
+    for (const tree of valve.truth.trees) {
+      if (tree.nodes.some((node) => joined.has(node))) continue;
+      const alone = { ...valve.truth, trees: [tree, { id: "link", root: null, nodes: [], strands: [link!] }] };
+      expect(smallestGap(alone, () => false)).toBeGreaterThan(0.1);
+    }
+  });
+
+  it("has passes that differ from the truth by exactly the listed events", () => {
+    const options = { preset: "geometry", origin: "held", positionScale: 2, merge: 0.3, tolerance: 0.5 } as const;
+    for (const { annotator, file } of valve.passes) {
+      const found = compareSets(valve.truth, file, { ...options, minimumDiameter: null, step: 0.05 }, () => 20);
+      const events = found.pairs.flatMap((pair) => pair.events.map((event) => event.event)).sort();
+      expect(events).toEqual(
+        valve.errors
+          .filter((error) => error.annotator === annotator)
+          .map((error) => error.event)
+          .sort(),
+      );
+      expect(found.crossLinks).toEqual({ matched: [["x1", "x1"]], onlyA: [], onlyB: [] });
+    }
   });
 
   it("stands upright, with the antero-lateral muscle on the left of the body", () => {
