@@ -108,6 +108,42 @@ describe("the main job in a real browser", () => {
     expect(result.whole.distances.mean).toBeLessThan(SPACING_MM);
   });
 
+  it("shows a second window the pass as it grows, for reading only", async () => {
+    const { page, context } = open;
+    const second = await context.newPage();
+    await second.goto(page.url().replace(/#.*/, program.url.slice(program.url.indexOf("#"))));
+    await second.getByRole("button", { name: /^Open.*AN-1, pass 1/ }).click();
+    await second.getByText("Another window has this pass open for writing").waitFor({ timeout: 30_000 });
+    const { edits } = await headLine(second);
+    await page.bringToFront();
+    await page.locator(".section-view").focus();
+    await page.keyboard.press("Control+z");
+    await allSaved(page);
+    await second.bringToFront();
+    await second.waitForFunction(() => document.querySelector(".counts")?.textContent?.includes("1 open"), undefined, {
+      timeout: 20_000,
+    });
+    await second.keyboard.press("Control+z");
+    expect((await headLine(second)).edits).toBe(edits);
+    await second.close();
+    await page.keyboard.press("Control+y");
+    await allSaved(page);
+  });
+
+  it("has the whole history again after the browser's profile was lost", async () => {
+    const before = await headLine(open.page);
+    await open.close();
+    open = await openPage(program.url, join(program.folder, "another-profile"));
+    const { page } = open;
+    await page.getByRole("button", { name: /^Open.*AN-1, pass 1/ }).click();
+    await deskReady(page);
+    expect(await headLine(page)).toEqual(before);
+    await page.locator(".section-view").focus();
+    for (let i = 0; i < 30; i++) await page.keyboard.press("Control+z");
+    await allSaved(page);
+    expect((await headLine(page)).trees).toBe(0);
+  });
+
   it("met no fault on the way", () => {
     // A request that a newer one made pointless is answered 409, which the browser notes by itself.
     expect(open.faults.filter((fault) => !fault.includes("409"))).toEqual([]);

@@ -3,7 +3,8 @@ import { mkdtemp, rm } from "node:fs/promises";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { type BrowserContext, chromium, type Page } from "playwright-core";
-import { findBrowser } from "#test/tools/browser.mjs";
+// @ts-expect-error a plain script without types
+import { bringBrowser } from "#test/tools/browser.mjs";
 
 /** The program as a person runs it: the built server on a free port, over a library of its own. */
 export interface RunningProgram {
@@ -75,7 +76,7 @@ export interface OpenPage {
 
 /** The page in a real browser with a profile of its own. */
 export async function openPage(url: string, profile: string, size = { width: 1280, height: 800 }): Promise<OpenPage> {
-  const executablePath = findBrowser();
+  const executablePath: string | undefined = bringBrowser();
   if (executablePath === undefined) throw new Error("No Chromium-family browser is installed; see test/tools/browser.mjs.");
   const context = await chromium.launchPersistentContext(profile, {
     executablePath,
