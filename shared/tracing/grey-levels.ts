@@ -12,7 +12,7 @@ export interface GreyLevels {
 }
 
 const PATCH = 16;
-const PATCHES_PER_AXIS = 8;
+const PATCHES_PER_AXIS = 5;
 
 /**
  * Estimates the grey levels from 16-voxel cubes spread evenly over the finest level: a function of scan and polarity alone.

@@ -6,6 +6,7 @@ import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 
 /** Side of a ridge tile, voxels of its level; tile (i, j, k) starts at voxel (32 i, 32 j, 32 k). */
 export const RIDGE_TILE_SIDE = 32;
+/** Voxels of a ridge tile. */
 export const RIDGE_TILE_VOXELS = RIDGE_TILE_SIDE ** 3;
 
 /** A voxel one sigma from the crest answers half as strongly as the curvatures there alone would make it. */
@@ -25,7 +26,8 @@ export interface RidgeTiles {
   /** Scales of a working level, ascending; `scale` of a tile counts in it. */
   scales(level: number): readonly RidgeScale[];
   /**
-   * Tile (i, j, k) of a level; tiles over or beyond the edge see the edge voxels repeated. Borrowed: not to be written to.
+   * Tile (i, j, k) of a level; the scan's edge voxels count as repeated beyond it, and tile voxels outside the level say
+   * nothing. Borrowed: not to be written to.
    * @param count how many of the level's scales take part, finest first; all when not given.
    */
   tile(level: number, i: number, j: number, k: number, count?: number): RidgeTile;
@@ -87,29 +89,33 @@ export function createRidgeTiles(pyramid: VoxelPyramid, polarity: Polarity, keep
     if (known) return known;
     const strength = new Float32Array(RIDGE_TILE_VOXELS);
     const scale = new Uint8Array(RIDGE_TILE_VOXELS).fill(here[0]!);
-    for (const index of here) {
+    // Only what lies inside the level is computed: on coarse levels that is often a small part of a tile.
+    const { size: whole } = pyramid.levels[level]!;
+    const n = RIDGE_TILE_SIDE;
+    const inside: [number, number, number] = [
+      Math.min(n, whole[0] - i * n),
+      Math.min(n, whole[1] - j * n),
+      Math.min(n, whole[2] - k * n),
+    ];
+    const empty = Math.min(...inside) <= 0 || Math.min(i, j, k) < 0;
+    for (const index of empty ? [] : here) {
       const made = blockScale(list[index]!);
-      const reach = made.kernels.map((kernel) => kernel.reach) as [number, number, number];
-      const size: [number, number, number] = [
-        RIDGE_TILE_SIDE + 2 * reach[0],
-        RIDGE_TILE_SIDE + 2 * reach[1],
-        RIDGE_TILE_SIDE + 2 * reach[2],
-      ];
+      const [rx, ry, rz] = made.kernels.map((kernel) => kernel.reach) as [number, number, number];
+      const size = [inside[0] + 2 * rx, inside[1] + 2 * ry, inside[2] + 2 * rz] as const;
       const voxels = size[0] * size[1] * size[2];
       if (input.length < voxels) input = new Float32Array(voxels);
-      const start: [number, number, number] = [
-        i * RIDGE_TILE_SIDE - reach[0],
-        j * RIDGE_TILE_SIDE - reach[1],
-        k * RIDGE_TILE_SIDE - reach[2],
-      ];
-      pyramid.readBoxInto(level, start, size, input);
-      ridgeBlockInto(input, [RIDGE_TILE_SIDE, RIDGE_TILE_SIDE, RIDGE_TILE_SIDE], made, sign, answer, scratch);
-      for (let v = 0; v < RIDGE_TILE_VOXELS; v++) {
-        if (answer[v]! > strength[v]!) {
-          strength[v] = answer[v]!;
-          scale[v] = index;
+      pyramid.readBoxInto(level, [i * n - rx, j * n - ry, k * n - rz], size, input);
+      ridgeBlockInto(input, inside, made, sign, answer, scratch);
+      let from = 0;
+      for (let z = 0; z < inside[2]; z++)
+        for (let y = 0; y < inside[1]; y++) {
+          const row = (z * n + y) * n;
+          for (let v = row; v < row + inside[0]; v++, from++)
+            if (answer[from]! > strength[v]!) {
+              strength[v] = answer[from]!;
+              scale[v] = index;
+            }
         }
-      }
     }
     const made = { strength, scale };
     own.set(key, made);

@@ -1,7 +1,8 @@
 import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 
-/** Smallest and largest diameter that the ridge measure is tuned to, millimetres. */
+/** Smallest diameter that the ridge measure is tuned to, millimetres. */
 export const SMALLEST_DIAMETER_MM = 0.1;
+/** Largest diameter that the ridge measure is tuned to, millimetres. */
 export const LARGEST_DIAMETER_MM = 3;
 /** Above this many voxels of a level (its finest spacing) a scale is computed on the next coarser level. */
 const MOST_VOXELS_PER_SIGMA = 2;
