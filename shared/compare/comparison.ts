@@ -2,7 +2,7 @@ import type { CostPreset } from "#shared/compare/costs.ts";
 import type { Detection } from "#shared/compare/detection.ts";
 import type { OriginRule } from "#shared/compare/edit-distance/edit-distance.ts";
 import type { EditStep } from "#shared/compare/edit-distance/script.ts";
-import type { CompareEvent } from "#shared/compare/events/events.ts";
+import type { CompareEvent } from "#shared/compare/events/compare-event.ts";
 import type { LineDistances, Overlap } from "#shared/compare/overlap.ts";
 
 export interface CompareOptions {

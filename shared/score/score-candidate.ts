@@ -1,7 +1,7 @@
 import { comparePairs } from "#shared/compare/compare-pairs.ts";
 import { assembleComparison, distancesAtMerges, frameOfComparison } from "#shared/compare/compare-sets.ts";
 import type { CompareOptions, Comparison, TimeLeft } from "#shared/compare/comparison.ts";
-import type { EventKind } from "#shared/compare/events/events.ts";
+import type { EventKind } from "#shared/compare/events/compare-event.ts";
 import { matchSets } from "#shared/compare/matched-sets.ts";
 import type { PlainSet } from "#shared/trees/plain-trees.ts";
 

@@ -1,35 +1,12 @@
-import { type CanonicalTree, canonicalTree } from "#shared/compare/canonical.ts";
-import { geometryCosts } from "#shared/compare/costs.ts";
-import { editDistance } from "#shared/compare/edit-distance/edit-distance.ts";
+import { canonicalTree } from "#shared/compare/canonical.ts";
+import type { CompareEvent, EventKind } from "#shared/compare/events/compare-event.ts";
+import { compareJoins, withoutStrands } from "#shared/compare/events/joins.ts";
 import { nearestNode, type UncoveredPart, uncoveredParts } from "#shared/compare/events/uncovered.ts";
 import { SegmentIndex } from "#shared/geometry/segment-index.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
 import { type PlainSet, type PlainTree, placeOf } from "#shared/trees/plain-trees.ts";
 import { rootedStrands } from "#shared/trees/rooted-strands.ts";
-
-export type EventKind =
-  | "missed-branch"
-  | "extra-branch"
-  | "moved-fork"
-  | "moved-end"
-  | "short-end"
-  | "joined-differently"
-  | "exchanged-tails"
-  | "renamed";
-
-/** A difference in an annotator's words: one human error is one event. `a`, `b` are ids of strands, or of nodes for moved and short ones, or of trees when renamed. */
-export interface CompareEvent {
-  readonly event: EventKind;
-  readonly a: string | null;
-  readonly b: string | null;
-  readonly at: readonly [number, number, number];
-  /** Millimetres of string concerned, or of displacement. */
-  readonly length: number;
-}
-
-/** Partial maps the search for corresponding nodes may look at before its best so far is taken. */
-const CORRESPONDENCE_BUDGET = 4_000;
 
 /**
  * The differences between matched trees as events, one list per pair. Exchanged tails cannot be seen from structure alone:
@@ -86,9 +63,9 @@ export function eventsOfPairs(
           at: part.start,
           length: part.length,
         });
-      } else leaveOut(nameMissing(treeA, treeB, part, tolerance, settled), part, onlyA);
+      } else leaveOut(nameOneSided("a", treeA, treeB, part, tolerance, settled), part, onlyA);
     }
-    for (const part of extra) leaveOut(nameAdded(treeA, treeB, part, tolerance, settled), part, onlyB);
+    for (const part of extra) leaveOut(nameOneSided("b", treeB, treeA, part, tolerance, settled), part, onlyB);
     const [restA, restB] = [withoutStrands(treeA, onlyA), withoutStrands(treeB, onlyB)];
     events[k]!.push(...compareJoins(canonicalTree(restA, merge), canonicalTree(restB, merge), tolerance, settled));
     if (treeA.name && treeB.name && treeA.name !== treeB.name) {
@@ -165,158 +142,32 @@ function sharedEnd(
 
 const isEnd = (kind: string) => kind !== "origin" && kind !== "fork" && kind !== "waypoint";
 
-function nameMissing(
-  treeA: PlainTree,
-  treeB: PlainTree,
+/**
+ * Names a part that only one side follows. Where the other side has an end just where it begins, the string is the same and
+ * ends elsewhere; else the whole branch is on one side only.
+ * @param owner the side that has the part.
+ */
+function nameOneSided(
+  owner: "a" | "b",
+  tree: PlainTree,
+  other: PlainTree,
   part: UncoveredPart,
   tolerance: number,
   settled: Set<string>,
 ): CompareEvent {
-  const stop = nearestNode(
-    treeB.nodes.filter((node) => isEnd(node.kind)),
-    part.start,
-    2 * tolerance,
-  );
-  const lastNode = part.nodes[part.nodes.length - 1];
-  const end = treeA.nodes.find((node) => node.id === lastNode);
-  if (stop && end && part.nodes.length === 1) {
-    settled.add(`a ${end.id}`);
-    settled.add(`b ${stop.id}`);
-    return {
-      event: "short-end",
-      a: end.id,
-      b: stop.id,
-      at: placeOf(stop),
-      length: part.length + distance(placeOf(stop), part.start),
-    };
+  const stops = other.nodes.filter((node) => isEnd(node.kind));
+  const stop = nearestNode(stops, part.start, 2 * tolerance);
+  const end = part.nodes.length === 1 ? tree.nodes.find((node) => node.id === part.nodes[0]) : undefined;
+  if (!stop || !end) {
+    const strand = part.strands[0] ?? part.firstStrand;
+    const place = { at: part.start, length: part.length };
+    return owner === "a"
+      ? { event: "missed-branch", a: strand, b: null, ...place }
+      : { event: "extra-branch", a: null, b: strand, ...place };
   }
-  return { event: "missed-branch", a: part.strands[0] ?? part.firstStrand, b: null, at: part.start, length: part.length };
-}
-
-function nameAdded(
-  treeA: PlainTree,
-  treeB: PlainTree,
-  part: UncoveredPart,
-  tolerance: number,
-  settled: Set<string>,
-): CompareEvent {
-  const stop = nearestNode(
-    treeA.nodes.filter((node) => isEnd(node.kind)),
-    part.start,
-    2 * tolerance,
-  );
-  const lastNode = part.nodes[part.nodes.length - 1];
-  const end = treeB.nodes.find((node) => node.id === lastNode);
-  if (stop && end && part.nodes.length === 1) {
-    settled.add(`a ${stop.id}`);
-    settled.add(`b ${end.id}`);
-    return {
-      event: "moved-end",
-      a: stop.id,
-      b: end.id,
-      at: placeOf(stop),
-      length: part.length + distance(placeOf(stop), part.start),
-    };
-  }
-  return { event: "extra-branch", a: null, b: part.strands[0] ?? part.firstStrand, at: part.start, length: part.length };
-}
-
-/** A tree without some strands; forks left with two strands become waypoints, so that a missed branch leaves no trace in the join. */
-function withoutStrands(tree: PlainTree, gone: ReadonlySet<string>): PlainTree {
-  if (gone.size === 0) return tree;
-  const strands = tree.strands.filter((strand) => !gone.has(strand.id));
-  const degree = new Map<string, number>();
-  for (const strand of strands) for (const end of [strand.from, strand.to]) degree.set(end, (degree.get(end) ?? 0) + 1);
-  const wasLess = new Map<string, number>();
-  for (const strand of tree.strands) for (const end of [strand.from, strand.to]) wasLess.set(end, (wasLess.get(end) ?? 0) + 1);
-  const nodes = tree.nodes
-    .filter((node) => degree.has(node.id) || node.id === tree.root)
-    .map((node) =>
-      node.kind === "fork" && degree.get(node.id) === 2 && wasLess.get(node.id)! > 2 ? { ...node, kind: "waypoint" } : node,
-    );
-  return { ...tree, nodes, strands };
-}
-
-/** Forks and ends that sit elsewhere, and nodes that hang on another fork, between two trees of which everything else is explained. */
-function compareJoins(a: CanonicalTree, b: CanonicalTree, tolerance: number, settled: ReadonlySet<string>): CompareEvent[] {
-  let left = CORRESPONDENCE_BUDGET;
-  const isSpent = () => {
-    left -= 64; // asked once every 64 partial maps
-    return left <= 0;
-  };
-  const { map } = editDistance(a, b, geometryCosts(2), "held", isSpent);
-  const events: CompareEvent[] = [];
-  const [parentA, parentB] = [parents(a), parents(b)];
-  const mapped = new Set(map);
-  a.nodes.forEach((node, i) => {
-    const j = map[i]!;
-    if (j < 0) return;
-    const image = b.nodes[j]!;
-    const far = distance(node.place, image.place);
-    if (far <= tolerance || settled.has(`a ${node.id}`) || settled.has(`b ${image.id}`)) return;
-    if (node.type === "fork" && image.type === "fork")
-      events.push({ event: "moved-fork", a: node.id, b: image.id, at: node.place, length: far });
-    else if (node.type === "end" && image.type === "end")
-      events.push({ event: "moved-end", a: node.id, b: image.id, at: node.place, length: far });
-  });
-  interface Rehung {
-    readonly i: number;
-    readonly wasOn: number;
-    readonly nowOn: number;
-  }
-  const rehung: Rehung[] = [];
-  a.nodes.forEach((node, i) => {
-    const j = map[i]!;
-    const above = parentA[i]!;
-    if (j < 0 || !above || !parentB[j] || settled.has(`a ${node.id}`)) return;
-    const wasOn = map[above.node]!;
-    const nowOn = parentB[j]!.node;
-    if (wasOn >= 0 && mapped.has(nowOn) && wasOn !== nowOn) rehung.push({ i, wasOn, nowOn });
-  });
-  const done = new Set<Rehung>();
-  for (const one of rehung) {
-    if (done.has(one)) continue;
-    const partner = rehung.find(
-      (other) => other !== one && !done.has(other) && other.wasOn === one.nowOn && other.nowOn === one.wasOn,
-    );
-    const strandA = a.strands[parentA[one.i]!.strand]!;
-    const strandB = b.strands[parentB[map[one.i]!]!.strand]!;
-    const at = a.nodes[parentA[one.i]!.node]!.place;
-    events.push({
-      event: partner ? "exchanged-tails" : "joined-differently",
-      a: strandA.id,
-      b: strandB.id,
-      at,
-      length: strandA.length,
-    });
-    done.add(one);
-    if (partner) done.add(partner);
-  }
-  a.nodes.forEach((node, i) => {
-    if (node.type === "fork" && map[i]! < 0)
-      events.push({ event: "joined-differently", a: node.id, b: null, at: node.place, length: 0 });
-  });
-  b.nodes.forEach((node, j) => {
-    if (node.type === "fork" && !mapped.has(j))
-      events.push({ event: "joined-differently", a: null, b: node.id, at: node.place, length: 0 });
-  });
-  return events;
-}
-
-/** For each node the node and strand above it, seen from the root; null at the root and where the root does not reach. */
-function parents(tree: CanonicalTree): ({ node: number; strand: number } | null)[] {
-  const out: ({ node: number; strand: number } | null)[] = tree.nodes.map(() => null);
-  if (tree.root === null) return out;
-  const seen = new Set([tree.root]);
-  const queue = [tree.root];
-  for (const node of queue) {
-    tree.strands.forEach((strand, k) => {
-      const other = strand.from === node ? strand.to : strand.to === node ? strand.from : -1;
-      if (other < 0 || seen.has(other)) return;
-      seen.add(other);
-      out[other] = { node, strand: k };
-      queue.push(other);
-    });
-  }
-  return out;
+  const [a, b] = owner === "a" ? [end.id, stop.id] : [stop.id, end.id];
+  settled.add(`a ${a}`);
+  settled.add(`b ${b}`);
+  const length = part.length + distance(placeOf(stop), part.start);
+  return { event: owner === "a" ? "short-end" : "moved-end", a, b, at: placeOf(stop), length };
 }
