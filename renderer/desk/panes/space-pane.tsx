@@ -8,6 +8,12 @@ import { valveAxes } from "#shared/geometry/valve-axes.ts";
 import { distance } from "#shared/geometry/vec3.ts";
 import { indexToMm } from "#shared/volume/grid.ts";
 
+/**
+ * Space follows the section's plane and the guide when they rest this long: without a GPU a picture in space costs more than
+ * one of the section, and the section is where the eyes are.
+ */
+const REST_MS = 180;
+
 /** At most so many bright surface points; enough to see the valve, few enough for a laptop without a GPU. */
 const SURFACE_POINTS = 20_000;
 
@@ -59,20 +65,24 @@ function mountSpace(host: HTMLElement, model: DeskModel): { view: SpaceView; sto
       if (frame !== null) view.show({ surface: floatsOf(frame.body) });
     })
     .catch((error: unknown) => services.notices.failed(error));
+  const plane = new Resting(REST_MS);
+  const guided = new Resting(REST_MS);
   const stops = [
+    () => plane.stop(),
+    () => guided.stop(),
     effect(() => view.show({ document: editor.document.value, selection: editor.selection.value })),
     effect(() => view.show({ valve: valveAxes(model.specimen.value.landmarks) })),
     effect(() => view.show({ pins: editor.projection.value.pins })),
     effect(() => {
       const guide = editor.guide.value;
-      view.show({ guide: guide === null ? null : guide.points.flatMap((point) => [...point]) });
+      guided.do(() => view.show({ guide: guide === null ? null : guide.points.flatMap((point) => [...point]) }));
     }),
     effect(() => {
-      const plane = section.plane.value;
-      const size = section.paneSize.value;
-      if (plane === null) return;
-      const { right, down, mmPerPx } = plane;
-      view.show({ plane: { centre: plane.centre, right, down, widthMm: size.width * mmPerPx, heightMm: size.height * mmPerPx } });
+      const shown = section.plane.value;
+      const { width, height } = section.paneSize.value;
+      if (shown === null) return;
+      const { centre, right, down, mmPerPx } = shown;
+      plane.do(() => view.show({ plane: { centre, right, down, widthMm: width * mmPerPx, heightMm: height * mmPerPx } }));
     }),
     effect(() => {
       theme.value;
@@ -86,6 +96,22 @@ function mountSpace(host: HTMLElement, model: DeskModel): { view: SpaceView; sto
       view.dispose();
     },
   };
+}
+
+/** Does the newest of several actions once no other came for a while. */
+class Resting {
+  private timer: ReturnType<typeof setTimeout> | null = null;
+
+  constructor(private readonly restMs: number) {}
+
+  do(action: () => void): void {
+    this.stop();
+    this.timer = setTimeout(action, this.restMs);
+  }
+
+  stop(): void {
+    if (this.timer !== null) clearTimeout(this.timer);
+  }
 }
 
 /** Little-endian float32 out of a frame's body, which need not be aligned. */
