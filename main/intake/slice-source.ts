@@ -1,3 +1,4 @@
+import type { RawScan } from "#shared/volume/raw/raw-layout.ts";
 import type { ScanHeader } from "#shared/volume/scan-header.ts";
 import type { SourceArray } from "#shared/volume/source-array.ts";
 
@@ -37,6 +38,8 @@ export interface ScanChoice {
   readonly channel?: number;
   /** From 0. */
   readonly time?: number;
+  /** The file has no header: its voxels lie as said here. */
+  readonly raw?: RawScan;
 }
 
 /** Turns big-endian bytes to little-endian ones in place (or back). */

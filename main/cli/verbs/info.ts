@@ -1,4 +1,4 @@
-import { wholeOption } from "#main/cli/number-option.ts";
+import { givenChoice, RAW_HELP, RAW_OPTIONS } from "#main/cli/raw-option.ts";
 import type { Verb } from "#main/cli/verb.ts";
 import { scanInfo } from "#main/intake/scan-info.ts";
 import type { ScanInfo } from "#shared/api/routes.ts";
@@ -7,19 +7,18 @@ import type { ScanInfo } from "#shared/api/routes.ts";
 export const info: Verb = {
   name: "info",
   summary: "size, voxel size, unit and value range of a scan, with warnings",
-  help: `tautline info <volume> [--channel n] [--time n] [--json]
+  help: `tautline info <volume> [--channel n] [--time n] [raw flags] [--json]
 
-Reads an NRRD file, a multi-page TIFF file, an OME-Zarr folder or a specimen's folder, and says what its header
-and values are. An odd or missing voxel size is a warning here (exit 0); data shorter than the header says is not (exit 2).
+Reads a scan and says what its header and values are: NRRD, MetaImage, NIfTI-1 (plain or gzip), multi-page TIFF, a DICOM
+series (its folder or one of its files), a folder of TIFF, PNG or BMP slices, OME-Zarr, raw voxels, or a specimen's folder.
+An odd or missing voxel size is a warning here (exit 0); data shorter than the header says is not (exit 2).
 
-  --channel n, --time n  which one to read where a scan has several, from 0`,
-  options: { channel: { type: "string" }, time: { type: "string" } },
+  --channel n, --time n  which one to read where a scan has several, from 0
+${RAW_HELP}`,
+  options: { channel: { type: "string" }, time: { type: "string" }, ...RAW_OPTIONS },
   positionals: [1, 1],
   async run({ positionals, options, io, say }) {
-    const channel = wholeOption(options, "channel", 0);
-    const time = wholeOption(options, "time", 0);
-    const choice = { ...(channel === undefined ? {} : { channel }), ...(time === undefined ? {} : { time }) };
-    const found = await scanInfo(positionals[0]!, { choice, signal: io.signal });
+    const found = await scanInfo(positionals[0]!, { choice: givenChoice(options), signal: io.signal });
     for (const warning of found.warnings) say(`${found.name}: ${warning.message}`);
     return { json: found, text: inWords(found), exit: 0 };
   },

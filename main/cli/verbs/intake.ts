@@ -1,6 +1,7 @@
 import { randomBytes } from "node:crypto";
 import { basename, join } from "node:path";
-import { wholeOption, wordOption } from "#main/cli/number-option.ts";
+import { wordOption } from "#main/cli/number-option.ts";
+import { givenChoice, RAW_HELP, RAW_OPTIONS } from "#main/cli/raw-option.ts";
 import { givenSpacing, SPACING_HELP, SPACING_OPTIONS, settledSpacing } from "#main/cli/spacing-option.ts";
 import type { Verb, VerbCall } from "#main/cli/verb.ts";
 import { removeUnfinished } from "#main/intake/make-specimen.ts";
@@ -30,7 +31,8 @@ ${SPACING_HELP}
   --mirror               reverse the order of slices: the file shows the specimen mirrored
   --polarity P           bright or dark strings (as the values suggest when not given)
   --channel n, --time n  which one to read where a scan has several, from 0
-  --species, --fixation, --medium, --state TEXT, --pressure mmHg   facts of the specimen`,
+  --species, --fixation, --medium, --state TEXT, --pressure mmHg   facts of the specimen
+${RAW_HELP}`,
   options: {
     library: { type: "string" },
     ...SPACING_OPTIONS,
@@ -40,6 +42,7 @@ ${SPACING_HELP}
     polarity: { type: "string" },
     channel: { type: "string" },
     time: { type: "string" },
+    ...RAW_OPTIONS,
     species: { type: "string" },
     fixation: { type: "string" },
     medium: { type: "string" },
@@ -57,9 +60,7 @@ ${SPACING_HELP}
     const library = options.library;
     const handedness = wordOption(options, "handedness", ["confirmed", "unknown"] as const) ?? "unknown";
     const polarity = wordOption(options, "polarity", ["bright", "dark"] as const);
-    const channel = wholeOption(options, "channel", 0);
-    const time = wholeOption(options, "time", 0);
-    const choice = { ...(channel === undefined ? {} : { channel }), ...(time === undefined ? {} : { time }) };
+    const choice = givenChoice(options);
     const facts = givenFacts(options);
     const given = givenSpacing(options);
     const source = await openScan(path, choice);
@@ -122,7 +123,9 @@ function givenFacts(options: VerbCall["options"]): SpecimenFacts {
 }
 
 function plainName(path: string): string {
-  return basename(path).replace(/(\.ome)?\.(nrrd|nhdr|tiff?|zarr)$/i, "") || basename(path);
+  return (
+    basename(path).replace(/(\.ome)?\.(nrrd|nhdr|mha|mhd|nii|nii\.gz|hdr|tiff?|zarr|raw|vol|raw\.json)$/i, "") || basename(path)
+  );
 }
 
 /** A line at each tenth of the way, so that a log of a long intake stays short. */

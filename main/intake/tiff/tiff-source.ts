@@ -32,7 +32,13 @@ export async function openTiff(path: string): Promise<SliceSource> {
       pages.push(at);
     }
     if (!first || pages.length < 2)
-      throw unreadable(name, "a TIFF of many pages, one a slice", `${pages.length === 1 ? "one page" : "no page"}`);
+      throw unreadable(
+        name,
+        "a TIFF of many pages, one a slice",
+        `${pages.length === 1 ? "one page" : "no page"}`,
+        undefined,
+        "Where each slice is a file, choose their folder.",
+      );
     const { width, height, dtype } = first.page;
     refuseHugeSlice(path, width * height * BYTES_OF_DTYPE[dtype]);
     return {
