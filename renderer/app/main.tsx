@@ -40,5 +40,9 @@ const services = {
   },
 };
 client.connect();
+// The address of a newer run, opened in this very page: its token is taken by loading anew.
+addEventListener("hashchange", () => {
+  if (location.hash.includes("token=")) location.reload();
+});
 addEventListener("pagehide", () => client.bye());
 render(<App services={services} scanQuestion={scanQuestion} />, document.getElementById("app")!);

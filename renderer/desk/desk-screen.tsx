@@ -11,11 +11,12 @@ import { StripPane } from "#renderer/desk/panes/strip-pane.tsx";
 import { DeskSheets } from "#renderer/desk/sheets/desk-sheets.tsx";
 import { HistoryDrawer } from "#renderer/desk/side/history-drawer.tsx";
 import { SidePanel } from "#renderer/desk/side/side-panel.tsx";
+import { commandFor } from "#renderer/editor/commands/command-table.ts";
 
 /** The desk: head line, strip, section, space with the list below it, foot line; sheets and the history over them. */
 export function DeskScreen({ model }: { readonly model: DeskModel }) {
   const context = useMemo(() => deskContext(model), [model]);
-  useEffect(() => listenToKeys(context), [context]);
+  useEffect(() => listenToKeys(context, commandFor), [context]);
   useEffect(() => keepMenus(model.services.capabilities.menus, context), [model, context]);
   return (
     <div class="desk">

@@ -1,6 +1,7 @@
 import { computed, type ReadonlySignal, type Signal, signal } from "@preact/signals";
 import type { Services } from "#renderer/app/services.ts";
 import { type ShownFinding, shownFindings } from "#renderer/desk/model/findings.ts";
+import { type LineFacts, lineFacts } from "#renderer/desk/model/line-facts.ts";
 import { type FollowedLine, SectionModel } from "#renderer/desk/model/section-model.ts";
 import { serverBack } from "#renderer/desk/model/server-back.ts";
 import { keepWaiting, leftWaiting } from "#renderer/desk/model/waiting-store.ts";
@@ -36,6 +37,8 @@ export class DeskModel {
   readonly findings: ReadonlySignal<readonly ShownFinding[]>;
   readonly findingAt: Signal<string | null> = signal(null);
   readonly measures: ReadonlySignal<Measures>;
+  /** The selected strand as the strip shows it. */
+  readonly lineFacts: ReadonlySignal<LineFacts | null>;
 
   constructor(facts: DeskFacts) {
     const { services, specimen, pass, keeper } = facts;
@@ -57,10 +60,12 @@ export class DeskModel {
       serverBack: () => serverBack(client),
       failed: (error) => notices.failed(error),
       keepWaiting: (waiting) => keepWaiting(pass.id, waiting),
-      leftWaiting: leftWaiting(pass.id),
+      // The window that writes carries them out.
+      leftWaiting: keeper.readOnly ? [] : leftWaiting(pass.id),
     });
     this.section = new SectionModel({ client, specimen: this.specimen, followed: () => this.followed() });
     this.measures = computed(() => measureTrees(plainFromDocument(this.editor.document.value)));
+    this.lineFacts = computed(() => lineFacts(this.editor.document.value, this.editor.selection.value));
     this.findings = computed(() => shownFindings(this.editor.document.value));
   }
 

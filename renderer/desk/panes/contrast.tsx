@@ -1,11 +1,11 @@
 import { useEffect, useRef } from "preact/hooks";
-import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
+import type { SectionSource } from "#renderer/desk/panes/section-sources.ts";
 
 const WIDTH = 130;
 const HEIGHT = 26;
 
 /** The grey window over the scan's histogram: two handles to drag or move by keys, and one button for automatic. */
-export function Contrast({ model }: { readonly model: DeskModel }) {
+export function Contrast({ model }: { readonly model: SectionSource }) {
   const { section, services } = model;
   useEffect(() => {
     section.loadHistogram().catch((error: unknown) => services.notices.failed(error));

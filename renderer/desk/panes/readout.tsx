@@ -1,6 +1,7 @@
 import { useSignal } from "@preact/signals";
 import { useEffect } from "preact/hooks";
 import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
+import { ScaleButtons } from "#renderer/desk/panes/scale-buttons.tsx";
 import { mmText } from "#renderer/editor/session/words.ts";
 import { distance } from "#shared/geometry/vec3.ts";
 
@@ -56,18 +57,7 @@ export function Readout({ model }: { readonly model: DeskModel }) {
       >
         ruler
       </button>
-      <fieldset class="joined">
-        <legend class="unseen">Scale</legend>
-        <button type="button" class="button" aria-label="Farther" title="Farther (-)" onClick={() => section.zoom(0.8)}>
-          −
-        </button>
-        <button type="button" class="button" title="Show the whole plane (Home)" onClick={() => section.showAll()}>
-          all
-        </button>
-        <button type="button" class="button" aria-label="Closer" title="Closer (+)" onClick={() => section.zoom(1.25)}>
-          +
-        </button>
-      </fieldset>
+      <ScaleButtons section={section} />
     </div>
   );
 }

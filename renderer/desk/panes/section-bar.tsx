@@ -1,5 +1,5 @@
-import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
 import { Contrast } from "#renderer/desk/panes/contrast.tsx";
+import type { SectionSource } from "#renderer/desk/panes/section-sources.ts";
 import { nextSlab, SLABS_MM } from "#renderer/editor/commands/view-commands.ts";
 import { mmText } from "#renderer/editor/session/words.ts";
 import type { PlaneName } from "#renderer/editor/view-control.ts";
@@ -13,7 +13,7 @@ const PLANES: readonly (readonly [PlaneName, string])[] = [
 ];
 
 /** What the section shows: which plane, how thick, which greys. */
-export function SectionBar({ model }: { readonly model: DeskModel }) {
+export function SectionBar({ model }: { readonly model: SectionSource }) {
   const { section } = model;
   const slab = section.slabMm.value;
   return (

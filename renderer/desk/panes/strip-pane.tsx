@@ -1,8 +1,7 @@
 import { effect } from "@preact/signals";
 import { useEffect, useRef } from "preact/hooks";
 import { theme } from "#renderer/app/theme-choice.ts";
-import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
-import { lineFacts } from "#renderer/desk/model/line-facts.ts";
+import type { StripSource } from "#renderer/desk/panes/section-sources.ts";
 import type { StripSizes } from "#renderer/strip/strip-content.ts";
 import { EMPTY_STRIP, StripView } from "#renderer/strip/strip-view.ts";
 import { nearestOnPolyline } from "#shared/geometry/polyline.ts";
@@ -11,14 +10,14 @@ import { nearestOnPolyline } from "#shared/geometry/polyline.ts";
 const ON_STRAND_MM = 1;
 
 /** The selected strand laid straight, with its radius and the film of across sections. */
-export function StripPane({ model }: { readonly model: DeskModel }) {
+export function StripPane({ model }: { readonly model: StripSource }) {
   const host = useRef<HTMLDivElement>(null);
   useEffect(() => mountStrip(host.current!, model), [model]);
   return <section class="pane strip-pane" aria-label="Strip: the selected strand laid straight" ref={host} />;
 }
 
-function mountStrip(host: HTMLElement, model: DeskModel): () => void {
-  const { editor, section, services } = model;
+function mountStrip(host: HTMLElement, model: StripSource): () => void {
+  const { section, services, lineFacts } = model;
   let turn = 0;
   let sizes: StripSizes | null = null;
   let asked = "";
@@ -43,7 +42,7 @@ function mountStrip(host: HTMLElement, model: DeskModel): () => void {
   });
 
   const ask = async () => {
-    const facts = lineFacts(editor.document.value, editor.selection.value);
+    const facts = lineFacts.value;
     const wanted = sizes ?? view.sizes;
     if (facts === null || wanted.strip.height < 2) return;
     const low = section.low.value;
@@ -68,7 +67,7 @@ function mountStrip(host: HTMLElement, model: DeskModel): () => void {
 
   const stops = [
     effect(() => {
-      const facts = lineFacts(editor.document.value, editor.selection.value);
+      const facts = lineFacts.value;
       section.low.value;
       section.high.value;
       if (facts === null) {
@@ -82,7 +81,7 @@ function mountStrip(host: HTMLElement, model: DeskModel): () => void {
     }),
     effect(() => {
       const plane = section.plane.value;
-      const facts = lineFacts(editor.document.value, editor.selection.value);
+      const facts = lineFacts.value;
       const near = plane === null || facts === null ? null : nearestOnPolyline(facts.points, plane.centre);
       view.show({ position: near !== null && near.distance <= ON_STRAND_MM ? near.at : null });
     }),

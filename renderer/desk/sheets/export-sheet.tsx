@@ -1,7 +1,7 @@
 import { useState } from "preact/hooks";
 import { CAUTIONS } from "#renderer/app/about-sheet.tsx";
 import { Sheet } from "#renderer/app/sheet.tsx";
-import { exportFileName, exportTrees } from "#renderer/desk/model/export-trees.ts";
+import { exportFileName, exportTrees, lossesOf } from "#renderer/desk/model/export-trees.ts";
 import type { DeskSheetProps } from "#renderer/desk/sheets/sheet-props.ts";
 import type { ExportFormat } from "#shared/api/routes.ts";
 
@@ -9,27 +9,27 @@ const FORMATS: readonly { readonly format: ExportFormat; readonly title: string;
   {
     format: "chordae",
     title: "Tree file (.chordae.json)",
-    words: "Everything: trees, radii, pins, labels, landmarks. Loses nothing but the history.",
+    words: "Everything: trees, radii, pins, labels, landmarks.",
   },
   {
     format: "graphml",
     title: "GraphML",
-    words: "Nodes, strands with their polylines, labels. Loses radii per point, pins and landmarks.",
+    words: "Nodes, strands with their polylines, labels.",
   },
   {
     format: "vtp",
     title: "VTK PolyData (.vtp)",
-    words: "Centrelines with a radius at each point. Loses labels, pins, node kinds and landmarks.",
+    words: "Centrelines with a radius at each point.",
   },
   {
     format: "tables",
     title: "Tables (.csv, zipped)",
-    words: "Nodes, strands and trees with their measures, units in the column names. Loses the centrelines.",
+    words: "Nodes, strands and trees with their measures, units in the column names.",
   },
   {
     format: "labels",
     title: "Label volume (.nrrd)",
-    words: "Tubes at the measured radii on the scan's own grid. Loses structure, labels and sub-voxel places.",
+    words: "Tubes at the measured radii on the scan's own grid.",
   },
 ];
 
@@ -39,6 +39,7 @@ export function ExportSheet({ model, close }: DeskSheetProps) {
   const [busy, setBusy] = useState(false);
   const { services, editor } = model;
   const waiting = editor.waiting.value.length > 0 || editor.keeper.saved.value.kind !== "saved";
+  const losses = lossesOf(model, format);
   const run = async () => {
     setBusy(true);
     try {
@@ -83,6 +84,20 @@ export function ExportSheet({ model, close }: DeskSheetProps) {
           </label>
         ))}
       </fieldset>
+      <section aria-live="polite" aria-label="What this format does not keep">
+        {losses.length === 0 ? (
+          <p>Nothing of these trees is lost in this format; the history of the pass stays in the library.</p>
+        ) : (
+          <>
+            <p>Not kept by this format:</p>
+            <ul class="cautions">
+              {losses.map((sentence) => (
+                <li key={sentence}>{sentence}</li>
+              ))}
+            </ul>
+          </>
+        )}
+      </section>
       <p class="soft">
         File: <span class="figures">{exportFileName(model, format)}</span>
       </p>

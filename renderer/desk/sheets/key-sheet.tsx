@@ -1,8 +1,8 @@
 import { Sheet } from "#renderer/app/sheet.tsx";
-import { groupedCommands } from "#renderer/editor/commands/command-table.ts";
-import { shownShortcut } from "#renderer/editor/commands/shortcut.ts";
+import { KeyGroups } from "#renderer/desk/sheets/key-groups.tsx";
+import { COMMANDS } from "#renderer/editor/commands/command-table.ts";
 
-/** Every key, made from the command table, and what the pointer does. */
+/** Every key, made from the desk's command table, and what the pointer does. */
 export function KeySheet({ close }: { readonly close: () => void }) {
   return (
     <Sheet title="Keys" close={close} kind="wide-sheet">
@@ -32,27 +32,7 @@ export function KeySheet({ close }: { readonly close: () => void }) {
             <dd>held: the place itself, no snap to a string</dd>
           </dl>
         </section>
-        {groupedCommands().map(({ group, commands }) => (
-          <section key={group}>
-            <h3>{group}</h3>
-            <dl class="key-list">
-              {commands
-                .filter((command) => command.keys.length > 0)
-                .map((command) => (
-                  <div key={command.name} class="key-row">
-                    <dt>
-                      {command.keys.map((key) => (
-                        <span key={key} class="key">
-                          {shownShortcut(key)}
-                        </span>
-                      ))}
-                    </dt>
-                    <dd>{command.label}</dd>
-                  </div>
-                ))}
-            </dl>
-          </section>
-        ))}
+        <KeyGroups commands={COMMANDS} />
       </div>
     </Sheet>
   );

@@ -28,9 +28,9 @@ export function commandNamed(name: string): Command<DeskContext> | null {
 }
 
 /** Commands by group, in the order of the table; groups without a command are left out. */
-export function groupedCommands(
-  commands: readonly Command<DeskContext>[] = COMMANDS,
-): { group: CommandGroup; commands: Command<DeskContext>[] }[] {
+export function groupedCommands<Context = DeskContext>(
+  commands: readonly Command<Context>[] = COMMANDS as readonly Command<never>[],
+): { group: CommandGroup; commands: Command<Context>[] }[] {
   return COMMAND_GROUPS.map((group) => ({ group, commands: commands.filter((command) => command.group === group) })).filter(
     (entry) => entry.commands.length > 0,
   );

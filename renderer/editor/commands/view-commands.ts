@@ -1,12 +1,18 @@
 import type { Command } from "#renderer/editor/commands/command.ts";
-import type { DeskContext } from "#renderer/editor/commands/desk-context.ts";
-import type { PlaneName } from "#renderer/editor/view-control.ts";
+import type { ScreenControl } from "#renderer/editor/commands/desk-context.ts";
+import type { PlaneName, ViewControl } from "#renderer/editor/view-control.ts";
+
+/** What the commands of a section act on, whatever the screen around it. */
+export interface ViewContext {
+  readonly view: ViewControl;
+  readonly screen: Pick<ScreenControl, "focusSection" | "toggleTheme">;
+}
 
 const always = () => true;
 const CURSOR_PX = 4;
 const CURSOR_FAR_PX = 32;
 
-function plane(name: PlaneName, key: string, label: string): Command<DeskContext> {
+function plane(name: PlaneName, key: string, label: string): Command<ViewContext> {
   return {
     name: `plane-${name}`,
     group: "See",
@@ -17,10 +23,10 @@ function plane(name: PlaneName, key: string, label: string): Command<DeskContext
   };
 }
 
-function cursor(name: string, key: string, words: string, dx: number, dy: number): Command<DeskContext>[] {
+function cursor(name: string, key: string, words: string, dx: number, dy: number): Command<ViewContext>[] {
   const move =
     (px: number) =>
-    ({ view }: DeskContext) =>
+    ({ view }: ViewContext) =>
       view.moveCursor(dx * px, dy * px);
   return [
     { name: `cursor-${name}`, group: "See", label: `Cursor ${words}`, keys: [key], enabled: always, perform: move(CURSOR_PX) },
@@ -53,7 +59,7 @@ export function nextSlab(mm: number, by: 1 | -1): number {
 }
 
 /** What the section shows; nothing here changes a tree. */
-export const VIEW_COMMANDS: readonly Command<DeskContext>[] = [
+export const VIEW_COMMANDS: readonly Command<ViewContext>[] = [
   plane("flat", "1", "Plane: flat"),
   plane("front", "2", "Plane: front"),
   plane("side", "3", "Plane: side"),
