@@ -17,6 +17,7 @@ export function drawLabels(
   keepFree(text, scene, size, mmPerPx, halfSlabMm);
   const places = new Map<string, LabelPlace & { name: string; colour: string; rank: number }>();
   for (const strand of scene.strands) {
+    if (strand.drawn.name === "") continue;
     const place = labelPlace(strand, mmPerPx, halfSlabMm, size);
     if (place === null) continue;
     const off = Math.hypot(place.x - size.width / 2, place.y - size.height / 2);

@@ -6,6 +6,8 @@ import { TREE_DASHES } from "#shared/marks/tree-mark.ts";
 
 const WIDTH_PX = 2;
 const SELECTED_WIDTH_PX = 3;
+const LOUD_WIDTH_PX = 3;
+const QUIET_OPACITY = 0.6;
 
 /** Strands: full inside the slab, fading with depth outside, the selected ones last and with a halo. */
 export function drawStrands(to: CanvasRenderingContext2D, scene: ProjectedScene, halfSlabMm: number, ink: SectionInk): void {
@@ -15,13 +17,15 @@ export function drawStrands(to: CanvasRenderingContext2D, scene: ProjectedScene,
 
 function drawStrand(to: CanvasRenderingContext2D, strand: ProjectedStrand, halfSlabMm: number, ink: SectionInk): void {
   const { drawn, selected } = strand;
-  const width = selected ? SELECTED_WIDTH_PX : drawn.traced ? WIDTH_PX : 1;
-  const colour = ink.trees[drawn.mark.colour]!;
+  const quiet = drawn.manner === "quiet";
+  const usual = drawn.manner === "loud" ? LOUD_WIDTH_PX : drawn.traced ? WIDTH_PX : 1;
+  const width = quiet ? 1 : selected ? SELECTED_WIDTH_PX : usual;
+  const colour = strandInk(drawn, ink);
   const dash = TREE_DASHES[drawn.mark.dash]!.map((length) => length * width);
   to.lineJoin = "round";
   to.lineCap = dash.length > 0 ? "butt" : "round";
   for (const run of clipToSlab(strand.seen, halfSlabMm, FADE_MM)) {
-    to.globalAlpha = bandOpacity(run.band);
+    to.globalAlpha = bandOpacity(run.band) * (quiet && !selected ? QUIET_OPACITY : 1);
     const inside = run.band === 0;
     to.setLineDash([]);
     trace(to, run.points);
@@ -39,6 +43,11 @@ function drawStrand(to: CanvasRenderingContext2D, strand: ProjectedStrand, halfS
   to.setLineDash([]);
 }
 
+/** A quiet strand has no colour of its own. */
+function strandInk(drawn: ProjectedStrand["drawn"], ink: SectionInk): string {
+  return drawn.manner === "quiet" ? ink.ink : ink.trees[drawn.mark.colour]!;
+}
+
 /** Outlines of the tubes where they go through the plane. */
 export function drawOutlines(to: CanvasRenderingContext2D, scene: ProjectedScene, mmPerPx: number, ink: SectionInk): void {
   for (const { drawn, seen, selected } of scene.strands) {
@@ -46,9 +55,10 @@ export function drawOutlines(to: CanvasRenderingContext2D, scene: ProjectedScene
       to.beginPath();
       to.ellipse(outline.x, outline.y, outline.longPx, outline.shortPx, outline.angle, 0, 2 * Math.PI);
       to.setLineDash([]);
-      stroke(to, ink.casing, selected ? 4 : 3, 0.8);
+      const quiet = drawn.manner === "quiet" ? 0.5 : 1;
+      stroke(to, ink.casing, selected ? 4 : 3, 0.8 * quiet);
       to.setLineDash(outline.measured ? [] : [2, 2]);
-      stroke(to, ink.trees[drawn.mark.colour]!, selected ? 2 : 1.4, 1);
+      stroke(to, strandInk(drawn, ink), selected ? 2 : 1.4, quiet);
     }
   }
   to.setLineDash([]);

@@ -2,6 +2,7 @@ import type { SectionContent } from "#renderer/section/section-content.ts";
 import { awayFrom, type PanePoint, type PaneSize, toPane, type ViewPlane } from "#renderer/section/view-plane.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
 import { type DrawnStrand, drawnStrands } from "#shared/marks/drawn-strand.ts";
+import type { MarkedPlace } from "#shared/marks/marked-place.ts";
 import type { TreeDocument, TreeNode } from "#shared/trees/document.ts";
 
 /** A strand as the pane sees it. */
@@ -32,9 +33,15 @@ export interface ProjectedScene {
   /** Pins of the selected strand only: those of all strands would hide the picture. */
   readonly pins: readonly ProjectedPin[];
   readonly underWay: readonly PanePoint[];
+  readonly places: readonly ProjectedPlace[];
 }
 
-export const EMPTY_SCENE: ProjectedScene = { strands: [], nodes: [], pins: [], underWay: [] };
+export interface ProjectedPlace {
+  readonly place: MarkedPlace;
+  readonly seen: PanePoint;
+}
+
+export const EMPTY_SCENE: ProjectedScene = { strands: [], nodes: [], pins: [], underWay: [], places: [] };
 
 /** Beyond the slab strands fade out over this distance, millimetres: enough to see where a string goes next. */
 export const FADE_MM = 2;
@@ -55,14 +62,15 @@ export function projectScene(content: SectionContent, plane: ViewPlane, size: Pa
   const reach = content.slabMm / 2 + FADE_MM;
   const underWay = (content.underWay?.pins ?? []).map((pin) => toPane(plane, size, pin));
   const { document, selection } = content;
-  if (document === null) return { ...EMPTY_SCENE, underWay };
+  const shown = content.strands ?? (document === null ? [] : drawnOnce(document));
   const strands: ProjectedStrand[] = [];
   const pins: ProjectedPin[] = [];
-  for (const drawn of drawnOnce(document)) {
-    const selected =
+  for (const drawn of shown) {
+    const bySelection =
       selection.strand === undefined
         ? selection.tree !== undefined && drawn.tree === selection.tree
         : drawn.id === selection.strand;
+    const selected = drawn.picked ?? bySelection;
     if (drawn.id === selection.strand) {
       drawn.pins.forEach((position, index) => {
         const seen = toPane(plane, size, position);
@@ -73,13 +81,18 @@ export function projectScene(content: SectionContent, plane: ViewPlane, size: Pa
     if (canShow(seen, size, reach)) strands.push({ drawn, selected, seen });
   }
   const nodes: ProjectedNode[] = [];
-  for (const node of document.nodes.values()) {
+  for (const node of document?.nodes.values() ?? []) {
     const seen = toPane(plane, size, node.position);
     if (inPane(seen, size) && Math.abs(seen.depthMm) <= reach) {
       nodes.push({ node, seen, selected: node.id === selection.node });
     }
   }
-  return { strands, nodes, pins, underWay };
+  const places: ProjectedPlace[] = [];
+  for (const place of content.places) {
+    const seen = toPane(plane, size, place.at);
+    if (inPane(seen, size) && Math.abs(seen.depthMm) <= reach) places.push({ place, seen });
+  }
+  return { strands, nodes, pins, underWay, places };
 }
 
 /** Pane coordinates and depths of flat xyz points; shape [n, 3], CSS pixels and millimetres. */

@@ -2,6 +2,8 @@ import type { PanePoint, PaneSize, ViewPlane } from "#renderer/section/view-plan
 import type { SectionHeader, SnapCandidate } from "#shared/api/engine.ts";
 import type { BinaryFrame } from "#shared/api/frame.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
+import type { DrawnStrand } from "#shared/marks/drawn-strand.ts";
+import type { MarkedPlace } from "#shared/marks/marked-place.ts";
 import type { CrossLinkId, NodeId, StrandId, TreeDocument, TreeId } from "#shared/trees/document.ts";
 import type { FrameName } from "#shared/volume/grid.ts";
 
@@ -47,6 +49,9 @@ export interface SectionContent {
   /** The engine's answer; drawn where its own plane lies, so an older one pans and zooms along until the next arrives. */
   readonly image: BinaryFrame<SectionHeader> | null;
   readonly document: TreeDocument | null;
+  /** Strands shown instead of the document's, for example those of two passes; null = the document's. */
+  readonly strands: readonly DrawnStrand[] | null;
+  readonly places: readonly MarkedPlace[];
   readonly selection: Selection;
   /** Thickness of the slab, millimetres; what lies within is drawn in full. */
   readonly slabMm: number;

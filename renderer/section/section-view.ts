@@ -3,6 +3,7 @@ import { drawCursor, drawFrame, drawRuler, drawSnap } from "#renderer/section/dr
 import { drawUnderWay } from "#renderer/section/draw-guide.ts";
 import { GreyPicture } from "#renderer/section/draw-image.ts";
 import { drawLabels } from "#renderer/section/draw-labels.ts";
+import { drawPlaces } from "#renderer/section/draw-places.ts";
 import { drawNodes, drawPins } from "#renderer/section/draw-points.ts";
 import { drawOutlines, drawStrands } from "#renderer/section/draw-strands.ts";
 import { hitTest } from "#renderer/section/hit-test.ts";
@@ -27,6 +28,8 @@ export const EMPTY_SECTION: SectionContent = {
   plane: null,
   image: null,
   document: null,
+  strands: null,
+  places: [],
   selection: {},
   slabMm: 0.4,
   guide: null,
@@ -114,9 +117,11 @@ export class SectionView {
   show(change: Partial<SectionContent>): void {
     const before = this.content;
     this.content = { ...before, ...change };
-    const { plane, image, document, selection, slabMm, underWay } = this.content;
+    const { plane, image, document, strands, places, selection, slabMm, underWay } = this.content;
     const sameScene =
       document === before.document &&
+      strands === before.strands &&
+      places === before.places &&
       selection === before.selection &&
       slabMm === before.slabMm &&
       underWay === before.underWay &&
@@ -270,6 +275,7 @@ export class SectionView {
     drawNodes(to, this.scene, half, ink);
     drawUnderWay(to, content.underWay, content.guide, plane, size, ink);
     drawPins(to, this.scene, half, ink);
+    drawPlaces(to, this.scene, half, ink);
     drawFrame(to, text, content, plane, size, ink);
     drawRuler(to, text, content, plane, size, ink);
     drawSnap(to, text, content, plane, size, ink);

@@ -1,18 +1,22 @@
 import { CanvasTexture, SRGBColorSpace, type Texture } from "three";
-import { NODE_GLYPHS } from "#shared/marks/node-glyph.ts";
+import { NODE_GLYPHS, type NodeGlyph } from "#shared/marks/node-glyph.ts";
 import type { NodeKind } from "#shared/trees/document.ts";
 
 const SIDE_PX = 64;
 
-/** White glyphs with a dark rim, one texture a kind, made when first asked for; a vertex colour tints them. */
+/** White glyphs with a dark rim, one texture a glyph, made when first asked for; a vertex colour tints them. */
 export class GlyphTextures {
-  private readonly made = new Map<NodeKind, Texture>();
+  private readonly made = new Map<NodeGlyph, Texture>();
 
   of(kind: NodeKind): Texture {
-    let texture = this.made.get(kind);
+    return this.ofGlyph(NODE_GLYPHS[kind]);
+  }
+
+  ofGlyph(glyph: NodeGlyph): Texture {
+    let texture = this.made.get(glyph);
     if (texture === undefined) {
-      texture = draw(kind);
-      this.made.set(kind, texture);
+      texture = draw(glyph);
+      this.made.set(glyph, texture);
     }
     return texture;
   }
@@ -23,7 +27,7 @@ export class GlyphTextures {
   }
 }
 
-function draw(kind: NodeKind): Texture {
+function draw({ fill, stroke }: NodeGlyph): Texture {
   const canvas = document.createElement("canvas");
   canvas.width = canvas.height = SIDE_PX;
   const to = canvas.getContext("2d")!;
@@ -31,7 +35,6 @@ function draw(kind: NodeKind): Texture {
   to.scale(SIDE_PX / 28, SIDE_PX / 28);
   to.lineJoin = "round";
   to.lineCap = "round";
-  const { fill, stroke } = NODE_GLYPHS[kind];
   const full = new Path2D(fill);
   const line = new Path2D(stroke);
   to.strokeStyle = "#000";

@@ -1,6 +1,6 @@
 import { type PointMm, pointMm, type Vec3 } from "#shared/geometry/types.ts";
 import { frontDirection, type ValveAxes } from "#shared/geometry/valve-axes.ts";
-import { add, cross, dot, normalise, scale } from "#shared/geometry/vec3.ts";
+import { add, cross, dot, norm, normalise, scale, subtract } from "#shared/geometry/vec3.ts";
 
 /** Where the viewer stands: turned about the upright axis, tilted, at a distance from a place that is looked at. */
 export interface Orbit {
@@ -74,6 +74,23 @@ export function viewerAxes(
   const away = normalise(add(scale(level, Math.cos(tilt)), scale(up, -Math.sin(tilt))));
   const right = normalise(cross(away, up));
   return { eye: add(orbit.target, scale(away, -orbit.distanceMm)), away, right, up: cross(right, away) };
+}
+
+/** A place nearer to the upright axis than this lies on no side of it, millimetres. */
+const ON_AXIS_MM = 1;
+const FACING_TILT = 0.2;
+
+/**
+ * The orbit about a place, seen from outside: the viewer stands on that side of the upright axis through `centre` on which the
+ * place lies, a little above. @param acrossMm so many millimetres fill the view's height; a view that is nearer stays as near
+ */
+export function facing(orbit: Orbit, upright: Upright, place: PointMm, centre: PointMm, acrossMm: number): Orbit {
+  const distanceMm = Math.min(orbit.distanceMm, acrossMm / 2 / Math.tan((OPENING_DEG * Math.PI) / 360));
+  const about = { ...orbit, target: place, distanceMm };
+  const offset = subtract(place, centre);
+  const outwards = subtract(offset, scale(upright.up, dot(offset, upright.up)));
+  if (norm(outwards) < ON_AXIS_MM) return about;
+  return lookingAlong(about, upright, subtract(scale(normalise(outwards), -1), scale(upright.up, FACING_TILT)));
 }
 
 /** The orbit, about the same target, whose line of sight comes nearest to `away`. */

@@ -23,17 +23,23 @@ import type { Vec3 } from "#shared/geometry/types.ts";
 import { add, scale } from "#shared/geometry/vec3.ts";
 import type { ViewColours } from "#shared/marks/colours.ts";
 import type { DrawnStrand } from "#shared/marks/drawn-strand.ts";
+import type { MarkedPlace } from "#shared/marks/marked-place.ts";
 import { TREE_DASHES, treeMark } from "#shared/marks/tree-mark.ts";
 import type { NodeKind, TreeNode } from "#shared/trees/document.ts";
 
 /** Strands thinner than this would vanish at the distance from which a whole valve is seen. */
 const THINNEST_MM = 0.11;
+/** Radius of quiet strands, whatever they measure, and the least of loud ones. */
+const QUIET_MM = 0.06;
+const LOUD_MM = 0.17;
 /** Rings of a tube stand this far apart. */
 const STEP_MM = 0.25;
 const DASH_UNIT_MM = 0.32;
 /** Side of a glyph in CSS pixels (three multiplies point sizes by the pixel ratio): it follows the zoom between these bounds. */
 const GLYPH_PX = { least: 8, most: 17 } as const;
 const GLYPH_MM = 1.1;
+/** Sides of the glyphs of marked places, CSS pixels. */
+const PLACE_PX = { plain: 18, picked: 30 } as const;
 
 /** Frees what a part holds on the graphics side. */
 export function freePart(part: Object3D): void {
@@ -52,12 +58,23 @@ export function strandsPart(strands: readonly DrawnStrand[], colours: ViewColour
   return tubesPart(
     strands.map((strand) => ({
       points: strand.points,
-      radii: strand.doubtful || !strand.traced ? [] : strand.radii,
-      colour: rgb(colours.trees[strand.mark.colour]!),
+      radii: radiiInSpace(strand),
+      colour: strand.manner === "quiet" ? quietRgb(colours) : rgb(colours.trees[strand.mark.colour]!),
       dashMm: TREE_DASHES[strand.mark.dash]!.map((k) => k * DASH_UNIT_MM),
     })),
-    THINNEST_MM,
+    strands.some((strand) => strand.manner === "quiet") ? QUIET_MM : THINNEST_MM,
   );
+}
+
+function radiiInSpace({ radii, doubtful, traced, manner }: DrawnStrand): ArrayLike<number> {
+  if (manner === "quiet") return [];
+  if (manner === "loud") return radii.map((radius) => Math.max(Number.isNaN(radius) ? 0 : radius, LOUD_MM));
+  return doubtful || !traced ? [] : radii;
+}
+
+function quietRgb(colours: ViewColours): [number, number, number] {
+  const { r, g, b } = new Color(colours.ink).lerp(new Color(colours.pane), 0.55);
+  return [r, g, b];
 }
 
 /** A translucent hull around the selected strands. */
@@ -156,6 +173,29 @@ export function surfacePart(points: Float32Array, colours: ViewColours): Points 
     depthWrite: false,
   });
   return new Points(geometry, material);
+}
+
+/** Marked places as glyphs of constant size before everything else, the one looked at larger. */
+export function placesPart(places: readonly MarkedPlace[], colours: ViewColours, textures: GlyphTextures): Object3D {
+  const group = new Group();
+  for (const { at, glyph, colour, picked } of places) {
+    const geometry = new BufferGeometry();
+    geometry.setAttribute("position", new BufferAttribute(Float32Array.from(at), 3));
+    const material = new PointsMaterial({
+      map: textures.ofGlyph(glyph),
+      color: picked ? colours.accent : colour === null ? colours.ink : colours.trees[colour]!,
+      size: picked ? PLACE_PX.picked : PLACE_PX.plain,
+      sizeAttenuation: false,
+      alphaTest: 0.35,
+      transparent: true,
+      depthTest: false,
+      fog: false,
+    });
+    const points = new Points(geometry, material);
+    points.renderOrder = picked ? 2 : 1;
+    group.add(points);
+  }
+  return group;
 }
 
 /** Pins of the strand under way. */

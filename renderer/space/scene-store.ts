@@ -5,6 +5,7 @@ import {
   guidePart,
   nodesPart,
   pinsPart,
+  placesPart,
   planePart,
   selectionPart,
   sizeGlyphs,
@@ -15,7 +16,7 @@ import type { SpaceContent } from "#renderer/space/space-content.ts";
 import type { ViewColours } from "#shared/marks/colours.ts";
 import { type DrawnStrand, drawnStrands } from "#shared/marks/drawn-strand.ts";
 
-const PARTS = ["strands", "nodes", "selection", "guide", "pins", "plane", "surface"] as const;
+const PARTS = ["strands", "nodes", "places", "selection", "guide", "pins", "plane", "surface"] as const;
 type PartName = (typeof PARTS)[number];
 
 /** The parts of the scene by what they show; each is built anew only when what it shows has changed. */
@@ -34,11 +35,12 @@ export class SceneStore {
 
   /** Notes which parts are stale; they are built at the next {@link refresh}. */
   changed(before: SpaceContent, now: SpaceContent): void {
-    if (now.document !== before.document) {
-      this.drawn = now.document === null ? [] : drawnStrands(now.document);
+    if (now.document !== before.document || now.strands !== before.strands) {
+      this.drawn = now.strands ?? (now.document === null ? [] : drawnStrands(now.document));
       this.spoil("strands", "nodes", "selection");
     }
     if (now.selection !== before.selection) this.spoil("selection");
+    if (now.places !== before.places) this.spoil("places");
     if (now.guide !== before.guide) this.spoil("guide");
     if (now.pins !== before.pins) this.spoil("pins");
     if (now.plane !== before.plane || now.picture !== before.picture) this.spoil("plane");
@@ -99,12 +101,16 @@ export class SceneStore {
         return document === null ? null : nodesPart(document.nodes.values(), colours, this.glyphs);
       case "selection": {
         const chosen = this.drawn.filter((strand) =>
-          selection.strand === undefined
-            ? selection.tree !== undefined && strand.tree === selection.tree
-            : strand.id === selection.strand,
+          strand.picked !== undefined
+            ? strand.picked
+            : selection.strand === undefined
+              ? selection.tree !== undefined && strand.tree === selection.tree
+              : strand.id === selection.strand,
         );
         return chosen.length === 0 ? null : selectionPart(chosen, colours);
       }
+      case "places":
+        return content.places.length === 0 ? null : placesPart(content.places, colours, this.glyphs);
       case "guide":
         return guide === null || guide.length < 6 ? null : guidePart(guide, colours);
       case "pins":

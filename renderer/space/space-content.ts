@@ -1,5 +1,7 @@
 import type { PointMm, Vec3 } from "#shared/geometry/types.ts";
 import type { ValveAxes } from "#shared/geometry/valve-axes.ts";
+import type { DrawnStrand } from "#shared/marks/drawn-strand.ts";
+import type { MarkedPlace } from "#shared/marks/marked-place.ts";
 import type { CrossLinkId, NodeId, StrandId, TreeDocument, TreeId } from "#shared/trees/document.ts";
 
 export interface SpaceSelection {
@@ -26,6 +28,9 @@ export interface PictureInSpace extends PlaneInSpace {
 
 export interface SpaceContent {
   readonly document: TreeDocument | null;
+  /** Strands shown instead of the document's, for example those of two passes; null = the document's. */
+  readonly strands: readonly DrawnStrand[] | null;
+  readonly places: readonly MarkedPlace[];
   readonly selection: SpaceSelection;
   /** Flat xyz, millimetres: the live guide. */
   readonly guide: readonly number[] | null;

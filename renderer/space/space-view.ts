@@ -2,6 +2,7 @@ import "#renderer/space/space.css";
 import { AmbientLight, Color, DirectionalLight, Fog, Matrix4, PerspectiveCamera, Scene, WebGLRenderer } from "three";
 import {
   approached,
+  facing,
   lookingAlong,
   mmPerPixel,
   OPENING_DEG,
@@ -22,6 +23,8 @@ import { coloursFrom } from "#shared/marks/colours.ts";
 
 export const EMPTY_SPACE: SpaceContent = {
   document: null,
+  strands: null,
+  places: [],
   selection: {},
   guide: null,
   pins: [],
@@ -138,6 +141,12 @@ export class SpaceView {
   /** Puts a place in the middle, keeping the direction and the distance. */
   centreOn(target: PointMm): void {
     this.move({ ...this.orbit, target });
+  }
+
+  /** Turns to a place, from the side of the valve on which it lies, and comes so near that `acrossMm` fill the view; never farther than now. */
+  turnTo(place: PointMm, acrossMm: number): void {
+    const { valve, bounds } = this.content;
+    this.move(facing(this.orbit, uprightOf(valve), place, valve?.centre ?? bounds.centre, acrossMm));
   }
 
   /** Shows everything, upright, from the front. */

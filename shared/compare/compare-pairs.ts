@@ -1,5 +1,5 @@
 import { type CanonicalTree, canonicalTree } from "#shared/compare/canonical.ts";
-import type { ComparedPair, CompareOptions, NormalisedDistance, TimeLeft } from "#shared/compare/comparison.ts";
+import type { ComparedPair, CompareOptions, NormalisedDistance, TellProgress, TimeLeft } from "#shared/compare/comparison.ts";
 import { type CostModel, geometryCosts, structureCosts } from "#shared/compare/costs.ts";
 import { editDistance } from "#shared/compare/edit-distance/edit-distance.ts";
 import { editScript } from "#shared/compare/edit-distance/script.ts";
@@ -13,6 +13,7 @@ import { nameOfTree } from "#shared/trees/plain-trees.ts";
  * The comparison of some of the matched pairs. A pair's answer does not depend on which others are asked for (short of the
  * time running out), so that pairs can be spread over threads and machines.
  * @param which numbers of pairs in `matched.pairs`.
+ * @param tell hears of each search for a distance that begins.
  * @returns the compared pairs and, beside each, sentences on what could not be done as asked.
  */
 export function comparePairs(
@@ -20,6 +21,7 @@ export function comparePairs(
   which: readonly number[],
   options: CompareOptions,
   timeLeft: TimeLeft,
+  tell: TellProgress = () => undefined,
 ): { pairs: ComparedPair[]; warnings: string[][] } {
   const { a, b, linesA, linesB, table } = matched;
   const costs = costsOf(options);
@@ -27,9 +29,11 @@ export function comparePairs(
   const canonical = chosen.map(
     ([i, j]) => [canonicalTree(a.trees[i]!, options.merge), canonicalTree(b.trees[j]!, options.merge)] as const,
   );
-  const distances = inTurns(chosen.length, timeLeft, (k, shouldStop) =>
-    editDistance(...canonical[k]!, costs, options.origin, shouldStop),
-  );
+  const distances = inTurns(chosen.length, timeLeft, (k, shouldStop) => {
+    tell({ stage: "pairs", begun: k + 1, of: chosen.length });
+    return editDistance(...canonical[k]!, costs, options.origin, shouldStop);
+  });
+  tell({ stage: "events", begun: 0, of: 0 });
   const events = eventsOfPairs(a, b, matched.pairs, options.tolerance, options.merge);
   const pairs = chosen.map(([i, j], k): ComparedPair => {
     const found = distances[k]!;

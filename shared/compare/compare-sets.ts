@@ -1,7 +1,14 @@
 import { AFFINITY_STEP_MM } from "#shared/compare/affinity.ts";
 import { type CanonicalTree, canonicalTree } from "#shared/compare/canonical.ts";
 import { comparePairs, costsOf, normalise, overlapOptions } from "#shared/compare/compare-pairs.ts";
-import type { ComparedPair, ComparedWhole, CompareOptions, Comparison, TimeLeft } from "#shared/compare/comparison.ts";
+import type {
+  ComparedPair,
+  ComparedWhole,
+  CompareOptions,
+  Comparison,
+  TellProgress,
+  TimeLeft,
+} from "#shared/compare/comparison.ts";
 import { matchCrossLinks } from "#shared/compare/cross-links.ts";
 import { detection } from "#shared/compare/detection.ts";
 import { editDistance } from "#shared/compare/edit-distance/edit-distance.ts";
@@ -15,9 +22,17 @@ import type { RootedStrand } from "#shared/trees/rooted-strands.ts";
  * Compares two sets of trees, A being the reference: which tree is which by affinity, each pair's edit distance with proven
  * bounds, the script, the events, overlap and distances; unmatched trees at full cost.
  */
-export function compareSets(a: PlainSet, b: PlainSet, options: CompareOptions, timeLeft: TimeLeft): Comparison {
+export function compareSets(
+  a: PlainSet,
+  b: PlainSet,
+  options: CompareOptions,
+  timeLeft: TimeLeft,
+  tell: TellProgress = () => undefined,
+): Comparison {
+  tell({ stage: "matching", begun: 0, of: 0 });
   const matched = matchSets(a, b);
-  const { pairs, warnings } = comparePairs(matched, [...matched.pairs.keys()], options, timeLeft);
+  const { pairs, warnings } = comparePairs(matched, [...matched.pairs.keys()], options, timeLeft, tell);
+  tell({ stage: "whole", begun: 0, of: 0 });
   return assembleComparison(frameOfComparison(matched, options), pairs, warnings.flat());
 }
 

@@ -78,5 +78,15 @@ export interface ComparedWhole {
   readonly detection: Detection;
 }
 
+/** What a comparison is doing; `begun` and `of` count pairs, both 0 where nothing is counted. */
+export interface CompareProgress {
+  readonly stage: "matching" | "pairs" | "events" | "whole";
+  readonly begun: number;
+  readonly of: number;
+}
+
+/** Hears what a comparison is doing. */
+export type TellProgress = (progress: CompareProgress) => void;
+
 /** Wall time in milliseconds that is left; asked now and then, so that a clock need not be known here. */
 export type TimeLeft = () => number;

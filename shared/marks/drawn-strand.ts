@@ -15,6 +15,10 @@ export interface DrawnStrand {
   readonly pins: readonly PointMm[];
   readonly mark: TreeMark;
   readonly doubtful: boolean;
+  /** Absent = as usual; quiet = thin and grey, what needs no attention; loud = broad, what does. */
+  readonly manner?: "quiet" | "loud";
+  /** Absent = as the selection says. */
+  readonly picked?: boolean;
   /** False while the image has not been followed: straight lines between nodes and pins stand in. */
   readonly traced: boolean;
 }

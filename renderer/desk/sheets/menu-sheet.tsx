@@ -1,11 +1,11 @@
 import { Sheet } from "#renderer/app/sheet.tsx";
 import type { DeskSheetProps } from "#renderer/desk/sheets/sheet-props.ts";
-import { groupedCommands } from "#renderer/editor/commands/command-table.ts";
+import { COMMANDS, groupedCommands } from "#renderer/editor/commands/command-table.ts";
 import { shownShortcut } from "#renderer/editor/commands/shortcut.ts";
 
 /** Every command by group, to be clicked; those that can do nothing now are greyed. Single steps of the cursor are left out. */
 export function MenuSheet({ context, close }: DeskSheetProps) {
-  const groups = groupedCommands().map(({ group, commands }) => ({
+  const groups = groupedCommands(COMMANDS).map(({ group, commands }) => ({
     group,
     commands: commands.filter((command) => !command.name.startsWith("cursor-")),
   }));

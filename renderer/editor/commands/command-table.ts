@@ -28,8 +28,8 @@ export function commandNamed(name: string): Command<DeskContext> | null {
 }
 
 /** Commands by group, in the order of the table; groups without a command are left out. */
-export function groupedCommands<Context = DeskContext>(
-  commands: readonly Command<Context>[] = COMMANDS as readonly Command<never>[],
+export function groupedCommands<Context>(
+  commands: readonly Command<Context>[],
 ): { group: CommandGroup; commands: Command<Context>[] }[] {
   return COMMAND_GROUPS.map((group) => ({ group, commands: commands.filter((command) => command.group === group) })).filter(
     (entry) => entry.commands.length > 0,
@@ -38,7 +38,7 @@ export function groupedCommands<Context = DeskContext>(
 
 /** The key list as Markdown, for the README. */
 export function keyListMarkdown(): string {
-  const rows = groupedCommands().flatMap(({ group, commands }) => [
+  const rows = groupedCommands(COMMANDS).flatMap(({ group, commands }) => [
     `**${group}**\n`,
     "| key | does |",
     "| --- | --- |",
