@@ -32,10 +32,16 @@ export interface EditorPlaces {
   readonly serverBack: () => Promise<void>;
   /** An edit that could not be made; the person is told. */
   readonly failed: (error: unknown) => void;
-  /** Keeps waiting intents over a reload. */
-  readonly keepWaiting: (waiting: readonly Intent[]) => void;
-  /** Intents that an earlier load of the page left waiting. */
-  readonly leftWaiting: readonly Intent[];
+  /** Keeps what waits over a reload. */
+  readonly keepWaiting: (left: LeftWaiting) => void;
+  /** What an earlier load of the page left waiting. */
+  readonly leftWaiting: LeftWaiting;
+}
+
+/** Intents that wait, and what was under way when the first of them was to be carried out. */
+export interface LeftWaiting {
+  readonly underWay: UnderWay;
+  readonly waiting: readonly Intent[];
 }
 
 /** A node or pin that is being carried by keys: the next click puts it down. */
@@ -94,7 +100,7 @@ export class Editor {
       perform: (intent, stop) => performIntent(this.stage, intent, stop),
       failed: (_, error) => places.failed(error),
       serverBack: places.serverBack,
-      keep: places.keepWaiting,
+      keep: (waiting) => places.keepWaiting({ underWay: underWay.value, waiting }),
     });
     this.projection = computed(() =>
       project(
@@ -111,7 +117,8 @@ export class Editor {
         this.guideFollower.start(kind === "nothing" ? null : tip, leg);
       }),
     );
-    for (const intent of places.leftWaiting) this.queue.add(intent);
+    if (places.leftWaiting.waiting.length > 0) underWay.value = places.leftWaiting.underWay;
+    for (const intent of places.leftWaiting.waiting) this.queue.add(intent);
   }
 
   get underWay(): ReadonlySignal<UnderWay> {

@@ -13,6 +13,8 @@ export interface RunningProgram {
   readonly folder: string;
   readonly library: string;
   stop(): Promise<void>;
+  /** Ends it at once, as a power cut would. */
+  kill(): Promise<void>;
 }
 
 const ROOT = join(import.meta.dirname, "../..");
@@ -20,11 +22,15 @@ const ROOT = join(import.meta.dirname, "../..");
 export const DIST = process.env.TAUTLINE_DIST ?? join(ROOT, "dist");
 const START_MS = 30_000;
 
-export async function startProgram(folder?: string): Promise<RunningProgram> {
+/**
+ * Starts the program. @param folder of an earlier run, to go on in its library; left out, a new one that is removed at the end
+ * @param port that page addresses should have; 0 = any free one
+ */
+export async function startProgram(folder?: string, port = 0): Promise<RunningProgram> {
   const home = folder ?? (await mkdtemp(join(tmpdir(), "tautline-browser-")));
   const library = join(home, "library");
   const server = join(DIST, "main/server.mjs");
-  const args = [server, "--port", "0", "--no-open", "--grace", "600", "--library", library];
+  const args = [server, "--port", String(port), "--no-open", "--grace", "600", "--library", library];
   const child = spawn(process.execPath, args, {
     env: { ...process.env, TAUTLINE_STATE: join(home, "state") },
     stdio: ["ignore", "pipe", "pipe"],
@@ -34,6 +40,7 @@ export async function startProgram(folder?: string): Promise<RunningProgram> {
     url,
     folder: home,
     library,
+    kill: () => ended(child, "SIGKILL"),
     stop: async () => {
       await ended(child);
       if (folder === undefined) await rm(home, { recursive: true, force: true });
@@ -58,11 +65,11 @@ function addressOf(child: ChildProcess): Promise<string> {
   });
 }
 
-function ended(child: ChildProcess): Promise<void> {
-  if (child.exitCode !== null) return Promise.resolve();
+function ended(child: ChildProcess, signal: NodeJS.Signals = "SIGTERM"): Promise<void> {
+  if (child.exitCode !== null || child.signalCode !== null) return Promise.resolve();
   return new Promise((resolve) => {
     child.once("exit", () => resolve());
-    child.kill("SIGTERM");
+    child.kill(signal);
   });
 }
 

@@ -4,7 +4,7 @@ import { type ShownFinding, shownFindings } from "#renderer/desk/model/findings.
 import { type LineFacts, lineFacts } from "#renderer/desk/model/line-facts.ts";
 import { type FollowedLine, SectionModel } from "#renderer/desk/model/section-model.ts";
 import { serverBack } from "#renderer/desk/model/server-back.ts";
-import { keepWaiting, leftWaiting } from "#renderer/desk/model/waiting-store.ts";
+import { keepWaiting, leftWaiting, NOTHING_LEFT } from "#renderer/desk/model/waiting-store.ts";
 import { Editor } from "#renderer/editor/editor.ts";
 import type { PassKeeper } from "#renderer/editor/session/pass-keeper.ts";
 import type { PassSummary, SpecimenRecord } from "#shared/api/specimen.ts";
@@ -59,9 +59,9 @@ export class DeskModel {
       },
       serverBack: () => serverBack(client),
       failed: (error) => notices.failed(error),
-      keepWaiting: (waiting) => keepWaiting(pass.id, waiting),
+      keepWaiting: (left) => keepWaiting(pass.id, left),
       // The window that writes carries them out.
-      leftWaiting: keeper.readOnly ? [] : leftWaiting(pass.id),
+      leftWaiting: keeper.readOnly ? NOTHING_LEFT : leftWaiting(pass.id),
     });
     this.section = new SectionModel({ client, specimen: this.specimen, followed: () => this.followed() });
     this.measures = computed(() => measureTrees(plainFromDocument(this.editor.document.value)));

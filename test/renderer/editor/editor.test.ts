@@ -245,7 +245,7 @@ describe("waiting edits", () => {
     editor.click(at(2, 0));
     await new Promise((tick) => setTimeout(tick, 0));
     expect(editor.serverAway.value).toBe(true);
-    expect(server.kept).toHaveLength(1);
+    expect(server.kept.waiting).toHaveLength(1);
     server.comeBack();
     await editor.settled();
     expect(ofKind(editor, "open")[0]!.position).toEqual([2, 0, 0]);
@@ -266,21 +266,22 @@ describe("waiting edits", () => {
     expect(keeper.edits).toBe(1);
   });
 
-  it("come back after a reload of the page", async () => {
+  it("come back after a reload of the page, and go on with the strand that was under way", async () => {
     const first = newEditor();
-    first.editor.click(at(0, 0));
+    for (const x of [0, 2]) first.editor.click(at(x, 0));
     await first.editor.settled();
-    const { origin } = { origin: ofKind(first.editor, "origin")[0]! };
-    const keeper = new MemoryKeeper(first.keeper.lines);
-    const kept = JSON.parse(
-      JSON.stringify([
-        { do: "resume", node: origin.id },
-        { do: "pin", at: { point: [3, 0, 0] } },
-      ]),
-    );
-    const { editor } = newEditor(new FakeServer(), keeper, kept);
+    first.server.away = true;
+    for (const x of [4, 6]) first.editor.click(at(x, 0));
+    await new Promise((tick) => setTimeout(tick, 0));
+    const kept = JSON.parse(JSON.stringify(first.server.kept));
+    const { editor } = newEditor(new FakeServer(), new MemoryKeeper(first.keeper.lines), kept);
     await editor.settled();
-    expect(ofKind(editor, "open")[0]!.position).toEqual([3, 0, 0]);
+    expect(editor.document.value.trees.size).toBe(1);
+    expect(strands(editor)[0]!.via).toEqual([
+      [2, 0, 0],
+      [4, 0, 0],
+    ]);
+    expect(ofKind(editor, "open")[0]!.position).toEqual([6, 0, 0]);
   });
 
   it("that fit nothing any more are said, dropped, and change nothing", async () => {

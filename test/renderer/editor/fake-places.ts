@@ -1,13 +1,15 @@
 import { signal } from "@preact/signals";
-import { Editor, type EditorPlaces } from "#renderer/editor/editor.ts";
-import type { Intent } from "#renderer/editor/session/intent.ts";
+import { Editor, type EditorPlaces, type LeftWaiting } from "#renderer/editor/editor.ts";
 import type { PassKeeper, SavedState } from "#renderer/editor/session/pass-keeper.ts";
+import { NOTHING } from "#renderer/editor/tracing/under-way.ts";
 import type { Pointing, Under } from "#renderer/editor/view-control.ts";
 import type { SolvedCurve } from "#shared/api/engine.ts";
 import { TautlineError } from "#shared/errors.ts";
 import { pointMm, type Vec3 } from "#shared/geometry/types.ts";
 import { PassHistory } from "#shared/log/history.ts";
 import type { StrandRequest } from "#shared/tracing/strand-request.ts";
+
+const NOTHING_LEFT: LeftWaiting = { underWay: NOTHING, waiting: [] };
 
 /** A pass kept in memory over the real history, its lines with it. */
 export class MemoryKeeper implements PassKeeper {
@@ -88,7 +90,7 @@ export class FakeServer {
   /** Strands asked for, one list per request. */
   readonly asked: (readonly StrandRequest[])[] = [];
   readonly failures: unknown[] = [];
-  kept: readonly Intent[] = [];
+  kept: LeftWaiting = NOTHING_LEFT;
   away = false;
   /** Set: requests wait until `release` is called. */
   held = false;
@@ -105,7 +107,7 @@ export class FakeServer {
     for (const go of this.back.splice(0)) go();
   }
 
-  places(keeper: PassKeeper, leftWaiting: readonly Intent[] = []): EditorPlaces {
+  places(keeper: PassKeeper, leftWaiting: LeftWaiting = NOTHING_LEFT): EditorPlaces {
     return {
       keeper,
       leftWaiting,
@@ -123,8 +125,8 @@ export class FakeServer {
       },
       serverBack: () => new Promise<void>((go) => this.back.push(go)),
       failed: (error) => void this.failures.push(error),
-      keepWaiting: (waiting) => {
-        this.kept = waiting;
+      keepWaiting: (left) => {
+        this.kept = left;
       },
     };
   }
@@ -135,6 +137,6 @@ export function at(x: number, y: number, z = 0, under: Under | null = null): Poi
   return { at: pointMm(x, y, z), normal: [0, 0, 1], mmPerPx: 0.05, slabMm: 0.4, under, released: false };
 }
 
-export function newEditor(server = new FakeServer(), keeper = new MemoryKeeper(), leftWaiting: readonly Intent[] = []) {
+export function newEditor(server = new FakeServer(), keeper = new MemoryKeeper(), leftWaiting: LeftWaiting = NOTHING_LEFT) {
   return { server, keeper, editor: new Editor(server.places(keeper, leftWaiting)) };
 }
