@@ -77,7 +77,7 @@ export function ExportSheet({ model, close }: DeskSheetProps) {
               checked={format === entry.format}
               onChange={() => setFormat(entry.format)}
             />
-            <span>
+            <span class="radio-words">
               <strong>{entry.title}</strong>
               <span class="soft">{entry.words}</span>
             </span>

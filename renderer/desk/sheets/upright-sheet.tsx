@@ -26,7 +26,7 @@ export function UprightSheet({ model, close }: DeskSheetProps) {
         {LANDMARK_KINDS.map(({ kind, label }) => (
           <li key={kind} class="row">
             <span>{label}</span>
-            <span class="figures soft">{landmarkCount(landmarks, kind)} set</span>
+            <span class="figures soft landmark-count">{landmarkCount(landmarks, kind)} set</span>
             <span class="spring" />
             <button
               type="button"
