@@ -37,6 +37,14 @@ describe("expectation-maximisation on the toy", () => {
     for (const other of others) expect(best!.objective - other.objective).toBeLessThanOrEqual(2);
   });
 
+  it("has a second optimum, which other starts reach", () => {
+    const high = climbDetection(TOY, START, START, plain(100_000));
+    const low = climbDetection(TOY, [0.1, 0.1, 0.1], [0.1, 0.1, 0.1], plain(100_000));
+    expect(high.logLikelihood).toBeCloseTo(-18.066, 3);
+    expect(low.logLikelihood).toBeCloseTo(-18.483, 3);
+    expect(detectionRates(TOY, 0.4, 1).others).toHaveLength(1);
+  });
+
   it("never goes down on its way", () => {
     let before = Number.NEGATIVE_INFINITY;
     for (let iterations = 0; iterations < 30; iterations++) {
