@@ -1,4 +1,4 @@
-import { computed, type ReadonlySignal, type Signal, signal } from "@preact/signals";
+import { computed, effect, type ReadonlySignal, type Signal, signal } from "@preact/signals";
 import type { Services } from "#renderer/app/services.ts";
 import { type ShownFinding, shownFindings } from "#renderer/desk/model/findings.ts";
 import { type LineFacts, lineFacts } from "#renderer/desk/model/line-facts.ts";
@@ -24,6 +24,9 @@ export interface DeskFacts {
   readonly keeper: PassKeeper;
 }
 
+/** Checks run when no edit came for this long. */
+const CHECK_REST_MS = 300;
+
 /** Everything one open desk holds: the editor, the section, and what of the screen is open. */
 export class DeskModel {
   readonly services: Services;
@@ -34,11 +37,14 @@ export class DeskModel {
   readonly sheet: Signal<SheetName | null> = signal(null);
   readonly historyShown = signal(false);
   readonly tab: Signal<"trees" | "findings"> = signal<"trees" | "findings">("trees");
-  readonly findings: ReadonlySignal<readonly ShownFinding[]>;
+  /** Follows the document once it rests: checks of a whole valve are too much for every pin. */
+  readonly findings: Signal<readonly ShownFinding[]>;
   readonly findingAt: Signal<string | null> = signal(null);
   readonly measures: ReadonlySignal<Measures>;
   /** The selected strand as the strip shows it. */
   readonly lineFacts: ReadonlySignal<LineFacts | null>;
+
+  private readonly stopChecking: () => void;
 
   constructor(facts: DeskFacts) {
     const { services, specimen, pass, keeper } = facts;
@@ -66,7 +72,14 @@ export class DeskModel {
     this.section = new SectionModel({ client, specimen: this.specimen, followed: () => this.followed() });
     this.measures = computed(() => measureTrees(plainFromDocument(this.editor.document.value)));
     this.lineFacts = computed(() => lineFacts(this.editor.document.value, this.editor.selection.value));
-    this.findings = computed(() => shownFindings(this.editor.document.value));
+    this.findings = signal(shownFindings(keeper.document));
+    this.stopChecking = effect(() => {
+      const document = this.editor.document.value;
+      const timer = setTimeout(() => {
+        this.findings.value = shownFindings(document);
+      }, CHECK_REST_MS);
+      return () => clearTimeout(timer);
+    });
   }
 
   /** The line that across and along planes follow: the live guide, else the selected strand. */
@@ -86,6 +99,7 @@ export class DeskModel {
   }
 
   dispose(): void {
+    this.stopChecking();
     this.editor.dispose();
     this.section.detach();
     void this.editor.keeper.close();

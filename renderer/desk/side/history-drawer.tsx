@@ -1,14 +1,19 @@
-import { useEffect, useRef } from "preact/hooks";
+import { useEffect, useRef, useState } from "preact/hooks";
 import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
+import { countText } from "#renderer/editor/session/words.ts";
 import type { HistoryEntry } from "#shared/log/history.ts";
 
+/** So many edits are listed at first; a pass of a week has thousands. */
+const ROWS = 400;
 const PLACE_WORDS = { past: "", ahead: "undone, redo brings it back", aside: "on an undone branch" } as const;
 
 /** Every edit ever made, the newest first: click to go there. Undone branches stay. */
 export function HistoryDrawer({ model }: { readonly model: DeskModel }) {
   const { editor } = model;
   editor.revision.value;
-  const entries = [...editor.keeper.entries()].reverse();
+  const [most, setMost] = useState(ROWS);
+  const all = editor.keeper.entries();
+  const entries = [...all].reverse().slice(0, most);
   const here = useRef<HTMLButtonElement>(null);
   useEffect(() => here.current?.scrollIntoView({ block: "nearest" }), []);
   const go = (seq: number) => editor.do({ do: "jump", seq });
@@ -57,6 +62,13 @@ export function HistoryDrawer({ model }: { readonly model: DeskModel }) {
             </button>
           </li>
         ))}
+        {all.length > most ? (
+          <li>
+            <button type="button" class="button plain" onClick={() => setMost(most + ROWS)}>
+              Show earlier edits ({countText(all.length - most)} more)
+            </button>
+          </li>
+        ) : null}
         <li>
           <button
             type="button"
