@@ -1,5 +1,5 @@
 import { spawnSync } from "node:child_process";
-import { readFile } from "node:fs/promises";
+import { readdir, readFile, writeFile } from "node:fs/promises";
 import { join } from "node:path";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { addScan, allSaved, deskReady, exportTreeFile, headLine, startPass } from "#test/browser/desk-steps.ts";
@@ -31,6 +31,17 @@ async function traceByHand(hand: SectionHand): Promise<void> {
 interface Comparison {
   readonly pairs: readonly { readonly ged: number; readonly exact: boolean }[];
   readonly whole: { readonly distances: { readonly mean: number } };
+}
+
+interface TreeFile {
+  readonly trees: readonly {
+    readonly strands: readonly {
+      points?: readonly (readonly number[])[];
+      radii?: readonly (number | null)[];
+      madeBy?: unknown;
+      imageFit?: number | null;
+    }[];
+  }[];
 }
 
 /** The program's own comparison, as a person runs it. */
@@ -106,6 +117,28 @@ describe("the main job in a real browser", () => {
     expect(result.pairs).toHaveLength(1);
     expect(result.pairs[0]).toMatchObject({ ged: 0, exact: true });
     expect(result.whole.distances.mean).toBeLessThan(SPACING_MM);
+  });
+
+  it("is reached again, to the last bit of geometry, from the pins alone by the command line", async () => {
+    const mine = JSON.parse(await readFile(join(program.folder, "mine.chordae.json"), "utf8")) as TreeFile;
+    const pins = structuredClone(mine);
+    for (const strand of pins.trees[0]!.strands) {
+      for (const key of ["points", "radii", "madeBy", "imageFit"] as const) delete strand[key];
+    }
+    const pinsPath = join(program.folder, "pins.chordae.json");
+    const out = join(program.folder, "again.chordae.json");
+    await writeFile(pinsPath, JSON.stringify(pins));
+    const [specimen] = await readdir(join(program.library, "specimens"));
+    const folder = join(program.library, "specimens", specimen!);
+    const run = spawnSync(process.execPath, [join(DIST, "main/cli.mjs"), "trace", folder, "--pins", pinsPath, "--out", out], {
+      encoding: "utf8",
+    });
+    expect(run.status, run.stderr).toBe(0);
+    const again = JSON.parse(await readFile(out, "utf8")) as TreeFile;
+    expect(again.trees[0]!.strands.map((strand) => strand.points?.length)).toEqual(
+      mine.trees[0]!.strands.map((strand) => strand.points?.length),
+    );
+    expect(again.trees[0]!.strands).toEqual(mine.trees[0]!.strands);
   });
 
   it("shows a second window the pass as it grows, for reading only", async () => {
