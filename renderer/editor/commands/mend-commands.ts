@@ -5,6 +5,8 @@ import { nearestOnPolyline } from "#shared/geometry/polyline.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
 import { strandsAt } from "#shared/trees/adjacency.ts";
 import type { CrossLinkId, NodeId, Strand, StrandId } from "#shared/trees/document.ts";
+import { runOf } from "#shared/trees/edits/pin-run.ts";
+import { placeOnLine } from "#shared/trees/edits/place-on-line.ts";
 import { isLooseEnd } from "#shared/trees/edits/rewiring.ts";
 import { polylineOf } from "#shared/trees/geometry.ts";
 import { orientTree } from "#shared/trees/orientation.ts";
@@ -70,6 +72,16 @@ function deleteSelected(context: DeskContext): void {
   else if (tree !== undefined) editor.do({ do: "delete-tree", args: { tree } });
 }
 
+/** The stretch between pins that holds a place: straight when it followed the image, and the other way round. */
+function changeStretch(editor: Editor, id: StrandId, near: PointMm): void {
+  const document = editor.document.value;
+  const strand = document.strands.get(id);
+  if (strand === undefined) return;
+  const { leg } = placeOnLine(document, strand, near);
+  const kind = runOf(strand).legs[leg] === "straight" ? "guide" : "straight";
+  editor.do({ do: "set-leg", args: { strand: id, leg, kind } });
+}
+
 /** A node goes with its strand when it ends one, with its tree when it is the origin, and is taken out from between two. */
 function deleteNode(editor: Editor, node: NodeId): void {
   const document = editor.document.value;
@@ -109,6 +121,17 @@ export const MEND_COMMANDS: readonly Command<DeskContext>[] = [
       if (here !== null) context.editor.do({ do: "insert-pin", args: { line: here.strand, at: here.near } });
     },
     foot: (context) => (canEdit(context) && strandUnder(context) !== null ? "pin to re-route" : null),
+  },
+  {
+    name: "stretch-way",
+    group: "Mend",
+    label: "Make the stretch here straight, or follow the image again",
+    keys: ["Shift+P"],
+    enabled: (context) => canEdit(context) && strandUnder(context) !== null,
+    perform: (context) => {
+      const here = strandUnder(context);
+      if (here !== null) changeStretch(context.editor, here.strand, here.near);
+    },
   },
   {
     name: "cut",
