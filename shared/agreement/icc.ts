@@ -85,7 +85,8 @@ function oneForm(text: (typeof DESCRIPTIONS)[number], squares: MeanSquares, basi
   return { ...text, value, interval, reasons: reason === null ? {} : { interval: reason } };
 }
 
-function iccValue(form: IccForm, s: MeanSquares): number | null {
+/** One form's value from the mean squares; null where its denominator is not above zero. */
+export function iccValue(form: IccForm, s: MeanSquares): number | null {
   const { items: n, raters: k, between, within, rater, residual } = s;
   const over = (above: number, below: number) => (below > 0 ? above / below : null);
   switch (form) {

@@ -1,0 +1,281 @@
+import { iccValue } from "#shared/agreement/icc.ts";
+import type { Reasons } from "#shared/agreement/interval.ts";
+import { meanSquares } from "#shared/agreement/mean-squares.ts";
+import { type Selection, selectionOf, threeTolerances } from "#shared/agreement/selection.ts";
+import { type CategoricalAgreement, categoricalAgreement } from "#shared/agreement/study/categorical.ts";
+import { type ContinuousAgreement, continuousAgreement, type StudyQuantity } from "#shared/agreement/study/continuous.ts";
+import { type FoundItems, foundItems } from "#shared/agreement/study/found-items.ts";
+import { type IntraAgreement, intraAgreement } from "#shared/agreement/study/intra.ts";
+import { type MethodAgreement, methodAgreement } from "#shared/agreement/study/method.ts";
+import { type NodePlaces, nodePlaces } from "#shared/agreement/study/node-places.ts";
+import { comparePassPairs, type PairSummary, passPairs } from "#shared/agreement/study/pairwise.ts";
+import { matchedRows, type QuantityRows, totalRows } from "#shared/agreement/study/quantities.ts";
+import {
+  itemsOfSpecimen,
+  nodeTolerance,
+  type SpecimenItems,
+  type Study,
+  type StudyFile,
+  type StudySpecimen,
+  studyOf,
+} from "#shared/agreement/study/study.ts";
+import type { LongValue } from "#shared/agreement/variance-components.ts";
+import type { CompareOptions, TimeLeft } from "#shared/compare/comparison.ts";
+
+export interface AgreeOptions {
+  /** How two passes are compared; `tolerance` is also the matching gate of strands (nodes: twice as much), millimetres. */
+  readonly compare: Omit<CompareOptions, "step">;
+  /** Annotator whose files are a computed method's; null = none. */
+  readonly method: string | null;
+  /** Margin of equivalence set beforehand, millimetres; null = none. */
+  readonly margin: number | null;
+  /** True when the annotators worked with the engine that the method uses. */
+  readonly sameEngine: boolean;
+  /** Candidates that every annotator was shown and declined. */
+  readonly declinedByAll: number;
+  /** Of everything that is drawn. */
+  readonly seed: number;
+}
+
+/** How far items agree at one tolerance. */
+export interface ToleranceResult {
+  readonly toleranceMm: number;
+  readonly nodeToleranceMm: number;
+  readonly strands: readonly ({ readonly specimen: string } & Selection)[];
+  readonly nodes: readonly ({ readonly specimen: string } & Selection)[];
+  readonly positiveAgreement: number | null;
+  readonly quantities: readonly { readonly quantity: string; readonly completeRows: number; readonly iccA1: number | null }[];
+  readonly reasons: Reasons;
+}
+
+/** Agreement between and within annotators over one or more specimens. Lengths in millimetres. */
+export interface Agreement {
+  readonly passes: readonly {
+    readonly file: string;
+    readonly specimen: string;
+    readonly annotator: string;
+    readonly pass: number;
+    readonly role: "first" | "repeat" | "method";
+    readonly created: string | null;
+  }[];
+  readonly annotators: readonly string[];
+  /** Per-specimen totals: first, since misses enter them. */
+  readonly totals: readonly {
+    readonly specimen: string;
+    readonly passes: readonly {
+      readonly annotator: string;
+      readonly pass: number;
+      readonly origins: number;
+      readonly insertions: number;
+      readonly length: number;
+    }[];
+  }[];
+  readonly items: {
+    readonly strands: readonly ({ readonly specimen: string } & Selection & ItemProof)[];
+    readonly nodes: readonly ({ readonly specimen: string } & Selection & ItemProof)[];
+    readonly atTolerances: readonly ToleranceResult[];
+  };
+  readonly pairwise: readonly PairSummary[];
+  readonly continuous: readonly ContinuousAgreement[];
+  readonly nodePlaces: readonly NodePlaces[];
+  readonly categorical: readonly CategoricalAgreement[];
+  readonly detection: FoundItems;
+  readonly intra: readonly IntraAgreement[];
+  readonly method: MethodAgreement | null;
+  readonly clusteredBy: "specimen";
+  readonly notes: readonly string[];
+  readonly reasons: Reasons;
+}
+
+interface ItemProof {
+  readonly exact: boolean;
+  readonly note: string;
+  readonly indirectPairs: number;
+}
+
+/**
+ * Everything that can be said of how far annotators agree with each other and with themselves; what cannot be said is null
+ * with a reason. The order of the files changes nothing.
+ * @throws TautlineError misuse or other-scan, see {@link studyOf}.
+ */
+export function agree(files: readonly StudyFile[], options: AgreeOptions, timeLeft: TimeLeft): Agreement {
+  const study = studyOf(files, options.compare.merge, options.method);
+  const pairwise = comparePassPairs(passPairs(study.specimens), options.compare, timeLeft);
+  return assembleAgreement(agreementFrame(study, options), pairwise);
+}
+
+/** An agreement from its frame and all pairs of passes in order. */
+export function assembleAgreement(frame: Omit<Agreement, "pairwise">, pairwise: readonly PairSummary[]): Agreement {
+  const open = pairwise.filter((pair) => !pair.exact).length;
+  const unproven = `${open} of ${pairwise.length} edit distances are not proven; both bounds are given.`;
+  return { ...frame, pairwise, notes: open > 0 ? [...frame.notes, unproven] : frame.notes };
+}
+
+/** Everything of an agreement but the pairs of passes, which can be compared elsewhere. */
+export function agreementFrame(study: Study, options: AgreeOptions): Omit<Agreement, "pairwise"> {
+  const { tolerance, merge } = options.compare;
+  const { annotators, specimens } = study;
+  const items = specimens.map((specimen) => itemsOfSpecimen(specimen, tolerance, merge));
+  const quantities = quantitiesOf(study, items);
+  const title = annotators.length === 2 ? "given that both marked it" : `given that all ${annotators.length} marked it`;
+  const reasons: Record<string, string> = {};
+  if (options.method === null) reasons.method = "No pass was named as a method's.";
+  const intra = intraAgreement(specimens, items);
+  if (intra.length === 0) reasons.intra = "No annotator did a specimen twice.";
+  return {
+    passes: passesOf(study),
+    annotators,
+    totals: totalsOf(specimens),
+    items: {
+      strands: specimens.map((specimen, s) => selectionRow(specimen, items[s]!.strands, tolerance)),
+      nodes: specimens.map((specimen, s) => selectionRow(specimen, items[s]!.nodes, nodeTolerance(tolerance))),
+      atTolerances: threeTolerances(tolerance).map((one) =>
+        atTolerance(
+          study,
+          one === tolerance ? items : specimens.map((specimen) => itemsOfSpecimen(specimen, one, merge)),
+          one,
+          options,
+        ),
+      ),
+    },
+    continuous: quantities.map((quantity) =>
+      continuousAgreement(
+        quantity,
+        annotators,
+        quantity.on === "specimen" ? "totals of each specimen, misses included" : title,
+        options.seed,
+      ),
+    ),
+    nodePlaces: nodePlaces(specimens, items),
+    categorical: categoricalAgreement(annotators, specimens, items, options.seed),
+    detection: foundItems(annotators, specimens, items, options.declinedByAll, options.seed),
+    intra,
+    method: options.method === null ? null : methodAgreement(options.method, specimens, options.margin, options.sameEngine),
+    clusteredBy: "specimen",
+    notes: notesOf(study),
+    reasons,
+  };
+}
+
+/** Which of a specimen's passes are compared: each annotator's first. */
+function comparedPasses(specimen: StudySpecimen): number[] {
+  return specimen.firstPass.filter((p) => p >= 0);
+}
+
+/** Quantities over all specimens, values spread to the study's annotators. */
+function quantitiesOf({ annotators, specimens }: Study, items: readonly SpecimenItems[]): StudyQuantity[] {
+  const first = specimens.map((specimen, s) => {
+    const compared = comparedPasses(specimen);
+    const spread = (values: readonly (number | null)[]) =>
+      annotators.map((_, j) => (specimen.firstPass[j]! < 0 ? null : values[compared.indexOf(specimen.firstPass[j]!)]!));
+    return rowsOf(specimen, items[s]!, compared).map((quantity) => ({
+      ...quantity,
+      rows: quantity.rows.map((row) => ({ ...row, values: spread(row.values) })),
+      coverage: quantity.coverage && spread(quantity.coverage),
+    }));
+  });
+  const every = specimens.map((specimen, s) =>
+    rowsOf(
+      specimen,
+      items[s]!,
+      specimen.passes.map((_, p) => p),
+    ),
+  );
+  return (first[0] ?? []).map(({ quantity, unit, on, coverage }, q) => ({
+    quantity,
+    unit,
+    on,
+    specimens: specimens.map(({ name }) => name),
+    rows: first.map((list) => list[q]!.rows),
+    coverage: coverage && first.map((list) => list[q]!.coverage!),
+    long: specimens.flatMap((specimen, s) => longValues(specimen, every[s]![q]!)),
+  }));
+}
+
+function rowsOf(specimen: StudySpecimen, items: SpecimenItems, compared: readonly number[]): QuantityRows[] {
+  return [...totalRows(specimen, compared), ...matchedRows(specimen, items, compared)];
+}
+
+function longValues(specimen: StudySpecimen, { rows }: QuantityRows): LongValue[] {
+  return rows.flatMap(({ item, values }) =>
+    values.flatMap((value, p) => {
+      const { annotator, pass } = specimen.passes[p]!;
+      return value === null ? [] : [{ specimen: specimen.name, item, annotator, pass, value }];
+    }),
+  );
+}
+
+function selectionRow(specimen: StudySpecimen, table: SpecimenItems["strands"], tolerance: number) {
+  const { exact, note, indirectPairs } = table;
+  return { specimen: specimen.name, ...selectionOf(table, comparedPasses(specimen), tolerance), exact, note, indirectPairs };
+}
+
+function atTolerance(study: Study, items: readonly SpecimenItems[], tolerance: number, options: AgreeOptions): ToleranceResult {
+  const { annotators, specimens } = study;
+  const { positive } = foundItems(annotators, specimens, items, 0, options.seed);
+  const quantities = quantitiesOf(study, items).map(({ quantity, rows }) => {
+    const complete = rows.flat().flatMap(({ values }) => (values.includes(null) ? [] : [values as readonly number[]]));
+    const squares = meanSquares(complete);
+    return { quantity, completeRows: complete.length, iccA1: squares && iccValue("ICC(A,1)", squares) };
+  });
+  const missing = quantities.filter((one) => one.iccA1 === null).map((one) => one.quantity);
+  const reasons: Record<string, string> = {};
+  if (positive.value === null) reasons.positiveAgreement = positive.reasons.value!;
+  if (missing.length > 0) reasons.iccA1 = `Too few complete rows, or no spread between them: ${missing.join(", ")}.`;
+  return {
+    toleranceMm: tolerance,
+    nodeToleranceMm: nodeTolerance(tolerance),
+    strands: specimens.map((specimen, s) => ({
+      specimen: specimen.name,
+      ...selectionOf(items[s]!.strands, comparedPasses(specimen), tolerance),
+    })),
+    nodes: specimens.map((specimen, s) => ({
+      specimen: specimen.name,
+      ...selectionOf(items[s]!.nodes, comparedPasses(specimen), nodeTolerance(tolerance)),
+    })),
+    positiveAgreement: positive.value,
+    quantities,
+    reasons,
+  };
+}
+
+function passesOf({ specimens }: Study): Agreement["passes"] {
+  return specimens.flatMap((specimen) => {
+    const facts = (
+      { name, annotator, pass, created }: (typeof specimen.passes)[number],
+      role: "first" | "repeat" | "method",
+    ) => ({
+      file: name,
+      specimen: specimen.name,
+      annotator,
+      pass,
+      role,
+      created,
+    });
+    const people = specimen.passes.map((pass, p) => facts(pass, specimen.firstPass.includes(p) ? "first" : "repeat"));
+    return specimen.method ? [...people, facts(specimen.method, "method")] : people;
+  });
+}
+
+function totalsOf(specimens: readonly StudySpecimen[]): Agreement["totals"] {
+  return specimens.map((specimen) => ({
+    specimen: specimen.name,
+    passes: specimen.passes.map(({ annotator, pass, measures }) => ({
+      annotator,
+      pass,
+      origins: measures.nodes.filter((node) => node.kind === "origin").length,
+      insertions: measures.nodes.filter((node) => node.kind === "insertion").length,
+      length: measures.totals.length,
+    })),
+  }));
+}
+
+function notesOf({ annotators, specimens, warnings }: Study): string[] {
+  const notes = [...warnings];
+  notes.push("Inference is to new specimens by these annotators; items of one specimen are not independent of each other.");
+  for (const specimen of specimens) {
+    const missing = annotators.filter((_, j) => specimen.firstPass[j]! < 0);
+    if (missing.length > 0) notes.push(`${specimen.name} was not done by ${missing.join(", ")}: its rows are incomplete.`);
+  }
+  return notes;
+}

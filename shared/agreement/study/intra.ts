@@ -1,0 +1,70 @@
+import type { Reasons } from "#shared/agreement/interval.ts";
+import { mean } from "#shared/agreement/mean-squares.ts";
+import { type PositiveAgreement, positiveAgreement } from "#shared/agreement/positive-agreement.ts";
+import { matchedRows, type QuantityRows, totalRows } from "#shared/agreement/study/quantities.ts";
+import type { SpecimenItems, StudyPass, StudySpecimen } from "#shared/agreement/study/study.ts";
+
+/** One annotator against the same annotator's later pass over the same specimen. */
+export interface IntraAgreement {
+  readonly annotator: string;
+  readonly specimen: string;
+  readonly passes: readonly [number, number];
+  /** Days between the two; null when a file does not say when it was made. */
+  readonly days: number | null;
+  readonly strands: PositiveAgreement;
+  /** Later minus earlier on what both passes have; a mean far from 0 is drift. */
+  readonly quantities: readonly {
+    readonly quantity: string;
+    readonly unit: string;
+    readonly items: number;
+    readonly meanDifference: number | null;
+    /** Standard error of one measurement: root of the mean squared difference over 2. */
+    readonly sem: number | null;
+    readonly reasons: Reasons;
+  }[];
+  readonly reasons: Reasons;
+}
+
+const DAY_MS = 86_400_000;
+
+/** Every annotator's neighbouring passes over each specimen; never pooled with differences between annotators. */
+export function intraAgreement(specimens: readonly StudySpecimen[], items: readonly SpecimenItems[]): IntraAgreement[] {
+  return specimens.flatMap((specimen, s) =>
+    specimen.passes.flatMap((later, p) => {
+      const earlier = specimen.passes[p - 1];
+      return earlier?.annotator === later.annotator ? [onePair(specimen, items[s]!, p - 1, p, earlier, later)] : [];
+    }),
+  );
+}
+
+function onePair(
+  specimen: StudySpecimen,
+  items: SpecimenItems,
+  i: number,
+  j: number,
+  earlier: StudyPass,
+  later: StudyPass,
+): IntraAgreement {
+  const marked = items.strands.items.map(({ members }) => [members[i]! >= 0, members[j]! >= 0] as const);
+  const count = (a: boolean, b: boolean) => marked.filter(([x, y]) => x === a && y === b).length;
+  const days = earlier.created && later.created ? (Date.parse(later.created) - Date.parse(earlier.created)) / DAY_MS : Number.NaN;
+  return {
+    annotator: later.annotator,
+    specimen: specimen.name,
+    passes: [earlier.pass, later.pass],
+    days: Number.isFinite(days) ? days : null,
+    strands: positiveAgreement(count(true, true), count(true, false), count(false, true)),
+    quantities: [...totalRows(specimen, [i, j]), ...matchedRows(specimen, items, [i, j])].map(differences),
+    reasons: Number.isFinite(days) ? {} : { days: "One of the two files does not say when it was made." },
+  };
+}
+
+function differences({ quantity, unit, rows }: QuantityRows): IntraAgreement["quantities"][number] {
+  const found = rows.flatMap(({ values: [a, b] }) => (a == null || b == null ? [] : [b - a]));
+  if (found.length === 0) {
+    const why = "Both passes have no item with this quantity in common.";
+    return { quantity, unit, items: 0, meanDifference: null, sem: null, reasons: { meanDifference: why, sem: why } };
+  }
+  const squares = mean(found.map((d) => d * d));
+  return { quantity, unit, items: found.length, meanDifference: mean(found), sem: Math.sqrt(squares / 2), reasons: {} };
+}

@@ -1,0 +1,144 @@
+import {
+  type AgreementPass,
+  type CanonicalPass,
+  canonicalPass,
+  type ItemTable,
+  nodeItems,
+  strandItems,
+} from "#shared/agreement/items.ts";
+import { TautlineError } from "#shared/errors.ts";
+import { type ChordaeFile, frameOf } from "#shared/formats/chordae/chordae-file.ts";
+import { type Measures, measureTrees } from "#shared/measure/measure-trees.ts";
+
+/** A tree file with the name it goes by in messages. */
+export interface StudyFile {
+  readonly name: string;
+  readonly file: ChordaeFile;
+}
+
+/** A pass with everything that is measured on it. */
+export interface StudyPass extends AgreementPass {
+  readonly name: string;
+  readonly specimen: string;
+  /** ISO 8601; null when the file does not say. */
+  readonly created: string | null;
+  readonly file: ChordaeFile;
+  readonly canonical: CanonicalPass;
+  readonly measures: Measures;
+}
+
+/** One specimen with all passes over it. */
+export interface StudySpecimen {
+  readonly name: string;
+  /** By annotator, then pass. */
+  readonly passes: readonly StudyPass[];
+  /** For each of the study's annotators: index of the first pass over this specimen; -1 = none. */
+  readonly firstPass: readonly number[];
+  /** The tested method's trees, which take no part in the items; null when there are none. */
+  readonly method: StudyPass | null;
+}
+
+/** Passes of several annotators over several specimens. */
+export interface Study {
+  readonly annotators: readonly string[];
+  readonly specimens: readonly StudySpecimen[];
+  readonly warnings: readonly string[];
+}
+
+/** Items of one specimen at one tolerance. */
+export interface SpecimenItems {
+  readonly strands: ItemTable;
+  readonly nodes: ItemTable;
+}
+
+/**
+ * Tree files sorted into a study. Files belong to one specimen when they name the same scan or carry the same voxel hash.
+ * @param merge forks joined by shorter strands are one, millimetres.
+ * @param method annotator whose trees are a method's, not a person's; null = none.
+ * @throws TautlineError misuse when two files claim to be the same pass; other-scan when a specimen's files differ in frame.
+ */
+export function studyOf(files: readonly StudyFile[], merge: number, method: string | null): Study {
+  const warnings: string[] = [];
+  const specimenOf = specimenNames(files, warnings);
+  const passes = files.map(({ name, file }): StudyPass => {
+    if (file.annotator === undefined) warnings.push(`${name} names no annotator: its file name stands for one.`);
+    return {
+      name,
+      specimen: specimenOf.get(name)!,
+      annotator: file.annotator ?? name,
+      pass: file.pass ?? 1,
+      created: file.created ?? null,
+      file,
+      set: file,
+      canonical: canonicalPass(file, merge),
+      measures: measureTrees(file),
+    };
+  });
+  passes.sort((a, b) => inOrder(a.specimen, b.specimen) || inOrder(a.annotator, b.annotator) || a.pass - b.pass);
+  passes.forEach((pass, i) => {
+    const before = passes[i - 1];
+    if (before?.specimen === pass.specimen && before.annotator === pass.annotator && before.pass === pass.pass) {
+      const what = `${before.name} and ${pass.name} both claim to be pass ${pass.pass} of ${pass.annotator} on ${pass.specimen}`;
+      throw new TautlineError("misuse", `${what}. Leave one of them out, or give it its own pass number.`, { what });
+    }
+  });
+  const annotators = [...new Set(passes.map((pass) => pass.annotator))].filter((one) => one !== method).sort(inOrder);
+  const names = [...new Set(passes.map((pass) => pass.specimen))];
+  const specimens = names.map((name): StudySpecimen => {
+    const all = passes.filter((pass) => pass.specimen === name);
+    refuseOtherFrames(all);
+    const own = all.filter((pass) => pass.annotator !== method);
+    const firstPass = annotators.map((annotator) => own.findIndex((pass) => pass.annotator === annotator));
+    return { name, passes: own, firstPass, method: all.find((pass) => pass.annotator === method) ?? null };
+  });
+  return { annotators, specimens, warnings };
+}
+
+/** Items of all passes over a specimen. @param tolerance of strands, millimetres; nodes have twice as much. */
+export function itemsOfSpecimen(specimen: StudySpecimen, tolerance: number, merge: number): SpecimenItems {
+  return {
+    strands: strandItems(specimen.passes, tolerance, merge),
+    nodes: nodeItems(specimen.passes, nodeTolerance(tolerance), merge),
+  };
+}
+
+/** Tolerance of nodes for one of strands: people place a node along its string less surely than the string across. */
+export function nodeTolerance(tolerance: number): number {
+  return 2 * tolerance;
+}
+
+function inOrder(a: string, b: string): number {
+  return a < b ? -1 : a > b ? 1 : 0;
+}
+
+function specimenNames(files: readonly StudyFile[], warnings: string[]): Map<string, string> {
+  const nameOfHash = new Map<string, string>();
+  for (const { file } of [...files].sort((a, b) => inOrder(a.file.volume?.name ?? "", b.file.volume?.name ?? ""))) {
+    const { name, sha256 } = file.volume ?? {};
+    if (sha256 && !nameOfHash.has(sha256)) nameOfHash.set(sha256, name ?? `scan ${sha256.slice(0, 12)}`);
+    else if (sha256 && name && nameOfHash.get(sha256)!.startsWith("scan ")) nameOfHash.set(sha256, name);
+  }
+  const hashesOf = new Map<string, Set<string>>();
+  const out = new Map<string, string>();
+  for (const { name, file } of files) {
+    const { name: scan, sha256 } = file.volume ?? {};
+    const specimen = (sha256 ? nameOfHash.get(sha256) : undefined) ?? scan ?? "unnamed specimen";
+    out.set(name, specimen);
+    if (!hashesOf.has(specimen)) hashesOf.set(specimen, new Set());
+    if (sha256) hashesOf.get(specimen)!.add(sha256);
+    else warnings.push(`${name} does not say which voxels it was drawn on; it is taken as ${specimen}.`);
+  }
+  for (const [specimen, hashes] of hashesOf)
+    if (hashes.size > 1)
+      warnings.push(`Passes over ${specimen} were drawn on ${hashes.size} different scans (voxel hashes differ).`);
+  return out;
+}
+
+function refuseOtherFrames(passes: readonly StudyPass[]): void {
+  for (const pass of passes.slice(1)) {
+    const [expected, found] = [frameOf(passes[0]!.file), frameOf(pass.file)];
+    if (expected === found) continue;
+    const sentence = `${pass.name}: expected places in the frame ${expected} like ${passes[0]!.name}, found ${found}. Trees in different frames cannot be compared.`;
+    throw new TautlineError("other-scan", sentence, { file: pass.name, expected, found });
+  }
+}
