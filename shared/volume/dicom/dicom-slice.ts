@@ -66,7 +66,9 @@ export function dicomSlice(elements: DicomElements, fileBytes: number, file: str
     if (found === null || found === "") return null;
     const list = found
       .split("\\")
-      .map((word) => (/^\s*[+-]?(\d+\.?\d*|\.\d+)([eE][+-]?\d+)?\s*$/.test(word) ? Number(word) : Number.NaN));
+      .map((word) =>
+        word.length <= 64 && /^\s*[+-]?(\d+\.?\d*|\.\d+)([eE][+-]?\d+)?\s*$/.test(word) ? Number(word) : Number.NaN,
+      );
     if (list.length !== count || !list.every(Number.isFinite)) throw unreadable(file, `${count} numbers`, quote(found), title);
     return list;
   };

@@ -121,7 +121,7 @@ function dataOf(split: MetaImageFields, littleEndian: boolean, nz: number, axes:
 function dataFiles(split: MetaImageFields, nz: number, axes: number, file: string): readonly string[] | null {
   const where = "ElementDataFile";
   const text = split.fields.get("elementdatafile")!;
-  if (text === "") throw unreadable(file, "a name or LOCAL", "nothing", where);
+  if (text === "" || text.length > 4096) throw unreadable(file, "a name of 1 to 4096 characters, or LOCAL", quote(text), where);
   if (/^local$/i.test(text)) return null;
   let names = [text];
   const list = /^LIST(?:\s+(\d+)D?)?$/i.exec(text);

@@ -85,6 +85,7 @@ function compareLetters(letters: string, direction: Matrix3): "agrees" | "differ
 }
 
 function numberOf(word: string, file: string, where: string): number {
+  if (word.length > 64) throw unreadable(file, "numbers", quote(word), where);
   const value = /^[+-]?(\d+\.?\d*|\.\d+)([eE][+-]?\d{1,4})?$|^[+-]?(nan|inf(inity)?)$/i.test(word) ? Number(word) : null;
   if (value === null) throw unreadable(file, "numbers", quote(word), where);
   return value;

@@ -101,7 +101,8 @@ function dataOf(split: NrrdFields, dtype: SourceDtype, nz: number, dimension: nu
 function dataFiles(split: NrrdFields, nz: number, dimension: number, file: string): readonly string[] | null {
   const text = split.fields.get("datafile");
   if (text === undefined) return null;
-  if (text === "") throw unreadable(file, "a name after 'data file:'", "nothing", "data file");
+  if (text === "" || text.length > 4096)
+    throw unreadable(file, "a name of 1 to 4096 characters after 'data file:'", quote(text), "data file");
   let names: string[] = [text];
   const list = /^LIST(?:\s+(\d+))?$/.exec(text);
   const pattern = /^(\S*%0?(\d{0,2})d\S*)\s+(-?\d+)\s+(-?\d+)\s+(-?\d+)(?:\s+(\d+))?$/.exec(text);

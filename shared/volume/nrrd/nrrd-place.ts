@@ -161,7 +161,8 @@ function numberOf(word: string, file: string, where: string): number {
   const plain = word.trim().toLowerCase();
   if (/^[+-]?nan$/.test(plain)) return Number.NaN;
   if (/^[+-]?inf(inity)?$/.test(plain)) return plain.startsWith("-") ? Number.NEGATIVE_INFINITY : Number.POSITIVE_INFINITY;
-  if (!/^[+-]?(\d+\.?\d*|\.\d+)(e[+-]?\d+)?$/.test(plain)) throw unreadable(file, "a number", quote(word), where);
+  if (plain.length > 64 || !/^[+-]?(\d+\.?\d*|\.\d+)(e[+-]?\d+)?$/.test(plain))
+    throw unreadable(file, "a number", quote(word), where);
   return Number(plain);
 }
 

@@ -291,6 +291,15 @@ describe("an NRRD file", () => {
     expect(refused).toBeGreaterThan(100);
   });
 
+  it("with a number or a name of a hundred thousand characters is refused at once", async () => {
+    // In quadratic time this would take minutes, and the test would run out of its time.
+    const numbers = ["space: LPS", `space origin: (0,0,${"1".repeat(100_000)}x)`, "space directions: (1,0,0) (0,1,0) (0,0,1)"];
+    for (const lines of [numbers, [...SETTLED, `data file: ${"%d".repeat(100_000)}`]])
+      await expect(openScan(await writeNrrd(await scratchFolder(), "long.nrrd", order(lines)))).rejects.toMatchObject({
+        tag: "unreadable-input",
+      });
+  });
+
   it("mutated or truncated anywhere in its header gives a typed error or a scan, never anything else", async () => {
     const folder = await scratchFolder();
     const whole = nrrdBytes(order([...SETTLED, "kinds: domain domain domain", "byte skip: 0"]));
