@@ -7,6 +7,7 @@ import { type Place, placeOf } from "#renderer/app/place.ts";
 import type { Services } from "#renderer/app/services.ts";
 import { Desk } from "#renderer/desk/desk.tsx";
 import { Shelf } from "#renderer/shelf/shelf.tsx";
+import { SideBySide } from "#renderer/study/side-by-side/side-by-side.tsx";
 
 export interface AppProps {
   readonly services: Services;
@@ -28,13 +29,24 @@ export function App({ services, scanQuestion }: AppProps) {
   return (
     <>
       <ConnectionBanner client={services.client} />
-      {shown.screen === "desk" ? (
-        <Desk key={`${shown.specimen}/${shown.pass}`} services={services} specimen={shown.specimen} pass={shown.pass} />
-      ) : (
-        <Shelf services={services} />
-      )}
+      <Screen services={services} shown={shown} />
       {scanQuestion.value === null ? null : <FolderDialog list={services.client.listFolder} done={scanQuestion.value} />}
       <NoticeList notices={services.notices} />
     </>
   );
+}
+
+function Screen({ services, shown }: { readonly services: Services; readonly shown: Place }) {
+  switch (shown.screen) {
+    case "desk": {
+      const { specimen, pass } = shown;
+      return <Desk key={`${specimen}/${pass}`} services={services} specimen={specimen} pass={pass} />;
+    }
+    case "side-by-side": {
+      const { specimen, a, b } = shown;
+      return <SideBySide key={`${specimen}/${a}/${b}`} services={services} specimen={specimen} a={a} b={b} />;
+    }
+    case "shelf":
+      return <Shelf services={services} />;
+  }
 }

@@ -1,7 +1,9 @@
 import { clipToSlab } from "#renderer/section/clip-to-slab.ts";
+import { plateOf } from "#renderer/section/draw-places.ts";
 import { planeCrossings, type TubeOutline } from "#renderer/section/plane-crossings.ts";
 import { FADE_MM, type ProjectedScene, type ProjectedStrand } from "#renderer/section/project-scene.ts";
 import type { SectionInk } from "#renderer/section/section-ink.ts";
+import { strandInk } from "#renderer/section/strand-ink.ts";
 import type { TextOnPicture } from "#renderer/section/text-on-picture.ts";
 import type { PaneSize } from "#renderer/section/view-plane.ts";
 
@@ -24,7 +26,7 @@ export function drawLabels(
     const rank = off - (strand.selected ? 1e6 : 0);
     const before = places.get(strand.drawn.name);
     if (before !== undefined && before.rank <= rank) continue;
-    places.set(strand.drawn.name, { name: strand.drawn.name, ...place, colour: ink.trees[strand.drawn.mark.colour]!, rank });
+    places.set(strand.drawn.name, { name: strand.drawn.name, ...place, colour: strandInk(strand.drawn, ink), rank });
   }
   for (const { name, x, y, gap, colour } of [...places.values()].sort((a, b) => a.rank - b.rank)) {
     text.beside(name, x, y, gap, colour);
@@ -39,6 +41,10 @@ function keepFree(text: TextOnPicture, scene: ProjectedScene, size: PaneSize, mm
     for (const crossing of planeCrossings(seen, drawn.radii, mmPerPx)) {
       if (shown(crossing, size)) box(crossing.x, crossing.y, crossing.shortPx * 0.75);
     }
+  }
+  for (const { seen } of scene.places) {
+    const plate = plateOf(seen);
+    box(plate.x, plate.y, plate.radius);
   }
   for (const { seen } of scene.nodes) if (Math.abs(seen.depthMm) <= halfSlabMm) box(seen.x, seen.y, 6);
 }

@@ -6,10 +6,17 @@ import type { NodeGlyph } from "#shared/marks/node-glyph.ts";
 /** Half the side of a glyph on screen, CSS pixels. */
 const GLYPH_PX = 9;
 const PLATE_PX = 13;
+/** The plate stands this far to the right of the place and above it, CSS pixels: what is imaged there stays in sight. */
+const ASIDE_PX = 22;
 
 const paths = new WeakMap<NodeGlyph, { fill: Path2D; stroke: Path2D }>();
 
-/** Marked places as glyphs on a dark plate, the one looked at with a ring. */
+/** Where the plate of a place stands. */
+export function plateOf(seen: { readonly x: number; readonly y: number }): { x: number; y: number; radius: number } {
+  return { x: seen.x + ASIDE_PX, y: seen.y - ASIDE_PX, radius: PLATE_PX };
+}
+
+/** Marked places as glyphs on a dark plate with a short leader to the place, the one looked at with a ring. */
 export function drawPlaces(to: CanvasRenderingContext2D, scene: ProjectedScene, halfSlabMm: number, ink: SectionInk): void {
   const ordered = [...scene.places].sort((a, b) => Number(a.place.picked) - Number(b.place.picked));
   for (const { place, seen } of ordered) {
@@ -21,8 +28,7 @@ export function drawPlaces(to: CanvasRenderingContext2D, scene: ProjectedScene, 
     const colour = place.colour === null ? ink.ink : ink.trees[place.colour]!;
     to.save();
     to.globalAlpha = place.picked ? 1 : depthOpacity(seen.depthMm, halfSlabMm, FADE_MM);
-    // Beside the place, so that what is drawn and imaged there stays in sight; a short leader says where it belongs.
-    const [x, y] = [seen.x + 22, seen.y - 22];
+    const { x, y } = plateOf(seen);
     to.lineCap = "round";
     to.lineJoin = "round";
     to.beginPath();

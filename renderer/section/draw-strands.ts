@@ -2,6 +2,7 @@ import { bandOpacity, clipToSlab } from "#renderer/section/clip-to-slab.ts";
 import { planeCrossings } from "#renderer/section/plane-crossings.ts";
 import { FADE_MM, type ProjectedScene, type ProjectedStrand } from "#renderer/section/project-scene.ts";
 import type { SectionInk } from "#renderer/section/section-ink.ts";
+import { strandInk } from "#renderer/section/strand-ink.ts";
 import { TREE_DASHES } from "#shared/marks/tree-mark.ts";
 
 const WIDTH_PX = 2;
@@ -41,11 +42,6 @@ function drawStrand(to: CanvasRenderingContext2D, strand: ProjectedStrand, halfS
   }
   to.globalAlpha = 1;
   to.setLineDash([]);
-}
-
-/** A quiet strand has no colour of its own. */
-function strandInk(drawn: ProjectedStrand["drawn"], ink: SectionInk): string {
-  return drawn.manner === "quiet" ? ink.ink : ink.trees[drawn.mark.colour]!;
 }
 
 /** Outlines of the tubes where they go through the plane. */

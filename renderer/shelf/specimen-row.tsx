@@ -5,6 +5,7 @@ import { NewPass } from "#renderer/shelf/new-pass.tsx";
 import { RemoveSheet } from "#renderer/shelf/remove-sheet.tsx";
 import { SpecimenPicture } from "#renderer/shelf/specimen-picture.tsx";
 import { dateWords, factsWords, passWords, sidesWords, spacingWords, voxelsWords } from "#renderer/shelf/words.ts";
+import { SidesSheet } from "#renderer/study/side-by-side/sides-sheet.tsx";
 import type { PassSummary, ShelfSpecimen } from "#shared/api/specimen.ts";
 
 export interface SpecimenRowProps {
@@ -17,7 +18,7 @@ export interface SpecimenRowProps {
 
 /** One specimen: its picture, what is known of it, its passes. */
 export function SpecimenRow({ shown, services, fresh, reload }: SpecimenRowProps) {
-  const [asking, setAsking] = useState<"pass" | "remove" | "handedness" | null>(null);
+  const [asking, setAsking] = useState<"pass" | "remove" | "handedness" | "sides" | null>(null);
   const row = useRef<HTMLLIElement>(null);
   const newPass = useRef<HTMLButtonElement>(null);
   useEffect(() => {
@@ -105,9 +106,16 @@ export function SpecimenRow({ shown, services, fresh, reload }: SpecimenRowProps
             create={async (annotator) => open(await services.client.createPass(specimen.id, annotator))}
           />
         ) : (
-          <button type="button" class="button" ref={newPass} onClick={() => setAsking("pass")}>
-            New pass<span class="unseen"> on {specimen.name}</span>
-          </button>
+          <div class="shelf-next">
+            <button type="button" class="button" ref={newPass} onClick={() => setAsking("pass")}>
+              New pass<span class="unseen"> on {specimen.name}</span>
+            </button>
+            {passes.length === 0 ? null : (
+              <button type="button" class="button" onClick={() => setAsking("sides")}>
+                Side by side …<span class="unseen"> two passes of {specimen.name}</span>
+              </button>
+            )}
+          </div>
         )}
       </div>
       {asking === "handedness" ? (
@@ -120,6 +128,15 @@ export function SpecimenRow({ shown, services, fresh, reload }: SpecimenRowProps
             await reload();
             close();
           }}
+        />
+      ) : null}
+      {asking === "sides" ? (
+        <SidesSheet
+          specimen={specimen}
+          passes={passes}
+          now={null}
+          close={close}
+          show={(a, b) => services.goTo({ screen: "side-by-side", specimen: specimen.id, a, b })}
         />
       ) : null}
       {asking === "remove" ? (

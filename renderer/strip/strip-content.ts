@@ -5,6 +5,8 @@ import type { BinaryFrame } from "#shared/api/frame.ts";
 export interface StripContent {
   /** Name over the strip, for example "ALPM-03 s12"; null = no strand is selected. */
   readonly title: string | null;
+  /** What stands there while no strand is shown. */
+  readonly hint: string;
   readonly image: BinaryFrame<StripHeader> | null;
   readonly film: BinaryFrame<FilmHeader> | null;
   /** Length of the strand, millimetres. */

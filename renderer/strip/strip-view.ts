@@ -6,6 +6,7 @@ import { coloursFrom } from "#shared/marks/colours.ts";
 
 export const EMPTY_STRIP: StripContent = {
   title: null,
+  hint: "Select a strand to see it laid straight, leaflet at the top.",
   image: null,
   film: null,
   lengthMm: 0,
@@ -181,7 +182,7 @@ export class StripView {
       content.state.kind === "error"
         ? content.state.message
         : empty
-          ? "Select a strand to see it laid straight, leaflet at the top."
+          ? content.hint
           : content.state.kind === "loading"
             ? "Laying the strand straight …"
             : "";

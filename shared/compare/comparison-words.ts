@@ -19,7 +19,8 @@ export const DIFFERENCE_WORDS: Readonly<Record<DifferenceKind, string>> = {
 };
 
 /** One difference as a sentence, lengths in millimetres. */
-export function differenceSentence({ kind, length, treeA, treeB, a, b }: Difference, setA: PlainSet, setB: PlainSet): string {
+export function differenceSentence(difference: Difference, setA: PlainSet, setB: PlainSet): string {
+  const { kind, length, treeA, treeB, followedBy, a, b } = difference;
   const mm = `${length.toFixed(2)} mm`;
   switch (kind) {
     case "missed-branch":
@@ -35,9 +36,10 @@ export function differenceSentence({ kind, length, treeA, treeB, a, b }: Differe
     case "joined-differently":
       if (a === null) return "B has a fork here that A has not.";
       if (b === null) return "A has a fork here that B has not.";
+      if (followedBy !== null) return `This string of ${mm} belongs to ${treeTitle(setB, followedBy)} in B.`;
       return length > 0 ? `This string of ${mm} hangs elsewhere in B.` : "This string hangs elsewhere in B.";
     case "exchanged-tails":
-      return `From here on two strings have changed places in B (${mm} of string).`;
+      return `From here on two strings have changed places in B${followedBy === null ? "" : `, this one with ${treeTitle(setB, followedBy)}`} (${mm} of string).`;
     case "renamed":
       return `${treeTitle(setA, treeA)} in A is ${treeTitle(setB, treeB)} in B.`;
     case "tree-only-a":

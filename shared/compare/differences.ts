@@ -15,6 +15,8 @@ export interface Difference {
   /** Trees that are held against each other here; null = none on that side. */
   readonly treeA: string | null;
   readonly treeB: string | null;
+  /** The tree of B that goes on with A's string where that is not the matching one; null = none. */
+  readonly followedBy: string | null;
   /** Ids as in the event: of strands, nodes, trees or cross-links. */
   readonly a: string | null;
   readonly b: string | null;
@@ -40,6 +42,7 @@ export function differenceGroups(comparison: Comparison, a: PlainSet, b: PlainSe
       kind: event.event,
       treeA: pair.a,
       treeB: pair.b,
+      followedBy: otherTree(b, event.b, pair.b),
       a: event.a,
       b: event.b,
       at: event.at,
@@ -60,12 +63,18 @@ export function differenceGroups(comparison: Comparison, a: PlainSet, b: PlainSe
   return groups.filter((group) => group.differences.length > 0);
 }
 
+function otherTree(set: PlainSet, strand: string | null, matching: string): string | null {
+  if (strand === null) return null;
+  const owner = set.trees.find((tree) => tree.strands.some((one) => one.id === strand));
+  return owner === undefined || owner.id === matching ? null : owner.id;
+}
+
 function wholeTree(set: PlainSet, id: string, kind: "tree-only-a" | "tree-only-b"): Difference[] {
   const tree = set.trees.find((one) => one.id === id);
   if (!tree) return [];
   const first = tree.nodes.find((node) => node.id === tree.root) ?? tree.nodes[0];
   const isA = kind === "tree-only-a";
-  const side = { treeA: isA ? id : null, treeB: isA ? null : id, a: isA ? id : null, b: isA ? null : id };
+  const side = { treeA: isA ? id : null, treeB: isA ? null : id, followedBy: null, a: isA ? id : null, b: isA ? null : id };
   return [{ key: `${kind} ${id}`, kind, ...side, at: first ? placeOf(first) : [0, 0, 0], length: lengthOfTree(tree) }];
 }
 
@@ -81,6 +90,6 @@ function crossLink(set: PlainSet, id: string, kind: "link-only-a" | "link-only-b
   const line = centreline(link, nodes.get(link.from), nodes.get(link.to));
   const length = polylineLength(line);
   const isA = kind === "link-only-a";
-  const side = { treeA: null, treeB: null, a: isA ? id : null, b: isA ? null : id };
+  const side = { treeA: null, treeB: null, followedBy: null, a: isA ? id : null, b: isA ? null : id };
   return [{ key: `${kind} ${id}`, kind, ...side, at: line.length === 0 ? [0, 0, 0] : pointAt(line, length / 2), length }];
 }

@@ -15,6 +15,8 @@ export interface SectionSource {
 export interface StripSource extends SectionSource {
   /** The strand that is laid straight; null = none. */
   readonly lineFacts: ReadonlySignal<LineFacts | null>;
+  /** What the strip says while it shows none; left out = the strip's own words. */
+  readonly stripHint?: string;
   /** The line that the across plane follows. */
   followed(): FollowedLine | null;
 }

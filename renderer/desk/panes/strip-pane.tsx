@@ -72,7 +72,7 @@ function mountStrip(host: HTMLElement, model: StripSource): () => void {
       section.high.value;
       if (facts === null) {
         asked = "";
-        view.show({ ...EMPTY_STRIP, turn });
+        view.show({ ...EMPTY_STRIP, hint: model.stripHint ?? EMPTY_STRIP.hint, turn });
         return;
       }
       const { points: _, curve: __, ...shown } = facts;

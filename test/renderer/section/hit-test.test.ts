@@ -27,7 +27,15 @@ const document: TreeDocument = {
 };
 
 function hitAt(x: number, y: number, change: Partial<SectionContent> = {}, ruler: { from: number; to: number } | null = null) {
-  const content = { document, selection: {}, slabMm: 0.4, underWay: null, ...change } as SectionContent;
+  const content = {
+    document,
+    strands: null,
+    places: [],
+    selection: {},
+    slabMm: 0.4,
+    underWay: null,
+    ...change,
+  } as SectionContent;
   const scene = projectScene(content, plane, size);
   const end = (px: number) => ({ x: px, y: 300, depthMm: 0 });
   return hitTest(scene, { ruler: ruler === null ? null : { from: end(ruler.from), to: end(ruler.to) } }, x, y, 0.2);
