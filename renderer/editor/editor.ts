@@ -72,6 +72,8 @@ export class Editor {
   private readonly stage: Stage;
   private readonly disposers: (() => void)[] = [];
   private pointing: Pointing | null = null;
+  /** The document in which the pointer's surroundings were seen. */
+  private pointedDocument: TreeDocument | null = null;
   /** Which candidate in depth, and where the pointer was when it was chosen. */
   private candidate: { readonly index: number; readonly at: Pointing } | null = null;
 
@@ -152,6 +154,7 @@ export class Editor {
   /** The pointer or keyboard cursor is here; null = it left the section. */
   async point(pointing: Pointing | null): Promise<void> {
     this.pointing = pointing;
+    this.pointedDocument = this.documentSignal.value;
     if (pointing === null) {
       this.snapper.leave();
       await this.guideFollower.point(null);
@@ -194,11 +197,13 @@ export class Editor {
   leavePlace(): LeavePlace | null {
     const { pointing } = this;
     if (pointing !== null) {
-      const here = pointing.under === null ? null : anchorOf(pointing.under, pointing);
-      if (here !== null) return here;
       const { at, normal, mmPerPx, slabMm } = pointing;
       const sight = { at, normal, mmPerPx, slabMm };
       if (this.queue.waiting.value.length > 0) return { passing: sight };
+      // What was seen under the pointer holds for the document it was seen in: a strand's id may stand for half of it since.
+      const isCurrent = this.pointedDocument === this.documentSignal.value;
+      const here = pointing.under === null || !isCurrent ? null : anchorOf(pointing.under, pointing);
+      if (here !== null) return here;
       const near = passing(this.documentSignal.value, sight);
       if (near !== null) return near;
     }

@@ -25,17 +25,22 @@ async function tabTo(page: Page, name: RegExp, most = 60): Promise<void> {
   throw new Error(`no control named ${name} is reached by Tab`);
 }
 
+/** The position under the cursor, once the readout has come to rest: a busy machine shows it late. */
 async function readPlace(page: Page): Promise<Flat> {
-  await page.waitForTimeout(60);
-  const text = (await page.locator(".readout").textContent()) ?? "";
-  const found = /x (-?[\d.]+)\s+y (-?[\d.]+)/.exec(text);
-  if (found === null) throw new Error(`the readout gives no position: ${text}`);
-  return [Number(found[1]), Number(found[2])];
+  let before = "";
+  for (let i = 0; i < 50; i++) {
+    await page.waitForTimeout(90);
+    const text = (await page.locator(".readout").textContent()) ?? "";
+    const found = /x (-?[\d.]+)\s+y (-?[\d.]+)/.exec(text);
+    if (found !== null && found[0] === before) return [Number(found[1]), Number(found[2])];
+    before = found?.[0] ?? "";
+  }
+  throw new Error("the readout gives no steady position");
 }
 
 /** Moves the keyboard cursor to a place by arrow keys alone, reading where it is from the readout. */
 async function cursorTo(page: Page, target: Flat, mmPerPx: number): Promise<void> {
-  for (let round = 0; round < 6; round++) {
+  for (let round = 0; round < 8; round++) {
     const now = await readPlace(page);
     const px = [0, 1].map((axis) => Math.round((target[axis]! - now[axis]!) / mmPerPx));
     if (Math.abs(px[0]!) <= 2 && Math.abs(px[1]!) <= 2) return;
@@ -51,6 +56,7 @@ async function cursorTo(page: Page, target: Flat, mmPerPx: number): Promise<void
       }
     }
   }
+  throw new Error(`the cursor does not reach ${target}`);
 }
 
 /** Millimetres a pixel, from the readout before and after a step of the cursor of known length. */

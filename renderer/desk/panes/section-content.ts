@@ -71,7 +71,12 @@ export function mountSection(host: HTMLElement, model: DeskModel): () => void {
   section.attach(view);
 
   const stops = [
-    effect(() => view.show({ document: editor.document.value })),
+    effect(() => {
+      view.show({ document: editor.document.value });
+      const pointing = section.pointing.peek();
+      // What lay under the pointer may be another thing now; the next movement sees it, the keyboard cursor looks again.
+      if (pointing !== null) section.pointing.value = { ...pointing, under: underOf(view.cursorPlace()?.hit ?? null) };
+    }),
     effect(() => view.show({ selection: editor.selection.value })),
     effect(() => view.show({ outlines: section.outlines.value, ruler: section.ruler.value })),
     effect(() => view.show({ frame: model.specimen.value.volume.frame })),

@@ -238,6 +238,29 @@ describe("waiting edits", () => {
     expect(editor.document.value.trees.size).toBe(1);
   });
 
+  it("branch from the right half of a strand that was divided since the pointer saw it", async () => {
+    const { editor, server } = newEditor();
+    await drawStrand(editor);
+    server.held = true;
+    await pointAtStrand(editor, 0, 1);
+    editor.do({ do: "branch", from: editor.leavePlace()! });
+    editor.click(at(1, 3));
+    await editor.point(at(1, 3));
+    editor.end("insertion");
+    // Still seen as one strand.
+    await pointAtStrand(editor, 0, 3);
+    editor.do({ do: "branch", from: editor.leavePlace()! });
+    editor.click(at(3, 3));
+    server.release();
+    await editor.settled();
+    expect(server.failures).toEqual([]);
+    expect(
+      ofKind(editor, "fork")
+        .map((node) => node.position[0])
+        .sort(),
+    ).toEqual([1, 3]);
+  });
+
   it("wait for a server that is away, and are made when it is back", async () => {
     const { editor, server } = newEditor();
     server.away = true;
