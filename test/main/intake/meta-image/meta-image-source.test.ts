@@ -1,4 +1,4 @@
-import { mkdir, writeFile } from "node:fs/promises";
+import { mkdir, open, writeFile } from "node:fs/promises";
 import { join } from "node:path";
 import { deflateSync } from "node:zlib";
 import { describe, expect, it } from "vitest";
@@ -172,6 +172,16 @@ describe("a MetaImage", () => {
     const short = [...head(), "ElementDataFile = LIST", "s9.raw", "s10.raw", "all.zraw", "s12.raw"];
     await writeFile(join(folder, "short.mhd"), `${short.join("\n").replace("MET_USHORT", "MET_DOUBLE")}\n`);
     await expect(openScan(join(folder, "short.mhd"))).rejects.toThrow(/s9\.raw.*expected 48 bytes.*found 12 bytes/);
+  });
+
+  it("whose voxels begin beyond 4 GiB is read there (a sparse file)", async () => {
+    const folder = await scratchFolder();
+    const at = 2 ** 32 + 5;
+    const file = await open(join(folder, "far.raw"), "w");
+    await file.write(DATA, 0, DATA.length, at);
+    await file.close();
+    await writeFile(join(folder, "far.mhd"), `${[...head(), `HeaderSize = ${at}`, "ElementDataFile = far.raw"].join("\n")}\n`);
+    expect(await voxelsOf(join(folder, "far.mhd"))).toEqual(VALUES);
   });
 
   it.each([
