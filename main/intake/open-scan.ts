@@ -21,6 +21,8 @@ import { isTiff } from "#shared/volume/tiff/tiff-entries.ts";
 export const READABLE =
   "an NRRD file (.nrrd, .nhdr), a MetaImage (.mha, .mhd), a NIfTI-1 scan (.nii, .nii.gz, .hdr), a multi-page TIFF file, a DICOM series, a folder of TIFF, PNG or BMP slices, an OME-Zarr folder, or raw voxels with a sidecar or flags";
 
+const NO_HEADER = "Voxels without a header need a sidecar that says how they lie; 'tautline help info' shows one.";
+
 /**
  * A slice source over a scan's file or folder; the first bytes decide what it is, never its name. A specimen's folder of a
  * library stands for its stored scan. The caller closes it.
@@ -52,7 +54,7 @@ export async function openScan(path: string, choice: ScanChoice = {}): Promise<S
   const described = /^\s*\{/.test(latin1(head)) ? await openSidecar(path) : null;
   if (described) return described;
   const known = familyByMagic(head);
-  const next = /^a (PNG|BMP)/.test(known ?? "") ? "Choose the folder that holds the slices." : undefined;
+  const next = known === null ? NO_HEADER : /^a (PNG|BMP)/.test(known) ? "Choose the folder that holds the slices." : undefined;
   throw unreadable(name, READABLE, known ?? `a file that begins with ${quote(latin1(head.subarray(0, 16)))}`, undefined, next);
 }
 

@@ -3,7 +3,14 @@ import { voxelFilesSource } from "#main/intake/raw/voxel-files.ts";
 import { ReadFile } from "#main/intake/read-file.ts";
 import type { SliceSource } from "#main/intake/slice-source.ts";
 import { isTautlineError, unreadable } from "#shared/errors.ts";
-import { isRawSidecar, parseRawSidecar, type RawScan, type RawSidecar, rawHeader } from "#shared/volume/raw/raw-layout.ts";
+import {
+  isRawSidecar,
+  parseRawSidecar,
+  RAW_FORMAT,
+  type RawScan,
+  type RawSidecar,
+  rawHeader,
+} from "#shared/volume/raw/raw-layout.ts";
 
 const MOST_SIDECAR_BYTES = 64 * 1024;
 
@@ -54,10 +61,13 @@ async function readSidecar(path: string): Promise<RawSidecar | null> {
   } finally {
     await file.close();
   }
+  const text = new TextDecoder().decode(bytes);
   let value: unknown;
   try {
-    value = JSON.parse(new TextDecoder().decode(bytes));
+    value = JSON.parse(text);
   } catch {
+    // Meant as a sidecar, a slip in it must not pass for its absence.
+    if (text.includes(RAW_FORMAT)) throw unreadable(basename(path), "a sidecar in JSON", "text that is no JSON");
     return null;
   }
   return isRawSidecar(value) ? parseRawSidecar(value, basename(path)) : null;

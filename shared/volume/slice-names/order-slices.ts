@@ -23,6 +23,7 @@ export function orderSliceNames(names: readonly string[], folder: string): Order
   const pattern = commonPattern(parted);
   const odd = parted.find((p) => patternOf(p) !== pattern);
   const alike = parted.filter((p) => patternOf(p) === pattern);
+  if (alike[0]!.numbers.length === 0) throw unreadable(folder, "names with a number for the slice", alike[0]!.name);
   if (odd)
     throw unreadable(
       folder,
@@ -69,7 +70,6 @@ function part(name: string, folder: string): Parted {
   const pieces = name.toLowerCase().split(/(\d+)/);
   const texts = pieces.filter((_, k) => k % 2 === 0);
   const numbers = pieces.filter((_, k) => k % 2 === 1).map(Number);
-  if (numbers.length === 0) throw unreadable(folder, "names with a number for the slice", name);
   if (!numbers.every(Number.isSafeInteger)) throw unreadable(folder, "numbers of at most 15 digits in names", name);
   return { name, texts, numbers };
 }

@@ -1,4 +1,4 @@
-import { open, writeFile } from "node:fs/promises";
+import { open, rm, writeFile } from "node:fs/promises";
 import { join } from "node:path";
 import { describe, expect, it } from "vitest";
 import { openScan } from "#main/intake/open-scan.ts";
@@ -95,6 +95,14 @@ describe("raw voxels", () => {
     [{ file: "b.raw" }, /expected the name 'a\.raw', found 'b\.raw'/],
   ])("with a sidecar that says %j are refused by a clear sentence", async (more, sentence) => {
     await expect(openScan(await withSidecar({ ...SIDECAR, ...more }))).rejects.toThrow(sentence);
+  });
+
+  it("with a sidecar that is no JSON, or none at all, say what is needed", async () => {
+    const path = await withSidecar(SIDECAR);
+    await writeFile(`${path}.json`, `${JSON.stringify(SIDECAR).slice(0, -1)},}`);
+    await expect(openScan(path)).rejects.toThrow(/a\.raw\.json: expected a sidecar in JSON/);
+    await rm(`${path}.json`);
+    await expect(openScan(path)).rejects.toThrow(/begins with.*Voxels without a header need a sidecar/);
   });
 
   it("with a mutated or truncated sidecar give a typed error or their values, never anything else", async () => {

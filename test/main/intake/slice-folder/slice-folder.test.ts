@@ -102,6 +102,8 @@ describe("a folder of slices", () => {
     await expect(openScan(kind)).rejects.toThrow(/one kind of slices, found 2 PNG \(s1\.png \.\.\.\), 1 BMP/);
     const name = await folderOf({ ...slices, "preview1.png": png(C) });
     await expect(openScan(name)).rejects.toThrow(/names that differ in one number, such as s1\.png, found preview1\.png/);
+    const preview = await folderOf({ ...slices, "s_preview.png": png(C) });
+    await expect(openScan(preview)).rejects.toThrow(/such as s1\.png, found s_preview\.png\. Move what is no slice/);
     const two = await folderOf({ "a1-1.png": png(A), "a1-2.png": png(A), "a2-1.png": png(A), "a2-2.png": png(A) });
     await expect(openScan(two)).rejects.toThrow(/names that differ in one number, found a1-1\.png and a2-2\.png/);
     await expect(openScan(await folderOf({ "a.png": png(A), "b.png": png(B) }))).rejects.toThrow(/names with a number/);
