@@ -76,13 +76,16 @@ export function unreadable(
   return new TautlineError("unreadable-input", `${file}${place}: expected ${expected}, found ${found}.${advice}`, fields);
 }
 
-/** HTTP status of each tag; the one table both shells use. */
+/**
+ * HTTP status of each tag; the one table both shells use. What a newer request made pointless is no failure, and browsers would
+ * log every status from 400 as one: such an answer is told by its header (`ERROR_HEADER`).
+ */
 export const STATUS_OF_TAG: Readonly<Record<ErrorTag, number>> = {
   "unreadable-input": 422,
   misuse: 400,
   "bad-request": 400,
   "not-found": 404,
-  superseded: 409,
+  superseded: 200,
   cancelled: 409,
   "spacing-unsettled": 422,
   "other-scan": 409,

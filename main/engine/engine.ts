@@ -30,7 +30,7 @@ export interface EngineOptions {
   readonly workerUrl: URL;
   /** Most memory for bricks, ridge tiles and fronts together; 512 MB when not given. */
   readonly cacheBytes?: number;
-  /** Threads; as many as there are cores when not given, and never fewer than two. */
+  /** Threads; as many as there are cores when not given, and then never fewer than three; two are the least. */
   readonly workers?: number;
 }
 
@@ -44,6 +44,8 @@ export interface LocalEngine extends Engine {
   kill(worker: number): Promise<void>;
 }
 
+/** One to guide, one to solve, one to show. */
+const LEAST_THREADS = 3;
 const DEFAULT_BYTES = 512 * 2 ** 20;
 /** Shares of the limit. */
 const BRICK_SHARE = 0.45;
@@ -68,10 +70,11 @@ interface OpenSession {
  * itself. In the lane `job` nothing is ever dropped.
  *
  * Workers: with two, one traces (guides, snapping, solving, surfaces, histograms) and one shows (sections, strips, films,
- * values). With more, solving, surfaces and histograms have one to themselves, and the others show.
+ * values). With more, solving, surfaces and histograms have one to themselves, and the others show. Three are started on two
+ * cores as well: a solve of a second or more must not stop the guide, and the system shares the cores fairly.
  */
 export function createEngine(options: EngineOptions): LocalEngine {
-  const workers = Math.min(Math.max(options.workers ?? availableParallelism(), 2), MOST_WORKERS);
+  const workers = Math.min(Math.max(options.workers ?? Math.max(availableParallelism(), LEAST_THREADS), 2), MOST_WORKERS);
   const bytes = options.cacheBytes ?? DEFAULT_BYTES;
   const memory = createCacheMemory(BRICK_SHARE * bytes, workers);
   const calls = Calls.forWorkers(workers);

@@ -1,5 +1,6 @@
 import { COMMON_HEADERS } from "#main/http/headers.ts";
 import { encodeFrame } from "#shared/api/frame.ts";
+import { ERROR_HEADER } from "#shared/api/routes.ts";
 import { encodeError, STATUS_OF_TAG } from "#shared/errors.ts";
 
 /** A JSON answer. */
@@ -22,8 +23,8 @@ export function frameAnswer<Header>(frame: { header: Header; body: Uint8Array })
   return bytesAnswer(encodeFrame(frame.header, frame.body), "application/octet-stream");
 }
 
-/** The answer for anything thrown: the tag's status, tag, fields and sentence; never a stack. */
+/** The answer for anything thrown: the tag's status and header, and tag, fields and sentence; never a stack. */
 export function errorAnswer(error: unknown, status?: number, more: Record<string, string> = {}): Response {
   const body = encodeError(error);
-  return jsonAnswer(body, status ?? STATUS_OF_TAG[body.tag], more);
+  return jsonAnswer(body, status ?? STATUS_OF_TAG[body.tag], { [ERROR_HEADER]: body.tag, ...more });
 }

@@ -1,4 +1,4 @@
-import { ROUTES, type RouteName, TOKEN_HEADER } from "#shared/api/routes.ts";
+import { ERROR_HEADER, ROUTES, type RouteName, TOKEN_HEADER } from "#shared/api/routes.ts";
 import { decodeError, TautlineError } from "#shared/errors.ts";
 
 /** What one request carries besides its route. */
@@ -54,6 +54,6 @@ export async function sendRequest(fetch: Fetch, token: string, name: RouteName, 
       cause,
     );
   }
-  if (!answer.ok) throw decodeError(await answer.json().catch(() => null));
+  if (!answer.ok || answer.headers.has(ERROR_HEADER)) throw decodeError(await answer.json().catch(() => null));
   return answer;
 }

@@ -161,7 +161,8 @@ export class Editor {
       return;
     }
     const snapped = await this.snapper.aimAt(this.aimOf(pointing));
-    if (snapped !== null && this.pointing === pointing) await this.guideFollower.point(snapped.point);
+    // Also when the pointer has gone on meanwhile: a hand that never rests would else see no guide.
+    if (snapped !== null && this.pointing !== null) await this.guideFollower.point(snapped.point);
   }
 
   /** A click, or the key for one: puts down what is carried, sets a pin, goes on with an open end, selects, or starts a tree. */

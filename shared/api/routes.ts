@@ -49,6 +49,9 @@ export type RouteName = keyof typeof ROUTES;
 /** Header that carries the per-run token; the page takes it from the URL fragment and keeps it in session storage. */
 export const TOKEN_HEADER = "x-tautline-token";
 
+/** Header of every error's answer, with its tag: the status alone does not tell (a superseded request is answered 200). */
+export const ERROR_HEADER = "x-tautline-error";
+
 export interface HelloAnswer {
   readonly name: "Tautline";
   readonly version: string;

@@ -15,6 +15,12 @@ export interface Guide {
   readonly doubtful: readonly (readonly [number, number])[];
 }
 
+/** While the pointer rests on a coarse guide the engine is asked again: soon, then less often, then no more. */
+const FIRST_AGAIN_MS = 120;
+const AGAIN_GROWTH = 1.4;
+const LONGEST_AGAIN_MS = 1500;
+const MOST_AGAIN = 24;
+
 /** What the follower asks of the engine; null = a newer request took over. */
 export interface GuideSource {
   open(from: PointMm): Promise<{ session: string } | null>;
@@ -24,7 +30,8 @@ export interface GuideSource {
 
 /**
  * Keeps one guide session at the last pin and previews the way to the pointer. A preview never decides anything: the
- * committed curve is solved anew. Failures of a preview show no guide, and the next movement tries again.
+ * committed curve is solved anew. Failures of a preview show no guide, and the next movement tries again. A coarse guide
+ * does not stay coarse because the pointer rests: it is asked for again until it is fine.
  */
 export class GuideFollower {
   private readonly guideSignal = signal<Guide | null>(null);
@@ -34,6 +41,8 @@ export class GuideFollower {
   private leg: LegKind = "guide";
   /** Settles when no preview of the session is under way any more. */
   private previews: Promise<unknown> = Promise.resolve();
+
+  private again: ReturnType<typeof setTimeout> | undefined;
 
   constructor(private readonly source: GuideSource) {}
 
@@ -46,6 +55,7 @@ export class GuideFollower {
     const same = from !== null && this.from !== null && samePlace(from, this.from) && leg === this.leg;
     if (same) return;
     const samePin = from !== null && this.from !== null && samePlace(from, this.from);
+    clearTimeout(this.again);
     this.leg = leg;
     this.from = from;
     if (!samePin) this.closeSession();
@@ -55,7 +65,18 @@ export class GuideFollower {
   }
 
   /** The pointer is at `to`; null = nowhere. */
-  async point(to: PointMm | null): Promise<void> {
+  point(to: PointMm | null): Promise<void> {
+    return this.show(to, 0);
+  }
+
+  stop(): void {
+    this.start(null, "guide");
+    this.to = null;
+  }
+
+  /** @param times how often this place was asked for before. */
+  private async show(to: PointMm | null, times: number): Promise<void> {
+    clearTimeout(this.again);
     this.to = to;
     const from = this.from;
     if (to === null || from === null) {
@@ -74,11 +95,11 @@ export class GuideFollower {
       imageFit: answer.imageFit,
       doubtful: answer.doubtful,
     };
-  }
-
-  stop(): void {
-    this.start(null, "guide");
-    this.to = null;
+    // An answer that comes while the pointer has gone on is followed by a newer one anyway.
+    if (answer.coarse && this.to === to && times < MOST_AGAIN) {
+      const pause = Math.min(FIRST_AGAIN_MS * AGAIN_GROWTH ** times, LONGEST_AGAIN_MS);
+      this.again = setTimeout(() => void this.show(to, times + 1), pause);
+    }
   }
 
   private async ask(from: PointMm, to: PointMm, again = true): Promise<GuidePreviewAnswer | null> {

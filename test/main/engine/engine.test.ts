@@ -1,5 +1,6 @@
 import { existsSync, truncateSync } from "node:fs";
 import { join } from "node:path";
+import { pathToFileURL } from "node:url";
 import { afterAll, afterEach, beforeAll, describe, expect, test } from "vitest";
 import { createEngine, type EngineOptions, type LocalEngine } from "#main/engine/engine.ts";
 import type { Lane, SectionRequest, SolveRequest, Ticket } from "#shared/api/engine.ts";
@@ -16,7 +17,10 @@ import { valueAt } from "#shared/volume/value-at.ts";
 import { scratchFolder, seeded, type TestSpecimen, writeSpecimen, writeVastSpecimen } from "#test/main/engine/write-store.ts";
 
 // Threads run the built worker (`npm run build`): Node 20 does not load TypeScript in a worker.
-const workerUrl = new URL("../../../dist/main/engine-worker.mjs", import.meta.url);
+const dist = process.env.TAUTLINE_DIST
+  ? pathToFileURL(`${process.env.TAUTLINE_DIST}/`)
+  : new URL("../../../dist/", import.meta.url);
+const workerUrl = new URL("main/engine-worker.mjs", dist);
 
 const SIZE = [160, 140, 120] as const;
 const SPACING = 0.04;

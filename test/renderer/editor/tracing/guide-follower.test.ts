@@ -1,4 +1,4 @@
-import { describe, expect, it } from "vitest";
+import { afterEach, describe, expect, it, vi } from "vitest";
 import { GuideFollower, type GuideSource } from "#renderer/editor/tracing/guide-follower.ts";
 import type { GuidePreviewAnswer } from "#shared/api/engine.ts";
 import { TautlineError } from "#shared/errors.ts";
@@ -31,6 +31,8 @@ function answerTo(to: PointMm): GuidePreviewAnswer {
 const settle = () => new Promise((resolve) => setTimeout(resolve, 0));
 
 describe("the guide", () => {
+  afterEach(() => void vi.useRealTimers());
+
   it("opens one session a pin, previews to the pointer, and closes the session when the pin changes", async () => {
     const { said, source } = fakeEngine();
     const follower = new GuideFollower(source);
@@ -92,6 +94,55 @@ describe("the guide", () => {
     answer(answerTo(pointMm(1, 0, 0)));
     await pointed;
     expect(follower.guide.value).toBeNull();
+  });
+
+  it("asks again, ever less often, while the pointer rests on a coarse guide, until it is fine", async () => {
+    vi.useFakeTimers();
+    const asked: number[] = [];
+    const { source } = fakeEngine({
+      preview: async (_, to) => {
+        asked.push(Date.now());
+        return { ...answerTo(to), coarse: asked.length < 4 };
+      },
+    });
+    const follower = new GuideFollower(source);
+    follower.start(pointMm(0, 0, 0), "guide");
+    await follower.point(pointMm(1, 0, 0));
+    expect(follower.guide.value?.coarse).toBe(true);
+    await vi.advanceTimersByTimeAsync(10_000);
+    expect(follower.guide.value?.coarse).toBe(false);
+    expect(asked).toHaveLength(4);
+    const pauses = asked.slice(1).map((time, i) => time - asked[i]!);
+    expect(pauses).toEqual(pauses.toSorted((a, b) => a - b));
+  });
+
+  it("asks no more for a place that the pointer has left, nor from a pin that is no more", async () => {
+    vi.useFakeTimers();
+    const asked: number[] = [];
+    const { source } = fakeEngine({
+      preview: async (_, to) => {
+        asked.push(to[0]);
+        return { ...answerTo(to), coarse: true };
+      },
+    });
+    const follower = new GuideFollower(source);
+    follower.start(pointMm(0, 0, 0), "guide");
+    await follower.point(pointMm(1, 0, 0));
+    await follower.point(pointMm(2, 0, 0));
+    await vi.advanceTimersByTimeAsync(500);
+    expect(asked.filter((x) => x === 1)).toHaveLength(1);
+    expect(asked.filter((x) => x === 2).length).toBeGreaterThan(1);
+    const before = asked.length;
+    follower.stop();
+    await vi.advanceTimersByTimeAsync(60_000);
+    expect(asked).toHaveLength(before);
+    // A place that never becomes fine is not asked for without end.
+    follower.start(pointMm(0, 0, 0), "guide");
+    await follower.point(pointMm(3, 0, 0));
+    await vi.advanceTimersByTimeAsync(600_000);
+    const all = asked.length;
+    await vi.advanceTimersByTimeAsync(600_000);
+    expect(asked).toHaveLength(all);
   });
 
   it("goes away with the pointer, and on a failure", async () => {
