@@ -1,6 +1,7 @@
 // Throughput of the ridge kernel at one scale, in voxels per CPU second. Run: node with a TypeScript loader, or `npm run bench`.
 import { gaussianKernels } from "#shared/tracing/ridge/gaussian-kernels.ts";
-import { createRidgeScratch, ridgeBlockInto } from "#shared/tracing/ridge/ridge-block.ts";
+import { ridgeBlockInto } from "#shared/tracing/ridge/ridge-block.ts";
+import { createRidgeKernel } from "#shared/tracing/ridge/ridge-kernel.ts";
 
 /** Runs the benchmark; one line a case with a checksum, so that a wrong answer cannot be fast. */
 export function bench(print: (line: string) => void, cpuMs: () => number): void {
@@ -15,13 +16,13 @@ export function bench(print: (line: string) => void, cpuMs: () => number): void 
       block[i] = (seed >>> 8) / 65536;
     }
     const out = new Float32Array(n ** 3);
-    const scratch = createRidgeScratch();
+    const compiled = createRidgeKernel();
     const normalise = Array.from({ length: 6 }, () => sigma * sigma) as [number, number, number, number, number, number];
     const scale = { kernels: [kernel, kernel, kernel] as const, normalise, slope: [sigma, sigma, sigma] as const, damping: 0 };
     const times: number[] = [];
     for (let round = 0; round < 4; round++) {
       const start = cpuMs();
-      ridgeBlockInto(block, [n, n, n], scale, 1, out, scratch);
+      ridgeBlockInto(block, [n, n, n], scale, 1, out, compiled);
       times.push(cpuMs() - start);
     }
     const best = times.slice(1).sort((a, b) => a - b)[1]!;

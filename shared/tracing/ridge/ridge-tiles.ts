@@ -1,5 +1,5 @@
 import { gaussianKernels } from "#shared/tracing/ridge/gaussian-kernels.ts";
-import { type BlockScale, createRidgeScratch, ridgeBlockInto } from "#shared/tracing/ridge/ridge-block.ts";
+import { type BlockScale, createRidgeKernel } from "#shared/tracing/ridge/ridge-kernel.ts";
 import { type RidgeScale, ridgeScales, sigmaVoxels } from "#shared/tracing/ridge/scales.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
@@ -45,13 +45,11 @@ interface OwnAnswer {
  */
 export function createRidgeTiles(pyramid: VoxelPyramid, polarity: Polarity, keepTiles = 512): RidgeTiles {
   const sign = polarity === "bright" ? 1 : -1;
-  const scratch = createRidgeScratch();
+  const kernel = createRidgeKernel();
   const scalesOfLevel = new Map<number, readonly RidgeScale[]>();
   const blockScales = new Map<string, BlockScale>();
   const kept = new Map<string, RidgeTile>();
   const own = new Map<string, OwnAnswer>();
-  let input = new Float32Array(0);
-  const answer = new Float32Array(RIDGE_TILE_VOXELS);
 
   const scales = (level: number) => {
     const known = scalesOfLevel.get(level);
@@ -98,14 +96,23 @@ export function createRidgeTiles(pyramid: VoxelPyramid, polarity: Polarity, keep
       Math.min(n, whole[2] - k * n),
     ];
     const empty = Math.min(...inside) <= 0 || Math.min(i, j, k) < 0;
+    // One block of grey values, wide enough for the widest scale, serves them all.
+    const kernels = here.flatMap((index) => [blockScale(list[index]!).kernels]);
+    const pad = ([0, 1, 2] as const).map((axis) => Math.max(...kernels.map((each) => each[axis].reach))) as [
+      number,
+      number,
+      number,
+    ];
+    const size = ([0, 1, 2] as const).map((axis) => inside[axis] + 2 * pad[axis]) as [number, number, number];
+    if (!empty)
+      pyramid.readBoxInto(
+        level,
+        [i * n - pad[0], j * n - pad[1], k * n - pad[2]],
+        size,
+        kernel.block(size[0] * size[1] * size[2]),
+      );
     for (const index of empty ? [] : here) {
-      const made = blockScale(list[index]!);
-      const [rx, ry, rz] = made.kernels.map((kernel) => kernel.reach) as [number, number, number];
-      const size = [inside[0] + 2 * rx, inside[1] + 2 * ry, inside[2] + 2 * rz] as const;
-      const voxels = size[0] * size[1] * size[2];
-      if (input.length < voxels) input = new Float32Array(voxels);
-      pyramid.readBoxInto(level, [i * n - rx, j * n - ry, k * n - rz], size, input);
-      ridgeBlockInto(input, inside, made, sign, answer, scratch);
+      const answer = kernel.run(inside, pad, blockScale(list[index]!), sign);
       let from = 0;
       for (let z = 0; z < inside[2]; z++)
         for (let y = 0; y < inside[1]; y++) {
