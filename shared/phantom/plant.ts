@@ -18,8 +18,9 @@ export interface IntendedTouch {
   readonly reach: number;
 }
 
-/** Owners of solids that are no trees. */
+/** Owner of the solids of muscle, which are no tree. */
 export const MUSCLE = "muscle";
+/** Owner of the leaflet sheets, which are no tree. */
 export const LEAFLET = "leaflet";
 
 /** Where trees are planted one after another, each clear of all before it. Lengths in millimetres. */

@@ -12,6 +12,7 @@ import type { Muscle } from "#shared/trees/document.ts";
  */
 const ANNULUS = { a: 13, b: 10, z: 31 };
 const COAPTATION = { halfWidth: 11.2, y: 3, z: 26.3 };
+/** Thickness of the leaflet sheets, millimetres. */
 export const LEAFLET_THICKNESS = 0.7;
 const WALL = { radius: 13.2, thickness: 1.4, top: 7.5 };
 
@@ -22,6 +23,7 @@ export interface MuscleHead {
   readonly radius: number;
 }
 
+/** The papillary muscle heads, millimetres in the valve's own frame. */
 export const HEADS: readonly MuscleHead[] = [
   { muscle: "antero-lateral", head: 1, centre: [6.4, -2.6, 10.4], radius: 2 },
   { muscle: "antero-lateral", head: 2, centre: [8.2, 2.4, 9.4], radius: 1.9 },

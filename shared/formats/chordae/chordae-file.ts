@@ -3,8 +3,11 @@ import type { Certainty, Leaflet, LegKind, MadeBy, Muscle, NodeKind, OriginSite,
 import type { SourceDtype } from "#shared/volume/dtype.ts";
 import type { FrameName } from "#shared/volume/grid.ts";
 
+/** Name in a tree file's `format`. */
 export const CHORDAE_FORMAT = "chordae-trees";
+/** Newest version of the tree file that this program writes and reads. */
 export const CHORDAE_VERSION = 1;
+/** How names of tree files end. */
 export const CHORDAE_EXTENSION = ".chordae.json";
 
 /** A key this version does not know may stand on every object of the file; it survives reading and writing. */

@@ -50,4 +50,5 @@ export const EDGE_KEYS = {
   imageFit: "double",
 } as const satisfies Record<string, GraphmlType>;
 
+/** XML namespace of GraphML. */
 export const GRAPHML_NAMESPACE = "http://graphml.graphdrawing.org/xmlns";
