@@ -28,6 +28,14 @@ export async function scanInfo(path: string, options: ScanInfoOptions = {}): Pro
   return withScan(path, options, async ({ info }) => info);
 }
 
+/** {@link scanInfo}, and what else the header leaves a person to know, one sentence each. */
+export async function scanInfoAndNotes(
+  path: string,
+  options: ScanInfoOptions = {},
+): Promise<{ info: ScanInfo; notes: readonly string[] }> {
+  return withScan(path, options, async ({ info, source }) => ({ info, notes: source.header.notes }));
+}
+
 /** All that the window shows before a scan is taken in: its facts, the middle slice, a histogram, what would be converted. */
 export async function lookAtScan(path: string, options: ScanInfoOptions = {}): Promise<ScanLookAnswer> {
   return withScan(path, options, async ({ info, survey, source }) => {

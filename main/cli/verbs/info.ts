@@ -1,6 +1,6 @@
 import { givenChoice, RAW_HELP, RAW_OPTIONS } from "#main/cli/raw-option.ts";
 import type { Verb } from "#main/cli/verb.ts";
-import { scanInfo } from "#main/intake/scan-info.ts";
+import { scanInfoAndNotes } from "#main/intake/scan-info.ts";
 import type { ScanInfo } from "#shared/api/routes.ts";
 
 /** `tautline info`: what a scan says about itself, and what to doubt. */
@@ -18,8 +18,8 @@ ${RAW_HELP}`,
   options: { channel: { type: "string" }, time: { type: "string" }, ...RAW_OPTIONS },
   positionals: [1, 1],
   async run({ positionals, options, io, say }) {
-    const found = await scanInfo(positionals[0]!, { choice: givenChoice(options), signal: io.signal });
-    for (const warning of found.warnings) say(`${found.name}: ${warning.message}`);
+    const { info: found, notes } = await scanInfoAndNotes(positionals[0]!, { choice: givenChoice(options), signal: io.signal });
+    for (const sentence of [...found.warnings.map((warning) => warning.message), ...notes]) say(`${found.name}: ${sentence}`);
     return { json: found, text: inWords(found), exit: 0 };
   },
 };

@@ -1,8 +1,8 @@
-import { readdir } from "node:fs/promises";
 import { basename, dirname, join } from "node:path";
 import { refuseHugeSlice } from "#main/intake/nrrd/nrrd-source.ts";
 import { RawPlanes } from "#main/intake/raw-planes.ts";
-import { asUnreadable, fingerprintOf, ReadFile } from "#main/intake/read-file.ts";
+import { fingerprintOf, ReadFile } from "#main/intake/read-file.ts";
+import { filesIn } from "#main/intake/slice-folder/files-in.ts";
 import type { PlaneRun, SliceSource } from "#main/intake/slice-source.ts";
 import { unreadable } from "#shared/errors.ts";
 import { isDicom, walkDicom } from "#shared/volume/dicom/dicom-elements.ts";
@@ -37,7 +37,9 @@ async function openSeries(folder: string, chosen: string, paths: readonly string
   for (const path of paths) {
     const slice = await readSlice(path);
     if (!slice || (only !== null && slice.series !== only)) continue;
-    bySeries.set(slice.series, [...(bySeries.get(slice.series) ?? []), slice]);
+    const alike = bySeries.get(slice.series);
+    if (alike) alike.push(slice);
+    else bySeries.set(slice.series, [slice]);
   }
   if (bySeries.size > 1) {
     const each = [...bySeries.values()].map((list) => `${list.length} slices with ${list[0]!.file}`).slice(0, 5);
@@ -87,18 +89,9 @@ async function* cleaned(runs: AsyncGenerator<PlaneRun, void, void>, first: Dicom
 }
 
 /** Files of a folder that begin as DICOM files do, in the order of their names. */
-export async function dicomFilesIn(folder: string): Promise<string[]> {
+async function dicomFilesIn(folder: string): Promise<string[]> {
   const paths: string[] = [];
-  let entries: import("node:fs").Dirent[];
-  try {
-    entries = await readdir(folder, { withFileTypes: true });
-  } catch (error) {
-    throw asUnreadable(folder, error);
-  }
-  for (const name of entries
-    .filter((entry) => entry.isFile())
-    .map((entry) => entry.name)
-    .sort()) {
+  for (const name of await filesIn(folder)) {
     const file = await ReadFile.open(join(folder, name));
     try {
       if (isDicom(await file.readUpTo(0, 132))) paths.push(join(folder, name));

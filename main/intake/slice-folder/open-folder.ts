@@ -1,14 +1,11 @@
-import type { Dirent } from "node:fs";
-import { readdir, stat } from "node:fs/promises";
 import { basename, join } from "node:path";
 import { openDicomFolder } from "#main/intake/dicom/dicom-source.ts";
-import { asUnreadable, ReadFile } from "#main/intake/read-file.ts";
+import { ReadFile } from "#main/intake/read-file.ts";
+import { filesIn } from "#main/intake/slice-folder/files-in.ts";
 import { openSliceFolder, PICTURE_KINDS } from "#main/intake/slice-folder/slice-folder-source.ts";
 import type { SliceSource } from "#main/intake/slice-source.ts";
 import { unreadable } from "#shared/errors.ts";
 import { isDicom } from "#shared/volume/dicom/dicom-elements.ts";
-
-const MOST_FILES = 200_000;
 
 /**
  * The scan whose slices are the files of a folder: a DICOM series, or TIFF, PNG or BMP pictures. The first bytes decide what a file
@@ -19,7 +16,10 @@ export async function openFolderOfSlices(folder: string): Promise<SliceSource | 
   const kinds = new Map<string, string[]>();
   for (const name of await filesIn(folder)) {
     const kind = await kindOf(join(folder, name));
-    if (kind) kinds.set(kind, [...(kinds.get(kind) ?? []), name]);
+    if (!kind) continue;
+    const alike = kinds.get(kind);
+    if (alike) alike.push(name);
+    else kinds.set(kind, [name]);
   }
   if (kinds.size > 1) {
     const each = [...kinds].map(([kind, names]) => `${names.length} ${kind} (${names[0]} ...)`);
@@ -35,31 +35,6 @@ export async function openFolderOfSlices(folder: string): Promise<SliceSource | 
       names.map((name) => join(folder, name)),
     );
   return openSliceFolder(folder, PICTURE_KINDS.find((one) => one.name === kind)!, names);
-}
-
-/** Plain files of a folder but hidden ones, sorted by name. */
-async function filesIn(folder: string): Promise<string[]> {
-  let entries: Dirent[];
-  try {
-    entries = await readdir(folder, { withFileTypes: true });
-  } catch (error) {
-    throw asUnreadable(folder, error);
-  }
-  const names: string[] = [];
-  for (const entry of entries) {
-    if (entry.name.startsWith(".")) continue;
-    if (entry.isFile() || (entry.isSymbolicLink() && (await leadsToFile(join(folder, entry.name))))) names.push(entry.name);
-  }
-  if (names.length > MOST_FILES) throw unreadable(basename(folder), `at most ${MOST_FILES} files`, `${names.length}`);
-  return names.sort();
-}
-
-async function leadsToFile(link: string): Promise<boolean> {
-  try {
-    return (await stat(link)).isFile();
-  } catch {
-    return false; // a link to nothing
-  }
 }
 
 async function kindOf(path: string): Promise<string | null> {

@@ -21,6 +21,7 @@ export interface RawSidecar extends RawScan {
   readonly file: string | null;
 }
 
+/** The word by which a sidecar says what it is. */
 export const RAW_FORMAT = "tautline-raw";
 const KEYS = ["format", "version", "file", "size", "dtype", "endian", "offset", "spacing", "unit"];
 

@@ -186,6 +186,7 @@ describe("info and intake", () => {
       const info = await runVerb(["info", file, "--json", ...flags]);
       expect(info.code, info.stderr).toBe(0);
       const said = JSON.parse(info.stdout);
+      expect(info.stderr.includes("Spacing Between Slices, 7 mm, is not used")).toBe(family === "DICOM");
       const settled = !codes.some((code) => code !== "no-frame");
       expect(said).toMatchObject({ family, dtype, size: SIZE, frame, spacing: settled ? [0.5, 0.5, 0.5] : null });
       expect(said.range).toEqual({ min: 0, max: 250, sampled: false });
