@@ -24,9 +24,9 @@ export function differenceSentence(difference: Difference, setA: PlainSet, setB:
   const mm = `${length.toFixed(2)} mm`;
   switch (kind) {
     case "missed-branch":
-      return `A has a branch here, B has not (${mm} of string).`;
+      return `A has a branch here, B has not (${mm} away from B's tree).`;
     case "extra-branch":
-      return `B has a branch here, A has not (${mm} of string).`;
+      return `B has a branch here, A has not (${mm} away from A's tree).`;
     case "moved-fork":
       return `B's fork lies ${mm} from A's.`;
     case "moved-end":

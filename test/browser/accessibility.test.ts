@@ -1,31 +1,8 @@
-import { readFile } from "node:fs/promises";
-import { createRequire } from "node:module";
 import { join } from "node:path";
-import type { Page } from "playwright-core";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
+import { seriousViolations } from "#test/browser/axe-violations.ts";
 import { deskReady } from "#test/browser/desk-steps.ts";
 import { type OpenPage, openPage, type RunningProgram, startProgram } from "#test/browser/running-program.ts";
-
-interface AxeResult {
-  readonly violations: readonly {
-    readonly id: string;
-    readonly impact: string;
-    readonly nodes: readonly { readonly html: string }[];
-  }[];
-}
-
-/** Violations of WCAG 2 A and AA that axe calls serious or critical, one line each. Source: axe-core's own rules. */
-async function seriousViolations(page: Page): Promise<string[]> {
-  const axe = await readFile(createRequire(import.meta.url).resolve("axe-core/axe.min.js"), "utf8");
-  await page.evaluate(axe);
-  const result = await page.evaluate(async () => {
-    const { axe: loaded } = window as unknown as { axe: { run(options: unknown): Promise<AxeResult> } };
-    return loaded.run({ runOnly: ["wcag2a", "wcag2aa", "wcag21a", "wcag21aa", "wcag22aa"] });
-  });
-  return result.violations
-    .filter(({ impact }) => impact === "serious" || impact === "critical")
-    .flatMap(({ id, nodes }) => nodes.map(({ html }) => `${id}: ${html.slice(0, 160)}`));
-}
 
 describe("accessibility of shelf and desk", () => {
   let program: RunningProgram;

@@ -3,12 +3,25 @@ import { fragmentOf, type Place, placeOf } from "#renderer/app/place.ts";
 
 describe("places in the address", () => {
   it("come back from their fragment", () => {
-    const places: Place[] = [{ screen: "shelf" }, { screen: "desk", specimen: "a b/c", pass: "p#1" }];
+    const places: Place[] = [
+      { screen: "shelf" },
+      { screen: "desk", specimen: "a b/c", pass: "p#1" },
+      { screen: "side-by-side", specimen: "a", a: "p#1", b: "file~x y.json" },
+    ];
     for (const place of places) expect(placeOf(fragmentOf(place))).toEqual(place);
   });
 
   it("are the shelf for anything else", () => {
-    for (const fragment of ["", "#", "#/desk/only", "#/desk/a/b/c", "#/desk/%/b"])
+    for (const fragment of [
+      "",
+      "#",
+      "#/desk/only",
+      "#/desk/a/b/c",
+      "#/desk/%/b",
+      "#/desk//b",
+      "#/side-by-side/a/b",
+      "#/side-by-side/a/b/c/d",
+    ])
       expect(placeOf(fragment)).toEqual({ screen: "shelf" });
   });
 });

@@ -1,6 +1,7 @@
 import { expect, test } from "vitest";
 import {
   approached,
+  facing,
   lookingAlong,
   mmPerPixel,
   orbitAround,
@@ -61,4 +62,25 @@ test("moving the picture carries the target's plane with the pointer; coming nea
     dot([moved.target[0] - start.target[0], moved.target[1] - start.target[1], 0], viewerAxes(start, upright).right),
   ).toBeLessThan(0);
   expect(approached(start, 2).distanceMm).toBeCloseTo(start.distanceMm / 2, 9);
+});
+
+test("a place is looked at from its own side of the valve, a little from above, and not from farther away", () => {
+  const centre = pointMm(1, 2, 3);
+  const random = seeded(21);
+  for (let k = 0; k < 40; k++) {
+    const angle = random() * 2 * Math.PI;
+    const place = pointMm(1 + 8 * Math.cos(angle), 2 + 8 * Math.sin(angle), 3 + 10 * random());
+    const seen = facing(turned(start, random() * 360, 0), upright, place, centre, 5);
+    expect(seen.target).toEqual(place);
+    expect(mmPerPixel(seen, 100) * 100).toBeCloseTo(5, 6);
+    const { eye, away } = viewerAxes(seen, upright);
+    // The eye stands farther out in the direction of the place, and above it.
+    const outwards: Vec3 = [Math.cos(angle), Math.sin(angle), 0];
+    expect(dot(away, outwards)).toBeLessThan(-0.95);
+    expect(eye[2]).toBeGreaterThan(place[2]);
+  }
+  const close = approached(start, 50);
+  expect(facing(close, upright, pointMm(9, 2, 3), centre, 500).distanceMm).toBe(close.distanceMm);
+  // On the axis there is no side: the direction stays.
+  expect(facing(start, upright, pointMm(1, 2, 9), centre, 5)).toMatchObject({ turnDeg: start.turnDeg, tiltDeg: start.tiltDeg });
 });

@@ -1,0 +1,26 @@
+import { describe, expect, it } from "vitest";
+import { COMMANDS, commandFor } from "#renderer/editor/commands/command-table.ts";
+import { SIDE_BY_SIDE_COMMANDS, sideBySideCommandFor } from "#renderer/study/side-by-side/side-by-side-commands.ts";
+
+const repeated = (list: readonly string[]) => list.filter((item, i) => list.indexOf(item) !== i);
+const press = (key: string, shiftKey = false) => ({ key, shiftKey, ctrlKey: false, metaKey: false, altKey: false });
+
+describe("the commands of side by side", () => {
+  it("have one name and one key each", () => {
+    expect(repeated(SIDE_BY_SIDE_COMMANDS.map((command) => command.name))).toEqual([]);
+    expect(repeated(SIDE_BY_SIDE_COMMANDS.flatMap((command) => command.keys))).toEqual([]);
+  });
+
+  it("step with the keys that step through findings on the desk", () => {
+    expect(sideBySideCommandFor(press("q"))?.name).toBe("next-difference");
+    expect(sideBySideCommandFor(press("Q", true))?.name).toBe("previous-difference");
+    expect(commandFor(press("q"))?.name).toBe("next-finding");
+  });
+
+  it("use a key that changes what is seen for nothing else than the desk does", () => {
+    const seen = COMMANDS.filter((command) => command.group === "See");
+    for (const command of seen) {
+      expect(SIDE_BY_SIDE_COMMANDS.find((one) => one.name === command.name)?.keys).toEqual(command.keys);
+    }
+  });
+});
