@@ -96,7 +96,10 @@ export function AddScanSheet({ client, capabilities, path: given, close, begun }
             void lookAt(path);
           }}
         >
-          <p>NRRD (with or without a separate header), multi-page TIFF, or OME-Zarr. The file is only read, never changed.</p>
+          <p>
+            NRRD, MetaImage, NIfTI-1, multi-page TIFF, OME-Zarr, a DICOM series, a folder of TIFF, PNG or BMP slices, or raw
+            voxels with a sidecar. The source is only read, never changed.
+          </p>
           <label class="stacked">
             <span>Path of the file or folder</span>
             <input

@@ -33,7 +33,7 @@ export function draftOf(info: ScanInfo, polarity: Polarity): ScanDraft {
   const written = info.spacing?.map((mm) => mm * 1000) ?? info.headerSpacing ?? [null, null, null];
   const text = (value: number | null) => (value !== null && Number.isFinite(value) && value > 0 ? plain(value) : "");
   return {
-    name: info.name.replace(/(\.ome)?(\.(nrrd|nhdr|tiff?|zarr|gz))+$/i, ""),
+    name: info.name.replace(/(\.ome)?(\.(nrrd|nhdr|mha|mhd|nii|hdr|tiff?|zarr|raw|vol|json|gz))+$/i, ""),
     spacing: [text(written[0]!), text(written[1]!), text(written[2]!)],
     unit: info.spacing === null ? null : "µm",
     checked: false,
