@@ -1,4 +1,5 @@
 import type { Verb } from "#main/cli/verb.ts";
+import { agree } from "#main/cli/verbs/agree.ts";
 import { check } from "#main/cli/verbs/check.ts";
 import { compare } from "#main/cli/verbs/compare.ts";
 import { convert } from "#main/cli/verbs/convert.ts";
@@ -11,4 +12,4 @@ import { score } from "#main/cli/verbs/score.ts";
 import { trace } from "#main/cli/verbs/trace.ts";
 
 /** Every verb, in the order of the job. */
-export const VERBS: readonly Verb[] = [info, intake, trace, measure, check, compare, score, gather, convert, phantom];
+export const VERBS: readonly Verb[] = [info, intake, trace, measure, check, compare, score, agree, gather, convert, phantom];

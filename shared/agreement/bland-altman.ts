@@ -83,13 +83,13 @@ function exactLimits(differences: readonly number[], method: string, reasons: Re
   const [bias, sd] = [mean(differences), Math.sqrt(variance(differences))];
   for (const key of ["sdBetween", "sdWithin"])
     reasons[key] = "With one difference a specimen, between and within cannot be told apart.";
-  const limitEnd = (p: number) => (noncentralTQuantile(p, n - 1, Z() * Math.sqrt(n)) / Math.sqrt(n)) * sd;
+  const limitEnd = (p: number) => (sd > 0 ? (noncentralTQuantile(p, n - 1, Z() * Math.sqrt(n)) / Math.sqrt(n)) * sd : Number.NaN);
   const interval = (key: string, how: string, ends: () => readonly [number, number]) => {
     const made = intervalOn("one-item-per-specimen", n, how, ends);
     if (made.reason) reasons[key] = made.reason;
     return made.interval;
   };
-  const half = () => (tQuantile(0.975, n - 1) * sd) / Math.sqrt(n);
+  const half = () => (sd > 0 ? (tQuantile(0.975, n - 1) * sd) / Math.sqrt(n) : Number.NaN);
   return {
     bias,
     sd,
@@ -132,7 +132,7 @@ function clusteredLimits(perSpecimen: readonly (readonly number[])[], method: st
   const inward = Math.sqrt(ofBias + (Z() * (sd - sdLow)) ** 2);
   const [lowerLimit, upperLimit] = [bias - Z() * sd, bias + Z() * sd];
   const interval = (key: string, how: string, ends: readonly [number, number]) => {
-    const made = intervalOn("one-item-per-specimen", n, how, () => ends);
+    const made = intervalOn("one-item-per-specimen", n, how, () => (total > 0 ? ends : [Number.NaN, Number.NaN]));
     if (made.reason) reasons[key] = made.reason;
     return made.interval;
   };
@@ -171,7 +171,7 @@ function slopeOf(
   }
   const slope = x.reduce((sum, value, i) => sum + (value - mx) * (y[i]! - my), 0) / sxx;
   const rest = y.reduce((sum, value, i) => sum + (value - my - slope * (x[i]! - mx)) ** 2, 0);
-  const half = tQuantile(0.975, n - 2) * Math.sqrt(rest / (n - 2) / sxx);
+  const half = rest > 0 ? tQuantile(0.975, n - 2) * Math.sqrt(rest / (n - 2) / sxx) : Number.NaN;
   const clustered = groups.some((group) => group.length > 1);
   const made = intervalOn(
     clustered ? "items-of-these-valves" : "one-item-per-specimen",

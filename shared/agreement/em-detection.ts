@@ -109,7 +109,7 @@ export function detectionRates(decisions: Decisions, prior: number | null, seed:
     others: [],
     starts: 0,
     prior: null,
-    reasons: { best: why, sensitivity: why, specificity: why },
+    reasons: { best: why, prior: why, sensitivity: why, specificity: why },
   });
   if (decisions.length < 3)
     return refuse(`Rates without a reference need three annotators or more; there are ${decisions.length}.`);

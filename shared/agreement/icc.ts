@@ -18,13 +18,20 @@ export interface Icc {
   readonly reasons: Reasons;
 }
 
+/** A ratio of mean squares with its degrees of freedom. */
+export interface FRatio {
+  readonly f: number | null;
+  readonly freedom: readonly [number, number];
+  readonly reasons: Reasons;
+}
+
 /** All six forms with the mean squares and F ratios they rest on; null where they cannot be given. */
 export interface IccTable {
   readonly meanSquares: MeanSquares | null;
   /** BMS / WMS, one-way, with its degrees of freedom. */
-  readonly oneWayF: { readonly f: number | null; readonly freedom: readonly [number, number] } | null;
+  readonly oneWayF: FRatio | null;
   /** BMS / EMS, two-way. */
-  readonly twoWayF: { readonly f: number | null; readonly freedom: readonly [number, number] } | null;
+  readonly twoWayF: FRatio | null;
   readonly forms: readonly Icc[];
   readonly reasons: Reasons;
 }
@@ -57,18 +64,16 @@ export function icc(rows: readonly (readonly number[])[], basis: IntervalBasis):
     return { meanSquares: null, oneWayF: null, twoWayF: null, forms, reasons: { meanSquares: why, oneWayF: why, twoWayF: why } };
   }
   const { items: n, raters: k, between, within, residual } = squares;
-  const reasons: Record<string, string> = {};
-  const ratio = (key: string, below: number) => {
-    if (below > 0) return between / below;
-    reasons[key] = "There is no error to divide by: the ratio is not a number.";
-    return null;
-  };
+  const ratio = (below: number, freedom: readonly [number, number]): FRatio =>
+    below > 0
+      ? { f: between / below, freedom, reasons: {} }
+      : { f: null, freedom, reasons: { f: "There is no error to divide by." } };
   return {
     meanSquares: squares,
-    oneWayF: { f: ratio("oneWayF", within), freedom: [n - 1, n * (k - 1)] },
-    twoWayF: { f: ratio("twoWayF", residual), freedom: [n - 1, (n - 1) * (k - 1)] },
+    oneWayF: ratio(within, [n - 1, n * (k - 1)]),
+    twoWayF: ratio(residual, [n - 1, (n - 1) * (k - 1)]),
     forms: DESCRIPTIONS.map((text) => oneForm(text, squares, basis)),
-    reasons,
+    reasons: {},
   };
 }
 

@@ -71,6 +71,45 @@ export function canonicalPass(set: PlainSet, merge: number): CanonicalPass {
   };
 }
 
+/** What of two passes comes near each other, so that items at several tolerances need no second search. */
+export interface Nearness {
+  readonly passes: readonly AgreementPass[];
+  /** Strands, or nodes, of each pass. */
+  readonly counts: readonly number[];
+  /** Indices of the passes in an order that depends on what they are, not on how they were given. */
+  readonly order: readonly number[];
+  /** Pairs of passes, the one earlier in that order first. */
+  readonly near: readonly { readonly p: number; readonly q: number; readonly pairs: readonly NearPair[] }[];
+}
+
+/** Which strands of which passes come near each other. @param most the largest tolerance to be asked for, millimetres. */
+export function strandNearness(passes: readonly AgreementPass[], most: number, merge: number): Nearness {
+  const lines = passes.map(({ set }) => set.trees.flatMap((tree) => linesOfCanonical(tree, canonicalTree(tree, merge))));
+  return nearness(
+    passes,
+    lines.map((items) => items.length),
+    (p, q) => nearPairs(lines[p]!, lines[q]!, most),
+  );
+}
+
+/** Which nodes of one type (origin, fork, end) come near each other. @param most the largest tolerance, millimetres. */
+export function nodeNearness(passes: readonly AgreementPass[], most: number, merge: number): Nearness {
+  const nodes = passes.map(({ set }) => canonicalPass(set, merge).nodes);
+  const near = (p: number, q: number): NearPair[] =>
+    nodes[p]!.flatMap((x, a) =>
+      nodes[q]!.flatMap((y, b) => {
+        const gateMm = distance(x.place, y.place);
+        // Affinity is still above nothing at the gate, so that any pair inside it can match.
+        return x.type === y.type && gateMm <= 1.1 * most ? [{ a, b, affinity: 1 - gateMm / (2 * most), gateMm }] : [];
+      }),
+    );
+  return nearness(
+    passes,
+    nodes.map((list) => list.length),
+    near,
+  );
+}
+
 /**
  * All passes' strands in items: at most one strand of each pass, greatest total affinity; two strands attract each other
  * only when at least half of each lies within the tolerance of the other. No consensus enters, and the order of the passes
@@ -78,50 +117,34 @@ export function canonicalPass(set: PlainSet, merge: number): CanonicalPass {
  * @param tolerance millimetres. @param merge millimetres, see {@link canonicalPass}.
  */
 export function strandItems(passes: readonly AgreementPass[], tolerance: number, merge: number): ItemTable {
-  const lines = passes.map(({ set }) => set.trees.flatMap((tree) => linesOfCanonical(tree, canonicalTree(tree, merge))));
-  return sortIntoItems(
-    passes,
-    lines.map((items) => items.length),
-    tolerance,
-    (p, q) => nearPairs(lines[p]!, lines[q]!, tolerance),
-  );
+  return itemsWithin(strandNearness(passes, tolerance, merge), tolerance);
 }
 
-/** All passes' nodes in items; nodes attract each other when of one type (origin, fork, end) and within the tolerance. */
+/** All passes' nodes in items; nodes attract each other when of one type and within the tolerance. */
 export function nodeItems(passes: readonly AgreementPass[], tolerance: number, merge: number): ItemTable {
-  const nodes = passes.map(({ set }) => canonicalPass(set, merge).nodes);
-  const near = (p: number, q: number): NearPair[] =>
-    nodes[p]!.flatMap((x, a) =>
-      nodes[q]!.flatMap((y, b) => {
-        const apart = distance(x.place, y.place);
-        // Affinity is still above nothing at the gate, so that any pair inside it can match.
-        if (x.type !== y.type || apart > 1.1 * tolerance) return [];
-        return [{ a, b, affinity: 1 - apart / (2 * tolerance), gateMm: apart }];
-      }),
-    );
-  return sortIntoItems(
-    passes,
-    nodes.map((list) => list.length),
-    tolerance,
-    near,
-  );
+  return itemsWithin(nodeNearness(passes, tolerance, merge), tolerance);
 }
 
-function sortIntoItems(
+function nearness(
   passes: readonly AgreementPass[],
   counts: readonly number[],
-  tolerance: number,
-  near: (p: number, q: number) => NearPair[],
-): ItemTable {
+  pairsOf: (p: number, q: number) => NearPair[],
+): Nearness {
   const order = ownOrder(passes);
+  const near = order.flatMap((q, rank) => order.slice(0, rank).map((p) => ({ p, q, pairs: pairsOf(p, q) })));
+  return { passes, counts, order, near };
+}
+
+/** Items at a tolerance not above the one that nearness was asked for. @param tolerance millimetres. */
+export function itemsWithin({ passes, counts, order, near }: Nearness, tolerance: number): ItemTable {
   const first: number[] = [];
   const passOf: number[] = [];
   order.forEach((p, rank) => {
     first[p] = passOf.length;
     for (let k = 0; k < counts[p]!; k++) passOf.push(rank);
   });
-  const pairs = order.flatMap((p, rank) =>
-    order.slice(0, rank).flatMap((q) => near(q, p).map((pair) => ({ ...pair, a: first[q]! + pair.a, b: first[p]! + pair.b }))),
+  const pairs = near.flatMap(({ p, q, pairs: found }) =>
+    found.map((pair) => ({ ...pair, a: first[p]! + pair.a, b: first[q]! + pair.b })),
   );
   const attractions: Attraction[] = pairs
     .filter((pair) => pair.gateMm <= tolerance)

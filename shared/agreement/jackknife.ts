@@ -30,9 +30,15 @@ const RESAMPLES = 2000;
  * five to nine the jackknife, called weak; ten or more the BCa bootstrap beside it. Inference is to new specimens by these
  * annotators.
  * @param count number of specimens. @param seed of the bootstrap.
+ * @param most the greatest value that the statistic can take, at which an interval is cut; null = none.
  * @source Efron & Tibshirani, An Introduction to the Bootstrap, 1993, chapters 11 and 14
  */
-export function overSpecimens(statistic: SpecimenStatistic, count: number, seed: number): OverSpecimens {
+export function overSpecimens(
+  statistic: SpecimenStatistic,
+  count: number,
+  seed: number,
+  most: number | null = null,
+): OverSpecimens {
   const everyone = Array.from({ length: count }, (_, i) => i);
   const reasons: Record<string, string> = {};
   const value = count === 0 ? null : statistic(everyone);
@@ -57,12 +63,18 @@ export function overSpecimens(statistic: SpecimenStatistic, count: number, seed:
   const centre = mean(left);
   const squares = left.reduce((sum, one) => sum + (one - centre) ** 2, 0);
   const standardError = Math.sqrt(((count - 1) / count) * squares);
+  if (standardError <= 1e-12 * Math.abs(value)) {
+    const why = "The number does not change with any of the specimens left out: there is no spread to make an interval from.";
+    Object.assign(reasons, { jackknife: why, bootstrap: why });
+    return { ...base, jackknife: null, standardError: 0, bootstrap: null };
+  }
   const half = tQuantile(0.975, count - 1) * standardError;
+  const isCut = most !== null && value + half > most;
   const jackknife: Interval = {
     low: value - half,
-    high: value + half,
+    high: isCut ? most : value + half,
     level: 0.95,
-    method: `delete-one-specimen jackknife, t with ${count - 1} degrees of freedom`,
+    method: `delete-one-specimen jackknife, t with ${count - 1} degrees of freedom${isCut ? `, cut at ${most}` : ""}`,
     conditionalOn: null,
     weak: count < ENOUGH_SPECIMENS,
   };

@@ -33,12 +33,14 @@ export function noAgreement(why: string): CategoryAgreement {
 
 /** Agreement with its standard error and the asymptotic interval that follows from it. */
 export function withStandardError(
-  value: number,
+  unclipped: number,
   observed: number,
   expected: number,
   se: number,
   items: number,
 ): CategoryAgreement {
+  // Sums of shares may round to a hair above 1.
+  const value = Math.min(1, unclipped);
   if (!Number.isFinite(se)) {
     const why = "A standard error needs two items or more.";
     return { value, observed, expected, se: null, interval: null, reasons: { se: why, interval: why } };
@@ -94,7 +96,7 @@ export function fleissKappa(counts: readonly (readonly number[])[]): CategoryAgr
   const observed = agreeing.reduce((sum, share) => sum + share, 0) / counts.length;
   if (1 - expected < 1e-12) return oneCategory(observed, expected);
   const why = "No standard error is given for Fleiss' kappa: see the interval over specimens.";
-  const value = (observed - expected) / (1 - expected);
+  const value = Math.min(1, (observed - expected) / (1 - expected));
   return { value, observed, expected, se: null, interval: null, reasons: { se: why, interval: why } };
 }
 

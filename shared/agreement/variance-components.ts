@@ -14,9 +14,7 @@ export interface LongValue {
 export type ComponentName = "specimen" | "item" | "annotator" | "pass" | "residual";
 
 /** Variances by source, in the value's unit squared; null where a source cannot be told from the rest. */
-export interface VarianceComponents {
-  /** Between specimens, between items of one specimen, between annotators, between one annotator's passes, and the rest. */
-  readonly variance: Readonly<Record<ComponentName, number | null>>;
+export interface VarianceComponents extends Readonly<Record<ComponentName, number | null>> {
   /** Sources whose estimate came out below zero and is given as 0. */
   readonly setToZero: readonly ComponentName[];
   readonly values: number;
@@ -38,14 +36,17 @@ const GROUPS: Readonly<Record<Exclude<ComponentName, "residual">, (value: LongVa
  */
 export function varianceComponents(values: readonly LongValue[]): VarianceComponents {
   const reasons: Record<string, string> = {};
-  const variance: Record<ComponentName, number | null> = {
+  const answer = {
     specimen: null,
     item: null,
     annotator: null,
     pass: null,
     residual: null,
+    setToZero: [] as ComponentName[],
+    values: values.length,
+    reasons,
   };
-  const answer = { variance, setToZero: [] as ComponentName[], values: values.length, reasons };
+  const variances: Partial<Record<ComponentName, number>> = {};
   const groupings = usable(values, reasons);
   if (values.length < 2 || groupings.every((grouping) => grouping.levels === values.length)) {
     reasons.residual = "Every value stands alone: error cannot be told from the rest.";
@@ -67,11 +68,12 @@ export function varianceComponents(values: readonly LongValue[]): VarianceCompon
     for (const { name } of equations) reasons[name] = "The sources overlap so that they cannot be told apart.";
     return answer;
   }
+  const nothing = 1e-12 * (squares(single, centred) / values.length);
   equations.forEach(({ name }, k) => {
-    variance[name] = Math.max(0, solution[k]!);
-    if (solution[k]! < 0) answer.setToZero.push(name);
+    variances[name] = solution[k]! <= nothing ? 0 : solution[k]!;
+    if (solution[k]! < -nothing) answer.setToZero.push(name);
   });
-  return answer;
+  return { ...answer, ...variances };
 }
 
 interface Grouping {

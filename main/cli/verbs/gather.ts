@@ -1,11 +1,12 @@
 import { readFile } from "node:fs/promises";
 import { gatherShares } from "#main/cli/shares.ts";
 import type { SharedVerb, Verb } from "#main/cli/verb.ts";
+import { agree } from "#main/cli/verbs/agree.ts";
 import { compare } from "#main/cli/verbs/compare.ts";
 import { score } from "#main/cli/verbs/score.ts";
 import { unreadable } from "#shared/errors.ts";
 
-const SHARED_VERBS: readonly SharedVerb[] = [compare, score];
+const SHARED_VERBS: readonly SharedVerb[] = [compare, score, agree];
 
 /** `tautline gather`: joins the shares of a work that was spread over machines. */
 export const gather: Verb = {
@@ -13,8 +14,8 @@ export const gather: Verb = {
   summary: "join the shares that a verb made with --shard",
   help: `tautline gather FILES... [--json]
 
-Joins the JSON Lines that 'compare' or 'score' printed with --shard 1/n to n/n, in any order, into what the verb would
-have said in one piece, with the same exit code. Every share must be there once.`,
+Joins the JSON Lines that 'compare', 'score' or 'agree' printed with --shard 1/n to n/n, in any order, into what the verb
+would have said in one piece, with the same exit code. Every share must be there once.`,
   options: {},
   positionals: [1, 100_000],
   async run({ positionals }) {

@@ -1,17 +1,18 @@
 import { iccValue } from "#shared/agreement/icc.ts";
 import type { Reasons } from "#shared/agreement/interval.ts";
 import { meanSquares } from "#shared/agreement/mean-squares.ts";
+import { positiveAgreementOf } from "#shared/agreement/positive-agreement.ts";
 import { type Selection, selectionOf, threeTolerances } from "#shared/agreement/selection.ts";
 import { type CategoricalAgreement, categoricalAgreement } from "#shared/agreement/study/categorical.ts";
 import { type ContinuousAgreement, continuousAgreement, type StudyQuantity } from "#shared/agreement/study/continuous.ts";
-import { type FoundItems, foundItems } from "#shared/agreement/study/found-items.ts";
+import { type FoundItems, foundItems, markedRows } from "#shared/agreement/study/found-items.ts";
 import { type IntraAgreement, intraAgreement } from "#shared/agreement/study/intra.ts";
 import { type MethodAgreement, methodAgreement } from "#shared/agreement/study/method.ts";
 import { type NodePlaces, nodePlaces } from "#shared/agreement/study/node-places.ts";
 import { comparePassPairs, type PairSummary, passPairs } from "#shared/agreement/study/pairwise.ts";
 import { matchedRows, type QuantityRows, totalRows } from "#shared/agreement/study/quantities.ts";
 import {
-  itemsOfSpecimen,
+  itemsAtTolerances,
   nodeTolerance,
   type SpecimenItems,
   type Study,
@@ -44,7 +45,12 @@ export interface ToleranceResult {
   readonly strands: readonly ({ readonly specimen: string } & Selection)[];
   readonly nodes: readonly ({ readonly specimen: string } & Selection)[];
   readonly positiveAgreement: number | null;
-  readonly quantities: readonly { readonly quantity: string; readonly completeRows: number; readonly iccA1: number | null }[];
+  readonly quantities: readonly {
+    readonly quantity: string;
+    readonly completeRows: number;
+    readonly iccA1: number | null;
+    readonly reasons: Reasons;
+  }[];
   readonly reasons: Reasons;
 }
 
@@ -71,6 +77,12 @@ export interface Agreement {
     }[];
   }[];
   readonly items: {
+    /** Strands of all specimens together; `matched` of those that all annotators of a specimen marked. */
+    readonly matched: number;
+    readonly union: number;
+    readonly share: number | null;
+    readonly nearGateShare: number | null;
+    readonly reasons: Reasons;
     readonly strands: readonly ({ readonly specimen: string } & Selection & ItemProof)[];
     readonly nodes: readonly ({ readonly specimen: string } & Selection & ItemProof)[];
     readonly atTolerances: readonly ToleranceResult[];
@@ -115,7 +127,9 @@ export function assembleAgreement(frame: Omit<Agreement, "pairwise">, pairwise: 
 export function agreementFrame(study: Study, options: AgreeOptions): Omit<Agreement, "pairwise"> {
   const { tolerance, merge } = options.compare;
   const { annotators, specimens } = study;
-  const items = specimens.map((specimen) => itemsOfSpecimen(specimen, tolerance, merge));
+  const tolerances = threeTolerances(tolerance);
+  const atAll = specimens.map((specimen) => itemsAtTolerances(specimen, tolerances, merge));
+  const items = atAll.map((list) => list[1]!);
   const quantities = quantitiesOf(study, items);
   const title = annotators.length === 2 ? "given that both marked it" : `given that all ${annotators.length} marked it`;
   const reasons: Record<string, string> = {};
@@ -127,14 +141,17 @@ export function agreementFrame(study: Study, options: AgreeOptions): Omit<Agreem
     annotators,
     totals: totalsOf(specimens),
     items: {
+      ...allTogether(
+        specimens,
+        items.map(({ strands }) => strands),
+      ),
       strands: specimens.map((specimen, s) => selectionRow(specimen, items[s]!.strands, tolerance)),
       nodes: specimens.map((specimen, s) => selectionRow(specimen, items[s]!.nodes, nodeTolerance(tolerance))),
-      atTolerances: threeTolerances(tolerance).map((one) =>
+      atTolerances: tolerances.map((one, k) =>
         atTolerance(
           study,
-          one === tolerance ? items : specimens.map((specimen) => itemsOfSpecimen(specimen, one, merge)),
+          atAll.map((list) => list[k]!),
           one,
-          options,
         ),
       ),
     },
@@ -210,18 +227,36 @@ function selectionRow(specimen: StudySpecimen, table: SpecimenItems["strands"], 
   return { specimen: specimen.name, ...selectionOf(table, comparedPasses(specimen), tolerance), exact, note, indirectPairs };
 }
 
-function atTolerance(study: Study, items: readonly SpecimenItems[], tolerance: number, options: AgreeOptions): ToleranceResult {
-  const { annotators, specimens } = study;
-  const { positive } = foundItems(annotators, specimens, items, 0, options.seed);
+/** Strand items of all specimens. */
+function allTogether(specimens: readonly StudySpecimen[], tables: readonly SpecimenItems["strands"][]) {
+  const rows = specimens.map((specimen, s) => selectionOf(tables[s]!, comparedPasses(specimen), 1));
+  const [matched, union] = [rows.reduce((sum, one) => sum + one.matched, 0), rows.reduce((sum, one) => sum + one.union, 0)];
+  const gates = tables.flatMap((table) => [...table.matchedGates, ...table.missedGates]);
+  const near = gates.filter((gate) => gate > 0.9).length;
+  const reasons: Record<string, string> = {};
+  if (union === 0) reasons.share = "Nobody marked anything.";
+  if (gates.length === 0) reasons.nearGateShare = "No two passes marked the same item.";
+  return {
+    matched,
+    union,
+    share: union === 0 ? null : matched / union,
+    nearGateShare: gates.length === 0 ? null : near / gates.length,
+    reasons,
+  };
+}
+
+function atTolerance(study: Study, items: readonly SpecimenItems[], tolerance: number): ToleranceResult {
+  const { specimens } = study;
+  const positive = positiveAgreementOf(specimens.flatMap((specimen, s) => markedRows(specimen, items[s]!, "strands")));
   const quantities = quantitiesOf(study, items).map(({ quantity, rows }) => {
     const complete = rows.flat().flatMap(({ values }) => (values.includes(null) ? [] : [values as readonly number[]]));
     const squares = meanSquares(complete);
-    return { quantity, completeRows: complete.length, iccA1: squares && iccValue("ICC(A,1)", squares) };
+    const iccA1 = squares && iccValue("ICC(A,1)", squares);
+    const why = squares ? "The items do not differ: there is no spread to compare the error with." : "Too few complete rows.";
+    return { quantity, completeRows: complete.length, iccA1, reasons: iccA1 === null ? { iccA1: why } : {} };
   });
-  const missing = quantities.filter((one) => one.iccA1 === null).map((one) => one.quantity);
   const reasons: Record<string, string> = {};
   if (positive.value === null) reasons.positiveAgreement = positive.reasons.value!;
-  if (missing.length > 0) reasons.iccA1 = `Too few complete rows, or no spread between them: ${missing.join(", ")}.`;
   return {
     toleranceMm: tolerance,
     nodeToleranceMm: nodeTolerance(tolerance),

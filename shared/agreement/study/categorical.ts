@@ -146,6 +146,7 @@ function agreementOnLabel(
         ).value,
       numbers.length,
       seed,
+      1,
     ),
   };
 }

@@ -63,6 +63,7 @@ export function continuousAgreement(
       },
       study.specimens.length,
       seed,
+      1,
     );
   const pairs = annotators.flatMap((a, i) => annotators.slice(i + 1).map((b, k) => ({ a, b, i, j: i + 1 + k })));
   const reasons: Record<string, string> = {};

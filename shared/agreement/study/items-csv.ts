@@ -1,4 +1,4 @@
-import { itemsOfSpecimen, type SpecimenItems, type Study, type StudyFile, studyOf } from "#shared/agreement/study/study.ts";
+import { itemsAtTolerances, type SpecimenItems, type Study, type StudyFile, studyOf } from "#shared/agreement/study/study.ts";
 import { writeCsv } from "#shared/formats/tables/csv.ts";
 
 const HEADER = ["specimen", "kind", "item", "annotator", "pass", "marked", "id", "length_mm", "x_mm", "y_mm", "z_mm"];
@@ -9,7 +9,7 @@ const HEADER = ["specimen", "kind", "item", "annotator", "pass", "marked", "id",
  */
 export function itemsCsv(files: readonly StudyFile[], tolerance: number, merge: number, method: string | null): string {
   const study = studyOf(files, merge, method);
-  const items = study.specimens.map((specimen) => itemsOfSpecimen(specimen, tolerance, merge));
+  const items = study.specimens.map((specimen) => itemsAtTolerances(specimen, [tolerance], merge)[0]!);
   return writeCsv([HEADER, ...longRows(study, items)]);
 }
 

@@ -3,9 +3,11 @@ import {
   type CanonicalPass,
   canonicalPass,
   type ItemTable,
-  nodeItems,
-  strandItems,
+  itemsWithin,
+  nodeNearness,
+  strandNearness,
 } from "#shared/agreement/items.ts";
+import { compareIds } from "#shared/compare/canonical.ts";
 import { TautlineError } from "#shared/errors.ts";
 import { type ChordaeFile, frameOf } from "#shared/formats/chordae/chordae-file.ts";
 import { type Measures, measureTrees } from "#shared/measure/measure-trees.ts";
@@ -74,7 +76,7 @@ export function studyOf(files: readonly StudyFile[], merge: number, method: stri
       measures: measureTrees(file),
     };
   });
-  passes.sort((a, b) => inOrder(a.specimen, b.specimen) || inOrder(a.annotator, b.annotator) || a.pass - b.pass);
+  passes.sort((a, b) => compareIds(a.specimen, b.specimen) || compareIds(a.annotator, b.annotator) || a.pass - b.pass);
   passes.forEach((pass, i) => {
     const before = passes[i - 1];
     if (before?.specimen === pass.specimen && before.annotator === pass.annotator && before.pass === pass.pass) {
@@ -82,7 +84,7 @@ export function studyOf(files: readonly StudyFile[], merge: number, method: stri
       throw new TautlineError("misuse", `${what}. Leave one of them out, or give it its own pass number.`, { what });
     }
   });
-  const annotators = [...new Set(passes.map((pass) => pass.annotator))].filter((one) => one !== method).sort(inOrder);
+  const annotators = [...new Set(passes.map((pass) => pass.annotator))].filter((one) => one !== method).sort(compareIds);
   const names = [...new Set(passes.map((pass) => pass.specimen))];
   const specimens = names.map((name): StudySpecimen => {
     const all = passes.filter((pass) => pass.specimen === name);
@@ -94,12 +96,12 @@ export function studyOf(files: readonly StudyFile[], merge: number, method: stri
   return { annotators, specimens, warnings };
 }
 
-/** Items of all passes over a specimen. @param tolerance of strands, millimetres; nodes have twice as much. */
-export function itemsOfSpecimen(specimen: StudySpecimen, tolerance: number, merge: number): SpecimenItems {
-  return {
-    strands: strandItems(specimen.passes, tolerance, merge),
-    nodes: nodeItems(specimen.passes, nodeTolerance(tolerance), merge),
-  };
+/** Items of all passes over a specimen at each tolerance of strands, millimetres; nodes have twice as much. */
+export function itemsAtTolerances(specimen: StudySpecimen, tolerances: readonly number[], merge: number): SpecimenItems[] {
+  const most = Math.max(...tolerances);
+  const strands = strandNearness(specimen.passes, most, merge);
+  const nodes = nodeNearness(specimen.passes, nodeTolerance(most), merge);
+  return tolerances.map((one) => ({ strands: itemsWithin(strands, one), nodes: itemsWithin(nodes, nodeTolerance(one)) }));
 }
 
 /** Tolerance of nodes for one of strands: people place a node along its string less surely than the string across. */
@@ -107,18 +109,15 @@ export function nodeTolerance(tolerance: number): number {
   return 2 * tolerance;
 }
 
-function inOrder(a: string, b: string): number {
-  return a < b ? -1 : a > b ? 1 : 0;
-}
-
 function specimenNames(files: readonly StudyFile[], warnings: string[]): Map<string, string> {
   const nameOfHash = new Map<string, string>();
-  for (const { file } of [...files].sort((a, b) => inOrder(a.file.volume?.name ?? "", b.file.volume?.name ?? ""))) {
+  for (const { file } of [...files].sort((a, b) => compareIds(a.file.volume?.name ?? "", b.file.volume?.name ?? ""))) {
     const { name, sha256 } = file.volume ?? {};
     if (sha256 && !nameOfHash.has(sha256)) nameOfHash.set(sha256, name ?? `scan ${sha256.slice(0, 12)}`);
     else if (sha256 && name && nameOfHash.get(sha256)!.startsWith("scan ")) nameOfHash.set(sha256, name);
   }
   const hashesOf = new Map<string, Set<string>>();
+  const silent: string[] = [];
   const out = new Map<string, string>();
   for (const { name, file } of files) {
     const { name: scan, sha256 } = file.volume ?? {};
@@ -126,8 +125,12 @@ function specimenNames(files: readonly StudyFile[], warnings: string[]): Map<str
     out.set(name, specimen);
     if (!hashesOf.has(specimen)) hashesOf.set(specimen, new Set());
     if (sha256) hashesOf.get(specimen)!.add(sha256);
-    else warnings.push(`${name} does not say which voxels it was drawn on; it is taken as ${specimen}.`);
+    else silent.push(name);
   }
+  if (silent.length > 0)
+    warnings.push(
+      `Without the hash of their voxels, taken by the name of their scan alone: ${silent.sort(compareIds).join(", ")}.`,
+    );
   for (const [specimen, hashes] of hashesOf)
     if (hashes.size > 1)
       warnings.push(`Passes over ${specimen} were drawn on ${hashes.size} different scans (voxel hashes differ).`);

@@ -47,9 +47,11 @@ describe("Bland-Altman limits with one difference a specimen", () => {
     expect(blandAltman([])).toMatchObject({ bias: null, reasons: { bias: expect.any(String) } });
   });
 
-  it("give limits without width when all differences are the same", () => {
+  it("give limits without width, and no interval, when all differences are the same", () => {
     const same = blandAltman([1, 2, 3, 4, 5, 6].map((a, i) => ({ specimen: `${i}`, a: a + 1, b: a })));
     expect(same).toMatchObject({ bias: 1, sd: 0, lowerLimit: 1, upperLimit: 1, slope: 0 });
+    expect(same).toMatchObject({ biasInterval: null, upperLimitInterval: null, slopeInterval: null });
+    expect(same.reasons.upperLimitInterval).toContain("no error");
   });
 });
 
@@ -72,7 +74,12 @@ describe("Bland-Altman limits with several differences a specimen", () => {
     expect(result.upperLimitInterval!.high).toBeCloseTo(5 + z * Math.sqrt(11) + outward, 4);
     expect(result.upperLimitInterval!.low).toBeCloseTo(5 + z * Math.sqrt(11) - inward, 4);
     expect(result.lowerLimitInterval!.low).toBeCloseTo(5 - z * Math.sqrt(11) - outward, 4);
-    expect(result.slopeInterval!.conditionalOn).toBe("these valves");
+  });
+
+  it("give the slope an interval that is conditional on these valves", () => {
+    const values = [3, 5, 4, 8, 7, 9];
+    const readings = values.map((a, i) => ({ specimen: `${i % 3}`, a, b: a + (i % 2) }));
+    expect(blandAltman(readings).slopeInterval!.conditionalOn).toBe("these valves");
   });
 
   it("cover the true limit about as often as they say", () => {

@@ -63,10 +63,19 @@ describe("intervals over specimens", () => {
     expect(overSpecimens(() => 1, 0, 1)).toMatchObject({ value: null, range: null });
   });
 
-  it("have no width, and are still numbers, when all specimens are the same", () => {
+  it("are refused in words when all specimens are the same", () => {
     const result = overSpecimens(meanOf(Array.from({ length: 12 }, () => 2)), 12, 1);
-    expect(result.jackknife).toMatchObject({ low: 2, high: 2 });
-    expect(result.bootstrap).toMatchObject({ low: 2, high: 2 });
+    expect(result).toMatchObject({ value: 2, standardError: 0, jackknife: null, bootstrap: null });
+    expect(result.reasons.bootstrap).toContain("no spread");
+  });
+
+  it("are cut at the greatest value that the number can take, and say so", () => {
+    const shares = [1, 1, 0.9, 1, 0.8, 1];
+    expect(overSpecimens(meanOf(shares), 6, 1).jackknife!.high).toBeGreaterThan(1);
+    expect(overSpecimens(meanOf(shares), 6, 1, 1).jackknife).toMatchObject({
+      high: 1,
+      method: expect.stringContaining("cut at 1"),
+    });
   });
 
   it("say so when the number cannot be given without one of the specimens", () => {
@@ -174,7 +183,8 @@ describe("variance components", () => {
     const values = rows.flatMap((row, i) =>
       row.map((value, j): LongValue => ({ specimen: `${i}`, item: "total", annotator: `${j}`, pass: 1, value })),
     );
-    const { variance, reasons } = varianceComponents(values);
+    const variance = varianceComponents(values);
+    const { reasons } = variance;
     expect(variance.specimen).toBeCloseTo((11.241667 - 1.019444) / 4, 5);
     expect(variance.annotator).toBeCloseTo((32.486111 - 1.019444) / 6, 5);
     expect(variance.residual).toBeCloseTo(1.019444, 5);
@@ -204,7 +214,7 @@ describe("variance components", () => {
         }
       });
     }
-    const { variance } = varianceComponents(values);
+    const variance = varianceComponents(values);
     expect(variance.residual).toBeCloseTo(0.25, 1);
     expect(Math.abs(variance.pass! - 0.5)).toBeLessThan(0.08);
     expect(Math.abs(variance.item! - 2)).toBeLessThan(0.5);
@@ -216,12 +226,12 @@ describe("variance components", () => {
   it("are reasons, not numbers, for single values and for nothing", () => {
     const one: LongValue = { specimen: "a", item: "1", annotator: "x", pass: 1, value: 3 };
     for (const values of [[], [one], [one, { ...one, specimen: "b" }]]) {
-      const { variance, reasons } = varianceComponents(values);
+      const { reasons, setToZero: _, ...variance } = varianceComponents(values);
       for (const [name, value] of Object.entries(variance)) {
         if (value === null) expect(reasons[name]).toBeTruthy();
         else expect(Number.isFinite(value)).toBe(true);
       }
     }
-    expect(varianceComponents([]).variance.residual).toBeNull();
+    expect(varianceComponents([]).residual).toBeNull();
   });
 });
