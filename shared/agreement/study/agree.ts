@@ -6,7 +6,7 @@ import { type Selection, selectionOf, threeTolerances } from "#shared/agreement/
 import { type CategoricalAgreement, categoricalAgreement } from "#shared/agreement/study/categorical.ts";
 import { type ContinuousAgreement, continuousAgreement, type StudyQuantity } from "#shared/agreement/study/continuous.ts";
 import { type FoundItems, foundItems, markedRows } from "#shared/agreement/study/found-items.ts";
-import { type IntraAgreement, intraAgreement } from "#shared/agreement/study/intra.ts";
+import { type IntraAgreement, intraAgreement, type OwnAgreement, ownAgreement } from "#shared/agreement/study/intra.ts";
 import { type MethodAgreement, methodAgreement } from "#shared/agreement/study/method.ts";
 import { type NodePlaces, nodePlaces } from "#shared/agreement/study/node-places.ts";
 import { comparePassPairs, type PairSummary, passPairs } from "#shared/agreement/study/pairwise.ts";
@@ -93,6 +93,8 @@ export interface Agreement {
   readonly categorical: readonly CategoricalAgreement[];
   readonly detection: FoundItems;
   readonly intra: readonly IntraAgreement[];
+  /** Each annotator's drift and agreement with the same annotator's second pass, over specimens. */
+  readonly own: readonly OwnAgreement[];
   readonly method: MethodAgreement | null;
   readonly clusteredBy: "specimen";
   readonly notes: readonly string[];
@@ -167,6 +169,7 @@ export function agreementFrame(study: Study, options: AgreeOptions): Omit<Agreem
     categorical: categoricalAgreement(annotators, specimens, items, options.seed),
     detection: foundItems(annotators, specimens, items, options.declinedByAll, options.seed),
     intra,
+    own: ownAgreement(annotators, specimens, items),
     method: options.method === null ? null : methodAgreement(options.method, specimens, options.margin, options.sameEngine),
     clusteredBy: "specimen",
     notes: notesOf(study),

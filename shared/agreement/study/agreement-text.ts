@@ -42,6 +42,9 @@ export function agreementText(found: Agreement): string {
     lines.push(
       `  ${one.annotator}, ${one.specimen}, passes ${one.passes.join(" and ")}${one.days === null ? "" : `, ${one.days.toFixed(0)} days apart`}: strands ${number(one.strands.value)}`,
     );
+  for (const { annotator, quantity, unit, drift } of found.own)
+    if (quantity === "total length" || quantity === "strand length")
+      lines.push(`  ${annotator}, ${quantity}: later minus earlier ${number(drift.bias)} ${unit}${between(drift.biasInterval)}`);
   if (found.method) {
     const { distances } = found.method;
     lines.push(

@@ -1,3 +1,5 @@
+import { type BlandAltman, blandAltman } from "#shared/agreement/bland-altman.ts";
+import { type IccTable, icc } from "#shared/agreement/icc.ts";
 import type { Reasons } from "#shared/agreement/interval.ts";
 import { mean } from "#shared/agreement/mean-squares.ts";
 import { type PositiveAgreement, positiveAgreement } from "#shared/agreement/positive-agreement.ts";
@@ -25,6 +27,20 @@ export interface IntraAgreement {
   readonly reasons: Reasons;
 }
 
+/** One annotator's later passes against the earlier ones over all specimens: drift, and agreement with oneself. */
+export interface OwnAgreement {
+  readonly annotator: string;
+  readonly quantity: string;
+  readonly unit: string;
+  readonly title: string;
+  readonly rows: number;
+  readonly specimens: number;
+  /** Of the first two passes over each specimen. */
+  readonly icc: IccTable;
+  /** Later minus earlier; its bias is the drift. */
+  readonly drift: BlandAltman;
+}
+
 const DAY_MS = 86_400_000;
 
 /** Every annotator's neighbouring passes over each specimen; never pooled with differences between annotators. */
@@ -35,6 +51,43 @@ export function intraAgreement(specimens: readonly StudySpecimen[], items: reado
       return earlier?.annotator === later.annotator ? [onePair(specimen, items[s]!, p - 1, p, earlier, later)] : [];
     }),
   );
+}
+
+/** Drift and agreement of each annotator with the same annotator's own second pass, over all specimens done twice. */
+export function ownAgreement(
+  annotators: readonly string[],
+  specimens: readonly StudySpecimen[],
+  items: readonly SpecimenItems[],
+): OwnAgreement[] {
+  return annotators.flatMap((annotator, j) => {
+    const twice = specimens.flatMap((specimen, s) => {
+      const i = specimen.firstPass[j]!;
+      const repeated = i >= 0 && specimen.passes[i + 1]?.annotator === annotator;
+      return repeated ? [{ name: specimen.name, rows: rowsOfBoth(specimen, items[s]!, i, i + 1) }] : [];
+    });
+    return (twice[0]?.rows ?? []).map(({ quantity, unit, on }, q): OwnAgreement => {
+      const perSpecimen = twice.map(({ name, rows }) => ({
+        name,
+        values: rows[q]!.rows.flatMap(({ values: [a, b] }) => (a == null || b == null ? [] : [[a, b] as const])),
+      }));
+      const all = perSpecimen.flatMap(({ values }) => values);
+      const single = perSpecimen.every(({ values }) => values.length <= 1);
+      return {
+        annotator,
+        quantity,
+        unit,
+        title: on === "specimen" ? "totals of each specimen" : "given that both passes marked it",
+        rows: all.length,
+        specimens: twice.length,
+        icc: icc(all, single ? "one-item-per-specimen" : "items-of-these-valves"),
+        drift: blandAltman(perSpecimen.flatMap(({ name, values }) => values.map(([a, b]) => ({ specimen: name, a: b, b: a })))),
+      };
+    });
+  });
+}
+
+function rowsOfBoth(specimen: StudySpecimen, items: SpecimenItems, i: number, j: number): QuantityRows[] {
+  return [...totalRows(specimen, [i, j]), ...matchedRows(specimen, items, [i, j])];
 }
 
 function onePair(
@@ -54,7 +107,7 @@ function onePair(
     passes: [earlier.pass, later.pass],
     days: Number.isFinite(days) ? days : null,
     strands: positiveAgreement(count(true, true), count(true, false), count(false, true)),
-    quantities: [...totalRows(specimen, [i, j]), ...matchedRows(specimen, items, [i, j])].map(differences),
+    quantities: rowsOfBoth(specimen, items, i, j).map(differences),
     reasons: Number.isFinite(days) ? {} : { days: "One of the two files does not say when it was made." },
   };
 }

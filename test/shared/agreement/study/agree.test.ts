@@ -127,6 +127,16 @@ describe("the agreement of a study", () => {
     expect(found.passes.filter(({ role }) => role === "repeat")).toHaveLength(15);
   });
 
+  it("finds no drift where the generator put none, and says so for each annotator and quantity", () => {
+    expect(found.own).toHaveLength(3 * found.continuous.length);
+    for (const one of found.own.filter(({ quantity }) => quantity === "insertions")) expect(one.drift.bias).toBe(0);
+    for (const one of found.own.filter(({ quantity }) => quantity === "strand length")) {
+      // hands sway by 0.03 mm
+      expect(Math.abs(one.drift.bias!)).toBeLessThan(0.05);
+      expect(one.icc.forms[1]!.value!).toBeGreaterThan(0.99);
+    }
+  });
+
   it("compares each two annotators on each specimen, to the end", () => {
     expect(found.pairwise).toHaveLength(15);
     for (const pair of found.pairwise) expect(pair.exact).toBe(true);
