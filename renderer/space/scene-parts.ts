@@ -29,7 +29,7 @@ import type { NodeKind, TreeNode } from "#shared/trees/document.ts";
 
 /** Strands thinner than this would vanish at the distance from which a whole valve is seen. */
 const THINNEST_MM = 0.11;
-/** Radius of quiet strands, whatever they measure, and the least of loud ones. */
+/** Radii of quiet and of loud strands, whatever they measure: they are lines to be told apart, not the strings themselves. */
 const QUIET_MM = 0.06;
 const LOUD_MM = 0.17;
 /** Rings of a tube stand this far apart. */
@@ -68,8 +68,15 @@ export function strandsPart(strands: readonly DrawnStrand[], colours: ViewColour
 
 function radiiInSpace({ radii, doubtful, traced, manner }: DrawnStrand): ArrayLike<number> {
   if (manner === "quiet") return [];
-  if (manner === "loud") return radii.map((radius) => Math.max(Number.isNaN(radius) ? 0 : radius, LOUD_MM));
+  if (manner === "loud") return radii.map(() => LOUD_MM);
   return doubtful || !traced ? [] : radii;
+}
+
+/** A hull stands off what is drawn by as much for every strand. */
+function hullRadii({ radii, manner }: DrawnStrand): ArrayLike<number> {
+  const drawn = (radius: number) =>
+    manner === "quiet" ? QUIET_MM : manner === "loud" ? LOUD_MM : Number.isNaN(radius) ? 0 : radius;
+  return radii.map((radius) => drawn(radius) + 0.18);
 }
 
 function quietRgb(colours: ViewColours): [number, number, number] {
@@ -81,7 +88,7 @@ function quietRgb(colours: ViewColours): [number, number, number] {
 export function selectionPart(strands: readonly DrawnStrand[], colours: ViewColours): Object3D {
   const hull = strands.map((strand) => ({
     points: strand.points,
-    radii: strand.radii.map((radius) => (Number.isNaN(radius) ? 0 : radius) + 0.18),
+    radii: hullRadii(strand),
     colour: rgb(colours.accent),
     dashMm: [],
   }));

@@ -32,10 +32,14 @@ export function comparisonReport(input: ComparisonReportInput): string {
   const { costs } = comparison;
   const groups = differenceGroups(comparison, a, b);
   const rules = `Costs: ${costs.preset === "geometry" ? `places and lengths (${costs.positionScale} mm of displacement cost as much as an insertion)` : "structure alone"}. Origins ${costs.origin}. Forks nearer together than ${costs.merge} mm count as one. Lines and places agree within ${input.toleranceMm} mm.`;
+  const whole = wholeNumbers(comparison.whole, input.toleranceMm);
   const numbers = htmlTable(
     "The whole sets",
-    ["number", "value", "what it means"],
-    wholeNumbers(comparison.whole, input.toleranceMm).map(({ label, text, definition }) => [label, text, definition]),
+    ["number", "value"],
+    whole.map(({ label, text }) => [label, text]),
+  );
+  const meanings = whole.map(
+    ({ label, definition }) => `<li><strong>${escapeHtml(label)}</strong>: ${escapeHtml(definition)}</li>`,
   );
   const body = `
 <h1>Side by side: ${escapeHtml(input.specimen)}</h1>
@@ -44,6 +48,7 @@ export function comparisonReport(input: ComparisonReportInput): string {
 <p class="cautions">${escapeHtml(REPORT_CAUTIONS)}</p>
 ${comparison.warnings.map((warning) => `<p>${escapeHtml(warning)}</p>`).join("\n")}
 ${numbers}
+<ul>${meanings.join("")}</ul>
 <h2>Differences by kind</h2>
 ${kinds(groups)}
 <h2>Every difference</h2>

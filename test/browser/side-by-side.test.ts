@@ -145,6 +145,19 @@ describe("two passes of the demo valve side by side", () => {
     }
   });
 
+  it("says when the comparison cannot be made, and makes it when asked again", async () => {
+    const { page } = open;
+    await page.route("**/compare-worker*", (route) => route.abort());
+    await page.getByLabel("merge forks below").selectOption("0.6 mm");
+    await page.getByText(/^The comparison failed: /).waitFor();
+    expect(await page.locator(".difference-row").count()).toBe(0);
+    await page.unroute("**/compare-worker*");
+    await page.getByRole("button", { name: "compare again" }).click();
+    await page.locator(".difference-row").first().waitFor();
+    await page.getByLabel("merge forks below").selectOption("0.3 mm");
+    await page.locator(".difference-row").first().waitFor();
+  });
+
   it("compares anew with other costs, and comes back after a reload by its address", async () => {
     const { page } = open;
     await page.getByLabel("costs").selectOption("structure");

@@ -4,10 +4,13 @@ import type { Comparison } from "#shared/compare/comparison.ts";
 import type { Difference, DifferenceKind } from "#shared/compare/differences.ts";
 import { refine } from "#shared/geometry/polyline.ts";
 import { pointMm, type Vec3 } from "#shared/geometry/types.ts";
+import { distance } from "#shared/geometry/vec3.ts";
 import { DIFFERENCE_GLYPHS } from "#shared/marks/difference-glyph.ts";
 import { type DrawnStrand, drawnStrands } from "#shared/marks/drawn-strand.ts";
 import type { MarkedPlace } from "#shared/marks/marked-place.ts";
+import { NODE_GLYPHS } from "#shared/marks/node-glyph.ts";
 import type { TreeMark } from "#shared/marks/tree-mark.ts";
+import type { NodeId, TreeDocument } from "#shared/trees/document.ts";
 
 /** How a side's own parts are drawn: colour and line pattern together, so that neither has to be seen alone. */
 export const SIDE_MARKS: Readonly<Record<SideName, TreeMark>> = { a: { colour: 0, dash: 0 }, b: { colour: 1, dash: 1 } };
@@ -19,6 +22,8 @@ export interface SideStrand extends DrawnStrand {
 
 /** Straight lines are cut this finely, so that the piece that differs can be told, millimetres. */
 const FINE_MM = 0.1;
+/** A node this near to a difference's own place needs no mark of its own, millimetres. */
+const SAME_PLACE_MM = 0.1;
 
 /** Both sets in one picture: what both have quiet, what only one has loud. Without a comparison all is quiet. */
 export function pairStrands(a: Side, b: Side, comparison: Comparison | null, toleranceMm: number): SideStrand[] {
@@ -51,14 +56,20 @@ export function withPicked(strands: readonly SideStrand[], side: SideName, line:
   return strands.map((strand) => ({ ...strand, picked: strand.side === side && strand.id === line }));
 }
 
-/** Differences as marked places; each keeps the colour of the side that has what the other lacks. */
-export function markedPlaces(differences: readonly Difference[], current: string | null): MarkedPlace[] {
-  return differences.map(({ key, kind, at }) => ({
-    at: pointMm(at[0], at[1], at[2]),
-    glyph: DIFFERENCE_GLYPHS[kind],
-    colour: sideOfKind(kind) === null ? null : SIDE_MARKS[sideOfKind(kind)!].colour,
-    picked: key === current,
+/**
+ * Differences as marked places; each keeps the colour of the side that has what the other lacks. Where the current one is a
+ * node that lies elsewhere in B, B's own node is marked as well.
+ */
+export function markedPlaces(differences: readonly Difference[], current: Difference | null, b: TreeDocument): MarkedPlace[] {
+  const places = differences.map((difference) => ({
+    at: pointMm(difference.at[0], difference.at[1], difference.at[2]),
+    glyph: DIFFERENCE_GLYPHS[difference.kind],
+    colour: sideOfKind(difference.kind) === null ? null : SIDE_MARKS[sideOfKind(difference.kind)!].colour,
+    picked: difference === current,
   }));
+  const image = current === null || current.a === null ? undefined : b.nodes.get(current.b as NodeId);
+  if (image === undefined || distance(image.position, current!.at) < SAME_PLACE_MM) return places;
+  return [...places, { at: image.position, glyph: NODE_GLYPHS[image.kind], colour: SIDE_MARKS.b.colour, picked: false }];
 }
 
 /** The side that alone has what a kind of difference is about; null where both have it. */

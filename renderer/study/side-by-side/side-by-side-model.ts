@@ -99,7 +99,7 @@ export class SideBySideModel {
     this.lineFacts = computed(() => this.factsOfConcerned());
     const unpicked = computed(() => pairStrands(this.a, this.b, this.comparison.value, TOLERANCE_MM));
     this.strands = computed(() => withPicked(unpicked.value, this.stripSide.value, this.concerned.value?.line.id ?? null));
-    this.places = computed(() => markedPlaces(this.differences.value, this.current.value?.key ?? null));
+    this.places = computed(() => markedPlaces(this.differences.value, this.current.value, this.b.document));
     this.stop = effect(() => {
       this.compare(this.options.value);
     });
