@@ -1,5 +1,5 @@
 import { chiSquareQuantile, normalQuantile, tQuantile } from "#shared/agreement/distributions.ts";
-import { type Interval, intervalOn, type Reasons } from "#shared/agreement/interval.ts";
+import { type Interval, intervalOn, type Reasons, tooFewSpecimens } from "#shared/agreement/interval.ts";
 import { mean, variance } from "#shared/agreement/mean-squares.ts";
 import { noncentralTQuantile } from "#shared/agreement/noncentral-t.ts";
 
@@ -67,13 +67,30 @@ function refuse(reasons: Record<string, string>, keys: readonly string[], why: s
 function limitsOf(perSpecimen: readonly (readonly number[])[], reasons: Record<string, string>): Limits {
   const single = perSpecimen.every((group) => group.length === 1);
   const method = single ? "one difference a specimen, exact limits" : "several differences a specimen, MOVER intervals";
-  if (perSpecimen.length < 2) {
-    const bias = perSpecimen.length === 0 ? null : mean(perSpecimen[0]!);
-    const why = `Limits of agreement need two specimens or more; there is ${perSpecimen.length === 0 ? "none" : "one"}.`;
-    refuse(reasons, [...Object.keys(NO_LIMITS), ...(bias === null ? ["bias"] : [])], why);
-    return { ...NO_LIMITS, bias, method };
-  }
+  if (perSpecimen.length < 2) return withinOneValve(perSpecimen[0] ?? [], reasons);
   return single ? exactLimits(perSpecimen.flat(), method, reasons) : clusteredLimits(perSpecimen, method, reasons);
+}
+
+/** Of one specimen: limits within this valve where it has several readings, and never an interval. */
+function withinOneValve(differences: readonly number[], reasons: Record<string, string>): Limits {
+  const bias = differences.length === 0 ? null : mean(differences);
+  if (differences.length < 2) {
+    const why = `Limits of agreement need two readings or more; there is ${bias === null ? "none" : "one"}.`;
+    refuse(reasons, [...Object.keys(NO_LIMITS), ...(bias === null ? ["bias"] : [])], why);
+    return { ...NO_LIMITS, bias, method: "no limits" };
+  }
+  refuse(reasons, ["biasInterval", "lowerLimitInterval", "upperLimitInterval"], tooFewSpecimens(1)!);
+  reasons.sdBetween = "With one specimen, how specimens differ cannot be told.";
+  const sd = Math.sqrt(variance(differences));
+  return {
+    ...NO_LIMITS,
+    bias,
+    sd,
+    sdWithin: sd,
+    lowerLimit: bias! - Z() * sd,
+    upperLimit: bias! + Z() * sd,
+    method: "one specimen: limits within this valve",
+  };
 }
 
 const Z = () => normalQuantile(0.975);

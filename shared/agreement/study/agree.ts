@@ -4,13 +4,12 @@ import { meanSquares } from "#shared/agreement/mean-squares.ts";
 import { positiveAgreementOf } from "#shared/agreement/positive-agreement.ts";
 import { type Selection, selectionOf, threeTolerances } from "#shared/agreement/selection.ts";
 import { type CategoricalAgreement, categoricalAgreement } from "#shared/agreement/study/categorical.ts";
-import { type ContinuousAgreement, continuousAgreement, type StudyQuantity } from "#shared/agreement/study/continuous.ts";
+import { type ContinuousAgreement, continuousAgreement } from "#shared/agreement/study/continuous.ts";
 import { type FoundItems, foundItems, markedRows } from "#shared/agreement/study/found-items.ts";
 import { type IntraAgreement, intraAgreement, type OwnAgreement, ownAgreement } from "#shared/agreement/study/intra.ts";
 import { type MethodAgreement, methodAgreement } from "#shared/agreement/study/method.ts";
 import { type NodePlaces, nodePlaces } from "#shared/agreement/study/node-places.ts";
 import { comparePassPairs, type PairSummary, passPairs } from "#shared/agreement/study/pairwise.ts";
-import { matchedRows, type QuantityRows, totalRows } from "#shared/agreement/study/quantities.ts";
 import {
   itemsAtTolerances,
   nodeTolerance,
@@ -20,7 +19,7 @@ import {
   type StudySpecimen,
   studyOf,
 } from "#shared/agreement/study/study.ts";
-import type { LongValue } from "#shared/agreement/variance-components.ts";
+import { comparedPasses, quantitiesOf } from "#shared/agreement/study/study-quantities.ts";
 import type { CompareOptions, TimeLeft } from "#shared/compare/comparison.ts";
 
 export interface AgreeOptions {
@@ -175,54 +174,6 @@ export function agreementFrame(study: Study, options: AgreeOptions): Omit<Agreem
     notes: notesOf(study),
     reasons,
   };
-}
-
-/** Which of a specimen's passes are compared: each annotator's first. */
-function comparedPasses(specimen: StudySpecimen): number[] {
-  return specimen.firstPass.filter((p) => p >= 0);
-}
-
-/** Quantities over all specimens, values spread to the study's annotators. */
-function quantitiesOf({ annotators, specimens }: Study, items: readonly SpecimenItems[]): StudyQuantity[] {
-  const first = specimens.map((specimen, s) => {
-    const compared = comparedPasses(specimen);
-    const spread = (values: readonly (number | null)[]) =>
-      annotators.map((_, j) => (specimen.firstPass[j]! < 0 ? null : values[compared.indexOf(specimen.firstPass[j]!)]!));
-    return rowsOf(specimen, items[s]!, compared).map((quantity) => ({
-      ...quantity,
-      rows: quantity.rows.map((row) => ({ ...row, values: spread(row.values) })),
-      coverage: quantity.coverage && spread(quantity.coverage),
-    }));
-  });
-  const every = specimens.map((specimen, s) =>
-    rowsOf(
-      specimen,
-      items[s]!,
-      specimen.passes.map((_, p) => p),
-    ),
-  );
-  return (first[0] ?? []).map(({ quantity, unit, on, coverage }, q) => ({
-    quantity,
-    unit,
-    on,
-    specimens: specimens.map(({ name }) => name),
-    rows: first.map((list) => list[q]!.rows),
-    coverage: coverage && first.map((list) => list[q]!.coverage!),
-    long: specimens.flatMap((specimen, s) => longValues(specimen, every[s]![q]!)),
-  }));
-}
-
-function rowsOf(specimen: StudySpecimen, items: SpecimenItems, compared: readonly number[]): QuantityRows[] {
-  return [...totalRows(specimen, compared), ...matchedRows(specimen, items, compared)];
-}
-
-function longValues(specimen: StudySpecimen, { rows }: QuantityRows): LongValue[] {
-  return rows.flatMap(({ item, values }) =>
-    values.flatMap((value, p) => {
-      const { annotator, pass } = specimen.passes[p]!;
-      return value === null ? [] : [{ specimen: specimen.name, item, annotator, pass, value }];
-    }),
-  );
 }
 
 function selectionRow(specimen: StudySpecimen, table: SpecimenItems["strands"], tolerance: number) {

@@ -44,6 +44,10 @@ describe("Bland-Altman limits with one difference a specimen", () => {
     const one = blandAltman([{ specimen: "a", a: 1, b: 2 }]);
     expect(one).toMatchObject({ bias: -1, sd: null, lowerLimit: null, slope: null });
     expect(one.reasons.lowerLimit).toContain("there is one");
+    const within = blandAltman([1, 2, 3].map((a) => ({ specimen: "a", a, b: 0 })));
+    expect(within).toMatchObject({ bias: 2, sd: 1, sdWithin: 1, sdBetween: null, lowerLimitInterval: null });
+    expect(within.upperLimit).toBeCloseTo(2 + 1.959964, 6);
+    expect(within.reasons.upperLimitInterval).toContain("One specimen says nothing");
     expect(blandAltman([])).toMatchObject({ bias: null, reasons: { bias: expect.any(String) } });
   });
 
