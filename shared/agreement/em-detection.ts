@@ -120,6 +120,8 @@ export function detectionRates(decisions: Decisions, prior: number | null, seed:
     );
   const positive = decisions.flat().filter(Boolean).length / (decisions.length * candidates);
   if (positive === 0) return refuse("Nobody marked any candidate.");
+  if (prior !== null && !(prior > 0 && prior < 1))
+    return refuse(`The share of candidates that are real must lie between 0 and 1; it was set to ${prior}.`);
   const fixed = prior ?? positive;
   const options: EmOptions = { prior: fixed, beta: 2, iterations: 5000 };
   const random = new SeededRandom(seed);

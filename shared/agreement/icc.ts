@@ -133,7 +133,8 @@ function endsOf(form: IccForm, s: MeanSquares): [number, number] {
       return agreementEnds(s);
     case "ICC(A,k)": {
       const [low, high] = agreementEnds(s);
-      return [(k * low) / (1 + (k - 1) * low), (k * high) / (1 + (k - 1) * high)];
+      const step = (r: number) => (1 + (k - 1) * r > 0 ? (k * r) / (1 + (k - 1) * r) : Number.NaN);
+      return [step(low), step(high)];
     }
   }
 }

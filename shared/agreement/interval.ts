@@ -50,7 +50,11 @@ export function intervalOn(
   if (refusal) return { interval: null, reason: refusal };
   const [low, high] = ends();
   if (!Number.isFinite(low) || !Number.isFinite(high))
-    return { interval: null, reason: "The values leave no error from which an interval could be made." };
+    return {
+      interval: null,
+      reason:
+        "No interval can be made from these values: no error is left, or the number lies too far below zero to have a meaning.",
+    };
   const conditionalOn = basis === "one-item-per-specimen" ? null : THESE_VALVES;
   const weak = basis === "one-item-per-specimen" && units < ENOUGH_SPECIMENS;
   return { interval: { low, high, level, method, conditionalOn, weak }, reason: null };

@@ -63,6 +63,7 @@ describe("rates without a reference", () => {
     expect(detectionRates(allMarked, null, 1).reasons.specificity).toContain("declined by all");
     expect(detectionRates([[false], [false], [false]], null, 1).reasons.best).toContain("Nobody marked");
     expect(detectionRates([], null, 1).best).toBeNull();
+    expect(detectionRates(TOY, 1, 1).reasons.best).toContain("it was set to 1");
   });
 
   it("come near the rates that simulated annotators have", () => {
