@@ -86,7 +86,7 @@ describe("two passes of the demo valve side by side", () => {
       expect(await page.locator(".strip-title").textContent()).toMatch(difference.a === null ? /^B / : /^A /);
     }
     const before = await page.locator(".strip-title").textContent();
-    await page.keyboard.press("t");
+    await page.keyboard.press("Shift+T");
     await page.waitForFunction((text) => document.querySelector(".strip-title")?.textContent !== text, before);
     await page.keyboard.press("Shift+Q");
     await page

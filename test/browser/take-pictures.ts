@@ -7,7 +7,7 @@ import { openPage, startProgram } from "#test/browser/running-program.ts";
 /** A long time for a slow machine; every wait ends as soon as there is something to see. */
 const PATIENCE_MS = 120_000;
 
-/** Takes the pictures of the README into `folder`: the shelf, the desk in both themes and sizes, and tracing under way. */
+/** Takes the pictures of the README into `folder`: the shelf, side by side, the desk in both themes and sizes, and tracing under way. */
 export async function takePictures(folder: string, say: (line: string) => void): Promise<void> {
   await mkdir(folder, { recursive: true });
   const program = await startProgram();
@@ -23,6 +23,9 @@ export async function takePictures(folder: string, say: (line: string) => void):
     const first = page.getByRole("button", { name: /^Open AN-1/ });
     await first.waitFor({ timeout: PATIENCE_MS });
     await picture("shelf");
+    await sideBySide(page);
+    await picture("side-by-side");
+    await page.getByRole("button", { name: "shelf", exact: true }).click();
     await first.click();
     await deskReady(page);
     await page.getByText("ALPM-07", { exact: true }).first().click();
@@ -47,6 +50,14 @@ export async function takePictures(folder: string, say: (line: string) => void):
     await close();
     await program.stop();
   }
+}
+
+/** Compares the first two passes and goes to the second difference. */
+async function sideBySide(page: Page): Promise<void> {
+  await page.getByRole("button", { name: /^Side by side/ }).click();
+  await page.getByRole("button", { name: "Compare", exact: true }).click();
+  await page.locator(".difference-row").first().waitFor({ timeout: PATIENCE_MS });
+  for (let k = 0; k < 2; k++) await page.keyboard.press("q");
 }
 
 /** Nothing on the page is waiting any more, as far as can be seen. */

@@ -59,7 +59,7 @@ export function ExportComparisonSheet({ model, close }: { readonly model: SideBy
               checked={format === entry.format}
               onChange={() => setFormat(entry.format)}
             />
-            <span>
+            <span class="radio-words">
               <strong>{entry.title}</strong>
               <span class="soft">{entry.words}</span>
             </span>

@@ -25,7 +25,7 @@ export interface SideBySideContext extends ViewContext {
 const always = () => true;
 const hasDifferences = ({ pair }: SideBySideContext) => pair.count() > 0;
 
-/** Every command of the screen; keys that the desk has as well mean the same here. */
+/** Every command of the screen; a key that the desk has as well does the like here. */
 export const SIDE_BY_SIDE_COMMANDS: readonly Command<SideBySideContext>[] = [
   {
     name: "next-difference",
@@ -49,7 +49,7 @@ export const SIDE_BY_SIDE_COMMANDS: readonly Command<SideBySideContext>[] = [
     name: "other-side",
     group: "Go",
     label: "The strip shows the other side",
-    keys: ["T"],
+    keys: ["Shift+T"],
     enabled: hasDifferences,
     perform: ({ pair }) => pair.otherSide(),
     foot: (context) => (hasDifferences(context) ? `strip of ${context.pair.stripSide() === "a" ? "B" : "A"}` : null),

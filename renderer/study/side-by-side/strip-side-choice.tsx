@@ -11,7 +11,7 @@ export function StripSideChoice({ model }: { readonly model: SideBySideModel }) 
           key={side}
           type="button"
           class="button"
-          title={`Strand of ${model[side].label} (T)`}
+          title={`Strand of ${model[side].label} (Shift + T)`}
           aria-pressed={model.stripSide.value === side}
           onClick={() => {
             model.stripSide.value = side;

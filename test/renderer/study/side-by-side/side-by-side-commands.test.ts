@@ -17,6 +17,21 @@ describe("the commands of side by side", () => {
     expect(commandFor(press("q"))?.name).toBe("next-finding");
   });
 
+  it("share with the desk only keys that do the like there", () => {
+    const desk = new Map(COMMANDS.flatMap((command) => command.keys.map((key) => [key, command.name] as const)));
+    const shared = SIDE_BY_SIDE_COMMANDS.filter((command) => command.group !== "See").flatMap((command) =>
+      command.keys.filter((key) => desk.has(key)).map((key) => [command.name, desk.get(key)]),
+    );
+    expect(shared).toEqual([
+      ["next-difference", "next-finding"],
+      ["previous-difference", "previous-finding"],
+      ["stop-comparing", "leave"],
+      ["export-comparison", "export"],
+      ["choose-sides", "take-in-trees"],
+      ["key-help", "key-help"],
+    ]);
+  });
+
   it("use a key that changes what is seen for nothing else than the desk does", () => {
     const seen = COMMANDS.filter((command) => command.group === "See");
     for (const command of seen) {
