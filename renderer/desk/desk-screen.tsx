@@ -1,6 +1,8 @@
 import { useEffect, useMemo } from "preact/hooks";
 import { FootLine } from "#renderer/desk/lines/foot-line.tsx";
 import { HeadLine } from "#renderer/desk/lines/head-line.tsx";
+import { PlaybackBar } from "#renderer/desk/lines/playback-bar.tsx";
+import { WhyReadOnly } from "#renderer/desk/lines/why-read-only.tsx";
 import { deskContext } from "#renderer/desk/model/desk-context.ts";
 import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
 import { listenToKeys } from "#renderer/desk/model/keys.ts";
@@ -21,11 +23,8 @@ export function DeskScreen({ model }: { readonly model: DeskModel }) {
   return (
     <div class="desk">
       <HeadLine model={model} context={context} />
-      {model.editor.readOnly ? (
-        <div class="banner" role="status">
-          Another window has this pass open for writing. This one shows it as it grows; nothing can be changed here.
-        </div>
-      ) : null}
+      <WhyReadOnly model={model} />
+      <PlaybackBar model={model} />
       <main class="desk-panes">
         <StripPane model={model} />
         <SectionPane model={model} />

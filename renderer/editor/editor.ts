@@ -1,9 +1,10 @@
 import { batch, computed, effect, type ReadonlySignal, type Signal, signal } from "@preact/signals";
 import { NO_SELECTION, type Selection, selectLine, selectNode, stillThere } from "#renderer/editor/selection.ts";
 import { EditQueue } from "#renderer/editor/session/edit-queue.ts";
-import type { Intent, LeavePlace } from "#renderer/editor/session/intent.ts";
+import type { Intent, LeavePlace, StrandPlace } from "#renderer/editor/session/intent.ts";
 import type { PassKeeper } from "#renderer/editor/session/pass-keeper.ts";
 import { performIntent } from "#renderer/editor/session/perform.ts";
+import { Playback } from "#renderer/editor/session/playback.ts";
 import type { Stage } from "#renderer/editor/session/stage.ts";
 import { afterLabelling, type Sticky, stickyOf } from "#renderer/editor/session/sticky-labels.ts";
 import { type AskSolve, StrandSolver } from "#renderer/editor/session/strand-solver.ts";
@@ -17,7 +18,7 @@ import type { Pointing, Under } from "#renderer/editor/view-control.ts";
 import { roundPoint } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
 import { otherEnd, strandsAt } from "#shared/trees/adjacency.ts";
-import type { EndKind, NodeId, TreeDocument } from "#shared/trees/document.ts";
+import type { EndKind, NodeId, StrandId, TreeDocument } from "#shared/trees/document.ts";
 import type { Anchor } from "#shared/trees/edits/anchor.ts";
 import type { LineId } from "#shared/trees/edits/edit-plan.ts";
 import type { NodeLabels } from "#shared/trees/edits/node-labels.ts";
@@ -64,6 +65,11 @@ export class Editor {
   readonly keeper: PassKeeper;
   /** Counts changes of the history, for what is read from the keeper directly. */
   readonly revision = signal(0);
+  /** A finished pass is looked at; nothing in it changes until it is under way again. */
+  readonly isFinished = signal(false);
+  readonly playback = new Playback();
+  /** What was selected when the playback began. */
+  private selectedBefore: Selection | null = null;
   private readonly documentSignal: Signal<TreeDocument>;
   private readonly underWaySignal: Signal<UnderWay> = signal<UnderWay>(NOTHING);
   private readonly queue: EditQueue;
@@ -105,14 +111,19 @@ export class Editor {
       keep: (waiting) => places.keepWaiting({ underWay: underWay.value, waiting }),
     });
     this.projection = computed(() =>
-      project(
-        this.documentSignal.value,
-        this.underWaySignal.value,
-        this.queue.waiting.value.map((queued) => queued.intent),
-      ),
+      this.playback.shown.value === null
+        ? project(
+            this.documentSignal.value,
+            this.underWaySignal.value,
+            this.queue.waiting.value.map((queued) => queued.intent),
+          )
+        : project(this.documentSignal.value, NOTHING, []),
     );
     this.disposers.push(
       keeper.onChange(() => this.historyChanged()),
+      this.playback.shown.subscribe((played) => {
+        if (played !== null) this.showDocument(played.document);
+      }),
       effect(() => {
         const { leg, kind } = this.projection.value;
         const tip = tipOf(this.projection.value);
@@ -139,7 +150,11 @@ export class Editor {
     return this.snapper.snapped;
   }
   get readOnly(): boolean {
-    return this.keeper.readOnly;
+    return this.keeper.readOnly || this.isFinished.value || this.playback.shown.value !== null;
+  }
+  /** Edits that wait come first: they would change the history while it is played. */
+  get canPlayBack(): boolean {
+    return this.keeper.edits > 0 && this.queue.waiting.value.length === 0;
   }
 
   /** Asks for an edit. It is carried out in its turn; nothing is lost while the server is slow or away. */
@@ -212,6 +227,40 @@ export class Editor {
     return node === undefined ? null : { node };
   }
 
+  /**
+   * The strand under the pointer and the place on it; when it may have been divided since it was seen, the sight of it, by which
+   * it is found again when its turn comes. Null when the pointer is on none.
+   */
+  strandPlace(): StrandPlace | null {
+    const { pointing } = this;
+    const under = pointing?.under;
+    if (pointing == null || under?.kind !== "strand" || !under.id.startsWith("s")) return null;
+    const isCurrent = this.queue.waiting.value.length === 0 && this.pointedDocument === this.documentSignal.value;
+    if (isCurrent) return { strand: under.id as StrandId, near: under.point };
+    const { at, normal, mmPerPx, slabMm } = pointing;
+    return { passing: { at, normal, mmPerPx, slabMm } };
+  }
+
+  /** Plays the current path back from an edit on (null = the first). Nothing is written and nothing can be edited meanwhile. */
+  playBack(seq: number | null, isRunning: boolean): void {
+    if (!this.canPlayBack) return;
+    this.selectedBefore ??= this.selection.value;
+    this.carried.value = null;
+    this.playback.start(this.keeper, seq, isRunning);
+  }
+
+  /** Ends the playback: everything is as it was before. */
+  stopPlayback(): void {
+    const selected = this.selectedBefore;
+    if (this.playback.shown.value === null || selected === null) return;
+    this.selectedBefore = null;
+    batch(() => {
+      this.playback.stop();
+      this.documentSignal.value = this.keeper.document;
+      this.selection.value = stillThere(this.keeper.document, selected);
+    });
+  }
+
   /** Takes the next candidate along the line of sight. */
   nextCandidate(): void {
     const { pointing } = this;
@@ -268,6 +317,7 @@ export class Editor {
   }
 
   dispose(): void {
+    this.playback.stop();
     for (const dispose of this.disposers) dispose();
     this.guideFollower.stop();
   }
@@ -311,9 +361,16 @@ export class Editor {
 
   private historyChanged(): void {
     batch(() => {
-      this.documentSignal.value = this.keeper.document;
       this.revision.value += 1;
-      this.selection.value = stillThere(this.keeper.document, this.selection.value);
+      // What another window writes meanwhile is shown when the playback ends.
+      if (this.playback.shown.value === null) this.showDocument(this.keeper.document);
+    });
+  }
+
+  private showDocument(document: TreeDocument): void {
+    batch(() => {
+      this.documentSignal.value = document;
+      this.selection.value = stillThere(document, this.selection.peek());
     });
   }
 }

@@ -3,6 +3,7 @@ import type { PassStore, WaitingLines } from "#renderer/storage/pass-store.ts";
 import { type Reconciled, type ReconcilePlaces, reconcile } from "#renderer/storage/reconcile.ts";
 import { storageFault } from "#renderer/storage/storage-fault.ts";
 import { isTautlineError, type TautlineError } from "#shared/errors.ts";
+import { hashOfLine } from "#shared/log/line.ts";
 
 /** How safe the edits are. `records`: lines not confirmed by the journal. */
 export type OutboxState =
@@ -199,9 +200,11 @@ export class Outbox {
   }
 
   private async reconcileAgain(): Promise<boolean> {
+    // What comes meanwhile follows the log as it is now, which may be gone afterwards.
+    const before = (await this.places.store.loadPass())?.lines ?? [];
     const result = await reconcile(this.places);
     this.mustReconcile = false;
-    if (result.outcome === "replaced" || result.outcome === "taken") await this.strandFresh();
+    if (result.outcome === "replaced" || result.outcome === "taken") await this.strandFresh(before);
     await this.countWaiting();
     if (result.outcome !== "agreed") this.places.reconciled(result);
     return true;
@@ -215,19 +218,19 @@ export class Outbox {
       await store.appendWaiting(lines);
     } catch (error) {
       if (!isTautlineError(error, "held-elsewhere")) throw storageFault(error);
-      await this.strandFresh();
+      await this.strandFresh((await store.loadPass())?.lines ?? []);
       throw error;
     }
     this.fresh.splice(0, lines.length);
   }
 
-  /** Lines that follow nothing that is kept here any more: not sent, but not thrown away either. */
-  private async strandFresh(): Promise<void> {
+  /** Lines that follow nothing that is kept here any more: not sent, but not thrown away either. `log`: what they may follow. */
+  private async strandFresh(log: readonly string[]): Promise<void> {
     const lines = [...this.fresh];
     if (lines.length === 0) return;
     const { store, branchName, now, setAside } = this.places;
     const name = branchName(now());
-    await store.setAside(name, now(), lines);
+    await store.setAside(name, now(), lines, linesBefore(lines[0]!, log));
     this.fresh.splice(0, lines.length);
     setAside?.(name, lines);
   }
@@ -283,4 +286,11 @@ export class Outbox {
 
 function isFinal(error: unknown): boolean {
   return FINAL_TAGS.some((tag) => isTautlineError(error, tag));
+}
+
+/** The part of a log that a line follows; undefined when it follows none of it. */
+function linesBefore(line: string, log: readonly string[]): readonly string[] | undefined {
+  const { seq, prev } = JSON.parse(line) as { seq: number; prev: string };
+  const last = log[seq - 1];
+  return last !== undefined && hashOfLine(last) === prev ? log.slice(0, seq) : undefined;
 }

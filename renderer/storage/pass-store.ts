@@ -99,13 +99,15 @@ export class PassStore {
   /**
    * Copies lines to the recovered ones, under a name: those given, else the whole log as it is kept here.
    * @param t UTC milliseconds
+   * @param before the lines from 0 on that those given follow, when they are known
    */
-  async setAside(name: string, t: number, only?: readonly string[]): Promise<RecoveredLog> {
+  async setAside(name: string, t: number, only?: readonly string[], before?: readonly string[]): Promise<RecoveredLog> {
     const { passes, lines, recovered } = this.database;
     return this.database.transaction("rw", passes, lines, recovered, async () => {
       const known = await passes.get(this.pass);
       const kept = only ?? (await this.rows()).map((row) => row.line);
-      const log: RecoveredLog = { pass: this.pass, name, t, epoch: known?.epoch ?? "", lines: kept };
+      const base = before === undefined ? {} : { before };
+      const log: RecoveredLog = { pass: this.pass, name, t, epoch: known?.epoch ?? "", lines: kept, ...base };
       return { ...log, id: await recovered.add(log) };
     });
   }

@@ -23,7 +23,7 @@ export interface StoredSnapshot {
   readonly snapshot: unknown;
 }
 
-/** A log of this window that forked from the journal, kept whole. Key: counted up. */
+/** Lines of this window that the journal did not take: a whole log, or its last part with the lines before it. Key: counted up. */
 export interface RecoveredLog {
   readonly id?: number;
   readonly pass: string;
@@ -32,6 +32,8 @@ export interface RecoveredLog {
   readonly t: number;
   readonly epoch: string;
   readonly lines: readonly string[];
+  /** The lines from 0 on that `lines` follow, when they were set aside without them and were still known. */
+  readonly before?: readonly string[];
 }
 
 export interface StoredSetting {

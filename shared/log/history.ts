@@ -2,7 +2,7 @@ import { TautlineError } from "#shared/errors.ts";
 import { readChain } from "#shared/log/chain.ts";
 import { bodyOfCurve } from "#shared/log/curve-body.ts";
 import { type Folded, fold, type Mark, NOTHING_FOLDED } from "#shared/log/fold.ts";
-import { pathTo } from "#shared/log/history-tree.ts";
+import { type LoggedOperation, pathTo } from "#shared/log/history-tree.ts";
 import { hashOfLine, lineOf } from "#shared/log/line.ts";
 import { LOG_FORMAT, LOG_VERSION, type LogHead, type LogHeader, type LogRecord, type RecordBody } from "#shared/log/records.ts";
 import { isEmpty } from "#shared/trees/apply.ts";
@@ -193,6 +193,14 @@ export class PassHistory {
       isPointer: seq === pointer,
       marks: names.get(seq) ?? [],
     }));
+  }
+
+  /** Edits of the current path from the first to the newest: those up to here, then those that redo would bring back. */
+  path(): LoggedOperation[] {
+    const { operations, onward, pointer } = this.folded;
+    const path = pathTo(operations, pointer);
+    for (let next = onward.get(pointer); next !== undefined; next = onward.get(next)) path.push(operations.get(next)!);
+    return path;
   }
 
   /** Lines for `bodies`, folded in as they will be read back. */

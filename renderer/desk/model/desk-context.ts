@@ -1,6 +1,9 @@
 import { setTheme, theme } from "#renderer/app/theme-choice.ts";
 import type { DeskModel, SheetName } from "#renderer/desk/model/desk-model.ts";
+import { setPassState } from "#renderer/desk/model/finish-pass.ts";
 import { stepFinding } from "#renderer/desk/model/go-to-finding.ts";
+import { openRadiusSheet } from "#renderer/desk/model/open-radius-sheet.ts";
+import { playBack } from "#renderer/desk/model/play-back.ts";
 import type { DeskContext } from "#renderer/editor/commands/desk-context.ts";
 
 /** What commands act on, for one open desk. */
@@ -19,7 +22,11 @@ export function deskContext(model: DeskModel): DeskContext {
       toggleHistory: () => {
         model.historyShown.value = !model.historyShown.value;
       },
-      openExport: open("export"),
+      openExport: () => {
+        // What is exported is the pass as it stands.
+        editor.stopPlayback();
+        model.sheet.value = "export";
+      },
       openTakeIn: open("take-in"),
       openAbout: open("about"),
       openUpright: open("upright"),
@@ -30,16 +37,9 @@ export function deskContext(model: DeskModel): DeskContext {
       },
       toggleTheme: () => setTheme(theme.value === "dark" ? "light" : "dark"),
       backToShelf: () => services.goTo({ screen: "shelf" }),
-      finishPass: () => {
-        const { id, specimen, state } = model.pass.value;
-        services.client
-          .setPassState(specimen, id, state === "finished" ? "under-way" : "finished")
-          .then((pass) => {
-            model.pass.value = pass;
-            services.notices.news(pass.state === "finished" ? "The pass is finished." : "The pass is under way again.");
-          })
-          .catch((error: unknown) => services.notices.failed(error));
-      },
+      finishPass: () => void setPassState(model, model.pass.value.state === "finished" ? "under-way" : "finished"),
+      setRadius: (at) => openRadiusSheet(model, at),
+      playBack: () => playBack(model, null),
       stepFinding: (by) => stepFinding(model, by),
       focusSection: () => document.querySelector<HTMLElement>(".section-view")?.focus(),
     },

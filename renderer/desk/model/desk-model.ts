@@ -2,11 +2,14 @@ import { computed, effect, type ReadonlySignal, type Signal, signal } from "@pre
 import type { Services } from "#renderer/app/services.ts";
 import { type ShownFinding, shownFindings } from "#renderer/desk/model/findings.ts";
 import { type LineFacts, lineFacts } from "#renderer/desk/model/line-facts.ts";
+import type { PlaceOnStrand } from "#renderer/desk/model/place-on-strip.ts";
+import { lookAtRecovered } from "#renderer/desk/model/recovered-edits.ts";
 import { type FollowedLine, SectionModel } from "#renderer/desk/model/section-model.ts";
 import { serverBack } from "#renderer/desk/model/server-back.ts";
 import { keepWaiting, leftWaiting, NOTHING_LEFT } from "#renderer/desk/model/waiting-store.ts";
 import { Editor } from "#renderer/editor/editor.ts";
 import type { PassKeeper } from "#renderer/editor/session/pass-keeper.ts";
+import type { RecoveredEdits, RecoveredLogs } from "#renderer/storage/recovered-logs.ts";
 import type { PassSummary, SpecimenRecord } from "#shared/api/specimen.ts";
 import { arcLengths } from "#shared/geometry/polyline.ts";
 import { type Measures, measureTrees } from "#shared/measure/measure-trees.ts";
@@ -15,13 +18,25 @@ import type { CrossLinkId, StrandId } from "#shared/trees/document.ts";
 import { polylineOf } from "#shared/trees/geometry.ts";
 import { plainFromDocument } from "#shared/trees/plain-from-document.ts";
 
-export type SheetName = "palette" | "keys" | "menu" | "export" | "take-in" | "about" | "mark" | "rename" | "dismiss" | "upright";
+export type SheetName =
+  | "palette"
+  | "keys"
+  | "menu"
+  | "export"
+  | "take-in"
+  | "about"
+  | "mark"
+  | "rename"
+  | "dismiss"
+  | "upright"
+  | "radius";
 
 export interface DeskFacts {
   readonly services: Services;
   readonly specimen: SpecimenRecord;
   readonly pass: PassSummary;
   readonly keeper: PassKeeper;
+  readonly recoveredLogs: RecoveredLogs;
 }
 
 /** Checks run when no edit came for this long. */
@@ -36,6 +51,11 @@ export class DeskModel {
   readonly section: SectionModel;
   readonly sheet: Signal<SheetName | null> = signal(null);
   readonly historyShown = signal(false);
+  /** Where the radius sheet sets a radius. */
+  readonly radiusPlace: Signal<PlaceOnStrand | null> = signal(null);
+  readonly recoveredLogs: RecoveredLogs;
+  /** Edits that this browser set aside, as last looked at. */
+  readonly recovered: Signal<readonly RecoveredEdits[]> = signal([]);
   readonly tab: Signal<"trees" | "findings"> = signal<"trees" | "findings">("trees");
   /** Follows the document once it rests: checks of a whole valve are too much for every pin. */
   readonly findings: Signal<readonly ShownFinding[]>;
@@ -44,15 +64,16 @@ export class DeskModel {
   /** The selected strand as the strip shows it. */
   readonly lineFacts: ReadonlySignal<LineFacts | null>;
 
-  private readonly stopChecking: () => void;
+  private readonly stops: (() => void)[];
 
   constructor(facts: DeskFacts) {
-    const { services, specimen, pass, keeper } = facts;
+    const { services, specimen, pass, keeper, recoveredLogs } = facts;
     const { client, notices } = services;
     const parameters: TraceParameters = { polarity: specimen.polarity, blurFwhmMm: specimen.volume.blurFwhmMm };
     this.services = services;
     this.specimen = signal(specimen);
     this.pass = signal(pass);
+    this.recoveredLogs = recoveredLogs;
     this.editor = new Editor({
       keeper,
       solve: async (strands, stop) => (await client.solve(specimen.id, strands, parameters, stop)).curves,
@@ -73,13 +94,19 @@ export class DeskModel {
     this.measures = computed(() => measureTrees(plainFromDocument(this.editor.document.value)));
     this.lineFacts = computed(() => lineFacts(this.editor.document.value, this.editor.selection.value));
     this.findings = signal(shownFindings(keeper.document));
-    this.stopChecking = effect(() => {
-      const document = this.editor.document.value;
-      const timer = setTimeout(() => {
-        this.findings.value = shownFindings(document);
-      }, CHECK_REST_MS);
-      return () => clearTimeout(timer);
-    });
+    this.stops = [
+      effect(() => {
+        const document = this.editor.document.value;
+        const timer = setTimeout(() => {
+          this.findings.value = shownFindings(document);
+        }, CHECK_REST_MS);
+        return () => clearTimeout(timer);
+      }),
+      effect(() => {
+        this.editor.isFinished.value = this.pass.value.state === "finished";
+      }),
+    ];
+    void lookAtRecovered(this);
   }
 
   /** The line that across and along planes follow: the live guide, else the selected strand. */
@@ -99,7 +126,7 @@ export class DeskModel {
   }
 
   dispose(): void {
-    this.stopChecking();
+    for (const stop of this.stops) stop();
     this.editor.dispose();
     this.section.detach();
     void this.editor.keeper.close();

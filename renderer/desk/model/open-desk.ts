@@ -1,9 +1,13 @@
 import type { Services } from "#renderer/app/services.ts";
 import type { Client } from "#renderer/client/client.ts";
 import { DeskModel } from "#renderer/desk/model/desk-model.ts";
+import { lookAtRecovered } from "#renderer/desk/model/recovered-edits.ts";
 import { KeptPass, WatchedPass } from "#renderer/editor/session/kept-pass.ts";
+import { countOf } from "#renderer/editor/session/words.ts";
 import type { LogSender } from "#renderer/storage/log-sender.ts";
+import { PassStore } from "#renderer/storage/pass-store.ts";
 import type { KeptBranch } from "#renderer/storage/reconcile.ts";
+import { editsAmong, RecoveredLogs } from "#renderer/storage/recovered-logs.ts";
 import { WindowDatabase } from "#renderer/storage/window-database.ts";
 import type { PassSummary, SpecimenRecord } from "#shared/api/specimen.ts";
 import { TautlineError } from "#shared/errors.ts";
@@ -26,9 +30,11 @@ export async function openDesk(services: Services, specimenId: string, passId: s
   const { client, notices } = services;
   const [specimen, pass] = await facts(client, specimenId, passId);
   const sender = senderOf(client, specimenId, passId);
+  const database = new WindowDatabase();
+  const recoveredLogs = new RecoveredLogs(new PassStore(database, passId), sender);
   if (!(await claim(client, specimenId, passId))) {
     const keeper = await WatchedPass.open(sender);
-    const model = new DeskModel({ services, specimen, pass, keeper });
+    const model = new DeskModel({ services, specimen, pass, keeper, recoveredLogs });
     const stop = client.onEvent((event) => {
       if (event.event === "pass" && event.pass === passId) keeper.follow().catch((error: unknown) => notices.failed(error));
     });
@@ -40,8 +46,10 @@ export async function openDesk(services: Services, specimenId: string, passId: s
       },
     };
   }
+  // Lines may be set aside while the pass is still being opened.
+  let desk: DeskModel | null = null;
   const keeper = await KeptPass.open({
-    database: new WindowDatabase(),
+    database,
     pass: passId,
     sender,
     now: () => Date.now(),
@@ -56,8 +64,12 @@ export async function openDesk(services: Services, specimenId: string, passId: s
         "Leave it",
       ),
     keptBranch: (branch) => tellBranch(services, specimenId, branch),
+    setAside: (name, lines) => {
+      if (editsAmong(lines) > 0) tellSetAside(services, name, editsAmong(lines), () => desk);
+    },
   });
-  const model = new DeskModel({ services, specimen, pass, keeper });
+  const model = new DeskModel({ services, specimen, pass, keeper, recoveredLogs });
+  desk = model;
   const stop = client.onConnection((state) => {
     if (state === "up") keeper.retry();
   });
@@ -106,6 +118,19 @@ function tellBranch({ notices, goTo }: Services, specimen: string, branch: KeptB
     `This window and the library both went on with the pass since they last agreed. The library's edits are shown here; the ${branch.lines} records of this window are kept as a pass of their own (${branch.name}). Compare the two and go on with the one you want.`,
     [{ label: "Open the kept edits", run: () => goTo({ screen: "desk", specimen, pass: branch.pass.id }) }],
   );
+}
+
+function tellSetAside({ notices }: Services, name: string, edits: number, desk: () => DeskModel | null): void {
+  const openMenu = () => {
+    const model = desk();
+    if (model !== null) model.sheet.value = "menu";
+  };
+  notices.error(
+    `${countOf(edits, "edit")} of this window came while the pass was going on elsewhere, and could not follow it. The library does not have them; this browser keeps them as "${name}". The menu lists them: open them as a pass of their own, or forget them.`,
+    [{ label: "Open the menu", run: openMenu }],
+  );
+  const model = desk();
+  if (model !== null) void lookAtRecovered(model);
 }
 
 function pause(milliseconds: number, signal?: AbortSignal): Promise<void> {

@@ -1,13 +1,10 @@
 import { effect } from "@preact/signals";
 import { useEffect, useRef } from "preact/hooks";
 import { theme } from "#renderer/app/theme-choice.ts";
+import { arcOfSection } from "#renderer/desk/model/place-on-strip.ts";
 import type { StripSource } from "#renderer/desk/panes/section-sources.ts";
 import type { StripSizes } from "#renderer/strip/strip-content.ts";
 import { EMPTY_STRIP, StripView } from "#renderer/strip/strip-view.ts";
-import { nearestOnPolyline } from "#shared/geometry/polyline.ts";
-
-/** The section counts as standing on the strand while it is this near to it, millimetres. */
-const ON_STRAND_MM = 1;
 
 /** The selected strand laid straight, with its radius and the film of across sections. */
 export function StripPane({ model }: { readonly model: StripSource }) {
@@ -82,8 +79,7 @@ function mountStrip(host: HTMLElement, model: StripSource): () => void {
     effect(() => {
       const plane = section.plane.value;
       const facts = lineFacts.value;
-      const near = plane === null || facts === null ? null : nearestOnPolyline(facts.points, plane.centre);
-      view.show({ position: near !== null && near.distance <= ON_STRAND_MM ? near.at : null });
+      view.show({ position: plane === null || facts === null ? null : arcOfSection(facts.points, plane.centre) });
     }),
     effect(() => {
       theme.value;

@@ -5,6 +5,7 @@ import { ExportSheet } from "#renderer/desk/sheets/export-sheet.tsx";
 import { KeySheet } from "#renderer/desk/sheets/key-sheet.tsx";
 import { MenuSheet } from "#renderer/desk/sheets/menu-sheet.tsx";
 import { Palette } from "#renderer/desk/sheets/palette.tsx";
+import { RadiusSheet } from "#renderer/desk/sheets/radius-sheet.tsx";
 import { TakeInSheet } from "#renderer/desk/sheets/take-in-sheet.tsx";
 import { TextSheet } from "#renderer/desk/sheets/text-sheet.tsx";
 import { UprightSheet } from "#renderer/desk/sheets/upright-sheet.tsx";
@@ -34,6 +35,8 @@ export function DeskSheets({ model, context }: { readonly model: DeskModel; read
       return <AboutSheet client={model.services.client} close={close} />;
     case "dismiss":
       return <DismissSheet {...props} />;
+    case "radius":
+      return <RadiusSheet {...props} />;
     case "upright":
       return <UprightSheet {...props} />;
     case "mark":

@@ -1,4 +1,5 @@
 import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
+import { openRadiusSheet } from "#renderer/desk/model/open-radius-sheet.ts";
 import { ChoiceRow } from "#renderer/desk/side/choice-row.tsx";
 import { mmText, treeName } from "#renderer/editor/session/words.ts";
 import { polylineLength } from "#shared/geometry/polyline.ts";
@@ -27,7 +28,18 @@ export function StrandFields({ model, strand }: { readonly model: DeskModel; rea
         <dt>length</dt>
         <dd>{measures === undefined ? "not traced" : mmText(measures.length, 2)}</dd>
         <dt>mean diameter</dt>
-        <dd>{measures?.meanRadius == null ? "below resolution or too short" : mmText(2 * measures.meanRadius, 2)}</dd>
+        <dd>
+          {measures?.meanRadius == null ? "below resolution or too short" : mmText(2 * measures.meanRadius, 2)}{" "}
+          <button
+            type="button"
+            class="button plain"
+            title="Set a radius by hand at the place chosen on the strip (Shift + W)"
+            disabled={disabled || strand.curve === null}
+            onClick={() => openRadiusSheet(model, null)}
+          >
+            set a radius
+          </button>
+        </dd>
         <dt>branch order</dt>
         <dd>{measures?.order ?? "not reached from the origin"}</dd>
         <dt>slack</dt>

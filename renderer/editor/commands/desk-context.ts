@@ -1,5 +1,7 @@
 import type { Editor } from "#renderer/editor/editor.ts";
 import type { ViewControl } from "#renderer/editor/view-control.ts";
+import type { PointMm } from "#shared/geometry/types.ts";
+import type { StrandId } from "#shared/trees/document.ts";
 
 /** What of the screen commands may open or change. */
 export interface ScreenControl {
@@ -13,7 +15,12 @@ export interface ScreenControl {
   readonly openUpright: () => void;
   readonly toggleTheme: () => void;
   readonly backToShelf: () => void;
+  /** Finished, or under way again. */
   readonly finishPass: () => void;
+  /** Opens the sheet for a radius at this place; null = at the place chosen on the strip. */
+  readonly setRadius: (at: { readonly strand: StrandId; readonly near: PointMm } | null) => void;
+  /** Plays the history back, from the beginning; goes on or rests while it is played. */
+  readonly playBack: () => void;
   readonly nameMark: () => void;
   readonly renameTree: () => void;
   /** The next (+1) or previous (-1) finding. */

@@ -5,8 +5,6 @@ import { nearestOnPolyline } from "#shared/geometry/polyline.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
 import { strandsAt } from "#shared/trees/adjacency.ts";
 import type { CrossLinkId, NodeId, Strand, StrandId } from "#shared/trees/document.ts";
-import { runOf } from "#shared/trees/edits/pin-run.ts";
-import { placeOnLine } from "#shared/trees/edits/place-on-line.ts";
 import { isLooseEnd } from "#shared/trees/edits/rewiring.ts";
 import { polylineOf } from "#shared/trees/geometry.ts";
 import { orientTree } from "#shared/trees/orientation.ts";
@@ -72,14 +70,10 @@ function deleteSelected(context: DeskContext): void {
   else if (tree !== undefined) editor.do({ do: "delete-tree", args: { tree } });
 }
 
-/** The stretch between pins that holds a place: straight when it followed the image, and the other way round. */
-function changeStretch(editor: Editor, id: StrandId, near: PointMm): void {
-  const document = editor.document.value;
-  const strand = document.strands.get(id);
-  if (strand === undefined) return;
-  const { leg } = placeOnLine(document, strand, near);
-  const kind = runOf(strand).legs[leg] === "straight" ? "guide" : "straight";
-  editor.do({ do: "set-leg", args: { strand: id, leg, kind } });
+/** Mends the strand under the pointer, whichever it is by then. */
+function mendHere({ editor }: DeskContext, make: "cut" | "pin" | "stretch"): void {
+  const at = editor.strandPlace();
+  if (at !== null) editor.do({ do: "on-strand", make, at });
 }
 
 /** A node goes with its strand when it ends one, with its tree when it is the origin, and is taken out from between two. */
@@ -116,10 +110,7 @@ export const MEND_COMMANDS: readonly Command<DeskContext>[] = [
     label: "New pin on the strand here (drag it to re-route)",
     keys: ["P"],
     enabled: (context) => canEdit(context) && strandUnder(context) !== null,
-    perform: (context) => {
-      const here = strandUnder(context);
-      if (here !== null) context.editor.do({ do: "insert-pin", args: { line: here.strand, at: here.near } });
-    },
+    perform: (context) => mendHere(context, "pin"),
     foot: (context) => (canEdit(context) && strandUnder(context) !== null ? "pin to re-route" : null),
   },
   {
@@ -128,10 +119,15 @@ export const MEND_COMMANDS: readonly Command<DeskContext>[] = [
     label: "Make the stretch here straight, or follow the image again",
     keys: ["Shift+P"],
     enabled: (context) => canEdit(context) && strandUnder(context) !== null,
-    perform: (context) => {
-      const here = strandUnder(context);
-      if (here !== null) changeStretch(context.editor, here.strand, here.near);
-    },
+    perform: (context) => mendHere(context, "stretch"),
+  },
+  {
+    name: "set-radius",
+    group: "Mend",
+    label: "Set a radius by hand, on the strand here or at the place chosen on the strip",
+    keys: ["Shift+W"],
+    enabled: (context) => canEdit(context) && (strandUnder(context) ?? selectedStrand(context)) !== null,
+    perform: (context) => context.screen.setRadius(strandUnder(context)),
   },
   {
     name: "cut",
@@ -139,10 +135,7 @@ export const MEND_COMMANDS: readonly Command<DeskContext>[] = [
     label: "Cut the strand here",
     keys: ["K"],
     enabled: (context) => canEdit(context) && strandUnder(context) !== null,
-    perform: (context) => {
-      const here = strandUnder(context);
-      if (here !== null) context.editor.do({ do: "cut", args: here });
-    },
+    perform: (context) => mendHere(context, "cut"),
     foot: (context) => (canEdit(context) && strandUnder(context) !== null ? "cut" : null),
   },
   {

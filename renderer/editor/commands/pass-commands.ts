@@ -3,6 +3,9 @@ import type { DeskContext } from "#renderer/editor/commands/desk-context.ts";
 
 const always = () => true;
 const canEdit = ({ editor }: DeskContext) => !editor.readOnly;
+const isPlaying = ({ editor }: Pick<DeskContext, "editor">) => editor.playback.shown.value !== null;
+/** Not a change of the trees: also when the pass is finished. */
+const isOurs = ({ editor }: DeskContext) => !editor.keeper.readOnly;
 
 /** History, files and the window itself. */
 export const PASS_COMMANDS: readonly Command<DeskContext>[] = [
@@ -29,6 +32,36 @@ export const PASS_COMMANDS: readonly Command<DeskContext>[] = [
     keys: ["Shift+H"],
     enabled: always,
     perform: ({ screen }) => screen.toggleHistory(),
+  },
+  {
+    name: "play-back",
+    group: "History",
+    label: "Play the history back; pause, go on",
+    keys: ["Shift+B"],
+    enabled: ({ editor }) => isPlaying({ editor }) || editor.canPlayBack,
+    perform: ({ screen }) => screen.playBack(),
+    foot: ({ editor }) => {
+      const played = editor.playback.shown.value;
+      return played === null ? null : played.isRunning ? "pause" : "play on";
+    },
+  },
+  {
+    name: "play-back-forward",
+    group: "History",
+    label: "Play back: one edit forward",
+    keys: [">"],
+    enabled: isPlaying,
+    perform: ({ editor }) => editor.playback.step(1),
+    foot: (context) => (isPlaying(context) ? "one edit forward" : null),
+  },
+  {
+    name: "play-back-backward",
+    group: "History",
+    label: "Play back: one edit back",
+    keys: ["<"],
+    enabled: isPlaying,
+    perform: ({ editor }) => editor.playback.step(-1),
+    foot: (context) => (isPlaying(context) ? "one edit back" : null),
   },
   {
     name: "mark",
@@ -68,15 +101,15 @@ export const PASS_COMMANDS: readonly Command<DeskContext>[] = [
     group: "Pass",
     label: "Stand the valve upright",
     keys: ["Shift+U"],
-    enabled: canEdit,
+    enabled: isOurs,
     perform: ({ screen }) => screen.openUpright(),
   },
   {
     name: "finish-pass",
     group: "Pass",
-    label: "Finish the pass, or take it up again",
+    label: "Finish the pass, or work on it again",
     keys: [],
-    enabled: canEdit,
+    enabled: (context) => isOurs(context) && !isPlaying(context) && context.editor.waiting.value.length === 0,
     perform: ({ screen }) => screen.finishPass(),
   },
   {

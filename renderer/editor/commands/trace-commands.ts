@@ -128,19 +128,22 @@ export const TRACE_COMMANDS: readonly Command<DeskContext>[] = [
   {
     name: "leave",
     group: "Trace",
-    label: "Leave the strand as it is (open), or put back what is carried",
+    label: "Leave the strand as it is (open), put back what is carried, or end the play back",
     keys: ["Escape"],
     enabled: ({ editor }) =>
+      editor.playback.shown.value !== null ||
       editor.projection.value.kind !== "nothing" ||
       editor.carried.value !== null ||
       editor.selection.value.tree !== undefined ||
       editor.selection.value.strand !== undefined,
     perform: ({ editor }) => {
-      if (editor.carried.value !== null) editor.carried.value = null;
+      if (editor.playback.shown.value !== null) editor.stopPlayback();
+      else if (editor.carried.value !== null) editor.carried.value = null;
       else if (editor.projection.value.kind !== "nothing") editor.do({ do: "leave" });
       else editor.selection.value = {};
     },
     foot: (context) => {
+      if (context.editor.playback.shown.value !== null) return "end the play back";
       if (context.editor.carried.value !== null) return "put it back";
       return kind(context) === "nothing" ? null : "leave it open";
     },

@@ -1,11 +1,15 @@
 import type { MendIntent } from "#renderer/editor/session/mends.ts";
 import type { IntentPlace } from "#renderer/editor/tracing/intent-place.ts";
 import type { Sight } from "#renderer/editor/tracing/passing.ts";
-import type { EndKind, NodeId, TreeDocument } from "#shared/trees/document.ts";
+import type { PointMm } from "#shared/geometry/types.ts";
+import type { EndKind, NodeId, StrandId, TreeDocument } from "#shared/trees/document.ts";
 import type { Anchor } from "#shared/trees/edits/anchor.ts";
 
 /** Where a branch or cross-link leaves: a node or strand, or whatever passes the pointer by the time it is carried out. */
 export type LeavePlace = Anchor | { readonly passing: Sight };
+
+/** A place on a strand, or whatever strand passes the pointer by the time it is carried out. */
+export type StrandPlace = { readonly strand: StrandId; readonly near: PointMm } | { readonly passing: Sight };
 
 /**
  * What the person asked for, as plain data: it can wait, be kept over a reload, and be shown before it is carried out. Ids in
@@ -23,6 +27,16 @@ export type Intent =
   | { readonly do: "leave" }
   // mending
   | MendIntent
+  | { readonly do: "on-strand"; readonly make: "cut" | "pin" | "stretch"; readonly at: StrandPlace }
+  | {
+      readonly do: "radius";
+      readonly strand: StrandId;
+      readonly near: PointMm;
+      /** Length of the stretch about the place, millimetres. */
+      readonly lengthMm: number;
+      /** Millimetres; null = below resolution. */
+      readonly radiusMm: number | null;
+    }
   | { readonly do: "join"; readonly end: NodeId; readonly to: LeavePlace }
   | { readonly do: "take-in"; readonly incoming: TreeDocument; readonly name: string }
   // history

@@ -26,6 +26,8 @@ export interface KeptPassPlaces {
   readonly askRebuild: () => Promise<boolean>;
   /** Edits of this window went another way than the journal; they are a pass of their own now. */
   readonly keptBranch: (branch: KeptBranch) => void;
+  /** Lines that could not go to the journal any more; they are among this browser's recovered logs under the name. */
+  readonly setAside: (name: string, lines: readonly string[]) => void;
 }
 
 /** So long without an edit, and the session is noted as idle, milliseconds. */
@@ -63,6 +65,7 @@ export class KeptPass implements PassKeeper {
       reconciled: (result) => {
         this.reopening = this.reopen(result);
       },
+      setAside: places.setAside,
     });
   }
 
@@ -96,6 +99,9 @@ export class KeptPass implements PassKeeper {
   }
   entries() {
     return this.open.entries();
+  }
+  path() {
+    return this.open.path();
   }
 
   async commit(operation: Operation, label: string, curves: readonly Curve[]): Promise<void> {
@@ -206,6 +212,7 @@ export class WatchedPass implements PassKeeper {
   }
   ids = () => this.history.ids();
   entries = () => this.history.entries();
+  path = () => this.history.path();
   commit = refuse;
   undo = refuse;
   redo = refuse;

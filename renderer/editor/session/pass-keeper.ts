@@ -1,5 +1,6 @@
 import type { ReadonlySignal } from "@preact/signals";
 import type { HistoryEntry } from "#shared/log/history.ts";
+import type { LoggedOperation } from "#shared/log/history-tree.ts";
 import type { Curve, TreeDocument } from "#shared/trees/document.ts";
 import type { IdSource } from "#shared/trees/ids.ts";
 import type { Operation } from "#shared/trees/operations.ts";
@@ -25,6 +26,8 @@ export interface PassKeeper {
   readonly saved: ReadonlySignal<SavedState>;
   ids(): IdSource;
   entries(): readonly HistoryEntry[];
+  /** Edits of the current path, from the first to the newest. */
+  path(): readonly LoggedOperation[];
   commit(operation: Operation, label: string, curves: readonly Curve[]): Promise<void>;
   undo(): Promise<void>;
   redo(): Promise<void>;

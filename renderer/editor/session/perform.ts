@@ -2,6 +2,7 @@ import type { Intent } from "#renderer/editor/session/intent.ts";
 import { isMend, mendOf } from "#renderer/editor/session/mends.ts";
 import { performTracing } from "#renderer/editor/session/perform-tracing.ts";
 import { inOne, type MakePlan, makeEdit, type Stage } from "#renderer/editor/session/stage.ts";
+import { radiusMend, strandMend } from "#renderer/editor/session/strand-mends.ts";
 import { settleAnchor } from "#renderer/editor/tracing/passing.ts";
 import { NOTHING, underWayAfter } from "#renderer/editor/tracing/under-way.ts";
 import { TautlineError } from "#shared/errors.ts";
@@ -22,6 +23,11 @@ export async function performIntent(stage: Stage, intent: Intent, signal: AbortS
     return;
   }
   switch (intent.do) {
+    case "on-strand":
+    case "radius": {
+      const { document } = stage.keeper;
+      return performIntent(stage, intent.do === "radius" ? radiusMend(document, intent) : strandMend(document, intent), signal);
+    }
     case "join":
       await makeEdit(
         stage,

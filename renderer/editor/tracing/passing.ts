@@ -1,8 +1,8 @@
 import { TautlineError } from "#shared/errors.ts";
 import { nearestOnPolyline } from "#shared/geometry/polyline.ts";
-import type { PointMm, Vec3 } from "#shared/geometry/types.ts";
+import { type PointMm, roundPoint, type Vec3 } from "#shared/geometry/types.ts";
 import { distance, dot, mix, scale, subtract } from "#shared/geometry/vec3.ts";
-import type { TreeDocument } from "#shared/trees/document.ts";
+import type { NodeId, StrandId, TreeDocument } from "#shared/trees/document.ts";
 import type { Anchor } from "#shared/trees/edits/anchor.ts";
 import { polylineOf } from "#shared/trees/geometry.ts";
 
@@ -24,24 +24,28 @@ const DEPTH_MM = 0.5;
 
 /** The node here, else the strand that passes nearest as it is seen, with its place; null when there is neither. */
 export function passing(document: TreeDocument, sight: Sight): Anchor | null {
-  const isDeep = (place: Vec3) => Math.abs(dot(subtract(place, sight.at), sight.normal)) > sight.slabMm / 2 + DEPTH_MM;
-  let best: { anchor: Anchor; distance: number } | null = null;
+  let best: { node: NodeId; distance: number } | null = null;
   for (const node of document.nodes.values()) {
     const away = distance(flattened(node.position, sight), sight.at);
-    if (away > Math.min(best?.distance ?? Number.POSITIVE_INFINITY, NODE_PX * sight.mmPerPx) || isDeep(node.position)) continue;
-    best = { anchor: { node: node.id }, distance: away };
+    if (away > Math.min(best?.distance ?? Number.POSITIVE_INFINITY, NODE_PX * sight.mmPerPx)) continue;
+    if (!isDeep(node.position, sight)) best = { node: node.id, distance: away };
   }
-  if (best !== null) return best.anchor;
+  return best === null ? passingStrand(document, sight) : { node: best.node };
+}
+
+/** The strand that passes nearest as it is seen, with its place; null when none does. */
+export function passingStrand(document: TreeDocument, sight: Sight): { strand: StrandId; near: PointMm } | null {
+  let best: { strand: StrandId; near: PointMm; distance: number } | null = null;
   for (const strand of document.strands.values()) {
     const points = polylineOf(document, strand);
     const seen = points.map((point) => flattened(point, sight));
     const nearest = nearestOnPolyline(seen, sight.at);
     if (nearest.distance > (best?.distance ?? STRAND_PX * sight.mmPerPx)) continue;
     const a = points[nearest.segment]!;
-    const near = mix(a, points[nearest.segment + 1] ?? a, nearest.share);
-    if (!isDeep(near)) best = { anchor: { strand: strand.id, near }, distance: nearest.distance };
+    const near = roundPoint(mix(a, points[nearest.segment + 1] ?? a, nearest.share));
+    if (!isDeep(near, sight)) best = { strand: strand.id, near, distance: nearest.distance };
   }
-  return best?.anchor ?? null;
+  return best === null ? null : { strand: best.strand, near: best.near };
 }
 
 /** The anchor meant, looked for now when it is only a sight. @throws misuse when nothing passes there */
@@ -52,6 +56,10 @@ export function settleAnchor(document: TreeDocument, place: Anchor | { readonly 
   throw new TautlineError("misuse", "No string of a tree passes here. Point at the string to branch from, and try again.", {
     what: "no string under the pointer",
   });
+}
+
+function isDeep(place: Vec3, { at, normal, slabMm }: Sight): boolean {
+  return Math.abs(dot(subtract(place, at), normal)) > slabMm / 2 + DEPTH_MM;
 }
 
 /** A place moved along the line of sight onto the plane. */

@@ -49,6 +49,7 @@ export class MemoryKeeper implements PassKeeper {
   }
   ids = () => this.history.ids();
   entries = () => this.history.entries();
+  path = () => this.history.path();
   commit: PassKeeper["commit"] = async (operation, label, curves) =>
     this.took(this.history.commit(operation, label, curves, this.stamp()));
   undo = async () => this.took(this.history.undo(this.stamp()));

@@ -35,6 +35,7 @@ async function openPass(journal: FakeJournal, database: WindowDatabase, change: 
     branchName: () => "edits of then",
     askRebuild: async () => true,
     keptBranch: (branch) => void branches.push(branch),
+    setAside: () => undefined,
     ...change,
   });
   return { pass, branches };
