@@ -70,3 +70,42 @@ function squaredDifference(
     }
   }
 }
+
+/** What a specimen adds to nominal alpha: sums, so that the alpha of many resampled specimens needs no second look at the units. */
+export interface NominalSums {
+  readonly pairable: number;
+  /** Sum over units of disagreeing ordered pairs / (values - 1). */
+  readonly disagreement: number;
+  /** shape [categories]: pairable values of each. */
+  readonly counts: readonly number[];
+}
+
+/** The sums of some units. @param units shape [units][coders], category numbers from 0. @param categories how many there are. */
+export function nominalSums(units: readonly (readonly (number | null)[])[], categories: number): NominalSums {
+  const counts = new Array<number>(categories).fill(0);
+  let [pairable, disagreement] = [0, 0];
+  for (const unit of units) {
+    const own = new Array<number>(categories).fill(0);
+    for (const value of unit) if (value !== null) own[value]! += 1;
+    const values = own.reduce((sum, count) => sum + count, 0);
+    if (values < 2) continue;
+    pairable += values;
+    disagreement += own.reduce((sum, count) => sum + count * (values - count), 0) / (values - 1);
+    own.forEach((count, c) => {
+      counts[c]! += count;
+    });
+  }
+  return { pairable, disagreement, counts };
+}
+
+/** Nominal alpha of units whose sums are given; null where fewer than two categories were used. */
+export function nominalAlphaOf(parts: readonly NominalSums[]): number | null {
+  const pairable = parts.reduce((sum, part) => sum + part.pairable, 0);
+  const disagreement = parts.reduce((sum, part) => sum + part.disagreement, 0);
+  const squares = (parts[0]?.counts ?? []).reduce(
+    (sum, _, c) => sum + parts.reduce((total, part) => total + part.counts[c]!, 0) ** 2,
+    0,
+  );
+  const expected = (pairable * pairable - squares) / (pairable - 1);
+  return pairable >= 2 && expected > 0 ? 1 - disagreement / expected : null;
+}

@@ -55,3 +55,53 @@ export function variance(values: readonly number[]): number {
   const m = mean(values);
   return values.reduce((sum, x) => sum + (x - m) ** 2, 0) / (values.length - 1);
 }
+
+/** What a specimen's rows add to mean squares, so that resampled specimens need no second look at the rows. */
+export interface SquareSums {
+  readonly items: number;
+  /** Sum and sum of squares of the row means, from the centre. */
+  readonly means: number;
+  readonly meanSquared: number;
+  /** Sum of squared deviations from the row means. */
+  readonly within: number;
+  /** shape [raters]: sums of the deviations from the row means. */
+  readonly raters: readonly number[];
+}
+
+/** The sums of some rows. @param rows shape [items][raters]. @param centre a value amid all rows, which keeps sums small. */
+export function squareSums(rows: readonly (readonly number[])[], raters: number, centre: number): SquareSums {
+  const deviations = new Array<number>(raters).fill(0);
+  let [means, meanSquared, within] = [0, 0, 0];
+  for (const row of rows) {
+    const own = mean(row);
+    means += own - centre;
+    meanSquared += (own - centre) ** 2;
+    row.forEach((x, j) => {
+      within += (x - own) ** 2;
+      deviations[j]! += x - own;
+    });
+  }
+  return { items: rows.length, means, meanSquared, within, raters: deviations };
+}
+
+/** Mean squares of all rows whose sums are given; null with fewer than two items or two raters. */
+export function meanSquaresOf(parts: readonly SquareSums[]): MeanSquares | null {
+  const sum = (value: (part: SquareSums) => number) => parts.reduce((total, part) => total + value(part), 0);
+  const n = sum((part) => part.items);
+  const k = parts[0]?.raters.length ?? 0;
+  if (n < 2 || k < 2) return null;
+  const squares = sum((part) => part.meanSquared);
+  const within = sum((part) => part.within);
+  // What is left of a difference of sums below their rounding is nothing.
+  const clean = (value: number, of: number) => (value <= 1e-13 * of ? 0 : value);
+  const between = k * clean(squares - sum((part) => part.means) ** 2 / n, squares);
+  const rater = parts[0]!.raters.reduce((total, _, j) => total + sum((part) => part.raters[j]!) ** 2, 0) / n;
+  return {
+    items: n,
+    raters: k,
+    between: between / (n - 1),
+    within: within / (n * (k - 1)),
+    rater: rater / (k - 1),
+    residual: clean(within - rater, within) / ((n - 1) * (k - 1)),
+  };
+}

@@ -1,4 +1,4 @@
-import { type Alpha, krippendorffAlpha } from "#shared/agreement/alpha.ts";
+import { type Alpha, krippendorffAlpha, nominalAlphaOf, nominalSums } from "#shared/agreement/alpha.ts";
 import { gwetAgreement } from "#shared/agreement/gwet.ts";
 import { type OverSpecimens, overSpecimens } from "#shared/agreement/jackknife.ts";
 import { type AgreementWeights, type CategoryAgreement, cohenKappa, fleissKappa } from "#shared/agreement/kappa.ts";
@@ -108,6 +108,7 @@ function agreementOnLabel(
   const ordered = order !== null && !absentCounts && categories.length > 2;
   const number = (value: string | null) => (value === null ? null : orNull(categories.indexOf(value)));
   const numbers = rows.map((specimen) => specimen.map((row) => row.map(number)));
+  const sums = numbers.map((specimen) => nominalSums(specimen, categories.length));
   const all = numbers.flat();
   const counts = all.map((row) => categories.map((_, c) => row.filter((value) => value === c).length));
   const complete = counts.filter((_, k) => all[k]!.every((value) => value !== null));
@@ -138,16 +139,7 @@ function agreementOnLabel(
     alphaOrdinal: ordered ? krippendorffAlpha(all, "ordinal") : null,
     ac1: gwetAgreement(counts, "plain"),
     ac2: ordered ? gwetAgreement(counts, "quadratic") : null,
-    overSpecimens: overSpecimens(
-      (chosen) =>
-        krippendorffAlpha(
-          chosen.flatMap((s) => numbers[s]!),
-          "nominal",
-        ).value,
-      numbers.length,
-      seed,
-      1,
-    ),
+    overSpecimens: overSpecimens((chosen) => nominalAlphaOf(chosen.map((k) => sums[k]!)), numbers.length, seed, 1),
   };
 }
 

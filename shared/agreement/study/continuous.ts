@@ -3,7 +3,7 @@ import { type BlandAltman, blandAltman } from "#shared/agreement/bland-altman.ts
 import { type IccForm, type IccTable, icc, iccValue } from "#shared/agreement/icc.ts";
 import type { Reasons } from "#shared/agreement/interval.ts";
 import { type OverSpecimens, overSpecimens } from "#shared/agreement/jackknife.ts";
-import { meanSquares } from "#shared/agreement/mean-squares.ts";
+import { mean, meanSquaresOf, squareSums } from "#shared/agreement/mean-squares.ts";
 import { type MeasurementError, measurementError } from "#shared/agreement/sem.ts";
 import type { QuantityRow } from "#shared/agreement/study/quantities.ts";
 import { type LongValue, type VarianceComponents, varianceComponents } from "#shared/agreement/variance-components.ts";
@@ -55,10 +55,12 @@ export function continuousAgreement(
   const tables = complete.map((rows) => rows.map((row) => row.values as readonly number[]));
   const all = tables.flat();
   const single = tables.every((rows) => rows.length <= 1);
+  const centre = all.length === 0 ? 0 : mean(all.map(mean));
+  const sums = tables.map((rows) => squareSums(rows, annotators.length, centre));
   const ofForm = (form: IccForm) =>
     overSpecimens(
       (chosen) => {
-        const squares = meanSquares(chosen.flatMap((s) => tables[s]!));
+        const squares = meanSquaresOf(chosen.map((s) => sums[s]!));
         return squares && iccValue(form, squares);
       },
       study.specimens.length,

@@ -2,7 +2,7 @@ import { type CaptureRecapture, captureRecapture } from "#shared/agreement/captu
 import { type DetectionRates, detectionRates } from "#shared/agreement/em-detection.ts";
 import type { Reasons } from "#shared/agreement/interval.ts";
 import { type OverSpecimens, overSpecimens } from "#shared/agreement/jackknife.ts";
-import { type PositiveAgreement, positiveAgreementOf } from "#shared/agreement/positive-agreement.ts";
+import { type PositiveAgreement, positiveAgreement, positiveAgreementOf } from "#shared/agreement/positive-agreement.ts";
 import type { SpecimenItems, StudySpecimen } from "#shared/agreement/study/study.ts";
 
 /** How far annotators mark the same things. */
@@ -59,12 +59,19 @@ type MarkedRows = readonly (readonly (readonly (boolean | null)[])[])[];
 
 function foundTogether(annotators: readonly string[], rows: MarkedRows, seed: number): FoundTogether {
   const all = rows.flat();
+  const counts = rows.map((specimen) => positiveAgreementOf(specimen));
+  const together = (chosen: readonly number[]) =>
+    positiveAgreement(
+      chosen.reduce((sum, k) => sum + counts[k]!.both, 0),
+      chosen.reduce((sum, k) => sum + counts[k]!.onlyOne, 0),
+      0,
+    ).value;
   const pairs = annotators.flatMap((a, i) =>
     annotators.slice(i + 1).map((b, k) => ({ a, b, ...positiveAgreementOf(all.map((row) => [row[i]!, row[i + 1 + k]!])) })),
   );
   return {
     positive: positiveAgreementOf(all),
-    overSpecimens: overSpecimens((chosen) => positiveAgreementOf(chosen.flatMap((s) => rows[s]!)).value, rows.length, seed, 1),
+    overSpecimens: overSpecimens(together, rows.length, seed, 1),
     pairs,
     captureRecapture: captureRecapture(doneByAll(rows), annotators.length),
   };

@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { krippendorffAlpha } from "#shared/agreement/alpha.ts";
+import { krippendorffAlpha, nominalAlphaOf, nominalSums } from "#shared/agreement/alpha.ts";
 import { gwetAgreement } from "#shared/agreement/gwet.ts";
 import { cohenKappa, fleissKappa } from "#shared/agreement/kappa.ts";
 import { positiveAgreement, positiveAgreementOf } from "#shared/agreement/positive-agreement.ts";
@@ -221,6 +221,14 @@ describe("Krippendorff's alpha", () => {
     ).toContain("two annotators");
     expect(krippendorffAlpha([[1, -1]], "ratio").reasons.value).toContain("not negative");
     expect(krippendorffAlpha([], "nominal").value).toBeNull();
+  });
+
+  it("follows from sums of its parts, which resampling uses", () => {
+    const numbered = units.map((unit) => unit.map((value) => (value === null ? null : value - 1)));
+    const parts = [numbered.slice(0, 5), numbered.slice(5), numbered.slice(0, 0)].map((part) => nominalSums(part, 5));
+    expect(nominalAlphaOf(parts)).toBeCloseTo(0.743421, 6);
+    expect(nominalAlphaOf([nominalSums([[1, 1]], 2)])).toBeNull();
+    expect(nominalAlphaOf([])).toBeNull();
   });
 
   it("does not change with the order of coders and units", () => {

@@ -1,5 +1,6 @@
 import { describe, expect, it } from "vitest";
 import { icc } from "#shared/agreement/icc.ts";
+import { meanSquaresOf, squareSums } from "#shared/agreement/mean-squares.ts";
 import { measurementError } from "#shared/agreement/sem.ts";
 
 // Shrout & Fleiss, Psychol Bull 1979;86:420-428, their six targets by four judges.
@@ -109,6 +110,26 @@ describe("the intraclass correlations", () => {
         expect(one.value).toBeNull();
         expect(one.reasons.value).toBeTruthy();
       }
+  });
+});
+
+describe("mean squares from sums of parts, which resampling uses", () => {
+  it("are those of the whole table", () => {
+    const parts = [SHROUT_FLEISS.slice(0, 1), SHROUT_FLEISS.slice(1, 4), [], SHROUT_FLEISS.slice(4)];
+    const found = meanSquaresOf(parts.map((rows) => squareSums(rows, 4, 5)))!;
+    expect(found.between).toBeCloseTo(11.241667, 6);
+    expect(found.within).toBeCloseTo(6.263889, 6);
+    expect(found.rater).toBeCloseTo(32.486111, 6);
+    expect(found.residual).toBeCloseTo(1.019444, 6);
+  });
+
+  it("leave nothing where there is nothing", () => {
+    const rows = [1.1, 2.2, 3.3].map((x) => [x, x + 0.7, x - 0.3]);
+    expect(meanSquaresOf([squareSums(rows, 3, 2)])!.residual).toBe(0);
+    const same = [0.1, 0.1, 0.1].map((x) => [x, x]);
+    expect(meanSquaresOf([squareSums(same, 2, 0.1)])).toMatchObject({ between: 0, within: 0 });
+    expect(meanSquaresOf([squareSums([[1, 2]], 2, 1)])).toBeNull();
+    expect(meanSquaresOf([])).toBeNull();
   });
 });
 
