@@ -4,6 +4,8 @@ import { VERBS } from "#main/cli/verbs.ts";
 
 if (isShareThread()) await serveShare(VERBS);
 else {
+  // A reader that closes early (`| head`) has what it wanted.
+  process.stdout.on("error", (error: NodeJS.ErrnoException) => process.exit(error.code === "EPIPE" ? 0 : 3));
   const interrupted = new AbortController();
   for (const signal of ["SIGINT", "SIGTERM"] as const) process.once(signal, () => interrupted.abort());
   process.exitCode = await run(process.argv.slice(2), VERBS, {
