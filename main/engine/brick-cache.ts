@@ -4,9 +4,9 @@ import { BRICK_BYTES } from "#shared/volume/bricks.ts";
 /** Most workers of one cache: one bit each in a slot's pin word. */
 export const MOST_WORKERS = 24;
 /** Slots a worker must at least be able to hold at once. */
-const LEAST_HELD = 16;
+export const LEAST_HELD = 16;
 /** Indices into the slots' voxels are kept below 2^31. */
-const MOST_BYTES = 2 ** 31 - BRICK_BYTES;
+const MOST_BYTES = 2 ** 31 - 1;
 
 const LOCK = 0;
 const HAND = 1;
@@ -26,6 +26,8 @@ export interface CacheMemory {
   readonly control: SharedArrayBuffer | ArrayBuffer;
   readonly voxels: SharedArrayBuffer | ArrayBuffer;
   readonly slots: number;
+  /** Bytes of a slot. */
+  readonly slotBytes: number;
   readonly workers: number;
 }
 
@@ -42,19 +44,20 @@ export interface CacheFigures {
 /**
  * The memory of a cache of `bytes` for `workers` threads; plain memory when it is used by one thread alone. Voxels are
  * touched, and so become resident, slot by slot.
+ * @param slotBytes of one entry; a brick when not given.
  * @throws misuse when the limit holds too few bricks for the workers.
  */
-export function createCacheMemory(bytes: number, workers: number, shared = true): CacheMemory {
-  const slots = Math.floor(Math.min(bytes, MOST_BYTES) / BRICK_BYTES);
+export function createCacheMemory(bytes: number, workers: number, shared = true, slotBytes: number = BRICK_BYTES): CacheMemory {
+  const slots = Math.floor(Math.min(bytes, MOST_BYTES) / slotBytes);
   if (!(workers >= 1 && workers <= MOST_WORKERS) || !(slots >= LEAST_HELD * workers)) {
-    const least = LEAST_HELD * workers * BRICK_BYTES;
+    const least = LEAST_HELD * workers * slotBytes;
     throw new TautlineError("misuse", `A brick cache for ${workers} workers needs at least ${least} bytes, found ${bytes}.`, {
       what: "cache size",
     });
   }
   const control = 4 * (HEADER + 6 * slots + tableSize(slots));
   const make = (length: number) => (shared ? new SharedArrayBuffer(length) : new ArrayBuffer(length));
-  return { control: make(control), voxels: make(slots * BRICK_BYTES), slots, workers };
+  return { control: make(control), voxels: make(slots * slotBytes), slots, slotBytes, workers };
 }
 
 /** Slots of the directory: a power of two, at most half full. */
@@ -167,7 +170,8 @@ export class BrickCache {
     try {
       for (; done < mine.length; done++) {
         const slot = slots[mine[done]!]!;
-        load(bricks[mine[done]!]!, this.#bytes.subarray(slot * BRICK_BYTES, (slot + 1) * BRICK_BYTES));
+        const { slotBytes } = this.memory;
+        load(bricks[mine[done]!]!, this.#bytes.subarray(slot * slotBytes, (slot + 1) * slotBytes));
         Atomics.store(this.#state, slot, READY);
         Atomics.notify(this.#state, slot);
       }

@@ -14,6 +14,7 @@ import {
   checkTicket,
   checkWhole,
 } from "#main/engine/check-request.ts";
+import { createRidgeMemory } from "#main/engine/ridge-store.ts";
 import type { EngineTasks, GuideRef, StoreRef, TaskKind } from "#main/engine/tasks.ts";
 import { WorkerPool } from "#main/engine/worker-pool.ts";
 import type { Engine, HistogramAnswer, Ticket } from "#shared/api/engine.ts";
@@ -51,6 +52,8 @@ const DEFAULT_BYTES = 512 * 2 ** 20;
 const BRICK_SHARE = 0.45;
 const RIDGE_SHARE = 0.25;
 const FRONT_SHARE = 0.3;
+/** Of the ridge share: what the workers keep together, the rest is each one's own. */
+const SHARED_RIDGES = 0.55;
 /** A guide session ends when nobody asked it for anything this long. */
 const IDLE_MS = 120_000;
 const MOST_SESSIONS = 64;
@@ -82,12 +85,15 @@ export function createEngine(options: EngineOptions): LocalEngine {
   const guide = [0];
   const job = [alone ? 1 : 0];
   const show = Array.from({ length: workers - (alone ? 2 : 1) }, (_, n) => n + (alone ? 2 : 1));
+  const ridges = alone ? createRidgeMemory(SHARED_RIDGES * RIDGE_SHARE * bytes, workers) : null;
+  const ownRidgeBytes = RIDGE_SHARE * bytes * (ridges ? 1 - SHARED_RIDGES : 1);
   const ridgeShare = (worker: number) => (!alone && worker === 0 ? 1 : worker === 0 ? 0.6 : worker === 1 ? 0.4 : 0);
   const pool = new WorkerPool(options.workerUrl, workers, calls, (worker) => ({
     worker,
     memory,
+    ridges,
     calls: calls.memory,
-    ridgeBytes: worker === 0 || (alone && worker === 1) ? RIDGE_SHARE * bytes * ridgeShare(worker) : 0,
+    ridgeBytes: worker === 0 || (alone && worker === 1) ? ownRidgeBytes * ridgeShare(worker) : 0,
     frontBytes: worker === 0 ? FRONT_SHARE * bytes : 0,
   }));
 
@@ -173,8 +179,9 @@ export function createEngine(options: EngineOptions): LocalEngine {
       if (known) return known;
       const made = storeOf(specimen).then((store) => {
         const answer = pool.run("histogram", store, null, { workers: job });
-        // Who asks for the histogram opens a desk, and will trace: the tracing worker gets ready. Faults show when it is asked.
-        pool.run("warm", store, null, { workers: guide }).catch(() => {});
+        // Who asks for the histogram opens a desk, and will trace: the tracing workers get ready. Faults show when they are asked.
+        pool.run("warm", store, { backwards: false }, { workers: guide }).catch(() => {});
+        if (ridges) pool.run("warm", store, { backwards: true }, { workers: job }).catch(() => {});
         return answer;
       });
       histograms.set(specimen, made);

@@ -2,6 +2,8 @@ import type { BrickCache } from "#main/engine/brick-cache.ts";
 import { type CachedPyramid, cachedPyramid } from "#main/engine/cached-pyramid.ts";
 import { GuideSessions } from "#main/engine/guide-sessions.ts";
 import { PlanesAhead } from "#main/engine/planes-ahead.ts";
+import type { RidgeStore } from "#main/engine/ridge-store.ts";
+import { RidgesAhead } from "#main/engine/ridges-ahead.ts";
 import type { EngineTasks, StoreRef, TaskKind } from "#main/engine/tasks.ts";
 import { TraceContexts } from "#main/engine/trace-contexts.ts";
 import type { SolvedCurve } from "#shared/api/engine.ts";
@@ -28,10 +30,11 @@ export class TaskRunner {
   readonly #contexts: TraceContexts;
   readonly guides: GuideSessions;
   readonly planes = new PlanesAhead();
+  readonly ridges = new RidgesAhead();
 
-  constructor(cache: BrickCache, ridgeBytes: number, frontBytes: number) {
+  constructor(cache: BrickCache, ridges: RidgeStore | null, ridgeBytes: number, frontBytes: number) {
     this.#cache = cache;
-    this.#contexts = new TraceContexts(ridgeBytes);
+    this.#contexts = new TraceContexts(ridgeBytes, ridges);
     this.guides = new GuideSessions(this.#contexts, frontBytes);
   }
 
@@ -58,7 +61,10 @@ export class TaskRunner {
         return scanHistogram(pyramid, store.volume.range, BINS, signal);
       case "snap": {
         const request = input as Input<"snap">;
-        return snap(this.#contexts.of(store.number, pyramid, request.polarity), request, signal);
+        const context = this.#contexts.of(store.number, pyramid, request.polarity);
+        const found = snap(context, request, signal);
+        this.ridges.around(context, request.at);
+        return found;
       }
       case "solve": {
         const { strands, parameters } = input as Input<"solve">;
@@ -68,7 +74,7 @@ export class TaskRunner {
         return { curves: strands.map((strand) => curveOf(solveStrand(pyramid, strand, parameters, signal, context))) };
       }
       case "warm":
-        this.#contexts.warm(store.number, pyramid, store.polarity);
+        this.ridges.warm(this.#contexts.of(store.number, pyramid, store.polarity), (input as Input<"warm">).backwards);
         return null;
       case "open-guide":
         this.guides.open(store.number, pyramid, input as Input<"open-guide">);
@@ -84,6 +90,7 @@ export class TaskRunner {
   #forget(store: number): null {
     this.guides.forget(store);
     this.planes.forget();
+    this.ridges.forget();
     this.#contexts.forget(store);
     this.#stores.get(store)?.close();
     this.#stores.delete(store);

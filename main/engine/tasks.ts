@@ -49,7 +49,7 @@ export interface EngineTasks {
   histogram: { input: null; answer: HistogramAnswer };
   snap: { input: SnapRequest; answer: SnapAnswer };
   solve: { input: SolveRequest; answer: { curves: readonly SolvedCurve[] } };
-  warm: { input: null; answer: null };
+  warm: { input: { backwards: boolean }; answer: null };
   "open-guide": { input: GuideRef; answer: null };
   "preview-guide": { input: { guide: GuideRef; to: PointMm }; answer: GuidePreviewAnswer };
   figures: { input: null; answer: CacheFigures };
@@ -79,6 +79,8 @@ export type FromWorker =
 export interface WorkerStart {
   readonly worker: number;
   readonly memory: CacheMemory;
+  /** Ridge tiles that the workers share; null where sharing is not worth while. */
+  readonly ridges: CacheMemory | null;
   /** What the pool tells its workers while they compute; see `Calls`. */
   readonly calls: SharedArrayBuffer;
   /** Bytes this worker may keep for ridge tiles and grey values, and for the fronts of guide sessions. */

@@ -1,7 +1,8 @@
-// A worker thread of the engine: one task at a time. Between tasks the guide's fronts grow and the planes ahead are fetched.
+// A worker thread of the engine: one task at a time. Between tasks the guide's fronts grow, and planes and ridges are made ahead.
 import { parentPort, workerData } from "node:worker_threads";
 import { BrickCache } from "#main/engine/brick-cache.ts";
 import { Calls } from "#main/engine/calls.ts";
+import { RidgeStore } from "#main/engine/ridge-store.ts";
 import { TaskRunner } from "#main/engine/run-task.ts";
 import type { FromWorker, ToWorker, WorkerStart } from "#main/engine/tasks.ts";
 import { encodeError, isTautlineError } from "#shared/errors.ts";
@@ -10,7 +11,8 @@ const start = workerData as WorkerStart;
 const port = parentPort!;
 const calls = new Calls(start.calls);
 // Clears what a dead thread of this number left in the cache, before anything else.
-const runner = new TaskRunner(new BrickCache(start.memory, start.worker), start.ridgeBytes, start.frontBytes);
+const ridges = start.ridges && new RidgeStore(start.ridges, start.worker);
+const runner = new TaskRunner(new BrickCache(start.memory, start.worker), ridges, start.ridgeBytes, start.frontBytes);
 let idling = false;
 let received = 0;
 
@@ -38,7 +40,8 @@ function idle(): void {
   const signal = calls.signalBeyond(start.worker, received);
   try {
     if (runner.guides.growing) runner.guides.grow(signal);
-    else runner.planes.fetch(signal);
+    else if (runner.planes.busy) runner.planes.fetch(signal);
+    else runner.ridges.makeNext();
   } catch (error) {
     // Nobody asked for this work: the request that needs it meets the same error and reports it.
     if (!isTautlineError(error)) console.error(error);
@@ -47,7 +50,7 @@ function idle(): void {
 }
 
 function idleSoon(): void {
-  if (idling || !(runner.guides.growing || runner.planes.busy)) return;
+  if (idling || !(runner.guides.growing || runner.planes.busy || runner.ridges.busy)) return;
   idling = true;
   setImmediate(idle);
 }

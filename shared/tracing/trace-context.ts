@@ -1,6 +1,6 @@
 import { extendedPyramid } from "#shared/tracing/extended-pyramid.ts";
 import { type GreyLevels, greyLevels } from "#shared/tracing/grey-levels.ts";
-import { createRidgeTiles, type RidgeTiles } from "#shared/tracing/ridge/ridge-tiles.ts";
+import { createRidgeTiles, type RidgeTileStore, type RidgeTiles } from "#shared/tracing/ridge/ridge-tiles.ts";
 import { finestSpacing } from "#shared/tracing/ridge/scales.ts";
 import { createSampler, type Sampler } from "#shared/tracing/sampler.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
@@ -32,6 +32,8 @@ export interface TraceCaches {
   readonly ridgeTiles?: number;
   /** Bricks of grey values (144 KB each). */
   readonly bricks?: number;
+  /** Ridge answers of single levels shared with other contexts of this scan and polarity. */
+  readonly ridgeStore?: RidgeTileStore | null;
 }
 
 /** The context of a scan and polarity; keep it as long as the scan is in use: it holds the ridge tiles already made. */
@@ -41,7 +43,7 @@ export function createTraceContext(scan: VoxelPyramid, polarity: Polarity, cache
     pyramid,
     sign: polarity === "bright" ? 1 : -1,
     levels: greyLevels(pyramid, polarity),
-    ridges: createRidgeTiles(pyramid, polarity, caches.ridgeTiles),
+    ridges: createRidgeTiles(pyramid, polarity, caches.ridgeTiles, caches.ridgeStore),
     sampler: createSampler(pyramid, caches.bricks),
     workingLevel: workingLevel(pyramid),
   };

@@ -13,7 +13,7 @@ const LEAST_DOUBTFUL = 3;
 
 /**
  * The guide from the session's pin to a place: for the eye, not for the record (see `solveStrand`). Coarse when it comes
- * from a coarser level, or, as a straight line without image fit, from none. The fit of a point is its ridge answer over the
+ * from a coarser level or leans on the side of what was searched, or, as a straight line without image fit, from none. The fit of a point is its ridge answer over the
  * path's own typical one; where the answer is that of no string, the stretch is doubtful.
  * @param shouldStop as for `pathToPlace`.
  */
@@ -37,7 +37,7 @@ export function previewGuide(guide: GuideFronts, to: PointMm, shouldStop: (front
   const imageFit = meanFit(path.points, fits);
   return {
     points: shownPoints(guide, path.points, to, Math.min(...grid.spacing)),
-    coarse: path.level !== context.workingLevel,
+    coarse: path.level !== context.workingLevel || path.leans,
     imageFit,
     doubtful: weakStretches(strengths, least),
   };

@@ -12,6 +12,9 @@ export const RIDGE_TILE_VOXELS = RIDGE_TILE_SIDE ** 3;
 /** A voxel one sigma from the crest answers half as strongly as the curvatures there alone would make it. */
 const DAMPING = 0.25;
 
+/** Own answers kept here as well when a store keeps them: those of the coarse levels are needed again and again. */
+const KEPT_BESIDE_STORE = 48;
+
 /** The multi-scale ridge measure over one tile. */
 export interface RidgeTile {
   /** shape [32, 32, 32], z y x, x fastest; grey values of contrast; the strongest answer over the scales of the working level. */
@@ -33,6 +36,25 @@ export interface RidgeTiles {
   tile(level: number, i: number, j: number, k: number, count?: number): RidgeTile;
 }
 
+/** Which own answer: of the first `count` scales of a working level that live on `level`, over its tile `number` (x fastest). */
+export interface OwnTileKey {
+  readonly working: number;
+  readonly count: number;
+  readonly level: number;
+  readonly number: number;
+}
+
+/** Keeps the answers of single levels for several users of one scan and polarity. */
+export interface RidgeTileStore {
+  /** Fills both arrays (shape [32, 32, 32]) with the kept tile; when there is none, `compute` makes it, writing every voxel. */
+  tileInto(
+    key: OwnTileKey,
+    strength: Float32Array,
+    scale: Uint8Array,
+    compute: (strength: Float32Array, scale: Uint8Array) => void,
+  ): void;
+}
+
 /** Strongest answer of the scales that live on one level, on that level's own grid. */
 interface OwnAnswer {
   readonly strength: Float32Array;
@@ -42,8 +64,14 @@ interface OwnAnswer {
 /**
  * The ridge tiles of a pyramid, computed when asked for and kept up to `keepTiles` per kind; those used longest ago go first.
  * Scales of coarser levels are computed on their own grid and carried to the working grid by linear interpolation.
+ * @param store shared with others that work on the same scan and polarity; the tiles are the same numbers with it or without.
  */
-export function createRidgeTiles(pyramid: VoxelPyramid, polarity: Polarity, keepTiles = 512): RidgeTiles {
+export function createRidgeTiles(
+  pyramid: VoxelPyramid,
+  polarity: Polarity,
+  keepTiles = 512,
+  store: RidgeTileStore | null = null,
+): RidgeTiles {
   const sign = polarity === "bright" ? 1 : -1;
   const kernel = createRidgeKernel();
   const scalesOfLevel = new Map<number, readonly RidgeScale[]>();
@@ -85,8 +113,28 @@ export function createRidgeTiles(pyramid: VoxelPyramid, polarity: Polarity, keep
     const key = `${working} ${here.length} ${level} ${i} ${j} ${k}`;
     const known = recalled(own, key);
     if (known) return known;
-    const strength = new Float32Array(RIDGE_TILE_VOXELS);
-    const scale = new Uint8Array(RIDGE_TILE_VOXELS).fill(here[0]!);
+    const made = { strength: new Float32Array(RIDGE_TILE_VOXELS), scale: new Uint8Array(RIDGE_TILE_VOXELS) };
+    const [gx, gy, gz] = pyramid.levels[level]!.size.map((side) => Math.ceil(side / RIDGE_TILE_SIDE)) as [number, number, number];
+    const compute = (strength: Float32Array, scale: Uint8Array) => computeOwn(list, here, level, [i, j, k], strength, scale);
+    if (store && i >= 0 && j >= 0 && k >= 0 && i < gx && j < gy && k < gz)
+      store.tileInto({ working, count: here.length, level, number: (k * gy + j) * gx + i }, made.strength, made.scale, compute);
+    else compute(made.strength, made.scale);
+    own.set(key, made);
+    dropOldest(own, store ? KEPT_BESIDE_STORE : keepTiles);
+    return made;
+  };
+
+  /** Writes the strongest answer over one tile of the scales numbered `here`, all of the level. */
+  const computeOwn = (
+    list: readonly RidgeScale[],
+    here: readonly number[],
+    level: number,
+    [i, j, k]: readonly [number, number, number],
+    strength: Float32Array,
+    scale: Uint8Array,
+  ): void => {
+    strength.fill(0);
+    scale.fill(here[0]!);
     // Only what lies inside the level is computed: on coarse levels that is often a small part of a tile.
     const { size: whole } = pyramid.levels[level]!;
     const n = RIDGE_TILE_SIDE;
@@ -124,10 +172,6 @@ export function createRidgeTiles(pyramid: VoxelPyramid, polarity: Polarity, keep
             }
         }
     }
-    const made = { strength, scale };
-    own.set(key, made);
-    dropOldest(own, keepTiles);
-    return made;
   };
 
   return {
@@ -207,12 +251,15 @@ function raiseByCoarse(
   const box = new Float32Array(cx * cy * cz);
   const boxScale = new Uint8Array(cx * cy * cz);
   if (!gatherInto(first, count, ownTile, box, boxScale)) return;
+  // First the rows of the box that lie about a row of the tile, then along the row: x last, where the voxels are many.
+  const row = new Float64Array(cx);
+  const [lowX, highX, weightX] = [low[0]!, high[0]!, weight[0]!];
   let v = 0;
   for (let z = 0; z < n; z++) {
     const za = (low[2]![z]! - first[2]!) * cy;
     const zb = (high[2]![z]! - first[2]!) * cy;
     const wz = weight[2]![z]!;
-    for (let y = 0; y < n; y++) {
+    for (let y = 0; y < n; y++, v += n) {
       const ya = low[1]![y]! - first[1]!;
       const yb = high[1]![y]! - first[1]!;
       const wy = weight[1]![y]!;
@@ -220,20 +267,18 @@ function raiseByCoarse(
       const ab = (za + yb) * cx;
       const ba = (zb + ya) * cx;
       const bb = (zb + yb) * cx;
-      for (let x = 0; x < n; x++, v++) {
-        const xa = low[0]![x]! - first[0]!;
-        const xb = high[0]![x]! - first[0]!;
-        const wx = weight[0]![x]!;
-        const p = box[aa + xa]! + wx * (box[aa + xb]! - box[aa + xa]!);
-        const q = box[ab + xa]! + wx * (box[ab + xb]! - box[ab + xa]!);
-        const r = box[ba + xa]! + wx * (box[ba + xb]! - box[ba + xa]!);
-        const s = box[bb + xa]! + wx * (box[bb + xb]! - box[bb + xa]!);
-        const pq = p + wy * (q - p);
-        const rs = r + wy * (s - r);
-        const value = Math.fround(pq + wz * (rs - pq));
-        if (value > strength[v]!) {
-          strength[v] = value;
-          scale[v] = boxScale[((wz < 0.5 ? za : zb) + (wy < 0.5 ? ya : yb)) * cx + (wx < 0.5 ? xa : xb)]!;
+      for (let x = 0; x < cx; x++) {
+        const p = box[aa + x]! + wy * (box[ab + x]! - box[aa + x]!);
+        const q = box[ba + x]! + wy * (box[bb + x]! - box[ba + x]!);
+        row[x] = p + wz * (q - p);
+      }
+      const nearest = ((wz < 0.5 ? za : zb) + (wy < 0.5 ? ya : yb)) * cx - first[0]!;
+      for (let x = 0; x < n; x++) {
+        const from = row[lowX[x]! - first[0]!]!;
+        const value = Math.fround(from + weightX[x]! * (row[highX[x]! - first[0]!]! - from));
+        if (value > strength[v + x]!) {
+          strength[v + x] = value;
+          scale[v + x] = boxScale[nearest + (weightX[x]! < 0.5 ? lowX[x]! : highX[x]!)]!;
         }
       }
     }

@@ -106,6 +106,34 @@ describe("A guide", () => {
     expect(previewGuide(fresh, to, patient)).toEqual(previewGuide(grown, to, patient));
   });
 
+  test("answers from the front between pin and pointer, before the one that goes everywhere has grown", () => {
+    const fresh = openGuideFronts(context, grown.from, 64e6);
+    const to = place([...winding(45)]);
+    expect(previewGuide(fresh, to, patient).coarse).toBe(false);
+    expect(fresh.fronts.map(({ front }) => front.settled)).toEqual(fresh.fronts.map(() => 0));
+    const { near } = fresh;
+    expect(previewGuide(fresh, place([...winding(40)]), patient).coarse).toBe(false);
+    expect(fresh.near).toBe(near);
+  });
+
+  test("grows towards the pointer first while it rests, so that the guide becomes fine", () => {
+    const fresh = openGuideFronts(context, grown.from, 64e6);
+    const to = place([...winding(60)]);
+    expect(previewGuide(fresh, to, () => true).coarse).toBe(true);
+    const wide = fresh.fronts[0]!.front;
+    let slices = 0;
+    while (previewGuide(fresh, to, () => true).coarse && slices < 10_000) {
+      let looks = 0;
+      slices++;
+      // One bite a slice, so that nothing else grows in the slice in which the guide arrives.
+      growGuideFronts(fresh, () => looks++ > 0);
+    }
+    expect(slices).toBeLessThan(10_000);
+    expect(wide.settled).toBe(0);
+    expect(growGuideFronts(fresh, () => wide.settled > 0)).toBe(true);
+    expect(wide.settled).toBeGreaterThan(0);
+  });
+
   test("shows a coarser level's path, or a straight line without image fit, until the fine front has arrived", () => {
     const fresh = openGuideFronts(context, grown.from, 64e6);
     const to = place([...winding(60)]);
