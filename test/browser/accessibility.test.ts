@@ -42,6 +42,15 @@ describe("accessibility of shelf and desk", () => {
     const { page } = open;
     await page.getByRole("button", { name: /^Open.*AN-1, pass 1/ }).click();
     await deskReady(page);
+    // The demo's passes are finished: they open for looking only.
+    await inBothThemes(async (theme) => expect(await seriousViolations(page), `finished, ${theme}`).toEqual([]));
+    await page.keyboard.press("Shift+B");
+    await page.locator(".playback-bar").waitFor();
+    await page.keyboard.press("Shift+B");
+    await inBothThemes(async (theme) => expect(await seriousViolations(page), `play back, ${theme}`).toEqual([]));
+    await page.keyboard.press("Escape");
+    await page.getByRole("button", { name: "Work on it again" }).click();
+    await page.locator(".finished-banner").waitFor({ state: "detached" });
     await page.locator(".tree-row").first().click();
     await inBothThemes(async (theme) => expect(await seriousViolations(page), `trees, ${theme}`).toEqual([]));
     await page.getByRole("tab", { name: /^Findings/ }).click();

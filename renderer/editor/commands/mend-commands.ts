@@ -126,7 +126,8 @@ export const MEND_COMMANDS: readonly Command<DeskContext>[] = [
     group: "Mend",
     label: "Set a radius by hand, on the strand here or at the place chosen on the strip",
     keys: ["Shift+W"],
-    enabled: (context) => canEdit(context) && (strandUnder(context) ?? selectedStrand(context)) !== null,
+    enabled: (context) =>
+      canEdit(context) && (strandUnder(context) !== null || Object.keys(context.editor.selection.value).length > 0),
     perform: (context) => context.screen.setRadius(strandUnder(context)),
   },
   {
