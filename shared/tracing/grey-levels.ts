@@ -25,23 +25,27 @@ export function greyLevels(pyramid: VoxelPyramid, polarity: Polarity): GreyLevel
   const sign = polarity === "bright" ? 1 : -1;
   let min = Number.POSITIVE_INFINITY;
   let max = Number.NEGATIVE_INFINITY;
-  for (const value of values) {
+  const n = values.length;
+  for (let i = 0; i < n; i++) {
+    const value = values[i]!;
     if (value < min) min = value;
     if (value > max) max = value;
   }
   if (!(max > min)) return { background: Number.isFinite(min) ? min : 0, noise: 1, contrast: 1 };
   const background = modeOf(values, min, max);
   // Values beyond the mode on the side away from the strings are background alone: their spread is the noise.
-  const away: number[] = [];
-  const towards: number[] = [];
-  for (const value of values) {
-    const excess = sign * (value - background);
-    if (excess <= 0) away.push(-excess);
-    else towards.push(excess);
+  const away = new Float64Array(n);
+  const towards = new Float64Array(n);
+  let awayCount = 0;
+  let towardsCount = 0;
+  for (let i = 0; i < n; i++) {
+    const excess = sign * (values[i]! - background);
+    if (excess <= 0) away[awayCount++] = -excess;
+    else towards[towardsCount++] = excess;
   }
   // The 68.3 % point of the folded half of a normal distribution is one standard deviation.
-  const noise = Math.max(quantile(away, 0.683), (max - min) / 1000);
-  const beyond = towards.filter((excess) => excess > 4 * noise);
+  const noise = Math.max(quantile(away.subarray(0, awayCount), 0.683), (max - min) / 1000);
+  const beyond = towards.subarray(0, towardsCount).filter((excess) => excess > 4 * noise);
   const contrast = beyond.length >= 32 ? quantile(beyond, 0.5) : 5 * noise;
   return { background, noise, contrast: Math.max(contrast, 3 * noise) };
 }
@@ -62,7 +66,7 @@ function sampleValues(pyramid: VoxelPyramid): Float32Array {
     for (const y of starts[1]!)
       for (const x of starts[0]!) {
         pyramid.readBoxInto(0, [x, y, z], patch, finite);
-        for (const value of finite) if (Number.isFinite(value)) values[at++] = value;
+        for (let v = 0; v < voxels; v++) if (Number.isFinite(finite[v]!)) values[at++] = finite[v]!;
       }
   return values.subarray(0, at);
 }
@@ -76,7 +80,8 @@ function modeOf(values: Float32Array, min: number, max: number): number {
     const bins = round === 0 ? 256 : 64;
     const counts = new Float64Array(bins + 4);
     const scale = bins / (high - low);
-    for (const value of values) {
+    for (let i = 0; i < values.length; i++) {
+      const value = values[i]!;
       if (value < low || value > high) continue;
       const bin = Math.min(bins - 1, Math.floor((value - low) * scale)) + 2;
       counts[bin] = counts[bin]! + 1;
@@ -99,8 +104,32 @@ function modeOf(values: Float32Array, min: number, max: number): number {
   return mode;
 }
 
-function quantile(values: number[], share: number): number {
+/** The value below which a share of the values lies; reorders them. */
+function quantile(values: Float64Array, share: number): number {
   if (values.length === 0) return 0;
-  const sorted = Float64Array.from(values).sort();
-  return sorted[Math.min(sorted.length - 1, Math.floor(share * sorted.length))]!;
+  return selectInPlace(values, Math.min(values.length - 1, Math.floor(share * values.length)));
+}
+
+/** What would stand at place `k` if the values were sorted; reorders them. @source Hoare 1961 (quickselect). */
+function selectInPlace(values: Float64Array, k: number): number {
+  let left = 0;
+  let right = values.length - 1;
+  while (left < right) {
+    const pivot = values[(left + right) >> 1]!;
+    let i = left;
+    let j = right;
+    while (i <= j) {
+      while (values[i]! < pivot) i++;
+      while (values[j]! > pivot) j--;
+      if (i <= j) {
+        const kept = values[i]!;
+        values[i++] = values[j]!;
+        values[j--] = kept;
+      }
+    }
+    if (k <= j) right = j;
+    else if (k >= i) left = i;
+    else break;
+  }
+  return values[k]!;
 }

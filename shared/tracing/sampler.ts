@@ -14,9 +14,18 @@ export interface Sampler {
 /** A sampler over a pyramid that keeps up to `keepBricks` bricks of 33^3 values (144 KB each). */
 export function createSampler(pyramid: VoxelPyramid, keepBricks = 384): Sampler {
   const bricks = new Map<number, Float32Array>();
-  let lastKey = -1;
+  // The brick of the place before: most places lie in the same one.
+  let lastLevel = -1;
+  let lastI = -1;
+  let lastJ = -1;
+  let lastK = -1;
   let last = new Float32Array(0);
-  const brickOf = (level: number, i: number, j: number, k: number, key: number): Float32Array<ArrayBuffer> => {
+  // Highest index of the level of the place before, along x, y, z.
+  let topX = 0;
+  let topY = 0;
+  let topZ = 0;
+  const brickOf = (level: number, i: number, j: number, k: number): Float32Array<ArrayBuffer> => {
+    const key = ((level * 4096 + k) * 4096 + j) * 4096 + i;
     let brick = bricks.get(key) as Float32Array<ArrayBuffer> | undefined;
     if (!brick) {
       brick = new Float32Array(WITH_NEIGHBOUR ** 3);
@@ -29,20 +38,28 @@ export function createSampler(pyramid: VoxelPyramid, keepBricks = 384): Sampler 
   return {
     pyramid,
     at(level, x, y, z) {
-      const { size } = pyramid.levels[level]!;
-      const cx = Math.min(Math.max(x, 0), size[0] - 1);
-      const cy = Math.min(Math.max(y, 0), size[1] - 1);
-      const cz = Math.min(Math.max(z, 0), size[2] - 1);
+      if (level !== lastLevel) {
+        const { size } = pyramid.levels[level]!;
+        topX = size[0] - 1;
+        topY = size[1] - 1;
+        topZ = size[2] - 1;
+        lastLevel = level;
+        lastI = -1;
+      }
+      const cx = Math.min(Math.max(x, 0), topX);
+      const cy = Math.min(Math.max(y, 0), topY);
+      const cz = Math.min(Math.max(z, 0), topZ);
       const ix = Math.floor(cx);
       const iy = Math.floor(cy);
       const iz = Math.floor(cz);
       const i = ix >> 5;
       const j = iy >> 5;
       const k = iz >> 5;
-      const key = ((level * 4096 + k) * 4096 + j) * 4096 + i;
-      if (key !== lastKey) {
-        last = brickOf(level, i, j, k, key);
-        lastKey = key;
+      if (i !== lastI || j !== lastJ || k !== lastK) {
+        last = brickOf(level, i, j, k);
+        lastI = i;
+        lastJ = j;
+        lastK = k;
       }
       const brick = last;
       const o = ((iz & 31) * WITH_NEIGHBOUR + (iy & 31)) * WITH_NEIGHBOUR + (ix & 31);

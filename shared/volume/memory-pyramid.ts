@@ -60,7 +60,7 @@ function copyBoxInto(
       const first = source[row]!;
       const last = source[row + nx - 1]!;
       for (let x = 0; x < inside0; x++) out[to + x] = sx + x < 0 ? first : last;
-      if (inside1 > inside0) out.set(source.subarray(row + sx + inside0, row + sx + inside1), to + inside0);
+      for (let x = inside0; x < inside1; x++) out[to + x] = source[row + sx + x]!;
       for (let x = inside1; x < wx; x++) out[to + x] = sx + x < 0 ? first : last;
     }
   }

@@ -1,5 +1,12 @@
 const SETTLED = 32;
 const CODE = 31;
+/**
+ * Share of the least cost that a front with a goal counts on for the way still to go. The rest is the smallest edge that is
+ * left, and with it the width of the buckets.
+ */
+const FORESIGHT = 0.9;
+/** Costs may lie below the least one by their rounding to float32. */
+const ROUNDING = 0.999;
 /** Source mark: a label that came from nowhere. */
 const FROM_NOWHERE = 27;
 
@@ -29,9 +36,24 @@ export interface Front {
   settled: number;
   /** No label is left to settle. */
   exhausted: boolean;
-  /** Distances below this are final. */
+  /** Labels are settled in the order of their distance, with a goal of distance + foresight; those below this are final. */
   reach: number;
+  readonly goal: Goal | null;
   readonly queue: BucketQueue;
+}
+
+/**
+ * Where a front is wanted. Its labels are settled in the order of distance + perMm / 2 (way to the goal - way from the source -
+ * way from source to goal), ways as the crow flies: those that lead away wait. Distances stay exact.
+ */
+interface Goal {
+  /** Source and goal: x, y, z in voxels of the box, each. */
+  readonly source: readonly [number, number, number];
+  readonly voxel: readonly [number, number, number];
+  /** Cost per millimetre that every way is sure to have. */
+  readonly perMm: number;
+  /** Way from source to goal as the crow flies, millimetres. */
+  readonly apartMm: number;
 }
 
 /** Buckets of labels in a ring; a label may wait in several buckets, only its first arrival counts. */
@@ -58,14 +80,17 @@ const STEPS: readonly (readonly [number, number, number])[] = (() => {
 
 /**
  * A front at its source, ready to be expanded. Memory: 9 bytes a voxel of the box (touched only where the front goes).
+ * @param goal voxel that the front is wanted at, or -1; two fronts with each other's source as goal suit `meetFronts`.
  * @throws RangeError when the source lies outside the box.
+ * @source the order with a goal: Ikeda et al. 1994 (two fronts with one consistent estimate), own share.
  */
-export function createFront(domain: FrontDomain, source: number): Front {
+export function createFront(domain: FrontDomain, source: number, goal = -1): Front {
   const voxels = domain.size[0] * domain.size[1] * domain.size[2];
   if (!(source >= 0 && source < voxels)) throw new RangeError(`a source below ${voxels} expected, found ${source}`);
   // Just below the smallest edge: a label that is settled can then never improve another of its own bucket.
-  const width = domain.leastCost * Math.min(...domain.spacing) * 0.999;
-  const longest = domain.mostCost * Math.hypot(...domain.spacing);
+  const share = goal < 0 ? 0 : FORESIGHT;
+  const width = (1 - share) * domain.leastCost * Math.min(...domain.spacing) * ROUNDING;
+  const longest = (domain.mostCost + share * domain.leastCost) * Math.hypot(...domain.spacing);
   let ring = 4;
   while (ring < longest / width + 3) ring *= 2;
   const front: Front = {
@@ -76,6 +101,7 @@ export function createFront(domain: FrontDomain, source: number): Front {
     settled: 0,
     exhausted: false,
     reach: 0,
+    goal: goal < 0 ? null : goalOf(domain, source, goal),
     queue: {
       width,
       heads: new Int32Array(ring).fill(-1),
@@ -94,6 +120,34 @@ export function createFront(domain: FrontDomain, source: number): Front {
   return front;
 }
 
+function goalOf(domain: FrontDomain, source: number, goal: number): Goal {
+  const [nx, ny] = domain.size;
+  const placeOf = (voxel: number) => [voxel % nx, Math.floor(voxel / nx) % ny, Math.floor(voxel / (nx * ny))] as const;
+  const [a, b] = [placeOf(source), placeOf(goal)];
+  const apartMm = Math.hypot(...domain.spacing.map((mm, axis) => (a[axis]! - b[axis]!) * mm));
+  return { source: a, voxel: b, perMm: FORESIGHT * domain.leastCost * ROUNDING, apartMm };
+}
+
+/** What a label at a voxel of the box has to wait for, beside its distance; not below 0 together with the distance. */
+function foresight(
+  { source, voxel, perMm, apartMm }: Goal,
+  spacing: FrontDomain["spacing"],
+  x: number,
+  y: number,
+  z: number,
+): number {
+  const [sx, sy, sz] = spacing;
+  const toX = (x - voxel[0]) * sx;
+  const toY = (y - voxel[1]) * sy;
+  const toZ = (z - voxel[2]) * sz;
+  const fromX = (x - source[0]) * sx;
+  const fromY = (y - source[1]) * sy;
+  const fromZ = (z - source[2]) * sz;
+  const to = Math.sqrt(toX * toX + toY * toY + toZ * toZ);
+  const from = Math.sqrt(fromX * fromX + fromY * fromY + fromZ * fromZ);
+  return (perMm / 2) * (to - from - apartMm);
+}
+
 /** Where two fronts met: the cheapest sum so far and the voxel it runs through. */
 export interface Meeting {
   readonly other: Front;
@@ -110,7 +164,7 @@ export interface Meeting {
  * @source Dijkstra 1959; buckets no wider than the smallest edge, Dial 1969, Dinic 1978.
  */
 export function expandFront(front: Front, budget: number, target = -1, meeting: Meeting | null = null): number {
-  const { distance, mark, queue, domain } = front;
+  const { distance, mark, queue, domain, goal } = front;
   const { cost, fill } = domain;
   const [nx, ny, nz] = domain.size;
   const plane = nx * ny;
@@ -188,7 +242,13 @@ export function expandFront(front: Front, budget: number, target = -1, meeting: 
                 queue.next = next;
               }
             }
-            const place = Math.floor(candidate * perWidth) & ringMask;
+            let key = candidate;
+            if (goal !== null) {
+              const [stepX, stepY, stepZ] = STEPS[code]!;
+              // The source alone stands at 0; rounding must not put a label beside it below.
+              key = Math.max(0, candidate + foresight(goal, domain.spacing, x + stepX, y + stepY, z + stepZ));
+            }
+            const place = Math.floor(key * perWidth) & ringMask;
             voxels[slot] = u;
             next[slot] = heads[place]!;
             heads[place] = slot;

@@ -10,11 +10,11 @@ export type MeetResult =
 
 /**
  * The exact cheapest path between two voxels by two fronts that grow towards each other: they visit far fewer voxels than
- * one, since each needs to reach only half the cost. The path runs from `from` to `to`, both included.
+ * one, since each needs to reach only half the cost, and leave what leads away from the other for later. The path runs from `from` to `to`, both included.
  * Ends when the two reaches together exceed the cheapest meeting.
  * @param budget most voxels to settle on both sides together.
  * @throws RangeError when a voxel lies outside the box.
- * @source Pohl 1971 (bi-directional search).
+ * @source Pohl 1971 (bi-directional search), Ikeda et al. 1994 (with one consistent estimate for both).
  */
 export function meetFronts(
   domain: FrontDomain,
@@ -23,14 +23,16 @@ export function meetFronts(
   budget: number,
   shouldStop: () => boolean = () => false,
 ): MeetResult {
-  const a = createFront(domain, from);
+  const a = createFront(domain, from, to);
   if (from === to) return { kind: "met", path: Int32Array.of(from), cost: 0, settled: 0 };
-  const b = createFront(domain, to);
+  const b = createFront(domain, to, from);
+  // Both count on the same way between them: the two orders of a voxel add up to its path's cost less this.
+  const counted = a.goal!.perMm * a.goal!.apartMm;
   const meetingOfA: Meeting = { other: b, best: Number.POSITIVE_INFINITY, voxel: -1 };
   const meetingOfB: Meeting = { other: a, best: Number.POSITIVE_INFINITY, voxel: -1 };
   for (;;) {
     const best = Math.min(meetingOfA.best, meetingOfB.best);
-    if (a.reach + b.reach >= best || (best < Number.POSITIVE_INFINITY && (a.exhausted || b.exhausted))) break;
+    if (a.reach + b.reach >= best - counted || (best < Number.POSITIVE_INFINITY && (a.exhausted || b.exhausted))) break;
     const settled = a.settled + b.settled;
     if (a.exhausted || b.exhausted) return { kind: "blocked", settled };
     if (settled >= budget) return { kind: "over-budget", settled };
