@@ -52,6 +52,9 @@ describe("a finished pass of the demo valve", () => {
     await page.getByLabel("Radius, mm").waitFor();
     expect(await seriousViolations(page)).toEqual([]);
     const now = page.locator(".radius-form p").first();
+    // The strand is 6.9 mm long; the middle of the strip is the middle of the strand.
+    const arcMm = Number(/, ([\d.]+) mm from its lower end/.exec((await now.textContent())!)![1]);
+    expect(Math.abs(arcMm - 3.45)).toBeLessThan(0.3);
     await page.getByLabel("Radius, mm").fill("1.25");
     await page.getByRole("button", { name: "Set the radius", exact: true }).click();
     await page.waitForFunction(

@@ -1,7 +1,7 @@
 import { computed, effect, type ReadonlySignal, type Signal, signal } from "@preact/signals";
 import type { Services } from "#renderer/app/services.ts";
 import { type ShownFinding, shownFindings } from "#renderer/desk/model/findings.ts";
-import { type LineFacts, lineFacts } from "#renderer/desk/model/line-facts.ts";
+import { type LineFacts, lineFacts, selectedLine } from "#renderer/desk/model/line-facts.ts";
 import type { PlaceOnStrand } from "#renderer/desk/model/place-on-strip.ts";
 import { lookAtRecovered } from "#renderer/desk/model/recovered-edits.ts";
 import { type FollowedLine, SectionModel } from "#renderer/desk/model/section-model.ts";
@@ -14,7 +14,6 @@ import type { PassSummary, SpecimenRecord } from "#shared/api/specimen.ts";
 import { arcLengths } from "#shared/geometry/polyline.ts";
 import { type Measures, measureTrees } from "#shared/measure/measure-trees.ts";
 import type { TraceParameters } from "#shared/tracing/strand-request.ts";
-import type { CrossLinkId, StrandId } from "#shared/trees/document.ts";
 import { polylineOf } from "#shared/trees/geometry.ts";
 import { plainFromDocument } from "#shared/trees/plain-from-document.ts";
 
@@ -109,7 +108,7 @@ export class DeskModel {
     void lookAtRecovered(this);
   }
 
-  /** The line that across and along planes follow: the live guide, else the selected strand. */
+  /** The line that across and along planes follow: the live guide, else the line that the strip shows. */
   followed(): FollowedLine | null {
     const guide = this.editor.guide.value;
     if (guide !== null && guide.points.length > 1) {
@@ -117,12 +116,10 @@ export class DeskModel {
       const doubtful = guide.doubtful.map(([a, b]) => [at[a] ?? 0, at[b] ?? 0] as const);
       return { points: guide.points, doubtful };
     }
-    const { strand } = this.editor.selection.value;
     const document = this.editor.document.value;
-    const line = strand?.startsWith("x")
-      ? document.crossLinks.get(strand as CrossLinkId)
-      : document.strands.get(strand as StrandId);
-    return line === undefined ? null : { points: polylineOf(document, line), doubtful: [] };
+    // The line that the strip shows, so that a click on the strip goes there.
+    const line = selectedLine(document, this.editor.selection.value);
+    return line === null ? null : { points: polylineOf(document, line), doubtful: [] };
   }
 
   dispose(): void {
