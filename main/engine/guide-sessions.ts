@@ -3,7 +3,7 @@ import type { GuideRef } from "#main/engine/tasks.ts";
 import type { TraceContexts } from "#main/engine/trace-contexts.ts";
 import type { GuidePreviewAnswer } from "#shared/api/engine.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
-import { type GuideFronts, growGuideFronts, openGuideFronts } from "#shared/tracing/guide/guide-fronts.ts";
+import { type GuideFronts, growGuideFronts, isAwaited, openGuideFronts } from "#shared/tracing/guide/guide-fronts.ts";
 import { previewGuide } from "#shared/tracing/guide/guide-preview.ts";
 import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 
@@ -36,6 +36,11 @@ export class GuideSessions {
   /** True while fronts can grow between messages. */
   get growing(): boolean {
     return this.#session?.growing ?? false;
+  }
+
+  /** True while the pointer waits for what grows. */
+  get awaited(): boolean {
+    return this.#session !== null && isAwaited(this.#session.guide);
   }
 
   open(store: number, pyramid: VoxelPyramid, ref: GuideRef): Session {

@@ -13,6 +13,8 @@ const calls = new Calls(start.calls);
 // Clears what a dead thread of this number left in the cache, before anything else.
 const ridges = start.ridges && new RidgeStore(start.ridges, start.worker);
 const runner = new TaskRunner(new BrickCache(start.memory, start.worker), ridges, start.ridgeBytes, start.frontBytes);
+/** Pause between two slices of work that nobody waits for: half a core stays free for sections and for the page itself. */
+const PAUSE_MS = 6;
 let idling = false;
 let received = 0;
 
@@ -52,7 +54,8 @@ function idle(): void {
 function idleSoon(): void {
   if (idling || !(runner.guides.growing || runner.planes.busy || runner.ridges.busy)) return;
   idling = true;
-  setImmediate(idle);
+  if (runner.planes.busy || (runner.guides.growing && runner.guides.awaited)) setImmediate(idle);
+  else setTimeout(idle, PAUSE_MS);
 }
 
 port.on("message", (message: ToWorker) => {

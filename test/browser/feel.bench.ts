@@ -98,8 +98,11 @@ async function newPin(page: Page, hand: Hand, print: Print, name: string, pin: S
   const previews = log.filter((entry) => entry.what === "guide/preview" && entry.coarse !== null && entry.sent >= opened);
   const first = previews[0];
   const fine = previews.find(({ coarse }) => coarse === false);
-  const after = (entry: Logged | undefined) => (entry ? `${(entry.painted - click).toFixed(0)} ms` : "not within 5 s");
-  print(`${name}: first preview after ${after(first)}${first?.coarse ? " (coarse)" : ""}, fine after ${after(fine)}`);
+  const after = (time: number | undefined) => (time === undefined ? "not within 5 s" : `${(time - click).toFixed(0)} ms`);
+  const way = first ? ` (session asked for after ${after(opened)}, preview after ${after(first.sent)})` : "";
+  print(
+    `${name}: first preview after ${after(first?.painted)}${first?.coarse ? ", coarse" : ""}${way}, fine after ${after(fine?.painted)}`,
+  );
 }
 
 /** One movement at a time, each answered before the next. */

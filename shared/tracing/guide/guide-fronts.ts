@@ -116,6 +116,11 @@ function awaited(guide: GuideFronts): Front | null {
   return null;
 }
 
+/** True while growing brings the guide to where the pointer was last; what grows after that is for places it may go to. */
+export function isAwaited(guide: GuideFronts): boolean {
+  return awaited(guide) !== null;
+}
+
 function holdsPlace({ grid, domain }: GuideFront, place: Vec3): boolean {
   const index = localToIndex(grid, place);
   return ([0, 1, 2] as const).every((k) => isWithin(index[k], domain.start[k], domain.size[k]));
