@@ -4,7 +4,15 @@ import { bestMatching } from "#shared/compare/edit-distance/assignment.ts";
 import { resample } from "#shared/geometry/polyline.ts";
 import { SegmentIndex } from "#shared/geometry/segment-index.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
-import { centreline, type PlainSet, type PlainTree } from "#shared/trees/plain-trees.ts";
+import { measureTrees } from "#shared/measure/measure-trees.ts";
+import { centreline, type PlainNode, type PlainSet, type PlainTree } from "#shared/trees/plain-trees.ts";
+
+/** How many of the reference's strands of one kind were found. */
+export interface DetectionGroup {
+  readonly true: number;
+  readonly missed: number;
+  readonly recall: number;
+}
 
 export interface Detection {
   readonly count: {
@@ -15,8 +23,17 @@ export interface Detection {
     readonly precision: number | null;
   };
   readonly length: { readonly recall: number | null; readonly precision: number | null };
+  /** The reference's strands by branch order; strands that no root reaches stand under null. */
+  readonly byOrder: readonly (DetectionGroup & { readonly order: number | null })[];
+  /** The reference's end strands by the labels of their ends; unlabelled ends are left out. */
+  readonly byLabel: readonly (DetectionGroup & { readonly label: EndLabel; readonly value: string })[];
   readonly reasons: Readonly<Record<string, string>>;
 }
+
+/** Labels of an end that detection is told apart by. */
+const END_LABELS = ["leaflet", "segment", "zone"] as const;
+/** A label of an end that detection is told apart by. */
+export type EndLabel = (typeof END_LABELS)[number];
 
 /**
  * How many of A's strands B has, one to one by affinity, a pair being true when at least half of each lies within
@@ -27,15 +44,15 @@ export function detection(a: PlainSet, b: PlainSet, mergeMm: number, toleranceMm
   const [linesA, linesB] = [canonicalLines(a, mergeMm), canonicalLines(b, mergeMm)];
   const table = affinities(linesA, linesB, step);
   const matched = bestMatching(linesA.length, linesB.length, table.affinity);
-  let found = 0;
-  matched.forEach((j, i) => {
-    if (
+  const isFound = Array.from(
+    matched,
+    (j, i) =>
       j >= 0 &&
       shareWithin(linesA[i]!, [linesB[j]!], toleranceMm, step) >= 0.5 &&
-      shareWithin(linesB[j]!, [linesA[i]!], toleranceMm, step) >= 0.5
-    )
-      found += 1;
-  });
+      shareWithin(linesB[j]!, [linesA[i]!], toleranceMm, step) >= 0.5,
+  );
+  const found = isFound.filter(Boolean).length;
+  const facts = strandFacts(a, mergeMm);
   const reasons: Record<string, string> = {};
   if (linesA.length === 0) reasons.recall = "The reference has no strand.";
   if (linesB.length === 0) reasons.precision = "The compared side has no strand.";
@@ -51,8 +68,42 @@ export function detection(a: PlainSet, b: PlainSet, mergeMm: number, toleranceMm
       recall: linesA.length === 0 ? null : shareWithin(linesA.flat(), linesB, toleranceMm, step),
       precision: linesB.length === 0 ? null : shareWithin(linesB.flat(), linesA, toleranceMm, step),
     },
+    byOrder: grouped(
+      facts.map((fact) => fact.order),
+      isFound,
+    )
+      .map(({ value, ...group }) => ({ order: value, ...group }))
+      .sort((x, y) => (x.order ?? Number.POSITIVE_INFINITY) - (y.order ?? Number.POSITIVE_INFINITY)),
+    byLabel: END_LABELS.flatMap((label) =>
+      grouped(
+        facts.map((fact) => fact.labels?.[label]),
+        isFound,
+      ).flatMap(({ value, ...group }) => (value === undefined ? [] : [{ label, value, ...group }])),
+    ),
     reasons,
   };
+}
+
+/** Branch order of each canonical strand of a set, and the labels of the end it leads to; in the order of {@link canonicalLines}. */
+function strandFacts(set: PlainSet, mergeMm: number): { order: number | null; labels: PlainNode | undefined }[] {
+  return set.trees.flatMap((tree) => {
+    const orders = new Map(measureTrees({ trees: [tree] }).strands.map((strand) => [strand.id, strand.order]));
+    const nodes = new Map(tree.nodes.map((node) => [node.id, node]));
+    const canonical = canonicalTree(tree, mergeMm);
+    return canonical.strands.map((strand) => {
+      const end = [strand.from, strand.to].map((k) => canonical.nodes[k]!).find((node) => node.type === "end");
+      return { order: orders.get(strand.id) ?? null, labels: end && nodes.get(end.id) };
+    });
+  });
+}
+
+/** Counts of found and missed strands for each value that occurs, in order of first occurrence. */
+function grouped<T>(values: readonly T[], isFound: readonly boolean[]): (DetectionGroup & { value: T })[] {
+  return [...new Set(values)].map((value) => {
+    const members = isFound.filter((_, i) => values[i] === value);
+    const hits = members.filter(Boolean).length;
+    return { value, true: hits, missed: members.length - hits, recall: hits / members.length };
+  });
 }
 
 /** Centrelines of the canonical strands of all trees of a set; shape [strands][members][points]. */

@@ -6,6 +6,9 @@ export interface PlainNode {
   readonly id: string;
   readonly kind: string;
   readonly position: readonly number[];
+  readonly leaflet?: string | undefined;
+  readonly segment?: string | undefined;
+  readonly zone?: string | undefined;
 }
 
 /** A strand as measures, checks and comparison read it; `points` from `from` to `to`, millimetres; radii null = below resolution. */

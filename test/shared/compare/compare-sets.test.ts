@@ -72,6 +72,37 @@ describe("comparison of sets", () => {
     expect(answer.whole.detection.count).toEqual({ true: 7, missed: 0, extra: 0, recall: 1, precision: 1 });
   });
 
+  it("tells what was found by branch order and by the labels of ends", () => {
+    const labelled = {
+      ...one,
+      nodes: one.nodes.map((node, k) =>
+        node.kind === "insertion" ? { ...node, leaflet: k === 4 ? "posterior" : "anterior", zone: "rough" } : node,
+      ),
+    };
+    const b = set(
+      fan(
+        "t1",
+        [0, 0, 0],
+        [0, 0, 6],
+        [
+          [-3, 0, 12],
+          [3, 0, 12],
+        ],
+      ),
+    );
+    const { byOrder, byLabel, count } = compareSets(set(labelled), b, OPTIONS, forever).whole.detection;
+    expect(byOrder).toEqual([
+      { order: 1, true: 1, missed: 0, recall: 1 },
+      { order: 2, true: 2, missed: 1, recall: 2 / 3 },
+    ]);
+    expect(byLabel).toEqual([
+      { label: "leaflet", value: "anterior", true: 2, missed: 0, recall: 1 },
+      { label: "leaflet", value: "posterior", true: 0, missed: 1, recall: 0 },
+      { label: "zone", value: "rough", true: 2, missed: 1, recall: 2 / 3 },
+    ]);
+    expect(count).toMatchObject({ true: 3, missed: 1 });
+  });
+
   it("counts an empty side in full: pair-normalised 1", () => {
     const answer = compareSets(set(), set(one, two), OPTIONS, forever);
     expect(answer.whole.normalised).toEqual({ pair: 1, reference: null });
