@@ -11,7 +11,7 @@ export interface PlotLine {
 // Lines differ by dash, mark and shade, so that they can be told apart in greyscale and by colour-blind readers.
 const DASHES = ["", "7 3", "2 3", "9 3 2 3", "5 2 5 6", "1 2"];
 const INKS = ["#0b5a8a", "#a04a00", "#3d6b1f", "#6d3a86", "#8a1c3b", "#30474f"];
-const [WIDTH, HEIGHT, LEFT, RIGHT, TOP, BOTTOM] = [640, 320, 56, 150, 16, 46];
+const [WIDTH, HEIGHT, LEFT, RIGHT, TOP, BOTTOM] = [640, 320, 56, 180, 16, 46];
 
 /** A line chart as SVG. `x` are the places of the values; both axes start and end at the given numbers. */
 export function lineChart(
@@ -38,8 +38,10 @@ export function lineChart(
   const drawn = lines.map((line, k) => {
     const ink = line.quiet ? "#6b747c" : INKS[k % INKS.length]!;
     const points = line.values.flatMap((v, i) => (v === null ? [] : [`${r(px(x[i]!))},${r(py(v))}`]));
-    const name = `<text x="${WIDTH - RIGHT + 10}" y="${r(ends[k]! + 4)}" fill="${ink}">${escapeHtml(line.name.length > 20 ? `${line.name.slice(0, 19)}…` : line.name)}</text>`;
-    return `<polyline points="${points.join(" ")}" fill="none" stroke="${ink}" stroke-width="${line.quiet ? 1.25 : 2.25}" stroke-dasharray="${DASHES[k % DASHES.length]}"/>${name}`;
+    const name = `<text x="${WIDTH - RIGHT + 40}" y="${r(ends[k]! + 4)}" fill="${ink}">${escapeHtml(line.name.length > 18 ? `${line.name.slice(0, 17)}…` : line.name)}</text>`;
+    const pen = `fill="none" stroke="${ink}" stroke-width="${line.quiet ? 1.25 : 2.25}" stroke-dasharray="${DASHES[k % DASHES.length]}"`;
+    const sample = `<line x1="${WIDTH - RIGHT + 10}" x2="${WIDTH - RIGHT + 34}" y1="${r(ends[k]!)}" y2="${r(ends[k]!)}" ${pen}/>`;
+    return `<polyline points="${points.join(" ")}" ${pen}/>${sample}${name}`;
   });
   return svg(
     label,

@@ -29,7 +29,7 @@ export function scoreReport(input: ScoreReportInput): string {
   const number = (value: number | null, digits = 3) => (value === null ? "-" : value.toFixed(digits));
   const lines = [
     ...scores.map((score) => ({ name: score.candidate, values: score.acceptedAt })),
-    ...annotators.map((score) => ({ name: score.candidate, values: score.acceptedAt, quiet: true })),
+    ...annotators.map((score) => ({ name: `${score.candidate} (annotator)`, values: score.acceptedAt, quiet: true })),
     { name: "straight strands", values: trivial.acceptedAt, quiet: true },
   ];
   const summary = htmlTable(
@@ -44,7 +44,7 @@ export function scoreReport(input: ScoreReportInput): string {
       "mean distance mm",
       "OV",
     ],
-    [...scores, ...annotators, trivial].map((score) => [
+    [...scores, ...annotators.map((one) => ({ ...one, candidate: `${one.candidate} (annotator)` })), trivial].map((score) => [
       score.candidate,
       `${score.accepted} of ${score.trees.length}`,
       number(score.whole.normalised.reference),
