@@ -1,5 +1,5 @@
 import "fake-indexeddb/auto";
-import { describe, expect, it } from "vitest";
+import { describe, expect, it, vi } from "vitest";
 import { KeptPass, type KeptPassPlaces, WatchedPass } from "#renderer/editor/session/kept-pass.ts";
 import type { KeptBranch } from "#renderer/storage/reconcile.ts";
 import { WindowDatabase } from "#renderer/storage/window-database.ts";
@@ -82,8 +82,7 @@ describe("a pass kept by this window", () => {
     await first.pass.settled();
     journal.failures = Array.from({ length: 50 }, away);
     await drawOrigin(first.pass, 1);
-    await new Promise((resolve) => setTimeout(resolve, 30));
-    expect(first.pass.saved.value.kind).toBe("waiting");
+    await vi.waitFor(() => expect(first.pass.saved.value.kind).toBe("waiting"), { timeout: 10_000 });
     await first.pass.close();
     journal.failures = [];
     const second = await openPass(journal, database);
@@ -99,7 +98,7 @@ describe("a pass kept by this window", () => {
     await first.pass.settled();
     journal.failures = Array.from({ length: 50 }, away);
     await drawOrigin(first.pass, 1);
-    await new Promise((resolve) => setTimeout(resolve, 30));
+    await vi.waitFor(() => expect(first.pass.saved.value.kind).toBe("waiting"), { timeout: 10_000 });
     await first.pass.close();
     journal.failures = [];
     const elsewhere = await openPass(journal, freshDatabase());
