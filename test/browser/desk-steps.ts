@@ -18,13 +18,22 @@ export async function headLine(page: Page): Promise<HeadLine> {
   };
 }
 
-/** Waits until every edit asked for is made and on disk, as the head line says it. */
+/** Time within which a key just pressed shows on the head line that there is something to save. */
+const BEGUN_MS = 400;
+
+/**
+ * Waits until every edit asked for is made and on disk, as the head line says it. It is asked twice, each time after a
+ * moment: right after a key the head line still speaks of the edits before it.
+ */
 export async function allSaved(page: Page): Promise<void> {
-  await page.waitForFunction(
-    () => /^saved( \d\d:\d\d:\d\d)?[\d\s]+edits?$/.test(document.querySelector(".saved-state")?.textContent?.trim() ?? ""),
-    undefined,
-    { timeout: 60_000 },
-  );
+  for (let round = 0; round < 2; round++) {
+    await page.waitForTimeout(BEGUN_MS);
+    await page.waitForFunction(
+      () => /^saved( \d\d:\d\d:\d\d)?[\d\s]+edits?$/.test(document.querySelector(".saved-state")?.textContent?.trim() ?? ""),
+      undefined,
+      { timeout: 60_000 },
+    );
+  }
 }
 
 /** Takes the scan in through the shelf's own sheet and confirms its voxel size. */
