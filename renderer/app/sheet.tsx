@@ -15,6 +15,7 @@ export interface SheetProps {
 export function Sheet(props: SheetProps) {
   const dialog = useRef<HTMLDialogElement>(null);
   const heading = useId();
+  const isGone = useRef(false);
   useEffect(() => {
     const before = document.activeElement;
     const shown = dialog.current!;
@@ -22,6 +23,7 @@ export function Sheet(props: SheetProps) {
     // The first thing to fill in, rather than the button that closes.
     shown.querySelector<HTMLElement>(".sheet-body :is(input, select, textarea)")?.focus();
     return () => {
+      isGone.current = true;
       if (shown.open) shown.close();
       if (before instanceof HTMLElement) before.focus();
     };
@@ -34,6 +36,10 @@ export function Sheet(props: SheetProps) {
       onCancel={(event) => {
         event.preventDefault();
         props.close();
+      }}
+      onClose={() => {
+        // A browser may close a dialog on Escape without asking first; the sheet must then not count as open.
+        if (!isGone.current) props.close();
       }}
       onKeyDown={(event) => event.stopPropagation()}
     >

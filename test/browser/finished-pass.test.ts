@@ -38,6 +38,12 @@ describe("a finished pass of the demo valve", () => {
     expect(await headLine(page)).toEqual(before);
   });
 
+  /** Keys pressed while a sheet still closes belong to the sheet: the next key waits until it is gone. */
+  async function closeSheet() {
+    await page.keyboard.press("Escape");
+    await page.locator("dialog[open]").waitFor({ state: "detached" });
+  }
+
   it("is worked on again by its button; a radius set at a place on the strip can be undone", async () => {
     await page.getByRole("button", { name: "Work on it again" }).click();
     await page.locator(".finished-banner").waitFor({ state: "detached" });
@@ -66,13 +72,13 @@ describe("a finished pass of the demo valve", () => {
     expect(await counts(page)).toBe(trees);
     await page.keyboard.press("Shift+W");
     expect(await now.textContent()).toContain("Now 1.25 mm");
-    await page.keyboard.press("Escape");
+    await closeSheet();
     await page.keyboard.press("Control+z");
     // The undo is carried out in its turn: the sheet is opened anew until it tells of it.
     const radiusNow = async () => {
       await page.keyboard.press("Shift+W");
       const text = await now.textContent();
-      await page.keyboard.press("Escape");
+      await closeSheet();
       return text;
     };
     await expect.poll(radiusNow, { timeout: 20_000, interval: 500 }).not.toContain("1.25");
