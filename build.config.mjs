@@ -1,10 +1,15 @@
 // Builds everything the program runs: Node bundles (each self-contained), the sandboxed preload, and the page.
-import { existsSync } from "node:fs";
+import { copyFileSync, existsSync } from "node:fs";
 import { rm } from "node:fs/promises";
 import { builtinModules } from "node:module";
+import { dirname, join, resolve } from "node:path";
 import { build } from "vite";
 
 const root = import.meta.dirname ?? new URL(".", import.meta.url).pathname;
+/** Another place for work on the tests themselves: `<folder>/dist`; the program wants its package.json beside it. */
+const dist = resolve(root, process.env.TAUTLINE_DIST ?? "dist");
+if (!existsSync(join(dirname(dist), "package.json")))
+  copyFileSync(join(root, "package.json"), join(dirname(dist), "package.json"));
 const nodeBuiltins = [...builtinModules, ...builtinModules.map((name) => `node:${name}`)];
 const entries = {
   cli: "main/cli/cli.ts",
@@ -14,7 +19,7 @@ const entries = {
   "intake-worker": "main/intake/worker.ts",
 };
 
-await rm(`${root}/dist`, { recursive: true, force: true });
+await rm(dist, { recursive: true, force: true });
 
 /** One bundle an entry, so that workers and the server carry no bare import. */
 for (const [name, file] of Object.entries(entries)) {
@@ -27,7 +32,7 @@ for (const [name, file] of Object.entries(entries)) {
     ssr: { noExternal: true, external: ["electron"] },
     build: {
       ssr: true,
-      outDir: "dist/main",
+      outDir: join(dist, "main"),
       emptyOutDir: false,
       target: "node20",
       minify: false,
@@ -52,7 +57,7 @@ if (existsSync(`${root}/main/preload/preload.ts`)) {
     logLevel: "warn",
     publicDir: false,
     build: {
-      outDir: "dist/preload",
+      outDir: join(dist, "preload"),
       emptyOutDir: false,
       target: "chrome130",
       minify: false,
@@ -63,4 +68,9 @@ if (existsSync(`${root}/main/preload/preload.ts`)) {
 }
 
 if (existsSync(`${root}/renderer/index.html`))
-  await build({ root: `${root}/renderer`, configFile: `${root}/vite.config.ts`, logLevel: "warn" });
+  await build({
+    root: `${root}/renderer`,
+    configFile: `${root}/vite.config.ts`,
+    logLevel: "warn",
+    build: { outDir: join(dist, "page") },
+  });
