@@ -40,8 +40,8 @@ export function placeFork(arms: readonly ForkArm[], near: Vec3, usualRadiusMm: n
   const radii = arms.map((arm) => typicalRadius(arm, usualRadiusMm));
   const diameter = 2 * Math.max(...radii);
   // sum (I - d d') p = sum (I - d d') c, a symmetric 3 x 3 system: xx, xy, xz, yy, yz, zz.
-  const m = [PULL, 0, 0, PULL, 0, PULL];
-  const right = [PULL * near[0], PULL * near[1], PULL * near[2]];
+  const m: SymmetricRows = [PULL, 0, 0, PULL, 0, PULL];
+  const right: [number, number, number] = [PULL * near[0], PULL * near[1], PULL * near[2]];
   const lines: FittedLine[] = [];
   arms.forEach((arm, k) => {
     const line = lineOf(arm, firstApart(arms, radii, k, diameter), FITTED_DIAMETERS * diameter);
@@ -58,7 +58,7 @@ export function placeFork(arms: readonly ForkArm[], near: Vec3, usualRadiusMm: n
     right[2] = right[2]! + rows[2] * cx + rows[4] * cy + rows[5] * cz;
   });
   if (lines.length < 2) return null;
-  const free = solveSymmetric(m as SymmetricRows, right as unknown as Vec3);
+  const free = solveSymmetric(m, right);
   const away = [free[0] - near[0], free[1] - near[1], free[2] - near[2]] as const;
   const share = Math.min(1, (FARTHEST_DIAMETERS * diameter) / Math.hypot(...away));
   const at: Vec3 = [near[0] + share * away[0], near[1] + share * away[1], near[2] + share * away[2]];
@@ -71,7 +71,7 @@ interface FittedLine {
   readonly direction: Vec3;
 }
 
-type SymmetricRows = readonly [number, number, number, number, number, number];
+type SymmetricRows = [number, number, number, number, number, number];
 
 /** Median of an arm's known radii. */
 function typicalRadius(arm: ForkArm, usual: number): number {
