@@ -53,6 +53,7 @@ export function holdsValve(size: readonly [number, number, number], spacingMm: n
 /**
  * A synthetic valve of some 20 trees at any voxel size. The same name, seed, spacing and noise give the same scan.
  * @param noise standard deviation as a share of a string's contrast. @param size voxels; by default those of the valve's box.
+ * @param oneGrain one plane of noise for all slices, for scans of gigabytes.
  */
 export function valvePhantom(options: {
   readonly name: string;
@@ -60,6 +61,7 @@ export function valvePhantom(options: {
   readonly spacingMm: number;
   readonly noise: number;
   readonly size?: readonly [number, number, number];
+  readonly oneGrain?: boolean;
 }): PhantomSpecimen {
   const { name, seed, spacingMm, noise } = options;
   const random = new SeededRandom(seed);
@@ -73,7 +75,7 @@ export function valvePhantom(options: {
   return {
     ...about,
     dtype: "uint16",
-    renderSlab: scanOfSolids(grid, solids.lists(), lookOf(seed, noise, blurFwhmMm)),
+    renderSlab: scanOfSolids(grid, solids.lists(), lookOf(seed, noise, blurFwhmMm, options.oneGrain)),
     truth: truthFile(about, plot.trees, crossLinks) as ChordaeFile,
     crossings: [crossing],
   };

@@ -10,8 +10,8 @@ export const PHANTOM_FACTS: SpecimenFacts = {
   state: "closed",
 };
 
-/** Grey values of a phantom; `noise` is its standard deviation as a share of a string's contrast. */
-export function lookOf(seed: number, noise: number, blurFwhmMm: number): ScanLook {
+/** Grey values of a phantom; `noise` is its standard deviation as a share of a string's contrast; `oneGrain`: see {@link ScanLook}. */
+export function lookOf(seed: number, noise: number, blurFwhmMm: number, oneGrain = false): ScanLook {
   const contrast = { string: 24000, muscle: 19500, leaflet: 17500 };
-  return { seed, background: 9000, contrast, noise: noise * contrast.string, blurFwhmMm, ring: 420, fibre: 0.07 };
+  return { seed, background: 9000, contrast, noise: noise * contrast.string, blurFwhmMm, ring: 420, fibre: 0.07, oneGrain };
 }

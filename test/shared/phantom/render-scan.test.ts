@@ -114,6 +114,31 @@ describe("solids in a scan", () => {
     expect(late).toEqual(whole.subarray(4 * 31 * 31, 5 * 31 * 31));
   });
 
+  it("of one grain for all slices differ from those of fresh noise by their noise alone", () => {
+    const solids = new Solids();
+    solids.addTube(
+      "muscle",
+      [
+        [0, 0, 0],
+        [3, 3, 3],
+      ],
+      [0.5, 0.2],
+    );
+    const look = { ...QUIET, background: 3000, blurFwhmMm: 0.25, fibre: 0.1, oneGrain: true };
+    // Without noise the even background is rounded before the solids are added: at most one grey value.
+    const clean = render(0.1, 31, solids, { ...look, oneGrain: false });
+    const once = render(0.1, 31, solids, look);
+    expect(Math.max(...once.map((value, k) => Math.abs(value - clean[k]!)))).toBeLessThanOrEqual(1);
+    const noisy = { ...look, noise: 500 };
+    const whole = render(0.1, 31, solids, noisy);
+    expect(render(0.1, 31, solids, noisy, [1, 2, 9, 20])).toEqual(whole);
+    const parts = Float64Array.from(whole, (value, k) => value - clean[k]!);
+    const deviation = Math.sqrt(parts.reduce((a, b) => a + b * b, 0) / parts.length);
+    expect(deviation).toBeGreaterThan(480);
+    expect(deviation).toBeLessThan(520);
+    expect(whole.subarray(0, 961)).not.toEqual(whole.subarray(961, 1922));
+  });
+
   it("have noise of the asked standard deviation", () => {
     const values = render(0.1, 64, new Solids(), { ...QUIET, background: 20000, noise: 700 });
     const mean = sum(values) / values.length;
