@@ -8,6 +8,7 @@ import type {
   Ticket,
 } from "#shared/api/engine.ts";
 import { TautlineError } from "#shared/errors.ts";
+import type { ImpassableString } from "#shared/tracing/guide/impassable.ts";
 import type { TraceParameters } from "#shared/tracing/strand-request.ts";
 import type { VolumeGrid } from "#shared/volume/grid.ts";
 import { isInside } from "#shared/volume/grid.ts";
@@ -43,6 +44,8 @@ function range(where: string, value: number, least: number, most: number): void 
   if (!(value >= least && value <= most)) refuse(where, `a number from ${least} to ${most}`, value);
 }
 
+/** No string is thicker. */
+const MOST_IMPASSABLE_RADIUS_MM = 10;
 const LANES = ["section", "guide", "space", "job"];
 
 /** @throws bad-request */
@@ -142,6 +145,20 @@ export function checkSolve(request: SolveRequest, grid: VolumeGrid): void {
     if (strand.legs) whole(`strands[${n}].legs`, strand.legs.length, strand.via.length + 1, strand.via.length + 1);
     for (const pin of [strand.from, ...strand.via, strand.to]) checkInScan(`strands[${n}]`, pin, grid);
   });
+}
+
+/** @throws bad-request */
+export function checkImpassable(strings: readonly ImpassableString[]): void {
+  whole("impassable", strings.length, 0, MOST_STRANDS);
+  let points = 0;
+  strings.forEach((string, n) => {
+    if (string.points.length < 3 || string.points.length % 3 !== 0)
+      refuse(`impassable[${n}].points`, "flat x, y, z of at least one point", `${string.points.length} numbers`);
+    finite(`impassable[${n}].points`, string.points);
+    range(`impassable[${n}].radiusMm`, string.radiusMm, 0, MOST_IMPASSABLE_RADIUS_MM);
+    points += string.points.length / 3;
+  });
+  whole("points of impassable strings", points, 0, MOST_CURVE_POINTS);
 }
 
 /** @throws bad-request */

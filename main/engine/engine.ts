@@ -4,6 +4,7 @@ import { type CacheFigures, createCacheMemory, MOST_WORKERS } from "#main/engine
 import { Calls } from "#main/engine/calls.ts";
 import {
   checkFilm,
+  checkImpassable,
   checkInScan,
   checkParameters,
   checkPoint,
@@ -193,13 +194,14 @@ export function createEngine(options: EngineOptions): LocalEngine {
       checkParameters({ polarity: request.polarity, blurFwhmMm: null });
       return onLine("snap", guide, request.ticket, request.specimen, request);
     },
-    async openGuide({ ticket, specimen, from, parameters }) {
+    async openGuide({ ticket, specimen, from, parameters, impassable = [] }) {
       checkTicket(ticket);
       checkParameters(parameters);
       const store = await storeOf(specimen);
       checkInScan("from", from, store.volume);
+      checkImpassable(impassable);
       if (sessions.size >= MOST_SESSIONS) endSession(sessions.keys().next().value!);
-      const ref: GuideRef = { session: randomUUID(), from, parameters };
+      const ref: GuideRef = { session: randomUUID(), from, parameters, impassable };
       sessions.set(ref.session, { ref, specimen, used: performance.now() });
       // Not waited for: the session is made while its first preview is on its way, which meets the same fault if there is one.
       pool.run("open-guide", store, ref, { workers: guide }).catch(() => {});

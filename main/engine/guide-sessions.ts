@@ -48,7 +48,7 @@ export class GuideSessions {
     // Let go before the next fronts are made, so that both are not held at once.
     this.#session = null;
     const context = this.#contexts.of(store, pyramid, ref.parameters.polarity);
-    this.#session = { guide: openGuideFronts(context, ref.from, this.#bytes), store, growing: true };
+    this.#session = { guide: openGuideFronts(context, ref.from, this.#bytes, ref.impassable), store, growing: true };
     this.#name = ref.session;
     return this.#session;
   }

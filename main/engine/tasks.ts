@@ -20,6 +20,7 @@ import type { BinaryFrame } from "#shared/api/frame.ts";
 import type { SpecimenVolume } from "#shared/api/specimen.ts";
 import type { ErrorBody } from "#shared/errors.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
+import type { ImpassableString } from "#shared/tracing/guide/impassable.ts";
 import type { Polarity, TraceParameters } from "#shared/tracing/strand-request.ts";
 
 /** A specimen's store as workers know it; a store that is forgotten and opened again has another number. */
@@ -37,6 +38,8 @@ export interface GuideRef {
   readonly session: string;
   readonly from: PointMm;
   readonly parameters: TraceParameters;
+  /** Strings that the guide may not enter. */
+  readonly impassable: readonly ImpassableString[];
 }
 
 /** What a worker computes: input and answer of each kind of task. */

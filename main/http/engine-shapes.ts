@@ -75,7 +75,13 @@ export const snapRequest: Shape<SnapRequest> = object({
   reachMm: number(0, 1e3),
   polarity,
 });
-export const guideOpenRequest: Shape<GuideOpenRequest> = object({ ticket, specimen: id, from: point, parameters });
+export const guideOpenRequest: Shape<GuideOpenRequest> = object({
+  ticket,
+  specimen: id,
+  from: point,
+  parameters,
+  impassable: optional(list(object({ points: flatPoints, radiusMm: number(0, 10) }), 1_000)),
+});
 export const guidePreviewRequest: Shape<GuidePreviewRequest> = object({ ticket, session: text(128, 1), to: point });
 export const guideCloseRequest = object({ session: text(128, 1) });
 export const solveRequest: Shape<SolveRequest> = object({ ticket, specimen: id, strands: list(strand, 1_000), parameters });

@@ -1,5 +1,6 @@
 import type { BinaryFrame } from "#shared/api/frame.ts";
 import type { PointMm, Vec3 } from "#shared/geometry/types.ts";
+import type { ImpassableString } from "#shared/tracing/guide/impassable.ts";
 import type { Polarity, StrandRequest, TraceParameters } from "#shared/tracing/strand-request.ts";
 import type { MadeBy } from "#shared/trees/document.ts";
 
@@ -98,6 +99,8 @@ export interface GuideOpenRequest {
   readonly specimen: string;
   readonly from: PointMm;
   readonly parameters: TraceParameters;
+  /** Strings that the guide may not enter, but for leaving the one that its pin is on; absent = none. */
+  readonly impassable?: readonly ImpassableString[];
 }
 
 export interface GuidePreviewRequest {

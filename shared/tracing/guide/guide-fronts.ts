@@ -1,6 +1,7 @@
 import type { PointMm, Vec3 } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
 import { type CostTiles, costScale, createCostTiles } from "#shared/tracing/cost.ts";
+import { type ImpassableString, impassableVoxels } from "#shared/tracing/guide/impassable.ts";
 import { indexToLocal, localToIndex, toLocal } from "#shared/tracing/local-frame.ts";
 import { createTileDomain, indexOfVoxel, type TileDomain, tileBox, voxelOfIndex } from "#shared/tracing/minimal-path/domain.ts";
 import { createFront, expandFront, type Front, hasReached, walkBack } from "#shared/tracing/minimal-path/front.ts";
@@ -47,6 +48,8 @@ export interface GuideFronts {
   to: Vec3 | null;
   /** Costs on the working level. */
   readonly costs: CostTiles;
+  /** Strings that no front enters. */
+  readonly impassable: readonly ImpassableString[];
   /** Most voxels of the near front's box. */
   readonly nearVoxels: number;
 }
@@ -54,8 +57,14 @@ export interface GuideFronts {
 /**
  * Fronts at their pin, not grown yet. Computes the ridge around the pin alone.
  * @param bytes most memory of all fronts together; it becomes resident as they grow.
+ * @param impassable strings that the guide may not enter, but for leaving the one that its pin is on.
  */
-export function openGuideFronts(context: TraceContext, from: PointMm, bytes: number): GuideFronts {
+export function openGuideFronts(
+  context: TraceContext,
+  from: PointMm,
+  bytes: number,
+  impassable: readonly ImpassableString[] = [],
+): GuideFronts {
   const { pyramid, workingLevel } = context;
   const pin = toLocal(pyramid.grid, from);
   const expected = ridgeNearPin(context, workingLevel, pin).strength;
@@ -68,10 +77,11 @@ export function openGuideFronts(context: TraceContext, from: PointMm, bytes: num
     if (!grid) break;
     const ofLevel = n === 0 ? costs : createCostTiles(pyramid, context.ridges, level, scale);
     const index = localToIndex(grid, pin);
-    const domain = createTileDomain(pyramid, ofLevel, boxAround(grid, index, (share * bytes) / BYTES_PER_VOXEL));
+    const box = boxAround(grid, index, (share * bytes) / BYTES_PER_VOXEL);
+    const domain = createTileDomain(pyramid, ofLevel, box, impassableVoxels(pyramid.grid, grid, box, impassable, from));
     fronts.push({ level, grid, domain, front: createFront(domain, voxelOfIndex(domain, index)) });
   }
-  return { context, from, fronts, near: null, to: null, costs, nearVoxels: (NEAR_SHARE * bytes) / BYTES_PER_VOXEL };
+  return { context, from, fronts, near: null, to: null, costs, impassable, nearVoxels: (NEAR_SHARE * bytes) / BYTES_PER_VOXEL };
 }
 
 /** The largest box of whole tiles around a place, a cube in millimetres, of at most about `voxels` voxels. */
@@ -101,7 +111,8 @@ function nearFront(guide: GuideFronts, place: Vec3): GuideFront | null {
     known !== undefined && known.start[k] <= box.start[k] && known.start[k] + known.size[k] >= box.start[k] + box.size[k];
   if (holds(0) && holds(1) && holds(2)) return guide.near;
   if (box.size[0] * box.size[1] * box.size[2] > guide.nearVoxels) return null;
-  const domain = createTileDomain(pyramid, guide.costs, box);
+  const closed = impassableVoxels(pyramid.grid, grid, box, guide.impassable, guide.from);
+  const domain = createTileDomain(pyramid, guide.costs, box, closed);
   guide.near = { level, grid, domain, front: createFront(domain, voxelOfIndex(domain, a)) };
   return guide.near;
 }
