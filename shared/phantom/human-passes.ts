@@ -1,9 +1,19 @@
-import type { ChordaeFile, FileNode, FileStrand, FileTree } from "#shared/formats/chordae/chordae-file.ts";
+import type { ChordaeFile, FileStrand, FileTree } from "#shared/formats/chordae/chordae-file.ts";
 import { arcLengths, pointAt, polylineLength } from "#shared/geometry/polyline.ts";
 import { roundMm, roundPoint, type Vec3 } from "#shared/geometry/types.ts";
-import { add, distance, mix } from "#shared/geometry/vec3.ts";
+import { distance, mix } from "#shared/geometry/vec3.ts";
 import { PHANTOM_DATE, type PhantomSpecimen } from "#shared/phantom/phantom-specimen.ts";
 import { nearestIndex } from "#shared/phantom/pins.ts";
+import {
+  type Branch,
+  branchesOf,
+  handSway,
+  replaceTree,
+  withFittingLinks,
+  withoutBranch,
+  withShortEnd,
+  withTail,
+} from "#shared/phantom/tree-mistakes.ts";
 import type { Crossing } from "#shared/phantom/valve-trees.ts";
 import { SeededRandom } from "#shared/random/seeded-random.ts";
 
@@ -73,33 +83,6 @@ export function humanPasses(
 
 type Mistake = Omit<HumanError, "pass" | "annotator">;
 
-/** Cross-links whose nodes the pass still has, their ends exactly at them. */
-function withFittingLinks(file: ChordaeFile): ChordaeFile {
-  if (!file.crossLinks) return file;
-  const places = new Map(file.trees.flatMap((tree) => tree.nodes.map((node) => [node.id, node.position] as const)));
-  const links = file.crossLinks.filter((link) => places.has(link.from) && places.has(link.to));
-  const crossLinks = links.map((link) => ({
-    ...link,
-    points: [places.get(link.from)!, ...link.points!.slice(1, -1), places.get(link.to)!],
-  }));
-  return { ...file, crossLinks };
-}
-
-/** A smooth displacement of space, as a hand that is a little off here and a little off there; at most about `size` mm. */
-function handSway(size: number, random: SeededRandom): (p: Vec3) => Vec3 {
-  const waves = Array.from({ length: 9 }, () => ({
-    k: [random.normal(), random.normal(), random.normal()] as const,
-    phase: random.between(0, 2 * Math.PI),
-  }));
-  return (p) => {
-    const shift = [0, 0, 0];
-    waves.forEach(({ k, phase }, w) => {
-      shift[w % 3]! += (size / 3) * Math.sin(k[0] * p[0] + k[1] * p[1] + k[2] * p[2] + phase);
-    });
-    return roundPoint(add(p, shift as unknown as Vec3));
-  };
-}
-
 function swayed(tree: FileTree, sway: (p: Vec3) => Vec3, random: SeededRandom): FileTree {
   return {
     ...tree,
@@ -114,36 +97,6 @@ function swayed(tree: FileTree, sway: (p: Vec3) => Vec3, random: SeededRandom): 
       };
     }),
   };
-}
-
-interface Branch {
-  readonly tree: FileTree;
-  readonly strand: FileStrand;
-  readonly from: FileNode;
-  readonly to: FileNode;
-  readonly siblings: readonly FileStrand[];
-  readonly before: FileStrand | undefined;
-  readonly length: number;
-}
-
-/** All strands with what they hang on; the true trees run away from their roots. */
-function branchesOf(trees: readonly FileTree[]): Branch[] {
-  return trees.flatMap((tree) => {
-    const nodes = new Map(tree.nodes.map((node) => [node.id, node]));
-    return tree.strands.map((strand) => ({
-      tree,
-      strand,
-      from: nodes.get(strand.from)!,
-      to: nodes.get(strand.to)!,
-      siblings: tree.strands.filter((other) => other.from === strand.from && other !== strand),
-      before: tree.strands.find((other) => other.to === strand.from),
-      length: polylineLength(strand.points!),
-    }));
-  });
-}
-
-function replaceTree(trees: readonly FileTree[], tree: FileTree): FileTree[] {
-  return trees.map((other) => (other.id === tree.id ? tree : other));
 }
 
 /**
@@ -168,20 +121,8 @@ function missThinBranch(
   );
   const missed = candidates.sort((a, b) => a.strand.radii!.at(-1)! - b.strand.radii!.at(-1)!)[0];
   if (!missed) return { trees: [...trees], errors: [] };
-  const { tree, strand, from, before } = missed;
-  const other = missed.siblings[0]!;
-  const joined: FileStrand = {
-    ...before!,
-    to: other.to,
-    points: [...before!.points!, ...other.points!.slice(1)],
-    radii: [...before!.radii!, ...other.radii!.slice(1)],
-  };
-  const gone = new Set([strand.id, other.id, before!.id]);
-  const changed: FileTree = {
-    ...tree,
-    nodes: tree.nodes.filter((node) => node.id !== strand.to && node.id !== from.id),
-    strands: [...tree.strands.filter((each) => !gone.has(each.id)), joined],
-  };
+  const { tree, strand, from } = missed;
+  const changed = withoutBranch(missed);
   const error: Mistake = {
     event: "missed-branch",
     trees: [tree.id],
@@ -212,23 +153,6 @@ function exchangeTails(trees: readonly FileTree[], crossings: readonly Crossing[
     says: `Where ${a.tree.name} and ${b.tree.name} cross, each was followed into the other's tail.`,
   };
   return { trees: replaceTree(next, withTail(b, a, cutB, cutA)), errors: [error] };
-}
-
-function withTail(own: Branch, other: Branch, cut: number, otherCut: number): FileTree {
-  const { tree, strand, to } = own;
-  const head = Math.max(1, cut - 1);
-  const tail = Math.min(other.strand.points!.length - 1, otherCut + 2);
-  const changed: FileStrand = {
-    ...strand,
-    points: [...strand.points!.slice(0, head), ...other.strand.points!.slice(tail)],
-    radii: [...strand.radii!.slice(0, head), ...other.strand.radii!.slice(tail)],
-  };
-  const end: FileNode = { ...other.to, id: to.id };
-  return {
-    ...tree,
-    nodes: tree.nodes.map((node) => (node.id === to.id ? end : node)),
-    strands: tree.strands.map((each) => (each.id === strand.id ? changed : each)),
-  };
 }
 
 function lowForkAndShortEnd(
@@ -271,7 +195,7 @@ function lowForkAndShortEnd(
   const short = ends.sort((a, b) => b.length - a.length)[0];
   if (short) {
     const current = changed.find((tree) => tree.id === short.tree.id)!;
-    const tree = withShortEnd(current, short);
+    const tree = withShortEnd(current, short.strand.id, SHORT_END_MM);
     changed = replaceTree(changed, tree);
     errors.push({
       event: "short-end",
@@ -315,22 +239,5 @@ function withLowFork(branch: Branch): { tree: FileTree; at: Vec3 } {
       nodes: tree.nodes.map((node) => (node.id === to.id ? { ...node, position: at } : node)),
       strands: tree.strands.map((each) => (each.id === strand.id ? trunk : (daughters.get(each.id) ?? each))),
     },
-  };
-}
-
-function withShortEnd(tree: FileTree, branch: Branch): FileTree {
-  const strand = tree.strands.find((each) => each.id === branch.strand.id)!;
-  const length = polylineLength(strand.points!);
-  const at = roundPoint(pointAt(strand.points!, length - SHORT_END_MM));
-  const kept = arcLengths(strand.points!).filter((s) => s < length - SHORT_END_MM - 1e-6).length;
-  const short: FileStrand = {
-    ...strand,
-    points: [...strand.points!.slice(0, kept), at],
-    radii: strand.radii!.slice(0, kept + 1),
-  };
-  return {
-    ...tree,
-    nodes: tree.nodes.map((node) => (node.id === branch.to.id ? { ...node, position: at } : node)),
-    strands: tree.strands.map((each) => (each.id === strand.id ? short : each)),
   };
 }
