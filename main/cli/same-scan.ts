@@ -1,5 +1,6 @@
 import { TautlineError } from "#shared/errors.ts";
 import { type ChordaeFile, frameOf } from "#shared/formats/chordae/chordae-file.ts";
+import { relationOfScans } from "#shared/formats/chordae/same-scan.ts";
 
 /** A tree file with the name it goes by in messages. */
 export interface NamedTrees {
@@ -15,9 +16,11 @@ export function refuseOtherFrame(reference: NamedTrees, other: NamedTrees): void
   throw new TautlineError("other-scan", sentence, { file: other.name, expected, found });
 }
 
-/** A sentence when two tree files belong to different scans; none when they share one or do not say. */
+/** A sentence when two tree files belong to different scans; none when they share one (in whole or in part) or do not say. */
 export function scanWarnings(reference: NamedTrees, other: NamedTrees): string[] {
-  const [a, b] = [reference.file.volume?.sha256, other.file.volume?.sha256];
-  if (!a || !b || a === b) return [];
-  return [`${other.name} belongs to another scan (voxels ${b.slice(0, 12)}...) than ${reference.name} (${a.slice(0, 12)}...).`];
+  const [a, b] = [reference.file.volume, other.file.volume];
+  if (relationOfScans(a, b) !== "other") return [];
+  return [
+    `${other.name} belongs to another scan (voxels ${b!.sha256!.slice(0, 12)}...) than ${reference.name} (${a!.sha256!.slice(0, 12)}...).`,
+  ];
 }

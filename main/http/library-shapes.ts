@@ -8,6 +8,7 @@ import {
   object,
   oneOf,
   optional,
+  refuse,
   type Shape,
   text,
   triple,
@@ -17,6 +18,7 @@ import type { AppendRequest, ExportRequest, IntakeRequest, SpecimenPatch } from 
 import type { SpecimenFacts } from "#shared/api/specimen.ts";
 import type { LogHead } from "#shared/log/records.ts";
 import type { Landmarks, UnknownKeys } from "#shared/trees/document.ts";
+import type { Bin, Crop, Region } from "#shared/volume/region/region.ts";
 
 /** A path on this computer; the shell's own folders rule decides whether it may be read. */
 const path = text(4096, 1);
@@ -88,12 +90,22 @@ export const specimenPatch: Shape<SpecimenPatch> = object({
   handedness: optional(handedness),
 });
 
+const edges = list(whole(0, 2 ** 31), 6);
+const crop: Shape<Crop> = (value, where) => {
+  const [x0, y0, z0, x1, y1, z1] = edges(value, where);
+  if (z1 === undefined) throw refuse(where, "six whole numbers", value);
+  return [x0!, y0!, z0!, x1!, y1!, z1];
+};
+const bin: Shape<Bin> = (value, where) => (whole(1, 2)(value, where) === 2 ? 2 : 1);
+const region: Shape<Region> = object({ crop, bin });
+
 export const intakeRequest: Shape<IntakeRequest> = object({
   path,
   name: line(200),
   spacing: triple(number(1e-6, 1e3)),
   handedness,
   mirror: optional(flag),
+  region: optional(region),
   polarity,
   facts,
 });

@@ -20,6 +20,17 @@ export function sourceChanged(name: string): TautlineError<"unreadable-input"> {
   );
 }
 
+/** The box to be kept does not lie in the scan. */
+export function badCrop(
+  name: string,
+  size: readonly [number, number, number],
+  fault: { readonly expected: string; readonly found: string },
+): TautlineError<"misuse"> {
+  const what = `${name} has ${size.join(" x ")} voxels; a crop needs ${fault.expected}, found ${fault.found}.`;
+  const next = "Give x0,y0,z0,x1,y1,z1 in voxels from 0; x0 is in, x1 is out.";
+  return new TautlineError("misuse", `${what} ${next}`, { what, next });
+}
+
 function inWords(bytes: number): string {
   if (bytes >= 1e9) return `${(bytes / 1e9).toFixed(1)} GB`;
   return `${Math.ceil(bytes / 1e6)} MB`;

@@ -1,10 +1,10 @@
 import { join } from "node:path";
 import type { CrashPoint } from "#main/intake/crash-points.ts";
-import { fullDisk, sourceChanged } from "#main/intake/intake-faults.ts";
+import { badCrop, fullDisk, sourceChanged } from "#main/intake/intake-faults.ts";
 import { type IntakeProgress, ProgressMeter } from "#main/intake/progress.ts";
 import type { SliceSource } from "#main/intake/slice-source.ts";
 import { spooled } from "#main/intake/spool.ts";
-import { slabPlanesFor, storeBytes, writeStore, writeWhole } from "#main/intake/store/store-writer.ts";
+import { slabPlanesFor, writeStore, writeWhole } from "#main/intake/store/store-writer.ts";
 import { diskFiles, type WriteFiles } from "#main/intake/store/write-files.ts";
 import { surveySource } from "#main/intake/survey-source.ts";
 import type { Handedness, SpecimenFacts, SpecimenRecord } from "#shared/api/specimen.ts";
@@ -12,8 +12,17 @@ import type { Vec3 } from "#shared/geometry/types.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 import type { Landmarks } from "#shared/trees/document.ts";
 import { BYTES_OF_DTYPE } from "#shared/volume/dtype.ts";
+import {
+  faultOfCrop,
+  isWholeScan,
+  type Region,
+  regionGrid,
+  regionInMirror,
+  regionSentence,
+} from "#shared/volume/region/region.ts";
 import { gridOf } from "#shared/volume/scan-header.ts";
 import { STORE_NAME } from "#shared/volume/store/layout.ts";
+import { storeBytes } from "#shared/volume/store/store-bytes.ts";
 import { chooseStoredType, type StoredType, storedTypeOf } from "#shared/volume/stored-type.ts";
 
 export interface SpecimenOptions {
@@ -29,6 +38,8 @@ export interface SpecimenOptions {
   readonly handedness: Handedness;
   /** The slice order is reversed on the way in: the scan's file showed the specimen mirrored. */
   readonly mirror?: boolean;
+  /** What of the scan is kept, in voxels as its file has them (before a mirror); absent: all of it. */
+  readonly region?: Region;
   /** Absent: as the values suggest. */
   readonly polarity?: Polarity;
   readonly facts: SpecimenFacts;
@@ -82,7 +93,9 @@ export async function makeSpecimen(
   const { header } = given;
   const before = await given.fingerprint();
   const meter = new ProgressMeter(given, now, hooks.onProgress, storedTypeOf(header.dtype) === null);
-  const grid = gridOf(header, options.spacing);
+  const region = settledRegion(given, options);
+  const whole = gridOf(header, options.spacing);
+  const grid = region ? regionGrid(whole, region) : whole;
   const mustSpool = options.mirror === true && !given.seekable;
   let source = given;
   await refuseFullDisk(files, library, header, grid, mustSpool);
@@ -97,6 +110,7 @@ export async function makeSpecimen(
     const made = await writeStore({
       source,
       grid,
+      ...(region ? { region } : {}),
       dtype: stored.dtype,
       mirror: options.mirror === true,
       name: options.name,
@@ -125,8 +139,9 @@ export async function makeSpecimen(
         handedness: options.handedness,
         blurFwhmMm: options.blurFwhmMm === undefined ? made.blurFwhmMm : options.blurFwhmMm,
         range: made.range,
+        ...(region && made.wholeSha256 ? { derivedFrom: { sha256: made.wholeSha256, crop: region.crop, bin: region.bin } } : {}),
       },
-      conversions: conversionsOf(header.notes, stored, options),
+      conversions: conversionsOf(header.notes, stored, options, region),
       polarity: options.polarity ?? made.suggestedPolarity,
       display: made.display,
       facts: options.facts,
@@ -150,6 +165,20 @@ export async function makeSpecimen(
   }
 }
 
+/**
+ * The region counted in the scan as it will be stored; null when all of it is kept.
+ * @throws misuse when the box does not lie in the scan.
+ */
+function settledRegion(source: SliceSource, options: SpecimenOptions): Region | null {
+  const { region } = options;
+  if (region === undefined) return null;
+  const { size } = source.header;
+  const fault = faultOfCrop(size, region.crop);
+  if (fault) throw badCrop(source.name, size, fault);
+  if (isWholeScan(size, region)) return null;
+  return options.mirror === true ? regionInMirror(region, size[2]) : region;
+}
+
 /** Removes what interrupted intakes left. Call it once after the library's lease was taken, before any intake. */
 export async function removeUnfinished(library: string, files: WriteFiles = diskFiles): Promise<void> {
   await files.remove(join(library, UNFINISHED));
@@ -163,11 +192,12 @@ async function settleType(source: SliceSource, meter: ProgressMeter, signal?: Ab
   return chooseStoredType(source.header.dtype, survey.facts(), source.name);
 }
 
-function conversionsOf(notes: readonly string[], stored: StoredType, options: SpecimenOptions): string[] {
+function conversionsOf(notes: readonly string[], stored: StoredType, options: SpecimenOptions, region: Region | null): string[] {
   const sentences = [...notes];
   if (stored.sentence) sentences.push(stored.sentence);
   if (options.mirror)
     sentences.push("The order of slices was reversed on the way in, because the file showed the specimen mirrored.");
+  if (region) sentences.push(regionSentence(region));
   return sentences;
 }
 

@@ -16,6 +16,7 @@ export async function takeIn(order: IntakeOrder, hooks: IntakeHooks = {}): Promi
         spacing: order.spacing,
         handedness: order.handedness,
         mirror: order.mirror ?? false,
+        ...(order.region ? { region: order.region } : {}),
         ...(order.polarity ? { polarity: order.polarity } : {}),
         facts: order.facts,
         synthetic: false,

@@ -3,6 +3,7 @@ import type { LogHead } from "#shared/log/records.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 import type { Landmarks } from "#shared/trees/document.ts";
 import type { SourceDtype } from "#shared/volume/dtype.ts";
+import type { Region } from "#shared/volume/region/region.ts";
 
 /**
  * Every route: method and path. `:name` is a path parameter. Bodies are JSON unless said; binary answers are frames
@@ -119,6 +120,8 @@ export interface IntakeRequest {
   readonly handedness: Handedness;
   /** The person saw the mirrored view as the right one: the slice order is reversed on the way in. */
   readonly mirror?: boolean;
+  /** The part to keep, in voxels as the file has them; absent: all of it. */
+  readonly region?: Region;
   readonly polarity: Polarity;
   readonly facts: SpecimenFacts;
 }

@@ -73,7 +73,14 @@ function checkVolume(value: unknown, check: Check): void {
   const range = volume.range as Json;
   check(isObject(range) && isNumber(range.min) && isNumber(range.max), "volume.range", "min and max", volume.range);
   const from = volume.derivedFrom;
-  check(from === undefined || (isObject(from) && isText(from.sha256)), "volume.derivedFrom", "an object with a hash", from);
+  check(from === undefined || isDerivation(from), "volume.derivedFrom", "a hash, and crop and bin where they are given", from);
+}
+
+function isDerivation(value: unknown): boolean {
+  if (!isObject(value) || typeof value.sha256 !== "string" || !SHA256.test(value.sha256)) return false;
+  const { crop, bin } = value;
+  const goodBin = bin === undefined || (isCount(bin) && (bin as number) > 0);
+  return goodBin && (crop === undefined || isArrayOf(crop, isCount, 6));
 }
 
 /** Checks facts a person gave about a specimen; also used for requests. */

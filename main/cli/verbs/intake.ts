@@ -2,6 +2,7 @@ import { randomBytes } from "node:crypto";
 import { basename, join } from "node:path";
 import { wordOption } from "#main/cli/number-option.ts";
 import { givenChoice, RAW_HELP, RAW_OPTIONS } from "#main/cli/raw-option.ts";
+import { givenRegion, REGION_HELP, REGION_OPTIONS } from "#main/cli/region-option.ts";
 import { givenSpacing, SPACING_HELP, SPACING_OPTIONS, settledSpacing } from "#main/cli/spacing-option.ts";
 import type { Verb, VerbCall } from "#main/cli/verb.ts";
 import { removeUnfinished } from "#main/intake/make-specimen.ts";
@@ -30,6 +31,7 @@ ${SPACING_HELP}
   --handedness H         confirmed or unknown (unknown when not given): whether someone has seen that it is not mirrored
   --mirror               reverse the order of slices: the file shows the specimen mirrored
   --polarity P           bright or dark strings (as the values suggest when not given)
+${REGION_HELP}
   --channel n, --time n  which one to read where a scan has several, from 0
   --species, --fixation, --medium, --state TEXT, --pressure mmHg   facts of the specimen
 ${RAW_HELP}`,
@@ -40,6 +42,7 @@ ${RAW_HELP}`,
     handedness: { type: "string" },
     mirror: { type: "boolean" },
     polarity: { type: "string" },
+    ...REGION_OPTIONS,
     channel: { type: "string" },
     time: { type: "string" },
     ...RAW_OPTIONS,
@@ -66,6 +69,7 @@ ${RAW_HELP}`,
     const source = await openScan(path, choice);
     const { header } = source;
     await source.close();
+    const region = givenRegion(options, source.name, header.size);
     const spacing = settledSpacing(header, source.name, given, { strict: true, say });
     const files = diskFiles();
     const random = (count: number) => new Uint8Array(randomBytes(count));
@@ -82,6 +86,7 @@ ${RAW_HELP}`,
         spacing,
         handedness,
         mirror: options.mirror === true,
+        ...(region ? { region } : {}),
         ...(polarity ? { polarity } : {}),
         facts,
         choice,
@@ -95,6 +100,8 @@ ${RAW_HELP}`,
         bytesRead: made.bytesRead,
         bytesWritten: made.bytesWritten,
         peakMemoryBytes: process.resourceUsage().maxRSS * 1024,
+        size: record.volume.size,
+        ...(record.volume.derivedFrom ? { derivedFrom: record.volume.derivedFrom } : {}),
         conversions: record.conversions,
       };
       for (const sentence of record.conversions) say(`${source.name}: ${sentence}`);

@@ -10,6 +10,7 @@ import { diskFiles } from "#main/node/disk-files.ts";
 import { writeWhole } from "#main/node/whole-file.ts";
 import { TautlineError, unreadable } from "#shared/errors.ts";
 import { type ChordaeFile, frameOf } from "#shared/formats/chordae/chordae-file.ts";
+import { relationOfScans } from "#shared/formats/chordae/same-scan.ts";
 import { writeChordaeFile } from "#shared/formats/chordae/write-chordae-file.ts";
 import { isInside } from "#shared/volume/grid.ts";
 
@@ -112,8 +113,8 @@ function refuseOtherScan(
     say(`${path}: does not say which scan it belongs to; taken as belonging to this one.`);
     return;
   }
-  const related = [expected, pins.volume?.derivedFrom?.sha256];
-  if (related.includes(voxels.sha256) || (voxels.derivedFrom !== null && related.includes(voxels.derivedFrom))) return;
+  const found = { sha256: voxels.sha256, derivedFrom: { sha256: voxels.derivedFrom } };
+  if (relationOfScans(pins.volume, found) === "same") return;
   if (allowed) {
     say(`${path}: belongs to another scan; traced on this one as asked.`);
     return;

@@ -7,17 +7,22 @@ import type { StoreSink } from "#main/intake/store/shard-writer.ts";
 import type { WriteFiles } from "#main/intake/store/write-files.ts";
 import { roundMm } from "#shared/geometry/types.ts";
 import { EdgeBlurSurvey } from "#shared/volume/blur/edge-blur.ts";
-import { BYTES_OF_DTYPE, type StoredDtype } from "#shared/volume/dtype.ts";
+import { BYTES_OF_DTYPE, createStored, type StoredArray, type StoredDtype } from "#shared/volume/dtype.ts";
 import type { VolumeGrid } from "#shared/volume/grid.ts";
 import { type PyramidLevel, pyramidLevels } from "#shared/volume/pyramid.ts";
-import { CHUNK_SIDE, chunkBytes, chunkGrid, INDEX_BYTES, levelFolder, shardGrid } from "#shared/volume/store/layout.ts";
+import { RegionKeeper } from "#shared/volume/region/keep-region.ts";
+import type { Region } from "#shared/volume/region/region.ts";
+import { CHUNK_SIDE, levelFolder } from "#shared/volume/store/layout.ts";
 import { arrayMetadata, groupMetadata } from "#shared/volume/store/store-metadata.ts";
 import { convertInto } from "#shared/volume/stored-type.ts";
 import { displayWindow, suggestPolarity, ValueSurvey } from "#shared/volume/value-survey.ts";
 
 export interface StoreOrder {
   readonly source: SliceSource;
+  /** Of what is stored: the source's own grid, or the region's. */
   readonly grid: VolumeGrid;
+  /** What of the source is stored, counted in the order of slices in which it is stored; absent: all of it. */
+  readonly region?: Region;
   readonly dtype: StoredDtype;
   /** True: the last slice of the source becomes the first. The source must be seekable. */
   readonly mirror: boolean;
@@ -38,6 +43,8 @@ export interface StoreOrder {
 export interface StoreResult {
   /** SHA-256 (hex) of the stored level 0: C order z, y, x, little-endian. */
   readonly sha256: string;
+  /** The same of the whole scan, had it been stored; null when it was. */
+  readonly wholeSha256: string | null;
   readonly range: { readonly min: number; readonly max: number };
   readonly display: { readonly low: number; readonly high: number };
   readonly suggestedPolarity: "bright" | "dark";
@@ -56,15 +63,6 @@ export function slabPlanesFor(planeBytes: number): number {
   return planes;
 }
 
-/** Bytes that the store of a grid takes on disk, all levels, metadata left out. */
-export function storeBytes(grid: VolumeGrid, dtype: StoredDtype): number {
-  return pyramidLevels(grid).reduce((sum, level) => {
-    const [z, y, x] = chunkGrid(level.size);
-    const [sz, sy, sx] = shardGrid(level.size);
-    return sum + z * y * x * chunkBytes(dtype) + sz * sy * sx * INDEX_BYTES;
-  }, 0);
-}
-
 /** Writes the whole store of a scan in one pass over its slices; every file is synced. Nothing is removed on failure. */
 export async function writeStore(order: StoreOrder): Promise<StoreResult> {
   const { files, folder, grid, dtype } = order;
@@ -80,16 +78,25 @@ export async function writeStore(order: StoreOrder): Promise<StoreResult> {
   const survey = new ValueSurvey(grid.size[0] * grid.size[1] * grid.size[2]);
   const edges = order.estimateBlur ? new EdgeBlurSurvey(grid.size, grid.spacing) : null;
   const hash = createHash("sha256");
+  // Of a region the whole scan is hashed as well, so that trees find their way between the two.
+  const whole = order.region ? createHash("sha256") : null;
+  const [width, height] = order.source.header.size;
+  const slice = order.region ? createStored(dtype, width * height) : null;
+  const keeper = order.region ? new RegionKeeper(width, order.region, dtype) : null;
   try {
     let done = 0;
+    let kept = 0;
     for await (const { plane } of slicesInOrder(order)) {
       stopIfAborted(order.signal, "taking in the scan");
       const out = writer.nextPlane;
-      convertInto(plane, out);
-      survey.add(out);
-      edges?.add(done, out);
-      hash.update(new Uint8Array(out.buffer, out.byteOffset, out.byteLength));
-      await writer.planeReady();
+      convertInto(plane, slice ?? out);
+      if (slice) whole?.update(bytesIn(slice));
+      if (!slice || keeper?.take(done, slice, out)) {
+        survey.add(out);
+        edges?.add(kept++, out);
+        hash.update(bytesIn(out));
+        await writer.planeReady();
+      }
       order.onSlices(++done);
     }
     await writer.finish();
@@ -107,12 +114,17 @@ export async function writeStore(order: StoreOrder): Promise<StoreResult> {
   const blur = edges?.estimate() ?? null;
   return {
     sha256,
+    wholeSha256: whole?.digest("hex") ?? null,
     range: { min: facts.min, max: facts.max },
     display: displayWindow(sample),
     suggestedPolarity: suggestPolarity(sample),
     blurFwhmMm: blur === null ? null : roundMm(blur),
     bytesWritten,
   };
+}
+
+function bytesIn(array: StoredArray): Uint8Array {
+  return new Uint8Array(array.buffer, array.byteOffset, array.byteLength);
 }
 
 async function writeMetadata(order: StoreOrder, levels: readonly PyramidLevel[], sha256: string): Promise<void> {

@@ -2,6 +2,7 @@ import type { SpecimenRecord } from "#shared/api/specimen.ts";
 import { frameOf } from "#shared/formats/chordae/chordae-file.ts";
 import { documentFromFile } from "#shared/formats/chordae/document-from-file.ts";
 import { parseChordaeBytes } from "#shared/formats/chordae/read-chordae-file.ts";
+import { relationOfScans } from "#shared/formats/chordae/same-scan.ts";
 import type { TreeDocument } from "#shared/trees/document.ts";
 
 /** The trees of a file, and how they stand to the specimen's scan. */
@@ -32,9 +33,7 @@ export function lookAtTrees(bytes: Uint8Array, name: string, specimen: SpecimenR
       sentence: "The file does not say which scan its trees belong to. Check that they lie on the strings.",
     };
   }
-  const related = [own, file.volume?.derivedFrom?.sha256].filter((hash) => typeof hash === "string");
-  const mine: readonly (string | undefined)[] = [volume.sha256, volume.derivedFrom?.sha256];
-  if (related.some((hash) => mine.includes(hash))) return { name, document, scan: "same", sentence: null };
+  if (relationOfScans(file.volume, volume) === "same") return { name, document, scan: "same", sentence: null };
   const sentence = `The trees were traced on another scan (${file.volume?.name ?? "without a name"}, voxels ${own.slice(0, 12)}); this one is ${specimen.name}, voxels ${volume.sha256.slice(0, 12)}.`;
   return { name, document, scan: "other", sentence };
 }

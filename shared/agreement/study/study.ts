@@ -110,9 +110,15 @@ export function nodeTolerance(tolerance: number): number {
 }
 
 function specimenNames(files: readonly StudyFile[], warnings: string[]): Map<string, string> {
+  // A crop or bin counts as the whole scan that it was made from: places in millimetres agree.
+  const wholeOf = new Map<string, string>();
+  for (const { file } of files)
+    if (file.volume?.sha256 && file.volume.derivedFrom?.sha256) wholeOf.set(file.volume.sha256, file.volume.derivedFrom.sha256);
+  const scanHash = (volume: StudyFile["file"]["volume"]) => volume?.sha256 && (wholeOf.get(volume.sha256) ?? volume.sha256);
   const nameOfHash = new Map<string, string>();
   for (const { file } of [...files].sort((a, b) => compareIds(a.file.volume?.name ?? "", b.file.volume?.name ?? ""))) {
-    const { name, sha256 } = file.volume ?? {};
+    const name = file.volume?.name;
+    const sha256 = scanHash(file.volume);
     if (sha256 && !nameOfHash.has(sha256)) nameOfHash.set(sha256, name ?? `scan ${sha256.slice(0, 12)}`);
     else if (sha256 && name && nameOfHash.get(sha256)!.startsWith("scan ")) nameOfHash.set(sha256, name);
   }
@@ -120,7 +126,8 @@ function specimenNames(files: readonly StudyFile[], warnings: string[]): Map<str
   const silent: string[] = [];
   const out = new Map<string, string>();
   for (const { name, file } of files) {
-    const { name: scan, sha256 } = file.volume ?? {};
+    const scan = file.volume?.name;
+    const sha256 = scanHash(file.volume);
     const specimen = (sha256 ? nameOfHash.get(sha256) : undefined) ?? scan ?? "unnamed specimen";
     out.set(name, specimen);
     if (!hashesOf.has(specimen)) hashesOf.set(specimen, new Set());
