@@ -38,6 +38,7 @@ import type {
 } from "#shared/api/routes.ts";
 import type { PassState, PassSummary, SpecimenRecord } from "#shared/api/specimen.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
+import type { ImpassableString } from "#shared/tracing/guide/impassable.ts";
 import type { StrandRequest, TraceParameters } from "#shared/tracing/strand-request.ts";
 
 type Unticketed<T> = Omit<T, "ticket">;
@@ -135,9 +136,14 @@ export class Client {
   snap(request: Unticketed<SnapRequest>): Newest<SnapAnswer> {
     return this.inLine("guide", "snap", (ticket) => this.json("snap", { body: { ticket, ...request } }, RANK.guide));
   }
-  openGuide(specimen: string, from: PointMm, parameters: TraceParameters): Newest<{ session: string }> {
+  openGuide(
+    specimen: string,
+    from: PointMm,
+    parameters: TraceParameters,
+    impassable: readonly ImpassableString[] = [],
+  ): Newest<{ session: string }> {
     const send = (ticket: Ticket) =>
-      this.json<{ session: string }>("openGuide", { body: { ticket, specimen, from, parameters } }, RANK.guide);
+      this.json<{ session: string }>("openGuide", { body: { ticket, specimen, from, parameters, impassable } }, RANK.guide);
     return this.inLine("guide", "guide open", send, true);
   }
   previewGuide(session: string, to: PointMm): Newest<GuidePreviewAnswer> {

@@ -8,13 +8,16 @@ import { Playback } from "#renderer/editor/session/playback.ts";
 import type { Stage } from "#renderer/editor/session/stage.ts";
 import { afterLabelling, type Sticky, stickyOf } from "#renderer/editor/session/sticky-labels.ts";
 import { type AskSolve, StrandSolver } from "#renderer/editor/session/strand-solver.ts";
+import { type ForkProposal, forkProposal } from "#renderer/editor/tracing/guide-advice.ts";
 import { type Guide, GuideFollower, type GuideSource } from "#renderer/editor/tracing/guide-follower.ts";
 import type { IntentPlace } from "#renderer/editor/tracing/intent-place.ts";
 import { passing } from "#renderer/editor/tracing/passing.ts";
 import { type Projection, project, tipOf } from "#renderer/editor/tracing/projection.ts";
 import { type Aim, type AskSnap, type Snapped, Snapper } from "#renderer/editor/tracing/snapper.ts";
+import { closedAround, detourPins, tracedStrings } from "#renderer/editor/tracing/traced-strings.ts";
 import { isUnfinished, NOTHING, type UnderWay } from "#renderer/editor/tracing/under-way.ts";
 import type { Pointing, Under } from "#renderer/editor/view-control.ts";
+import { type GuideWarning, guideWarnings, type TracedString } from "#shared/checks/guide-warnings.ts";
 import { roundPoint } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
 import { otherEnd, strandsAt } from "#shared/trees/adjacency.ts";
@@ -22,6 +25,7 @@ import type { EndKind, NodeId, StrandId, TreeDocument } from "#shared/trees/docu
 import type { Anchor } from "#shared/trees/edits/anchor.ts";
 import type { LineId } from "#shared/trees/edits/edit-plan.ts";
 import type { NodeLabels } from "#shared/trees/edits/node-labels.ts";
+import { isLooseEnd } from "#shared/trees/edits/rewiring.ts";
 
 /** What the editor needs of the rest of the program; fakes stand in for it in tests. */
 export interface EditorPlaces {
@@ -61,6 +65,12 @@ export class Editor {
   readonly selection: Signal<Selection> = signal(NO_SELECTION);
   readonly sticky: Signal<Sticky>;
   readonly carried: Signal<Carried | null> = signal(null);
+  /** The guide may not enter strings that are traced already. */
+  readonly isClosed: Signal<boolean> = signal(false);
+  /** What a person should look at along the guide, in its order. */
+  readonly advice: ReadonlySignal<readonly GuideWarning[]>;
+  /** The fork that the guide suggests. */
+  readonly proposedFork: ReadonlySignal<ForkProposal | null>;
   readonly projection: ReadonlySignal<Projection>;
   readonly keeper: PassKeeper;
   /** Counts changes of the history, for what is read from the keeper directly. */
@@ -89,7 +99,9 @@ export class Editor {
     this.documentSignal = signal(keeper.document);
     this.document = this.documentSignal;
     this.sticky = signal(stickyOf(keeper.document));
-    this.guideFollower = new GuideFollower(places.guide);
+    this.guideFollower = new GuideFollower(places.guide, (from) =>
+      this.isClosed.peek() ? closedAround(this.stringsBeside(), from) : [],
+    );
     this.snapper = new Snapper(places.snap);
     const underWay = this.underWaySignal;
     this.stage = {
@@ -118,6 +130,16 @@ export class Editor {
             this.queue.waiting.value.map((queued) => queued.intent),
           )
         : project(this.documentSignal.value, NOTHING, []),
+    );
+    this.advice = computed(() => {
+      const guide = this.guideFollower.guide.value;
+      this.documentSignal.value;
+      return guide === null ? [] : guideWarnings(guide.points, guide.doubtful, this.stringsBeside());
+    });
+    this.proposedFork = computed(() =>
+      this.readOnly || this.queue.waiting.value.length > 0
+        ? null
+        : forkProposal(this.documentSignal.value, this.underWaySignal.value, this.advice.value),
     );
     this.disposers.push(
       keeper.onChange(() => this.historyChanged()),
@@ -191,7 +213,31 @@ export class Editor {
       this.select(pointing.under);
       return;
     }
-    this.do({ do: "pin", at: this.placeOf(pointing) });
+    const at = this.placeOf(pointing);
+    this.pinDetour(at);
+    this.do({ do: "pin", at });
+  }
+
+  /** Closes traced strings to the guide, or opens them again. */
+  toggleClosed(): void {
+    this.isClosed.value = !this.isClosed.value;
+    this.guideFollower.setOutAnew();
+  }
+
+  /** Takes the fork that the guide suggests: the branch starts there, or the end under way is joined there. */
+  takeProposedFork(): void {
+    const fork = this.proposedFork.value;
+    if (fork === null) return;
+    const place = { strand: fork.strand, near: fork.at };
+    if (fork.kind === "join") {
+      this.do({ do: "join", end: fork.end, to: place, givesUpOrigin: true });
+      return;
+    }
+    const underWay = this.underWaySignal.value;
+    const isLoneOrigin = underWay.kind === "strand" && strandsAt(this.documentSignal.value, underWay.tip).length === 0;
+    // An origin set on a string by mistake goes with its tree; what is under way from a fork is only left.
+    this.do({ do: isLoneOrigin ? "back" : "leave" });
+    this.do({ do: "branch", from: place });
   }
 
   /** Ends the strand under way: at the pointer, or at its last pin when the pointer is on that pin or off the section. */
@@ -331,7 +377,29 @@ export class Editor {
   }
 
   private endPlace(): IntentPlace | null {
-    return this.endsAtPin() ? null : this.placeOf(this.pointing!);
+    if (this.endsAtPin()) return null;
+    const at = this.placeOf(this.pointing!);
+    this.pinDetour(at);
+    return at;
+  }
+
+  /** Pins the way around closed strings, so that the committed curve takes it too. */
+  private pinDetour(at: IntentPlace): void {
+    const { kind, leg } = this.projection.value;
+    if (!this.isClosed.value || leg !== "guide" || (kind !== "strand" && kind !== "branch")) return;
+    const to = "point" in at ? at.point : at.aim.at;
+    for (const point of detourPins(this.guideFollower.guide.value, to, this.stringsBeside())) {
+      this.do({ do: "pin", at: { point } });
+    }
+  }
+
+  /** The strings traced before, without the strand under way. */
+  private stringsBeside(): TracedString[] {
+    const document = this.documentSignal.peek();
+    const underWay = this.underWaySignal.peek();
+    const tip = underWay.kind === "strand" ? document.nodes.get(underWay.tip) : undefined;
+    const own = tip !== undefined && isLooseEnd(document, tip) ? strandsAt(document, tip.id)[0] : undefined;
+    return tracedStrings(document, own?.id ?? null);
   }
 
   private placeOf(pointing: Pointing): IntentPlace {

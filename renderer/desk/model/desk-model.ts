@@ -79,7 +79,7 @@ export class DeskModel {
       snap: ({ at, normal, slabMm, reachMm }) =>
         client.snap({ specimen: specimen.id, at, normal, slabMm, reachMm, polarity: specimen.polarity }),
       guide: {
-        open: (from) => client.openGuide(specimen.id, from, parameters),
+        open: (from, impassable) => client.openGuide(specimen.id, from, parameters, impassable),
         preview: (session, to) => client.previewGuide(session, to),
         close: (session) => client.closeGuide(session),
       },

@@ -7,6 +7,8 @@ import type { SectionEvents, SectionHit, SectionPlace, StrandUnderWay } from "#r
 import { SectionView } from "#renderer/section/section-view.ts";
 import { awayFrom } from "#renderer/section/view-plane.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
+import type { MarkedPlace } from "#shared/marks/marked-place.ts";
+import { NODE_GLYPHS } from "#shared/marks/node-glyph.ts";
 
 /** Puts a section pane into `host` and joins it to the model; the returned function takes it out again. */
 export function mountSection(host: HTMLElement, model: DeskModel): () => void {
@@ -85,6 +87,7 @@ export function mountSection(host: HTMLElement, model: DeskModel): () => void {
       view.show({ guide: guide === null ? null : { ...guide, points: guide.points.flatMap((point) => [...point]) } });
     }),
     effect(() => view.show({ underWay: underWayOf(model) })),
+    effect(() => view.show({ places: placesOf(model) })),
     effect(() => {
       const snapped = editor.snapped.value;
       const shown = snapped !== null && snapped.candidates > 0;
@@ -120,6 +123,12 @@ function underWayOf({ editor }: DeskModel): StrandUnderWay | null {
   const waiting = pins.slice(Math.max(0, settled - 1));
   const curves = waiting.slice(1).map((pin, i) => [...waiting[i]!, ...pin]);
   return { tree: null, pins, curves };
+}
+
+/** The fork that the guide suggests, marked at its place. */
+function placesOf({ editor }: DeskModel): MarkedPlace[] {
+  const fork = editor.proposedFork.value;
+  return fork === null ? [] : [{ at: fork.at, glyph: NODE_GLYPHS.fork, colour: null, picked: true }];
 }
 
 function moveRuler({ section }: DeskModel, end: "from" | "to", at: PointMm): void {

@@ -117,6 +117,28 @@ export const TRACE_COMMANDS: readonly Command<DeskContext>[] = [
     foot: ({ editor }) => ((editor.snapped.value?.candidates ?? 0) > 1 ? "next string in depth" : null),
   },
   {
+    name: "proposed-fork",
+    group: "Trace",
+    label: "Take the fork that the guide suggests: branch where it leaves a string, join where it meets one",
+    keys: ["Shift+F"],
+    enabled: (context) => canEdit(context) && context.editor.proposedFork.value !== null,
+    perform: ({ editor }) => editor.takeProposedFork(),
+    foot: ({ editor }) => {
+      const fork = editor.proposedFork.value;
+      if (fork === null) return null;
+      return fork.kind === "branch" ? "branch where the guide leaves the string" : "join the string it meets";
+    },
+  },
+  {
+    name: "close-strings",
+    group: "Trace",
+    label: "Traced strings impassable for the guide, or passable again",
+    keys: ["Shift+I"],
+    enabled: canEdit,
+    perform: ({ editor }) => editor.toggleClosed(),
+    foot: (context) => (isDrawing(context) && context.editor.isClosed.value ? "traced strings passable again" : null),
+  },
+  {
     name: "take-back-pin",
     group: "Trace",
     label: "Take the last pin back",

@@ -37,7 +37,8 @@ export type Intent =
       /** Millimetres; null = below resolution. */
       readonly radiusMm: number | null;
     }
-  | { readonly do: "join"; readonly end: NodeId; readonly to: LeavePlace }
+  /** `givesUpOrigin`: the tree of the end was drawn towards its own origin, which becomes an open end. */
+  | { readonly do: "join"; readonly end: NodeId; readonly to: LeavePlace; readonly givesUpOrigin?: boolean }
   | { readonly do: "take-in"; readonly incoming: TreeDocument; readonly name: string }
   // history
   | { readonly do: "undo" }

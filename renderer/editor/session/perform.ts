@@ -32,7 +32,7 @@ export async function performIntent(stage: Stage, intent: Intent, signal: AbortS
       await makeEdit(
         stage,
         "Join strands",
-        joinPlan(stage.keeper.document, intent.end, settleAnchor(stage.keeper.document, intent.to)),
+        joinPlan(stage.keeper.document, intent, settleAnchor(stage.keeper.document, intent.to)),
         signal,
       );
       dropIfGone(stage);
@@ -64,17 +64,21 @@ export async function performIntent(stage: Stage, intent: Intent, signal: AbortS
 }
 
 /** A loose end joined to a node, or to a fork made for it on a strand. */
-function joinPlan(document: TreeDocument, end: NodeId, to: Anchor): MakePlan {
-  if ("node" in to) return (now, ids) => joinStrands(now, ids, { a: end, b: to.node });
+function joinPlan(
+  document: TreeDocument,
+  { end, givesUpOrigin = false }: { readonly end: NodeId; readonly givesUpOrigin?: boolean },
+  to: Anchor,
+): MakePlan {
+  if ("node" in to) return (now, ids) => joinStrands(now, ids, { a: end, b: to.node, givesUpOrigin });
   const { node } = placeOnLine(document, strandOf(document, to.strand), to.near);
-  if (node !== null) return (now, ids) => joinStrands(now, ids, { a: end, b: node });
+  if (node !== null) return (now, ids) => joinStrands(now, ids, { a: end, b: node, givesUpOrigin });
   return (now, ids) => {
     const forked = startBranch(now, ids, { on: to });
     const fork = forked.operation.changes.find((change) => change.table === "node" && change.from === null);
     if (fork?.table !== "node") throw new TautlineError("internal", "The join made no fork.", { what: "join without a fork" });
     return inOne(
       () => forked,
-      (then, more) => joinStrands(then, more, { a: end, b: fork.id }),
+      (then, more) => joinStrands(then, more, { a: end, b: fork.id, givesUpOrigin }),
     )(now, ids);
   };
 }

@@ -3,6 +3,7 @@ import type { GuidePreviewAnswer } from "#shared/api/engine.ts";
 import { isTautlineError } from "#shared/errors.ts";
 import type { PointMm, Vec3 } from "#shared/geometry/types.ts";
 import { pointMm } from "#shared/geometry/types.ts";
+import type { ImpassableString } from "#shared/tracing/guide/impassable.ts";
 import type { LegKind } from "#shared/trees/document.ts";
 
 /** The live path from the last pin to the pointer. */
@@ -23,7 +24,7 @@ const MOST_AGAIN = 24;
 
 /** What the follower asks of the engine; null = a newer request took over. */
 export interface GuideSource {
-  open(from: PointMm): Promise<{ session: string } | null>;
+  open(from: PointMm, impassable: readonly ImpassableString[]): Promise<{ session: string } | null>;
   preview(session: string, to: PointMm): Promise<GuidePreviewAnswer | null>;
   close(session: string): Promise<unknown>;
 }
@@ -42,9 +43,13 @@ export class GuideFollower {
   /** Settles when no preview of the session is under way any more. */
   private previews: Promise<unknown> = Promise.resolve();
 
-  private again: ReturnType<typeof setTimeout> | undefined;
+  private nextAsk: ReturnType<typeof setTimeout> | undefined;
 
-  constructor(private readonly source: GuideSource) {}
+  /** @param impassable strings that a guide from this pin may not enter. */
+  constructor(
+    private readonly source: GuideSource,
+    private readonly impassable: (from: PointMm) => readonly ImpassableString[] = () => [],
+  ) {}
 
   get guide(): ReadonlySignal<Guide | null> {
     return this.guideSignal;
@@ -55,7 +60,7 @@ export class GuideFollower {
     const same = from !== null && this.from !== null && samePlace(from, this.from) && leg === this.leg;
     if (same) return;
     const samePin = from !== null && this.from !== null && samePlace(from, this.from);
-    clearTimeout(this.again);
+    clearTimeout(this.nextAsk);
     this.leg = leg;
     this.from = from;
     if (!samePin) this.closeSession();
@@ -69,6 +74,12 @@ export class GuideFollower {
     return this.show(to, 0);
   }
 
+  /** Sets out from the pin anew: what the guide may enter has changed. */
+  setOutAnew(): void {
+    this.closeSession();
+    if (this.to !== null) void this.point(this.to);
+  }
+
   stop(): void {
     this.start(null, "guide");
     this.to = null;
@@ -76,7 +87,7 @@ export class GuideFollower {
 
   /** @param times how often this place was asked for before. */
   private async show(to: PointMm | null, times: number): Promise<void> {
-    clearTimeout(this.again);
+    clearTimeout(this.nextAsk);
     this.to = to;
     const from = this.from;
     if (to === null || from === null) {
@@ -98,7 +109,7 @@ export class GuideFollower {
     // An answer that comes while the pointer has gone on is followed by a newer one anyway.
     if (answer.coarse && this.to === to && times < MOST_AGAIN) {
       const pause = Math.min(FIRST_AGAIN_MS * AGAIN_GROWTH ** times, LONGEST_AGAIN_MS);
-      this.again = setTimeout(() => void this.show(to, times + 1), pause);
+      this.nextAsk = setTimeout(() => void this.show(to, times + 1), pause);
     }
   }
 
@@ -121,7 +132,7 @@ export class GuideFollower {
   }
 
   private openSession(from: PointMm): void {
-    const session = this.source.open(from).then((answer) => answer?.session ?? null);
+    const session = this.source.open(from, this.impassable(from)).then((answer) => answer?.session ?? null);
     session.catch(() => undefined);
     this.session = session;
   }

@@ -1,5 +1,5 @@
 import { crossLinksAt, strandsAt } from "#shared/trees/adjacency.ts";
-import type { NodeId, TreeDocument } from "#shared/trees/document.ts";
+import type { NodeId, TreeDocument, TreeId } from "#shared/trees/document.ts";
 import { forkIfBranching } from "#shared/trees/edits/anchor.ts";
 import { EditDraft } from "#shared/trees/edits/edit-draft.ts";
 import type { EditPlan } from "#shared/trees/edits/edit-plan.ts";
@@ -12,15 +12,22 @@ import type { IdSource } from "#shared/trees/ids.ts";
 /**
  * Plan of joining a loose end to another node. Two loose ends become one strand, their places pins on it; an end joined to a
  * fork, waypoint or origin becomes a branch of it. The tree with an origin keeps its id and name.
+ * @param args.givesUpOrigin the tree of the loose end was drawn from its far end: where both trees have an origin, that one
+ * becomes an open end.
  * @throws misuse when both are in one tree (a loop), both trees have an origin, or neither node is a loose end
  */
-export function joinStrands(document: TreeDocument, ids: IdSource, args: { readonly a: NodeId; readonly b: NodeId }): EditPlan {
+export function joinStrands(
+  document: TreeDocument,
+  ids: IdSource,
+  args: { readonly a: NodeId; readonly b: NodeId; readonly givesUpOrigin?: boolean },
+): EditPlan {
   const draft = new EditDraft(document, ids);
   const nodes = [nodeOf(document, args.a), nodeOf(document, args.b)] as const;
   const free = nodes.map((node) => isLooseEnd(document, node) && crossLinksAt(document, node.id).length === 0);
   if (!free[0] && !free[1])
     throw refusal("Neither place is a loose end.", "join", "Choose the end of a strand that no cross-link holds.");
   const [end, target] = free[0] ? nodes : [nodes[1], nodes[0]];
+  if (args.givesUpOrigin === true) giveUpOrigin(draft, end.tree, target.tree);
   mergeTrees(draft, end.id, target.id);
   attach(draft, end.id, target.id);
   if (!isLooseEnd(document, target)) forkIfBranching(draft, target.id);
@@ -52,6 +59,16 @@ function attach(draft: EditDraft, id: NodeId, target: NodeId): void {
   const longer = isThere ? run : joinedRun(run, [end.position], { via: [], legs: ["guide"] });
   draft.putStrand(withEndMoved(continued(strand, id, longer), id, target));
   draft.removeNode(id);
+}
+
+/** Where both trees have an origin, the first one's becomes what its strands make of it. */
+function giveUpOrigin(draft: EditDraft, id: TreeId, other: TreeId): void {
+  const { document } = draft;
+  const tree = treeOf(document, id);
+  if (id === other || tree.root === null || treeOf(document, other).root === null) return;
+  const degree = strandsAt(document, tree.root).length;
+  draft.putNode(asKind(nodeOf(document, tree.root), degree > 2 ? "fork" : degree === 2 ? "waypoint" : "open"));
+  draft.putTree({ ...tree, root: null });
 }
 
 /** Brings both nodes into one tree: the one that has an origin, else the target's. */
