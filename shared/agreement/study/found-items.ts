@@ -1,6 +1,7 @@
 import { type CaptureRecapture, captureRecapture } from "#shared/agreement/capture-recapture.ts";
 import { type DetectionRates, detectionRates } from "#shared/agreement/em-detection.ts";
 import type { Reasons } from "#shared/agreement/interval.ts";
+import type { Item } from "#shared/agreement/items.ts";
 import { type OverSpecimens, overSpecimens } from "#shared/agreement/jackknife.ts";
 import { type PositiveAgreement, positiveAgreement, positiveAgreementOf } from "#shared/agreement/positive-agreement.ts";
 import type { SpecimenItems, StudySpecimen } from "#shared/agreement/study/study.ts";
@@ -83,12 +84,16 @@ function doneByAll(rows: MarkedRows): boolean[][] {
 
 /** shape [items][annotators]: marked or not; null = specimen not done. Items of repeats alone are left out. */
 export function markedRows(specimen: StudySpecimen, items: SpecimenItems, on: "strands" | "ends"): (boolean | null)[][] {
-  const isEnd = (members: readonly number[]) => {
-    const p = members.findIndex((member) => member >= 0);
-    return specimen.passes[p]!.canonical.nodes[members[p]!]!.type === "end";
-  };
-  const chosen = on === "strands" ? items.strands.items : items.nodes.items.filter(({ members }) => isEnd(members));
-  return chosen
+  return itemsOn(specimen, items, on)
     .map(({ members }) => specimen.firstPass.map((p) => (p < 0 ? null : members[p]! >= 0)))
     .filter((row) => row.includes(true));
+}
+
+/** Items that are strands, or nodes at the end of one. */
+export function itemsOn(specimen: StudySpecimen, items: SpecimenItems, on: "strands" | "ends"): readonly Item[] {
+  if (on === "strands") return items.strands.items;
+  return items.nodes.items.filter(({ members }) => {
+    const p = members.findIndex((member) => member >= 0);
+    return specimen.passes[p]!.canonical.nodes[members[p]!]!.type === "end";
+  });
 }

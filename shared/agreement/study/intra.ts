@@ -3,6 +3,7 @@ import { type IccTable, icc } from "#shared/agreement/icc.ts";
 import type { Reasons } from "#shared/agreement/interval.ts";
 import { mean } from "#shared/agreement/mean-squares.ts";
 import { type PositiveAgreement, positiveAgreement } from "#shared/agreement/positive-agreement.ts";
+import { itemsOn } from "#shared/agreement/study/found-items.ts";
 import { matchedRows, type QuantityRows, totalRows } from "#shared/agreement/study/quantities.ts";
 import type { SpecimenItems, StudyPass, StudySpecimen } from "#shared/agreement/study/study.ts";
 
@@ -14,6 +15,8 @@ export interface IntraAgreement {
   /** Days between the two; null when a file does not say when it was made. */
   readonly days: number | null;
   readonly strands: PositiveAgreement;
+  /** A branch that one of the two passes misses takes one end. */
+  readonly ends: PositiveAgreement;
   /** Later minus earlier on what both passes have; a mean far from 0 is drift. */
   readonly quantities: readonly {
     readonly quantity: string;
@@ -98,15 +101,19 @@ function onePair(
   earlier: StudyPass,
   later: StudyPass,
 ): IntraAgreement {
-  const marked = items.strands.items.map(({ members }) => [members[i]! >= 0, members[j]! >= 0] as const);
-  const count = (a: boolean, b: boolean) => marked.filter(([x, y]) => x === a && y === b).length;
+  const found = (on: "strands" | "ends") => {
+    const rows = itemsOn(specimen, items, on).map(({ members }) => [members[i]! >= 0, members[j]! >= 0] as const);
+    const count = (a: boolean, b: boolean) => rows.filter(([x, y]) => x === a && y === b).length;
+    return positiveAgreement(count(true, true), count(true, false), count(false, true));
+  };
   const days = earlier.created && later.created ? (Date.parse(later.created) - Date.parse(earlier.created)) / DAY_MS : Number.NaN;
   return {
     annotator: later.annotator,
     specimen: specimen.name,
     passes: [earlier.pass, later.pass],
     days: Number.isFinite(days) ? days : null,
-    strands: positiveAgreement(count(true, true), count(true, false), count(false, true)),
+    strands: found("strands"),
+    ends: found("ends"),
     quantities: rowsOfBoth(specimen, items, i, j).map(differences),
     reasons: Number.isFinite(days) ? {} : { days: "One of the two files does not say when it was made." },
   };

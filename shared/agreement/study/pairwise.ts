@@ -1,6 +1,7 @@
 import type { StudyPass, StudySpecimen } from "#shared/agreement/study/study.ts";
 import { compareSets } from "#shared/compare/compare-sets.ts";
-import type { ComparedWhole, CompareOptions, TimeLeft } from "#shared/compare/comparison.ts";
+import type { ComparedWhole, CompareOptions, Comparison, TimeLeft } from "#shared/compare/comparison.ts";
+import type { EventKind } from "#shared/compare/events/compare-event.ts";
 
 /** The whole comparison of two passes over one specimen; `a` is the reference of what is not symmetric. */
 export interface PairSummary extends ComparedWhole {
@@ -10,6 +11,8 @@ export interface PairSummary extends ComparedWhole {
   readonly matchedTrees: number;
   readonly onlyA: readonly string[];
   readonly onlyB: readonly string[];
+  /** How often the annotators differ in each way, in matched trees; `missed-branch` is one that only `a` has. */
+  readonly events: Readonly<Partial<Record<EventKind, number>>>;
 }
 
 const STEP_WITHOUT_VOLUME_MM = 0.02;
@@ -51,7 +54,14 @@ export function comparePassPairs(
       matchedTrees: found.pairs.length,
       onlyA: found.onlyA,
       onlyB: found.onlyB,
+      events: countedEvents(found),
       ...found.whole,
     };
   });
+}
+
+function countedEvents({ pairs }: Comparison): PairSummary["events"] {
+  const counts: Partial<Record<EventKind, number>> = {};
+  for (const { event } of pairs.flatMap(({ events }) => events)) counts[event] = (counts[event] ?? 0) + 1;
+  return counts;
 }
