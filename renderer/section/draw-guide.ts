@@ -2,6 +2,7 @@ import { projectPoints } from "#renderer/section/project-scene.ts";
 import type { ShownGuide, StrandUnderWay } from "#renderer/section/section-content.ts";
 import type { SectionInk } from "#renderer/section/section-ink.ts";
 import type { PaneSize, ViewPlane } from "#renderer/section/view-plane.ts";
+import type { ProposedLine } from "#shared/marks/proposed-line.ts";
 
 /**
  * The strand under way and its live guide. They are never faded: whoever traces has to see the whole of them. A coarse
@@ -25,6 +26,29 @@ export function drawUnderWay(
     line(to, seen, first, last, { ...ink, accent: ink.warn }, 3.4, guide.coarse ? [0.1, 5.5] : []);
     crossMark(to, seen, first, ink);
     crossMark(to, seen, last, ink);
+  }
+}
+
+/** A proposal: dashed, since nothing of it is drawn yet; what is left out is faint and dotted. */
+export function drawProposal(
+  to: CanvasRenderingContext2D,
+  lines: readonly ProposedLine[],
+  plane: ViewPlane,
+  size: PaneSize,
+  ink: SectionInk,
+): void {
+  to.lineJoin = "round";
+  to.lineCap = "butt";
+  for (const { points, kept, doubtful } of lines) {
+    if (points.length < 6) continue;
+    const seen = projectPoints(points, plane, size);
+    line(to, seen, 0, undefined, kept ? ink : { ...ink, accent: ink.ink }, kept ? 2.4 : 1.2, kept ? [8, 5] : [1.5, 5]);
+    if (!kept) continue;
+    for (const [first, last] of doubtful) {
+      line(to, seen, first, last, { ...ink, accent: ink.warn }, 3.4, [8, 5]);
+      crossMark(to, seen, first, ink);
+      crossMark(to, seen, last, ink);
+    }
   }
 }
 

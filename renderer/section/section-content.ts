@@ -4,6 +4,7 @@ import type { BinaryFrame } from "#shared/api/frame.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
 import type { DrawnStrand } from "#shared/marks/drawn-strand.ts";
 import type { MarkedPlace } from "#shared/marks/marked-place.ts";
+import type { ProposedLine } from "#shared/marks/proposed-line.ts";
 import type { CrossLinkId, NodeId, StrandId, TreeDocument, TreeId } from "#shared/trees/document.ts";
 import type { FrameName } from "#shared/volume/grid.ts";
 
@@ -57,6 +58,8 @@ export interface SectionContent {
   readonly slabMm: number;
   readonly guide: ShownGuide | null;
   readonly underWay: StrandUnderWay | null;
+  /** What is suggested and not taken yet. */
+  readonly proposal: readonly ProposedLine[];
   /** The string the pointer snaps to. */
   readonly snap: SnapCandidate | null;
   readonly ruler: ShownRuler | null;

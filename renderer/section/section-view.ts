@@ -1,6 +1,6 @@
 import "#renderer/section/section.css";
 import { drawCursor, drawFrame, drawRuler, drawSnap } from "#renderer/section/draw-furniture.ts";
-import { drawUnderWay } from "#renderer/section/draw-guide.ts";
+import { drawProposal, drawUnderWay } from "#renderer/section/draw-guide.ts";
 import { GreyPicture } from "#renderer/section/draw-image.ts";
 import { drawLabels } from "#renderer/section/draw-labels.ts";
 import { drawPlaces } from "#renderer/section/draw-places.ts";
@@ -34,6 +34,7 @@ export const EMPTY_SECTION: SectionContent = {
   slabMm: 0.4,
   guide: null,
   underWay: null,
+  proposal: [],
   snap: null,
   ruler: null,
   cursor: null,
@@ -273,6 +274,7 @@ export class SectionView {
     drawStrands(to, this.scene, half, ink);
     if (content.outlines) drawOutlines(to, this.scene, plane.mmPerPx, ink);
     drawNodes(to, this.scene, half, ink);
+    drawProposal(to, content.proposal, plane, size, ink);
     drawUnderWay(to, content.underWay, content.guide, plane, size, ink);
     drawPins(to, this.scene, half, ink);
     drawPlaces(to, this.scene, half, ink);

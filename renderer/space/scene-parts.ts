@@ -24,6 +24,7 @@ import { add, scale } from "#shared/geometry/vec3.ts";
 import type { ViewColours } from "#shared/marks/colours.ts";
 import type { DrawnStrand } from "#shared/marks/drawn-strand.ts";
 import type { MarkedPlace } from "#shared/marks/marked-place.ts";
+import type { ProposedLine } from "#shared/marks/proposed-line.ts";
 import { TREE_DASHES, treeMark } from "#shared/marks/tree-mark.ts";
 import type { NodeKind, TreeNode } from "#shared/trees/document.ts";
 
@@ -101,6 +102,19 @@ export function selectionPart(strands: readonly DrawnStrand[], colours: ViewColo
 
 export function guidePart(points: readonly number[], colours: ViewColours): Object3D {
   return tubesPart([{ points, radii: [], colour: rgb(colours.accent), dashMm: [] }], THINNEST_MM);
+}
+
+/** A proposal as dashed lines; what is left out is thin and quiet. */
+export function proposalPart(lines: readonly ProposedLine[], colours: ViewColours): Object3D {
+  const tubes = lines
+    .filter(({ points }) => points.length >= 6)
+    .map(({ points, kept }) => ({
+      points,
+      radii: [],
+      colour: kept ? rgb(colours.accent) : quietRgb(colours),
+      dashMm: kept ? [1, 0.6] : [0.3, 0.6],
+    }));
+  return tubesPart(tubes, THINNEST_MM);
 }
 
 function tubesPart(tubes: readonly Tube[], thinnestMm: number): Mesh {

@@ -7,6 +7,7 @@ import {
   pinsPart,
   placesPart,
   planePart,
+  proposalPart,
   selectionPart,
   sizeGlyphs,
   strandsPart,
@@ -16,7 +17,7 @@ import type { SpaceContent } from "#renderer/space/space-content.ts";
 import type { ViewColours } from "#shared/marks/colours.ts";
 import { type DrawnStrand, drawnStrands } from "#shared/marks/drawn-strand.ts";
 
-const PARTS = ["strands", "nodes", "places", "selection", "guide", "pins", "plane", "surface"] as const;
+const PARTS = ["strands", "nodes", "places", "selection", "guide", "proposal", "pins", "plane", "surface"] as const;
 type PartName = (typeof PARTS)[number];
 
 /** The parts of the scene by what they show; each is built anew only when what it shows has changed. */
@@ -42,6 +43,7 @@ export class SceneStore {
     if (now.selection !== before.selection) this.spoil("selection");
     if (now.places !== before.places) this.spoil("places");
     if (now.guide !== before.guide) this.spoil("guide");
+    if (now.proposal !== before.proposal) this.spoil("proposal");
     if (now.pins !== before.pins) this.spoil("pins");
     if (now.plane !== before.plane || now.picture !== before.picture) this.spoil("plane");
     if (now.surface !== before.surface) this.spoil("surface");
@@ -113,6 +115,8 @@ export class SceneStore {
         return content.places.length === 0 ? null : placesPart(content.places, colours, this.glyphs);
       case "guide":
         return guide === null || guide.length < 6 ? null : guidePart(guide, colours);
+      case "proposal":
+        return content.proposal.length === 0 ? null : proposalPart(content.proposal, colours);
       case "pins":
         return pins.length === 0 ? null : pinsPart(pins, colours, this.glyphs);
       case "plane":

@@ -2,6 +2,7 @@ import type { PointMm, Vec3 } from "#shared/geometry/types.ts";
 import type { ValveAxes } from "#shared/geometry/valve-axes.ts";
 import type { DrawnStrand } from "#shared/marks/drawn-strand.ts";
 import type { MarkedPlace } from "#shared/marks/marked-place.ts";
+import type { ProposedLine } from "#shared/marks/proposed-line.ts";
 import type { CrossLinkId, NodeId, StrandId, TreeDocument, TreeId } from "#shared/trees/document.ts";
 
 export interface SpaceSelection {
@@ -34,6 +35,8 @@ export interface SpaceContent {
   readonly selection: SpaceSelection;
   /** Flat xyz, millimetres: the live guide. */
   readonly guide: readonly number[] | null;
+  /** What is suggested and not taken yet. */
+  readonly proposal: readonly ProposedLine[];
   readonly pins: readonly PointMm[];
   readonly plane: PlaneInSpace | null;
   readonly picture: PictureInSpace | null;

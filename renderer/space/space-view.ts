@@ -27,6 +27,7 @@ export const EMPTY_SPACE: SpaceContent = {
   places: [],
   selection: {},
   guide: null,
+  proposal: [],
   pins: [],
   plane: null,
   picture: null,
