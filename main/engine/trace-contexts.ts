@@ -32,7 +32,7 @@ export class TraceContexts {
     if (context) this.#kept.delete(key);
     else {
       const share = this.#bytes / MOST_CONTEXTS;
-      const tiles = Math.max(32, Math.floor((0.7 * share) / (this.#store ? BYTES_PER_TILE : 2 * BYTES_PER_TILE)));
+      const tiles = Math.max(32, Math.floor((0.7 * share) / BYTES_PER_TILE));
       const bricks = Math.max(32, Math.floor((0.3 * share) / BYTES_PER_BRICK));
       context = createTraceContext(pyramid, polarity, {
         ridgeTiles: tiles,

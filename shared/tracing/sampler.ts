@@ -24,14 +24,22 @@ export function createSampler(pyramid: VoxelPyramid, keepBricks = 384): Sampler 
   let topX = 0;
   let topY = 0;
   let topZ = 0;
+  /** A brick's array: once enough are kept, that of the oldest. */
+  const roomForOne = (): Float32Array<ArrayBuffer> => {
+    if (bricks.size < keepBricks) return new Float32Array(WITH_NEIGHBOUR ** 3);
+    const [key, brick] = bricks.entries().next().value!;
+    bricks.delete(key);
+    // It may be that of the place before, and filling it may fail.
+    lastI = -1;
+    return brick as Float32Array<ArrayBuffer>;
+  };
   const brickOf = (level: number, i: number, j: number, k: number): Float32Array<ArrayBuffer> => {
     const key = ((level * 4096 + k) * 4096 + j) * 4096 + i;
     let brick = bricks.get(key) as Float32Array<ArrayBuffer> | undefined;
     if (!brick) {
-      brick = new Float32Array(WITH_NEIGHBOUR ** 3);
+      brick = roomForOne();
       pyramid.readBoxInto(level, [i * SIDE, j * SIDE, k * SIDE], [WITH_NEIGHBOUR, WITH_NEIGHBOUR, WITH_NEIGHBOUR], brick);
       bricks.set(key, brick);
-      if (bricks.size > keepBricks) bricks.delete(bricks.keys().next().value!);
     }
     return brick;
   };

@@ -28,7 +28,7 @@ const WORKING_SPACING_MM = 0.05;
 
 /** How much a context may keep; no answer depends on it. */
 export interface TraceCaches {
-  /** Ridge tiles per kind (164 KB each, two kinds). */
+  /** Ridge tiles (164 KB each). */
   readonly ridgeTiles?: number;
   /** Bricks of grey values (144 KB each). */
   readonly bricks?: number;

@@ -12,8 +12,10 @@ export const RIDGE_TILE_VOXELS = RIDGE_TILE_SIDE ** 3;
 /** A voxel one sigma from the crest answers half as strongly as the curvatures there alone would make it. */
 const DAMPING = 0.25;
 
-/** Own answers kept here as well when a store keeps them: those of the coarse levels are needed again and again. */
-const KEPT_BESIDE_STORE = 48;
+/** Of the tiles kept, this share are own answers also when a store keeps them: those of coarse levels are needed again and again. */
+const OWN_BESIDE_STORE = 0.25;
+/** Tiles that are kept at least, per kind: a borrowed tile stays as it is while so many others are asked for. */
+const LEAST_KEPT = 16;
 
 /** The multi-scale ridge measure over one tile. */
 export interface RidgeTile {
@@ -30,7 +32,7 @@ export interface RidgeTiles {
   scales(level: number): readonly RidgeScale[];
   /**
    * Tile (i, j, k) of a level; the scan's edge voxels count as repeated beyond it, and tile voxels outside the level say
-   * nothing. Borrowed: not to be written to.
+   * nothing. Borrowed: not to be written to, and overwritten some time after {@link LEAST_KEPT} other tiles were asked for.
    * @param count how many of the level's scales take part, finest first; all when not given.
    */
   tile(level: number, i: number, j: number, k: number, count?: number): RidgeTile;
@@ -62,7 +64,7 @@ interface OwnAnswer {
 }
 
 /**
- * The ridge tiles of a pyramid, computed when asked for and kept up to `keepTiles` per kind; those used longest ago go first.
+ * The ridge tiles of a pyramid, computed when asked for and kept, up to `keepTiles` in all; those used longest ago make room.
  * Scales of coarser levels are computed on their own grid and carried to the working grid by linear interpolation.
  * @param store shared with others that work on the same scan and polarity; the tiles are the same numbers with it or without.
  */
@@ -76,8 +78,9 @@ export function createRidgeTiles(
   const kernel = createRidgeKernel();
   const scalesOfLevel = new Map<number, readonly RidgeScale[]>();
   const blockScales = new Map<string, BlockScale>();
-  const kept = new Map<string, RidgeTile>();
-  const own = new Map<string, OwnAnswer>();
+  const ownTiles = Math.floor(keepTiles * (store ? OWN_BESIDE_STORE : 0.5));
+  const kept = new KeptTiles(keepTiles - ownTiles);
+  const own = new KeptTiles(ownTiles);
 
   const scales = (level: number) => {
     const known = scalesOfLevel.get(level);
@@ -111,16 +114,15 @@ export function createRidgeTiles(
     const here = list.flatMap((scale, index) => (index < count && scale.level === level ? [index] : []));
     if (here.length === 0) return null;
     const key = `${working} ${here.length} ${level} ${i} ${j} ${k}`;
-    const known = recalled(own, key);
+    const known = own.find(key);
     if (known) return known;
-    const made = { strength: new Float32Array(RIDGE_TILE_VOXELS), scale: new Uint8Array(RIDGE_TILE_VOXELS) };
+    const made = own.take();
     const [gx, gy, gz] = pyramid.levels[level]!.size.map((side) => Math.ceil(side / RIDGE_TILE_SIDE)) as [number, number, number];
     const compute = (strength: Float32Array, scale: Uint8Array) => computeOwn(list, here, level, [i, j, k], strength, scale);
     if (store && i >= 0 && j >= 0 && k >= 0 && i < gx && j < gy && k < gz)
       store.tileInto({ working, count: here.length, level, number: (k * gy + j) * gx + i }, made.strength, made.scale, compute);
     else compute(made.strength, made.scale);
-    own.set(key, made);
-    dropOldest(own, store ? KEPT_BESIDE_STORE : keepTiles);
+    own.keep(key, made);
     return made;
   };
 
@@ -180,36 +182,56 @@ export function createRidgeTiles(
     tile(level, i, j, k, most) {
       const count = Math.min(most ?? Number.POSITIVE_INFINITY, scales(level).length);
       const key = `${count} ${level} ${i} ${j} ${k}`;
-      const known = recalled(kept, key);
+      const known = kept.find(key);
       if (known) return known;
       const base = ownTile(level, count, level, i, j, k);
-      const strength = base ? base.strength.slice() : new Float32Array(RIDGE_TILE_VOXELS);
-      const scale = base ? base.scale.slice() : new Uint8Array(RIDGE_TILE_VOXELS);
+      const made = kept.take();
+      const { strength, scale } = made;
+      if (base) {
+        strength.set(base.strength);
+        scale.set(base.scale);
+      } else {
+        strength.fill(0);
+        scale.fill(0);
+      }
       for (let coarse = level + 1; coarse < pyramid.levels.length; coarse++)
         raiseByCoarse(pyramid, level, coarse, [i, j, k], (a, b, c) => ownTile(level, count, coarse, a, b, c), strength, scale);
-      const made = { strength, scale };
-      kept.set(key, made);
-      dropOldest(kept, keepTiles);
+      kept.keep(key, made);
       return made;
     },
   };
 }
 
-/** The entry of a key, which then counts as the one used last. */
-function recalled<V>(map: Map<string, V>, key: string): V | undefined {
-  const value = map.get(key);
-  if (value !== undefined) {
-    map.delete(key);
-    map.set(key, value);
-  }
-  return value;
-}
+/** Tiles by key up to a number; a new one is written over the one used longest ago, so that memory does not depend on when garbage is collected. */
+class KeptTiles {
+  readonly #most: number;
+  readonly #tiles = new Map<string, OwnAnswer>();
 
-/** Lets go of the entries used longest ago. */
-function dropOldest<V>(map: Map<string, V>, most: number): void {
-  for (const key of map.keys()) {
-    if (map.size <= most) return;
-    map.delete(key);
+  constructor(most: number) {
+    this.#most = Math.max(LEAST_KEPT, most);
+  }
+
+  /** The tile of a key, which then counts as the one used last. */
+  find(key: string): OwnAnswer | undefined {
+    const tile = this.#tiles.get(key);
+    if (tile !== undefined) {
+      this.#tiles.delete(key);
+      this.#tiles.set(key, tile);
+    }
+    return tile;
+  }
+
+  /** Arrays for a new tile, holding anything. */
+  take(): OwnAnswer {
+    const [oldest] = this.#tiles;
+    if (oldest === undefined || this.#tiles.size < this.#most)
+      return { strength: new Float32Array(RIDGE_TILE_VOXELS), scale: new Uint8Array(RIDGE_TILE_VOXELS) };
+    this.#tiles.delete(oldest[0]);
+    return oldest[1];
+  }
+
+  keep(key: string, tile: OwnAnswer): void {
+    this.#tiles.set(key, tile);
   }
 }
 
