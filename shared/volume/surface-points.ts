@@ -31,9 +31,30 @@ export function surfacePoints(
     return slice;
   };
   const threshold = otsuThreshold(nz, read);
-  if (threshold === null) return frameOf([], [], level, 0);
+  if (threshold === null) return frameOf(new Float32Array(0), level, 0);
 
-  const found: number[] = [];
+  // Once to count, once to keep: only points that are asked for are ever held.
+  let count = 0;
+  eachSurfacePoint(level, read, sign, threshold, () => count++);
+  const place = scattered(count);
+  const points = new Float32Array(3 * Math.min(count, request.limit));
+  let number = 0;
+  eachSurfacePoint(level, read, sign, threshold, (x, y, z) => {
+    const to = place(number++);
+    if (3 * to < points.length) points.set(indexToMm(level, [x, y, z]), 3 * to);
+  });
+  return frameOf(points, level, threshold);
+}
+
+/** Calls `found` with the voxel index of each point of the surface, in the order of its voxel. */
+function eachSurfacePoint(
+  level: PyramidLevel,
+  read: (z: number) => Float32Array,
+  sign: 1 | -1,
+  threshold: number,
+  found: (x: number, y: number, z: number) => void,
+): void {
+  const [nx, ny, nz] = level.size;
   const slices = [new Float32Array(nx * ny), new Float32Array(nx * ny), new Float32Array(nx * ny)];
   for (let z = 0; z < Math.min(2, nz); z++) slices[z]!.set(read(z));
   for (let z = 0; z < nz; z++) {
@@ -71,11 +92,10 @@ export function surfacePoints(
           else if (side < 4) dy += share;
           else dz += share;
         }
-        if (crossings > 0) found.push(x + dx / crossings, y + dy / crossings, z + dz / crossings);
+        if (crossings > 0) found(x + dx / crossings, y + dy / crossings, z + dz / crossings);
       }
     if (z + 2 < nz) slices[(z + 2) % 3]!.set(read(z + 2));
   }
-  return frameOf(found, scattered(found.length / 3, request.limit), level, threshold);
 }
 
 /** The threshold between two classes of a level's finite values; null when they are all the same. */
@@ -124,36 +144,33 @@ function otsuThreshold(slices: number, read: (z: number) => Float32Array): numbe
   return min + ((first + last) / 2 + 1) / toBin;
 }
 
-/** At most `limit` of `count` numbers, spread evenly and in scattered order, always the same. */
-function scattered(count: number, limit: number): number[] {
-  if (count === 0) return [];
-  // Steps of the golden section, made coprime to the count, visit each number once.
+/** The places of `count` numbers in a fixed scattered order, any first part of which is spread evenly over the numbers. */
+function scattered(count: number): (number: number) => number {
+  if (count <= 1) return (number) => number;
+  // Steps of the golden section, made coprime to the count, visit each number once: number = place * step modulo count.
   let step = Math.max(1, Math.round(count * 0.6180339887498949));
-  while (greatestDivisor(step, count) !== 1) step++;
-  const chosen: number[] = [];
-  for (let n = 0, at = 0; n < Math.min(count, limit); n++, at = (at + step) % count) chosen.push(at);
-  return chosen;
+  let back = inverse(step, count);
+  while (back === null) back = inverse(++step, count);
+  const turn = back;
+  return (number) => (number * turn) % count;
 }
 
-function greatestDivisor(a: number, b: number): number {
-  let [high, low] = [a, b];
-  while (low !== 0) [high, low] = [low, high % low];
-  return high;
+/** The number that times `a` is 1 modulo `n`; null when they have a common divisor. @source extended Euclidean algorithm. */
+function inverse(a: number, n: number): number | null {
+  let [high, low] = [n, a % n];
+  let [from, to] = [0, 1];
+  while (low !== 0) {
+    const times = Math.floor(high / low);
+    [high, low] = [low, high - times * low];
+    [from, to] = [to, from - times * to];
+  }
+  return high === 1 ? ((from % n) + n) % n : null;
 }
 
-function frameOf(
-  found: readonly number[],
-  chosen: readonly number[],
-  level: PyramidLevel,
-  threshold: number,
-): BinaryFrame<SurfaceHeader> {
-  const points = new Float32Array(3 * chosen.length);
-  chosen.forEach((n, to) => {
-    const place = indexToMm(level, [found[3 * n]!, found[3 * n + 1]!, found[3 * n + 2]!]);
-    points.set(place, 3 * to);
-  });
+/** @param points shape [n, 3], millimetres; its buffer is handed on. */
+function frameOf(points: Float32Array<ArrayBuffer>, level: PyramidLevel, threshold: number): BinaryFrame<SurfaceHeader> {
   return {
-    header: { dtype: "float32", count: chosen.length, level: level.level, threshold },
+    header: { dtype: "float32", count: points.length / 3, level: level.level, threshold },
     body: new Uint8Array(points.buffer),
   };
 }
