@@ -1,7 +1,9 @@
 import { type CostTiles, LEAST_COST, MOST_COST } from "#shared/tracing/cost.ts";
 import type { FrontDomain } from "#shared/tracing/minimal-path/front.ts";
+import { createFrontMemory } from "#shared/tracing/minimal-path/front-memory.ts";
 import { RIDGE_TILE_SIDE } from "#shared/tracing/ridge/ridge-tiles.ts";
 import type { PyramidLevel, VoxelPyramid } from "#shared/volume/pyramid.ts";
+import { type AbortSignalLike, stopIfAborted } from "#shared/volume/section/sample-lattice.ts";
 
 /** A box of whole tiles of one level, as a domain for fronts. */
 export interface TileDomain extends FrontDomain {
@@ -33,42 +35,51 @@ export function tileBox(
  * A domain over a box of whole tiles whose costs are computed tile by tile when a front arrives.
  * Memory: 4 bytes a voxel, of which only the visited tiles are ever touched.
  * @param blocked voxel numbers of the box that no front may enter (strings already traced).
+ * @param signal looked at before each tile, which can take many milliseconds.
+ * Fronts that grow in it throw cancelled when the signal says so.
  */
 export function createTileDomain(
   pyramid: VoxelPyramid,
   costs: CostTiles,
   box: { readonly start: readonly [number, number, number]; readonly size: readonly [number, number, number] },
   blocked: Iterable<number> = [],
+  signal?: AbortSignalLike,
 ): TileDomain {
   const n = RIDGE_TILE_SIDE;
   const level = pyramid.levels[costs.level]!;
   const { start, size } = box;
   const [nx, ny] = size;
-  const cost = new Float32Array(size[0] * size[1] * size[2]);
-  for (const voxel of blocked) cost[voxel] = Number.POSITIVE_INFINITY;
   const tile = new Float32Array(n * n * n);
+  const fill = (voxel: number) => {
+    stopIfAborted(signal);
+    const x = voxel % nx;
+    const y = Math.floor(voxel / nx) % ny;
+    const z = Math.floor(voxel / (nx * ny));
+    const i = Math.floor(x / n);
+    const j = Math.floor(y / n);
+    const k = Math.floor(z / n);
+    costs.tileInto(start[0] / n + i, start[1] / n + j, start[2] / n + k, tile);
+    const { cost } = memory;
+    let from = 0;
+    for (let dz = 0; dz < n; dz++)
+      for (let dy = 0; dy < n; dy++) {
+        const to = ((k * n + dz) * ny + j * n + dy) * nx + i * n;
+        for (let dx = 0; dx < n; dx++, from++) if (cost[to + dx] === 0) cost[to + dx] = tile[from]!;
+      }
+  };
+  const memory = createFrontMemory({ size, spacing: level.spacing, fill });
+  const { cost } = memory;
+  for (const voxel of blocked) cost[voxel] = Number.POSITIVE_INFINITY;
   return {
     level,
     start,
     size,
     spacing: level.spacing,
-    cost,
     leastCost: LEAST_COST,
     mostCost: MOST_COST,
-    fill(voxel) {
-      const x = voxel % nx;
-      const y = Math.floor(voxel / nx) % ny;
-      const z = Math.floor(voxel / (nx * ny));
-      const i = Math.floor(x / n);
-      const j = Math.floor(y / n);
-      const k = Math.floor(z / n);
-      costs.tileInto(start[0] / n + i, start[1] / n + j, start[2] / n + k, tile);
-      let from = 0;
-      for (let dz = 0; dz < n; dz++)
-        for (let dy = 0; dy < n; dy++) {
-          const to = ((k * n + dz) * ny + j * n + dy) * nx + i * n;
-          for (let dx = 0; dx < n; dx++, from++) if (cost[to + dx] === 0) cost[to + dx] = tile[from]!;
-        }
+    memory,
+    get cost() {
+      return memory.cost;
     },
   };
 }

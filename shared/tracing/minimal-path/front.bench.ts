@@ -1,5 +1,5 @@
 // Shortest paths from one source over a whole cube; CPU time, so that neighbours on the machine do not count.
-import { createFront, expandFront } from "#shared/tracing/minimal-path/front.ts";
+import { createFront, createFrontDomain, expandFront } from "#shared/tracing/minimal-path/front.ts";
 
 /** Costs of a few kinds between 0.05 and 1: uniform noise, smooth waves, and a flat field. */
 export function benchCost(kind: "uniform" | "waves" | "flat", side: number): Float32Array {
@@ -22,11 +22,12 @@ export function bench(print: (line: string) => void, cpuMs: () => number, sides:
   for (const side of sides)
     for (const kind of ["uniform", "waves", "flat"] as const) {
       const cost = benchCost(kind, side);
+      const box = { size: [side, side, side], spacing: [1, 1, 1], leastCost: 0.05, mostCost: 1 } as const;
       const times: number[] = [];
       let sum = 0;
       for (let round = 0; round < 4; round++) {
         const start = cpuMs();
-        const front = createFront({ size: [side, side, side], spacing: [1, 1, 1], cost, leastCost: 0.05, mostCost: 1 }, 0);
+        const front = createFront(createFrontDomain(box, cost), 0);
         expandFront(front, Number.POSITIVE_INFINITY);
         times.push(cpuMs() - start);
         sum = 0;

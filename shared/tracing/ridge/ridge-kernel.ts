@@ -1,5 +1,6 @@
 import type { GaussianKernels } from "#shared/tracing/ridge/gaussian-kernels.ts";
 import { RIDGE_WASM_BASE64 } from "#shared/tracing/ridge/wasm/ridge-wasm.generated.ts";
+import { type WasmMemory, wasmInstance } from "#shared/tracing/wasm-module.ts";
 
 /** What one scale needs on one level's grid. */
 export interface BlockScale {
@@ -35,7 +36,7 @@ type Triple = readonly [number, number, number];
 
 /** What `wasm/ridge.wat` exports. */
 interface RidgeExports {
-  readonly memory: { readonly buffer: ArrayBuffer; grow(pages: number): number };
+  readonly memory: WasmMemory;
   along3(from: number, stride: number, w: number, wEnd: number, bytes: number, o0: number, o1: number, o2: number): void;
   along2(from: number, stride: number, w: number, wEnd: number, bytes: number, o0: number, o1: number): void;
   along1(from: number, stride: number, w: number, wEnd: number, bytes: number, o0: number): void;
@@ -52,25 +53,15 @@ interface RidgeExports {
   ): void;
 }
 
-/** The part of WebAssembly used here; its own types are not among those that a browser, a worker and Node share. */
-interface Assembly {
-  readonly Module: new (bytes: Uint8Array) => object;
-  readonly Instance: new (module: object) => { readonly exports: object };
-}
-
 const PAGE_BYTES = 65536;
 /** Buffers begin at multiples of this, and have at least this much to spare behind them. */
 const ALIGN_BYTES = 64;
 /** Smooth, first, second: three float32 weights a tap. */
 const TAP_BYTES = 12;
 
-let compiled: object | null = null;
-
 /** A kernel with a memory of its own; it grows with the largest block. */
 export function createRidgeKernel(): RidgeKernel {
-  const { Module, Instance } = (globalThis as unknown as { readonly WebAssembly: Assembly }).WebAssembly;
-  compiled ??= new Module(Uint8Array.from(atob(RIDGE_WASM_BASE64), (c) => c.charCodeAt(0)));
-  const wasm = new Instance(compiled).exports as RidgeExports;
+  const wasm = wasmInstance<RidgeExports>(RIDGE_WASM_BASE64);
   let used = 0;
   let blockVoxels = 0;
   let values = new Float32Array(wasm.memory.buffer);

@@ -5,7 +5,7 @@ import { mkdtempSync, readFileSync, rmSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { benchCost } from "#shared/tracing/minimal-path/front.bench.ts";
-import { createFront, expandFront } from "#shared/tracing/minimal-path/front.ts";
+import { createFront, createFrontDomain, expandFront } from "#shared/tracing/minimal-path/front.ts";
 import { gaussianKernels } from "#shared/tracing/ridge/gaussian-kernels.ts";
 import { ridgeBlockInto } from "#shared/tracing/ridge/ridge-block.ts";
 import { createRidgeKernel } from "#shared/tracing/ridge/ridge-kernel.ts";
@@ -130,9 +130,10 @@ function ridgeRow(side: number, sigma: number, print: (line: string) => void, cp
 
 function pathsRow(side: number, kind: "uniform" | "waves" | "flat", print: (line: string) => void, cpuMs: () => number): void {
   const cost = benchCost(kind, side);
+  const box = { size: [side, side, side], spacing: [1, 1, 1], leastCost: LEAST_COST, mostCost: 1 } as const;
   let distance: Float64Array = new Float64Array(0);
   const ms = medianCpuMs(() => {
-    const front = createFront({ size: [side, side, side], spacing: [1, 1, 1], cost, leastCost: LEAST_COST, mostCost: 1 }, 0);
+    const front = createFront(createFrontDomain(box, cost), 0);
     expandFront(front, Number.POSITIVE_INFINITY);
     distance = front.distance;
   }, cpuMs);

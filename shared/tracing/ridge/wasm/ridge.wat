@@ -1,6 +1,6 @@
 ;; The ridge measure of one scale, four float32 voxels at a time. Every operation is a correctly rounded single one (no fused
 ;; or relaxed ones), so that the same numbers come out on every machine; ridge-block.test.ts holds the same steps one voxel at a
-;; time. Built by test/tools/make-ridge-wasm.mjs. All pointers and strides are in bytes; all arrays are float32. Buffers
+;; time. Built by test/tools/make-wasm.mjs. All pointers and strides are in bytes; all arrays are float32. Buffers
 ;; are read and written up to 32 bytes beyond the lengths given.
 (module
   (memory (export "memory") 1)

@@ -1,6 +1,7 @@
 import { describe, expect, it } from "vitest";
 import {
   createFront,
+  createFrontDomain,
   expandFront,
   type FrontDomain,
   hasReached,
@@ -8,6 +9,7 @@ import {
   walkBackInto,
 } from "#shared/tracing/minimal-path/front.ts";
 import { meetFronts } from "#shared/tracing/minimal-path/meet.ts";
+import { plainFront } from "#test/shared/tracing/minimal-path/front-in-javascript.ts";
 import { seeded } from "#test/shared/tracing/tube-phantom.ts";
 
 type Size = readonly [number, number, number];
@@ -20,7 +22,7 @@ function domain(size: Size, spacing: Size, cost: Float32Array): FrontDomain {
       least = Math.min(least, c);
       most = Math.max(most, c);
     }
-  return { size, spacing, cost, leastCost: least, mostCost: most };
+  return createFrontDomain({ size, spacing, leastCost: least, mostCost: most }, cost);
 }
 
 /** Dijkstra by repeated scan over all voxels: slow, and plainly right (Dijkstra 1959). */
@@ -104,27 +106,81 @@ describe("a front", () => {
     }
   });
 
+  it("is, to the last bit, a front of plain stacks that looks at one neighbour at a time", () => {
+    const cases = [
+      { size: [17, 13, 11], spacing: [0.04, 0.05, 0.1], walls: 0.2, goal: -1 },
+      { size: [17, 13, 11], spacing: [0.04, 0.04, 0.04], walls: 0, goal: 2400 },
+      { size: [1, 40, 9], spacing: [1, 2, 3], walls: 0.1, goal: -1 },
+      { size: [40, 2, 2], spacing: [1, 1, 1], walls: 0, goal: 150 },
+      { size: [3, 3, 60], spacing: [1, 1, 0.5], walls: 0.1, goal: -1 },
+      // Buckets of many labels, and a memory that grows meanwhile.
+      { size: [70, 60, 50], spacing: [1, 1, 1], walls: 0, goal: -1 },
+    ] as const;
+    for (const [n, { size, spacing, walls, goal }] of cases.entries()) {
+      const cost = randomCost(size[0] * size[1] * size[2], 20 + n, walls);
+      cost[7] = 0.5;
+      if (goal >= 0) cost[goal] = 0.5;
+      const d = domain(size, spacing, cost);
+      const front = createFront(d, 7, goal);
+      expandFront(front, Number.POSITIVE_INFINITY);
+      const plain = plainFront(d, 7, goal);
+      expect(front.mark).toEqual(plain.mark);
+      expect(front.settled).toBe(plain.settled);
+      const apart = front.distance.filter((distance, v) => plain.mark[v]! >= 32 && distance !== plain.distance[v]);
+      expect(apart).toHaveLength(0);
+    }
+  });
+
+  it("stands as before when costs cannot be filled, and can be let grow again", () => {
+    const cost = randomCost(70 * 40 * 36, 31);
+    let failing = true;
+    const filling: FrontDomain = createFrontDomain({
+      size: [70, 40, 36],
+      spacing: [1, 1, 1],
+      leastCost: 0.03,
+      mostCost: 1,
+      fill(voxel) {
+        if (failing && voxel % 70 >= 32) throw new Error("the disk is gone");
+        const tileOf = (v: number) => [v % 70, Math.floor(v / 70) % 40, Math.floor(v / 2800)].map((at) => at >> 5).join();
+        const costs = filling.cost;
+        for (let v = 0; v < cost.length; v++) if (tileOf(v) === tileOf(voxel)) costs[v] = cost[v]!;
+      },
+    });
+    const front = createFront(filling, 3);
+    for (let n = 0; n < 3; n++) expect(() => expandFront(front, Number.POSITIVE_INFINITY)).toThrow("the disk is gone");
+    expect(front.exhausted).toBe(false);
+    failing = false;
+    expandFront(front, Number.POSITIVE_INFINITY);
+    expect(front.settled).toBe(cost.length);
+    const whole = createFront(
+      createFrontDomain({ size: [70, 40, 36], spacing: [1, 1, 1], leastCost: 0.03, mostCost: 1 }, cost),
+      3,
+    );
+    expandFront(whole, Number.POSITIVE_INFINITY);
+    expect(front.distance).toEqual(whole.distance);
+    expect(front.mark).toEqual(whole.mark);
+  });
+
   it("asks for the cost of a tile only where it goes", () => {
-    const cost = new Float32Array(64 * 32 * 32);
     let filled = 0;
-    const d: FrontDomain = {
+    const d: FrontDomain = createFrontDomain({
       size: [64, 32, 32],
       spacing: [1, 1, 1],
-      cost,
       leastCost: 0.5,
       mostCost: 0.5,
       fill(voxel) {
         filled++;
+        const { cost } = d;
         const tile = Math.floor((voxel % 64) / 32);
         for (let v = 0; v < cost.length; v++) if (Math.floor((v % 64) / 32) === tile) cost[v] = 0.5;
       },
-    };
+    });
     const front = createFront(d, 0);
     expandFront(front, 100);
     expect(filled).toBe(1);
     expandFront(front, Number.POSITIVE_INFINITY);
     expect(filled).toBe(2);
-    expect(front.settled).toBe(cost.length);
+    expect(front.settled).toBe(64 * 32 * 32);
   });
 
   it("has no path to a voxel it has not seen, nor one longer than the room it is given", () => {
