@@ -6,6 +6,7 @@ import { libraryRoutes } from "#main/http/library-routes.ts";
 import { pagePath } from "#main/http/page-path.ts";
 import type { Ports } from "#main/http/ports.ts";
 import type { RouteHandlers } from "#main/http/route-handlers.ts";
+import { studyRoutes } from "#main/http/study-routes.ts";
 import { workRoutes } from "#main/http/work-routes.ts";
 import { ROUTES, type RouteName } from "#shared/api/routes.ts";
 import { isTautlineError, TautlineError } from "#shared/errors.ts";
@@ -21,7 +22,12 @@ export interface HandlerOptions {
 /** The one request handler of both shells: page files by GET and HEAD, and the API. Never rejects. */
 export function createHandler(ports: Ports, options: HandlerOptions): Handler {
   const app = new Hono();
-  const handlers: RouteHandlers = { ...libraryRoutes(ports), ...engineRoutes(ports), ...workRoutes(ports) };
+  const handlers: RouteHandlers = {
+    ...libraryRoutes(ports),
+    ...engineRoutes(ports),
+    ...workRoutes(ports),
+    ...studyRoutes(ports),
+  };
   for (const [name, route] of Object.entries(ROUTES)) {
     const handle = handlers[name as RouteName];
     if (!handle) throw new Error(`route ${name} has no handler`);

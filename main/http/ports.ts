@@ -15,6 +15,23 @@ import type {
   SpecimenPatch,
 } from "#shared/api/routes.ts";
 import type { PassState, PassSummary, SpecimenRecord } from "#shared/api/specimen.ts";
+import type {
+  AnalysisAnswer,
+  AssignmentView,
+  ExportPassesRequest,
+  PacketLook,
+  PacketRequest,
+  ProtocolRequest,
+  ReturnRequest,
+  ReviseRequest,
+  SetAsideRequest,
+  SignatureAnswer,
+  StudiesAnswer,
+  StudyDraft,
+  StudyPatch,
+  StudyView,
+  TakeInRequest,
+} from "#shared/api/study.ts";
 
 /** Specimens and passes on disk. Errors are tagged (`shared/errors.ts`). */
 export interface LibraryPort {
@@ -31,6 +48,36 @@ export interface LibraryPort {
   claimPass(specimen: string, pass: string, window: string): Promise<boolean>;
   releasePass(specimen: string, pass: string, window: string): Promise<void>;
   setPassState(specimen: string, pass: string, state: PassState): Promise<PassSummary>;
+}
+
+/** Studies that this library leads. */
+export interface StudyPort {
+  studies(): Promise<StudiesAnswer>;
+  create(draft: StudyDraft): Promise<StudyView>;
+  study(study: string): Promise<StudyView>;
+  change(study: string, patch: StudyPatch): Promise<StudyView>;
+  remove(study: string): Promise<void>;
+  changeProtocol(study: string, request: ProtocolRequest): Promise<StudyView>;
+  freezeProtocol(study: string): Promise<StudyView>;
+  reviseProtocol(study: string, request: ReviseRequest): Promise<StudyView>;
+  /** Keeps a PNG without the texts in it; its name is the SHA-256 of what is kept. */
+  addPicture(study: string, bytes: Uint8Array): Promise<{ picture: string }>;
+  picture(study: string, picture: string): Promise<Uint8Array>;
+  makePackets(study: string, request: PacketRequest): Promise<{ job: string }>;
+  setAside(study: string, assignment: string, request: SetAsideRequest): Promise<StudyView>;
+  analysis(study: string): Promise<AnalysisAnswer>;
+  exportPasses(study: string, request: ExportPassesRequest): Promise<ExportAnswer>;
+}
+
+/** Packets in, and the assignments that this library has taken in. */
+export interface PacketPort {
+  look(path: string): Promise<PacketLook>;
+  takeIn(request: TakeInRequest): Promise<{ job: string }>;
+  signature(): Promise<SignatureAnswer>;
+  assignment(specimen: string): Promise<AssignmentView>;
+  assignmentPicture(specimen: string, picture: string): Promise<Uint8Array>;
+  makeReturn(specimen: string, request: ReturnRequest): Promise<{ job: string }>;
+  reopen(specimen: string): Promise<AssignmentView>;
 }
 
 /** Long work with progress and cancel; states go out as events. */
@@ -75,6 +122,8 @@ export interface Ports {
   readonly scans: ScansPort;
   readonly folders: FoldersPort;
   readonly exports: ExportPort;
+  readonly studies: StudyPort;
+  readonly packets: PacketPort;
   readonly events: EventsPort;
   readonly page: PagePort;
   /** An event stream of this window was opened (`seen`) or has ended (`left`); a window is open as long as it has one. */

@@ -19,6 +19,11 @@ export async function readJson<T>(request: Request, shape: Shape<T>, limitBytes 
   return shape(value, "body");
 }
 
+/** The request's body as bytes. @throws bad-request when there are more than the limit */
+export function readBytes(request: Request, limitBytes: number): Promise<Uint8Array> {
+  return readLimited(request, limitBytes);
+}
+
 /** The body's bytes; stops reading as soon as there are more than the limit, whatever the header said. */
 async function readLimited(request: Request, limitBytes: number): Promise<Uint8Array> {
   if (Number(request.headers.get("content-length") ?? 0) > limitBytes) throw tooLarge(limitBytes);

@@ -1,4 +1,4 @@
-import type { JobState, ServerEvent } from "#shared/api/routes.ts";
+import type { JobResult, JobState, ServerEvent } from "#shared/api/routes.ts";
 import { encodeError, isTautlineError, TautlineError } from "#shared/errors.ts";
 
 /** Finished jobs that are still told to a page that was reloaded. */
@@ -9,8 +9,8 @@ const TELL_EVERY_MS = 200;
 /** How far a job is; rate and time left are null until they can be told. */
 export type Progress = Pick<JobState, "progress" | "step" | "bytesPerSecond" | "secondsLeft">;
 
-/** The work of a job: reports as it goes, stops at the signal, gives the specimen it made. */
-export type JobWork = (report: (progress: Progress) => void, signal: AbortSignal) => Promise<{ specimen: string } | undefined>;
+/** The work of a job: reports as it goes, stops at the signal, gives what it made. */
+export type JobWork = (report: (progress: Progress) => void, signal: AbortSignal) => Promise<JobResult | undefined>;
 
 interface Job {
   state: JobState;

@@ -34,6 +34,18 @@ export interface LibraryLayout {
   pass(specimen: string, pass: string): string;
   passFile(specimen: string, pass: string): string;
   journal(specimen: string, pass: string): string;
+  /** What an annotator's library knows of the assignment that a specimen is. */
+  assignmentFile(specimen: string): string;
+  /** Still pictures of the assignment's point rules. */
+  assignmentPicture(specimen: string, picture: string): string;
+  readonly studies: string;
+  study(id: string): string;
+  studyFile(id: string): string;
+  studyPicture(id: string, picture: string): string;
+  /** Returned passes as they came, by the hash of their packet. */
+  studyReturn(id: string, packet: string): string;
+  /** This library's key for signing packets. */
+  readonly signingKey: string;
 }
 
 /** The layout of the library in folder `root`. */
@@ -42,6 +54,9 @@ export function libraryLayout(root: string): LibraryLayout {
   const specimen = (id: string) => join(specimens, checkedId("specimen", id));
   const passes = (id: string) => join(specimen(id), "passes");
   const pass = (id: string, passId: string) => join(passes(id), checkedId("pass", passId));
+  const studies = join(root, "studies");
+  const study = (id: string) => join(studies, checkedId("study", id));
+  const picture = (name: string) => `${checkedId("picture", name)}.png`;
   return {
     root,
     lease: join(root, "lease.json"),
@@ -54,5 +69,13 @@ export function libraryLayout(root: string): LibraryLayout {
     pass,
     passFile: (id, passId) => join(pass(id, passId), "pass.json"),
     journal: (id, passId) => join(pass(id, passId), "journal.jsonl"),
+    assignmentFile: (id) => join(specimen(id), "assignment.json"),
+    assignmentPicture: (id, name) => join(specimen(id), "pictures", picture(name)),
+    studies,
+    study,
+    studyFile: (id) => join(study(id), "study.json"),
+    studyPicture: (id, name) => join(study(id), "pictures", picture(name)),
+    studyReturn: (id, packet) => join(study(id), "returns", checkedId("packet", packet)),
+    signingKey: join(root, "signing-key.json"),
   };
 }

@@ -14,6 +14,7 @@ import { processFacts, takeLease } from "#main/node/lease.ts";
 import { Library } from "#main/node/library.ts";
 import { pageFiles } from "#main/node/page-files.ts";
 import { specimenJobs } from "#main/node/specimen-jobs.ts";
+import { studyPorts } from "#main/node/study/study-ports.ts";
 import { WindowLife } from "#main/node/window-life.ts";
 import type { HelloAnswer } from "#shared/api/routes.ts";
 
@@ -53,12 +54,13 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
     const events = new Events();
     const emit: Events["emit"] = (event) => events.emit(event);
     const now = Date.now;
+    const mayWrite = () => lease.check();
     const library = new Library({
       root,
       files,
       random,
       now,
-      mayWrite: () => lease.check(),
+      mayWrite,
       emit,
       onRemove: async (specimen) => abilities.forgetSpecimen?.(specimen),
     });
@@ -70,6 +72,8 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
       onLeft: (window) => library.claims.releaseAll(window),
       onAllLeft: () => void jobs.idle().then(() => windows.open === 0 && options.onAllLeft()),
     });
+    const study = studyPorts({ library, files, random, now, mayWrite, emit, softwareVersion: options.version });
+    await study.store.removeLeftovers();
     const ports: Ports = {
       hello: () => ({ name: "Tautline", version: options.version, shell: options.shell, library: root }),
       library,
@@ -83,6 +87,8 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
       },
       folders: folders(),
       exports: exportTrees({ library, files, softwareVersion: options.version, runLabels: abilities.runLabels, newId }),
+      studies: study.studies,
+      packets: study.packets,
       events,
       page: pageFiles(options.page),
       windows,

@@ -6,6 +6,9 @@ const TITLES: Readonly<Record<JobState["what"], string>> = {
   intake: "Taking in a scan",
   demo: "Making the demo valve",
   export: "Writing files",
+  packets: "Making packets",
+  "take-in": "Taking in a packet",
+  return: "Making a return packet",
 };
 
 /** One job: how far, how fast, how long still, and a way to stop it; a failed one with its reason until put away. */

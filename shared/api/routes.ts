@@ -1,4 +1,5 @@
 import type { Handedness, ShelfSpecimen, SpecimenFacts } from "#shared/api/specimen.ts";
+import type { MadePacket, TakenPacket } from "#shared/api/study.ts";
 import type { LogHead } from "#shared/log/records.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 import type { Landmarks } from "#shared/trees/document.ts";
@@ -43,6 +44,30 @@ export const ROUTES = {
   surface: { method: "POST", path: "/api/engine/surface" },
   exportTrees: { method: "POST", path: "/api/export" }, // ExportRequest -> ExportAnswer, or the file's bytes when `path` is absent
   bye: { method: "POST", path: "/api/bye" }, // {window}: the page is closing
+  // Studies; types in `study.ts`. The lead's library:
+  studies: { method: "GET", path: "/api/studies" }, // -> StudiesAnswer (also the assignments this library has taken in)
+  createStudy: { method: "POST", path: "/api/studies" }, // StudyDraft -> StudyView
+  study: { method: "GET", path: "/api/studies/:study" }, // -> StudyView
+  changeStudy: { method: "PATCH", path: "/api/studies/:study" }, // StudyPatch -> StudyView
+  removeStudy: { method: "DELETE", path: "/api/studies/:study" }, // {} -> {}; refused once a packet is out
+  changeProtocol: { method: "POST", path: "/api/studies/:study/protocol" }, // ProtocolRequest -> StudyView; only while unfrozen
+  freezeProtocol: { method: "POST", path: "/api/studies/:study/protocol/freeze" }, // {} -> StudyView; draws what is not drawn yet
+  reviseProtocol: { method: "POST", path: "/api/studies/:study/protocol/revise" }, // ReviseRequest -> StudyView: the next version, unfrozen
+  addPicture: { method: "POST", path: "/api/studies/:study/pictures" }, // a PNG's bytes (4 MB at most) -> {picture}: its name for a point rule
+  studyPicture: { method: "GET", path: "/api/studies/:study/pictures/:picture" }, // -> the PNG
+  makePackets: { method: "POST", path: "/api/studies/:study/packets" }, // PacketRequest -> {job}
+  setAsidePass: { method: "POST", path: "/api/studies/:study/assignments/:assignment/aside" }, // SetAsideRequest -> StudyView
+  studyAnalysis: { method: "GET", path: "/api/studies/:study/analysis" }, // -> AnalysisAnswer
+  exportPasses: { method: "POST", path: "/api/studies/:study/passes" }, // ExportPassesRequest -> ExportAnswer
+  // Either library:
+  lookAtPacket: { method: "POST", path: "/api/packets/look" }, // {path} -> PacketLook
+  takeInPacket: { method: "POST", path: "/api/packets" }, // TakeInRequest -> {job}
+  signature: { method: "GET", path: "/api/signature" }, // -> SignatureAnswer; the key is made when first asked for
+  // The annotator's library; `:specimen` is the assignment's:
+  assignment: { method: "GET", path: "/api/assignments/:specimen" }, // -> AssignmentView
+  assignmentPicture: { method: "GET", path: "/api/assignments/:specimen/pictures/:picture" }, // -> the PNG
+  makeReturn: { method: "POST", path: "/api/assignments/:specimen/return" }, // ReturnRequest -> {job}; finishes and seals the pass
+  reopenAssignment: { method: "POST", path: "/api/assignments/:specimen/reopen" }, // {} -> AssignmentView: to mend and return again
 } as const;
 
 export type RouteName = keyof typeof ROUTES;
@@ -180,12 +205,13 @@ export interface ExportAnswer {
 export type ServerEvent =
   | { readonly event: "job"; readonly job: JobState }
   | { readonly event: "shelf" } // something on the shelf changed
+  | { readonly event: "studies" } // a study or an assignment changed
   | { readonly event: "pass"; readonly pass: string; readonly head: LogHead } // the journal grew
   | { readonly event: "beat" }; // every few seconds, so that a dead stream is noticed
 
 export interface JobState {
   readonly id: string;
-  readonly what: "intake" | "demo" | "export";
+  readonly what: "intake" | "demo" | "export" | "packets" | "take-in" | "return";
   readonly state: "running" | "done" | "failed" | "cancelled";
   /** 0-1 */
   readonly progress: number;
@@ -193,6 +219,16 @@ export interface JobState {
   readonly step: string;
   readonly bytesPerSecond: number | null;
   readonly secondsLeft: number | null;
-  readonly result?: { readonly specimen: string };
+  readonly result?: JobResult;
   readonly error?: { readonly tag: string; readonly message: string };
+}
+
+/** What a job made. */
+export interface JobResult {
+  /** The specimen of an intake, of the demo valve, or of an assignment or pass that was taken in. */
+  readonly specimen?: string;
+  /** Packets that were written. */
+  readonly packets?: readonly MadePacket[];
+  /** The packet that was taken in. */
+  readonly taken?: TakenPacket;
 }

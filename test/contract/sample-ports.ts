@@ -6,10 +6,13 @@ import { Events } from "#main/node/events.ts";
 import { folders } from "#main/node/folders.ts";
 import { Jobs } from "#main/node/jobs.ts";
 import { pageFiles } from "#main/node/page-files.ts";
+import { studyPorts } from "#main/node/study/study-ports.ts";
 import type { Engine } from "#shared/api/engine.ts";
+import type { ProjectionsAnswer } from "#shared/api/projections.ts";
 import type { ScanLookAnswer } from "#shared/api/routes.ts";
 import { TautlineError } from "#shared/errors.ts";
 import { putSpecimen, SPECIMEN, sampleLibrary } from "#test/main/node/sample-library.ts";
+import { countingBytes } from "#test/main/node/sample-log.ts";
 import { UnsyncedFiles } from "#test/main/node/unsynced-files.ts";
 
 /** What no answer may ever hold: it lies outside the page's folder. */
@@ -49,6 +52,15 @@ export async function samplePorts(): Promise<SamplePorts> {
   await jobs.idle();
   const seen: string[] = [];
   const left: string[] = [];
+  const study = studyPorts({
+    library,
+    files,
+    random: countingBytes(),
+    now: Date.now,
+    mayWrite: async () => {},
+    emit: (event) => events.emit(event),
+    softwareVersion: "0.0.0",
+  });
   const ports: Ports = {
     hello: () => ({ name: "Tautline", version: "0.0.0", shell: "loopback", library: "/library" }),
     library,
@@ -63,7 +75,12 @@ export async function samplePorts(): Promise<SamplePorts> {
       jobs: () => jobs.states(),
     },
     scans: {
-      look: async (path) => {
+      startProjections: async (request) => {
+        asked.set("projections", request);
+        return { job };
+      },
+      projections: async () => ({ slices: 1, of: 1 }) as unknown as ProjectionsAnswer,
+      look: async ({ path }) => {
         if (path === "/fault") throw new Error("ENOENT: /home/someone/secret at Object.<anonymous> (/srv/x.ts:1:1)");
         return { path } as unknown as ScanLookAnswer;
       },
@@ -75,6 +92,8 @@ export async function samplePorts(): Promise<SamplePorts> {
           ? { name: "HB-07 über.zip", type: "application/zip", bytes: Uint8Array.of(1, 2, 3), lost: ["pins"] }
           : { written: [request.path], lost: [] },
     },
+    studies: study.studies,
+    packets: study.packets,
     events,
     page: pageFiles(page),
     windows: { seen: (window) => void seen.push(window), left: (window) => void left.push(window) },
