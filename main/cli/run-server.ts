@@ -2,6 +2,7 @@ import { spawn } from "node:child_process";
 import { randomBytes } from "node:crypto";
 import { serverAbilities } from "#main/cli/server-abilities.ts";
 import { parseServerOptions, SERVER_HELP, type ServerOptions } from "#main/cli/server-options.ts";
+import { memoryLimit } from "#main/engine/memory-plan.ts";
 import { createHandler } from "#main/http/handler.ts";
 import { findBrowser, hasDisplay, openWindow, windowArguments } from "#main/node/browser-window.ts";
 import { findElectronBinary } from "#main/node/electron-binary.ts";
@@ -28,6 +29,8 @@ export async function runServer(args: readonly string[], io: ServerIo): Promise<
       io.say(SERVER_HELP);
       return 0;
     }
+    // Said here, before anything is opened, in whichever shell.
+    memoryLimit(options.memory, io.env);
     const program = programFiles(import.meta.url);
     const electron = findElectronBinary(program.root, io.env);
     if (electron && options.open && !options.browser && hasDisplay(io.env))
@@ -40,7 +43,11 @@ export async function runServer(args: readonly string[], io: ServerIo): Promise<
 }
 
 async function runElectron(binary: string, program: ProgramFiles, options: ServerOptions, io: ServerIo): Promise<number> {
-  const env = { ...io.env, ...(options.library === undefined ? {} : { TAUTLINE_LIBRARY: libraryFolder(options.library) }) };
+  const env = {
+    ...io.env,
+    ...(options.library === undefined ? {} : { TAUTLINE_LIBRARY: libraryFolder(options.library) }),
+    ...(options.memory === undefined ? {} : { TAUTLINE_MEMORY: options.memory }),
+  };
   const child = spawn(binary, [program.root], { env, stdio: "inherit" });
   const stop = () => child.kill("SIGTERM");
   io.signal.addEventListener("abort", stop);
@@ -53,6 +60,7 @@ async function runElectron(binary: string, program: ProgramFiles, options: Serve
 async function runLoopback(program: ProgramFiles, options: ServerOptions, hasElectron: boolean, io: ServerIo): Promise<number> {
   const root = libraryFolder(options.library, io.env);
   const state = stateFolder(io.env);
+  const memoryBytes = memoryLimit(options.memory, io.env);
   const show = (instance: ShownInstance, already: boolean) =>
     showPage(instance, { already, state, hasElectron, open: options.open }, io);
   const ended = new AbortController();
@@ -66,7 +74,7 @@ async function runLoopback(program: ProgramFiles, options: ServerOptions, hasEle
     graceMs: options.graceMs,
     onAllLeft: () => ended.abort(),
     onFault,
-    abilities: serverAbilities,
+    abilities: (library) => serverAbilities(library, memoryBytes),
   }).catch(async (error) => {
     const instance = isTautlineError(error, "held-elsewhere") ? await findInstance(state, root) : null;
     if (!instance) throw error;

@@ -1,4 +1,5 @@
 import { parseArgs } from "node:util";
+import { DEFAULT_MEMORY_MB, LEAST_MEMORY_MB } from "#main/engine/memory-plan.ts";
 import { TautlineError } from "#shared/errors.ts";
 
 /** The page's storage belongs to its address, port included: a steady port keeps it. */
@@ -10,6 +11,7 @@ export const SERVER_HELP = `npm start [-- options]: opens Tautline on this compu
   --browser        a browser's window, also where Electron is installed
   --no-open        open no window; print the address only
   --port N         preferred port of the page (${PREFERRED_PORT}; 0 = any free one)
+  --memory MB      most memory of the engine (else TAUTLINE_MEMORY, else ${DEFAULT_MEMORY_MB}); at least ${LEAST_MEMORY_MB}
   --grace SECONDS  how long to stay after the last page was closed (10)
 
 Research use only; not a medical device.`;
@@ -20,6 +22,8 @@ export interface ServerOptions {
   readonly browser: boolean;
   readonly open: boolean;
   readonly port: number;
+  /** As given; see `memoryLimit`. */
+  readonly memory: string | undefined;
   readonly graceMs: number;
 }
 
@@ -32,6 +36,7 @@ export function parseServerOptions(args: readonly string[]): ServerOptions {
     "no-open": { type: "boolean" },
     port: { type: "string" },
     grace: { type: "string" },
+    memory: { type: "string" },
   } as const;
   const { tokens } = parseArgs({ args: [...args], options, strict: false, allowPositionals: true, tokens: true });
   const faults: string[] = [];
@@ -59,12 +64,14 @@ export function parseServerOptions(args: readonly string[]): ServerOptions {
     throw new TautlineError("misuse", `${what} 'npm start -- --help' lists the options.`, { what });
   }
   const library = given.get("library");
+  const memory = given.get("memory");
   return {
     help: given.has("help"),
     library: typeof library === "string" ? library : undefined,
     browser: given.has("browser"),
     open: !given.has("no-open"),
     port,
+    memory: typeof memory === "string" ? memory : undefined,
     graceMs,
   };
 }

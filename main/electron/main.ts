@@ -11,6 +11,7 @@ import { openExternal } from "#main/electron/open-external.ts";
 import { APP_URL } from "#main/electron/own-address.ts";
 import { SCHEME_ACCESS } from "#main/electron/scheme-access.ts";
 import { windowOptions } from "#main/electron/window-options.ts";
+import { memoryLimit } from "#main/engine/memory-plan.ts";
 import { createHandler } from "#main/http/handler.ts";
 import { programFiles } from "#main/node/program-files.ts";
 import { libraryFolder } from "#main/node/user-folders.ts";
@@ -44,6 +45,7 @@ try {
   // The library, with the lease on it, engine and jobs.
   const program = programFiles(import.meta.url);
   const root = libraryFolder(undefined);
+  const memoryBytes = memoryLimit(undefined, process.env);
   const workplace = await openWorkplace({
     root,
     shell: "electron",
@@ -52,7 +54,7 @@ try {
     graceMs: 0,
     onAllLeft: () => {},
     onFault,
-    abilities: desktopAbilities,
+    abilities: (library) => desktopAbilities(library, memoryBytes),
   });
   disposers.add(() => workplace.close());
 

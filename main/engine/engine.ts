@@ -15,6 +15,7 @@ import {
   checkTicket,
   checkWhole,
 } from "#main/engine/check-request.ts";
+import { DEFAULT_MEMORY_MB, planMemory, shareOut } from "#main/engine/memory-plan.ts";
 import { createRidgeMemory } from "#main/engine/ridge-store.ts";
 import type { EngineTasks, GuideRef, StoreRef, TaskKind } from "#main/engine/tasks.ts";
 import { WorkerPool } from "#main/engine/worker-pool.ts";
@@ -30,7 +31,9 @@ export interface EngineOptions {
   readonly library: (specimen: string) => Promise<{ readonly folder: string; readonly record: OpenedRecord }>;
   /** The built worker, `engine-worker.mjs`. */
   readonly workerUrl: URL;
-  /** Most memory for bricks, ridge tiles and fronts together; 512 MB when not given. */
+  /** Most resident memory of the whole program while nothing is being taken in; 512 MB when not given. See `memory-plan.ts`. */
+  readonly memoryBytes?: number;
+  /** For tests: most memory for bricks, ridge tiles and fronts together, instead of what `memoryBytes` leaves for them. */
   readonly cacheBytes?: number;
   /** Threads; as many as there are cores when not given, and then never fewer than three; two are the least. */
   readonly workers?: number;
@@ -48,13 +51,6 @@ export interface LocalEngine extends Engine {
 
 /** One to guide, one to solve, one to show. */
 const LEAST_THREADS = 3;
-const DEFAULT_BYTES = 512 * 2 ** 20;
-/** Shares of the limit. */
-const BRICK_SHARE = 0.45;
-const RIDGE_SHARE = 0.25;
-const FRONT_SHARE = 0.3;
-/** Of the ridge share: what the workers keep together, the rest is each one's own. */
-const SHARED_RIDGES = 0.55;
 /** A guide session ends when nobody asked it for anything this long. */
 const IDLE_MS = 120_000;
 const MOST_SESSIONS = 64;
@@ -79,23 +75,25 @@ interface OpenSession {
  */
 export function createEngine(options: EngineOptions): LocalEngine {
   const workers = Math.min(Math.max(options.workers ?? Math.max(availableParallelism(), LEAST_THREADS), 2), MOST_WORKERS);
-  const bytes = options.cacheBytes ?? DEFAULT_BYTES;
-  const memory = createCacheMemory(BRICK_SHARE * bytes, workers);
-  const calls = Calls.forWorkers(workers);
   const alone = workers > 2;
+  const tracing = alone ? 2 : 1;
+  const limit = options.memoryBytes ?? DEFAULT_MEMORY_MB * 2 ** 20;
+  const plan = options.cacheBytes === undefined ? planMemory(limit, tracing) : shareOut(options.cacheBytes, tracing);
+  const memory = createCacheMemory(plan.bricks, workers);
+  const calls = Calls.forWorkers(workers);
   const guide = [0];
-  const job = [alone ? 1 : 0];
-  const show = Array.from({ length: workers - (alone ? 2 : 1) }, (_, n) => n + (alone ? 2 : 1));
-  const ridges = alone ? createRidgeMemory(SHARED_RIDGES * RIDGE_SHARE * bytes, workers) : null;
-  const ownRidgeBytes = RIDGE_SHARE * bytes * (ridges ? 1 - SHARED_RIDGES : 1);
-  const ridgeShare = (worker: number) => (!alone && worker === 0 ? 1 : worker === 0 ? 0.6 : worker === 1 ? 0.4 : 0);
+  const job = [tracing - 1];
+  const show = Array.from({ length: workers - tracing }, (_, n) => n + tracing);
+  // Alone, a thread needs no store to share its tiles through.
+  const ridges = alone ? createRidgeMemory(plan.ridges, workers) : null;
+  const ownRidges = plan.ownRidges + (ridges ? 0 : plan.ridges / tracing);
   const pool = new WorkerPool(options.workerUrl, workers, calls, (worker) => ({
     worker,
     memory,
     ridges,
     calls: calls.memory,
-    ridgeBytes: worker === 0 || (alone && worker === 1) ? ownRidgeBytes * ridgeShare(worker) : 0,
-    frontBytes: worker === 0 ? FRONT_SHARE * bytes : 0,
+    ridgeBytes: worker < tracing ? ownRidges : 0,
+    frontBytes: worker === 0 ? plan.fronts : 0,
   }));
 
   const stores = new Map<string, Promise<StoreRef>>();

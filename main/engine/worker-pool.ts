@@ -37,6 +37,8 @@ interface Seat {
 /** A worker that dies so often without finishing anything is left alone for a while; its tasks fail meanwhile. */
 const MOST_DEATHS = 3;
 const REST_MS = 5000;
+/** Garbage of short life that a thread's heap may gather, MB; the default lets every thread hold several times as much. */
+const YOUNG_MB = 12;
 
 /**
  * Runs tasks on worker threads, one at a time each; everything that waits is queued here, so that dropping it costs nothing.
@@ -158,7 +160,11 @@ export class WorkerPool {
 
   #spawn(n: number): Worker {
     this.#calls.reset(n);
-    const thread = new Worker(this.#url, { workerData: this.#start(n), name: `engine-${n}` });
+    const thread = new Worker(this.#url, {
+      workerData: this.#start(n),
+      name: `engine-${n}`,
+      resourceLimits: { maxYoungGenerationSizeMb: YOUNG_MB },
+    });
     thread.on("message", (message: FromWorker) => this.#receive(n, message));
     let reason = "it ended";
     thread.on("error", (error) => {
