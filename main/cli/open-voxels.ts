@@ -97,7 +97,7 @@ async function throughIntake(
       handedness: "unknown",
       facts: {},
     } as const;
-    await takeIn({ ...order, choice: {} }, { signal: call.io.signal });
+    await takeIn(order, { signal: call.io.signal });
     const opened = storeVoxels(join(library, "specimens", id), cleanUp);
     return { ...opened, blurFwhmMm: undefined };
   } catch (error) {

@@ -1,19 +1,21 @@
 import { createEngine } from "#main/engine/engine.ts";
 import { removeUnfinished } from "#main/intake/make-specimen.ts";
-import { runDemo, runDemoPasses, runIntake, runLabels, runLook } from "#main/intake/run-intake.ts";
+import { runDemo, runDemoPasses, runIntake, runLabels, runLook, runProjections } from "#main/intake/run-intake.ts";
 import type { Abilities } from "#main/node/abilities.ts";
 import type { Library } from "#main/node/library.ts";
 
-/** The engine, the intake and the demo valve over a library whose lease is ours. */
-export async function desktopAbilities(library: Library): Promise<Abilities> {
+/** The engine, the intake and the demo valve over a library whose lease is ours. @param memoryBytes the engine's limit. */
+export async function desktopAbilities(library: Library, memoryBytes: number): Promise<Abilities> {
   await removeUnfinished(library.layout.root);
   const engine = createEngine({
     library: async (id) => ({ folder: library.layout.specimen(id), record: await library.specimen(id) }),
     workerUrl: new URL("./engine-worker.mjs", import.meta.url),
+    memoryBytes,
   });
   return {
     engine,
-    look: (path) => runLook(path),
+    look: ({ path, ...choice }) => runLook(path, { choice }),
+    runProjections,
     runIntake,
     runDemo,
     runDemoPasses: (sha256) => runDemoPasses(sha256),

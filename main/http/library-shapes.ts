@@ -14,7 +14,8 @@ import {
   triple,
   whole,
 } from "#main/http/shape.ts";
-import type { AppendRequest, ExportRequest, IntakeRequest, SpecimenPatch } from "#shared/api/routes.ts";
+import type { ProjectionsRequest } from "#shared/api/projections.ts";
+import type { AppendRequest, ExportRequest, IntakeRequest, LookRequest, SpecimenPatch } from "#shared/api/routes.ts";
 import type { SpecimenFacts } from "#shared/api/specimen.ts";
 import type { LogHead } from "#shared/log/records.ts";
 import type { Landmarks, UnknownKeys } from "#shared/trees/document.ts";
@@ -33,7 +34,10 @@ export const windowRequest = object({ window: windowName });
 export const stateRequest = object({ state: oneOf("under-way", "finished") });
 export const forceRequest = object({ force: optional(flag) });
 export const folderRequest = object({ path: optional(path) });
-export const lookRequest = object({ path });
+/** Which of several, from 0. */
+const reading = { channel: optional(whole(0, 2 ** 31)), time: optional(whole(0, 2 ** 31)) };
+export const lookRequest: Shape<LookRequest> = object({ path, ...reading });
+export const projectionsRequest: Shape<ProjectionsRequest> = object({ path, ...reading, polarity });
 export const emptyRequest = object({});
 
 const head: Shape<LogHead> = object({ seq: whole(0, Number.MAX_SAFE_INTEGER), hash });
@@ -101,6 +105,7 @@ const region: Shape<Region> = object({ crop, bin });
 
 export const intakeRequest: Shape<IntakeRequest> = object({
   path,
+  ...reading,
   name: line(200),
   spacing: triple(number(1e-6, 1e3)),
   handedness,

@@ -1,4 +1,5 @@
 import type { Engine } from "#shared/api/engine.ts";
+import type { ProjectionsAnswer, ProjectionsRequest } from "#shared/api/projections.ts";
 import type {
   AppendAnswer,
   AppendRequest,
@@ -9,6 +10,7 @@ import type {
   IntakeRequest,
   JobState,
   LogAnswer,
+  LookRequest,
   ScanLookAnswer,
   ServerEvent,
   ShelfAnswer,
@@ -89,7 +91,10 @@ export interface JobsPort {
 }
 
 export interface ScansPort {
-  look(path: string): Promise<ScanLookAnswer>;
+  look(request: LookRequest): Promise<ScanLookAnswer>;
+  startProjections(request: ProjectionsRequest): Promise<{ job: string }>;
+  /** Of a job that is done. @throws not-found */
+  projections(job: string): Promise<ProjectionsAnswer>;
 }
 
 export interface FoldersPort {

@@ -8,6 +8,7 @@ import {
   folderRequest,
   intakeRequest,
   lookRequest,
+  projectionsRequest,
   windowRequest,
 } from "#main/http/library-shapes.ts";
 import type { Ports } from "#main/http/ports.ts";
@@ -21,7 +22,9 @@ export function workRoutes(ports: Ports): RouteHandlers {
   const streams = new EventStreams(ports);
   return {
     listFolder: async (c) => jsonAnswer(await folders.list((await readJson(c.req.raw, folderRequest)).path)),
-    lookAtScan: async (c) => jsonAnswer(await scans.look((await readJson(c.req.raw, lookRequest)).path)),
+    lookAtScan: async (c) => jsonAnswer(await scans.look(await readJson(c.req.raw, lookRequest))),
+    startProjections: async (c) => jsonAnswer(await scans.startProjections(await readJson(c.req.raw, projectionsRequest))),
+    projections: async (c) => jsonAnswer(await scans.projections(id(c.req.param("job"), "path.job"))),
     startIntake: async (c) => jsonAnswer(await jobs.startIntake(await readJson(c.req.raw, intakeRequest))),
     openDemo: async (c) => {
       await readJson(c.req.raw, emptyRequest);

@@ -1,10 +1,12 @@
 import type { IntakeProgress } from "#main/intake/progress.ts";
 import type { ScanChoice } from "#main/intake/slice-source.ts";
+import type { ProjectionsAnswer, ProjectionsRequest } from "#shared/api/projections.ts";
 import type { IntakeRequest, ScanLookAnswer } from "#shared/api/routes.ts";
 import type { SpecimenRecord } from "#shared/api/specimen.ts";
 import type { ErrorBody } from "#shared/errors.ts";
 import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
+import type { RawScan } from "#shared/volume/raw/raw-layout.ts";
 
 /** A scan to be taken in, with all that the worker cannot know by itself. */
 export interface IntakeOrder extends Omit<IntakeRequest, "polarity"> {
@@ -15,7 +17,8 @@ export interface IntakeOrder extends Omit<IntakeRequest, "polarity"> {
   readonly created: number;
   /** Absent: as the values suggest. */
   readonly polarity?: Polarity;
-  readonly choice?: ScanChoice;
+  /** The file has no header: its voxels lie as said here. */
+  readonly raw?: RawScan;
 }
 
 /** A finished intake. */
@@ -40,9 +43,16 @@ export type WorkerTask =
   | { readonly task: "demo"; readonly order: DemoOrder }
   | { readonly task: "demo-passes"; readonly sha256: string }
   | { readonly task: "labels"; readonly file: ChordaeFile; readonly path: string }
-  | { readonly task: "look"; readonly path: string; readonly choice?: ScanChoice };
+  | { readonly task: "look"; readonly path: string; readonly choice?: ScanChoice }
+  | { readonly task: "project"; readonly request: ProjectionsRequest };
 
-export type WorkerResult = IntakeOutcome | DemoOutcome | DemoOutcome["passes"] | ScanLookAnswer | { readonly bytes: number };
+export type WorkerResult =
+  | IntakeOutcome
+  | DemoOutcome
+  | DemoOutcome["passes"]
+  | ScanLookAnswer
+  | ProjectionsAnswer
+  | { readonly bytes: number };
 
 /** To the worker. */
 export type WorkerRequest = { readonly stop: true };

@@ -38,10 +38,10 @@ export class ProgressMeter {
     this.#surveyShare = survey ? 0.3 : 0;
   }
 
-  begin(step: "Looking at every value" | "Taking in the scan"): void {
+  begin(step: "Looking at every value" | "Taking in the scan" | "Looking through the scan"): void {
     this.#step = step;
     this.#began = this.#now();
-    [this.#from, this.#to] = step === "Taking in the scan" ? [this.#surveyShare, 1] : [0, this.#surveyShare];
+    [this.#from, this.#to] = step === "Looking at every value" ? [0, this.#surveyShare] : [this.#surveyShare, 1];
     this.#tell(0);
   }
 

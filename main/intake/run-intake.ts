@@ -13,6 +13,7 @@ import type {
 } from "#main/intake/intake-messages.ts";
 import type { IntakeProgress } from "#main/intake/progress.ts";
 import type { ScanChoice } from "#main/intake/slice-source.ts";
+import type { ProjectionsAnswer, ProjectionsRequest } from "#shared/api/projections.ts";
 import type { ScanLookAnswer } from "#shared/api/routes.ts";
 import { decodeError, TautlineError } from "#shared/errors.ts";
 import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
@@ -45,6 +46,11 @@ export async function runLabels(file: ChordaeFile, path: string, hooks: RunHooks
 /** Looks at a scan in a thread of its own. @throws unreadable-input, cancelled */
 export async function runLook(path: string, hooks: RunHooks & { choice?: ScanChoice } = {}): Promise<ScanLookAnswer> {
   return (await runWorker({ task: "look", path, ...(hooks.choice ? { choice: hooks.choice } : {}) }, hooks)) as ScanLookAnswer;
+}
+
+/** Projections of a scan, made in a thread of its own. @throws as `projectScan` */
+export async function runProjections(request: ProjectionsRequest, hooks: RunHooks = {}): Promise<ProjectionsAnswer> {
+  return (await runWorker({ task: "project", request }, hooks)) as ProjectionsAnswer;
 }
 
 /** The built worker stands beside the bundle that asks for it; from sources it is the one in `dist`. */

@@ -38,7 +38,7 @@ export async function scanInfoAndNotes(
 
 /** All that the window shows before a scan is taken in: its facts, the middle slice, a histogram, what would be converted. */
 export async function lookAtScan(path: string, options: ScanInfoOptions = {}): Promise<ScanLookAnswer> {
-  return withScan(path, options, async ({ info, survey, source }) => {
+  return withScan(path, { ...options, choice: { ...options.choice, orFirst: true } }, async ({ info, survey, source }) => {
     const sample = survey.sortedSample();
     const counts = histogramOf(sample, info.range.min, info.range.max, 256);
     const slice = await middleSlice(source, displayWindow(sample), options.signal);
@@ -48,6 +48,7 @@ export async function lookAtScan(path: string, options: ScanInfoOptions = {}): P
       histogram: { min: info.range.min, max: info.range.max, counts },
       conversions: conversionsOf(source, survey, info.range.sampled),
       suggestedPolarity: suggestPolarity(sample),
+      ...(source.header.readings ? { readings: source.header.readings } : {}),
     };
   });
 }

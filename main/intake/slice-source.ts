@@ -38,6 +38,8 @@ export interface ScanChoice {
   readonly channel?: number;
   /** From 0. */
   readonly time?: number;
+  /** Where a choice is missing the first is taken: for a look, never for an intake. */
+  readonly orFirst?: boolean;
   /** The file has no header: its voxels lie as said here. */
   readonly raw?: RawScan;
 }

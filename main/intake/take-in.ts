@@ -4,7 +4,13 @@ import { openScan } from "#main/intake/open-scan.ts";
 
 /** Takes a scan in, in this thread. See {@link makeSpecimen}. */
 export async function takeIn(order: IntakeOrder, hooks: IntakeHooks = {}): Promise<IntakeOutcome> {
-  const source = await openScan(order.path, order.choice);
+  const { channel, time, raw } = order;
+  const choice = {
+    ...(channel === undefined ? {} : { channel }),
+    ...(time === undefined ? {} : { time }),
+    ...(raw ? { raw } : {}),
+  };
+  const source = await openScan(order.path, choice);
   try {
     return await makeSpecimen(
       source,

@@ -2,6 +2,7 @@ import { parentPort, workerData } from "node:worker_threads";
 import type { WorkerMessage, WorkerResult, WorkerTask } from "#main/intake/intake-messages.ts";
 import { demoPasses, makeDemo } from "#main/intake/make-demo.ts";
 import type { IntakeProgress } from "#main/intake/progress.ts";
+import { projectScan } from "#main/intake/project-scan.ts";
 import { lookAtScan } from "#main/intake/scan-info.ts";
 import { takeIn } from "#main/intake/take-in.ts";
 import { writeLabels } from "#main/intake/write-labels.ts";
@@ -24,6 +25,8 @@ async function perform(work: WorkerTask): Promise<WorkerResult> {
       return demoPasses(work.sha256);
     case "labels":
       return writeLabels(work.file, work.path, { signal: stop.signal });
+    case "project":
+      return projectScan(work.request, hooks);
     case "look":
       return lookAtScan(work.path, { signal: stop.signal, ...(work.choice ? { choice: work.choice } : {}) });
   }

@@ -1,6 +1,7 @@
 import type { Progress } from "#main/node/jobs.ts";
 import type { Engine } from "#shared/api/engine.ts";
-import type { IntakeRequest, ScanLookAnswer } from "#shared/api/routes.ts";
+import type { ProjectionsAnswer, ProjectionsRequest } from "#shared/api/projections.ts";
+import type { IntakeRequest, LookRequest, ScanLookAnswer } from "#shared/api/routes.ts";
 import type { SpecimenRecord } from "#shared/api/specimen.ts";
 import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
 
@@ -28,7 +29,9 @@ export interface DemoPass {
 /** What the entry points bring in from the engine's and the intake's folders. */
 export interface Abilities {
   readonly engine: Engine;
-  look(path: string): Promise<ScanLookAnswer>;
+  look(request: LookRequest): Promise<ScanLookAnswer>;
+  /** Three projections of a scan and a sample of packing. */
+  runProjections(request: ProjectionsRequest, hooks: WorkHooks): Promise<ProjectionsAnswer>;
   runIntake(order: SpecimenOrder & IntakeRequest, hooks: WorkHooks): Promise<{ readonly record: SpecimenRecord }>;
   /** Makes the demo valve's specimen. */
   runDemo(

@@ -7,12 +7,12 @@ import { diskFiles } from "#main/node/disk-files.ts";
 import { Events } from "#main/node/events.ts";
 import { exportTrees } from "#main/node/export-trees.ts";
 import { folders } from "#main/node/folders.ts";
-import { hideFolders } from "#main/node/hide-folders.ts";
 import { Jobs } from "#main/node/jobs.ts";
 import { createId } from "#main/node/layout.ts";
 import { processFacts, takeLease } from "#main/node/lease.ts";
 import { Library } from "#main/node/library.ts";
 import { pageFiles } from "#main/node/page-files.ts";
+import { scanLooks } from "#main/node/scan-looks.ts";
 import { specimenJobs } from "#main/node/specimen-jobs.ts";
 import { studyPorts } from "#main/node/study/study-ports.ts";
 import { WindowLife } from "#main/node/window-life.ts";
@@ -79,12 +79,7 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
       library,
       engine: abilities.engine,
       jobs: specimenJobs({ root, library, abilities, jobs, newId, now, emit }),
-      scans: {
-        look: (path) =>
-          abilities.look(path).catch((error) => {
-            throw hideFolders(error, path);
-          }),
-      },
+      scans: scanLooks(abilities, jobs),
       folders: folders(),
       exports: exportTrees({ library, files, softwareVersion: options.version, runLabels: abilities.runLabels, newId }),
       studies: study.studies,

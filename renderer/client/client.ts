@@ -21,6 +21,7 @@ import type {
   ValueAnswer,
 } from "#shared/api/engine.ts";
 import { type BinaryFrame, decodeFrame } from "#shared/api/frame.ts";
+import type { ProjectionsAnswer, ProjectionsRequest } from "#shared/api/projections.ts";
 import type {
   AppendAnswer,
   AppendRequest,
@@ -30,6 +31,7 @@ import type {
   HelloAnswer,
   IntakeRequest,
   LogAnswer,
+  LookRequest,
   RouteName,
   ScanLookAnswer,
   ServerEvent,
@@ -76,7 +78,9 @@ export class Client {
   hello = (): Promise<HelloAnswer> => this.json("hello", {});
   shelf = (): Promise<ShelfAnswer> => this.json("shelf", {});
   listFolder = (path?: string): Promise<FolderAnswer> => this.json("listFolder", { body: path === undefined ? {} : { path } });
-  lookAtScan = (path: string): Promise<ScanLookAnswer> => this.json("lookAtScan", { body: { path } });
+  lookAtScan = (request: LookRequest): Promise<ScanLookAnswer> => this.json("lookAtScan", { body: request });
+  startProjections = (request: ProjectionsRequest): Promise<{ job: string }> => this.json("startProjections", { body: request });
+  projections = (job: string): Promise<ProjectionsAnswer> => this.json("projections", { params: { job } });
   startIntake = (request: IntakeRequest): Promise<{ job: string }> => this.json("startIntake", { body: request });
   openDemo = (): Promise<{ job: string }> => this.json("openDemo", { body: {} });
   cancelJob = (job: string): Promise<unknown> => this.json("cancelJob", { params: { job }, body: {} });

@@ -5,6 +5,7 @@ import type { JobState } from "#shared/api/routes.ts";
 const TITLES: Readonly<Record<JobState["what"], string>> = {
   intake: "Taking in a scan",
   demo: "Making the demo valve",
+  look: "Looking through a scan",
   export: "Writing files",
   packets: "Making packets",
   "take-in": "Taking in a packet",

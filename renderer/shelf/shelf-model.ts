@@ -108,7 +108,8 @@ export class ShelfModel {
   }
 
   private take(job: JobState): void {
-    if (job.what === "export" || this.putAway.has(job.id)) return;
+    // A look is told in the sheet that asked for it.
+    if (job.what === "export" || job.what === "look" || this.putAway.has(job.id)) return;
     const others = this.jobsSignal.value.filter(({ id }) => id !== job.id);
     const ours = this.seenRunning.has(job.id);
     if (job.state === "running") this.seenRunning.add(job.id);

@@ -1,3 +1,4 @@
+import type { ReadingChoice } from "#shared/api/projections.ts";
 import type { Handedness, ShelfSpecimen, SpecimenFacts } from "#shared/api/specimen.ts";
 import type { MadePacket, TakenPacket } from "#shared/api/study.ts";
 import type { LogHead } from "#shared/log/records.ts";
@@ -5,6 +6,7 @@ import type { Polarity } from "#shared/tracing/strand-request.ts";
 import type { Landmarks } from "#shared/trees/document.ts";
 import type { SourceDtype } from "#shared/volume/dtype.ts";
 import type { Region } from "#shared/volume/region/region.ts";
+import type { ScanReadings } from "#shared/volume/scan-header.ts";
 
 /**
  * Every route: method and path. `:name` is a path parameter. Bodies are JSON unless said; binary answers are frames
@@ -15,7 +17,9 @@ export const ROUTES = {
   events: { method: "GET", path: "/api/events" }, // -> JSON Lines of ServerEvent, one stream per window (?window=)
   shelf: { method: "GET", path: "/api/shelf" }, // -> ShelfAnswer
   listFolder: { method: "POST", path: "/api/folders/list" }, // FolderRequest -> FolderAnswer
-  lookAtScan: { method: "POST", path: "/api/scans/look" }, // {path} -> ScanLookAnswer
+  lookAtScan: { method: "POST", path: "/api/scans/look" }, // LookRequest -> ScanLookAnswer
+  startProjections: { method: "POST", path: "/api/scans/projections" }, // ProjectionsRequest -> {job}, "look"
+  projections: { method: "GET", path: "/api/scans/projections/:job" }, // -> ProjectionsAnswer of a job that is done
   startIntake: { method: "POST", path: "/api/intake" }, // IntakeRequest -> {job}
   openDemo: { method: "POST", path: "/api/demo" }, // {} -> {job} (specimen id in the job's result; at once when it exists)
   cancelJob: { method: "POST", path: "/api/jobs/:job/cancel" }, // {} -> {}
@@ -127,6 +131,10 @@ export interface ScanInfo {
   readonly warnings: readonly { readonly code: ScanWarningCode; readonly message: string }[];
 }
 
+export interface LookRequest extends ReadingChoice {
+  readonly path: string;
+}
+
 export interface ScanLookAnswer {
   readonly info: ScanInfo;
   /** The middle slice, uint8, at most 512 a side, base64. */
@@ -135,9 +143,11 @@ export interface ScanLookAnswer {
   /** Type conversions and other things that intake would do, one sentence each. */
   readonly conversions: readonly string[];
   readonly suggestedPolarity: Polarity;
+  /** How many channels and time points there are, when more than one; a look without a choice is at the first. */
+  readonly readings?: ScanReadings;
 }
 
-export interface IntakeRequest {
+export interface IntakeRequest extends ReadingChoice {
   readonly path: string;
   readonly name: string;
   /** Millimetres; always sent by the window (a person confirmed it). */
@@ -211,7 +221,7 @@ export type ServerEvent =
 
 export interface JobState {
   readonly id: string;
-  readonly what: "intake" | "demo" | "export" | "packets" | "take-in" | "return";
+  readonly what: "intake" | "demo" | "look" | "export" | "packets" | "take-in" | "return";
   readonly state: "running" | "done" | "failed" | "cancelled";
   /** 0-1 */
   readonly progress: number;

@@ -90,14 +90,14 @@ export interface OmeZarrScan {
 /**
  * The scan inside an OME-Zarr image.
  * @param shape of the finest level's array, in the order of its axes.
- * @param choice which channel and time point, from 0; needed where there is more than one.
+ * @param choice which channel and time point, from 0; needed where there is more than one, unless the first will do.
  * @throws unreadable-input when there are not three axes of space in the order z, y, x, or a choice is missing or out of range.
  */
 export function scanOfOmeZarr(
   image: OmeZarrImage,
   shape: readonly number[],
   dtype: SourceDtype,
-  choice: { readonly channel?: number; readonly time?: number },
+  choice: { readonly channel?: number; readonly time?: number; readonly orFirst?: boolean },
   file: string,
 ): OmeZarrScan {
   if (shape.length !== image.axes.length)
@@ -111,7 +111,7 @@ export function scanOfOmeZarr(
   const selection = image.axes.map((axis, k): "space" | number => {
     if (space.includes(k)) return "space";
     const kind = axis.type === "time" ? "time" : "channel";
-    const chosen = choice[kind] ?? (shape[k] === 1 ? 0 : undefined);
+    const chosen = choice[kind] ?? (shape[k] === 1 || choice.orFirst ? 0 : undefined);
     if (chosen === undefined || chosen < 0 || chosen >= shape[k]!) {
       const found = chosen === undefined ? `${shape[k]} (axis '${axis.name}')` : `number ${chosen} of ${shape[k]}`;
       const next = `Choose one with --${kind} 0 to ${shape[k]! - 1}.`;
@@ -119,6 +119,9 @@ export function scanOfOmeZarr(
     }
     return chosen;
   });
+  const most = (time: boolean) =>
+    image.axes.reduce((n, axis, k) => (space.includes(k) || (axis.type === "time") !== time ? n : Math.max(n, shape[k]!)), 1);
+  const readings = { channels: most(false), times: most(true) };
   const [z, y, x] = space as [number, number, number];
   const pick = (values: readonly number[]): Vec3 => [values[x]!, values[y]!, values[z]!];
   const units = [x, y, z].map((k) => image.axes[k]!.unit);
@@ -135,6 +138,7 @@ export function scanOfOmeZarr(
     mmPerUnit: mm,
     origin: pick(image.translation).every(Number.isFinite) ? pick(image.translation) : [0, 0, 0],
     originMmPerUnit: mm,
+    ...(readings.channels > 1 || readings.times > 1 ? { readings } : {}),
   };
   return { header, selection };
 }

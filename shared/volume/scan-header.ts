@@ -25,6 +25,12 @@ export type ScanFamily =
   | "raw"
   | "generated";
 
+/** How many volumes of one size a file holds; the person picks one of each. */
+export interface ScanReadings {
+  readonly channels: number;
+  readonly times: number;
+}
+
 /** What a scan file says about its voxels, every family alike; nothing here is guessed. */
 export interface ScanHeader {
   readonly family: ScanFamily;
@@ -45,6 +51,8 @@ export interface ScanHeader {
   readonly frame: FrameName;
   /** What a header without a whole voxel size does say about it, one sentence. */
   readonly spacingRemark?: string;
+  /** Where there is more than one channel or time point. */
+  readonly readings?: ScanReadings;
   /** Other things a person should know, one sentence each. */
   readonly notes: readonly string[];
 }

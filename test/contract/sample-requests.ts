@@ -15,7 +15,9 @@ export function sampleRequests(pass: string, log: { epoch: string; head: { seq: 
     events: { query: "?window=w1" },
     shelf: {},
     listFolder: { body: {} },
-    lookAtScan: { body: { path: "/scan.nrrd" } },
+    lookAtScan: { body: { path: "/scan.nrrd", channel: 1, time: 0 } },
+    startProjections: { body: { path: "/scan.nrrd", polarity: "bright", channel: 0 } },
+    projections: { path: { job } },
     startIntake: {
       body: {
         path: "/scan.nrrd",
@@ -23,6 +25,9 @@ export function sampleRequests(pass: string, log: { epoch: string; head: { seq: 
         spacing: [0.04, 0.04, 0.04],
         handedness: "confirmed",
         mirror: true,
+        channel: 1,
+        time: 0,
+        region: { crop: [0, 0, 0, 4, 3, 2], bin: 2 },
         polarity: "bright",
         facts: { species: "porcine", pressure: 100 },
       },

@@ -89,7 +89,7 @@ ${RAW_HELP}`,
         ...(region ? { region } : {}),
         ...(polarity ? { polarity } : {}),
         facts,
-        choice,
+        ...choice,
       };
       const made = await runIntake(order, { signal: io.signal, onProgress: progressLine(say) });
       const { record } = made;

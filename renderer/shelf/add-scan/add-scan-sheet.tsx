@@ -39,7 +39,7 @@ export function AddScanSheet({ client, capabilities, path: given, close, begun }
     setLooking(true);
     setFailure(null);
     try {
-      const answer = await client.lookAtScan(file);
+      const answer = await client.lookAtScan({ path: file });
       if (asked.current !== file) return;
       setLook({ path: file, answer });
       setDraft(draftOf(answer.info, answer.suggestedPolarity));

@@ -42,13 +42,20 @@ export function niftiMagic(head: Uint8Array): "n+1" | "ni1" | "2" | null {
   return /^n(\+|i)2\0/.test(String.fromCharCode(...head.subarray(4, 8))) ? "2" : null;
 }
 
+interface VolumeChoice {
+  readonly channel?: number;
+  readonly time?: number;
+  /** Where a choice is missing the first is taken. */
+  readonly orFirst?: boolean;
+}
+
 /**
  * A NIfTI-1 header, understood.
  * @param bytes at least the first 348 bytes. @param choice which time point and channel (both from 0) where there are several.
  * @throws unreadable-input when it is no NIfTI-1 header, or has not one grey value per voxel of three axes.
  * @source nifti1.h, the format's definition (memory).
  */
-export function parseNifti(bytes: Uint8Array, file: string, choice: { channel?: number; time?: number } = {}): NiftiHeader {
+export function parseNifti(bytes: Uint8Array, file: string, choice: VolumeChoice = {}): NiftiHeader {
   const magic = niftiMagic(bytes);
   if (magic === "2")
     throw unreadable(file, "a NIfTI-1 header", "a NIfTI-2 header", undefined, "Save the scan as NIfTI-1 or NRRD.");
@@ -59,7 +66,7 @@ export function parseNifti(bytes: Uint8Array, file: string, choice: { channel?: 
     throw unreadable(file, `a header of ${NIFTI_HEADER_BYTES} bytes`, `${view.getInt32(0, true)}`, "sizeof_hdr");
   const attached = magic === "n+1";
   const dims = Array.from({ length: 8 }, (_, k) => view.getInt16(40 + 2 * k, littleEndian));
-  const { size, volume, volumes } = volumesOf(dims, choice, file);
+  const { size, volume, volumes, readings } = volumesOf(dims, choice, file);
   const code = view.getInt16(70, littleEndian);
   const dtype = TYPES[code];
   if (!dtype) throw unreadable(file, "an integer or float type", `datatype ${code}`, "datatype", "Save the scan as grey values.");
@@ -78,12 +85,12 @@ export function parseNifti(bytes: Uint8Array, file: string, choice: { channel?: 
   const all = scaled
     ? [...notes, `The header's scale (slope ${slope}, intercept ${inter}) is not applied; values are kept as stored.`]
     : notes;
-  const scan: ScanHeader = { family: "NIfTI-1", dtype, size: sizeXyz(...size), ...place, notes: all };
+  const scan: ScanHeader = { family: "NIfTI-1", dtype, size: sizeXyz(...size), ...place, ...readings, notes: all };
   return { scan, littleEndian, attached, offset, volume, volumes };
 }
 
 /** Sides of a volume, and which of several the person chose: channels (fifth axis) of time points (fourth axis). */
-function volumesOf(dims: readonly number[], choice: { channel?: number; time?: number }, file: string) {
+function volumesOf(dims: readonly number[], choice: VolumeChoice, file: string) {
   const count = dims[0]!;
   if (!(count >= 3 && count <= 7)) throw unreadable(file, "3 to 7 axes", `${count}`, "dim");
   const side = (k: number) => (k <= count ? dims[k]! : 1);
@@ -93,7 +100,7 @@ function volumesOf(dims: readonly number[], choice: { channel?: number; time?: n
     throw unreadable(file, "sides from 1 to 32767 (the most that NIfTI-1 can say)", sides.slice(0, count).join(" x "), "dim");
   if (sides[5] !== 1 || sides[6] !== 1) throw unreadable(file, "at most five axes", sides.join(" x "), "dim");
   const pick = (of: number, chosen: number | undefined, what: string, option: string): number => {
-    if (chosen === undefined && of > 1)
+    if (chosen === undefined && of > 1 && !choice.orFirst)
       throw unreadable(file, `one ${what}`, `${of}`, "dim", `Choose one with --${option} 0 to ${of - 1}.`);
     if (chosen !== undefined && chosen >= of)
       throw unreadable(file, `a ${what} from 0 to ${of - 1}`, `number ${chosen} of ${of}`, "dim");
@@ -102,5 +109,7 @@ function volumesOf(dims: readonly number[], choice: { channel?: number; time?: n
   const time = pick(sides[3]!, choice.time, "time point", "time");
   const channel = pick(sides[4]!, choice.channel, "channel", "channel");
   const size: [number, number, number] = [sides[0]!, sides[1]!, sides[2]!];
-  return { size, volume: channel * sides[3]! + time, volumes: sides[3]! * sides[4]! };
+  const volumes = sides[3]! * sides[4]!;
+  const readings = volumes > 1 ? { readings: { channels: sides[4]!, times: sides[3]! } } : {};
+  return { size, volume: channel * sides[3]! + time, volumes, readings };
 }

@@ -152,7 +152,6 @@ describe("tautline trace", () => {
       spacing: [S, S, S],
       handedness: "unknown",
       facts: {},
-      choice: {},
     });
     expect(made.record.volume.sha256).toBe(sha256);
     const specimen = at("library/specimens/specimenforthetrace");

@@ -50,7 +50,7 @@ const client = {
   openDemo: async () => ({ job: "demo-1" }),
   cancelJob: async (job: string) => asked.push({ what: "cancel", detail: job }),
   hello: async () => ({ name: "Tautline", version: "0.1.0", shell: "loopback", library: "/data/library" }),
-  lookAtScan: async (path: string) => {
+  lookAtScan: async ({ path }: { path: string }) => {
     asked.push({ what: "look", detail: path });
     if (path.includes("wrong")) {
       const [file, expected, found] = [path, "the magic NRRD0001 to NRRD0006", "'GIF89a'"];
@@ -83,7 +83,13 @@ const client = {
 };
 const services = {
   client,
-  capabilities: { shell: "loopback", pickScan: async () => "/scans/bare.nrrd", pathOfDropped: () => null },
+  capabilities: {
+    shell: "loopback",
+    pickScan: async () => "/scans/bare.nrrd",
+    pickPacket: async () => null,
+    pickFolder: async () => null,
+    pathOfDropped: () => null,
+  },
   notices: new Notices(),
   goTo: (place: unknown) => asked.push({ what: "go", detail: place }),
 } as unknown as Services;

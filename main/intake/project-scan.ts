@@ -1,0 +1,89 @@
+import { openScan } from "#main/intake/open-scan.ts";
+import { PackingSampler } from "#main/intake/packing/packing-sampler.ts";
+import { type IntakeProgress, ProgressMeter } from "#main/intake/progress.ts";
+import { stopIfAborted } from "#main/intake/read-file.ts";
+import type { SliceSource } from "#main/intake/slice-source.ts";
+import type { ProjectionPicture, ProjectionsAnswer, ProjectionsRequest } from "#shared/api/projections.ts";
+import type { Vec3 } from "#shared/geometry/types.ts";
+import { BYTES_OF_DTYPE } from "#shared/volume/dtype.ts";
+import { type GreyPicture, Projections } from "#shared/volume/projections.ts";
+import { CHUNK_SIDE } from "#shared/volume/store/layout.ts";
+import { storedTypeOf } from "#shared/volume/stored-type.ts";
+
+export interface ProjectHooks {
+  readonly signal?: AbortSignal;
+  /** Monotonic milliseconds. */
+  readonly now?: () => number;
+  onProgress?(progress: IntakeProgress): void;
+}
+
+/** Of larger seekable scans, slices spread evenly are looked at. */
+const WHOLE_BYTES = 512 * 1024 * 1024;
+/** Slabs for the packing sample read at most this much besides. */
+const SLAB_BYTES = 256 * 1024 * 1024;
+const MOST_SLABS = 3;
+
+/**
+ * Three small projections of a scan, and a sample of what packing would gain. A seekable scan of more than 512 MB is looked at
+ * in some slices, evenly spread; a packed stream is read through once. Memory: a run of slices.
+ * @throws unreadable-input, cancelled
+ */
+export async function projectScan(request: ProjectionsRequest, hooks: ProjectHooks = {}): Promise<ProjectionsAnswer> {
+  const { path, polarity, ...choice } = request;
+  const source = await openScan(path, { ...choice, orFirst: true });
+  try {
+    const now = hooks.now ?? (() => performance.now());
+    const { size, dtype } = source.header;
+    const stored = storedTypeOf(dtype)?.dtype ?? null;
+    const planeBytes = size[0] * size[1] * BYTES_OF_DTYPE[dtype];
+    const whole = !source.seekable || planeBytes * size[2] <= WHOLE_BYTES;
+    const slices = whole ? size[2] : Math.max(3, Math.min(size[2], Math.floor(WHOLE_BYTES / planeBytes)));
+    const pictures = new Projections(size, slices, polarity === "dark");
+    const slabs = whole ? MOST_SLABS : Math.max(1, Math.min(MOST_SLABS, Math.floor(SLAB_BYTES / (planeBytes * CHUNK_SIDE))));
+    const sampler = stored === null ? null : new PackingSampler(size, stored, slabs);
+    const meter = new ProgressMeter(source, now, hooks.onProgress, false);
+    meter.begin("Looking through the scan");
+    let done = 0;
+    for (const [z0, z1] of whole ? [[0, size[2]] as const] : spread(size, slices))
+      for await (const [z, slice] of slicesOf(source, z0, z1, hooks.signal)) {
+        pictures.add(z, slice);
+        if (whole) sampler?.add(z, slice);
+        meter.slices(Math.round((++done * size[2]) / slices));
+      }
+    if (!whole && sampler)
+      for (const [z0, z1] of sampler.ranges())
+        for await (const [z, slice] of slicesOf(source, z0, z1, hooks.signal)) sampler.add(z, slice);
+    const { alongZ, alongY, alongX } = pictures.pictures();
+    return {
+      alongZ: sendable(alongZ),
+      alongY: sendable(alongY),
+      alongX: sendable(alongX),
+      slices,
+      of: size[2],
+      packing: sampler?.measure(now) ?? null,
+    };
+  } finally {
+    await source.close();
+  }
+}
+
+/** Single slices, the first and the last among them. */
+function spread(size: Vec3, count: number): [number, number][] {
+  return Array.from({ length: count }, (_, k) => {
+    const z = Math.round((k * (size[2] - 1)) / (count - 1));
+    return [z, z + 1];
+  });
+}
+
+async function* slicesOf(source: SliceSource, z0: number, z1: number, signal?: AbortSignal) {
+  const voxels = source.header.size[0] * source.header.size[1];
+  for await (const run of source.readPlanes(z0, z1, signal))
+    for (let k = 0; k < run.count; k++) {
+      stopIfAborted(signal, "looking through the scan");
+      yield [run.z + k, run.data.subarray(k * voxels, (k + 1) * voxels)] as const;
+    }
+}
+
+function sendable({ width, height, grey }: GreyPicture): ProjectionPicture {
+  return { width, height, data: Buffer.from(grey.buffer, grey.byteOffset, grey.byteLength).toString("base64") };
+}
