@@ -53,7 +53,7 @@ export function legPath(
     const high = ([0, 1, 2] as const).map((k) => Math.max(a[k], b[k]) + marginMm / grid.spacing[k]) as [number, number, number];
     const box = tileBox(grid, low, high);
     if (box.size[0] * box.size[1] * box.size[2] > MOST_BOX_VOXELS) break;
-    const domain = createTileDomain(pyramid, costs, box);
+    const domain = createTileDomain(pyramid, costs, box, [], signal);
     const met = meetFronts(domain, voxelOfIndex(domain, a), voxelOfIndex(domain, b), MOST_SETTLED, () => signal.aborted);
     if (met.kind === "over-budget") break;
     if (met.kind !== "met") return null;
