@@ -4,7 +4,10 @@ import { readTreeFile } from "#main/cli/read-tree-file.ts";
 import { itemsOf, runShared, SHARE_HELP, SHARE_OPTIONS, shareLines } from "#main/cli/shares.ts";
 import type { SharedVerb, VerbCall } from "#main/cli/verb.ts";
 import { diskFiles } from "#main/node/disk-files.ts";
+import { ownVersion } from "#main/node/own-version.ts";
 import { writeWhole } from "#main/node/whole-file.ts";
+import { agreementReport, contextOfFiles } from "#shared/agreement/report/agreement-report.ts";
+import { renderReportHtml } from "#shared/agreement/report/render-html.ts";
 import { type Agreement, type AgreeOptions, agreementFrame, assembleAgreement } from "#shared/agreement/study/agree.ts";
 import { agreementText } from "#shared/agreement/study/agreement-text.ts";
 import { itemsCsv } from "#shared/agreement/study/items-csv.ts";
@@ -20,8 +23,9 @@ export const agree: SharedVerb = {
 
 Agreement of all passes named: items that several annotators marked, totals per specimen, lengths, radii and angles, labels,
 and what the same annotator did again. Specimen, annotator and pass are read from the files. What cannot be known is null
-with its reason.
+with its reason, and refused in words in the report. The order of the files changes nothing.
 
+  --out report.html            a self-contained report with all numbers, plots and pictures, to read or print on A4
   --method A                   the annotator whose files are a computed method's; it is held against the others
   --margin mm                  margin of equivalence that the protocol set beforehand; without it there is no verdict
   --same-engine                the annotators worked with the engine that the method uses
@@ -37,6 +41,7 @@ ${SHARE_HELP}`,
     "same-engine": { type: "boolean" },
     "declined-by-all": { type: "string" },
     seed: { type: "string" },
+    out: { type: "string" },
     items: { type: "string" },
     seconds: { type: "string" },
     ...COMPARE_OPTIONS,
@@ -46,13 +51,21 @@ ${SHARE_HELP}`,
 
   async run(call) {
     const { options, positionals } = call;
-    if (options.shard !== undefined && options.items !== undefined)
-      throw misuse("--items needs all passes: leave it out of a share.");
+    if (options.shard !== undefined && (options.items !== undefined || options.out !== undefined))
+      throw misuse("--out and --items need all passes: leave them out of a share.");
     const result = await runShared(agree, call);
-    if (typeof options.items === "string" && !result.lines) {
-      const { compare, method } = agreeOptions(options);
-      const text = itemsCsv(await readAll(positionals), compare.tolerance, compare.merge, method);
-      await writeWhole(diskFiles(), options.items, new TextEncoder().encode(text));
+    if (result.lines) return result;
+    const { items, out } = options;
+    if (typeof items !== "string" && typeof out !== "string") return result;
+    const [files, asked] = [await readAll(positionals), agreeOptions(options)];
+    const { tolerance, merge } = asked.compare;
+    if (typeof items === "string") await writeText(items, itemsCsv(files, tolerance, merge, asked.method));
+    if (typeof out === "string") {
+      const study = studyOf(files, merge, asked.method);
+      const software = { name: "Tautline", version: ownVersion(import.meta.url) };
+      const context = contextOfFiles(software, new Date().toISOString());
+      const report = agreementReport({ study, options: asked, found: result.json as Agreement, context });
+      await writeText(out, renderReportHtml(report));
     }
     return result;
   },
@@ -104,6 +117,10 @@ function agreeOptions(options: VerbCall["options"]): AgreeOptions {
     declinedByAll: wholeOption(options, "declined-by-all", 0) ?? 0,
     seed: wholeOption(options, "seed", 0) ?? 1,
   };
+}
+
+function writeText(path: string, text: string): Promise<void> {
+  return writeWhole(diskFiles(), path, new TextEncoder().encode(text));
 }
 
 function readAll(paths: readonly string[]): Promise<StudyFile[]> {
