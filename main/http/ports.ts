@@ -30,6 +30,7 @@ import type {
   SignatureAnswer,
   StudiesAnswer,
   StudyDraft,
+  StudyPassesAnswer,
   StudyPatch,
   StudyView,
   TakeInRequest,
@@ -68,6 +69,7 @@ export interface StudyPort {
   makePackets(study: string, request: PacketRequest): Promise<{ job: string }>;
   setAside(study: string, assignment: string, request: SetAsideRequest): Promise<StudyView>;
   analysis(study: string): Promise<AnalysisAnswer>;
+  passes(study: string): Promise<StudyPassesAnswer>;
   exportPasses(study: string, request: ExportPassesRequest): Promise<ExportAnswer>;
 }
 

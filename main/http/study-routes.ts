@@ -51,6 +51,7 @@ export function studyRoutes({ studies, packets }: Ports): RouteHandlers {
       return jsonAnswer(await studies.setAside(studyOf(c), id(c.req.param("assignment"), "path.assignment"), request));
     },
     studyAnalysis: async (c) => jsonAnswer(await studies.analysis(studyOf(c))),
+    studyPasses: async (c) => jsonAnswer(await studies.passes(studyOf(c))),
     exportPasses: async (c) => jsonAnswer(await studies.exportPasses(studyOf(c), await readJson(c.req.raw, exportPassesRequest))),
     lookAtPacket: async (c) => jsonAnswer(await packets.look((await readJson(c.req.raw, lookRequest)).path)),
     takeInPacket: async (c) => jsonAnswer(await packets.takeIn(await readJson(c.req.raw, takeInRequest))),

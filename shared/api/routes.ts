@@ -62,6 +62,7 @@ export const ROUTES = {
   makePackets: { method: "POST", path: "/api/studies/:study/packets" }, // PacketRequest -> {job}
   setAsidePass: { method: "POST", path: "/api/studies/:study/assignments/:assignment/aside" }, // SetAsideRequest -> StudyView
   studyAnalysis: { method: "GET", path: "/api/studies/:study/analysis" }, // -> AnalysisAnswer
+  studyPasses: { method: "GET", path: "/api/studies/:study/passes" }, // -> StudyPassesAnswer: what the agreement is made of
   exportPasses: { method: "POST", path: "/api/studies/:study/passes" }, // ExportPassesRequest -> ExportAnswer
   // Either library:
   lookAtPacket: { method: "POST", path: "/api/packets/look" }, // {path} -> PacketLook
@@ -145,7 +146,15 @@ export interface ScanLookAnswer {
   readonly suggestedPolarity: Polarity;
   /** How many channels and time points there are, when more than one; a look without a choice is at the first. */
   readonly readings?: ScanReadings;
+  /** Of an OME-Zarr: whether its own store can be used where it lies. */
+  readonly inPlace?: InPlaceVerdict;
 }
+
+/** Whether a store can be used in place; if not, why not, in a sentence. */
+export type InPlaceVerdict = { readonly fits: true } | { readonly fits: false; readonly why: string };
+
+/** How a specimen's voxels are kept: a plain copy, a packed one, or the scan's own store used where it lies. */
+export type KeptAs = "plain" | "packed" | "in-place";
 
 export interface IntakeRequest extends ReadingChoice {
   readonly path: string;
@@ -157,6 +166,8 @@ export interface IntakeRequest extends ReadingChoice {
   readonly mirror?: boolean;
   /** The part to keep, in voxels as the file has them; absent: all of it. */
   readonly region?: Region;
+  /** Absent: plain. */
+  readonly keep?: KeptAs;
   readonly polarity: Polarity;
   readonly facts: SpecimenFacts;
 }

@@ -1,3 +1,4 @@
+import type { StudyFile } from "#shared/agreement/study/study.ts";
 import type { PassState } from "#shared/api/specimen.ts";
 import type { DrawingRules, ProtocolContent, ProtocolVersion } from "#shared/study/protocol.ts";
 import type { ProtocolTouch } from "#shared/study/protocol-change.ts";
@@ -242,6 +243,11 @@ export interface AnalysisAnswer {
   /** Cells without a pass yet. */
   readonly awaited: number;
   readonly notes: readonly string[];
+}
+
+/** `studyPasses`: the passes of the analysis as tree files in the true frame, the same that `exportPasses` writes. */
+export interface StudyPassesAnswer {
+  readonly files: readonly StudyFile[];
 }
 
 /** `exportPasses`: the passes of the analysis as tree files in the true frame, for `tautline agree`. */

@@ -8,6 +8,7 @@ import type { Library } from "#main/node/library.ts";
 import type { AssignmentStore } from "#main/node/study/assignment-store.ts";
 import { exportStudyPasses } from "#main/node/study/export-passes.ts";
 import { keptPng } from "#main/node/study/kept-png.ts";
+import { studyFiles } from "#main/node/study/study-files.ts";
 import type { StudyStore } from "#main/node/study/study-store.ts";
 import type { ServerEvent } from "#shared/api/routes.ts";
 import type { PacketRequest, StudyView } from "#shared/api/study.ts";
@@ -136,6 +137,7 @@ export function studies(options: StudiesOptions): StudyPort {
         return noted({ ...study, assignments: list }, { at: now(), what: "set-aside", text });
       }),
     analysis: async (id) => analysisAnswer(await store.read(id)),
+    passes: async (id) => ({ files: await studyFiles(library, await store.read(id), options.softwareVersion) }),
     async exportPasses(id, { folder }) {
       if (!isAbsolute(folder)) {
         const what = "a whole path was expected";
