@@ -6,6 +6,7 @@ const TITLES: Readonly<Record<JobState["what"], string>> = {
   intake: "Taking in a scan",
   demo: "Making the demo valve",
   look: "Looking through a scan",
+  search: "Searching a scan for strings",
   export: "Writing files",
   packets: "Making packets",
   "take-in": "Taking in a packet",

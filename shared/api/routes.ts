@@ -232,7 +232,7 @@ export type ServerEvent =
 
 export interface JobState {
   readonly id: string;
-  readonly what: "intake" | "demo" | "look" | "export" | "packets" | "take-in" | "return";
+  readonly what: "intake" | "demo" | "look" | "search" | "export" | "packets" | "take-in" | "return";
   readonly state: "running" | "done" | "failed" | "cancelled";
   /** 0-1 */
   readonly progress: number;
