@@ -61,7 +61,7 @@ export function centreCurve(sampler: Sampler, start: CentredCurve, options: Cent
       lambdas[i] = (smoothingLength(radii[i]!, options.stepMm) / step) ** 4;
       if (i === 0 || i === n - 1) continue;
       weights[i] = centreAt(sampler, points, directions, i, radii[i]!, share, options, patch, targets);
-      if (distanceTo(options.path, targets, i) > FARTHEST_RADII * radii[i]! + options.stepMm) weights[i] = 0;
+      if (!isNear(options.path, targets, i, FARTHEST_RADII * radii[i]! + options.stepMm)) weights[i] = 0;
       if (arc[i]! < options.zonesMm[0] || length - arc[i]! < options.zonesMm[1]) weights[i] = weights[i]! * IN_ZONE;
     }
     smoothInto(targets, weights, lambdas, targets);
@@ -81,16 +81,20 @@ const IN_ZONE = 0.001;
 /** How far the centred curve may come from the path, in radii, besides a step. */
 const FARTHEST_RADII = 0.8;
 
-/** Distance of target i from the nearest point of the path. */
-function distanceTo(path: Float64Array, targets: Float64Array, i: number): number {
-  let least = Number.POSITIVE_INFINITY;
-  for (let k = 0; k < path.length; k += 3) {
-    const x = path[k]! - targets[3 * i]!;
-    const y = path[k + 1]! - targets[3 * i + 1]!;
-    const z = path[k + 2]! - targets[3 * i + 2]!;
-    least = Math.min(least, x * x + y * y + z * z);
+/** True when target i lies within a distance of a point of the path; the search begins where it is likely to be. */
+function isNear(path: Float64Array, targets: Float64Array, i: number, distanceMm: number): boolean {
+  const m = path.length / 3;
+  const middle = Math.round(((m - 1) * i) / Math.max(targets.length / 3 - 1, 1));
+  for (let n = 0; n < 2 * m; n++) {
+    // middle, one before, one behind, two before ...
+    const at = 3 * (n % 2 === 0 ? middle - n / 2 : middle + (n + 1) / 2);
+    if (at < 0 || at >= path.length) continue;
+    const x = path[at]! - targets[3 * i]!;
+    const y = path[at + 1]! - targets[3 * i + 1]!;
+    const z = path[at + 2]! - targets[3 * i + 2]!;
+    if (Math.sqrt(x * x + y * y + z * z) <= distanceMm) return true;
   }
-  return Math.sqrt(least);
+  return false;
 }
 
 /** How far smoothing reaches along the curve: about a radius, and never less than two voxels. */

@@ -55,15 +55,13 @@ export function crossSection(
  */
 export function samplePatchInto(sampler: Sampler, section: CrossSection, half: number, slices: number, out: Float64Array): void {
   const { level, centre, u, v, t } = section;
-  const count = 2 * slices + 1;
-  let o = 0;
+  const side = 2 * half + 1;
+  const planes = 2 * slices + 1;
+  out.fill(0, 0, side * side);
   for (let j = -half; j <= half; j++)
-    for (let i = -half; i <= half; i++, o++) {
-      const x = centre[0] + i * u[0] + j * v[0];
-      const y = centre[1] + i * u[1] + j * v[1];
-      const z = centre[2] + i * u[2] + j * v[2];
-      let sum = 0;
-      for (let k = -slices; k <= slices; k++) sum += sampler.at(level, x + k * t[0], y + k * t[1], z + k * t[2]);
-      out[o] = sum / count;
+    for (let k = -slices; k <= slices; k++) {
+      const offset = [j * v[0] + k * t[0], j * v[1] + k * t[1], j * v[2] + k * t[2]] as const;
+      sampler.addLine({ level, from: centre, step: u, offset, first: -half, count: side }, out, (j + half) * side);
     }
+  for (let o = 0; o < side * side; o++) out[o] = out[o]! / planes;
 }

@@ -11,6 +11,9 @@ const PER_STEP = 2;
 /** The inside level is the mean within this share of the half width; the blur correction knows it. */
 export const INSIDE_SHARE = 0.35;
 
+const RAY_COSINES = Float64Array.from({ length: RAYS }, (_, ray) => Math.cos((2 * Math.PI * ray) / RAYS));
+const RAY_SINES = Float64Array.from({ length: RAYS }, (_, ray) => Math.sin((2 * Math.PI * ray) / RAYS));
+
 /** What the planes across a curve show at each of its points. */
 export interface RadialMeasure {
   /** shape [n]; half width at half height, area-equivalent, millimetres; NaN where no edge was found. */
@@ -81,23 +84,15 @@ function sampleRays(
   const samples = Math.ceil((2.6 * (radiusMm / stepMm) + 4) * PER_STEP) + 1;
   const values = new Float64Array(RAYS * samples);
   for (let ray = 0; ray < RAYS; ray++) {
-    const c = Math.cos((2 * Math.PI * ray) / RAYS) / PER_STEP;
-    const s = Math.sin((2 * Math.PI * ray) / RAYS) / PER_STEP;
-    const dx = c * u[0] + s * v[0];
-    const dy = c * u[1] + s * v[1];
-    const dz = c * u[2] + s * v[2];
-    for (let k = 0; k < samples; k++) {
-      let sum = 0;
-      for (let slice = -SLICES; slice <= SLICES; slice++)
-        sum += sampler.at(
-          level,
-          centre[0] + k * dx + slice * t[0],
-          centre[1] + k * dy + slice * t[1],
-          centre[2] + k * dz + slice * t[2],
-        );
-      values[ray * samples + k] = (sign * sum) / (2 * SLICES + 1);
+    const c = RAY_COSINES[ray]! / PER_STEP;
+    const s = RAY_SINES[ray]! / PER_STEP;
+    const step = [c * u[0] + s * v[0], c * u[1] + s * v[1], c * u[2] + s * v[2]] as const;
+    for (let slice = -SLICES; slice <= SLICES; slice++) {
+      const offset = [slice * t[0], slice * t[1], slice * t[2]] as const;
+      sampler.addLine({ level, from: centre, step, offset, first: 0, count: samples }, values, ray * samples);
     }
   }
+  for (let k = 0; k < values.length; k++) values[k] = (sign * values[k]!) / (2 * SLICES + 1);
   const { spacing, factor } = sampler.pyramid.levels[level]!;
   // Linear interpolation adds h^2 / 6 on average over places between voxels, the mean of f voxels h0^2 (f^2 - 1) / 12; mean over axes.
   let variance = 0;
