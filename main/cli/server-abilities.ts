@@ -1,6 +1,6 @@
 import { createEngine } from "#main/engine/engine.ts";
 import { removeUnfinished } from "#main/intake/make-specimen.ts";
-import { runDemo, runDemoPasses, runIntake, runLabels, runLook, runProjections } from "#main/intake/run-intake.ts";
+import { runDemo, runDemoPasses, runIntake, runLabels, runLook, runProjections, runTurned } from "#main/intake/run-intake.ts";
 import type { Abilities } from "#main/node/abilities.ts";
 import type { Library } from "#main/node/library.ts";
 
@@ -18,6 +18,7 @@ export async function serverAbilities(library: Library, memoryBytes: number): Pr
     runProjections,
     runIntake,
     runDemo,
+    runTurned,
     runDemoPasses: (sha256) => runDemoPasses(sha256),
     runLabels: (file, path) => runLabels(file, path),
     forgetSpecimen: (specimen) => engine.forget(specimen),

@@ -2,9 +2,10 @@ import type { IntakeProgress } from "#main/intake/progress.ts";
 import type { ScanChoice } from "#main/intake/slice-source.ts";
 import type { ProjectionsAnswer, ProjectionsRequest } from "#shared/api/projections.ts";
 import type { IntakeRequest, ScanLookAnswer } from "#shared/api/routes.ts";
-import type { SpecimenRecord } from "#shared/api/specimen.ts";
+import type { SpecimenRecord, SpecimenVolume } from "#shared/api/specimen.ts";
 import type { ErrorBody } from "#shared/errors.ts";
 import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
+import type { Turn } from "#shared/study/turn.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 import type { RawScan } from "#shared/volume/raw/raw-layout.ts";
 
@@ -29,6 +30,21 @@ export interface IntakeOutcome {
   readonly seconds: number;
 }
 
+/** A specimen's turned copy, for an assignment. */
+export interface TurnedOrder {
+  /** Folder of the scan's store. */
+  readonly store: string;
+  readonly volume: SpecimenVolume;
+  readonly turn: Turn;
+  /** Folder that the copy grows in as in a library of its own; it exists. */
+  readonly library: string;
+  /** Id and name of the copy. */
+  readonly id: string;
+  readonly code: string;
+  readonly polarity: Polarity;
+  readonly synthetic: boolean;
+}
+
 /** The demo valve to be made. */
 export type DemoOrder = Pick<IntakeOrder, "library" | "id" | "created">;
 
@@ -41,6 +57,7 @@ export interface DemoOutcome extends IntakeOutcome {
 export type WorkerTask =
   | { readonly task: "intake"; readonly order: IntakeOrder }
   | { readonly task: "demo"; readonly order: DemoOrder }
+  | { readonly task: "turn"; readonly order: TurnedOrder }
   | { readonly task: "demo-passes"; readonly sha256: string }
   | { readonly task: "labels"; readonly file: ChordaeFile; readonly path: string }
   | { readonly task: "look"; readonly path: string; readonly choice?: ScanChoice }

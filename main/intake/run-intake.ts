@@ -6,6 +6,7 @@ import type {
   DemoOutcome,
   IntakeOrder,
   IntakeOutcome,
+  TurnedOrder,
   WorkerMessage,
   WorkerRequest,
   WorkerResult,
@@ -31,6 +32,11 @@ export async function runIntake(order: IntakeOrder, hooks: RunHooks = {}): Promi
 /** Makes the demo valve's specimen, in a thread of its own. @throws as `makeSpecimen` */
 export async function runDemo(order: DemoOrder, hooks: RunHooks = {}): Promise<DemoOutcome> {
   return (await runWorker({ task: "demo", order }, hooks)) as DemoOutcome;
+}
+
+/** Makes a specimen's turned copy, in a thread of its own. @throws as `makeTurned` */
+export async function runTurned(order: TurnedOrder, hooks: RunHooks = {}): Promise<IntakeOutcome> {
+  return (await runWorker({ task: "turn", order }, hooks)) as IntakeOutcome;
 }
 
 /** The demo valve's invented passes alone, in a thread of its own. */

@@ -5,6 +5,7 @@ import type { IntakeProgress } from "#main/intake/progress.ts";
 import { projectScan } from "#main/intake/project-scan.ts";
 import { lookAtScan } from "#main/intake/scan-info.ts";
 import { takeIn } from "#main/intake/take-in.ts";
+import { makeTurned } from "#main/intake/turned/make-turned.ts";
 import { writeLabels } from "#main/intake/write-labels.ts";
 import { encodeError } from "#shared/errors.ts";
 
@@ -21,6 +22,8 @@ async function perform(work: WorkerTask): Promise<WorkerResult> {
       return takeIn(work.order, hooks);
     case "demo":
       return makeDemo(work.order, hooks);
+    case "turn":
+      return makeTurned(work.order, hooks);
     case "demo-passes":
       return demoPasses(work.sha256);
     case "labels":

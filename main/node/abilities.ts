@@ -2,8 +2,10 @@ import type { Progress } from "#main/node/jobs.ts";
 import type { Engine } from "#shared/api/engine.ts";
 import type { ProjectionsAnswer, ProjectionsRequest } from "#shared/api/projections.ts";
 import type { IntakeRequest, LookRequest, ScanLookAnswer } from "#shared/api/routes.ts";
-import type { SpecimenRecord } from "#shared/api/specimen.ts";
+import type { SpecimenRecord, SpecimenVolume } from "#shared/api/specimen.ts";
 import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
+import type { Turn } from "#shared/study/turn.ts";
+import type { Polarity } from "#shared/tracing/strand-request.ts";
 
 /** What a new specimen needs that no worker can know by itself. */
 export interface SpecimenOrder {
@@ -13,6 +15,17 @@ export interface SpecimenOrder {
   readonly id: string;
   /** UTC milliseconds. */
   readonly created: number;
+}
+
+/** A turned copy that grows in the folder `library` as in a library of its own; nothing in it tells the specimen. */
+export interface TurnedScanOrder extends Pick<SpecimenOrder, "library" | "id"> {
+  /** Folder of the scan's store. */
+  readonly store: string;
+  readonly volume: SpecimenVolume;
+  readonly turn: Turn;
+  readonly code: string;
+  readonly polarity: Polarity;
+  readonly synthetic: boolean;
 }
 
 export interface WorkHooks {
@@ -38,6 +51,8 @@ export interface Abilities {
     order: SpecimenOrder,
     hooks: WorkHooks,
   ): Promise<{ readonly record: SpecimenRecord; readonly passes: readonly DemoPass[] }>;
+  /** Makes a specimen's turned copy for an assignment. */
+  runTurned(order: TurnedScanOrder, hooks: WorkHooks): Promise<{ readonly record: SpecimenRecord }>;
   /** The demo valve's passes alone; its stored voxels have this hash. */
   runDemoPasses(sha256: string): Promise<readonly DemoPass[]>;
   /** Writes trees as a label volume (NRRD, gzip) to a file that is not there yet; resolves once it is on the disk. */

@@ -1,4 +1,4 @@
-import { mkdir, open, readdir, rename, rm, statfs, writeFile } from "node:fs/promises";
+import { lstat, mkdir, open, readdir, rename, rm, statfs, writeFile } from "node:fs/promises";
 import { dirname } from "node:path";
 import { setTimeout as wait } from "node:timers/promises";
 import type { AppendFile, FilePort } from "#main/node/file-port.ts";
@@ -32,6 +32,16 @@ export function diskFiles(): FilePort {
         await file.close();
       }
     },
+    async facts(path) {
+      try {
+        const found = await lstat(path);
+        const kind = found.isFile() ? "file" : found.isDirectory() ? "folder" : found.isSymbolicLink() ? "link" : "other";
+        return { kind, bytes: found.size };
+      } catch (error) {
+        if (isMissing(error)) return undefined;
+        throw error;
+      }
+    },
     async list(folder) {
       try {
         const entries = await readdir(folder, { withFileTypes: true });
@@ -46,7 +56,7 @@ export function diskFiles(): FilePort {
       if (first === undefined) return;
       for (let made = folder; made.length >= first.length; made = dirname(made)) await syncFolder(dirname(made));
     },
-    create: (path, bytes) => writeFile(path, bytes, { flag: "wx" }),
+    create: (path, bytes, secret) => writeFile(path, bytes, { flag: "wx", mode: secret ? 0o600 : 0o666 }),
     async syncFile(path) {
       const file = await open(path, "r+");
       try {

@@ -17,7 +17,18 @@ export const CRASH_POINTS = [
   "pass:after-folder",
   "removal:after-rename",
 ] as const;
-export type CrashPoint = (typeof CRASH_POINTS)[number];
+
+/** The same on the way of packets, out and in. */
+export const PACKET_CRASH_POINTS = [
+  "packet:before-rename",
+  "take-in:after-scan-files",
+  "take-in:after-scan",
+  "take-in:after-pictures",
+  "take-in:after-own-pass",
+  "take-in:after-evidence",
+  "take-in:after-returned-pass",
+] as const;
+export type CrashPoint = (typeof CRASH_POINTS)[number] | (typeof PACKET_CRASH_POINTS)[number];
 
 /** A file held open for appending by the process that owns it. */
 export interface AppendFile {
@@ -30,6 +41,12 @@ export interface AppendFile {
   close(): Promise<void>;
 }
 
+/** What a name on the disk stands for, links not followed. */
+export interface FileFacts {
+  readonly kind: "file" | "folder" | "link" | "other";
+  readonly bytes: number;
+}
+
 export interface FolderEntry {
   readonly name: string;
   readonly folder: boolean;
@@ -39,12 +56,17 @@ export interface FolderEntry {
 export interface FilePort {
   /** Bytes of a file from `start` to `end` (excluded); undefined when there is no such file. */
   read(path: string, start?: number, end?: number): Promise<Uint8Array | undefined>;
+  /** What `path` is; undefined when there is nothing. */
+  facts(path: string): Promise<FileFacts | undefined>;
   /** Entries of a folder; undefined when there is no such folder. */
   list(folder: string): Promise<FolderEntry[] | undefined>;
   /** Makes a folder and those above it, durably. */
   makeFolder(folder: string): Promise<void>;
-  /** Creates a file that must not exist yet; not safe until synced, neither its bytes nor its name. */
-  create(path: string, bytes: Uint8Array): Promise<void>;
+  /**
+   * Creates a file that must not exist yet; not safe until synced, neither its bytes nor its name. `secret`: only the person
+   * who runs the program may read it, where the system knows of such things.
+   */
+  create(path: string, bytes: Uint8Array, secret?: boolean): Promise<void>;
   syncFile(path: string): Promise<void>;
   /** Makes creations, renames and removals in a folder durable. */
   syncFolder(folder: string): Promise<void>;

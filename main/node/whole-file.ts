@@ -9,14 +9,15 @@ export const UNFINISHED = ".unfinished";
 /**
  * Writes a file whole: temporary name in the same folder, synced, renamed, folder synced. A reader, also after a power cut,
  * sees the old file or the new one.
+ * @param secret only the person who runs the program may read it.
  * @throws disk-full, write-failed
  */
-export async function writeWhole(files: FilePort, path: string, bytes: Uint8Array): Promise<void> {
+export async function writeWhole(files: FilePort, path: string, bytes: Uint8Array, secret = false): Promise<void> {
   const temporary = `${path}${UNFINISHED}`;
   try {
     files.reach("whole-file:before-write");
     await files.remove(temporary);
-    await files.create(temporary, bytes);
+    await files.create(temporary, bytes, secret);
     files.reach("whole-file:after-write");
     await files.syncFile(temporary);
     files.reach("whole-file:after-sync");

@@ -1,5 +1,5 @@
 import { dirname } from "node:path";
-import type { AppendFile, CrashPoint, FilePort, FolderEntry } from "#main/node/file-port.ts";
+import type { AppendFile, CrashPoint, FileFacts, FilePort, FolderEntry } from "#main/node/file-port.ts";
 
 /** Thrown at the crash point and by everything after it: the process is gone. */
 export class Killed extends Error {}
@@ -62,6 +62,13 @@ export class UnsyncedFiles implements FilePort {
   async read(path: string, start = 0, end?: number): Promise<Uint8Array | undefined> {
     this.#live();
     return this.#names.get(path)?.bytes.slice(start, end);
+  }
+
+  async facts(path: string): Promise<FileFacts | undefined> {
+    this.#live();
+    if (this.#folders.has(path)) return { kind: "folder", bytes: 0 };
+    const inode = this.#names.get(path);
+    return inode && { kind: "file", bytes: inode.bytes.length };
   }
 
   async list(folder: string): Promise<FolderEntry[] | undefined> {
