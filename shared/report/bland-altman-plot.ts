@@ -23,7 +23,6 @@ export interface DifferencePlot {
   readonly limits: readonly [PlotLevel, PlotLevel] | null;
 }
 
-const BAND = "#d9dee2";
 const INK = "#0b5a8a";
 
 /**
@@ -49,7 +48,7 @@ export function blandAltmanPlot({ label, heading, unit, points, bias, limits }: 
     low === null || high === null
       ? []
       : [
-          `<rect x="${frame.left}" width="${frame.right - frame.left}" y="${frame.y(high)}" height="${Math.max(0, frame.y(low) - frame.y(high)).toFixed(2)}" fill="${BAND}"/>`,
+          `<rect x="${frame.left}" width="${frame.right - frame.left}" y="${frame.y(high)}" height="${Math.max(0, frame.y(low) - frame.y(high)).toFixed(2)}" fill="#1c2126" fill-opacity="0.1"/>`,
         ],
   );
   const zero = `<line x1="${frame.left}" x2="${frame.right}" y1="${frame.y(0)}" y2="${frame.y(0)}" stroke="#8b949c" stroke-width="0.8"/>`;

@@ -21,12 +21,36 @@ caption { text-align: left; color: var(--quiet); padding-bottom: .3rem; }
 th, td { padding: .25rem .7rem; border-bottom: 1px solid var(--line); text-align: right; vertical-align: top; }
 th:first-child, td:first-child { text-align: left; padding-left: 0; }
 th { font-weight: 600; }
+tbody th { font-weight: 400; }
+thead th { vertical-align: bottom; }
+th.words, td.words { text-align: left; }
+td.whole, th.whole { white-space: nowrap; }
+.table { overflow-x: auto; margin: .75rem 0 1.25rem; }
+.table > table { margin: 0; }
+.notes { list-style: none; margin: .35rem 0 0; padding: 0; color: var(--quiet); font-size: .86em; max-width: 52rem; }
+.notes li { padding-left: 1.6em; text-indent: -1.6em; }
+.refusal { border-left: 3px double var(--ink); padding-left: .7rem; font-style: italic; }
+h3 { font-size: 1rem; margin: 1.6rem 0 .3rem; break-after: avoid; }
+nav ol { columns: 2; column-gap: 2rem; max-width: 46rem; padding-left: 1.5rem; }
+nav a { color: inherit; }
 figure { margin: 1rem 0; break-inside: avoid; }
 figcaption { color: var(--quiet); max-width: 46rem; }
 svg { max-width: 100%; height: auto; }
 .row { display: flex; flex-wrap: wrap; gap: 1.25rem; }
 @page { size: A4; margin: 16mm; }
-@media print { body { padding: 0; max-width: none; font-size: 10.5pt; } a { color: inherit; } }
+@media print {
+  body { padding: 0; max-width: none; font-size: 9.5pt; }
+  a { color: inherit; text-decoration: none; }
+  p, ul, .notes, figcaption { max-width: none; orphans: 3; widows: 3; }
+  table { font-size: 8pt; }
+  th, td { padding: .18rem .4rem; }
+  .notes { font-size: 7.5pt; }
+  .table { overflow: visible; }
+  .table.short, tr, figure, .cautions, li { break-inside: avoid; }
+  caption { break-after: avoid; }
+  thead { display: table-header-group; }
+  .row svg[width="330"] { width: 48.5%; }
+}
 `;
 
 /** A whole self-contained page: no script, no request, printable on A4, readable in greyscale. @param body HTML already escaped where it must be */

@@ -42,7 +42,7 @@ export function spreadLegend(limits: readonly [number, number, number], unit: st
   ];
   const keys = STEPS.map(
     ({ ink, width }, k) =>
-      `<line x1="${10 + k * 125}" x2="${38 + k * 125}" y1="10" y2="10" stroke="${ink}" stroke-width="${width}"/><text x="${43 + k * 125}" y="14">${words[k]}</text>`,
+      `<line x1="${10 + k * 160}" x2="${38 + k * 160}" y1="10" y2="10" stroke="${ink}" stroke-width="${width}"/><text x="${43 + k * 160}" y="14">${words[k]}</text>`,
   );
   const dashed = `<line x1="10" x2="38" y1="28" y2="28" stroke="${PARTIAL_INK}" stroke-width="2" stroke-dasharray="5 3"/><text x="43" y="32">${partial}</text>`;
   return svg("Legend of the pictures", 680, 38, keys.join("") + dashed);

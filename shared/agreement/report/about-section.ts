@@ -35,19 +35,22 @@ export function aboutSection({ study, options, context }: ReportInput): ReportSe
   return { id: "about", title: "What this is", blocks };
 }
 
-const ROLES = { first: "compared with the others", repeat: "the same annotator again", method: "a computed method" };
-
 /** Which passes there are, under which protocol, and what has to be known of them. */
 export function passesSection({ found, context }: ReportInput): ReportSection {
-  const table = new TableOf("The passes that this report rests on", [
+  const method = found.method?.method ?? null;
+  const people = [...found.annotators, ...(method === null ? [] : [method])];
+  const table = new TableOf("Passes by the day they were made", [
     { name: "specimen", words: true },
-    { name: "annotator", words: true },
-    "pass",
-    { name: "made", words: true },
-    { name: "part in this report", words: true },
+    ...people.map((name) => ({ name: name === method ? `${name} (a computed method)` : name, words: true })),
   ]);
-  for (const { specimen, annotator, pass, created, role } of found.passes)
-    table.row(specimen, annotator, String(pass), created?.slice(0, 10) ?? "not said", ROLES[role]);
+  for (const specimen of new Set(found.passes.map((pass) => pass.specimen))) {
+    const cells = people.map((name) => {
+      const own = found.passes.filter((pass) => pass.specimen === specimen && pass.annotator === name);
+      const days = own.map(({ pass, created }) => `pass ${pass}: ${created?.slice(0, 10) ?? "day not said"}`);
+      return days.length === 0 ? "not done" : days.join("; ");
+    });
+    table.row(specimen, ...cells);
+  }
   const blocks: ReportBlock[] = table.isEmpty ? [text("There is no pass.", "refusal")] : [table.table];
   const { protocol } = context;
   if (protocol) {

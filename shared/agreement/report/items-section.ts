@@ -10,7 +10,8 @@ export function itemsSection({ found, options }: ReportInput): ReportSection {
   const table = (what: string, rows: typeof items.strands, gate: number) => {
     const out = new TableOf(`${what}, matched within ${gate} mm`, [
       { name: "specimen", words: true },
-      { name: "matched", words: true },
+      "matched",
+      { name: "that is, by", words: true },
       "items in all",
       "share matched",
       "within 10 % of the gate",
@@ -19,7 +20,8 @@ export function itemsSection({ found, options }: ReportInput): ReportSection {
     for (const { specimen, title, matched, union, share, nearGateShare, indirectPairs, note, exact, reasons } of rows) {
       out.row(
         specimen,
-        `${matched} ${title}`,
+        String(matched),
+        title.replace("given that ", "").replace(" marked it", ""),
         String(union),
         out.share(share, reasons.share),
         out.share(nearGateShare, reasons.nearGateShare),

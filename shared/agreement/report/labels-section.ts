@@ -17,8 +17,10 @@ export function labelsSection({ found }: ReportInput): ReportSection {
     ),
     overview("Labels of items that both annotators marked", both),
     overview("The same, not marking an item counted as a label of its own", withAbsent),
-    ...both.flatMap(pairTable),
   ];
+  const same = both.filter((one) => differing(one).length === 0).map(({ label }) => label);
+  if (same.length > 0) blocks.push(text(`No two annotators differ on any item that both labelled in: ${same.join(", ")}.`));
+  blocks.push(...both.flatMap(pairTables));
   return { id: "labels", title, blocks };
 }
 
@@ -50,15 +52,15 @@ function overview(caption: string, list: readonly CategoricalAgreement[]) {
   return table.table;
 }
 
+/** Pairs of annotators who call at least one item differently. */
+function differing({ cohen }: CategoricalAgreement): CategoricalAgreement["cohen"] {
+  return cohen.filter(({ table }) => table.some((row, i) => row.some((count, j) => i !== j && count > 0)));
+}
+
 /** Each two annotators' kappas, and their labels against each other where they differ. */
-function pairTable({ label, cohen, ordered, categories, title }: CategoricalAgreement): ReportBlock[] {
-  if (cohen.length === 0) return [];
-  const differing = cohen.filter(({ table }) => table.some((row, i) => row.some((count, j) => i !== j && count > 0)));
-  if (differing.length === 0) {
-    const total = cohen.reduce((sum, { table }) => sum + table.flat().reduce((s, count) => s + count, 0), 0);
-    const words = total === 0 ? "no item has a label by two annotators" : "no two annotators differ on any item";
-    return [{ kind: "heading", text: label }, text(`In ${label}, ${words}.`)];
-  }
+function pairTables(one: CategoricalAgreement): ReportBlock[] {
+  const { label, cohen, ordered, categories, title } = one;
+  if (differing(one).length === 0) return [];
   const out = new TableOf(`Cohen's kappa of each two annotators on ${label}, ${title}`, [
     { name: "annotators", words: true },
     "items",
@@ -81,7 +83,7 @@ function pairTable({ label, cohen, ordered, categories, title }: CategoricalAgre
       ...(ordered ? [linear, quadratic].map((one) => out.number(one?.value, 3, one?.reasons.value)) : []),
     );
   }
-  return [{ kind: "heading", text: label }, out.table, ...differing.map((pair) => crossTable(label, categories, pair))];
+  return [{ kind: "heading", text: label }, out.table, ...differing(one).map((pair) => crossTable(label, categories, pair))];
 }
 
 function crossTable(label: string, categories: readonly string[], { a, b, table }: CategoricalAgreement["cohen"][number]) {

@@ -1,9 +1,10 @@
 import type { ReportInput } from "#shared/agreement/report/agreement-report.ts";
 import type { ReportSection } from "#shared/agreement/report/report-data.ts";
+import { text } from "#shared/agreement/report/report-text.ts";
 import { nodeTolerance } from "#shared/agreement/study/study.ts";
 
 const REFERENCES: readonly string[] = [
-  "Barnhart HX, Kosinski AS, Haber MJ. Assessing individual agreement. J Biopharm Stat 2007;17:697-719. (title and pages from memory)",
+  "Barnhart HX, Kosinski AS, Haber MJ. Assessing individual agreement. J Biopharm Stat 2007;17:697-719.",
   "Bland JM, Altman DG. Statistical methods for assessing agreement between two methods of clinical measurement. Lancet 1986;i:307-310.",
   "Bunke H, Allermann G. Inexact graph matching for structural pattern recognition. Pattern Recognit Lett 1983;1:245-253.",
   "Carkeet A. Exact parametric confidence intervals for Bland-Altman limits of agreement. Optom Vis Sci 2015;92:e71-e80.",
@@ -18,7 +19,7 @@ const REFERENCES: readonly string[] = [
   "Kottner J, et al. Guidelines for Reporting Reliability and Agreement Studies (GRRAS). J Clin Epidemiol 2011;64:96-106.",
   "Krippendorff K. Computing Krippendorff's alpha-reliability. 2011.",
   "McGraw KO, Wong SP. Forming inferences about some intraclass correlation coefficients. Psychol Methods 1996;1:30-46, erratum 1:390.",
-  "Obuchowski NA, et al. On individual agreement of a method with readers. 2014. (title from memory)",
+  "Obuchowski NA, et al. 2014, on the individual agreement of a computed method with readers (gamma; where it appeared is not at hand).",
   "Schaap M, et al. Standardized evaluation methodology for coronary artery centerline extraction. Med Image Anal 2009;13:701-714.",
   "Shrout PE, Fleiss JL. Intraclass correlations: uses in assessing rater reliability. Psychol Bull 1979;86:420-428.",
   "de Vet HCW, et al. When to use agreement versus reliability measures. J Clin Epidemiol 2006;59:1033-1039.",
@@ -45,7 +46,7 @@ export function methodsSection({ options, context }: ReportInput): ReportSection
     "Labels: Cohen's kappa with the Fleiss-Cohen-Everitt standard error, plain, linear and quadratic; Fleiss' kappa; Krippendorff's alpha; Gwet's AC1 and AC2.",
     "Detection: positive agreement alone; capture and recapture after Darroch 1958; rates by expectation-maximisation (Warfield et al. 2004) only with three annotators and candidates that all were shown and all declined.",
     "Method against annotators: D and gamma over specimens with t intervals, from five specimens on; a verdict only against a margin set beforehand (Obuchowski et al. 2014; Barnhart et al. 2007).",
-    `Everything that is drawn at random is drawn from the seed ${options.seed}; the same passes give the same report. The order of the files changes nothing.`,
+    `Everything that is drawn at random is drawn from the seed ${options.seed}; the same passes give the same numbers. The order of the files changes nothing.`,
     `Computed by ${context.software.name} ${context.software.version}. Item table in long form: items.csv (a row for each item and pass, also where the pass has none of it).`,
   ];
   return {
@@ -55,6 +56,7 @@ export function methodsSection({ options, context }: ReportInput): ReportSection
       { kind: "list", items },
       { kind: "heading", text: "Sources" },
       { kind: "list", items: REFERENCES },
+      text("Titles of these sources are from memory.", "quiet"),
     ],
   };
 }

@@ -1,12 +1,19 @@
 import type { AgreementReport, ReportBlock, ReportSection, ReportTable } from "#shared/agreement/report/report-data.ts";
 import { escapeHtml, htmlPage } from "#shared/report/html-page.ts";
 
+/** Tables of at most this many rows stay on one printed page. */
+const SHORT_TABLE = 16;
+/** Columns whose cells are all at most this long are not broken into lines. */
+const WHOLE_CELL = 16;
+
 /** The report as one self-contained HTML page: no script, no request, printable on A4, readable in greyscale. */
 export function renderReportHtml(report: AgreementReport): string {
   const contents = report.sections.map(({ id, title }) => `<li><a href="#${id}">${escapeHtml(title)}</a></li>`).join("");
   const head = `<h1>${escapeHtml(report.title)}</h1>\n<p class="quiet">${escapeHtml(report.subtitle)}</p>`;
-  const body = report.sections.map(renderSection).join("\n");
-  return htmlPage(report.title, `${head}\n<nav aria-label="Contents"><ol>${contents}</ol></nav>\n${body}`);
+  const [first, ...others] = report.sections.map(renderSection);
+  // The cautions and what this is come before everything, the list of contents included.
+  const nav = `<nav aria-label="Contents"><h2>Contents</h2><ol>${contents}</ol></nav>`;
+  return htmlPage(report.title, [head, first ?? "", nav, ...others].join("\n"));
 }
 
 function renderSection({ id, title, blocks }: ReportSection): string {
@@ -31,8 +38,12 @@ function renderBlock(block: ReportBlock): string {
 }
 
 function renderTable({ caption, columns, rows, notes }: ReportTable): string {
-  const side = (k: number) => (columns[k]?.words ? ' class="words"' : "");
-  const head = columns.map(({ name }, k) => `<th scope="col"${side(k)}>${escapeHtml(name)}</th>`).join("");
+  const isShort = columns.map((_, k) => rows.every((row) => (row[k] ?? "").length <= WHOLE_CELL));
+  const side = (k: number, isHead = false) => {
+    const names = [...(columns[k]?.words ? ["words"] : []), ...(isShort[k] && !isHead ? ["whole"] : [])];
+    return names.length > 0 ? ` class="${names.join(" ")}"` : "";
+  };
+  const head = columns.map(({ name }, k) => `<th scope="col"${side(k, true)}>${escapeHtml(name)}</th>`).join("");
   const body = rows
     .map((row) => {
       const cells = row.map((cell, k) =>
@@ -42,5 +53,5 @@ function renderTable({ caption, columns, rows, notes }: ReportTable): string {
     })
     .join("\n");
   const under = notes.length > 0 ? `<ul class="notes">${notes.map((note) => `<li>${escapeHtml(note)}</li>`).join("")}</ul>` : "";
-  return `<div class="table"><table><caption>${escapeHtml(caption)}</caption><thead><tr>${head}</tr></thead><tbody>\n${body}\n</tbody></table>${under}</div>`;
+  return `<div class="table${rows.length <= SHORT_TABLE ? " short" : ""}"><table><caption>${escapeHtml(caption)}</caption><thead><tr>${head}</tr></thead><tbody>\n${body}\n</tbody></table>${under}</div>`;
 }

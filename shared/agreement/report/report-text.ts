@@ -60,7 +60,7 @@ export class TableOf {
   marked(words: string, sentence: string): string {
     let k = this.#marked.indexOf(sentence);
     if (k < 0) k = this.#marked.push(sentence) - 1;
-    return `${words} ${markOf(k)}`;
+    return `${words}\u00a0${markOf(k)}`;
   }
 
   /** A number, or "not given" with the mark of its reason. */

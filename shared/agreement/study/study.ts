@@ -136,12 +136,19 @@ function specimenNames(files: readonly StudyFile[], warnings: string[]): Map<str
   }
   if (silent.length > 0)
     warnings.push(
-      `Without the hash of their voxels, taken by the name of their scan alone: ${silent.sort(compareIds).join(", ")}.`,
+      `Without the hash of their voxels, taken by the name of their scan alone: ${someNames(silent.sort(compareIds))}.`,
     );
   for (const [specimen, hashes] of hashesOf)
     if (hashes.size > 1)
       warnings.push(`Passes over ${specimen} were drawn on ${hashes.size} different scans (voxel hashes differ).`);
   return out;
+}
+
+const NAMES_SHOWN = 6;
+
+function someNames(names: readonly string[]): string {
+  const more = names.length - NAMES_SHOWN;
+  return names.slice(0, NAMES_SHOWN).join(", ") + (more > 0 ? ` and ${more} more` : "");
 }
 
 function refuseOtherFrames(passes: readonly StudyPass[]): void {
