@@ -10,7 +10,8 @@ export function bridgeActions(window: BrowserWindow): BridgeActions {
   return {
     async pickScan({ folder }) {
       const properties: ("openFile" | "openDirectory")[] = folder ? ["openDirectory"] : ["openFile"];
-      const { canceled, filePaths } = await dialog.showOpenDialog(window, { title: "Add a scan", properties });
+      const title = folder ? "Choose a folder" : "Choose a file";
+      const { canceled, filePaths } = await dialog.showOpenDialog(window, { title, properties });
       return canceled ? null : (filePaths[0] ?? null);
     },
     async pickSavePath({ suggestedName }) {

@@ -1,8 +1,10 @@
 import { useEffect, useState } from "preact/hooks";
 import { Sheet } from "#renderer/app/sheet.tsx";
+import type { WantedPath } from "#renderer/client/loopback-capabilities.ts";
 import type { FolderAnswer } from "#shared/api/routes.ts";
 
 export interface FolderDialogProps {
+  readonly wanted: WantedPath;
   readonly list: (path?: string) => Promise<FolderAnswer>;
   /** The chosen file or folder; null = closed without a choice. */
   readonly done: (path: string | null) => void;
@@ -20,8 +22,17 @@ function sizeText(bytes: number): string {
   return `${unit === 0 ? value : value.toFixed(1)} ${units[unit]}`;
 }
 
-/** Choosing a scan on this computer where the shell has no dialog of its own: a path to type, and folders to walk. */
-export function FolderDialog({ list, done }: FolderDialogProps) {
+const WORDS: Readonly<Record<WantedPath, { readonly title: string; readonly label: string }>> = {
+  scan: {
+    title: "Choose a scan on this computer",
+    label: "Path of the file, or of the folder for a stack of slices or an OME-Zarr store",
+  },
+  packet: { title: "Choose a packet on this computer", label: "Path of the zip file, or of the packet's folder" },
+  folder: { title: "Choose a folder on this computer", label: "Path of the folder" },
+};
+
+/** Choosing a file or folder on this computer where the shell has no dialog of its own: a path to type, and folders to walk. */
+export function FolderDialog({ wanted, list, done }: FolderDialogProps) {
   const [folder, setFolder] = useState<FolderAnswer | null>(null);
   const [typed, setTyped] = useState("");
   const [failure, setFailure] = useState<string | null>(null);
@@ -38,6 +49,7 @@ export function FolderDialog({ list, done }: FolderDialogProps) {
   };
   useEffect(() => void show(), []);
 
+  const shown = folder?.entries.filter((entry) => entry.folder || wanted !== "folder") ?? [];
   const foot = (
     <>
       <button type="button" class="button" onClick={() => done(null)}>
@@ -49,7 +61,7 @@ export function FolderDialog({ list, done }: FolderDialogProps) {
     </>
   );
   return (
-    <Sheet title="Choose a scan on this computer" close={() => done(null)} foot={foot} kind="folder-sheet">
+    <Sheet title={WORDS[wanted].title} close={() => done(null)} foot={foot} kind="folder-sheet">
       <form
         id="folder-form"
         onSubmit={(event) => {
@@ -58,7 +70,7 @@ export function FolderDialog({ list, done }: FolderDialogProps) {
         }}
       >
         <label class="stacked">
-          <span>Path of the file, or of the folder for a stack of slices or an OME-Zarr store</span>
+          <span>{WORDS[wanted].label}</span>
           <input
             class="field figures"
             value={typed}
@@ -80,7 +92,7 @@ export function FolderDialog({ list, done }: FolderDialogProps) {
             </button>
           </li>
         )}
-        {folder?.entries.map((entry) => (
+        {shown.map((entry) => (
           <li key={entry.path}>
             <button
               type="button"

@@ -2,12 +2,12 @@ import "#renderer/app/theme.css";
 import "#renderer/app/app.css";
 import { signal } from "@preact/signals";
 import { render } from "preact";
-import { App } from "#renderer/app/app.tsx";
+import { App, type PathQuestion } from "#renderer/app/app.tsx";
 import { Notices } from "#renderer/app/notices.ts";
 import { fragmentOf } from "#renderer/app/place.ts";
 import { startTheme } from "#renderer/app/theme-choice.ts";
 import { Client } from "#renderer/client/client.ts";
-import { loopbackCapabilities } from "#renderer/client/loopback-capabilities.ts";
+import { loopbackCapabilities, type WantedPath } from "#renderer/client/loopback-capabilities.ts";
 import { takePageToken } from "#renderer/client/page-token.ts";
 import { BRIDGE_NAME, type Bridge, desktopCapabilities } from "#shared/api/bridge.ts";
 
@@ -19,17 +19,18 @@ const client = new Client({
   token: takePageToken(window),
   window: crypto.randomUUID().replaceAll("-", "").slice(0, 20),
 });
-const scanQuestion = signal<((path: string | null) => void) | null>(null);
-const askForScan = () =>
+const pathQuestion = signal<PathQuestion | null>(null);
+const askForPath = (wanted: WantedPath) =>
   new Promise<string | null>((resolve) => {
-    scanQuestion.value = (path) => {
-      scanQuestion.value = null;
+    const answer = (path: string | null) => {
+      pathQuestion.value = null;
       resolve(path);
     };
+    pathQuestion.value = { wanted, answer };
   });
 // The one place where the shells part.
 const bridge = (window as { [BRIDGE_NAME]?: Bridge })[BRIDGE_NAME];
-const capabilities = bridge === undefined ? loopbackCapabilities(askForScan) : desktopCapabilities(bridge);
+const capabilities = bridge === undefined ? loopbackCapabilities(askForPath) : desktopCapabilities(bridge);
 
 const services = {
   client,
@@ -45,4 +46,4 @@ addEventListener("hashchange", () => {
   if (location.hash.includes("token=")) location.reload();
 });
 addEventListener("pagehide", () => client.bye());
-render(<App services={services} scanQuestion={scanQuestion} />, document.getElementById("app")!);
+render(<App services={services} pathQuestion={pathQuestion} />, document.getElementById("app")!);

@@ -2,7 +2,12 @@
 export type Place =
   | { readonly screen: "shelf" }
   | { readonly screen: "desk"; readonly specimen: string; readonly pass: string }
-  | { readonly screen: "side-by-side"; readonly specimen: string; readonly a: string; readonly b: string };
+  | { readonly screen: "side-by-side"; readonly specimen: string; readonly a: string; readonly b: string }
+  | { readonly screen: "study"; readonly study: string; readonly part: StudyPart };
+
+/** The parts of a study's screen. */
+export const STUDY_PARTS = ["passes", "protocol", "planning", "effort", "report"] as const;
+export type StudyPart = (typeof STUDY_PARTS)[number];
 
 /** The fragment that names a place. */
 export function fragmentOf(place: Place): string {
@@ -13,6 +18,8 @@ export function fragmentOf(place: Place): string {
       return path("desk", place.specimen, place.pass);
     case "side-by-side":
       return path("side-by-side", place.specimen, place.a, place.b);
+    case "study":
+      return path("study", place.study, place.part);
   }
 }
 
@@ -20,10 +27,17 @@ export function fragmentOf(place: Place): string {
 export function placeOf(fragment: string): Place {
   const parts = partsOf(fragment);
   const [screen, specimen, first, second] = parts;
+  if (screen === "study") return studyPlace(parts);
   if (parts.some((part) => part === "") || specimen === undefined || first === undefined) return { screen: "shelf" };
   if (screen === "desk" && parts.length === 3) return { screen, specimen, pass: first };
   if (screen === "side-by-side" && parts.length === 4) return { screen, specimen, a: first, b: second! };
   return { screen: "shelf" };
+}
+
+function studyPlace([, study, named = "passes", ...more]: readonly string[]): Place {
+  const part = STUDY_PARTS.find((one) => one === named);
+  if (study === undefined || study === "" || part === undefined || more.length > 0) return { screen: "shelf" };
+  return { screen: "study", study, part };
 }
 
 function path(...parts: readonly string[]): string {

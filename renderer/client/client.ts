@@ -2,6 +2,7 @@ import { type ConnectionState, keepEventStream } from "#renderer/client/event-st
 import { type Newest, NewestWins } from "#renderer/client/newest-wins.ts";
 import { RequestGate } from "#renderer/client/request-gate.ts";
 import { type Fetch, type Sending, sendRequest } from "#renderer/client/send-request.ts";
+import { StudyRequests } from "#renderer/client/study-requests.ts";
 import type {
   FilmHeader,
   FilmRequest,
@@ -90,6 +91,13 @@ export class Client {
   removeSpecimen = (specimen: string, force = false): Promise<unknown> =>
     this.json("removeSpecimen", { params: { specimen }, body: { force } });
   picture = (specimen: string): Promise<BinaryFrame<SectionHeader>> => this.frame("picture", { params: { specimen } });
+
+  // --- studies, packets, assignments ---------------------------------------------------------------------------------
+  readonly studies = new StudyRequests({
+    json: (name, sending) => this.json(name, sending),
+    blob: (name, sending) =>
+      this.gate.pass(RANK.plain, async () => (await sendRequest(this.places.fetch, this.places.token, name, sending)).blob()),
+  });
 
   // --- passes ------------------------------------------------------------------------------------------------------
   createPass = (specimen: string, annotator: string): Promise<PassSummary> =>

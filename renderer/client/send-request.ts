@@ -6,6 +6,8 @@ export interface Sending {
   readonly params?: Readonly<Record<string, string>>;
   readonly query?: Readonly<Record<string, string>>;
   readonly body?: unknown;
+  /** A body that is a file's bytes; instead of `body`. */
+  readonly bytes?: Blob;
   readonly signal?: AbortSignal;
   /** Lets the request outlive the page (for the farewell). */
   readonly keepalive?: boolean;
@@ -39,6 +41,10 @@ export async function sendRequest(fetch: Fetch, token: string, name: RouteName, 
   if (sending.body !== undefined) {
     headers["content-type"] = "application/json";
     init.body = JSON.stringify(sending.body);
+  }
+  if (sending.bytes !== undefined) {
+    headers["content-type"] = "application/octet-stream";
+    init.body = sending.bytes;
   }
   if (sending.signal) init.signal = sending.signal;
   if (sending.keepalive) init.keepalive = true;

@@ -4,7 +4,7 @@ import { decodeError, type ErrorBody } from "#shared/errors.ts";
 
 /** Every call of the page to the desktop shell: name -> argument and result. One object in, one promise out. */
 export interface BridgeCalls {
-  /** The system's dialog for a scan's file or folder; null = the person changed their mind. */
+  /** The system's dialog for a file (of a scan, a packet) or a folder; null = the person changed their mind. */
   pickScan: { readonly argument: { readonly folder: boolean }; readonly result: string | null };
   /** The system's dialog for where to save. */
   pickSavePath: { readonly argument: { readonly suggestedName: string }; readonly result: string | null };
@@ -51,6 +51,8 @@ export function desktopCapabilities(bridge: Bridge): Capabilities {
   return {
     shell: "electron",
     pickScan: async () => valueOfReply(await bridge.pickScan({ folder: false })),
+    pickPacket: async () => valueOfReply(await bridge.pickScan({ folder: false })),
+    pickFolder: async () => valueOfReply(await bridge.pickScan({ folder: true })),
     pickSavePath: async (suggestedName) => valueOfReply(await bridge.pickSavePath({ suggestedName })),
     pathOfDropped: (file) => bridge.pathOfDropped(file) || null,
     showInFolder: async (path) => void valueOfReply(await bridge.showInFolder({ path })),

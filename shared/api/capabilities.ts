@@ -5,6 +5,10 @@ export interface Capabilities {
   readonly shell: "electron" | "loopback";
   /** Asks the person for a scan (file or folder) on this computer; null = they changed their mind. */
   pickScan(): Promise<string | null>;
+  /** Asks the person for a packet (zip file or folder) on this computer; null = they changed their mind. */
+  pickPacket(): Promise<string | null>;
+  /** Asks the person for a folder on this computer; null = they changed their mind. */
+  pickFolder(): Promise<string | null>;
   /** Asks where to save; null = cancelled; "download" = the page offers the bytes itself. */
   pickSavePath(suggestedName: string): Promise<string | "download" | null>;
   /** Path of a dropped file; null when the shell cannot know it. */

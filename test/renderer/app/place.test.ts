@@ -7,8 +7,13 @@ describe("places in the address", () => {
       { screen: "shelf" },
       { screen: "desk", specimen: "a b/c", pass: "p#1" },
       { screen: "side-by-side", specimen: "a", a: "p#1", b: "file~x y.json" },
+      { screen: "study", study: "s/1", part: "report" },
     ];
     for (const place of places) expect(placeOf(fragmentOf(place))).toEqual(place);
+  });
+
+  it("name the passes of a study when they name no part", () => {
+    expect(placeOf("#/study/s1")).toEqual({ screen: "study", study: "s1", part: "passes" });
   });
 
   it("are the shelf for anything else", () => {
@@ -21,6 +26,10 @@ describe("places in the address", () => {
       "#/desk//b",
       "#/side-by-side/a/b",
       "#/side-by-side/a/b/c/d",
+      "#/study",
+      "#/study/",
+      "#/study/s1/other",
+      "#/study/s1/report/more",
     ])
       expect(placeOf(fragment)).toEqual({ screen: "shelf" });
   });

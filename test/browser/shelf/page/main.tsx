@@ -6,9 +6,10 @@ import { Notices } from "#renderer/app/notices.ts";
 import type { Services } from "#renderer/app/services.ts";
 import { setTheme } from "#renderer/app/theme-choice.ts";
 import { Shelf } from "#renderer/shelf/shelf.tsx";
+import type { ProjectionsRequest } from "#shared/api/projections.ts";
 import type { IntakeRequest, JobState, ServerEvent } from "#shared/api/routes.ts";
 import { TautlineError } from "#shared/errors.ts";
-import { lookOf, passOf, shelfOfTwo, sliceOf } from "#test/browser/shelf/page/made-up-shelf.ts";
+import { extrasOf, lookOf, passOf, projectionsOf, shelfOfTwo, sliceOf } from "#test/browser/shelf/page/made-up-shelf.ts";
 
 // A page for tests only: the shelf over a server that is played here; `window.shelf` says what it was asked.
 const query = new URLSearchParams(location.search);
@@ -60,8 +61,18 @@ const client = {
         { file, expected, found },
       );
     }
-    return lookOf(!path.includes("bare"));
+    return { ...lookOf(!path.includes("bare")), ...extrasOf(path) };
   },
+  startProjections: async (request: ProjectionsRequest) => {
+    asked.push({ what: "projections", detail: request });
+    const look = (change: Partial<JobState>) => job({ id: "look-1", what: "look", ...change });
+    setTimeout(() => {
+      look({ progress: 0.4, step: "Looking through the scan", secondsLeft: 8 });
+      if (!request.path.includes("slow")) look({ state: "done", progress: 1 });
+    });
+    return { job: "look-1" };
+  },
+  projections: async () => projectionsOf(),
   startIntake: async (request: IntakeRequest) => {
     asked.push({ what: "intake", detail: request });
     return { job: "intake-1" };

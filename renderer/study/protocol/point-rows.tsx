@@ -1,0 +1,149 @@
+import { useEffect, useRef, useState } from "preact/hooks";
+import type { PointRule } from "#shared/study/protocol.ts";
+
+export interface PointRowsProps {
+  readonly points: readonly PointRule[];
+  readonly set: (points: readonly PointRule[]) => void;
+  /** Keeps a picture with the study and gives its hash; rejects with a sentence when it is none. */
+  readonly keepPicture: (file: File) => Promise<string>;
+  /** A kept picture as a PNG. */
+  readonly readPicture: (sha256: string) => Promise<Blob>;
+  readonly failed: (error: unknown) => void;
+  readonly disabled: boolean;
+}
+
+/** Points that every protocol says something about. */
+const ALWAYS = ["origin", "insertion", "fork"];
+
+/** Where exactly a point is set: a sentence and a still picture for each. */
+export function PointRows({ points, set, keepPicture, readPicture, failed, disabled }: PointRowsProps) {
+  const change = (k: number, part: Partial<PointRule>) => set(points.map((rule, i) => (i === k ? { ...rule, ...part } : rule)));
+  const choose = async (k: number, file: File | undefined) => {
+    if (file === undefined) return;
+    try {
+      change(k, { picture: await keepPicture(file) });
+    } catch (error) {
+      failed(error);
+    }
+  };
+  return (
+    <div class="study-rows">
+      {points.map((rule, k) => (
+        <div
+          key={`${k} of ${points.length}`}
+          class="study-row point-row"
+          role="group"
+          aria-label={`Rule for the ${rule.point || "new point"}`}
+        >
+          {ALWAYS.includes(rule.point) ? (
+            <h4>{rule.point}</h4>
+          ) : (
+            <label class="stacked">
+              <span>Point</span>
+              <input
+                class="field"
+                value={rule.point}
+                maxLength={40}
+                disabled={disabled}
+                onInput={(event) => change(k, { point: event.currentTarget.value })}
+              />
+            </label>
+          )}
+          <label class="stacked">
+            <span>is set at</span>
+            <textarea
+              class="field"
+              rows={3}
+              value={rule.text}
+              maxLength={1000}
+              disabled={disabled}
+              onInput={(event) => change(k, { text: event.currentTarget.value })}
+            />
+          </label>
+          <div class="point-still">
+            {rule.picture === null ? (
+              <p class="soft">no still picture</p>
+            ) : (
+              <Still sha256={rule.picture} read={readPicture} label={`Still picture: ${rule.point}`} />
+            )}
+            {disabled ? null : (
+              <div class="row">
+                <label class="button still-choice">
+                  {rule.picture === null ? "Choose a picture" : "Another picture"}
+                  <input
+                    class="unseen"
+                    type="file"
+                    accept="image/png"
+                    aria-label={`Still picture for the ${rule.point || "point"} (PNG)`}
+                    onChange={(event) => void choose(k, event.currentTarget.files?.[0])}
+                  />
+                </label>
+                {rule.picture === null ? null : (
+                  <button type="button" class="button plain" onClick={() => change(k, { picture: null })}>
+                    Without<span class="unseen"> a picture for the {rule.point}</span>
+                  </button>
+                )}
+                {ALWAYS.includes(rule.point) ? null : (
+                  <button type="button" class="button plain" onClick={() => set(points.filter((_, i) => i !== k))}>
+                    Take out<span class="unseen"> the rule for {rule.point}</span>
+                  </button>
+                )}
+              </div>
+            )}
+          </div>
+        </div>
+      ))}
+      {disabled ? null : (
+        <div>
+          <button type="button" class="button" onClick={() => set([...points, { point: "", text: "", picture: null }])}>
+            Add a rule
+          </button>
+        </div>
+      )}
+    </div>
+  );
+}
+
+function Still({
+  sha256,
+  read,
+  label,
+}: {
+  readonly sha256: string;
+  readonly read: PointRowsProps["readPicture"];
+  readonly label: string;
+}) {
+  // Drawn, since a page may show no addresses but its own, and the picture needs the run's token.
+  const canvas = useRef<HTMLCanvasElement>(null);
+  const [state, setState] = useState<"reading" | "shown" | "missing">("reading");
+  useEffect(() => {
+    let gone = false;
+    setState("reading");
+    read(sha256)
+      .then((blob) => createImageBitmap(blob))
+      .then((picture) => {
+        if (!gone && canvas.current !== null) {
+          canvas.current.width = picture.width;
+          canvas.current.height = picture.height;
+          canvas.current.getContext("2d")?.drawImage(picture, 0, 0);
+          setState("shown");
+        }
+        picture.close();
+      })
+      // The rule stands without its picture; the row says that it is missing.
+      .catch(() => !gone && setState("missing"));
+    return () => {
+      gone = true;
+    };
+  }, [sha256, read]);
+  return (
+    <>
+      {state === "shown" ? null : (
+        <p class={state === "missing" ? "warn" : "soft"}>
+          {state === "missing" ? "The picture cannot be read." : "reading the picture"}
+        </p>
+      )}
+      <canvas ref={canvas} class="still" role="img" aria-label={label} hidden={state !== "shown"} />
+    </>
+  );
+}
