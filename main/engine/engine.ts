@@ -15,7 +15,7 @@ import {
   checkTicket,
   checkWhole,
 } from "#main/engine/check-request.ts";
-import { DEFAULT_MEMORY_MB, planMemory, shareOut } from "#main/engine/memory-plan.ts";
+import { DEFAULT_MEMORY_MB, MOST_THREADS, planMemory, shareOut } from "#main/engine/memory-plan.ts";
 import { createRidgeMemory } from "#main/engine/ridge-store.ts";
 import type { EngineTasks, GuideRef, StoreRef, TaskKind } from "#main/engine/tasks.ts";
 import { WorkerPool } from "#main/engine/worker-pool.ts";
@@ -35,7 +35,7 @@ export interface EngineOptions {
   readonly memoryBytes?: number;
   /** For tests: most memory for bricks, ridge tiles and fronts together, instead of what `memoryBytes` leaves for them. */
   readonly cacheBytes?: number;
-  /** Threads; as many as there are cores when not given, and then never fewer than three; two are the least. */
+  /** Threads; as many as there are cores when not given, and then three or four; two are the least. */
   readonly workers?: number;
 }
 
@@ -74,11 +74,12 @@ interface OpenSession {
  * cores as well: a solve of a second or more must not stop the guide, and the system shares the cores fairly.
  */
 export function createEngine(options: EngineOptions): LocalEngine {
-  const workers = Math.min(Math.max(options.workers ?? Math.max(availableParallelism(), LEAST_THREADS), 2), MOST_WORKERS);
+  const usual = Math.min(Math.max(availableParallelism(), LEAST_THREADS), MOST_THREADS);
+  const workers = Math.min(Math.max(options.workers ?? usual, 2), MOST_WORKERS);
   const alone = workers > 2;
   const tracing = alone ? 2 : 1;
   const limit = options.memoryBytes ?? DEFAULT_MEMORY_MB * 2 ** 20;
-  const plan = options.cacheBytes === undefined ? planMemory(limit, tracing) : shareOut(options.cacheBytes, tracing);
+  const plan = options.cacheBytes === undefined ? planMemory(limit, workers, tracing) : shareOut(options.cacheBytes, tracing);
   const memory = createCacheMemory(plan.bricks, workers);
   const calls = Calls.forWorkers(workers);
   const guide = [0];

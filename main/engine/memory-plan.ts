@@ -8,10 +8,14 @@ export const DEFAULT_MEMORY_MB = 512;
 export const LEAST_MEMORY_MB = 384;
 export const MOST_MEMORY_MB = 65_536;
 
-/** What is not the engine's to choose: the program's code and heap, and those of its threads, with answers under way. */
-const RUNTIME_BYTES = 150 * MB;
+/** What is not the engine's to choose: the program's code and heap with answers under way, and those of each thread. */
+const PROGRAM_BYTES = 70 * MB;
+const THREAD_BYTES = 16 * MB;
 /** A solve's boxes: what it needs follows from its pins, never from a setting, so that the same pins give the same curve. */
-const SOLVE_BYTES = 110 * MB;
+const SOLVE_BYTES = 150 * MB;
+
+/** Threads that are started by themselves: one to guide, one to solve, two to show. More would take memory and bring little. */
+export const MOST_THREADS = 4;
 
 /** How a limit is shared out, bytes. */
 export interface MemoryPlan {
@@ -33,11 +37,11 @@ const FRONTS = 0.28;
 
 /**
  * Shares a limit on the whole resident memory of the program (while nothing is being taken in) among what the engine keeps.
- * @param limitBytes at least {@link LEAST_MEMORY_MB}.
+ * @param limitBytes at least {@link LEAST_MEMORY_MB}. @param threads at most {@link MOST_THREADS}.
  * @param tracing threads that guide or solve.
  */
-export function planMemory(limitBytes: number, tracing: number): MemoryPlan {
-  return shareOut(limitBytes - RUNTIME_BYTES - SOLVE_BYTES, tracing);
+export function planMemory(limitBytes: number, threads: number, tracing: number): MemoryPlan {
+  return shareOut(limitBytes - PROGRAM_BYTES - threads * THREAD_BYTES - SOLVE_BYTES, tracing);
 }
 
 /** Shares out what may be kept, without the rest of the program. */

@@ -9,8 +9,11 @@ import type { StopSignal, TraceContext } from "#shared/tracing/trace-context.ts"
 
 /** Most voxels of a box; its arrays are touched only where the fronts go. */
 const MOST_BOX_VOXELS = 24 * 2 ** 20;
-/** Most voxels that the two fronts of one leg settle. */
-const MOST_SETTLED = 4_000_000;
+/**
+ * Most voxels that the two fronts of one leg settle: a string takes well below a million, the rest is a flood where there is
+ * none. It bounds a solve's memory as well: some 70 bytes a voxel become resident, with the pages that are touched in part.
+ */
+const MOST_SETTLED = 2_000_000;
 /** Distance of the waypoints through which a path found on a coarser level is followed on the finer one. */
 const WINDOW_MM = 2.5;
 
