@@ -111,6 +111,7 @@ export const intakeRequest: Shape<IntakeRequest> = object({
   handedness,
   mirror: optional(flag),
   region: optional(region),
+  keep: optional(oneOf("plain", "packed", "in-place")),
   polarity,
   facts,
 });

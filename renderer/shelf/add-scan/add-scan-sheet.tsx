@@ -2,13 +2,15 @@ import { useEffect, useRef, useState } from "preact/hooks";
 import { Sheet } from "#renderer/app/sheet.tsx";
 import type { Client } from "#renderer/client/client.ts";
 import { ConfirmForm } from "#renderer/shelf/add-scan/confirm-form.tsx";
-import { draftOf, intakeOf, type ScanDraft } from "#renderer/shelf/add-scan/scan-draft.ts";
+import { type LookClient, LookThrough } from "#renderer/shelf/add-scan/look-through.ts";
+import { draftOf, intakeOf, readingOf, type ScanDraft } from "#renderer/shelf/add-scan/scan-draft.ts";
 import { ScanLook } from "#renderer/shelf/add-scan/scan-look.tsx";
 import type { Capabilities } from "#shared/api/capabilities.ts";
+import type { ReadingChoice } from "#shared/api/projections.ts";
 import type { ScanLookAnswer } from "#shared/api/routes.ts";
 
 export interface AddScanSheetProps {
-  readonly client: Pick<Client, "lookAtScan" | "startIntake">;
+  readonly client: Pick<Client, "lookAtScan" | "startIntake"> & LookClient;
   readonly capabilities: Pick<Capabilities, "pickScan">;
   /** Where the scan lies, when it was dropped; empty = the person says it here. */
   readonly path: string;
@@ -30,6 +32,8 @@ export function AddScanSheet({ client, capabilities, path: given, close, begun }
   const [sending, setSending] = useState(false);
   // Answers of a file that the person has meanwhile left are dropped.
   const asked = useRef("");
+  const [through] = useState(() => new LookThrough(client));
+  useEffect(() => () => through.close(), [through]);
 
   const lookAt = async (wanted: string) => {
     const file = wanted.trim().replace(/^"(.*)"$/, "$1");
@@ -44,6 +48,7 @@ export function AddScanSheet({ client, capabilities, path: given, close, begun }
       setLook({ path: file, answer });
       setDraft(draftOf(answer.info, answer.suggestedPolarity));
       setMissing([]);
+      through.forget();
     } catch (error) {
       if (asked.current === file) setFailure(error instanceof Error ? error.message : String(error));
     } finally {
@@ -53,13 +58,37 @@ export function AddScanSheet({ client, capabilities, path: given, close, begun }
   // A dropped file is looked at once, when the sheet opens.
   useEffect(() => void lookAt(given), []);
 
+  /** Another channel or time point of the same file: the pictures change, what was filled in stays. */
+  const lookAtReading = async (reading: ReadingChoice) => {
+    if (look === null) return;
+    through.forget();
+    try {
+      const answer = await client.lookAtScan({ path: look.path, ...reading });
+      setLook((now) => (now?.path === look.path ? { ...now, answer } : now));
+    } catch (error) {
+      setMissing([error instanceof Error ? error.message : String(error)]);
+    }
+  };
+  const beginLook = (from: ScanDraft | null = draft) => {
+    if (look === null || from === null) return;
+    void through.begin({ path: look.path, polarity: from.polarity, ...readingOf(from) });
+  };
+  const changeDraft = (change: Partial<ScanDraft>) => {
+    if (draft === null) return;
+    const next = { ...draft, ...change };
+    setDraft(next);
+    if (change.channel !== undefined || change.time !== undefined) void lookAtReading(readingOf(next));
+    else if (change.polarity !== undefined && change.polarity !== draft.polarity) through.forget();
+    // Only a box needs the pictures; they are made when it is asked for.
+    if (next.part.isBox && through.shown.peek().state === "none") beginLook(next);
+  };
   const choose = async () => {
     const chosen = await capabilities.pickScan();
     if (chosen !== null) await lookAt(chosen);
   };
   const takeIn = async () => {
     if (look === null || draft === null || sending) return;
-    const order = intakeOf(look.path, look.answer.info, draft);
+    const order = intakeOf(look.path, look.answer.info, draft, look.answer.readings);
     if ("missing" in order) {
       setMissing(order.missing);
       return;
@@ -137,6 +166,7 @@ export function AddScanSheet({ client, capabilities, path: given, close, begun }
         type="button"
         class="button"
         onClick={() => {
+          through.forget();
           setLook(null);
           setDraft(null);
         }}
@@ -154,10 +184,13 @@ export function AddScanSheet({ client, capabilities, path: given, close, begun }
         <ScanLook look={look.answer} handedness={draft.handedness} />
         <ConfirmForm
           id={FORM}
-          info={look.answer.info}
+          look={look.answer}
           draft={draft}
-          change={(change) => setDraft((before) => (before === null ? before : { ...before, ...change }))}
+          change={changeDraft}
           submit={() => void takeIn()}
+          through={through.shown.value}
+          beginLook={() => beginLook()}
+          stopLook={() => through.stop()}
         />
       </div>
     </Sheet>

@@ -1,18 +1,29 @@
 import type { ComponentChildren } from "preact";
+import { KeepForm } from "#renderer/shelf/add-scan/keep-form.tsx";
+import type { LookState } from "#renderer/shelf/add-scan/look-through.ts";
+import { partOf } from "#renderer/shelf/add-scan/part-draft.ts";
+import { PartForm } from "#renderer/shelf/add-scan/part-form.tsx";
+import { ReadingForm } from "#renderer/shelf/add-scan/reading-form.tsx";
 import { needsCheck, type ScanDraft, spacingDoubts, typedSpacing } from "#renderer/shelf/add-scan/scan-draft.ts";
 import { sidesWords, spacingWords, voxelsWords } from "#renderer/shelf/words.ts";
-import type { ScanInfo } from "#shared/api/routes.ts";
+import type { ScanInfo, ScanLookAnswer } from "#shared/api/routes.ts";
 
 export interface ConfirmFormProps {
-  readonly info: ScanInfo;
+  readonly look: ScanLookAnswer;
   readonly draft: ScanDraft;
   readonly change: (change: Partial<ScanDraft>) => void;
   readonly submit: () => void;
+  readonly through: LookState;
+  readonly beginLook: () => void;
+  readonly stopLook: () => void;
   readonly id: string;
 }
 
 /** What the person confirms: name, voxel size, handedness, polarity, facts. */
-export function ConfirmForm({ info, draft, change, submit, id }: ConfirmFormProps) {
+export function ConfirmForm({ look, draft, change, submit, id, through, beginLook, stopLook }: ConfirmFormProps) {
+  const { info, readings } = look;
+  const spacing = typedSpacing(draft);
+  const part = partOf(info.size, draft.part);
   return (
     <form
       id={id}
@@ -23,6 +34,9 @@ export function ConfirmForm({ info, draft, change, submit, id }: ConfirmFormProp
       }}
     >
       <Text label="Name of the specimen" value={draft.name} set={(name) => change({ name })} />
+      {readings === undefined ? null : (
+        <ReadingForm readings={readings} channel={draft.channel} time={draft.time} change={change} />
+      )}
       <VoxelSize info={info} draft={draft} change={change} />
       <fieldset>
         <legend>Handedness</legend>
@@ -50,6 +64,27 @@ export function ConfirmForm({ info, draft, change, submit, id }: ConfirmFormProp
           darker than their surroundings
         </Choice>
       </fieldset>
+      <PartForm
+        size={info.size}
+        spacing={spacing}
+        draft={draft.part}
+        change={(next) => change({ part: { ...draft.part, ...next } })}
+        look={through}
+        beginLook={beginLook}
+        stopLook={stopLook}
+      />
+      <KeepForm
+        size={info.size}
+        dtype={info.dtype}
+        spacing={spacing}
+        region={"region" in part ? part.region : null}
+        isMirrored={draft.handedness === "mirrored"}
+        inPlace={look.inPlace}
+        keep={draft.keep}
+        change={(keep) => change({ keep })}
+        look={through}
+        beginLook={beginLook}
+      />
       <fieldset>
         <legend>Facts about the specimen, as far as known</legend>
         <div class="scan-facts">
@@ -64,7 +99,11 @@ export function ConfirmForm({ info, draft, change, submit, id }: ConfirmFormProp
   );
 }
 
-function VoxelSize({ info, draft, change }: Pick<ConfirmFormProps, "info" | "draft" | "change">) {
+interface VoxelSizeProps extends Pick<ConfirmFormProps, "draft" | "change"> {
+  readonly info: ScanInfo;
+}
+
+function VoxelSize({ info, draft, change }: VoxelSizeProps) {
   const spacing = typedSpacing(draft);
   const doubts = spacing === null ? [] : spacingDoubts(info, spacing);
   const unsettled = info.spacing === null;

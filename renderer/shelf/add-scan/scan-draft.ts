@@ -1,10 +1,13 @@
-import type { IntakeRequest, ScanInfo } from "#shared/api/routes.ts";
+import { type PartDraft, partOf, wholeDraft } from "#renderer/shelf/add-scan/part-draft.ts";
+import { isChosen } from "#renderer/shelf/add-scan/reading-form.tsx";
+import type { ReadingChoice } from "#shared/api/projections.ts";
+import type { IntakeRequest, KeptAs, ScanInfo } from "#shared/api/routes.ts";
 import type { SpecimenFacts } from "#shared/api/specimen.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { sizeXyz } from "#shared/geometry/types.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 import { toMm } from "#shared/volume/length-unit.ts";
-import { PLACELESS } from "#shared/volume/scan-header.ts";
+import { PLACELESS, type ScanReadings } from "#shared/volume/scan-header.ts";
 import { judgeSpacing } from "#shared/volume/spacing-policy.ts";
 
 export type SpacingUnit = "µm" | "mm";
@@ -26,6 +29,11 @@ export interface ScanDraft {
   readonly medium: string;
   readonly pressure: string;
   readonly state: string;
+  /** From 0; null = the person has not chosen one of several. */
+  readonly channel: number | null;
+  readonly time: number | null;
+  readonly part: PartDraft;
+  readonly keep: KeptAs;
 }
 
 /** The form as it opens: what the header settles is filled in, what it leaves open is left open. Nothing is guessed. */
@@ -44,6 +52,10 @@ export function draftOf(info: ScanInfo, polarity: Polarity): ScanDraft {
     medium: "",
     pressure: "",
     state: "",
+    channel: null,
+    time: null,
+    part: wholeDraft(info.size),
+    keep: "plain",
   };
 }
 
@@ -80,9 +92,20 @@ export function differsFromHeader(info: ScanInfo, spacing: Vec3): boolean {
   return info.spacing === null || spacing.some((mm, axis) => Math.abs(mm / info.spacing![axis]! - 1) > 1e-6);
 }
 
+/** The channel and time point that were chosen, where there are several. */
+export function readingOf({ channel, time }: Pick<ScanDraft, "channel" | "time">): ReadingChoice {
+  return { ...(channel === null ? {} : { channel }), ...(time === null ? {} : { time }) };
+}
+
 /** The request to send, or the sentences that say what is still missing. */
-export function intakeOf(path: string, info: ScanInfo, draft: ScanDraft): { request: IntakeRequest } | { missing: string[] } {
+export function intakeOf(
+  path: string,
+  info: ScanInfo,
+  draft: ScanDraft,
+  readings?: ScanReadings,
+): { request: IntakeRequest } | { missing: string[] } {
   const missing: string[] = [];
+  if (!isChosen(readings, draft.channel, draft.time)) missing.push("Choose which of the scan's volumes is taken in.");
   const name = draft.name.trim();
   if (name === "") missing.push("Give the specimen a name.");
   const spacing = typedSpacing(draft);
@@ -91,14 +114,22 @@ export function intakeOf(path: string, info: ScanInfo, draft: ScanDraft): { requ
   if (spacing !== null && needsCheck(info, spacing) && !draft.checked) missing.push("Confirm that the voxel size is right.");
   const pressure = draft.pressure.trim() === "" ? undefined : readNumber(draft.pressure);
   if (pressure === null || (pressure !== undefined && pressure < 0)) missing.push("The pressure is a number of mmHg, or empty.");
-  if (missing.length > 0 || spacing === null) return { missing };
+  const part = partOf(info.size, draft.part);
+  if ("fault" in part) missing.push(part.fault);
+  if (missing.length > 0 || spacing === null || "fault" in part) return { missing };
+  const mirror = draft.handedness === "mirrored";
+  // What cannot be used in place is copied: the form says so where it is chosen.
+  const keep = draft.keep === "in-place" && (part.region !== null || mirror) ? "plain" : draft.keep;
   return {
     request: {
       path,
+      ...readingOf(draft),
       name,
       spacing: [spacing[0], spacing[1], spacing[2]],
       handedness: draft.handedness === "unknown" ? "unknown" : "confirmed",
-      ...(draft.handedness === "mirrored" ? { mirror: true } : {}),
+      ...(mirror ? { mirror: true } : {}),
+      ...(part.region === null ? {} : { region: part.region }),
+      ...(keep === "plain" ? {} : { keep }),
       polarity: draft.polarity,
       facts: factsOf(draft, pressure ?? undefined),
     },

@@ -1,3 +1,4 @@
+import type { ProjectionsAnswer } from "#shared/api/projections.ts";
 import type { ScanLookAnswer } from "#shared/api/routes.ts";
 import type { PassSummary, ShelfSpecimen, SpecimenRecord } from "#shared/api/specimen.ts";
 import { IDENTITY3, pointMm, sizeXyz, spacingMm } from "#shared/geometry/types.ts";
@@ -83,6 +84,35 @@ export function sliceOf(side: number): { width: number; height: number; grey: Ui
     grey[i] = (ring ? 120 : dot ? 225 : 38) + ((i * 7919) % 13);
   }
   return { width: side, height: side, grey };
+}
+
+/** Three projections of the made-up scan of 1040 x 1040 x 1310 voxels. */
+export function projectionsOf(): ProjectionsAnswer {
+  const picture = (height: number) => {
+    const { grey } = sliceOf(208);
+    const tall = Uint8Array.from(
+      { length: 208 * height },
+      (_, i) => grey[Math.floor((Math.floor(i / 208) * 208) / height) * 208 + (i % 208)]!,
+    );
+    return {
+      width: 208,
+      height,
+      data: btoa(String.fromCharCode(...tall.subarray(0, 40_000)) + String.fromCharCode(...tall.subarray(40_000))),
+    };
+  };
+  const packing = { ratio: 0.71, unpackMs: 0.5, packedBytesPerSecond: 6e7, bricks: 108 };
+  return { alongZ: picture(208), alongY: picture(262), alongX: picture(262), slices: 124, of: 1310, packing };
+}
+
+/** What some made-up scans have besides. */
+export function extrasOf(path: string): Partial<ScanLookAnswer> {
+  if (path.includes("several")) return { readings: { channels: 3, times: 1 } };
+  if (path.includes("store")) return { inPlace: { fits: true } };
+  if (path.includes("blosc"))
+    return {
+      inPlace: { fits: false, why: "its chunks are packed with blosc; plain, gzip and zlib chunks can be read in place." },
+    };
+  return {};
 }
 
 /** @param settled whether the header gives a voxel size with a unit */

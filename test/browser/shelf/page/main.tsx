@@ -7,7 +7,7 @@ import type { Services } from "#renderer/app/services.ts";
 import { setTheme } from "#renderer/app/theme-choice.ts";
 import { Shelf } from "#renderer/shelf/shelf.tsx";
 import type { ProjectionsRequest } from "#shared/api/projections.ts";
-import type { IntakeRequest, JobState, ServerEvent } from "#shared/api/routes.ts";
+import type { IntakeRequest, JobState, LookRequest, ServerEvent } from "#shared/api/routes.ts";
 import { TautlineError } from "#shared/errors.ts";
 import { extrasOf, lookOf, passOf, projectionsOf, shelfOfTwo, sliceOf } from "#test/browser/shelf/page/made-up-shelf.ts";
 
@@ -49,10 +49,12 @@ const client = {
     return () => listeners.delete(listener);
   },
   openDemo: async () => ({ job: "demo-1" }),
+  studies: { all: async () => (query.has("studies") ? studiesOfTwo() : { studies: [], assignments: [], problems: [] }) },
   cancelJob: async (job: string) => asked.push({ what: "cancel", detail: job }),
   hello: async () => ({ name: "Tautline", version: "0.1.0", shell: "loopback", library: "/data/library" }),
-  lookAtScan: async ({ path }: { path: string }) => {
-    asked.push({ what: "look", detail: path });
+  lookAtScan: async (request: LookRequest) => {
+    const { path } = request;
+    asked.push({ what: "look", detail: request });
     if (path.includes("wrong")) {
       const [file, expected, found] = [path, "the magic NRRD0001 to NRRD0006", "'GIF89a'"];
       throw new TautlineError(
