@@ -1,6 +1,7 @@
 import { type ReadonlySignal, signal } from "@preact/signals";
 import type { Client } from "#renderer/client/client.ts";
 import type { JobState, ShelfAnswer } from "#shared/api/routes.ts";
+import type { StudiesAnswer } from "#shared/api/study.ts";
 
 /** Where the shelf's messages go. */
 export interface ShelfMessages {
@@ -9,11 +10,14 @@ export interface ShelfMessages {
 }
 
 /** What the shelf asks of the server. */
-export type ShelfClient = Pick<Client, "shelf" | "onEvent" | "openDemo" | "cancelJob">;
+export type ShelfClient = Pick<Client, "shelf" | "onEvent" | "openDemo" | "cancelJob"> & {
+  readonly studies: Pick<Client["studies"], "all">;
+};
 
 /** The shelf's contents and running jobs, kept up to date by the server's events. */
 export class ShelfModel {
   private readonly answerSignal = signal<ShelfAnswer | null>(null);
+  private readonly studiesSignal = signal<StudiesAnswer | null>(null);
   private readonly failureSignal = signal<string | null>(null);
   private readonly jobsSignal = signal<readonly JobState[]>([]);
   /** The specimen that a finished job made last; its row is shown first to the person. */
@@ -32,6 +36,10 @@ export class ShelfModel {
   get answer(): ReadonlySignal<ShelfAnswer | null> {
     return this.answerSignal;
   }
+  /** Studies that this library leads, and assignments that it has taken in. */
+  get studies(): ReadonlySignal<StudiesAnswer | null> {
+    return this.studiesSignal;
+  }
   /** Why the shelf could not be read; null while it could. */
   get failure(): ReadonlySignal<string | null> {
     return this.failureSignal;
@@ -48,7 +56,7 @@ export class ShelfModel {
   start(): () => void {
     void this.load();
     return this.client.onEvent((event) => {
-      if (event.event === "shelf") void this.load();
+      if (event.event === "shelf" || event.event === "studies") void this.load();
       else if (event.event === "job") this.take(event.job);
     });
   }
@@ -66,7 +74,9 @@ export class ShelfModel {
     }
     this.loading = true;
     try {
-      this.answerSignal.value = await this.client.shelf();
+      const [answer, studies] = await Promise.all([this.client.shelf(), this.client.studies.all()]);
+      this.answerSignal.value = answer;
+      this.studiesSignal.value = studies;
       this.failureSignal.value = null;
     } catch (error) {
       this.failureSignal.value = error instanceof Error ? error.message : String(error);

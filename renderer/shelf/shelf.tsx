@@ -1,15 +1,22 @@
 import "#renderer/shelf/shelf.css";
+import "#renderer/shelf/studies/study-rows.css";
+import "#renderer/study/study.css";
 import { useEffect, useState } from "preact/hooks";
 import { AboutSheet } from "#renderer/app/about-sheet.tsx";
 import type { Services } from "#renderer/app/services.ts";
 import { setTheme, theme } from "#renderer/app/theme-choice.ts";
+import { toldJobs } from "#renderer/app/told-jobs.ts";
 import type { Client } from "#renderer/client/client.ts";
 import { AddScanSheet } from "#renderer/shelf/add-scan/add-scan-sheet.tsx";
 import { FirstSteps } from "#renderer/shelf/first-steps.tsx";
 import { JobCard } from "#renderer/shelf/job-card.tsx";
 import { ShelfModel } from "#renderer/shelf/shelf-model.ts";
 import { SpecimenRow } from "#renderer/shelf/specimen-row.tsx";
-import { plural } from "#renderer/shelf/words.ts";
+import { AssignmentRows } from "#renderer/shelf/studies/assignment-rows.tsx";
+import { StudyRows } from "#renderer/shelf/studies/study-rows.tsx";
+import { countsWords } from "#renderer/shelf/words.ts";
+import { NewStudySheet } from "#renderer/study/make/new-study-sheet.tsx";
+import { TakeInSheet } from "#renderer/study/packets/take-in-sheet.tsx";
 
 export interface ShelfProps {
   readonly services: Services;
@@ -40,10 +47,19 @@ export function Shelf({ services }: ShelfProps) {
   }, [model]);
   const [adding, setAdding] = useState<{ readonly path: string } | null>(null);
   const [about, setAbout] = useState(false);
+  const [asking, setAsking] = useState<"packet" | "study" | null>(null);
   const [steps, setSteps] = useState(() => localStorage.getItem(STEPS_KEY) !== "put away");
   const [over, setOver] = useState(false);
   const answer = model.answer.value;
-  const jobs = model.jobs.value.filter(({ state }) => state === "running" || state === "failed");
+  const studies = model.studies.value;
+  // An assignment stands in a row of its own, under its code.
+  const taken = new Set(studies?.assignments.map(({ specimen }) => specimen));
+  const specimens = answer?.specimens.filter(({ specimen }) => !taken.has(specimen.id)) ?? [];
+  const told = toldJobs.value;
+  const problems = [...(answer?.problems ?? []), ...(studies?.problems ?? [])];
+  const jobs = model.jobs.value.filter(({ id, state }) => (state === "running" || state === "failed") && !told.has(id));
+  const things = (answer?.specimens.length ?? 0) + (studies?.studies.length ?? 0) + taken.size;
+  const isEmpty = answer !== null && things === 0 && jobs.length === 0;
   const demoRuns = jobs.some(({ what, state }) => what === "demo" && state === "running");
 
   const drop = (event: DragEvent) => {
@@ -73,10 +89,16 @@ export function Shelf({ services }: ShelfProps) {
     >
       <header class="shelf-head">
         <h1>Tautline</h1>
-        <p class="soft">{answer === null ? "" : plural(answer.specimens.length, "specimen")}</p>
+        <p class="soft">{answer === null ? "" : countsWords(specimens.length, studies?.studies.length ?? 0, taken.size)}</p>
         <div class="shelf-actions">
           <button type="button" class="button main" onClick={() => setAdding({ path: "" })}>
             Add a scan
+          </button>
+          <button type="button" class="button" onClick={() => setAsking("packet")}>
+            Take in a packet
+          </button>
+          <button type="button" class="button" onClick={() => setAsking("study")}>
+            New study
           </button>
           <button type="button" class="button" disabled={demoRuns} onClick={() => void model.openDemo()}>
             Open the demo valve
@@ -115,7 +137,7 @@ export function Shelf({ services }: ShelfProps) {
           </div>
         )}
         {answer === null && model.failure.value === null ? <p class="soft shelf-wait">Reading the library …</p> : null}
-        {answer !== null && answer.specimens.length === 0 && jobs.length === 0 ? (
+        {isEmpty ? (
           <section class="shelf-empty" aria-label="Nothing here yet">
             <h2>The shelf is empty</h2>
             <div>
@@ -125,6 +147,9 @@ export function Shelf({ services }: ShelfProps) {
               <button type="button" class="button" onClick={() => void model.openDemo()}>
                 Open the demo valve, no file needed
               </button>
+              <button type="button" class="button" onClick={() => setAsking("packet")}>
+                Take in a packet of a study
+              </button>
             </div>
             <p class="soft">
               {capabilities.shell === "electron"
@@ -133,8 +158,12 @@ export function Shelf({ services }: ShelfProps) {
             </p>
           </section>
         ) : null}
+        {studies === null ? null : (
+          <AssignmentRows services={services} assignments={studies.assignments} shelf={answer?.specimens ?? []} />
+        )}
+        {studies === null ? null : <StudyRows services={services} studies={studies.studies} />}
         <ul class="shelf-rows" aria-label="Specimens">
-          {answer?.specimens.map((shown) => (
+          {specimens.map((shown) => (
             <SpecimenRow
               key={shown.specimen.id}
               shown={shown}
@@ -144,11 +173,11 @@ export function Shelf({ services }: ShelfProps) {
             />
           ))}
         </ul>
-        {answer !== null && answer.problems.length > 0 ? (
+        {problems.length > 0 ? (
           <section class="shelf-problems" aria-label="What could not be read">
             <h3>In the library folder, but not readable</h3>
             <ul>
-              {answer.problems.map((problem) => (
+              {problems.map((problem) => (
                 <li key={problem}>{problem}</li>
               ))}
             </ul>
@@ -167,6 +196,14 @@ export function Shelf({ services }: ShelfProps) {
           }}
         />
       )}
+      {asking === "packet" ? <TakeInSheet services={services} close={() => setAsking(null)} /> : null}
+      {asking === "study" ? (
+        <NewStudySheet
+          services={services}
+          specimens={specimens.filter(({ incomplete }) => !incomplete).map(({ specimen }) => specimen)}
+          close={() => setAsking(null)}
+        />
+      ) : null}
       {about ? <AboutSheet client={client} close={() => setAbout(false)} /> : null}
     </main>
   );

@@ -14,6 +14,16 @@ export function plural(count: number, one: string, many = `${one}s`): string {
   return `${countWords(count)}${FIXED}${count === 1 ? one : many}`;
 }
 
+/** What is on the shelf: "3 specimens, 1 study, 2 assignments"; what there is none of is left out, but not all of it. */
+export function countsWords(specimens: number, studies: number, assignments: number): string {
+  const words = [
+    specimens > 0 || studies + assignments === 0 ? plural(specimens, "specimen") : "",
+    studies > 0 ? plural(studies, "study", "studies") : "",
+    assignments > 0 ? plural(assignments, "assignment") : "",
+  ];
+  return words.filter((word) => word !== "").join(", ");
+}
+
 /** "1 040 × 1 040 × 1 310 voxels". */
 export function voxelsWords(size: readonly number[]): string {
   return `${size.map(countWords).join(" × ")} voxels`;

@@ -36,6 +36,7 @@ beforeEach(() => {
     },
     openDemo: async () => ({ job: "j1" }),
     cancelJob: async () => undefined,
+    studies: { all: async () => ({ studies: [], assignments: [], problems: [] }) },
   } as ShelfClient;
   model = new ShelfModel(client, { failed: (error) => said.push(String(error)), news: (text) => said.push(text) });
 });

@@ -1,6 +1,7 @@
 import type { ProjectionsAnswer } from "#shared/api/projections.ts";
 import type { ScanLookAnswer } from "#shared/api/routes.ts";
 import type { PassSummary, ShelfSpecimen, SpecimenRecord } from "#shared/api/specimen.ts";
+import type { StudiesAnswer } from "#shared/api/study.ts";
 import { IDENTITY3, pointMm, sizeXyz, spacingMm } from "#shared/geometry/types.ts";
 
 export function specimenOf(id: string, change: Partial<SpecimenRecord> = {}): SpecimenRecord {
@@ -144,5 +145,28 @@ export function lookOf(settled: boolean): ScanLookAnswer {
     },
     conversions: ["The voxels are uint32 and are stored as uint16, which holds every value exactly."],
     suggestedPolarity: "bright",
+  };
+}
+
+/** A study that is led here and two assignments that were taken in, one of them handed back. */
+export function studiesOfTwo(): StudiesAnswer {
+  const assignment = { specimen: "a1", code: "K7Q2", pass: "a1-pass", passState: "under-way", taken: 1_780_300_000_000 } as const;
+  return {
+    studies: [
+      {
+        id: "st1",
+        name: "Harrow Bay agreement",
+        created: 1_780_000_000_000,
+        specimens: 5,
+        annotators: 3,
+        protocol: { version: 1, frozen: true },
+        counts: { planned: 30, out: 2, returned: 4 },
+      },
+    ],
+    assignments: [
+      { ...assignment, state: "under-way" },
+      { ...assignment, specimen: "a2", code: "M3XD", pass: "a2-pass", state: "returned" },
+    ],
+    problems: [],
   };
 }

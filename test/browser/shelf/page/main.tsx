@@ -9,7 +9,15 @@ import { Shelf } from "#renderer/shelf/shelf.tsx";
 import type { ProjectionsRequest } from "#shared/api/projections.ts";
 import type { IntakeRequest, JobState, LookRequest, ServerEvent } from "#shared/api/routes.ts";
 import { TautlineError } from "#shared/errors.ts";
-import { extrasOf, lookOf, passOf, projectionsOf, shelfOfTwo, sliceOf } from "#test/browser/shelf/page/made-up-shelf.ts";
+import {
+  extrasOf,
+  lookOf,
+  passOf,
+  projectionsOf,
+  shelfOfTwo,
+  sliceOf,
+  studiesOfTwo,
+} from "#test/browser/shelf/page/made-up-shelf.ts";
 
 // A page for tests only: the shelf over a server that is played here; `window.shelf` says what it was asked.
 const query = new URLSearchParams(location.search);
