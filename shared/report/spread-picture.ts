@@ -1,6 +1,6 @@
 import type { Vec3 } from "#shared/geometry/types.ts";
-import { roundTicks } from "#shared/report/plot-marks.ts";
 import { svg } from "#shared/report/svg-plots.ts";
+import { niceLength } from "#shared/report/tree-picture.ts";
 
 /** A line with a value at each point. */
 export interface ValuedLine {
@@ -20,7 +20,7 @@ const STEPS = [
   { ink: "#06202f", width: 5 },
 ] as const;
 const PARTIAL_INK = "#a04a00";
-const [WIDTH, HEIGHT] = [330, 330];
+const [WIDTH, MOST_HEIGHT] = [330, 330];
 
 /**
  * Lines in space as two still pictures, from the front and turned by 50 degrees, seen slightly from above: the greater the
@@ -59,7 +59,7 @@ function onePicture(label: string, lines: readonly ValuedLine[], limits: readonl
   const low = (key: "u" | "v") => Math.min(...all.map((p) => p[key]));
   const high = (key: "u" | "v") => Math.max(...all.map((p) => p[key]));
   const [u0, u1, v0, v1] = [low("u"), high("u"), low("v"), high("v")];
-  const scale = Math.min((WIDTH - 24) / Math.max(u1 - u0, 1e-6), (HEIGHT - 48) / Math.max(v1 - v0, 1e-6));
+  const scale = Math.min((WIDTH - 24) / Math.max(u1 - u0, 1e-6), (MOST_HEIGHT - 48) / Math.max(v1 - v0, 1e-6));
   const shift = (WIDTH - (u1 - u0) * scale) / 2;
   const place = (p: { u: number; v: number }) =>
     `${(shift + (p.u - u0) * scale).toFixed(1)},${(10 + (v1 - p.v) * scale).toFixed(1)}`;
@@ -75,10 +75,11 @@ function onePicture(label: string, lines: readonly ValuedLine[], limits: readonl
       const dashed = isPartial ? [polyline(seen.map(place), PARTIAL_INK, 2, "5 3")] : [];
       return [...solid, ...dashed].join("");
     });
-  const bar = roundTicks(0, (u1 - u0) / 3, 1).at(-1)! || 1;
-  const y = HEIGHT - 14;
+  const bar = niceLength(Math.max(u1 - u0, v1 - v0, 1e-3) / 3);
+  const height = Math.ceil((v1 - v0) * scale) + 44;
+  const y = height - 8;
   const scaleBar = `<line x1="12" x2="${(12 + bar * scale).toFixed(1)}" y1="${y}" y2="${y}" stroke="#1c2126" stroke-width="2"/><text x="12" y="${y - 5}">${bar} mm</text>`;
-  return svg(label, WIDTH, HEIGHT, drawn.join("\n") + scaleBar);
+  return svg(label, WIDTH, height, drawn.join("\n") + scaleBar);
 }
 
 function polyline(points: readonly string[], ink: string, width: number, dash = ""): string {

@@ -34,7 +34,8 @@ export function treePairPicture(label: string, reference: PlainTree, other: Plai
   return svg(label, 420, 230, panel(0, 0) + panel(1, 210) + scaleBar);
 }
 
-function niceLength(length: number): number {
+/** The greatest of 1, 2 and 5 times a power of ten that is not above `length`. @param length above 0 */
+export function niceLength(length: number): number {
   const power = 10 ** Math.floor(Math.log10(length));
   const step = [5, 2, 1].find((factor) => factor * power <= length) ?? 1;
   return Math.round(step * power * 1e6) / 1e6;

@@ -26,10 +26,7 @@ export function grrasSection(input: ReportInput): ReportSection {
   const protocol = context.protocol;
   const counts = `${specimens.length} specimens, ${annotators.length} annotators (${annotators.join(", ") || "none"}), ${found.passes.filter(({ role }) => role !== "method").length} passes, ${found.intra.length} repeats`;
   const days = found.intra.flatMap(({ days: apart }) => (apart === null ? [] : [apart]));
-  const apart =
-    days.length === 0
-      ? "days between repeats are not known"
-      : `${Math.round(Math.min(...days))} to ${Math.round(Math.max(...days))} days between repeats`;
+  const apart = days.length === 0 ? "days between repeats are not known" : daysBetween(days);
   row(
     "Title and summary name reliability or agreement",
     "for the authors",
@@ -100,6 +97,11 @@ export function grrasSection(input: ReportInput): ReportSection {
   };
 }
 
+function daysBetween(days: readonly number[]): string {
+  const [least, most] = [Math.round(Math.min(...days)), Math.round(Math.max(...days))];
+  return `${least === most ? least : `${least} to ${most}`} days between repeats`;
+}
+
 /** What the files say of the specimens; empty when nothing. */
 function facts({ study }: ReportInput): string {
   const of = (key: keyof FileSpecimen) => [
@@ -119,7 +121,6 @@ function facts({ study }: ReportInput): string {
     ["pressure", of("pressure"), " mmHg"],
     ["state", of("state"), ""],
   ] as const;
-  return parts
-    .flatMap(([name, values, unit]) => (values.length === 0 ? [] : [`${name}: ${values.join(", ")}${unit}.`]))
-    .join(" ");
+  const said = parts.flatMap(([name, values, unit]) => (values.length === 0 ? [] : [`${name} ${values.join(", ")}${unit}`]));
+  return said.length === 0 ? "" : `From the files: ${said.join("; ")}.`;
 }

@@ -63,7 +63,7 @@ export interface SpreadStrand {
   readonly of: number;
   /** shape [n], from the origin on, millimetres. */
   readonly line: readonly Vec3[];
-  /** shape [n]: root mean square distance to the other annotators' strand there, millimetres; empty where nobody else drew it. */
+  /** shape [n]: root mean square distance to the trees of the other annotators who have the strand, millimetres; empty where nobody else drew it. */
   readonly spreadMm: readonly number[];
 }
 

@@ -21,7 +21,7 @@ export function spreadSection({ study, options }: ReportInput, spreads: readonly
   const limits = [0.25, 0.5, 1].map((share) => share * options.compare.tolerance) as [number, number, number];
   const blocks: ReportBlock[] = [
     text(
-      "At places 0.25 mm apart along each annotator's strand, the distance to the nearest place on another annotator's strand of the same item. Near a fork or an end it holds how differently the fork or end was placed; half way along it holds how differently the string was followed. Given that both drew the strand.",
+      "At places 0.25 mm apart along each annotator's strand, the distance to the nearest place on another annotator's trees. Half way along a strand it says how differently the string was followed; towards an end also how much farther one of the two went on. It says nothing of a fork moved along its string, which the places of forks do. Given that both drew the strand.",
     ),
     profileFigure(distances),
   ];

@@ -1,7 +1,8 @@
 import type { SpreadStrand } from "#shared/agreement/report/report-data.ts";
 import type { SpecimenItems, StudyPass, StudySpecimen } from "#shared/agreement/study/study.ts";
 import { comparedPasses } from "#shared/agreement/study/study-quantities.ts";
-import { nearestOnPolyline, resample } from "#shared/geometry/polyline.ts";
+import { resample } from "#shared/geometry/polyline.ts";
+import { SegmentIndex } from "#shared/geometry/segment-index.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { type RootedStrand, rootedStrands } from "#shared/trees/rooted-strands.ts";
 
@@ -22,28 +23,26 @@ export interface SpecimenSpread {
 }
 
 /**
- * How far annotators' first passes run apart along each strand: at places 0.25 mm apart, the distance to the nearest place
- * of the other annotators' strand of the same item.
+ * How far annotators' first passes run apart along each strand: at places 0.25 mm apart, the distance to the nearest place on
+ * the trees of each other annotator who has the strand.
  */
 export function spreadOf(specimen: StudySpecimen, items: SpecimenItems): SpecimenSpread {
   const compared = comparedPasses(specimen);
   const lineOf = compared.map((p) => linesFromRoot(specimen.passes[p]!));
+  // Of all trees: a strand that another annotator drew as two, parted by one more fork, is not far from the two.
+  const trees = compared.map(
+    (p) => new SegmentIndex(specimen.passes[p]!.set.trees.flatMap(rootedStrands).map(({ line }) => line)),
+  );
   const distances: PlacedDistance[] = [];
   const strands = items.strands.items.flatMap(({ members }): SpreadStrand[] => {
-    const drawn = compared.flatMap((p, c) =>
-      members[p]! >= 0 ? [{ pass: specimen.passes[p]!, ...lineOf[c]!(members[p]!) }] : [],
-    );
+    const drawn = compared.flatMap((p, c) => (members[p]! >= 0 ? [{ c, ...lineOf[c]!(members[p]!) }] : []));
     if (drawn.length === 0 || drawn[0]!.line.length < 2) return [];
     const lines = drawn.map(({ line }) => resample(line, STEP_MM));
     const spreads = lines.map((line, i) =>
       line.map((place, k) => {
-        const squares = lines.flatMap((other, j) => {
-          if (i === j) return [];
-          const { distance } = nearestOnPolyline(other, place);
-          distances.push({ share: line.length > 1 ? k / (line.length - 1) : 0, distanceMm: distance });
-          return [distance ** 2];
-        });
-        return Math.sqrt(squares.reduce((sum, one) => sum + one, 0) / squares.length);
+        const others = drawn.filter((_, j) => j !== i).map(({ c }) => trees[c]!.nearest(place).distance);
+        for (const distanceMm of others) distances.push({ share: k / Math.max(1, line.length - 1), distanceMm });
+        return Math.sqrt(others.reduce((sum, one) => sum + one ** 2, 0) / others.length);
       }),
     );
     return [
