@@ -161,6 +161,18 @@ export function checkImpassable(strings: readonly ImpassableString[]): void {
   whole("points of impassable strings", points, 0, MOST_CURVE_POINTS);
 }
 
+/** Lines of the strands that a run must not enter. @throws bad-request */
+export function checkTraced(lines: readonly (readonly number[])[]): void {
+  whole("traced", lines.length, 0, MOST_PINS);
+  let points = 0;
+  lines.forEach((flat, n) => {
+    if (flat.length < 6 || flat.length % 3 !== 0) refuse(`traced[${n}]`, "flat x, y, z of at least two points", flat.length);
+    finite(`traced[${n}]`, flat);
+    points += flat.length / 3;
+  });
+  whole("points of traced strands", points, 0, 10 * MOST_CURVE_POINTS);
+}
+
 /** @throws bad-request */
 export function checkWhole(where: string, value: number, least: number, most: number): void {
   whole(where, value, least, most);

@@ -13,11 +13,13 @@ import {
   checkSolve,
   checkStrip,
   checkTicket,
+  checkTraced,
   checkWhole,
 } from "#main/engine/check-request.ts";
+import { ended } from "#main/engine/follow-sessions.ts";
 import { DEFAULT_MEMORY_MB, MOST_THREADS, planMemory, shareOut } from "#main/engine/memory-plan.ts";
 import { createRidgeMemory } from "#main/engine/ridge-store.ts";
-import type { EngineTasks, GuideRef, StoreRef, TaskKind } from "#main/engine/tasks.ts";
+import type { EngineTasks, FollowRef, GuideRef, StoreRef, TaskKind } from "#main/engine/tasks.ts";
 import { WorkerPool } from "#main/engine/worker-pool.ts";
 import type { Engine, HistogramAnswer, Ticket } from "#shared/api/engine.ts";
 import type { SpecimenRecord } from "#shared/api/specimen.ts";
@@ -61,6 +63,12 @@ interface OpenSession {
   used: number;
 }
 
+interface OpenRun {
+  readonly specimen: string;
+  readonly window: string;
+  used: number;
+}
+
 /**
  * Starts the engine: worker threads over one brick cache.
  *
@@ -100,10 +108,12 @@ export function createEngine(options: EngineOptions): LocalEngine {
   const stores = new Map<string, Promise<StoreRef>>();
   const histograms = new Map<string, Promise<HistogramAnswer>>();
   const sessions = new Map<string, OpenSession>();
+  const runs = new Map<string, OpenRun>();
   let storeNumbers = 0;
 
   const sweep = setInterval(() => {
     for (const [session, { used }] of sessions) if (performance.now() - used > IDLE_MS) endSession(session);
+    for (const [session, { used }] of runs) if (performance.now() - used > IDLE_MS) endRun(session);
   }, IDLE_MS / 4);
   sweep.unref();
 
@@ -137,6 +147,10 @@ export function createEngine(options: EngineOptions): LocalEngine {
 
   function endSession(session: string): void {
     if (sessions.delete(session)) pool.tell({ type: "close-guide", session }, guide[0]);
+  }
+
+  function endRun(session: string): void {
+    if (runs.delete(session)) pool.tell({ type: "close-follow", session }, job[0]);
   }
 
   function sessionOf(name: string): OpenSession {
@@ -219,11 +233,42 @@ export function createEngine(options: EngineOptions): LocalEngine {
       checkTicket(request.ticket);
       return onLine("solve", job, request.ticket, request.specimen, request, ({ volume }) => checkSolve(request, volume));
     },
+    async openFollow({ ticket, specimen, at, parameters, traced = [] }) {
+      checkTicket(ticket);
+      checkParameters(parameters);
+      checkTraced(traced);
+      const store = await storeOf(specimen);
+      checkInScan("at", at, store.volume);
+      // A newer run of a window takes the place of its older one.
+      for (const [session, run] of runs) if (run.window === ticket.window) endRun(session);
+      const ref: FollowRef = { session: randomUUID(), at, parameters, traced };
+      runs.set(ref.session, { specimen, window: ticket.window, used: performance.now() });
+      await pool.run("open-follow", store, ref, { workers: job });
+      return { session: ref.session };
+    },
+    async moreFollow({ ticket, session }) {
+      checkTicket(ticket);
+      const run = runs.get(session);
+      if (!run) throw ended(session);
+      run.used = performance.now();
+      try {
+        const answer = await pool.run("more-follow", await storeOf(run.specimen), { session }, { workers: job });
+        if (answer.done) runs.delete(session);
+        return answer;
+      } catch (error) {
+        runs.delete(session);
+        throw error;
+      }
+    },
+    async closeFollow(session) {
+      endRun(session);
+    },
     async forget(specimen) {
       const opened = stores.get(specimen);
       stores.delete(specimen);
       histograms.delete(specimen);
       for (const [name, session] of sessions) if (session.specimen === specimen) endSession(name);
+      for (const [name, run] of runs) if (run.specimen === specimen) endRun(name);
       if (!opened) return;
       const store = await opened;
       await Promise.all(Array.from({ length: workers }, (_, worker) => pool.run("forget", store, null, { workers: [worker] })));
@@ -236,6 +281,7 @@ export function createEngine(options: EngineOptions): LocalEngine {
     async close() {
       clearInterval(sweep);
       sessions.clear();
+      runs.clear();
       await pool.close();
     },
   };

@@ -1,5 +1,6 @@
 import type { BrickCache } from "#main/engine/brick-cache.ts";
 import { type CachedPyramid, cachedPyramid } from "#main/engine/cached-pyramid.ts";
+import { FollowSessions } from "#main/engine/follow-sessions.ts";
 import { GuideSessions } from "#main/engine/guide-sessions.ts";
 import { PlanesAhead } from "#main/engine/planes-ahead.ts";
 import type { RidgeStore } from "#main/engine/ridge-store.ts";
@@ -29,6 +30,7 @@ export class TaskRunner {
   readonly #stores = new Map<number, CachedPyramid>();
   readonly #contexts: TraceContexts;
   readonly guides: GuideSessions;
+  readonly follows: FollowSessions;
   readonly planes = new PlanesAhead();
   readonly ridges = new RidgesAhead();
 
@@ -36,6 +38,7 @@ export class TaskRunner {
     this.#cache = cache;
     this.#contexts = new TraceContexts(ridgeBytes, ridges);
     this.guides = new GuideSessions(this.#contexts, frontBytes);
+    this.follows = new FollowSessions(this.#contexts);
   }
 
   run(kind: TaskKind, store: StoreRef | null, input: unknown, signal: Signal): EngineTasks[TaskKind]["answer"] {
@@ -73,6 +76,13 @@ export class TaskRunner {
         const context = this.#contexts.of(store.number, pyramid, parameters.polarity);
         return { curves: strands.map((strand) => curveOf(solveStrand(pyramid, strand, parameters, signal, context))) };
       }
+      case "open-follow":
+        this.follows.open(store.number, pyramid, input as Input<"open-follow">);
+        return null;
+      case "more-follow":
+        // Its strands are solved with fronts of their own; both at once would not fit the limit.
+        this.guides.rest();
+        return this.follows.more((input as Input<"more-follow">).session, signal);
       case "warm":
         this.ridges.warm(this.#contexts.of(store.number, pyramid, store.polarity), (input as Input<"warm">).backwards);
         return null;
@@ -89,6 +99,7 @@ export class TaskRunner {
   /** Closes a store's files and drops what was made of it. */
   #forget(store: number): null {
     this.guides.forget(store);
+    this.follows.forget(store);
     this.planes.forget();
     this.ridges.forget();
     this.#contexts.forget(store);

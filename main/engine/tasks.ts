@@ -16,6 +16,7 @@ import type {
   SurfaceRequest,
   ValueAnswer,
 } from "#shared/api/engine.ts";
+import type { FollowAnswer } from "#shared/api/follow.ts";
 import type { BinaryFrame } from "#shared/api/frame.ts";
 import type { SpecimenVolume } from "#shared/api/specimen.ts";
 import type { ErrorBody } from "#shared/errors.ts";
@@ -42,6 +43,15 @@ export interface GuideRef {
   readonly impassable: readonly ImpassableString[];
 }
 
+/** A run along a string from a clicked place. */
+export interface FollowRef {
+  readonly session: string;
+  readonly at: PointMm;
+  readonly parameters: TraceParameters;
+  /** Lines of the strands traced already, each flat xyz, millimetres. */
+  readonly traced: readonly (readonly number[])[];
+}
+
 /** What a worker computes: input and answer of each kind of task. */
 export interface EngineTasks {
   section: { input: SectionRequest; answer: BinaryFrame<SectionHeader> };
@@ -55,6 +65,8 @@ export interface EngineTasks {
   warm: { input: { backwards: boolean }; answer: null };
   "open-guide": { input: GuideRef; answer: null };
   "preview-guide": { input: { guide: GuideRef; to: PointMm }; answer: GuidePreviewAnswer };
+  "open-follow": { input: FollowRef; answer: null };
+  "more-follow": { input: { session: string }; answer: FollowAnswer };
   figures: { input: null; answer: CacheFigures };
   forget: { input: null; answer: null };
 }
@@ -70,7 +82,7 @@ export type ToWorker =
       readonly store: StoreRef | null;
       readonly input: unknown;
     }
-  | { readonly type: "close-guide"; readonly session: string };
+  | { readonly type: "close-guide" | "close-follow"; readonly session: string };
 
 /** Messages from a worker. */
 export type FromWorker =

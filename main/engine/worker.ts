@@ -60,7 +60,8 @@ function idleSoon(): void {
 
 port.on("message", (message: ToWorker) => {
   if (message.type === "run") run(message);
-  else runner.guides.close(message.session);
+  else if (message.type === "close-guide") runner.guides.close(message.session);
+  else runner.follows.close(message.session);
   idleSoon();
 });
 post({ type: "ready" });

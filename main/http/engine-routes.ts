@@ -1,6 +1,8 @@
 import { frameAnswer, jsonAnswer } from "#main/http/answers.ts";
 import {
   filmRequest,
+  followMoreRequest,
+  followOpenRequest,
   guideCloseRequest,
   guideOpenRequest,
   guidePreviewRequest,
@@ -36,6 +38,12 @@ export function engineRoutes({ engine, library }: Ports): RouteHandlers {
       return jsonAnswer({});
     },
     solve: async (c) => jsonAnswer(await engine.solve(await readJson(c.req.raw, solveRequest))),
+    openFollow: async (c) => jsonAnswer(await engine.openFollow(await readJson(c.req.raw, followOpenRequest))),
+    moreFollow: async (c) => jsonAnswer(await engine.moreFollow(await readJson(c.req.raw, followMoreRequest))),
+    closeFollow: async (c) => {
+      await engine.closeFollow((await readJson(c.req.raw, guideCloseRequest)).session);
+      return jsonAnswer({});
+    },
     strip: async (c) => frameAnswer(await engine.strip(await readJson(c.req.raw, stripRequest))),
     film: async (c) => frameAnswer(await engine.film(await readJson(c.req.raw, filmRequest))),
     surface: async (c) => frameAnswer(await engine.surface(await readJson(c.req.raw, surfaceRequest))),

@@ -11,6 +11,7 @@ import type {
   SurfaceRequest,
   Ticket,
 } from "#shared/api/engine.ts";
+import type { FollowMoreRequest, FollowOpenRequest } from "#shared/api/follow.ts";
 import { type PointMm, pointMm } from "#shared/geometry/types.ts";
 import type { StrandRequest, TraceParameters } from "#shared/tracing/strand-request.ts";
 
@@ -84,6 +85,14 @@ export const guideOpenRequest: Shape<GuideOpenRequest> = object({
 });
 export const guidePreviewRequest: Shape<GuidePreviewRequest> = object({ ticket, session: text(128, 1), to: point });
 export const guideCloseRequest = object({ session: text(128, 1) });
+export const followOpenRequest: Shape<FollowOpenRequest> = object({
+  ticket,
+  specimen: id,
+  at: point,
+  parameters,
+  traced: optional(list(flatPoints, 10_000)),
+});
+export const followMoreRequest: Shape<FollowMoreRequest> = object({ ticket, session: text(128, 1) });
 export const solveRequest: Shape<SolveRequest> = object({ ticket, specimen: id, strands: list(strand, 1_000), parameters });
 export const stripRequest: Shape<StripRequest> = object({
   ticket,

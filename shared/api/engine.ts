@@ -1,3 +1,4 @@
+import type { FollowAnswer, FollowMoreRequest, FollowOpenRequest } from "#shared/api/follow.ts";
 import type { BinaryFrame } from "#shared/api/frame.ts";
 import type { PointMm, Vec3 } from "#shared/geometry/types.ts";
 import type { ImpassableString } from "#shared/tracing/guide/impassable.ts";
@@ -205,6 +206,11 @@ export interface Engine {
   previewGuide(request: GuidePreviewRequest): Promise<GuidePreviewAnswer>;
   closeGuide(session: string): Promise<void>;
   solve(request: SolveRequest): Promise<{ curves: readonly SolvedCurve[] }>;
+  /** @throws bad-request when the place lies outside the scan */
+  openFollow(request: FollowOpenRequest): Promise<{ session: string }>;
+  /** @throws not-found when the run is over or made way for a newer one */
+  moreFollow(request: FollowMoreRequest): Promise<FollowAnswer>;
+  closeFollow(session: string): Promise<void>;
   strip(request: StripRequest): Promise<BinaryFrame<StripHeader>>;
   film(request: FilmRequest): Promise<BinaryFrame<FilmHeader>>;
   surface(request: SurfaceRequest): Promise<BinaryFrame<SurfaceHeader>>;

@@ -43,6 +43,9 @@ export const ROUTES = {
   previewGuide: { method: "POST", path: "/api/engine/guide/preview" },
   closeGuide: { method: "POST", path: "/api/engine/guide/close" }, // {session} -> {}
   solve: { method: "POST", path: "/api/engine/solve" },
+  openFollow: { method: "POST", path: "/api/engine/follow/open" }, // FollowOpenRequest (`follow.ts`) -> {session}
+  moreFollow: { method: "POST", path: "/api/engine/follow/more" }, // FollowMoreRequest -> FollowAnswer, until `done`
+  closeFollow: { method: "POST", path: "/api/engine/follow/close" }, // {session} -> {}
   strip: { method: "POST", path: "/api/engine/strip" },
   film: { method: "POST", path: "/api/engine/film" },
   surface: { method: "POST", path: "/api/engine/surface" },

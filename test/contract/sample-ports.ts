@@ -55,6 +55,12 @@ export async function samplePorts(): Promise<SamplePorts> {
   const study = studyPorts({
     library,
     files,
+    jobs,
+    abilities: {
+      runTurned: async () => {
+        throw new Error("no scan is turned here");
+      },
+    },
     random: countingBytes(),
     now: Date.now,
     mayWrite: async () => {},
@@ -120,6 +126,9 @@ function sampleEngine(asked: Map<string, unknown>): Engine {
     previewGuide: note("previewGuide", { points: [], coarse: true, imageFit: null, doubtful: [] }),
     closeGuide: note("closeGuide", undefined),
     solve: note("solve", { curves: [] }),
+    openFollow: note("openFollow", { session: "f1" }),
+    moreFollow: note("moreFollow", { done: true, growing: [], lengthMm: 0, proposal: null }),
+    closeFollow: note("closeFollow", undefined),
     strip: note("strip", frame({ dtype: "uint8", width: 2, height: 2, lengthMm: 1 })),
     film: note("film", frame({ dtype: "uint8", count: 1, side: 2, at: [0] })),
     surface: note("surface", frame({ dtype: "float32", count: 0, level: 0, threshold: 0 })),

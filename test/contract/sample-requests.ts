@@ -58,6 +58,9 @@ export function sampleRequests(pass: string, log: { epoch: string; head: { seq: 
     solve: {
       body: engine({ strands: [{ from: [0, 0, 0], via: [[1, 0, 0]], to: [2, 0, 0], legs: ["guide", "straight"] }], parameters }),
     },
+    openFollow: { body: engine({ at: [0, 0, 0], parameters, traced: [points] }) },
+    moreFollow: { body: { ticket, session: "f1" } },
+    closeFollow: { body: { session: "f1" } },
     strip: { body: engine({ points, width: 2, height: 2, halfWidthMm: 1, turn: 90, ...grey }) },
     film: { body: engine({ points, count: 1, side: 2, halfWidthMm: 1, ...grey }) },
     surface: { body: engine({ limit: 100, polarity: "bright" }) },
