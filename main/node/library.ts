@@ -7,6 +7,7 @@ import { type LibraryLayout, libraryLayout, type RandomBytes } from "#main/node/
 import { PassClaims } from "#main/node/pass-claims.ts";
 import { PassStore } from "#main/node/pass-store.ts";
 import { patchedSpecimen, readSpecimenFile } from "#main/node/specimen-file.ts";
+import { AssignmentStore } from "#main/node/study/assignment-store.ts";
 import { Turns } from "#main/node/turns.ts";
 import { UNFINISHED, writeJson } from "#main/node/whole-file.ts";
 import type { AppendAnswer, AppendRequest, LogAnswer, ServerEvent, ShelfAnswer, SpecimenPatch } from "#shared/api/routes.ts";
@@ -31,6 +32,8 @@ export class Library implements LibraryPort {
   readonly layout: LibraryLayout;
   readonly passes: PassStore;
   readonly claims = new PassClaims();
+  /** Specimens that are assignments of a study which is led elsewhere. */
+  readonly assignments: AssignmentStore;
   readonly #options: LibraryOptions;
   readonly #changes = new Turns();
 
@@ -38,6 +41,7 @@ export class Library implements LibraryPort {
     this.#options = options;
     this.layout = libraryLayout(options.root);
     this.passes = new PassStore({ ...options, layout: this.layout });
+    this.assignments = new AssignmentStore({ ...options, layout: this.layout });
   }
 
   /** Removes what a killed process left half-removed. Call it once, with the lease, before anything else. */
@@ -60,6 +64,8 @@ export class Library implements LibraryPort {
             problems.push(`specimens/${id} holds passes but no specimen.json: put the file back from a copy.`);
           continue;
         }
+        // What was handed back is not shown: a repeat must not be done beside the pass before.
+        if (await this.assignments.isSealed(id)) continue;
         const passes: PassSummary[] = [];
         for (const pass of await this.passes.ids(id)) {
           await this.passes.summary(id, pass).then(
@@ -78,7 +84,14 @@ export class Library implements LibraryPort {
     return { specimens, problems };
   }
 
+  /** @throws not-found, unreadable-input; conflict for an assignment that was handed back */
   async specimen(id: string): Promise<SpecimenRecord> {
+    await this.assignments.refuseSealed(id);
+    return this.specimenRecord(id);
+  }
+
+  /** The record of a specimen, also of an assignment that was handed back. @throws not-found, unreadable-input */
+  async specimenRecord(id: string): Promise<SpecimenRecord> {
     const record = await readSpecimenFile(this.#options.files, this.layout.specimenFile(id), id);
     if (!record) throw new TautlineError("not-found", "There is no such specimen in the library.", { what: "specimen", id });
     return record;
@@ -97,11 +110,12 @@ export class Library implements LibraryPort {
   removeSpecimen(id: string, force: boolean): Promise<void> {
     return this.#changes.take(async () => {
       const { files, mayWrite, onRemove, emit } = this.#options;
-      await this.specimen(id);
+      await this.specimenRecord(id);
       if (!force) await this.#refuseWithEdits(id);
       await mayWrite();
       await onRemove?.(id);
       await this.passes.close(id);
+      this.assignments.forget(id);
       const folder = this.layout.specimen(id);
       const doomed = `${folder}${UNFINISHED}`;
       try {
@@ -120,16 +134,19 @@ export class Library implements LibraryPort {
 
   async createPass(specimen: string, annotator: string): Promise<PassSummary> {
     await this.specimen(specimen);
+    await this.assignments.refuseSecondPass(specimen);
     const summary = await this.#changes.take(() => this.passes.create(specimen, annotator));
     this.#options.emit({ event: "shelf" });
     return summary;
   }
 
   async readLog(specimen: string, pass: string, from: number): Promise<LogAnswer> {
+    await this.assignments.refuseSealed(specimen);
     return (await this.passes.journal(specimen, pass)).read(from);
   }
 
   async appendLog(specimen: string, pass: string, request: AppendRequest): Promise<AppendAnswer> {
+    await this.assignments.refuseSealed(specimen);
     // After a restart nobody has a claim: the window that writes first gets it.
     if (!this.claims.claim(specimen, pass, request.window)) {
       throw new TautlineError("held-elsewhere", "Another window is writing to this pass; this one is for reading only.", {
@@ -159,6 +176,7 @@ export class Library implements LibraryPort {
   }
 
   async claimPass(specimen: string, pass: string, window: string): Promise<boolean> {
+    await this.assignments.refuseSealed(specimen);
     await this.passes.journal(specimen, pass);
     return this.claims.claim(specimen, pass, window);
   }
@@ -168,6 +186,7 @@ export class Library implements LibraryPort {
   }
 
   async setPassState(specimen: string, pass: string, state: PassState): Promise<PassSummary> {
+    await this.assignments.refuseSealed(specimen);
     await this.#changes.take(() => this.passes.changeFile(specimen, pass, (file) => ({ ...file, state })));
     this.#options.emit({ event: "shelf" });
     return this.passes.summary(specimen, pass);

@@ -9,11 +9,11 @@ import { summarise } from "#main/node/pass-summary.ts";
 import { writeJson } from "#main/node/whole-file.ts";
 import type { AppendAnswer, AppendRequest } from "#shared/api/routes.ts";
 import type { PassSummary } from "#shared/api/specimen.ts";
-import { TautlineError } from "#shared/errors.ts";
+import { isTautlineError, TautlineError } from "#shared/errors.ts";
 import { readChain } from "#shared/log/chain.ts";
 import { PassHistory } from "#shared/log/history.ts";
 import { hashOfLine, lineOf } from "#shared/log/line.ts";
-import { LOG_FORMAT, LOG_VERSION, type LogHeader } from "#shared/log/records.ts";
+import { LOG_FORMAT, LOG_VERSION, type LogHeader, type LogRecord } from "#shared/log/records.ts";
 import type { Curve } from "#shared/trees/document.ts";
 import type { Operation } from "#shared/trees/operations.ts";
 
@@ -31,6 +31,15 @@ export interface FirstEdit {
   readonly operation: Operation;
   readonly label: string;
   readonly curves: readonly Curve[];
+}
+
+/** A pass that comes from another library. */
+export interface TakenInPass {
+  readonly specimen: string;
+  readonly pass: string;
+  readonly annotator: string;
+  /** A whole log, header first. */
+  readonly records: readonly LogRecord[];
 }
 
 /** The passes of a library: their journals, opened once and kept, and what is said beside them. */
@@ -110,6 +119,32 @@ export class PassStore {
     const chained = [this.#headerLine(header)];
     for (const record of rest) chained.push(lineOf({ ...record, prev: hashOfLine(chained[chained.length - 1]!) }));
     return this.#begin(chained, file, header);
+  }
+
+  /**
+   * A pass with the given id that holds `records` under a header of its own. When it is there already with the same records,
+   * nothing is done: whoever was stopped in between asks again. @throws conflict when it is there with others
+   */
+  async takeIn(given: TakenInPass, file: PassFile): Promise<PassSummary> {
+    const { specimen, pass, annotator, records } = given;
+    const [first, ...rest] = records;
+    if (first?.kind !== "header")
+      throw new TautlineError("bad-request", "The log is empty.", { what: "no header", where: "log" });
+    const begun = await this.journal(specimen, pass).catch((error) => {
+      if (isTautlineError(error, "not-found")) return null;
+      throw error;
+    });
+    const header = begun?.header ?? { ...(await this.#newHeader(specimen, annotator)), pass, epoch: first.body.epoch };
+    const chained = [lineOf({ ...first, prev: "", body: header })];
+    for (const record of rest) chained.push(lineOf({ ...record, prev: hashOfLine(chained[chained.length - 1]!) }));
+    if (!begun) return this.#begin(chained, file, header);
+    const last = hashOfLine(chained[chained.length - 1]!);
+    if (begun.head.hash === last) return this.summary(specimen, pass);
+    throw new TautlineError("conflict", "The pass is in the library already, with another log; it stays as it is.", {
+      what: "pass",
+      expected: last,
+      found: begun.head.hash,
+    });
   }
 
   /** Writes the journal of a pass whose own was lost, from the window's copy. @throws conflict when there is one */

@@ -72,7 +72,7 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
       onLeft: (window) => library.claims.releaseAll(window),
       onAllLeft: () => void jobs.idle().then(() => windows.open === 0 && options.onAllLeft()),
     });
-    const study = studyPorts({ library, files, random, now, mayWrite, emit, softwareVersion: options.version });
+    const study = studyPorts({ library, files, jobs, abilities, random, now, mayWrite, emit, softwareVersion: options.version });
     await study.store.removeLeftovers();
     const ports: Ports = {
       hello: () => ({ name: "Tautline", version: options.version, shell: options.shell, library: root }),

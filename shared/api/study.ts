@@ -174,7 +174,8 @@ export interface PacketLook {
   readonly kind: PacketKind;
   readonly code: string;
   readonly study: string;
-  readonly protocolVersion: number;
+  /** Null for a scan. */
+  readonly protocolVersion: number | null;
   readonly files: number;
   readonly bytes: number;
   readonly fingerprint: string | null;

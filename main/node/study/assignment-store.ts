@@ -16,6 +16,8 @@ export interface AssignmentStoreOptions {
 /** The assignments that a library has taken in; each stands beside the scan it came with. */
 export class AssignmentStore {
   readonly #options: AssignmentStoreOptions;
+  /** What is on the disk, once read: asked for with every edit. */
+  readonly #known = new Map<string, AssignmentRecord | null>();
 
   constructor(options: AssignmentStoreOptions) {
     this.#options = options;
@@ -23,6 +25,48 @@ export class AssignmentStore {
 
   /** The assignment that a specimen is; null for any other specimen. @throws unreadable-input */
   async find(specimen: string): Promise<AssignmentRecord | null> {
+    const known = this.#known.get(specimen);
+    if (known !== undefined) return known;
+    const found = await this.#read(specimen);
+    this.#known.set(specimen, found);
+    return found;
+  }
+
+  /** True for an assignment whose pass was handed back. */
+  async isSealed(specimen: string): Promise<boolean> {
+    return (await this.find(specimen))?.returned?.sealed ?? false;
+  }
+
+  /** @throws conflict for an assignment whose pass was handed back */
+  async refuseSealed(specimen: string): Promise<void> {
+    const record = await this.find(specimen);
+    if (!record?.returned?.sealed) return;
+    const sentence = `${record.code} was handed back and is closed. Reopen the assignment if the lead asks for it again.`;
+    throw new TautlineError("conflict", sentence, {
+      what: record.code,
+      expected: "an open assignment",
+      found: "one handed back",
+    });
+  }
+
+  /** @throws conflict for any assignment: it has its one pass */
+  async refuseSecondPass(specimen: string): Promise<void> {
+    const record = await this.find(specimen);
+    if (!record) return;
+    const sentence = `${record.code} is an assignment and has its one pass; go on with that.`;
+    throw new TautlineError("conflict", sentence, {
+      what: record.code,
+      expected: "a specimen of this library",
+      found: "an assignment",
+    });
+  }
+
+  /** Forgets what is in memory of a specimen that is removed. */
+  forget(specimen: string): void {
+    this.#known.delete(specimen);
+  }
+
+  async #read(specimen: string): Promise<AssignmentRecord | null> {
     const { files, layout } = this.#options;
     const file = `assignment.json of ${specimen}`;
     const value = await readJsonFile(files, layout.assignmentFile(specimen), file);
@@ -44,6 +88,7 @@ export class AssignmentStore {
   async write(record: AssignmentRecord): Promise<void> {
     const { files, layout, mayWrite } = this.#options;
     await mayWrite();
+    this.#known.delete(record.assignment);
     await writeJson(files, layout.assignmentFile(record.assignment), record);
   }
 
