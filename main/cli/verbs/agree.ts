@@ -10,7 +10,7 @@ import { agreementReport, contextOfFiles } from "#shared/agreement/report/agreem
 import { renderReportHtml } from "#shared/agreement/report/render-html.ts";
 import { type Agreement, type AgreeOptions, agreementFrame, assembleAgreement } from "#shared/agreement/study/agree.ts";
 import { agreementText } from "#shared/agreement/study/agreement-text.ts";
-import { itemsCsv } from "#shared/agreement/study/items-csv.ts";
+import { itemsCsvOf } from "#shared/agreement/study/items-csv.ts";
 import { comparePassPairs, type PairSummary, passPairs } from "#shared/agreement/study/pairwise.ts";
 import { type StudyFile, studyOf } from "#shared/agreement/study/study.ts";
 import { TautlineError } from "#shared/errors.ts";
@@ -59,9 +59,9 @@ ${SHARE_HELP}`,
     if (typeof items !== "string" && typeof out !== "string") return result;
     const [files, asked] = [await readAll(positionals), agreeOptions(options)];
     const { tolerance, merge } = asked.compare;
-    if (typeof items === "string") await writeText(items, itemsCsv(files, tolerance, merge, asked.method));
+    const study = studyOf(files, merge, asked.method);
+    if (typeof items === "string") await writeText(items, itemsCsvOf(study, tolerance, merge));
     if (typeof out === "string") {
-      const study = studyOf(files, merge, asked.method);
       const software = { name: "Tautline", version: ownVersion(import.meta.url) };
       const context = contextOfFiles(software, new Date().toISOString());
       const report = agreementReport({ study, options: asked, found: result.json as Agreement, context });

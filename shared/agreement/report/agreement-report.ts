@@ -17,7 +17,7 @@ import { spreadSection } from "#shared/agreement/report/spread-section.ts";
 import { tolerancesSection } from "#shared/agreement/report/tolerances-section.ts";
 import { totalsSection } from "#shared/agreement/report/totals-section.ts";
 import type { Agreement, AgreeOptions } from "#shared/agreement/study/agree.ts";
-import { itemsAtTolerances, type Study } from "#shared/agreement/study/study.ts";
+import { itemsAt, type Study } from "#shared/agreement/study/study.ts";
 import { quantitiesOf } from "#shared/agreement/study/study-quantities.ts";
 
 /** Everything that a section may draw on. */
@@ -49,7 +49,7 @@ export function agreementReport(input: ReportInput): AgreementReport {
   const { study, options, context, found } = input;
   const { annotators, specimens } = study;
   const { tolerance, merge } = options.compare;
-  const items = specimens.map((specimen) => itemsAtTolerances(specimen, [tolerance], merge)[0]!);
+  const items = specimens.map((specimen) => itemsAt(specimen, tolerance, merge));
   const spreads = specimens.map((specimen, s) => spreadOf(specimen, items[s]!));
   return {
     title: context.title ?? "How far annotators agree on chordae tendineae",

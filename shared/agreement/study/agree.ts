@@ -11,7 +11,7 @@ import { type MethodAgreement, methodAgreement } from "#shared/agreement/study/m
 import { type NodePlaces, nodePlaces } from "#shared/agreement/study/node-places.ts";
 import { comparePassPairs, type PairSummary, passPairs } from "#shared/agreement/study/pairwise.ts";
 import {
-  itemsAtTolerances,
+  itemsAtThree,
   nodeTolerance,
   type SpecimenItems,
   type Study,
@@ -129,7 +129,7 @@ export function agreementFrame(study: Study, options: AgreeOptions): Omit<Agreem
   const { tolerance, merge } = options.compare;
   const { annotators, specimens } = study;
   const tolerances = threeTolerances(tolerance);
-  const atAll = specimens.map((specimen) => itemsAtTolerances(specimen, tolerances, merge));
+  const atAll = specimens.map((specimen) => itemsAtThree(specimen, tolerance, merge));
   const items = atAll.map((list) => list[1]!);
   const quantities = quantitiesOf(study, items);
   const title = annotators.length === 2 ? "given that both marked it" : `given that all ${annotators.length} marked it`;

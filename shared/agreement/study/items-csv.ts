@@ -1,15 +1,19 @@
-import { itemsAtTolerances, type SpecimenItems, type Study, type StudyFile, studyOf } from "#shared/agreement/study/study.ts";
+import { itemsAt, type SpecimenItems, type Study, type StudyFile, studyOf } from "#shared/agreement/study/study.ts";
 import { writeCsv } from "#shared/formats/tables/csv.ts";
 
 const HEADER = ["specimen", "kind", "item", "annotator", "pass", "marked", "id", "length_mm", "x_mm", "y_mm", "z_mm"];
 
 /**
- * The item table in long form: a row for each item and pass, also where the pass has none of it.
+ * The item table of tree files in long form: a row for each item and pass, also where the pass has none of it.
  * @param tolerance, merge millimetres, as for the agreement itself.
  */
 export function itemsCsv(files: readonly StudyFile[], tolerance: number, merge: number, method: string | null): string {
-  const study = studyOf(files, merge, method);
-  const items = study.specimens.map((specimen) => itemsAtTolerances(specimen, [tolerance], merge)[0]!);
+  return itemsCsvOf(studyOf(files, merge, method), tolerance, merge);
+}
+
+/** The item table of a study. @param tolerance, merge millimetres. */
+export function itemsCsvOf(study: Study, tolerance: number, merge: number): string {
+  const items = study.specimens.map((specimen) => itemsAt(specimen, tolerance, merge));
   return writeCsv([HEADER, ...longRows(study, items)]);
 }
 

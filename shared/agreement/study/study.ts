@@ -7,6 +7,7 @@ import {
   nodeNearness,
   strandNearness,
 } from "#shared/agreement/items.ts";
+import { threeTolerances } from "#shared/agreement/selection.ts";
 import { compareIds } from "#shared/compare/canonical.ts";
 import { TautlineError } from "#shared/errors.ts";
 import { type ChordaeFile, frameOf } from "#shared/formats/chordae/chordae-file.ts";
@@ -96,8 +97,25 @@ export function studyOf(files: readonly StudyFile[], merge: number, method: stri
   return { annotators, specimens, warnings };
 }
 
-/** Items of all passes over a specimen at each tolerance of strands, millimetres; nodes have twice as much. */
-export function itemsAtTolerances(specimen: StudySpecimen, tolerances: readonly number[], merge: number): SpecimenItems[] {
+/** Items already sorted, by the specimen and what they were asked for: the agreement, its report and its table share them. */
+const sorted = new WeakMap<StudySpecimen, Map<string, readonly SpecimenItems[]>>();
+
+/** Items of a specimen at half, once and twice a tolerance of strands; nodes have twice as much. Millimetres. */
+export function itemsAtThree(specimen: StudySpecimen, tolerance: number, merge: number): readonly SpecimenItems[] {
+  const known = sorted.get(specimen) ?? new Map<string, readonly SpecimenItems[]>();
+  sorted.set(specimen, known);
+  const key = `${tolerance} ${merge}`;
+  const found = known.get(key) ?? itemsAtTolerances(specimen, threeTolerances(tolerance), merge);
+  known.set(key, found);
+  return found;
+}
+
+/** Items of a specimen at a tolerance, as every part of an agreement sees them. Millimetres. */
+export function itemsAt(specimen: StudySpecimen, tolerance: number, merge: number): SpecimenItems {
+  return itemsAtThree(specimen, tolerance, merge)[1]!;
+}
+
+function itemsAtTolerances(specimen: StudySpecimen, tolerances: readonly number[], merge: number): SpecimenItems[] {
   const most = Math.max(...tolerances);
   const strands = strandNearness(specimen.passes, most, merge);
   const nodes = nodeNearness(specimen.passes, nodeTolerance(most), merge);
