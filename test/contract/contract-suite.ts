@@ -6,6 +6,7 @@ import { type SamplePorts, SECRET, samplePorts } from "#test/contract/sample-por
 import { REFUSED, sampleRequests } from "#test/contract/sample-requests.ts";
 import type { OpenShell, Sending, Shell } from "#test/contract/shells.ts";
 import { SPECIMEN } from "#test/main/node/sample-library.ts";
+import { samplePng } from "#test/main/node/study/sample-png.ts";
 
 const JSON_TYPE = { "content-type": "application/json" };
 
@@ -154,7 +155,7 @@ export function contractSuite(name: string, open: OpenShell): void {
 
     it("answers every route, and refuses every route without the run's token where one is needed", async () => {
       const { epoch, head } = await sample.ports.library.readLog(SPECIMEN, sample.pass, 0);
-      for (const [route, request] of Object.entries(sampleRequests(sample.pass, { epoch, head }, sample.job))) {
+      for (const [route, request] of Object.entries(sampleRequests(sample.pass, { epoch, head }, sample.job, sample.study))) {
         const { method, path } = ROUTES[route as RouteName];
         const target = path.replace(/:([a-z]+)/g, (_, key: string) => request.path![key]!) + (request.query ?? "");
         const body = request.body === undefined ? {} : { body: JSON.stringify(request.body) };
@@ -175,6 +176,17 @@ export function contractSuite(name: string, open: OpenShell): void {
         await answer.body?.cancel().catch(() => undefined);
       }
       expect(faults).toEqual([]);
+    });
+
+    it("keeps a still picture without what programs write into it, and gives it back", async () => {
+      const target = `/api/studies/${sample.study.study}/pictures`;
+      const answer = await shell.send(target, { method: "POST", body: samplePng("made by somebody") });
+      const { picture } = (await answer.json()) as { picture: string };
+      const kept = await shell.send(`${target}/${picture}`);
+      expect(kept.headers.get("content-type")).toBe("image/png");
+      expect(Buffer.from(await kept.arrayBuffer())).toEqual(Buffer.from(samplePng()));
+      const tooBig = await shell.send(target, { method: "POST", body: new Uint8Array(4 * 1024 * 1024 + 1) });
+      expect([tooBig.status, (await errorOf(tooBig)).tag]).toEqual([400, "bad-request"]);
     });
 
     it("hands the engine what was asked and gives its frames back byte for byte", async () => {

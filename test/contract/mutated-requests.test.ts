@@ -65,7 +65,7 @@ describe("requests whose bodies were mutated", () => {
 
   it("get an answer or a tagged refusal, never a fault of the program", async () => {
     const { epoch, head } = await sample.ports.library.readLog(SPECIMEN, sample.pass, 0);
-    const { removeSpecimen: _, ...requests } = sampleRequests(sample.pass, { epoch, head }, sample.job);
+    const { removeSpecimen: _, ...requests } = sampleRequests(sample.pass, { epoch, head }, sample.job, sample.study);
     for (const [index, [route, request]] of Object.entries(requests).entries()) {
       if (request.body === undefined) continue;
       const { method, path } = ROUTES[route as RouteName];

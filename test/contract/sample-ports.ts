@@ -5,14 +5,17 @@ import type { Ports } from "#main/http/ports.ts";
 import { Events } from "#main/node/events.ts";
 import { folders } from "#main/node/folders.ts";
 import { Jobs } from "#main/node/jobs.ts";
+import type { Library } from "#main/node/library.ts";
 import { pageFiles } from "#main/node/page-files.ts";
 import { studyPorts } from "#main/node/study/study-ports.ts";
 import type { Engine } from "#shared/api/engine.ts";
 import type { ProjectionsAnswer } from "#shared/api/projections.ts";
 import type { ScanLookAnswer } from "#shared/api/routes.ts";
 import { TautlineError } from "#shared/errors.ts";
+import { beginningProtocol } from "#shared/study/protocol.ts";
 import { putSpecimen, SPECIMEN, sampleLibrary } from "#test/main/node/sample-library.ts";
 import { countingBytes } from "#test/main/node/sample-log.ts";
+import { samplePng } from "#test/main/node/study/sample-png.ts";
 import { UnsyncedFiles } from "#test/main/node/unsynced-files.ts";
 
 /** What no answer may ever hold: it lies outside the page's folder. */
@@ -26,7 +29,15 @@ export interface SamplePorts {
   /** Requests that reached the engine, by method. */
   readonly asked: Map<string, unknown>;
   readonly job: string;
+  /** A study with an unfrozen protocol and a picture, and an assignment of another study. */
+  readonly study: SampleStudy;
   close(): Promise<void>;
+}
+
+export interface SampleStudy {
+  readonly study: string;
+  readonly picture: string;
+  readonly assignment: string;
 }
 
 /** Real library, page files and jobs; an engine that answers with what it was asked. */
@@ -104,7 +115,40 @@ export async function samplePorts(): Promise<SamplePorts> {
     page: pageFiles(page),
     windows: { seen: (window) => void seen.push(window), left: (window) => void left.push(window) },
   };
-  return { ports, pass, left, seen, asked, job, close: () => rm(folder, { recursive: true }) };
+  const sampleStudy = await putStudy(files, library, study);
+  return { ports, pass, left, seen, asked, job, study: sampleStudy, close: () => rm(folder, { recursive: true }) };
+}
+
+/** Puts a study, and an assignment as one stands after it was taken in, and a folder for packets. */
+async function putStudy(
+  files: UnsyncedFiles,
+  library: Library,
+  { studies }: ReturnType<typeof studyPorts>,
+): Promise<SampleStudy> {
+  await files.makeFolder("/stick");
+  const { id } = await studies.create({ name: "S", specimens: [SPECIMEN], training: [], annotators: ["AN-1"], passes: 2 });
+  const { picture } = await studies.addPicture(id, samplePng());
+  const assignment = "a0000000000000000001";
+  await putSpecimen(files, library, assignment);
+  const { id: pass } = await library.passes.create(assignment, "BCDF-GHJK");
+  await files.makeFolder(join(library.layout.specimen(assignment), "pictures"));
+  await files.create(library.layout.assignmentPicture(assignment, picture), samplePng());
+  await library.assignments.write({
+    format: "tautline-assignment",
+    version: 1,
+    study: "f0000000000000000001",
+    assignment,
+    code: "BCDF-GHJK",
+    training: false,
+    protocol: { version: 1, sha256: "1".repeat(64) },
+    rules: beginningProtocol().drawing,
+    pass,
+    taken: 5,
+    packet: "2".repeat(64),
+    from: null,
+    returned: null,
+  });
+  return { study: id, picture, assignment };
 }
 
 function sampleEngine(asked: Map<string, unknown>): Engine {

@@ -1,4 +1,6 @@
 import type { RouteName } from "#shared/api/routes.ts";
+import { beginningProtocol } from "#shared/study/protocol.ts";
+import type { SampleStudy } from "#test/contract/sample-ports.ts";
 import { SPECIMEN } from "#test/main/node/sample-library.ts";
 
 const ticket = { window: "w1", lane: "section", number: 1 };
@@ -8,7 +10,15 @@ const points = [0, 0, 0, 1, 1, 1];
 const grey = { low: 0, high: 255 };
 
 /** A good request for every route: path parameters filled in, and a body where the route has one. */
-export function sampleRequests(pass: string, log: { epoch: string; head: { seq: number; hash: string } }, job: string) {
+export function sampleRequests(
+  pass: string,
+  log: { epoch: string; head: { seq: number; hash: string } },
+  job: string,
+  given: SampleStudy = { study: "", picture: "", assignment: "" },
+) {
+  const study = { study: given.study };
+  const assigned = { specimen: given.assignment };
+  const content = beginningProtocol();
   const engine = (more: object) => ({ ticket, specimen: SPECIMEN, ...more });
   const requests: Record<RouteName, { path?: Record<string, string>; query?: string; body?: object }> = {
     hello: {},
@@ -65,6 +75,34 @@ export function sampleRequests(pass: string, log: { epoch: string; head: { seq: 
     film: { body: engine({ points, count: 1, side: 2, halfWidthMm: 1, ...grey }) },
     surface: { body: engine({ limit: 100, polarity: "bright" }) },
     exportTrees: { body: { specimen: SPECIMEN, pass, format: "tables" } },
+    studies: {},
+    createStudy: { body: { name: "S2", specimens: [SPECIMEN], training: [], annotators: ["AN-1", "AN-2"], passes: 1 } },
+    study: { path: study },
+    changeStudy: { path: study, body: { name: "S3", annotators: ["AN-1", "AN-2"] } },
+    changeProtocol: {
+      path: study,
+      body: { content: { ...content, analysis: { ...content.analysis, primary: "total length" } } },
+    },
+    freezeProtocol: { path: study, body: {} },
+    reviseProtocol: { path: study, body: { reason: "a rule was unclear" } },
+    addPicture: { path: study, body: { no: "picture" } },
+    studyPicture: { path: { ...study, picture: given.picture } },
+    makePackets: {
+      path: study,
+      body: { assignments: ["a1"], folder: "/stick", form: "zip", scan: "within", sign: true, waiveWashout: false },
+    },
+    setAsidePass: { path: { ...study, assignment: "a1" }, body: { reason: "drawn on the wrong side" } },
+    studyAnalysis: { path: study },
+    studyPasses: { path: study },
+    exportPasses: { path: study, body: { folder: "/stick" } },
+    lookAtPacket: { body: { path: "/stick/none.zip" } },
+    takeInPacket: { body: { path: "/stick/none.zip", allowOpenEnds: true } },
+    signature: {},
+    assignment: { path: assigned },
+    assignmentPicture: { path: { ...assigned, picture: given.picture } },
+    makeReturn: { path: assigned, body: { folder: "/stick", form: "folder", sign: false } },
+    reopenAssignment: { path: assigned, body: {} },
+    removeStudy: { path: study, body: {} },
     bye: { body: { window: "w1" } },
     removeSpecimen: { path: { specimen: SPECIMEN }, body: { force: true } },
   };
@@ -76,4 +114,11 @@ export const REFUSED: Partial<Record<RouteName, string>> = {
   snap: "superseded",
   keepBranch: "bad-request",
   rebuildLog: "conflict",
+  addPicture: "unreadable-input",
+  makePackets: "not-found",
+  setAsidePass: "not-found",
+  studyPasses: "conflict",
+  exportPasses: "conflict",
+  lookAtPacket: "not-found",
+  takeInPacket: "not-found",
 };
