@@ -59,6 +59,6 @@ function Screen({ services, shown }: { readonly services: Services; readonly sho
     case "study":
       return <Study key={shown.study} services={services} study={shown.study} part={shown.part} />;
     case "shelf":
-      return <Shelf services={services} />;
+      return <Shelf services={services} handBack={shown.handBack ?? null} />;
   }
 }

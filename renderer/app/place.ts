@@ -1,6 +1,7 @@
 /** Which screen is shown; kept in the address's fragment so that a reload and the back button work. */
 export type Place =
-  | { readonly screen: "shelf" }
+  /** `handBack`: the assignment that is being handed back there. */
+  | { readonly screen: "shelf"; readonly handBack?: string }
   | { readonly screen: "desk"; readonly specimen: string; readonly pass: string }
   | { readonly screen: "side-by-side"; readonly specimen: string; readonly a: string; readonly b: string }
   | { readonly screen: "study"; readonly study: string; readonly part: StudyPart };
@@ -13,7 +14,7 @@ export type StudyPart = (typeof STUDY_PARTS)[number];
 export function fragmentOf(place: Place): string {
   switch (place.screen) {
     case "shelf":
-      return "#/shelf";
+      return place.handBack === undefined ? "#/shelf" : path("shelf", "hand-back", place.handBack);
     case "desk":
       return path("desk", place.specimen, place.pass);
     case "side-by-side":
@@ -28,6 +29,7 @@ export function placeOf(fragment: string): Place {
   const parts = partsOf(fragment);
   const [screen, specimen, first, second] = parts;
   if (screen === "study") return studyPlace(parts);
+  if (screen === "shelf" && specimen === "hand-back" && parts.length === 3 && first !== "") return { screen, handBack: first! };
   if (parts.some((part) => part === "") || specimen === undefined || first === undefined) return { screen: "shelf" };
   if (screen === "desk" && parts.length === 3) return { screen, specimen, pass: first };
   if (screen === "side-by-side" && parts.length === 4) return { screen, specimen, a: first, b: second! };

@@ -1,4 +1,5 @@
 import { useEffect, useMemo } from "preact/hooks";
+import { AssignmentLine } from "#renderer/desk/lines/assignment-line.tsx";
 import { FootLine } from "#renderer/desk/lines/foot-line.tsx";
 import { HeadLine } from "#renderer/desk/lines/head-line.tsx";
 import { PlaybackBar } from "#renderer/desk/lines/playback-bar.tsx";
@@ -23,6 +24,7 @@ export function DeskScreen({ model }: { readonly model: DeskModel }) {
   return (
     <div class="desk">
       <HeadLine model={model} context={context} />
+      <AssignmentLine model={model} />
       <WhyReadOnly model={model} />
       <PlaybackBar model={model} />
       <main class="desk-panes">

@@ -20,6 +20,8 @@ import { TakeInSheet } from "#renderer/study/packets/take-in-sheet.tsx";
 
 export interface ShelfProps {
   readonly services: Services;
+  /** The assignment that is being handed back; null = none. */
+  readonly handBack: string | null;
 }
 
 const STEPS_KEY = "tautline-first-steps";
@@ -38,7 +40,7 @@ function modelOf({ client, notices }: Services): ShelfModel {
 }
 
 /** The start screen: specimens of the library with their passes, and the ways to add a scan. */
-export function Shelf({ services }: ShelfProps) {
+export function Shelf({ services, handBack }: ShelfProps) {
   const { client, capabilities, notices } = services;
   const model = modelOf(services);
   useEffect(() => {
@@ -159,7 +161,12 @@ export function Shelf({ services }: ShelfProps) {
           </section>
         ) : null}
         {studies === null ? null : (
-          <AssignmentRows services={services} assignments={studies.assignments} shelf={answer?.specimens ?? []} />
+          <AssignmentRows
+            handBack={handBack}
+            services={services}
+            assignments={studies.assignments}
+            shelf={answer?.specimens ?? []}
+          />
         )}
         {studies === null ? null : <StudyRows services={services} studies={studies.studies} />}
         <ul class="shelf-rows" aria-label="Specimens">

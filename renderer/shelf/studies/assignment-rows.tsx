@@ -1,4 +1,3 @@
-import { useState } from "preact/hooks";
 import type { Services } from "#renderer/app/services.ts";
 import { SpecimenPicture } from "#renderer/shelf/specimen-picture.tsx";
 import { dateWords, passWords } from "#renderer/shelf/words.ts";
@@ -11,10 +10,12 @@ export interface AssignmentRowsProps {
   readonly assignments: readonly AssignmentSummary[];
   /** What the shelf says of the scans; an assignment that was handed back is not among them. */
   readonly shelf: readonly ShelfSpecimen[];
+  /** The assignment that is being handed back; null = none. */
+  readonly handBack: string | null;
 }
 
 /** Assignments to work on, a row each: a code, and nothing that tells which valve it is. */
-export function AssignmentRows({ services, assignments, shelf }: AssignmentRowsProps) {
+export function AssignmentRows({ services, assignments, shelf, handBack }: AssignmentRowsProps) {
   if (assignments.length === 0) return null;
   return (
     <section class="shelf-group" aria-label="Assignments">
@@ -24,6 +25,7 @@ export function AssignmentRows({ services, assignments, shelf }: AssignmentRowsP
             key={assignment.specimen}
             services={services}
             assignment={assignment}
+            asking={handBack === assignment.specimen}
             shown={shelf.find(({ specimen }) => specimen.id === assignment.specimen)}
           />
         ))}
@@ -36,10 +38,10 @@ interface AssignmentRowProps {
   readonly services: Services;
   readonly assignment: AssignmentSummary;
   readonly shown: ShelfSpecimen | undefined;
+  readonly asking: boolean;
 }
 
-function AssignmentRow({ services, assignment, shown }: AssignmentRowProps) {
-  const [asking, setAsking] = useState(false);
+function AssignmentRow({ services, assignment, shown, asking }: AssignmentRowProps) {
   const { specimen, code, pass, state, taken } = assignment;
   const summary = shown?.passes.find(({ id }) => id === pass);
   const reopen = async () => {
@@ -76,13 +78,13 @@ function AssignmentRow({ services, assignment, shown }: AssignmentRowProps) {
             <button type="button" class="button main" onClick={() => services.goTo({ screen: "desk", specimen, pass })}>
               Open<span class="unseen"> assignment {code}</span>
             </button>
-            <button type="button" class="button" onClick={() => setAsking(true)}>
+            <button type="button" class="button" onClick={() => services.goTo({ screen: "shelf", handBack: specimen })}>
               Hand it back …<span class="unseen"> {code}</span>
             </button>
           </>
         )}
       </div>
-      {asking ? <HandBackSheet services={services} specimen={specimen} close={() => setAsking(false)} /> : null}
+      {asking ? <HandBackSheet services={services} specimen={specimen} close={() => services.goTo({ screen: "shelf" })} /> : null}
     </li>
   );
 }

@@ -3,22 +3,21 @@ import type { Services } from "#renderer/app/services.ts";
 import { Sheet } from "#renderer/app/sheet.tsx";
 import { plural } from "#renderer/shelf/words.ts";
 import { PacketList } from "#renderer/study/packets/make-packets-sheet.tsx";
+import { OpenEndList } from "#renderer/study/packets/open-end-list.tsx";
 import { FolderField, keepLastFolder, lastFolder } from "#renderer/study/parts/folder-field.tsx";
 import { JobLine } from "#renderer/study/parts/job-line.tsx";
 import { useJob } from "#renderer/study/parts/use-job.ts";
-import type { AssignmentView, OpenEnd, PacketForm } from "#shared/api/study.ts";
+import type { AssignmentView, PacketForm } from "#shared/api/study.ts";
 
 export interface HandBackSheetProps {
   readonly services: Services;
   /** The assignment's specimen. */
   readonly specimen: string;
   readonly close: () => void;
-  /** Shows an open end on the desk; left out where there is no desk. */
-  readonly show?: (end: OpenEnd) => void;
 }
 
 /** Writes the pass of an assignment as a packet for the study lead; says first what is unfinished. */
-export function HandBackSheet({ services, specimen, close, show }: HandBackSheetProps) {
+export function HandBackSheet({ services, specimen, close }: HandBackSheetProps) {
   const { client, capabilities } = services;
   const [view, setView] = useState<AssignmentView | null>(null);
   const [failure, setFailure] = useState<string | null>(null);
@@ -38,19 +37,15 @@ export function HandBackSheet({ services, specimen, close, show }: HandBackSheet
     keepLastFolder(folder.trim());
     void job.start(() => client.studies.makeReturn(specimen, { folder: folder.trim(), form, sign }));
   };
-  const leave = () => {
-    close();
-    services.goTo({ screen: "shelf" });
-  };
   if (job.run.kind === "done") {
     const packets = job.run.result.packets ?? [];
     const foot = (
-      <button type="button" class="button main" onClick={leave}>
+      <button type="button" class="button main" onClick={close}>
         Done
       </button>
     );
     return (
-      <Sheet title="Handed back" close={leave} foot={foot} kind="packet-sheet">
+      <Sheet title="Handed back" close={close} foot={foot} kind="packet-sheet">
         <PacketList packets={packets} show={capabilities.shell === "electron" ? capabilities.showInFolder : null} />
         <p class="soft">
           Bring it to the study lead. The pass is sealed: to mend something in it, open it again on the shelf and hand it back
@@ -91,7 +86,7 @@ export function HandBackSheet({ services, specimen, close, show }: HandBackSheet
               {plural(ends.length, "end")} in this pass {ends.length === 1 ? "is" : "are"} still open, which is unfinished work.
               The study lead's program refuses the packet because of that. Finish each: say how it ends, or take the strand away.
             </p>
-            <OpenEndList ends={ends} show={show} />
+            <OpenEndList ends={ends} show={null} />
           </div>
           <label class="scan-choice">
             <input type="checkbox" checked={anyway} onChange={(event) => setAnyway(event.currentTarget.checked)} />
@@ -115,26 +110,5 @@ export function HandBackSheet({ services, specimen, close, show }: HandBackSheet
       </label>
       <JobLine job={job} label="Making the packet" />
     </Sheet>
-  );
-}
-
-/** Open ends by their trees. */
-function OpenEndList({ ends, show }: { readonly ends: readonly OpenEnd[]; readonly show: HandBackSheetProps["show"] }) {
-  return (
-    <ul class="open-ends" aria-label="Open ends">
-      {ends.map((end) => (
-        <li key={`${end.tree} ${end.node}`}>
-          {end.treeName}, node {end.node}
-          {show === undefined ? null : (
-            <button type="button" class="button plain" onClick={() => show(end)}>
-              Go there
-              <span class="unseen">
-                : {end.treeName}, {end.node}
-              </span>
-            </button>
-          )}
-        </li>
-      ))}
-    </ul>
   );
 }

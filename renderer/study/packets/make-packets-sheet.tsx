@@ -132,7 +132,7 @@ function Tick({
         {model.nameOf(cell)}
         {cell.training ? ", training" : ""} <span class="soft figures">{cell.code}</span>
         {cell.state === "out" ? <span class="soft"> (is out already; made again)</span> : null}
-        {cell.why === null || ticked ? null : <span class="soft"> {cell.why}</span>}
+        {cell.why === null || ticked ? null : <span class="soft"> · {cell.why}</span>}
       </span>
     </label>
   );

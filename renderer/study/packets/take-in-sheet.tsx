@@ -146,8 +146,12 @@ function LookedAt({ found, allowOpen, setAllowOpen, disabled }: LookedAtProps) {
         This is <strong>{KINDS[found.kind]}</strong>, code <strong class="figures">{found.code}</strong>. {found.meaning}
       </p>
       <dl class="facts">
-        <dt>Protocol</dt>
-        <dd>version {found.protocolVersion}</dd>
+        {found.protocolVersion === null ? null : (
+          <>
+            <dt>Protocol</dt>
+            <dd>version {found.protocolVersion}</dd>
+          </>
+        )}
         <dt>Holds</dt>
         <dd>
           {plural(found.files, "file")}, {bytesWords(found.bytes)}

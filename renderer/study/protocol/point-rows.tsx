@@ -1,4 +1,4 @@
-import { useEffect, useRef, useState } from "preact/hooks";
+import { StillPicture } from "#renderer/study/protocol/still-picture.tsx";
 import type { PointRule } from "#shared/study/protocol.ts";
 
 export interface PointRowsProps {
@@ -64,7 +64,7 @@ export function PointRows({ points, set, keepPicture, readPicture, failed, disab
             {rule.picture === null ? (
               <p class="soft">no still picture</p>
             ) : (
-              <Still sha256={rule.picture} read={readPicture} label={`Still picture: ${rule.point}`} />
+              <StillPicture sha256={rule.picture} read={readPicture} label={`Still picture: ${rule.point}`} />
             )}
             {disabled ? null : (
               <div class="row">
@@ -101,49 +101,5 @@ export function PointRows({ points, set, keepPicture, readPicture, failed, disab
         </div>
       )}
     </div>
-  );
-}
-
-function Still({
-  sha256,
-  read,
-  label,
-}: {
-  readonly sha256: string;
-  readonly read: PointRowsProps["readPicture"];
-  readonly label: string;
-}) {
-  // Drawn, since a page may show no addresses but its own, and the picture needs the run's token.
-  const canvas = useRef<HTMLCanvasElement>(null);
-  const [state, setState] = useState<"reading" | "shown" | "missing">("reading");
-  useEffect(() => {
-    let gone = false;
-    setState("reading");
-    read(sha256)
-      .then((blob) => createImageBitmap(blob))
-      .then((picture) => {
-        if (!gone && canvas.current !== null) {
-          canvas.current.width = picture.width;
-          canvas.current.height = picture.height;
-          canvas.current.getContext("2d")?.drawImage(picture, 0, 0);
-          setState("shown");
-        }
-        picture.close();
-      })
-      // The rule stands without its picture; the row says that it is missing.
-      .catch(() => !gone && setState("missing"));
-    return () => {
-      gone = true;
-    };
-  }, [sha256, read]);
-  return (
-    <>
-      {state === "shown" ? null : (
-        <p class={state === "missing" ? "warn" : "soft"}>
-          {state === "missing" ? "The picture cannot be read." : "reading the picture"}
-        </p>
-      )}
-      <canvas ref={canvas} class="still" role="img" aria-label={label} hidden={state !== "shown"} />
-    </>
   );
 }

@@ -46,7 +46,7 @@ export function ProtocolPart({ model, view }: PartProps) {
         )}
       </div>
       {protocol.frozen === null ? null : (
-        <p class="soft">
+        <p class="soft frozen-line">
           SHA-256 <span class="figures hash">{protocol.frozen.sha256}</span>. A frozen version never changes: passes and numbers
           rest on it.
         </p>

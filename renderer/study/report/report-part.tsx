@@ -96,7 +96,7 @@ function RestsOn({ analysis }: { readonly analysis: AnalysisAnswer }) {
   if (analysis.refusal !== null) {
     return (
       <>
-        <p class="study-refusal">{analysis.refusal}</p>
+        <p class="study-missing">{analysis.refusal}</p>
         <p class="soft">The report is made from frozen rules and passes that came back; it says so when something is missing.</p>
       </>
     );

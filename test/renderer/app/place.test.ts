@@ -5,6 +5,7 @@ describe("places in the address", () => {
   it("come back from their fragment", () => {
     const places: Place[] = [
       { screen: "shelf" },
+      { screen: "shelf", handBack: "a1" },
       { screen: "desk", specimen: "a b/c", pass: "p#1" },
       { screen: "side-by-side", specimen: "a", a: "p#1", b: "file~x y.json" },
       { screen: "study", study: "s/1", part: "report" },
@@ -27,6 +28,8 @@ describe("places in the address", () => {
       "#/side-by-side/a/b",
       "#/side-by-side/a/b/c/d",
       "#/study",
+      "#/shelf/hand-back",
+      "#/shelf/hand-back/",
       "#/study/",
       "#/study/s1/other",
       "#/study/s1/report/more",

@@ -131,7 +131,7 @@ const job = (change: Partial<JobState>): void =>
 Object.assign(window, { shelf: { asked, job, tell } });
 render(
   <>
-    <Shelf services={services} />
+    <Shelf services={services} handBack={null} />
     <NoticeList notices={services.notices} />
   </>,
   document.getElementById("app")!,
