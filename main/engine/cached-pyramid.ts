@@ -25,7 +25,7 @@ export function cachedPyramid(cache: BrickCache, folder: string, volume: Specime
   const { dtype, size, spacing, origin, direction, frame } = volume;
   const grid = { size, spacing, origin, direction, frame };
   const levels = pyramidLevels(grid);
-  const files = new StoreFiles(join(folder, STORE_NAME), dtype, levels);
+  const files = new StoreFiles(join(folder, STORE_NAME), volume, levels);
   const depthShift = brickDepthShift(dtype);
   const perSlot = BRICK_BYTES / BYTES_OF_DTYPE[dtype];
   const voxels = viewAs(dtype, cache.memory.voxels);

@@ -74,6 +74,21 @@ function checkVolume(value: unknown, check: Check): void {
   check(isObject(range) && isNumber(range.min) && isNumber(range.max), "volume.range", "min and max", volume.range);
   const from = volume.derivedFrom;
   check(from === undefined || isDerivation(from), "volume.derivedFrom", "a hash, and crop and bin where they are given", from);
+  const { packing, inPlace } = volume;
+  check(packing === undefined || packing === "gzip", "volume.packing", "gzip or nothing", packing);
+  check(inPlace === undefined || isInPlace(inPlace), "volume.inPlace", "a path, an array and what it was like", inPlace);
+}
+
+function isInPlace(value: unknown): boolean {
+  if (!isObject(value) || !isText(value.path) || typeof value.array !== "string") return false;
+  if (value.array.includes("\\") || value.array.split("/").includes("..")) return false;
+  if (!isOneOf(value.metadata, ["zarr.json", ".zarray"])) return false;
+  const axes = value.selection;
+  if (!isArrayOf(axes, (index) => index === null || isCount(index))) return false;
+  return (
+    (axes as unknown[]).filter((index) => index === null).length === 3 &&
+    ["files", "bytes", "changed"].every((key) => isCount(value[key]))
+  );
 }
 
 function isDerivation(value: unknown): boolean {

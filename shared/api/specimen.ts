@@ -20,6 +20,25 @@ export interface SpecimenVolume {
   readonly blurFwhmMm: number | null;
   readonly range: { readonly min: number; readonly max: number };
   readonly derivedFrom?: { readonly sha256: string; readonly crop?: readonly number[]; readonly bin?: number };
+  /** How the bricks of the store are packed; absent: not at all. */
+  readonly packing?: "gzip";
+  /** Set when the finest level is read where the scan lies; the store holds the coarser ones. */
+  readonly inPlace?: InPlaceScan;
+}
+
+/** A Zarr array that a specimen uses where it lies, and what it was like when its hash was taken. */
+export interface InPlaceScan {
+  /** Folder of the OME-Zarr group on this computer. */
+  readonly path: string;
+  /** Path of the finest level's array under it, and of its metadata under that. */
+  readonly array: string;
+  readonly metadata: "zarr.json" | ".zarray";
+  /** Per array axis: null for the three of space (z, y, x), else the one index that is read. */
+  readonly selection: readonly (number | null)[];
+  /** Files under the array's folder, their bytes, and their latest change in UTC milliseconds. */
+  readonly files: number;
+  readonly bytes: number;
+  readonly changed: number;
 }
 
 export interface SpecimenFacts {

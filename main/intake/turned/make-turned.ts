@@ -9,7 +9,7 @@ import { turnedSource } from "#main/intake/turned/turned-source.ts";
  */
 export async function makeTurned(order: TurnedOrder, hooks: IntakeHooks = {}): Promise<SpecimenResult> {
   const { volume, code } = order;
-  const source = turnedSource({ store: order.store, dtype: volume.dtype, grid: volume, turn: order.turn, name: code });
+  const source = turnedSource({ store: order.store, volume, turn: order.turn, name: code });
   try {
     const options = {
       library: order.library,

@@ -1,6 +1,7 @@
 import { stopIfAborted } from "#main/intake/read-file.ts";
 import type { PlaneRun, SliceSource } from "#main/intake/slice-source.ts";
 import { StoredChunks } from "#main/intake/turned/stored-chunks.ts";
+import type { SpecimenVolume } from "#shared/api/specimen.ts";
 import { type Turn, turnedFrame } from "#shared/study/turn.ts";
 import { BYTES_OF_DTYPE, type StoredDtype } from "#shared/volume/dtype.ts";
 import type { VolumeGrid } from "#shared/volume/grid.ts";
@@ -12,8 +13,7 @@ const RUN_BYTES = 256 * 1024 * 1024;
 export interface TurnedScan {
   /** The store of the scan as it is. */
   readonly store: string;
-  readonly dtype: StoredDtype;
-  readonly grid: VolumeGrid;
+  readonly volume: SpecimenVolume;
   readonly turn: Turn;
   /** Name that the turned scan goes by; the scan's own stands nowhere. */
   readonly name: string;
@@ -23,9 +23,11 @@ export interface TurnedScan {
  * A stored scan as a stream of slices of the turned one, in the neutral frame of `turnedFrame`. Every chunk of the store is read
  * once where 32 slices fit into memory; voxels are moved, none is changed.
  */
-export function turnedSource({ store, dtype, grid, turn, name }: TurnedScan): SliceSource {
+export function turnedSource({ store, volume, turn, name }: TurnedScan): SliceSource {
+  const { dtype } = volume;
+  const grid: VolumeGrid = volume;
   const { grid: shown } = turnedFrame(grid, turn);
-  const chunks = new StoredChunks(store, dtype);
+  const chunks = new StoredChunks(store, volume);
   const [nx, ny, nz] = shown.size;
   return {
     name,
@@ -48,7 +50,7 @@ export function turnedSource({ store, dtype, grid, turn, name }: TurnedScan): Sl
     bytesRead: () => chunks.bytesRead,
     readPlanes: (z0, z1, signal) => turnedPlanes(chunks, { grid, turn, dtype, z0, z1, signal }),
     fingerprint: async () => "",
-    close: () => chunks.close(),
+    close: async () => chunks.close(),
   };
 }
 
@@ -80,14 +82,14 @@ async function* turnedPlanes(chunks: StoredChunks, planes: Planes): AsyncGenerat
     const [low, high] = flips[2] ? [at(z) - count + 1, at(z) + 1] : [at(z), at(z) + count];
     const range: [number, number][] = grid.size.map((side) => [0, side]);
     range[axes[2]] = [low, high];
-    await fill(chunks, grid, turn, range, data, [1, nx, nx * ny], z, signal);
+    fill(chunks, grid, turn, range, data, [1, nx, nx * ny], z, signal);
     yield { z, count, data };
     z += count;
   }
 }
 
 /** Moves the stored voxels of a box to their turned places. @param range stored indices per axis x, y, z, [from, to) */
-async function fill(
+function fill(
   chunks: StoredChunks,
   grid: VolumeGrid,
   { axes, flips }: Turn,
@@ -96,7 +98,7 @@ async function fill(
   strides: readonly [number, number, number],
   firstPlane: number,
   signal: AbortSignal | undefined,
-): Promise<void> {
+): void {
   // Per stored axis: where a voxel's shown index goes in `data`, as start + index * step.
   const step = [0, 0, 0];
   let start = -firstPlane * strides[2];
@@ -112,7 +114,7 @@ async function fill(
     for (let cy = first[1]!; cy < last[1]!; cy += 1)
       for (let cx = first[0]!; cx < last[0]!; cx += 1) {
         stopIfAborted(signal, "turning the scan");
-        const chunk = await chunks.read(cz, cy, cx);
+        const chunk = chunks.read(cz, cy, cx);
         const [x0, x1] = within(range[0]!, cx, sx);
         const [y0, y1] = within(range[1]!, cy, sy);
         const [z0, z1] = within(range[2]!, cz, sz);

@@ -72,15 +72,21 @@ export interface ShardIndex {
 /**
  * The index held by the last {@link INDEX_BYTES} bytes of a shard file.
  * @param bytes exactly those bytes: uint64 little-endian pairs (offset, length), both 2^64 - 1 for a missing chunk, then crc32c.
- * @param file named in errors.
+ * @param file named in errors. @param shape of another writer's shards: how many chunks, and whether there is a checksum.
  * @throws unreadable-input when the length or the checksum is wrong.
  * @source Zarr v3 core, codec `sharding_indexed`, index codecs `bytes` (little) and `crc32c`, `index_location` "end".
  */
-export function parseShardIndex(bytes: Uint8Array, file = "shard"): ShardIndex {
-  if (bytes.length !== INDEX_BYTES) throw unreadable(file, `a shard index of ${INDEX_BYTES} bytes`, `${bytes.length} bytes`);
+export function parseShardIndex(
+  bytes: Uint8Array,
+  file = "shard",
+  shape: { readonly chunks: number; readonly isChecked: boolean } = { chunks: CHUNKS_PER_SHARD, isChecked: true },
+): ShardIndex {
+  const pairs = shape.chunks * 16;
+  const length = pairs + (shape.isChecked ? 4 : 0);
+  if (bytes.length !== length) throw unreadable(file, `a shard index of ${length} bytes`, `${bytes.length} bytes`);
   const view = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
-  const expected = view.getUint32(INDEX_BYTES - 4, true);
-  const found = crc32c(bytes.subarray(0, INDEX_BYTES - 4));
+  const expected = shape.isChecked ? view.getUint32(pairs, true) : 0;
+  const found = shape.isChecked ? crc32c(bytes.subarray(0, pairs)) : 0;
   if (expected !== found) {
     throw unreadable(
       file,
@@ -90,9 +96,9 @@ export function parseShardIndex(bytes: Uint8Array, file = "shard"): ShardIndex {
       "The stored scan is damaged; take the scan in again.",
     );
   }
-  const offsets = new Float64Array(CHUNKS_PER_SHARD).fill(ABSENT);
-  const lengths = new Float64Array(CHUNKS_PER_SHARD);
-  for (let n = 0; n < CHUNKS_PER_SHARD; n++) {
+  const offsets = new Float64Array(shape.chunks).fill(ABSENT);
+  const lengths = new Float64Array(shape.chunks);
+  for (let n = 0; n < shape.chunks; n++) {
     const offset = view.getBigUint64(n * 16, true);
     if (offset === MISSING) continue;
     offsets[n] = Number(offset);
