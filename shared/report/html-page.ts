@@ -46,7 +46,7 @@ svg { max-width: 100%; height: auto; }
   th, td { padding: .18rem .4rem; }
   .notes { font-size: 7.5pt; }
   .table { overflow: visible; }
-  p:has(+ .table.short), p:has(+ figure) { break-after: avoid; }
+  p:has(+ .table.short), p:has(+ figure) { break-after: avoid; break-inside: avoid; }
   .table.short, tr, figure, .cautions, li { break-inside: avoid; }
   caption { break-after: avoid; }
   thead { display: table-header-group; }
