@@ -175,7 +175,8 @@ async function bringScan(
       await files.makeFolder(join(work, ...parts.slice(0, -1)));
       await writeStreamed(files, join(work, ...parts), watched(path));
     }
-    await writeJson(files, join(work, "specimen.json"), record);
+    // The packet says nothing of time; on this library's shelf the scan is as old as its taking in.
+    await writeJson(files, join(work, "specimen.json"), { ...record, created: options.now() });
     for (const folder of [...folders].sort((a, b) => b.length - a.length)) await files.syncFolder(folder);
     await files.syncFolder(library.layout.unfinished);
     files.reach("take-in:after-scan-files");
@@ -195,6 +196,8 @@ async function bringScan(
 async function scanRecord(bag: OpenBag, id: string, sha256: string | null): Promise<SpecimenRecord> {
   const path = `${PAYLOAD_FOLDER}${SCAN_FOLDER}/specimen.json`;
   const record = parseSpecimenRecord(await readJson(bag, path), `${bag.name}, ${path}`);
+  // A packet brings its voxels along; a path would have the desk read other files of this computer.
+  if (record.volume.inPlace) throw unreadable(`${bag.name}, ${path}`, "a scan within the packet", "one that lies elsewhere");
   if (record.id !== id) throw unreadable(bag.name, `the scan of ${id}`, `one of ${record.id.slice(0, 64)}`, path);
   if (record.volume.sha256 !== sha256)
     throw unreadable(
