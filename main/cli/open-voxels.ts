@@ -6,11 +6,13 @@ import { join } from "node:path";
 import { settledSpacing } from "#main/cli/spacing-option.ts";
 import type { VerbCall } from "#main/cli/verb.ts";
 import { openStorePyramid } from "#main/engine/store-reader.ts";
+import { checkInPlace } from "#main/intake/in-place/in-place-scan.ts";
 import { openScan } from "#main/intake/open-scan.ts";
 import { readScanIntoMemory } from "#main/intake/scan-in-memory.ts";
 import type { SliceSource } from "#main/intake/slice-source.ts";
 import { takeIn } from "#main/intake/take-in.ts";
 import { createId } from "#main/node/layout.ts";
+import type { InPlaceScan } from "#shared/api/specimen.ts";
 import { TautlineError } from "#shared/errors.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
@@ -45,7 +47,9 @@ export async function openVoxels(path: string, given: Vec3 | null, call: Pick<Ve
       const what = "--spacing is for scan files; the specimen's voxel size was settled when it was taken in.";
       throw new TautlineError("misuse", what, { what });
     }
-    return storeVoxels(path, async () => {});
+    const store = storeVoxels(path, async () => {});
+    if (store.inPlace) await checkInPlace(store.inPlace);
+    return store;
   }
   const source = await openScan(path);
   try {
@@ -60,11 +64,12 @@ export async function openVoxels(path: string, given: Vec3 | null, call: Pick<Ve
   }
 }
 
-function storeVoxels(folder: string, cleanUp: () => Promise<void>): OpenVoxels {
+function storeVoxels(folder: string, cleanUp: () => Promise<void>): OpenVoxels & { readonly inPlace: InPlaceScan | undefined } {
   const store = openStorePyramid(folder);
   const { volume, polarity } = store.record;
   return {
     pyramid: store,
+    inPlace: volume.inPlace,
     sha256: volume.sha256,
     derivedFrom: volume.derivedFrom?.sha256 ?? null,
     suggestedPolarity: polarity,

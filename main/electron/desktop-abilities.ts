@@ -1,4 +1,5 @@
 import { createEngine } from "#main/engine/engine.ts";
+import { checkInPlace } from "#main/intake/in-place/in-place-scan.ts";
 import { removeUnfinished } from "#main/intake/make-specimen.ts";
 import { runDemo, runDemoPasses, runIntake, runLabels, runLook, runProjections, runTurned } from "#main/intake/run-intake.ts";
 import type { Abilities } from "#main/node/abilities.ts";
@@ -8,7 +9,11 @@ import type { Library } from "#main/node/library.ts";
 export async function desktopAbilities(library: Library, memoryBytes: number): Promise<Abilities> {
   await removeUnfinished(library.layout.root);
   const engine = createEngine({
-    library: async (id) => ({ folder: library.layout.specimen(id), record: await library.specimen(id) }),
+    library: async (id) => {
+      const record = await library.specimen(id);
+      if (record.volume.inPlace) await checkInPlace(record.volume.inPlace);
+      return { folder: library.layout.specimen(id), record };
+    },
     workerUrl: new URL("./engine-worker.mjs", import.meta.url),
     memoryBytes,
   });

@@ -27,6 +27,8 @@ export interface IntakeOutcome {
   readonly record: SpecimenRecord;
   readonly bytesRead: number;
   readonly bytesWritten: number;
+  readonly storeBytes: number;
+  readonly plainBytes: number;
   readonly seconds: number;
 }
 

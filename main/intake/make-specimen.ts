@@ -7,7 +7,7 @@ import { spooled } from "#main/intake/spool.ts";
 import { slabPlanesFor, writeStore, writeWhole } from "#main/intake/store/store-writer.ts";
 import { diskFiles, type WriteFiles } from "#main/intake/store/write-files.ts";
 import { surveySource } from "#main/intake/survey-source.ts";
-import type { Handedness, SpecimenFacts, SpecimenRecord } from "#shared/api/specimen.ts";
+import type { Handedness, InPlaceScan, SpecimenFacts, SpecimenRecord } from "#shared/api/specimen.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 import type { Landmarks } from "#shared/trees/document.ts";
@@ -21,7 +21,7 @@ import {
   regionSentence,
 } from "#shared/volume/region/region.ts";
 import { gridOf } from "#shared/volume/scan-header.ts";
-import { STORE_NAME } from "#shared/volume/store/layout.ts";
+import { SHARD_ZYX, STORE_NAME } from "#shared/volume/store/layout.ts";
 import { storeBytes } from "#shared/volume/store/store-bytes.ts";
 import { chooseStoredType, type StoredType, storedTypeOf } from "#shared/volume/stored-type.ts";
 
@@ -40,6 +40,10 @@ export interface SpecimenOptions {
   readonly mirror?: boolean;
   /** What of the scan is kept, in voxels as its file has them (before a mirror); absent: all of it. */
   readonly region?: Region;
+  /** The bricks of the store are packed with gzip. */
+  readonly isPacked?: boolean;
+  /** Where the scan's own store lies, when its finest level is used there instead of being copied. */
+  readonly inPlace?: InPlaceScan;
   /** Absent: as the values suggest. */
   readonly polarity?: Polarity;
   readonly facts: SpecimenFacts;
@@ -67,6 +71,9 @@ export interface SpecimenResult {
   readonly record: SpecimenRecord;
   readonly bytesRead: number;
   readonly bytesWritten: number;
+  /** Bytes of the store's files, and what a plain copy would take. */
+  readonly storeBytes: number;
+  readonly plainBytes: number;
   readonly seconds: number;
 }
 
@@ -98,7 +105,7 @@ export async function makeSpecimen(
   const grid = region ? regionGrid(whole, region) : whole;
   const mustSpool = options.mirror === true && !given.seekable;
   let source = given;
-  await refuseFullDisk(files, library, header, grid, mustSpool);
+  await refuseFullDisk(files, header, grid, options, mustSpool);
   try {
     await files.makeFolder(join(library, UNFINISHED));
     await files.makeFolder(work);
@@ -117,6 +124,8 @@ export async function makeSpecimen(
       folder: join(work, STORE_NAME),
       estimateBlur: options.blurFwhmMm === undefined,
       slabPlanes: options.slabPlanes ?? slabPlanesFor(planeBytes),
+      packing: options.isPacked ? "gzip" : "plain",
+      isInPlace: options.inPlace !== undefined,
       files,
       ...(hooks.signal ? { signal: hooks.signal } : {}),
       at,
@@ -140,6 +149,8 @@ export async function makeSpecimen(
         blurFwhmMm: options.blurFwhmMm === undefined ? made.blurFwhmMm : options.blurFwhmMm,
         range: made.range,
         ...(region && made.wholeSha256 ? { derivedFrom: { sha256: made.wholeSha256, crop: region.crop, bin: region.bin } } : {}),
+        ...(options.isPacked ? { packing: "gzip" } : {}),
+        ...(options.inPlace ? { inPlace: options.inPlace } : {}),
       },
       conversions: conversionsOf(header.notes, stored, options, region),
       polarity: options.polarity ?? made.suggestedPolarity,
@@ -156,7 +167,14 @@ export async function makeSpecimen(
     await at("renamed");
     for (const folder of [join(library, "specimens"), join(library, UNFINISHED), library]) await files.syncFolder(folder);
     await at("name-synced");
-    return { record, bytesRead: given.bytesRead(), bytesWritten: made.bytesWritten, seconds: (now() - began) / 1000 };
+    return {
+      record,
+      bytesRead: given.bytesRead(),
+      bytesWritten: made.bytesWritten,
+      storeBytes: made.storeBytes,
+      plainBytes: storeBytes(grid, stored.dtype),
+      seconds: (now() - began) / 1000,
+    };
   } catch (error) {
     await files.remove(work).catch(() => {}); // the first error is the one to show; debris goes at the next start
     throw error;
@@ -198,6 +216,11 @@ function conversionsOf(notes: readonly string[], stored: StoredType, options: Sp
   if (options.mirror)
     sentences.push("The order of slices was reversed on the way in, because the file showed the specimen mirrored.");
   if (region) sentences.push(regionSentence(region));
+  if (options.isPacked) sentences.push("The bricks of the store are packed with gzip.");
+  if (options.inPlace)
+    sentences.push(
+      "The finest level is read where the scan lies; only the coarser levels were written. The scan has to stay there unchanged.",
+    );
   return sentences;
 }
 
@@ -206,14 +229,20 @@ const MARGIN_BYTES = 64 * 1024 * 1024;
 
 async function refuseFullDisk(
   files: WriteFiles,
-  library: string,
   header: SliceSource["header"],
   grid: ReturnType<typeof gridOf>,
+  options: SpecimenOptions,
   mustSpool: boolean,
 ): Promise<void> {
   const voxels = header.size[0] * header.size[1] * header.size[2];
   const widest = storedTypeOf(header.dtype)?.dtype ?? "float32";
-  const needed = storeBytes(grid, widest) + (mustSpool ? voxels * BYTES_OF_DTYPE[header.dtype] : 0) + MARGIN_BYTES;
-  const free = await files.freeBytes(library);
-  if (free < needed) throw fullDisk(library, needed, free);
+  // Packed bricks may come out no smaller, and two layers of shards lie plain beside them for a while.
+  const passing = options.isPacked ? 2 * SHARD_ZYX[0] * grid.size[0] * grid.size[1] * BYTES_OF_DTYPE[widest] : 0;
+  const needed =
+    storeBytes(grid, widest, options.inPlace ? 1 : 0) +
+    passing +
+    (mustSpool ? voxels * BYTES_OF_DTYPE[header.dtype] : 0) +
+    MARGIN_BYTES;
+  const free = await files.freeBytes(options.library);
+  if (free < needed) throw fullDisk(options.library, needed, free);
 }

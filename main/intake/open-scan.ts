@@ -1,6 +1,7 @@
 import { stat } from "node:fs/promises";
 import { basename, join } from "node:path";
 import { openDicomFile } from "#main/intake/dicom/dicom-source.ts";
+import { openSpecimenInPlace } from "#main/intake/in-place/specimen-in-place.ts";
 import { openMetaImage } from "#main/intake/meta-image/meta-image-source.ts";
 import { isGzippedNifti, openNifti } from "#main/intake/nifti/nifti-source.ts";
 import { openNrrd } from "#main/intake/nrrd/nrrd-source.ts";
@@ -59,6 +60,8 @@ export async function openScan(path: string, choice: ScanChoice = {}): Promise<S
 }
 
 async function openFolder(path: string, choice: ScanChoice): Promise<SliceSource> {
+  const elsewhere = await openSpecimenInPlace(path);
+  if (elsewhere) return elsewhere;
   const zarr = await zarrFolderOf(path);
   if (zarr) return openOmeZarr(zarr, choice);
   const slices = await openFolderOfSlices(path);

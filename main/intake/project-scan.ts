@@ -1,13 +1,12 @@
 import { openScan } from "#main/intake/open-scan.ts";
 import { PackingSampler } from "#main/intake/packing/packing-sampler.ts";
+import { slabsFor } from "#main/intake/packing/sample-packing.ts";
 import { type IntakeProgress, ProgressMeter } from "#main/intake/progress.ts";
-import { stopIfAborted } from "#main/intake/read-file.ts";
-import type { SliceSource } from "#main/intake/slice-source.ts";
+import { slicesOf } from "#main/intake/slices-of.ts";
 import type { ProjectionPicture, ProjectionsAnswer, ProjectionsRequest } from "#shared/api/projections.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { BYTES_OF_DTYPE } from "#shared/volume/dtype.ts";
 import { type GreyPicture, Projections } from "#shared/volume/projections.ts";
-import { CHUNK_SIDE } from "#shared/volume/store/layout.ts";
 import { storedTypeOf } from "#shared/volume/stored-type.ts";
 
 export interface ProjectHooks {
@@ -19,9 +18,6 @@ export interface ProjectHooks {
 
 /** Of larger seekable scans, slices spread evenly are looked at. */
 const WHOLE_BYTES = 512 * 1024 * 1024;
-/** Slabs for the packing sample read at most this much besides. */
-const SLAB_BYTES = 256 * 1024 * 1024;
-const MOST_SLABS = 3;
 
 /**
  * Three small projections of a scan, and a sample of what packing would gain. A seekable scan of more than 512 MB is looked at
@@ -39,8 +35,7 @@ export async function projectScan(request: ProjectionsRequest, hooks: ProjectHoo
     const whole = !source.seekable || planeBytes * size[2] <= WHOLE_BYTES;
     const slices = whole ? size[2] : Math.max(3, Math.min(size[2], Math.floor(WHOLE_BYTES / planeBytes)));
     const pictures = new Projections(size, slices, polarity === "dark");
-    const slabs = whole ? MOST_SLABS : Math.max(1, Math.min(MOST_SLABS, Math.floor(SLAB_BYTES / (planeBytes * CHUNK_SIDE))));
-    const sampler = stored === null ? null : new PackingSampler(size, stored, slabs);
+    const sampler = stored === null ? null : new PackingSampler(size, stored, slabsFor(planeBytes));
     const meter = new ProgressMeter(source, now, hooks.onProgress, false);
     meter.begin("Looking through the scan");
     let done = 0;
@@ -73,15 +68,6 @@ function spread(size: Vec3, count: number): [number, number][] {
     const z = Math.round((k * (size[2] - 1)) / (count - 1));
     return [z, z + 1];
   });
-}
-
-async function* slicesOf(source: SliceSource, z0: number, z1: number, signal?: AbortSignal) {
-  const voxels = source.header.size[0] * source.header.size[1];
-  for await (const run of source.readPlanes(z0, z1, signal))
-    for (let k = 0; k < run.count; k++) {
-      stopIfAborted(signal, "looking through the scan");
-      yield [run.z + k, run.data.subarray(k * voxels, (k + 1) * voxels)] as const;
-    }
 }
 
 function sendable({ width, height, grey }: GreyPicture): ProjectionPicture {

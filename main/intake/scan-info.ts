@@ -1,3 +1,4 @@
+import { placeVerdict } from "#main/intake/in-place/in-place-scan.ts";
 import { openScan } from "#main/intake/open-scan.ts";
 import { stopIfAborted } from "#main/intake/read-file.ts";
 import type { ScanChoice, SliceSource } from "#main/intake/slice-source.ts";
@@ -40,6 +41,7 @@ export async function scanInfoAndNotes(
 export async function lookAtScan(path: string, options: ScanInfoOptions = {}): Promise<ScanLookAnswer> {
   return withScan(path, { ...options, choice: { ...options.choice, orFirst: true } }, async ({ info, survey, source }) => {
     const sample = survey.sortedSample();
+    const place = await placeVerdict(path, { ...options.choice, orFirst: true });
     const counts = histogramOf(sample, info.range.min, info.range.max, 256);
     const slice = await middleSlice(source, displayWindow(sample), options.signal);
     return {
@@ -48,6 +50,7 @@ export async function lookAtScan(path: string, options: ScanInfoOptions = {}): P
       histogram: { min: info.range.min, max: info.range.max, counts },
       conversions: conversionsOf(source, survey, info.range.sampled),
       suggestedPolarity: suggestPolarity(sample),
+      ...(place ? { inPlace: place.fits ? { fits: true } : place } : {}),
       ...(source.header.readings ? { readings: source.header.readings } : {}),
     };
   });

@@ -35,6 +35,8 @@ export interface InPlaceScan {
   readonly metadata: "zarr.json" | ".zarray";
   /** Per array axis: null for the three of space (z, y, x), else the one index that is read. */
   readonly selection: readonly (number | null)[];
+  /** The channel and time point that were chosen where there are several. */
+  readonly reading?: { readonly channel: number; readonly time: number };
   /** Files under the array's folder, their bytes, and their latest change in UTC milliseconds. */
   readonly files: number;
   readonly bytes: number;

@@ -7,13 +7,17 @@ import { givenSpacing, SPACING_HELP, SPACING_OPTIONS, settledSpacing } from "#ma
 import type { Verb, VerbCall } from "#main/cli/verb.ts";
 import { removeUnfinished } from "#main/intake/make-specimen.ts";
 import { openScan } from "#main/intake/open-scan.ts";
+import { samplePacking } from "#main/intake/packing/sample-packing.ts";
 import type { IntakeProgress } from "#main/intake/progress.ts";
 import { runIntake } from "#main/intake/run-intake.ts";
+import type { ScanChoice } from "#main/intake/slice-source.ts";
 import { diskFiles } from "#main/node/disk-files.ts";
 import { createId } from "#main/node/layout.ts";
 import { processFacts, takeLease } from "#main/node/lease.ts";
+import type { KeptAs } from "#shared/api/routes.ts";
 import type { SpecimenFacts } from "#shared/api/specimen.ts";
 import { TautlineError } from "#shared/errors.ts";
+import { FITS_IN_PLACE } from "#shared/volume/store/zarr-layout.ts";
 
 /** `tautline intake`: makes a specimen of a scan. */
 export const intake: Verb = {
@@ -32,9 +36,14 @@ ${SPACING_HELP}
   --mirror               reverse the order of slices: the file shows the specimen mirrored
   --polarity P           bright or dark strings (as the values suggest when not given)
 ${REGION_HELP}
+  --compress             pack the bricks of the store with gzip: smaller, slower to open; the cost is told on stderr
+  --in-place             use an OME-Zarr's own store where it lies: only coarser levels are written (see below)
   --channel n, --time n  which one to read where a scan has several, from 0
   --species, --fixation, --medium, --state TEXT, --pressure mmHg   facts of the specimen
-${RAW_HELP}`,
+${RAW_HELP}
+
+A store fits for --in-place with ${FITS_IN_PLACE}.
+It is only read, and has to stay where it is, unchanged; that is checked each time the specimen is opened.`,
   options: {
     library: { type: "string" },
     ...SPACING_OPTIONS,
@@ -43,6 +52,8 @@ ${RAW_HELP}`,
     mirror: { type: "boolean" },
     polarity: { type: "string" },
     ...REGION_OPTIONS,
+    compress: { type: "boolean" },
+    "in-place": { type: "boolean" },
     channel: { type: "string" },
     time: { type: "string" },
     ...RAW_OPTIONS,
@@ -69,6 +80,7 @@ ${RAW_HELP}`,
     const source = await openScan(path, choice);
     const { header } = source;
     await source.close();
+    const keep = givenKeep(options);
     const region = givenRegion(options, source.name, header.size);
     const spacing = settledSpacing(header, source.name, given, { strict: true, say });
     const files = diskFiles();
@@ -87,10 +99,12 @@ ${RAW_HELP}`,
         handedness,
         mirror: options.mirror === true,
         ...(region ? { region } : {}),
+        keep,
         ...(polarity ? { polarity } : {}),
         facts,
         ...choice,
       };
+      if (keep === "packed") await tellCost(path, choice, call);
       const made = await runIntake(order, { signal: io.signal, onProgress: progressLine(say) });
       const { record } = made;
       const json = {
@@ -101,9 +115,15 @@ ${RAW_HELP}`,
         bytesWritten: made.bytesWritten,
         peakMemoryBytes: process.resourceUsage().maxRSS * 1024,
         size: record.volume.size,
+        kept: keep,
+        storeBytes: made.storeBytes,
         ...(record.volume.derivedFrom ? { derivedFrom: record.volume.derivedFrom } : {}),
         conversions: record.conversions,
       };
+      if (keep === "packed") {
+        const share = Math.round((made.storeBytes / made.plainBytes) * 100);
+        say(`packed store: ${made.storeBytes} bytes, ${share} % of a plain one (${made.plainBytes} bytes).`);
+      }
       for (const sentence of record.conversions) say(`${source.name}: ${sentence}`);
       const text = `${record.name} is specimen ${record.id} of ${library}\nsha256 ${record.volume.sha256}`;
       return { json, text, exit: 0 };
@@ -112,6 +132,30 @@ ${RAW_HELP}`,
     }
   },
 };
+
+function givenKeep(options: VerbCall["options"]): KeptAs {
+  const [isPacked, isInPlace] = [options.compress === true, options["in-place"] === true];
+  const [isMirrored, isPart] = [options.mirror === true, options.crop !== undefined || options.bin !== undefined];
+  const other = isPacked ? "--compress" : isMirrored ? "--mirror" : isPart ? "--crop or --bin" : null;
+  if (isInPlace && other !== null) {
+    const what = `--in-place uses the scan's own store as it is and cannot go with ${other}. Leave one of them out.`;
+    throw new TautlineError("misuse", what, { what });
+  }
+  return isInPlace ? "in-place" : isPacked ? "packed" : "plain";
+}
+
+/** What packing will gain and cost, on a sample of the scan, before the work begins. */
+async function tellCost(path: string, choice: ScanChoice, { io, say }: VerbCall): Promise<void> {
+  const sample = await samplePacking(path, choice, io.signal);
+  if (sample === null) {
+    say("--compress: what it gains cannot be measured beforehand on this scan; it is told at the end.");
+    return;
+  }
+  const share = Math.round(sample.ratio * 100);
+  const mbPerSecond = Math.round(sample.packedBytesPerSecond / 1e6);
+  const costs = `packing takes a second of one core for ${mbPerSecond} MB, a brick opens ${sample.unpackMs.toFixed(2)} ms later`;
+  say(`--compress: ${share} % of a plain store, measured on ${sample.bricks} bricks of the scan; ${costs}.`);
+}
 
 function givenFacts(options: VerbCall["options"]): SpecimenFacts {
   const text = (key: string) => (typeof options[key] === "string" && options[key] !== "" ? { [key]: options[key] } : {});

@@ -60,8 +60,8 @@ async function isFile(path: string): Promise<boolean> {
   }
 }
 
-/** Number, sizes and latest change of all files under a folder. */
-export async function folderFacts(folder: string): Promise<{ bytes: number; print: string }> {
+/** Number, sizes and latest change (UTC milliseconds, and exact within `print`) of all files under a folder. */
+export async function folderFacts(folder: string): Promise<{ bytes: number; files: number; changed: number; print: string }> {
   let bytes = 0;
   let count = 0;
   let latest = 0n;
@@ -79,7 +79,8 @@ export async function folderFacts(folder: string): Promise<{ bytes: number; prin
       }
     }
   }
-  return { bytes, print: `${folder}:${count}:${bytes}:${latest}` };
+  const changed = Number(latest / 1_000_000n);
+  return { bytes, files: count, changed, print: `${folder}:${count}:${bytes}:${latest}` };
 }
 
 /** The first of the named files that a folder holds; null when none. */

@@ -85,6 +85,11 @@ export class LevelWriter {
   async #flush(): Promise<void> {
     await this.#feedChild();
     const first = this.#written;
+    if (this.level.level < this.#sink.firstLevel) {
+      this.#written += this.#held;
+      this.#held = 0;
+      return;
+    }
     if (first % SHARD_ZYX[0] === 0) await this.#openShards(first / SHARD_ZYX[0]);
     const [, rows, columns] = shardGrid(this.level.size);
     for (let y = 0; y < rows; y++)

@@ -33,6 +33,10 @@ export interface StoreOrder {
   readonly slabPlanes: number;
   /** Estimate the scan's blur on the way. */
   readonly estimateBlur: boolean;
+  /** Absent: plain. */
+  readonly packing?: "plain" | "gzip";
+  /** The finest level is left out: it is read where the scan lies. */
+  readonly isInPlace?: boolean;
   readonly files: WriteFiles;
   readonly signal?: AbortSignal;
   at(point: CrashPoint): void | Promise<void>;
@@ -51,6 +55,8 @@ export interface StoreResult {
   /** Full width at half maximum, millimetres; null when not asked for or the edges do not tell. */
   readonly blurFwhmMm: number | null;
   readonly bytesWritten: number;
+  /** Bytes of the store's shards. */
+  readonly storeBytes: number;
 }
 
 /** Slices of level 0 held at once are kept below this; thinner slabs mean more, smaller writes. */
@@ -71,7 +77,13 @@ export async function writeStore(order: StoreOrder): Promise<StoreResult> {
   const count = (bytes: number) => {
     bytesWritten += bytes;
   };
-  const sink: StoreSink = { files, folder, dtype, folders, at: order.at, count };
+  let storeBytes = 0;
+  const keep = (bytes: number) => {
+    storeBytes += bytes;
+  };
+  const packing = order.packing ?? "plain";
+  const firstLevel = order.isInPlace ? 1 : 0;
+  const sink: StoreSink = { files, folder, dtype, packing, firstLevel, folders, at: order.at, count, keep };
   await files.makeFolder(folder);
   const levels = pyramidLevels(grid);
   const writer = new LevelWriter(sink, levels, 0, order.slabPlanes, gatherBuffers(dtype));
@@ -106,7 +118,7 @@ export async function writeStore(order: StoreOrder): Promise<StoreResult> {
   }
   await order.at("levels-written");
   const sha256 = hash.digest("hex");
-  await writeMetadata(order, levels, sha256);
+  await writeMetadata(order, levels.slice(firstLevel), packing, sha256);
   await order.at("metadata-written");
   for (const made of folders) await files.syncFolder(made);
   const facts = survey.facts();
@@ -120,6 +132,7 @@ export async function writeStore(order: StoreOrder): Promise<StoreResult> {
     suggestedPolarity: suggestPolarity(sample),
     blurFwhmMm: blur === null ? null : roundMm(blur),
     bytesWritten,
+    storeBytes,
   };
 }
 
@@ -127,9 +140,15 @@ function bytesIn(array: StoredArray): Uint8Array {
   return new Uint8Array(array.buffer, array.byteOffset, array.byteLength);
 }
 
-async function writeMetadata(order: StoreOrder, levels: readonly PyramidLevel[], sha256: string): Promise<void> {
+async function writeMetadata(
+  order: StoreOrder,
+  levels: readonly PyramidLevel[],
+  packing: "plain" | "gzip",
+  sha256: string,
+): Promise<void> {
+  if (levels.length === 0) return; // a small scan in place: all of it lies there
   for (const level of levels) {
-    const text = JSON.stringify(arrayMetadata(level, order.dtype), null, 2);
+    const text = JSON.stringify(arrayMetadata(level, order.dtype, packing), null, 2);
     await writeWhole(order.files, `${order.folder}/${levelFolder(level.level)}/zarr.json`, text);
   }
   const group = groupMetadata(order.name, order.grid, levels, sha256);

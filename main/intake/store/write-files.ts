@@ -5,6 +5,8 @@ import { TautlineError } from "#shared/errors.ts";
 /** An open file of the store, written at places. */
 export interface WriteHandle {
   write(bytes: Uint8Array, at: number): Promise<void>;
+  /** Fills `into` with what was written at a place; beyond the end `into` stays as it is. */
+  read(into: Uint8Array, at: number): Promise<void>;
   /** Resolves once everything written is on the disk. */
   sync(): Promise<void>;
   close(): Promise<void>;
@@ -34,7 +36,7 @@ export const diskFiles: WriteFiles = {
     }),
   create: (path) =>
     tagged(path, async () => {
-      const handle = await open(path, "wx");
+      const handle = await open(path, "wx+");
       return {
         write: (bytes: Uint8Array, at: number) =>
           tagged(path, async () => {
@@ -42,6 +44,14 @@ export const diskFiles: WriteFiles = {
             while (done < bytes.byteLength) {
               const { bytesWritten } = await handle.write(bytes, done, bytes.byteLength - done, at + done);
               done += bytesWritten;
+            }
+          }),
+        read: (into: Uint8Array, at: number) =>
+          tagged(path, async () => {
+            for (let done = 0; done < into.byteLength; ) {
+              const { bytesRead } = await handle.read(into, done, into.byteLength - done, at + done);
+              if (bytesRead === 0) return;
+              done += bytesRead;
             }
           }),
         sync: () => tagged(path, () => handle.datasync()),

@@ -4,7 +4,7 @@ import { bytesWords, sidesWords, spacingWords, timeLeftWords, voxelsWords } from
 import type { PackingSample } from "#shared/api/projections.ts";
 import type { InPlaceVerdict, KeptAs } from "#shared/api/routes.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
-import { BYTES_OF_DTYPE, type SourceDtype } from "#shared/volume/dtype.ts";
+import type { SourceDtype } from "#shared/volume/dtype.ts";
 import { plainGrid } from "#shared/volume/grid.ts";
 import { type Region, regionGrid } from "#shared/volume/region/region.ts";
 import { storeBytes } from "#shared/volume/store/store-bytes.ts";
@@ -38,7 +38,7 @@ export function KeepForm(props: KeepFormProps) {
   const bytes = storeBytes(grid, settled ?? "float32");
   const about = settled === undefined ? "at most" : "about";
   const sample = look.state === "done" ? look.answer.packing : undefined;
-  const coarse = bytes - grid.size[0] * grid.size[1] * grid.size[2] * BYTES_OF_DTYPE[settled ?? "float32"];
+  const coarse = storeBytes(grid, settled ?? "float32", 1);
   const fits = inPlace?.fits === true && region === null && !isMirrored;
   return (
     <fieldset>

@@ -6,8 +6,15 @@ import { CHUNK_SIDE, levelFolder, SHARD_ZYX } from "#shared/volume/store/layout.
 
 const LITTLE = { name: "bytes", configuration: { endian: "little" } } as const;
 
+/** As intake packs; any reader unpacks any level. */
+const GZIP = { name: "gzip", configuration: { level: 1 } } as const;
+
 /** The `zarr.json` of one level's array, as a JSON value. @source Zarr v3 core and its `sharding_indexed` codec. */
-export function arrayMetadata(level: Pick<PyramidLevel, "size">, dtype: StoredDtype): Record<string, unknown> {
+export function arrayMetadata(
+  level: Pick<PyramidLevel, "size">,
+  dtype: StoredDtype,
+  packing: "plain" | "gzip" = "plain",
+): Record<string, unknown> {
   const side = CHUNK_SIDE;
   const voxelBytes = dtype === "uint8" ? { name: "bytes" } : LITTLE;
   return {
@@ -23,7 +30,7 @@ export function arrayMetadata(level: Pick<PyramidLevel, "size">, dtype: StoredDt
         name: "sharding_indexed",
         configuration: {
           chunk_shape: [side, side, side],
-          codecs: [voxelBytes],
+          codecs: packing === "gzip" ? [voxelBytes, GZIP] : [voxelBytes],
           index_codecs: [LITTLE, { name: "crc32c" }],
           index_location: "end",
         },

@@ -62,6 +62,10 @@ export class ForgetfulDisk implements WriteFiles {
         grown.set(bytes, at);
         file.bytes = grown;
       },
+      read: async (into: Uint8Array, at: number) => {
+        check();
+        into.set(file.bytes.subarray(at, at + into.length));
+      },
       sync: async () => {
         check();
         file.safe = file.bytes.slice();

@@ -36,7 +36,7 @@ describe("projections of a scan", () => {
     const found = [...greys(answer.alongZ.data), ...greys(answer.alongY.data), ...greys(answer.alongX.data)];
     expect(found).toHaveLength(expected.length);
     const byValue = new Map<number, Set<number>>();
-    expected.forEach((value, k) => byValue.set(value, (byValue.get(value) ?? new Set()).add(found[k]!)));
+    for (const [k, value] of expected.entries()) byValue.set(value, (byValue.get(value) ?? new Set()).add(found[k]!));
     const sorted = [...byValue].sort((a, b) => a[0] - b[0]);
     for (const [, seen] of sorted) expect(seen.size).toBe(1);
     const shown = sorted.map(([, seen]) => [...seen][0]!);
