@@ -1,11 +1,12 @@
 import type { Vec3 } from "#shared/geometry/types.ts";
-import { costScale, createCostTiles } from "#shared/tracing/cost.ts";
+import { type CostTiles, costScale, createCostTiles } from "#shared/tracing/cost.ts";
 import { indexToLocal, localToIndex } from "#shared/tracing/local-frame.ts";
 import { createTileDomain, indexOfVoxel, tileBox, voxelOfIndex } from "#shared/tracing/minimal-path/domain.ts";
 import { meetFronts } from "#shared/tracing/minimal-path/meet.ts";
 import { ridgeNearPin } from "#shared/tracing/pin-ridge.ts";
 import { arcLengths } from "#shared/tracing/polyline.ts";
 import type { StopSignal, TraceContext } from "#shared/tracing/trace-context.ts";
+import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 
 /** Most voxels of a box; its arrays are touched only where the fronts go. */
 const MOST_BOX_VOXELS = 24 * 2 ** 20;
@@ -13,7 +14,7 @@ const MOST_BOX_VOXELS = 24 * 2 ** 20;
  * Most voxels that the two fronts of one leg settle: a string takes well below a million, the rest is a flood where there is
  * none. It bounds a solve's memory as well: some 70 bytes a voxel become resident, with the pages that are touched in part.
  */
-const MOST_SETTLED = 2_000_000;
+const MOST_SETTLED = 1_500_000;
 /** Distance of the waypoints through which a path found on a coarser level is followed on the finer one. */
 const WINDOW_MM = 2.5;
 
@@ -54,28 +55,46 @@ export function legPath(
   for (let marginMm = Math.max(1, 0.3 * apart); ; marginMm *= 2) {
     const low = ([0, 1, 2] as const).map((k) => Math.min(a[k], b[k]) - marginMm / grid.spacing[k]) as [number, number, number];
     const high = ([0, 1, 2] as const).map((k) => Math.max(a[k], b[k]) + marginMm / grid.spacing[k]) as [number, number, number];
-    const box = tileBox(grid, low, high);
-    if (box.size[0] * box.size[1] * box.size[2] > MOST_BOX_VOXELS) break;
-    const domain = createTileDomain(pyramid, costs, box, [], signal);
-    const met = meetFronts(domain, voxelOfIndex(domain, a), voxelOfIndex(domain, b), MOST_SETTLED, () => signal.aborted);
-    if (met.kind === "over-budget") break;
-    if (met.kind !== "met") return null;
-    const points = new Float64Array(met.path.length * 3);
-    let leans = false;
-    met.path.forEach((voxel, i) => {
-      const index = indexOfVoxel(domain, voxel);
-      points.set(indexToLocal(grid, index), 3 * i);
-      leans ||= ([0, 1, 2] as const).some(
-        (k) =>
-          (index[k] === box.start[k] && box.start[k] > 0) ||
-          (index[k] === box.start[k] + box.size[k] - 1 && box.start[k] + box.size[k] < grid.size[k]),
-      );
-    });
-    if (!leans) return points;
+    const found = pathInBox(pyramid, costs, tileBox(grid, low, high), a, b, signal);
+    if (found === "too-large") break;
+    if (found === null) return null;
+    if (!found.leans) return found.points;
   }
   if (level + 1 >= pyramid.levels.length) return null;
   const coarse = legPath(context, level + 1, from, to, expected, signal);
   return coarse && inWindows(context, level, from, to, coarse, expected, signal);
+}
+
+/**
+ * The cheapest path in a box of a level; null when there is none. In a function of its own, so that the box's memory is let go of
+ * before anything else is searched.
+ */
+function pathInBox(
+  pyramid: VoxelPyramid,
+  costs: CostTiles,
+  box: ReturnType<typeof tileBox>,
+  a: Vec3,
+  b: Vec3,
+  signal: StopSignal,
+): { readonly points: Float64Array; readonly leans: boolean } | "too-large" | null {
+  const { start, size } = box;
+  if (size[0] * size[1] * size[2] > MOST_BOX_VOXELS) return "too-large";
+  const grid = pyramid.levels[costs.level]!;
+  const domain = createTileDomain(pyramid, costs, box, [], signal);
+  const met = meetFronts(domain, voxelOfIndex(domain, a), voxelOfIndex(domain, b), MOST_SETTLED, () => signal.aborted);
+  if (met.kind === "over-budget") return "too-large";
+  if (met.kind !== "met") return null;
+  const points = new Float64Array(met.path.length * 3);
+  let leans = false;
+  met.path.forEach((voxel, i) => {
+    const index = indexOfVoxel(domain, voxel);
+    points.set(indexToLocal(grid, index), 3 * i);
+    leans ||= ([0, 1, 2] as const).some(
+      (k) =>
+        (index[k] === start[k] && start[k] > 0) || (index[k] === start[k] + size[k] - 1 && start[k] + size[k] < grid.size[k]),
+    );
+  });
+  return { points, leans };
 }
 
 /** Follows a path of the coarser level on `level`, from one waypoint on it to the next. */
