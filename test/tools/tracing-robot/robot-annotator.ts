@@ -1,41 +1,17 @@
 // The robot annotator: draws trees with what a person has, and looks at the truth only for what a person would see on the
 // section: where the string is, whether the snapped place lies on it, whether the guide and the finished curve follow it.
-import { END_COMMANDS } from "#renderer/editor/commands/trace-commands.ts";
-import type { FileStrand, FileTree } from "#shared/formats/chordae/chordae-file.ts";
+import type { FileTree } from "#shared/formats/chordae/chordae-file.ts";
 import { nearestOnPolyline, pointAt, polylineLength } from "#shared/geometry/polyline.ts";
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
 import { polylineOf } from "#shared/trees/geometry.ts";
 import type { FixedPlane, RobotDesk } from "#test/tools/tracing-robot/robot-desk.ts";
+import { SHARES, type StringToDraw, stringsToDraw } from "#test/tools/tracing-robot/strings-to-draw.ts";
 
-/** Where the next pin is tried, as shares of what is left: as far as the guide follows the string. */
-const SHARES = [1, 0.75, 0.55, 0.4, 0.28, 0.18, 0.1];
 /** So many candidates in depth are looked through. */
 const MOST_IN_DEPTH = 6;
 /** A line has visibly left its string when it runs so many voxels outside of it. */
 const OUTSIDE_VOXELS = 1;
-
-/** A string to draw in one go, from a place already drawn (or the origin) to an end. */
-interface StringToDraw {
-  readonly line: readonly Vec3[];
-  /** One for each point of the line. */
-  readonly radii: readonly number[];
-  readonly endKey: string;
-}
-
-/** The keys that end a strand, by the kind of its end. */
-const END_KEYS: Readonly<Record<string, string>> = Object.fromEntries(
-  END_COMMANDS.map(({ name, keys }) => [name, keys[0]!] as const),
-);
-const END_NAMES: Readonly<Record<string, string>> = {
-  insertion: "end-insertion",
-  "muscle-end": "end-muscle",
-  "wall-end": "end-wall",
-  ruptured: "end-ruptured",
-  cut: "end-cut",
-  "lost-end": "end-lost",
-  "scan-edge": "end-scan-edge",
-};
 
 /** The fixed plane in which trees lie best: the one whose line of sight they extend along least. */
 export function bestPlane(trees: readonly FileTree[]): FixedPlane {
@@ -47,39 +23,15 @@ export function bestPlane(trees: readonly FileTree[]): FixedPlane {
   return (["side", "front", "flat"] as const)[extent.indexOf(Math.min(...extent))]!;
 }
 
-/** The trunk to the end farthest from its beginning, then what leaves it, each the same way. */
-export function stringsToDraw(tree: FileTree): StringToDraw[] {
-  const kinds = new Map(tree.nodes.map((node) => [node.id, node.kind]));
-  const outward = (node: string): FileStrand[] => tree.strands.filter((strand) => strand.from === node);
-  const reach = (strand: FileStrand): number =>
-    polylineLength(strand.points!) + Math.max(0, ...outward(strand.to).map((next) => reach(next)));
-  const strings: StringToDraw[] = [];
-  const draw = (first: FileStrand): void => {
-    const way: FileStrand[] = [];
-    const left: FileStrand[] = [];
-    for (let strand: FileStrand | undefined = first; strand !== undefined; ) {
-      way.push(strand);
-      const [farthest, ...others] = outward(strand.to).sort((a, b) => reach(b) - reach(a));
-      left.push(...others);
-      strand = farthest;
-    }
-    strings.push({
-      line: way.flatMap((strand, n) => strand.points!.slice(n === 0 ? 0 : 1)),
-      radii: way.flatMap((strand, n) => strand.radii!.slice(n === 0 ? 0 : 1).map((radius) => radius ?? 0)),
-      endKey: END_KEYS[END_NAMES[kinds.get(way.at(-1)!.to)!] ?? ""]!,
-    });
-    for (const strand of left) draw(strand);
-  };
-  for (const [n, strand] of outward(tree.root!).entries()) {
-    if (n > 0) throw new Error("a tree with one trunk expected");
-    draw(strand);
-  }
-  return strings;
-}
-
 /** Draws a tree with the guide: origin, trunk, then branch after branch. */
 export async function drawTree(desk: RobotDesk, tree: FileTree): Promise<void> {
   for (const [n, string] of stringsToDraw(tree).entries()) await drawString(desk, string, n > 0);
+}
+
+/** Trees in the order in which a person draws them: the thick ones first. */
+export function thickestFirst(trees: readonly FileTree[]): FileTree[] {
+  const radius = (tree: FileTree) => Math.max(...tree.strands.flatMap((strand) => strand.radii!.map((each) => each ?? 0)));
+  return [...trees].sort((a, b) => radius(b) - radius(a));
 }
 
 async function drawString(desk: RobotDesk, string: StringToDraw, isBranch: boolean): Promise<void> {
@@ -97,15 +49,26 @@ async function drawString(desk: RobotDesk, string: StringToDraw, isBranch: boole
   };
   await begin();
   let from = 0;
-  // Whatever the image does, a person comes to an end; each try ends with a pin farther on or with the end.
+  // Whatever the image does, a person comes to an end: each try ends with a pin farther on, the end, or a step back and a nearer pin.
   for (let most = whole; ; ) {
-    let to = most;
+    let [to, isGood] = [most, false];
     for (const share of SHARES) {
       to = from + share * (most - from);
       await desk.pointAt(pointAt(line, to));
       await chooseInDepth(desk, string);
       const guide = editor.guide.value;
-      if (guide !== null && follows(desk, guide.points, string, from, to)) break;
+      isGood = guide !== null && follows(desk, guide.points, string, from, to);
+      if (isGood) break;
+    }
+    if (!isGood && !editor.beside.isClosed.value && editor.document.value.strands.size > 0) {
+      // It rides another string: those that are drawn are closed to it, and opened again when this one is done.
+      await desk.key("Shift+I");
+      continue;
+    }
+    if (!isGood) {
+      to = from + straightAhead(desk, string, from);
+      await desk.key("S");
+      await desk.pointAt(pointAt(line, to));
     }
     if (to < whole) {
       await desk.click();
@@ -123,7 +86,10 @@ async function drawString(desk: RobotDesk, string: StringToDraw, isBranch: boole
         (points) =>
           distance(points.at(-1)!, line.at(-1)!) < 20 * desk.voxelMm || distance(points[0]!, line.at(-1)!) < 20 * desk.voxelMm,
       );
-    if (nearest.some((points) => follows(desk, points, string, from, whole)) || whole - from < 8 * desk.voxelMm) return;
+    if (nearest.some((points) => follows(desk, points, string, from, whole)) || whole - from < 8 * desk.voxelMm) {
+      if (editor.beside.isClosed.value) await desk.key("Shift+I");
+      return;
+    }
     // The finished curve left the string where the guide did not: back, and a pin half way.
     await desk.key("Ctrl+Z");
     if (editor.projection.value.kind === "nothing") await begin();
@@ -131,11 +97,25 @@ async function drawString(desk: RobotDesk, string: StringToDraw, isBranch: boole
   }
 }
 
-/** Takes the next string in depth until the place that the pointer snapped to lies on the string meant, as it is seen. */
+/** How far a straight line from a place of the string stays on it. */
+function straightAhead(desk: RobotDesk, string: StringToDraw, from: number): number {
+  const left = polylineLength(string.line) - from;
+  for (const share of SHARES) {
+    const chord = [pointAt(string.line, from), pointAt(string.line, from + share * left)];
+    if (follows(desk, chord, string, from, from + share * left)) return share * left;
+  }
+  return Math.min(left, 4 * desk.voxelMm);
+}
+
+/**
+ * Takes the next string in depth until the place that the pointer snapped to lies on the string meant, as it is seen; where none
+ * does, the snap is released.
+ */
 async function chooseInDepth(desk: RobotDesk, string: StringToDraw): Promise<void> {
-  for (let n = 0; n < MOST_IN_DEPTH; n++) {
+  for (let n = 0; ; n++) {
     const snapped = desk.editor.snapped.value;
-    if (snapped === null || snapped.candidates < 2 || isOn(desk, snapped.point, string)) return;
+    if (snapped === null || snapped.candidates === 0 || isOn(desk, snapped.point, string)) return;
+    if (n >= Math.min(snapped.candidates, MOST_IN_DEPTH) - 1) return desk.release();
     await desk.nextInDepth();
   }
 }

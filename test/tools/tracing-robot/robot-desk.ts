@@ -21,21 +21,13 @@ import type { TraceParameters } from "#shared/tracing/strand-request.ts";
 import { createTraceContext } from "#shared/tracing/trace-context.ts";
 import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 import { MemoryKeeper } from "#test/renderer/editor/fake-places.ts";
+import { type Effort, SHAKE_PX } from "#test/tools/tracing-robot/effort.ts";
 
-/** A pointer comes to rest so many pixels (standard deviation each way) beside what is aimed at: own estimate of a careful hand. */
-const SHAKE_PX = 1.5;
 /** A voxel is shown so large. The demo valve's are when the whole valve is in the pane. */
 const PX_PER_VOXEL = 2.5;
 /** As the desk begins. */
 const SLAB_MM = 0.4;
 const GUIDE_BYTES = 256 * 2 ** 20;
-
-/** What the robot did. Moving the pointer costs nothing, as it does not count for a person either. */
-export interface Effort {
-  clicks: number;
-  keys: number;
-  wheelSteps: number;
-}
 
 export type FixedPlane = "flat" | "front" | "side";
 
@@ -47,6 +39,8 @@ export class RobotDesk {
   readonly voxelMm: number;
   private readonly pointing = signal<Pointing | null>(null);
   private axes: PlaneAxes;
+  /** The key that releases the snap was held at the place before. */
+  private isHeld = false;
   /** Depth of the plane along its normal, millimetres. */
   private depth: number;
 
@@ -91,6 +85,7 @@ export class RobotDesk {
 
   async click(): Promise<void> {
     this.effort.clicks++;
+    this.isHeld = false;
     this.editor.click(this.pointing.value!);
     await this.editor.settled();
   }
@@ -112,6 +107,15 @@ export class RobotDesk {
   /** Next string in depth; settles when the pointer has been answered. */
   async nextInDepth(): Promise<void> {
     await this.key("D");
+    await this.editor.point(this.pointing.value);
+  }
+
+  /** Holds the key that releases the snap: the place itself is meant. */
+  async release(): Promise<void> {
+    // Held from one place to the next it is one press.
+    if (!this.isHeld) this.effort.keys++;
+    this.isHeld = true;
+    this.pointing.value = { ...this.pointing.value!, released: true };
     await this.editor.point(this.pointing.value);
   }
 

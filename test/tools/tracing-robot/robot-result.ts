@@ -4,8 +4,8 @@ import { nearestOnPolyline, polylineLength, resample } from "#shared/geometry/po
 import type { Vec3 } from "#shared/geometry/types.ts";
 import type { TreeDocument } from "#shared/trees/document.ts";
 import { polylineOf } from "#shared/trees/geometry.ts";
+import type { Effort } from "#test/tools/tracing-robot/effort.ts";
 import { fewestVertices } from "#test/tools/tracing-robot/fewest-vertices.ts";
-import type { Effort } from "#test/tools/tracing-robot/robot-desk.ts";
 
 /** Curves are compared at so many places each. */
 const PLACES = 120;
@@ -23,11 +23,6 @@ export interface RobotResult {
   readonly verticesWithin: number;
   readonly forks: { readonly drawn: number; readonly true: number };
   readonly ends: { readonly drawn: number; readonly true: number };
-}
-
-/** Clicks and keys; wheel steps are given apart. */
-export function interactions({ clicks, keys }: Effort): number {
-  return clicks + keys;
 }
 
 export function resultOf(document: TreeDocument, trees: readonly FileTree[], effort: Effort): RobotResult {

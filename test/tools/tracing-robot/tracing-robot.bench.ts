@@ -3,9 +3,10 @@ import { trialPhantom } from "#shared/phantom/trials/trial-phantom.ts";
 import { TRIAL_VOLUMES } from "#shared/phantom/trials/trial-volumes.ts";
 import { SeededRandom } from "#shared/random/seeded-random.ts";
 import { memoryPyramid } from "#shared/volume/memory-pyramid.ts";
-import { bestPlane, drawTree } from "#test/tools/tracing-robot/robot-annotator.ts";
+import { interactions } from "#test/tools/tracing-robot/effort.ts";
+import { bestPlane, drawTree, thickestFirst } from "#test/tools/tracing-robot/robot-annotator.ts";
 import { RobotDesk } from "#test/tools/tracing-robot/robot-desk.ts";
-import { interactions, resultOf } from "#test/tools/tracing-robot/robot-result.ts";
+import { resultOf } from "#test/tools/tracing-robot/robot-result.ts";
 
 const SEED = 4301;
 
@@ -17,7 +18,7 @@ export async function bench(print: (line: string) => void, _cpuMs: () => number,
     const { trees } = made.truth;
     const plane = bestPlane(trees);
     if (plane !== "flat") desk.showPlane(plane);
-    for (const tree of trees) await drawTree(desk, tree);
+    for (const tree of thickestFirst(trees)) await drawTree(desk, tree);
     const r = resultOf(desk.editor.document.value, trees, desk.effort);
     const cost = interactions(r.effort);
     const n = (value: number, digits = 0) => value.toFixed(digits);
