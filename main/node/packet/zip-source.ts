@@ -1,5 +1,5 @@
 import { basename } from "node:path";
-import { Readable } from "node:stream";
+import { pipeline, Readable } from "node:stream";
 import { createInflateRaw } from "node:zlib";
 import type { FilePort } from "#main/node/file-port.ts";
 import { crcAfter } from "#main/node/packet/crc.ts";
@@ -78,7 +78,9 @@ async function* rawPieces(entry: ZipEntry, name: string, path: string, read: Rea
       yield await read(start + at, start + Math.min(entry.packedBytes, at + PIECE_BYTES));
   };
   if (entry.method === "stored") return yield* packed();
-  const inflated = Readable.from(packed()).pipe(createInflateRaw({ chunkSize: 256 * 1024 }));
+  const inflated = createInflateRaw({ chunkSize: 256 * 1024 });
+  // A failed read ends the inflating with its error, which the loop below throws.
+  pipeline(Readable.from(packed()), inflated, () => {});
   try {
     for await (const piece of inflated) yield piece as Uint8Array;
   } catch (error) {
