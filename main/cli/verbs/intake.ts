@@ -114,6 +114,7 @@ It is only read, and has to stay where it is, unchanged; that is checked each ti
         bytesRead: made.bytesRead,
         bytesWritten: made.bytesWritten,
         peakMemoryBytes: process.resourceUsage().maxRSS * 1024,
+        cpuSeconds: cpuSeconds(),
         size: record.volume.size,
         kept: keep,
         storeBytes: made.storeBytes,
@@ -155,6 +156,12 @@ async function tellCost(path: string, choice: ScanChoice, { io, say }: VerbCall)
   const mbPerSecond = Math.round(sample.packedBytesPerSecond / 1e6);
   const costs = `packing takes a second of one core for ${mbPerSecond} MB, a brick opens ${sample.unpackMs.toFixed(2)} ms later`;
   say(`--compress: ${share} % of a plain store, measured on ${sample.bricks} bricks of the scan; ${costs}.`);
+}
+
+/** CPU time of all threads of this process so far. */
+function cpuSeconds(): number {
+  const { user, system } = process.cpuUsage();
+  return (user + system) / 1e6;
 }
 
 function givenFacts(options: VerbCall["options"]): SpecimenFacts {
