@@ -124,6 +124,7 @@ function refuseSlow({ chunk, shape, packing, dtype }: ChunkedArray): void {
 
 function packingOf(codecs: readonly Named[], dtype: StoredDtype): Packing {
   const [first, second] = codecs;
+  if (!first) unfit("its metadata does not say how its voxels are written.");
   if (first?.name !== "bytes")
     unfit(first?.name === "transpose" ? "its axes are stored in another order." : packedWith(first?.name));
   if (first!.configuration.endian === "big" && BYTES_OF_DTYPE[dtype] > 1) unfit("its voxels are big-endian.");
