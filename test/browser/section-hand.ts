@@ -1,21 +1,23 @@
 import type { Page } from "playwright-core";
 
-type Place = readonly [number, number];
+/** A place in millimetres: x and y, and z where the section does not lie across it. */
+type Place = readonly [number, number] | readonly [number, number, number];
+type Pixel = readonly [number, number];
 
 /**
- * A hand on the section: it learns where places lie by reading the position under the pointer at two points of the pane, so it
- * needs to know nothing of how the page computes them.
+ * A hand on the section: it learns where places lie by reading the position under the pointer at points of the pane, so it
+ * needs to know nothing of how the page computes them. The section must lie along the scan's axes.
  */
 export class SectionHand {
   private constructor(
     private readonly page: Page,
-    private readonly toPixel: (place: Place) => Place,
+    private readonly toPixel: (place: Place) => Pixel,
   ) {}
 
   static async on(page: Page): Promise<SectionHand> {
     const box = (await page.locator(".section-view").boundingBox())!;
-    const at = (share: Place): Place => [box.x + box.width * share[0], box.y + box.height * share[1]];
-    const read = async (pixel: Place): Promise<Place> => {
+    const at = (share: Pixel): Pixel => [box.x + box.width * share[0], box.y + box.height * share[1]];
+    const read = async (pixel: Pixel): Promise<readonly number[]> => {
       // Alt: the place itself, not what it would snap to.
       await page.keyboard.down("Alt");
       await page.mouse.move(pixel[0] - 3, pixel[1] - 3);
@@ -23,22 +25,27 @@ export class SectionHand {
       await page.waitForTimeout(300);
       const text = (await page.locator(".readout").textContent()) ?? "";
       await page.keyboard.up("Alt");
-      const found = /x (-?[\d.]+)\s+y (-?[\d.]+)/.exec(text);
+      const found = /x (-?[\d.]+)\s+y (-?[\d.]+)\s+z (-?[\d.]+)/.exec(text);
       if (found === null) throw new Error(`the readout gives no position: ${text}`);
-      return [Number(found[1]), Number(found[2])];
+      return found.slice(1, 4).map(Number);
     };
-    const a = at([0.2, 0.2]);
-    const b = at([0.8, 0.8]);
-    const placeA = await read(a);
-    const placeB = await read(b);
-    const scale = [0, 1].map((axis) => (b[axis]! - a[axis]!) / (placeB[axis]! - placeA[axis]!));
-    return new SectionHand(page, (place) => [
-      a[0] + (place[0] - placeA[0]) * scale[0]!,
-      a[1] + (place[1] - placeA[1]) * scale[1]!,
-    ]);
+    const [corner, right, down] = [at([0.2, 0.2]), at([0.8, 0.2]), at([0.2, 0.8])];
+    const [placeCorner, placeRight, placeDown] = [await read(corner), await read(right), await read(down)];
+    // Each side of the pane runs along one axis of the scan: the one that changes most.
+    const axisOf = (place: readonly number[]) => {
+      const change = place.map((value, axis) => Math.abs(value - placeCorner[axis]!));
+      return change.indexOf(Math.max(...change));
+    };
+    const along = (side: 0 | 1, end: Pixel, place: readonly number[]) => {
+      const axis = axisOf(place);
+      const scale = (end[side] - corner[side]) / (place[axis]! - placeCorner[axis]!);
+      return (wanted: Place) => corner[side] + ((wanted[axis] ?? 0) - placeCorner[axis]!) * scale;
+    };
+    const [across, downwards] = [along(0, right, placeRight), along(1, down, placeDown)];
+    return new SectionHand(page, (place) => [across(place), downwards(place)]);
   }
 
-  pixelOf(place: Place): Place {
+  pixelOf(place: Place): Pixel {
     return this.toPixel(place);
   }
 

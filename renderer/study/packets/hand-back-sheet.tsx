@@ -97,7 +97,7 @@ export function HandBackSheet({ services, specimen, close }: HandBackSheetProps)
       <FolderField label="Folder to write into" value={folder} set={setFolder} capabilities={capabilities} disabled={running} />
       <div class="study-fields">
         <label class="stacked">
-          <span>As</span>
+          <span>Written as</span>
           <select class="field" value={form} onChange={(event) => setForm(event.currentTarget.value as PacketForm)}>
             <option value="zip">a zip file</option>
             <option value="folder">a folder</option>

@@ -88,7 +88,7 @@ export function MakePacketsSheet({ model, view, chosen: first, close }: MakePack
       <FolderField label="Folder to write into" value={folder} set={setFolder} capabilities={capabilities} disabled={running} />
       <div class="study-fields">
         <label class="stacked">
-          <span>As</span>
+          <span>Written as</span>
           <select class="field" value={form} onChange={(event) => setForm(event.currentTarget.value as PacketForm)}>
             <option value="zip">a zip file each</option>
             <option value="folder">a folder each</option>
