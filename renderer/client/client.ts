@@ -21,7 +21,9 @@ import type {
   Ticket,
   ValueAnswer,
 } from "#shared/api/engine.ts";
+import type { FollowAnswer, FollowOpenRequest } from "#shared/api/follow.ts";
 import { type BinaryFrame, decodeFrame } from "#shared/api/frame.ts";
+import type { OverlookedAnswer, OverlookedRequest, SearchRequest } from "#shared/api/overlooked.ts";
 import type { ProjectionsAnswer, ProjectionsRequest } from "#shared/api/projections.ts";
 import type {
   AppendAnswer,
@@ -84,6 +86,7 @@ export class Client {
   projections = (job: string): Promise<ProjectionsAnswer> => this.json("projections", { params: { job } });
   startIntake = (request: IntakeRequest): Promise<{ job: string }> => this.json("startIntake", { body: request });
   openDemo = (): Promise<{ job: string }> => this.json("openDemo", { body: {} });
+  openDemoStudy = (): Promise<{ job: string }> => this.json("openDemoStudy", { body: {} });
   cancelJob = (job: string): Promise<unknown> => this.json("cancelJob", { params: { job }, body: {} });
   specimen = (specimen: string): Promise<SpecimenRecord> => this.json("specimen", { params: { specimen } });
   changeSpecimen = (specimen: string, patch: SpecimenPatch): Promise<SpecimenRecord> =>
@@ -164,6 +167,26 @@ export class Client {
     );
   }
   closeGuide = (session: string): Promise<unknown> => this.json("closeGuide", { body: { session } }, RANK.plain);
+  /** A proposal of the whole string through a place; asked on with `moreFollow` until it is done. */
+  openFollow(request: Unticketed<FollowOpenRequest>): Newest<{ session: string }> {
+    return this.inLine(
+      "guide",
+      "follow open",
+      (ticket) => this.json("openFollow", { body: { ticket, ...request } }, RANK.guide),
+      true,
+    );
+  }
+  moreFollow(session: string): Newest<FollowAnswer> {
+    return this.inLine("guide", "follow more", (ticket) => this.json("moreFollow", { body: { ticket, session } }, RANK.guide));
+  }
+  closeFollow = (session: string): Promise<unknown> => this.json("closeFollow", { body: { session } }, RANK.plain);
+  /** What no strand of a pass explains, from what was searched so far. */
+  overlooked(request: OverlookedRequest): Newest<OverlookedAnswer> {
+    return this.newest.run("overlooked", () => this.json("overlooked" as RouteName, { body: request }, RANK.plain));
+  }
+  /** Starts the search of a scan for strings, or goes on with it. */
+  startSearch = (specimen: string, request: SearchRequest): Promise<{ job: string }> =>
+    this.json("startSearch" as RouteName, { params: { specimen }, body: request });
   /** Committed curves. Never superseded: each call stands in a line of its own. */
   solve(
     specimen: string,

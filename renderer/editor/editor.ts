@@ -5,27 +5,28 @@ import type { Intent, LeavePlace, StrandPlace } from "#renderer/editor/session/i
 import type { PassKeeper } from "#renderer/editor/session/pass-keeper.ts";
 import { performIntent } from "#renderer/editor/session/perform.ts";
 import { Playback } from "#renderer/editor/session/playback.ts";
-import type { Stage } from "#renderer/editor/session/stage.ts";
+import { type Stage, settlePlace } from "#renderer/editor/session/stage.ts";
 import { afterLabelling, type Sticky, stickyOf } from "#renderer/editor/session/sticky-labels.ts";
 import { type AskSolve, StrandSolver } from "#renderer/editor/session/strand-solver.ts";
-import { type ForkProposal, forkProposal } from "#renderer/editor/tracing/guide-advice.ts";
+import type { FollowSource } from "#renderer/editor/tracing/follower.ts";
+import type { ForkProposal } from "#renderer/editor/tracing/guide-advice.ts";
 import { type Guide, GuideFollower, type GuideSource } from "#renderer/editor/tracing/guide-follower.ts";
 import type { IntentPlace } from "#renderer/editor/tracing/intent-place.ts";
 import { passing } from "#renderer/editor/tracing/passing.ts";
 import { type Projection, project, tipOf } from "#renderer/editor/tracing/projection.ts";
+import { Proposing } from "#renderer/editor/tracing/proposing.ts";
 import { type Aim, type AskSnap, type Snapped, Snapper } from "#renderer/editor/tracing/snapper.ts";
-import { closedAround, detourPins, tracedStrings } from "#renderer/editor/tracing/traced-strings.ts";
+import { StringsBeside } from "#renderer/editor/tracing/strings-beside.ts";
 import { isUnfinished, NOTHING, type UnderWay } from "#renderer/editor/tracing/under-way.ts";
 import type { Pointing, Under } from "#renderer/editor/view-control.ts";
-import { type GuideWarning, guideWarnings, type TracedString } from "#shared/checks/guide-warnings.ts";
-import { roundPoint } from "#shared/geometry/types.ts";
+import { type PointMm, roundPoint } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
+import type { PlaceOnProposal } from "#shared/tracing/follow/part-of-proposal.ts";
 import { otherEnd, strandsAt } from "#shared/trees/adjacency.ts";
 import type { EndKind, NodeId, StrandId, TreeDocument } from "#shared/trees/document.ts";
 import type { Anchor } from "#shared/trees/edits/anchor.ts";
 import type { LineId } from "#shared/trees/edits/edit-plan.ts";
 import type { NodeLabels } from "#shared/trees/edits/node-labels.ts";
-import { isLooseEnd } from "#shared/trees/edits/rewiring.ts";
 
 /** What the editor needs of the rest of the program; fakes stand in for it in tests. */
 export interface EditorPlaces {
@@ -33,6 +34,7 @@ export interface EditorPlaces {
   readonly solve: AskSolve;
   readonly snap: AskSnap;
   readonly guide: GuideSource;
+  readonly follow: FollowSource;
   /** Resolves when the server may be asked again. */
   readonly serverBack: () => Promise<void>;
   /** An edit that could not be made; the person is told. */
@@ -56,6 +58,8 @@ export type Carried =
 
 /** The pointer snaps to strings within so many screen pixels. */
 const REACH_PX = 9;
+/** A bright place of the space view is a voxel of a coarse level: the string lies this near, millimetres. */
+const BRIGHT_REACH_MM = 0.8;
 /** Nearer to the last pin than this on the screen, an end key means that pin itself. */
 const AT_PIN_PX = 10;
 
@@ -65,12 +69,7 @@ export class Editor {
   readonly selection: Signal<Selection> = signal(NO_SELECTION);
   readonly sticky: Signal<Sticky>;
   readonly carried: Signal<Carried | null> = signal(null);
-  /** The guide may not enter strings that are traced already. */
-  readonly isClosed: Signal<boolean> = signal(false);
-  /** What a person should look at along the guide, in its order. */
-  readonly advice: ReadonlySignal<readonly GuideWarning[]>;
-  /** The fork that the guide suggests. */
-  readonly proposedFork: ReadonlySignal<ForkProposal | null>;
+  readonly beside: StringsBeside;
   readonly projection: ReadonlySignal<Projection>;
   readonly keeper: PassKeeper;
   /** Counts changes of the history, for what is read from the keeper directly. */
@@ -78,6 +77,7 @@ export class Editor {
   /** A finished pass is looked at; nothing in it changes until it is under way again. */
   readonly isFinished = signal(false);
   readonly playback = new Playback();
+  readonly proposing: Proposing;
   /** What was selected when the playback began. */
   private selectedBefore: Selection | null = null;
   private readonly documentSignal: Signal<TreeDocument>;
@@ -99,10 +99,15 @@ export class Editor {
     this.documentSignal = signal(keeper.document);
     this.document = this.documentSignal;
     this.sticky = signal(stickyOf(keeper.document));
-    this.guideFollower = new GuideFollower(places.guide, (from) =>
-      this.isClosed.peek() ? closedAround(this.stringsBeside(), from) : [],
-    );
+    this.guideFollower = new GuideFollower(places.guide, (from) => this.beside.closedFor(from));
+    this.beside = new StringsBeside(this.documentSignal, this.underWaySignal, this.guideFollower.guide);
     this.snapper = new Snapper(places.snap);
+    this.proposing = new Proposing({
+      source: places.follow,
+      document: () => this.documentSignal.peek(),
+      take: (intent) => this.do(intent),
+      failed: places.failed,
+    });
     const underWay = this.underWaySignal;
     this.stage = {
       keeper,
@@ -130,16 +135,6 @@ export class Editor {
             this.queue.waiting.value.map((queued) => queued.intent),
           )
         : project(this.documentSignal.value, NOTHING, []),
-    );
-    this.advice = computed(() => {
-      const guide = this.guideFollower.guide.value;
-      this.documentSignal.value;
-      return guide === null ? [] : guideWarnings(guide.points, guide.doubtful, this.stringsBeside());
-    });
-    this.proposedFork = computed(() =>
-      this.readOnly || this.queue.waiting.value.length > 0
-        ? null
-        : forkProposal(this.documentSignal.value, this.underWaySignal.value, this.advice.value),
     );
     this.disposers.push(
       keeper.onChange(() => this.historyChanged()),
@@ -209,6 +204,11 @@ export class Editor {
       this.putDown(carried, pointing);
       return;
     }
+    const proposed = this.proposedAt(pointing);
+    if (proposed !== null) {
+      this.proposing.toggle(proposed.strand);
+      return;
+    }
     if (this.projection.value.kind === "nothing" && pointing.under !== null) {
       this.select(pointing.under);
       return;
@@ -220,13 +220,18 @@ export class Editor {
 
   /** Closes traced strings to the guide, or opens them again. */
   toggleClosed(): void {
-    this.isClosed.value = !this.isClosed.value;
+    this.beside.isClosed.value = !this.beside.isClosed.value;
     this.guideFollower.setOutAnew();
+  }
+
+  /** The fork that the guide suggests, when it can be taken at once. */
+  proposedFork(): ForkProposal | null {
+    return this.readOnly || this.queue.waiting.value.length > 0 ? null : this.beside.fork.value;
   }
 
   /** Takes the fork that the guide suggests: the branch starts there, or the end under way is joined there. */
   takeProposedFork(): void {
-    const fork = this.proposedFork.value;
+    const fork = this.proposedFork();
     if (fork === null) return;
     const place = { strand: fork.strand, near: fork.at };
     if (fork.kind === "join") {
@@ -238,6 +243,34 @@ export class Editor {
     // An origin set on a string by mistake goes with its tree; what is under way from a fork is only left.
     this.do({ do: isLoneOrigin ? "back" : "leave" });
     this.do({ do: "branch", from: place });
+  }
+
+  /** The proposed strand under the pointer and the place on it; what is drawn already goes before. */
+  proposedAt(pointing: Pointing | null = this.pointing): PlaceOnProposal | null {
+    if (pointing === null || pointing.under !== null || this.projection.value.kind !== "nothing") return null;
+    const { at, normal, mmPerPx, slabMm } = pointing;
+    return this.proposing.placeSeen({ at, normal, mmPerPx, slabMm });
+  }
+
+  /** Proposes the whole string that the pointer is on; from Space or a list, the string at a place given. */
+  async propose(at: PointMm | null = null): Promise<void> {
+    if (this.readOnly || (at === null && this.pointing === null)) return;
+    // What was snapped last may belong to where the pointer was before.
+    await this.proposing.start(at ?? (await settlePlace(this.stage, this.placeOf(this.pointing!))));
+  }
+
+  /** Proposes the string nearest to a bright place of the space view; nothing while something is drawn or proposed. */
+  async proposeNear(bright: PointMm): Promise<void> {
+    if (this.readOnly || this.projection.value.kind !== "nothing" || this.proposing.following.value.kind !== "none") return;
+    const answer = await this.stage.snap({
+      at: bright,
+      normal: [0, 0, 1],
+      slabMm: 2 * BRIGHT_REACH_MM,
+      reachMm: BRIGHT_REACH_MM,
+      snap: true,
+      candidate: 0,
+    });
+    await this.propose(answer?.candidates[0]?.point ?? bright);
   }
 
   /** Ends the strand under way: at the pointer, or at its last pin when the pointer is on that pin or off the section. */
@@ -364,6 +397,7 @@ export class Editor {
 
   dispose(): void {
     this.playback.stop();
+    this.proposing.putAway();
     for (const dispose of this.disposers) dispose();
     this.guideFollower.stop();
   }
@@ -386,20 +420,9 @@ export class Editor {
   /** Pins the way around closed strings, so that the committed curve takes it too. */
   private pinDetour(at: IntentPlace): void {
     const { kind, leg } = this.projection.value;
-    if (!this.isClosed.value || leg !== "guide" || (kind !== "strand" && kind !== "branch")) return;
+    if (leg !== "guide" || (kind !== "strand" && kind !== "branch")) return;
     const to = "point" in at ? at.point : at.aim.at;
-    for (const point of detourPins(this.guideFollower.guide.value, to, this.stringsBeside())) {
-      this.do({ do: "pin", at: { point } });
-    }
-  }
-
-  /** The strings traced before, without the strand under way. */
-  private stringsBeside(): TracedString[] {
-    const document = this.documentSignal.peek();
-    const underWay = this.underWaySignal.peek();
-    const tip = underWay.kind === "strand" ? document.nodes.get(underWay.tip) : undefined;
-    const own = tip !== undefined && isLooseEnd(document, tip) ? strandsAt(document, tip.id)[0] : undefined;
-    return tracedStrings(document, own?.id ?? null);
+    for (const point of this.beside.detour(this.guideFollower.guide.value, to)) this.do({ do: "pin", at: { point } });
   }
 
   private placeOf(pointing: Pointing): IntentPlace {

@@ -4,6 +4,7 @@ import { setPassState } from "#renderer/desk/model/finish-pass.ts";
 import { stepFinding } from "#renderer/desk/model/go-to-finding.ts";
 import { openRadiusSheet } from "#renderer/desk/model/open-radius-sheet.ts";
 import { playBack } from "#renderer/desk/model/play-back.ts";
+import { whatToDismiss } from "#renderer/desk/model/what-to-dismiss.ts";
 import type { DeskContext } from "#renderer/editor/commands/desk-context.ts";
 
 /** What commands act on, for one open desk. */
@@ -33,7 +34,7 @@ export function deskContext(model: DeskModel): DeskContext {
       nameMark: open("mark"),
       renameTree: open("rename"),
       dismissFinding: () => {
-        if (model.findings.value.some((finding) => finding.key === model.findingAt.value)) model.sheet.value = "dismiss";
+        if (whatToDismiss(model) !== null) model.sheet.value = "dismiss";
       },
       toggleTheme: () => setTheme(theme.value === "dark" ? "light" : "dark"),
       backToShelf: () => services.goTo({ screen: "shelf" }),

@@ -2,6 +2,8 @@ import { computed, effect, type ReadonlySignal, type Signal, signal } from "@pre
 import type { Services } from "#renderer/app/services.ts";
 import { type ShownFinding, shownFindings } from "#renderer/desk/model/findings.ts";
 import { type LineFacts, lineFacts, selectedLine } from "#renderer/desk/model/line-facts.ts";
+import { OverlookedModel } from "#renderer/desk/model/overlooked-model.ts";
+import { overlookedSource } from "#renderer/desk/model/overlooked-source.ts";
 import type { PlaceOnStrand } from "#renderer/desk/model/place-on-strip.ts";
 import { lookAtRecovered } from "#renderer/desk/model/recovered-edits.ts";
 import { type FollowedLine, SectionModel } from "#renderer/desk/model/section-model.ts";
@@ -30,6 +32,9 @@ export type SheetName =
   | "upright"
   | "radius";
 
+/** What the side panel lists. */
+export type SideTab = "trees" | "findings" | "overlooked";
+
 export interface DeskFacts {
   readonly services: Services;
   readonly specimen: SpecimenRecord;
@@ -55,10 +60,11 @@ export class DeskModel {
   readonly recoveredLogs: RecoveredLogs;
   /** Edits that this browser set aside, as last looked at. */
   readonly recovered: Signal<readonly RecoveredEdits[]> = signal([]);
-  readonly tab: Signal<"trees" | "findings"> = signal<"trees" | "findings">("trees");
+  readonly tab: Signal<SideTab> = signal<SideTab>("trees");
   /** Follows the document once it rests: checks of a whole valve are too much for every pin. */
   readonly findings: Signal<readonly ShownFinding[]>;
   readonly findingAt: Signal<string | null> = signal(null);
+  readonly overlooked: OverlookedModel;
   readonly measures: ReadonlySignal<Measures>;
   /** The selected strand as the strip shows it. */
   readonly lineFacts: ReadonlySignal<LineFacts | null>;
@@ -83,12 +89,18 @@ export class DeskModel {
         preview: (session, to) => client.previewGuide(session, to),
         close: (session) => client.closeGuide(session),
       },
+      follow: {
+        open: (at, traced) => client.openFollow({ specimen: specimen.id, at, parameters, traced }),
+        more: (session) => client.moreFollow(session),
+        close: (session) => client.closeFollow(session),
+      },
       serverBack: () => serverBack(client),
       failed: (error) => notices.failed(error),
       keepWaiting: (left) => keepWaiting(pass.id, left),
       // The window that writes carries them out.
       leftWaiting: keeper.readOnly ? NOTHING_LEFT : leftWaiting(pass.id),
     });
+    this.overlooked = new OverlookedModel(overlookedSource(services, specimen, pass.id), this.editor.document);
     this.section = new SectionModel({ client, specimen: this.specimen, followed: () => this.followed() });
     this.measures = computed(() => measureTrees(plainFromDocument(this.editor.document.value)));
     this.lineFacts = computed(() => lineFacts(this.editor.document.value, this.editor.selection.value));
@@ -124,6 +136,7 @@ export class DeskModel {
 
   dispose(): void {
     for (const stop of this.stops) stop();
+    this.overlooked.dispose();
     this.editor.dispose();
     this.section.detach();
     void this.editor.keeper.close();

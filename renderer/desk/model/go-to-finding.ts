@@ -1,5 +1,6 @@
 import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
 import type { ShownFinding } from "#renderer/desk/model/findings.ts";
+import { goToStretch } from "#renderer/desk/model/go-to-overlooked.ts";
 import { selectLine, selectNode } from "#renderer/editor/selection.ts";
 import { pointMm } from "#shared/geometry/types.ts";
 import type { NodeId, StrandId } from "#shared/trees/document.ts";
@@ -16,14 +17,19 @@ export function goToFinding(model: DeskModel, finding: ShownFinding): void {
   if (position !== null) section.goTo(pointMm(position[0], position[1], position[2]));
 }
 
-/** The next or previous finding that still stands. */
+/** The next or previous finding that still stands; past the last one, the overlooked stretches, longest first. */
 export function stepFinding(model: DeskModel, by: 1 | -1): void {
-  const standing = model.findings.value.filter((finding) => finding.dismissed === null);
-  if (standing.length === 0) {
-    model.services.notices.news("No finding is left.");
+  const findings = model.findings.value.filter((finding) => finding.dismissed === null);
+  const steps = [
+    ...findings.map((finding) => ({ key: finding.key, go: () => goToFinding(model, finding) })),
+    ...model.overlooked.standing.value.map((stretch) => ({ key: stretch.key, go: () => goToStretch(model, stretch) })),
+  ];
+  if (steps.length === 0) {
+    model.services.notices.news("No finding is left, and no overlooked stretch is known.");
     return;
   }
-  const at = standing.findIndex((finding) => finding.key === model.findingAt.value);
-  const next = at < 0 ? (by === 1 ? 0 : standing.length - 1) : (at + by + standing.length) % standing.length;
-  goToFinding(model, standing[next]!);
+  const current = model.tab.value === "overlooked" ? model.overlooked.at.value : model.findingAt.value;
+  const at = steps.findIndex(({ key }) => key === current);
+  const next = at < 0 ? (by === 1 ? 0 : steps.length - 1) : (at + by + steps.length) % steps.length;
+  steps[next]!.go();
 }

@@ -3,13 +3,9 @@ import { useEffect } from "preact/hooks";
 import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
 import { ScaleButtons } from "#renderer/desk/panes/scale-buttons.tsx";
 import { mmText } from "#renderer/editor/session/words.ts";
-import { adviceWords } from "#renderer/editor/tracing/guide-advice.ts";
 import { distance } from "#shared/geometry/vec3.ts";
 
-/** More warnings than this at once are read by nobody. */
-const MOST_ADVICE = 2;
-
-/** Place and grey value under the pointer, the depth it snaps to, the guide's image fit and what to look at along it, the ruler. */
+/** Place and grey value under the pointer, the depth it snaps to, the guide's image fit, the ruler. */
 export function Readout({ model }: { readonly model: DeskModel }) {
   const { section, editor, services } = model;
   const grey = useSignal<number | null>(null);
@@ -50,12 +46,6 @@ export function Readout({ model }: { readonly model: DeskModel }) {
             {guide.coarse ? " (coarse)" : guide.doubtful.length > 0 ? " leaves the string" : ""}
           </span>
         )}
-        {editor.isClosed.value ? <span>traced strings impassable</span> : null}
-        {editor.advice.value.slice(0, MOST_ADVICE).map((warning) => (
-          <span key={`${warning.kind} ${warning.at.join(" ")}`} class="warn">
-            {adviceWords(editor.document.value, warning)}
-          </span>
-        ))}
         {ruler === null ? null : <span class="ruler-length">ruler {mmText(distance(ruler.from, ruler.to), 2)}</span>}
       </div>
       <button

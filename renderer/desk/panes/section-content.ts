@@ -1,6 +1,7 @@
 import { effect } from "@preact/signals";
 import { theme } from "#renderer/app/theme-choice.ts";
 import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
+import { suggestedLines } from "#renderer/desk/model/suggested-lines.ts";
 import { mmText } from "#renderer/editor/session/words.ts";
 import type { Pointing, Under } from "#renderer/editor/view-control.ts";
 import type { SectionEvents, SectionHit, SectionPlace, StrandUnderWay } from "#renderer/section/section-content.ts";
@@ -88,6 +89,7 @@ export function mountSection(host: HTMLElement, model: DeskModel): () => void {
     }),
     effect(() => view.show({ underWay: underWayOf(model) })),
     effect(() => view.show({ places: placesOf(model) })),
+    effect(() => view.show({ proposal: suggestedLines(model) })),
     effect(() => {
       const snapped = editor.snapped.value;
       const shown = snapped !== null && snapped.candidates > 0;
@@ -127,7 +129,7 @@ function underWayOf({ editor }: DeskModel): StrandUnderWay | null {
 
 /** The fork that the guide suggests, marked at its place. */
 function placesOf({ editor }: DeskModel): MarkedPlace[] {
-  const fork = editor.proposedFork.value;
+  const fork = editor.proposedFork();
   return fork === null ? [] : [{ at: fork.at, glyph: NODE_GLYPHS.fork, colour: null, picked: true }];
 }
 

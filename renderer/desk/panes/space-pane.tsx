@@ -2,6 +2,7 @@ import { effect } from "@preact/signals";
 import { useEffect, useRef } from "preact/hooks";
 import { theme } from "#renderer/app/theme-choice.ts";
 import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
+import { suggestedLines } from "#renderer/desk/model/suggested-lines.ts";
 import { SpaceView } from "#renderer/space/space-view.ts";
 import { pointMm } from "#shared/geometry/types.ts";
 import { valveAxes } from "#shared/geometry/valve-axes.ts";
@@ -56,6 +57,7 @@ function mountSpace(host: HTMLElement, model: DeskModel): { view: SpaceView; sto
       if (hit.kind === "node") editor.select({ kind: "node", id: hit.id });
       else if (hit.kind === "strand") editor.select({ kind: "strand", id: hit.id, point: hit.point });
       section.goTo(hit.point);
+      if (hit.kind === "surface") void editor.proposeNear(hit.point);
     },
   });
   view.show({ bounds: { centre, radiusMm: distance(near, far) / 2 } });
@@ -73,6 +75,7 @@ function mountSpace(host: HTMLElement, model: DeskModel): { view: SpaceView; sto
     effect(() => view.show({ document: editor.document.value, selection: editor.selection.value })),
     effect(() => view.show({ valve: valveAxes(model.specimen.value.landmarks) })),
     effect(() => view.show({ pins: editor.projection.value.pins })),
+    effect(() => view.show({ proposal: suggestedLines(model) })),
     effect(() => {
       const guide = editor.guide.value;
       guided.do(() => view.show({ guide: guide === null ? null : guide.points.flatMap((point) => [...point]) }));

@@ -1,18 +1,19 @@
+import { whatToDismiss } from "#renderer/desk/model/what-to-dismiss.ts";
 import type { DeskSheetProps } from "#renderer/desk/sheets/sheet-props.ts";
 import { TextSheet } from "#renderer/desk/sheets/text-sheet.tsx";
 
-/** Sets a finding aside; the reason is kept with the trees. */
+/** Sets a finding or an overlooked stretch aside; the reason is kept with the trees. */
 export function DismissSheet({ model, close }: DeskSheetProps) {
-  const finding = model.findings.value.find((one) => one.key === model.findingAt.value);
-  if (finding === undefined) return null;
+  const what = whatToDismiss(model);
+  if (what === null) return null;
   return (
     <TextSheet
-      title="Dismiss the finding"
-      label={`${finding.message} Why is it none?`}
+      title={what.title}
+      label={what.question}
       first=""
       done="Dismiss"
       close={close}
-      take={(reason) => model.editor.do({ do: "dismiss", args: { key: finding.key, reason } })}
+      take={(reason) => model.editor.do({ do: "dismiss", args: { key: what.key, reason } })}
     />
   );
 }

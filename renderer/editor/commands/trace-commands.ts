@@ -7,6 +7,7 @@ import type { EndKind } from "#shared/trees/document.ts";
 const under = ({ view }: DeskContext) => view.pointing.value?.under ?? null;
 const kind = ({ editor }: DeskContext) => editor.projection.value.kind;
 const canEdit = ({ editor }: DeskContext) => !editor.readOnly;
+const isReady = ({ editor }: DeskContext) => editor.proposing.following.value.kind === "ready";
 const isDrawing = (context: DeskContext) => canEdit(context) && (kind(context) === "strand" || kind(context) === "branch");
 
 function endCommand(name: string, key: string, end: Exclude<EndKind, "open">): Command<DeskContext> {
@@ -35,6 +36,7 @@ export const END_COMMANDS: readonly Command<DeskContext>[] = [
 function clickWords(context: DeskContext): string | null {
   const { editor } = context;
   if (editor.carried.value !== null) return "put it down here";
+  if (editor.proposedAt(context.view.pointing.value) !== null) return "leave this out, or put it back";
   const here = under(context);
   switch (kind(context)) {
     case "strand":
@@ -117,14 +119,38 @@ export const TRACE_COMMANDS: readonly Command<DeskContext>[] = [
     foot: ({ editor }) => ((editor.snapped.value?.candidates ?? 0) > 1 ? "next string in depth" : null),
   },
   {
+    name: "propose",
+    group: "Trace",
+    label: "Propose the whole string here, or take what is proposed",
+    keys: ["F"],
+    enabled: (context) =>
+      canEdit(context) && kind(context) === "nothing" && (isReady(context) || context.view.pointing.value !== null),
+    perform: ({ editor }) => (editor.proposing.following.value.kind === "ready" ? editor.proposing.take() : editor.propose()),
+    foot: (context) => {
+      if (!canEdit(context) || kind(context) !== "nothing") return null;
+      if (isReady(context)) return "take what is proposed";
+      return context.view.pointing.value !== null && under(context) === null ? "propose the whole string" : null;
+    },
+  },
+  {
+    name: "take-to-here",
+    group: "Trace",
+    label: "Take what is proposed, up to the pointer",
+    keys: ["Shift+T"],
+    enabled: (context) => canEdit(context) && context.editor.proposedAt(context.view.pointing.value) !== null,
+    perform: ({ editor, view }) => editor.proposing.take(editor.proposedAt(view.pointing.value)),
+    foot: (context) =>
+      canEdit(context) && context.editor.proposedAt(context.view.pointing.value) !== null ? "take it up to here" : null,
+  },
+  {
     name: "proposed-fork",
     group: "Trace",
     label: "Take the fork that the guide suggests: branch where it leaves a string, join where it meets one",
     keys: ["Shift+F"],
-    enabled: (context) => canEdit(context) && context.editor.proposedFork.value !== null,
+    enabled: (context) => canEdit(context) && context.editor.proposedFork() !== null,
     perform: ({ editor }) => editor.takeProposedFork(),
     foot: ({ editor }) => {
-      const fork = editor.proposedFork.value;
+      const fork = editor.proposedFork();
       if (fork === null) return null;
       return fork.kind === "branch" ? "branch where the guide leaves the string" : "join the string it meets";
     },
@@ -136,7 +162,7 @@ export const TRACE_COMMANDS: readonly Command<DeskContext>[] = [
     keys: ["Shift+I"],
     enabled: canEdit,
     perform: ({ editor }) => editor.toggleClosed(),
-    foot: (context) => (isDrawing(context) && context.editor.isClosed.value ? "traced strings passable again" : null),
+    foot: (context) => (isDrawing(context) && context.editor.beside.isClosed.value ? "traced strings passable again" : null),
   },
   {
     name: "take-back-pin",
@@ -150,10 +176,11 @@ export const TRACE_COMMANDS: readonly Command<DeskContext>[] = [
   {
     name: "leave",
     group: "Trace",
-    label: "Leave the strand as it is (open), put back what is carried, or end the play back",
+    label: "Leave the strand as it is (open), put back what is carried, put a proposal away, or end the play back",
     keys: ["Escape"],
     enabled: ({ editor }) =>
       editor.playback.shown.value !== null ||
+      editor.proposing.following.value.kind !== "none" ||
       editor.projection.value.kind !== "nothing" ||
       editor.carried.value !== null ||
       editor.selection.value.tree !== undefined ||
@@ -161,12 +188,14 @@ export const TRACE_COMMANDS: readonly Command<DeskContext>[] = [
     perform: ({ editor }) => {
       if (editor.playback.shown.value !== null) editor.stopPlayback();
       else if (editor.carried.value !== null) editor.carried.value = null;
+      else if (editor.proposing.following.value.kind !== "none") editor.proposing.putAway();
       else if (editor.projection.value.kind !== "nothing") editor.do({ do: "leave" });
       else editor.selection.value = {};
     },
     foot: (context) => {
       if (context.editor.playback.shown.value !== null) return "end the play back";
       if (context.editor.carried.value !== null) return "put it back";
+      if (context.editor.proposing.following.value.kind !== "none") return "put the proposal away";
       return kind(context) === "nothing" ? null : "leave it open";
     },
   },

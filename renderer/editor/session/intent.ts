@@ -1,7 +1,9 @@
 import type { MendIntent } from "#renderer/editor/session/mends.ts";
+import type { Meeting } from "#renderer/editor/session/take-proposal.ts";
 import type { IntentPlace } from "#renderer/editor/tracing/intent-place.ts";
 import type { Sight } from "#renderer/editor/tracing/passing.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
+import type { FollowProposal } from "#shared/tracing/follow/proposal.ts";
 import type { EndKind, NodeId, StrandId, TreeDocument } from "#shared/trees/document.ts";
 import type { Anchor } from "#shared/trees/edits/anchor.ts";
 
@@ -39,6 +41,7 @@ export type Intent =
     }
   /** `givesUpOrigin`: the tree of the end was drawn towards its own origin, which becomes an open end. */
   | { readonly do: "join"; readonly end: NodeId; readonly to: LeavePlace; readonly givesUpOrigin?: boolean }
+  | { readonly do: "take-proposal"; readonly proposal: FollowProposal; readonly meeting: Meeting | null }
   | { readonly do: "take-in"; readonly incoming: TreeDocument; readonly name: string }
   // history
   | { readonly do: "undo" }

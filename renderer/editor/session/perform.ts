@@ -1,17 +1,12 @@
 import type { Intent } from "#renderer/editor/session/intent.ts";
+import { joinPlan } from "#renderer/editor/session/join-plan.ts";
 import { isMend, mendOf } from "#renderer/editor/session/mends.ts";
 import { performTracing } from "#renderer/editor/session/perform-tracing.ts";
-import { inOne, type MakePlan, makeEdit, type Stage } from "#renderer/editor/session/stage.ts";
+import { makeEdit, type Stage } from "#renderer/editor/session/stage.ts";
 import { radiusMend, strandMend } from "#renderer/editor/session/strand-mends.ts";
+import { takeProposalPlan } from "#renderer/editor/session/take-proposal.ts";
 import { settleAnchor } from "#renderer/editor/tracing/passing.ts";
 import { NOTHING, underWayAfter } from "#renderer/editor/tracing/under-way.ts";
-import { TautlineError } from "#shared/errors.ts";
-import type { NodeId, TreeDocument } from "#shared/trees/document.ts";
-import type { Anchor } from "#shared/trees/edits/anchor.ts";
-import { joinStrands } from "#shared/trees/edits/join-strands.ts";
-import { placeOnLine } from "#shared/trees/edits/place-on-line.ts";
-import { strandOf } from "#shared/trees/edits/refusal.ts";
-import { startBranch } from "#shared/trees/edits/start-branch.ts";
 import { takeInTrees } from "#shared/trees/edits/take-in-trees.ts";
 
 /** Carries out one intent: at most one edit, or one move of the history. What is under way follows. */
@@ -45,6 +40,9 @@ export async function performIntent(stage: Stage, intent: Intent, signal: AbortS
         signal,
       );
       return;
+    case "take-proposal":
+      await makeEdit(stage, "Take a proposal", takeProposalPlan(stage.keeper.document, intent.proposal, intent.meeting), signal);
+      return;
     case "undo":
     case "redo": {
       const before = stage.keeper.document;
@@ -61,26 +59,6 @@ export async function performIntent(stage: Stage, intent: Intent, signal: AbortS
     default:
       return performTracing(stage, intent, signal);
   }
-}
-
-/** A loose end joined to a node, or to a fork made for it on a strand. */
-function joinPlan(
-  document: TreeDocument,
-  { end, givesUpOrigin = false }: { readonly end: NodeId; readonly givesUpOrigin?: boolean },
-  to: Anchor,
-): MakePlan {
-  if ("node" in to) return (now, ids) => joinStrands(now, ids, { a: end, b: to.node, givesUpOrigin });
-  const { node } = placeOnLine(document, strandOf(document, to.strand), to.near);
-  if (node !== null) return (now, ids) => joinStrands(now, ids, { a: end, b: node, givesUpOrigin });
-  return (now, ids) => {
-    const forked = startBranch(now, ids, { on: to });
-    const fork = forked.operation.changes.find((change) => change.table === "node" && change.from === null);
-    if (fork?.table !== "node") throw new TautlineError("internal", "The join made no fork.", { what: "join without a fork" });
-    return inOne(
-      () => forked,
-      (then, more) => joinStrands(then, more, { a: end, b: fork.id, givesUpOrigin }),
-    )(now, ids);
-  };
 }
 
 /** What was under way ends when a mend took its node away or closed its end. */

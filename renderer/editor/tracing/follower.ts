@@ -59,8 +59,8 @@ export class Follower {
     return this.state;
   }
 
-  /** Follows the string through a place; settles when it is ready, with false when there is none or it was stopped. */
-  async start(at: PointMm, traced: readonly TracedLine[]): Promise<boolean> {
+  /** Follows the string through a place; settles when it is ready, when there is none, or when it was stopped. */
+  async start(at: PointMm, traced: readonly TracedLine[]): Promise<"ready" | "none" | "stopped"> {
     this.stop();
     const { run } = this;
     this.state.value = { kind: "growing", at, lines: [], lengthMm: 0 };
@@ -71,31 +71,34 @@ export class Follower {
       );
       if (run !== this.run) {
         if (opened !== null) void this.source.close(opened.session).catch(() => undefined);
-        return false;
+        return "stopped";
       }
       this.session = opened?.session ?? null;
       while (this.session !== null) {
         const answer = await this.source.more(this.session);
-        if (run !== this.run) return false;
+        if (run !== this.run) return "stopped";
         if (answer === null) break;
         if (!answer.done) {
           this.state.value = { kind: "growing", at, lines: answer.growing, lengthMm: answer.lengthMm };
           continue;
         }
         this.session = null;
-        if (answer.proposal === null) break;
+        if (answer.proposal === null) {
+          this.state.value = NONE;
+          return "none";
+        }
         const ids = traced.map(({ id }) => id);
         this.state.value = { kind: "ready", proposal: answer.proposal, leftOut: new Set(), traced: ids };
-        return true;
+        return "ready";
       }
-      this.state.value = NONE;
-      return false;
+      this.stop();
+      return "stopped";
     } catch (error) {
-      if (run !== this.run) return false;
+      if (run !== this.run) return "stopped";
       this.session = null;
       this.state.value = NONE;
       this.failed(error);
-      return false;
+      return "stopped";
     }
   }
 

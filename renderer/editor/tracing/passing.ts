@@ -35,17 +35,26 @@ export function passing(document: TreeDocument, sight: Sight): Anchor | null {
 
 /** The strand that passes nearest as it is seen, with its place; null when none does. */
 export function passingStrand(document: TreeDocument, sight: Sight): { strand: StrandId; near: PointMm } | null {
-  let best: { strand: StrandId; near: PointMm; distance: number } | null = null;
-  for (const strand of document.strands.values()) {
-    const points = polylineOf(document, strand);
+  const lines = [...document.strands.values()].map((strand) => ({ id: strand.id, points: polylineOf(document, strand) }));
+  const seen = nearestSeen(lines, sight);
+  return seen === null ? null : { strand: seen.id, near: seen.near };
+}
+
+/** The line that passes nearest as it is seen, with the place on it; null when none does. */
+export function nearestSeen<Id>(
+  lines: readonly { readonly id: Id; readonly points: readonly Vec3[] }[],
+  sight: Sight,
+): { readonly id: Id; readonly near: PointMm } | null {
+  let best: { id: Id; near: PointMm; distance: number } | null = null;
+  for (const { id, points } of lines) {
     const seen = points.map((point) => flattened(point, sight));
     const nearest = nearestOnPolyline(seen, sight.at);
     if (nearest.distance > (best?.distance ?? STRAND_PX * sight.mmPerPx)) continue;
     const a = points[nearest.segment]!;
     const near = roundPoint(mix(a, points[nearest.segment + 1] ?? a, nearest.share));
-    if (!isDeep(near, sight)) best = { strand: strand.id, near, distance: nearest.distance };
+    if (!isDeep(near, sight)) best = { id, near, distance: nearest.distance };
   }
-  return best === null ? null : { strand: best.strand, near: best.near };
+  return best;
 }
 
 /** The anchor meant, looked for now when it is only a sight. @throws misuse when nothing passes there */

@@ -124,6 +124,11 @@ export class FakeServer {
         preview: async (_, to) => ({ points: [0, 0, 0, ...to], coarse: false, imageFit: 0.9, doubtful: [] }),
         close: async () => undefined,
       },
+      follow: {
+        open: async () => ({ session: "f1" }),
+        more: async () => ({ done: true, growing: [], lengthMm: 0, proposal: null }),
+        close: async () => undefined,
+      },
       serverBack: () => new Promise<void>((go) => this.back.push(go)),
       failed: (error) => void this.failures.push(error),
       keepWaiting: (left) => {

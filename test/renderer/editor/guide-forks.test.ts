@@ -60,9 +60,9 @@ describe("forks that the guide suggests", () => {
       [13, 4, 0],
     ];
     await editor.point(at(13, 4));
-    expect(editor.advice.value.map(({ kind }) => kind)).toEqual(["leaves"]);
-    expect(adviceWords(editor.document.value, editor.advice.value[0]!)).toMatch(/^leaves .+ s1 after 5\.\d mm$/);
-    expect(editor.proposedFork.value).toMatchObject({ kind: "branch", strand });
+    expect(editor.beside.advice.value.map(({ kind }) => kind)).toEqual(["leaves"]);
+    expect(adviceWords(editor.document.value, editor.beside.advice.value[0]!)).toMatch(/^leaves .+ s1 after 5\.\d mm$/);
+    expect(editor.proposedFork()).toMatchObject({ kind: "branch", strand });
     editor.takeProposedFork();
     await editor.settled();
     editor.click(at(13, 4));
@@ -106,7 +106,7 @@ describe("forks that the guide suggests", () => {
       [10, 0.02, 0],
     ];
     await editor.point(at(10, 0));
-    expect(editor.proposedFork.value).toMatchObject({ kind: "join" });
+    expect(editor.proposedFork()).toMatchObject({ kind: "join" });
     editor.takeProposedFork();
     await editor.settled();
     expect(server.failures).toEqual([]);
@@ -135,8 +135,8 @@ describe("forks that the guide suggests", () => {
       [16, 4, 0],
     ];
     await editor.point(at(16, 4));
-    expect(editor.advice.value.map(({ kind }) => kind)).toEqual(["rides"]);
-    expect(editor.proposedFork.value).toBeNull();
+    expect(editor.beside.advice.value.map(({ kind }) => kind)).toEqual(["rides"]);
+    expect(editor.proposedFork()).toBeNull();
     editor.dispose();
   });
 
