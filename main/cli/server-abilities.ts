@@ -1,7 +1,17 @@
 import { createEngine } from "#main/engine/engine.ts";
 import { checkInPlace } from "#main/intake/in-place/in-place-scan.ts";
 import { removeUnfinished } from "#main/intake/make-specimen.ts";
-import { runDemo, runDemoPasses, runIntake, runLabels, runLook, runProjections, runTurned } from "#main/intake/run-intake.ts";
+import {
+  runDemo,
+  runDemoPasses,
+  runDemoSpecimen,
+  runDemoStudyLogs,
+  runIntake,
+  runLabels,
+  runLook,
+  runProjections,
+  runTurned,
+} from "#main/intake/run-intake.ts";
 import type { Abilities } from "#main/node/abilities.ts";
 import type { Library } from "#main/node/library.ts";
 
@@ -24,6 +34,8 @@ export async function serverAbilities(library: Library, memoryBytes: number): Pr
     runIntake,
     runDemo,
     runTurned,
+    runDemoSpecimen,
+    runDemoStudyLogs: ({ signal }) => runDemoStudyLogs({ signal }),
     runDemoPasses: (sha256) => runDemoPasses(sha256),
     runLabels: (file, path) => runLabels(file, path),
     forgetSpecimen: (specimen) => engine.forget(specimen),

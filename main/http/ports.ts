@@ -88,6 +88,7 @@ export interface PacketPort {
 export interface JobsPort {
   startIntake(request: IntakeRequest): Promise<{ job: string }>;
   openDemo(): Promise<{ job: string }>;
+  openDemoStudy(): Promise<{ job: string }>;
   cancel(job: string): Promise<void>;
   jobs(): readonly JobState[];
 }

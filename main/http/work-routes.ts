@@ -30,6 +30,10 @@ export function workRoutes(ports: Ports): RouteHandlers {
       await readJson(c.req.raw, emptyRequest);
       return jsonAnswer(await jobs.openDemo());
     },
+    openDemoStudy: async (c) => {
+      await readJson(c.req.raw, emptyRequest);
+      return jsonAnswer(await jobs.openDemoStudy());
+    },
     cancelJob: async (c) => {
       await readJson(c.req.raw, emptyRequest);
       await jobs.cancel(id(c.req.param("job"), "path.job"));

@@ -5,6 +5,7 @@ import type { IntakeRequest, ScanLookAnswer } from "#shared/api/routes.ts";
 import type { SpecimenRecord, SpecimenVolume } from "#shared/api/specimen.ts";
 import type { ErrorBody } from "#shared/errors.ts";
 import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
+import type { LogRecord } from "#shared/log/records.ts";
 import type { Turn } from "#shared/study/turn.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 import type { RawScan } from "#shared/volume/raw/raw-layout.ts";
@@ -55,11 +56,26 @@ export interface DemoOutcome extends IntakeOutcome {
   readonly passes: readonly { readonly annotator: string; readonly file: ChordaeFile }[];
 }
 
+/** One of the demo study's small specimens to be made. */
+export interface DemoSpecimenOrder extends DemoOrder {
+  readonly name: string;
+}
+
+/** A pass of the demo study as its log; the specimen goes by its name. */
+export interface DemoStudyLog {
+  readonly specimen: string;
+  readonly annotator: string;
+  readonly pass: number;
+  readonly records: readonly LogRecord[];
+}
+
 /** What the worker is started for (its `workerData`). */
 export type WorkerTask =
   | { readonly task: "intake"; readonly order: IntakeOrder }
   | { readonly task: "demo"; readonly order: DemoOrder }
   | { readonly task: "turn"; readonly order: TurnedOrder }
+  | { readonly task: "demo-specimen"; readonly order: DemoSpecimenOrder }
+  | { readonly task: "demo-study-logs" }
   | { readonly task: "demo-passes"; readonly sha256: string }
   | { readonly task: "labels"; readonly file: ChordaeFile; readonly path: string }
   | { readonly task: "look"; readonly path: string; readonly choice?: ScanChoice }
@@ -69,6 +85,7 @@ export type WorkerResult =
   | IntakeOutcome
   | DemoOutcome
   | DemoOutcome["passes"]
+  | readonly DemoStudyLog[]
   | ScanLookAnswer
   | ProjectionsAnswer
   | { readonly bytes: number };

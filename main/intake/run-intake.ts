@@ -4,6 +4,8 @@ import { Worker } from "node:worker_threads";
 import type {
   DemoOrder,
   DemoOutcome,
+  DemoSpecimenOrder,
+  DemoStudyLog,
   IntakeOrder,
   IntakeOutcome,
   TurnedOrder,
@@ -42,6 +44,16 @@ export async function runTurned(order: TurnedOrder, hooks: RunHooks = {}): Promi
 /** The demo valve's invented passes alone, in a thread of its own. */
 export async function runDemoPasses(sha256: string, hooks: RunHooks = {}): Promise<DemoOutcome["passes"]> {
   return (await runWorker({ task: "demo-passes", sha256 }, hooks)) as DemoOutcome["passes"];
+}
+
+/** Makes one of the demo study's small specimens, in a thread of its own. @throws as `makeDemoSpecimen` */
+export async function runDemoSpecimen(order: DemoSpecimenOrder, hooks: RunHooks = {}): Promise<IntakeOutcome> {
+  return (await runWorker({ task: "demo-specimen", order }, hooks)) as IntakeOutcome;
+}
+
+/** The logs of the demo study's passes, drawn in a thread of its own. */
+export async function runDemoStudyLogs(hooks: RunHooks = {}): Promise<readonly DemoStudyLog[]> {
+  return (await runWorker({ task: "demo-study-logs" }, hooks)) as readonly DemoStudyLog[];
 }
 
 /** Writes trees as a label volume to a new file, in a thread of its own. @throws as `writeLabels` */

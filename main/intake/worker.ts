@@ -1,6 +1,7 @@
 import { parentPort, workerData } from "node:worker_threads";
 import type { WorkerMessage, WorkerResult, WorkerTask } from "#main/intake/intake-messages.ts";
 import { demoPasses, makeDemo } from "#main/intake/make-demo.ts";
+import { demoStudyLogs, makeDemoSpecimen } from "#main/intake/make-demo-study.ts";
 import type { IntakeProgress } from "#main/intake/progress.ts";
 import { projectScan } from "#main/intake/project-scan.ts";
 import { lookAtScan } from "#main/intake/scan-info.ts";
@@ -24,6 +25,10 @@ async function perform(work: WorkerTask): Promise<WorkerResult> {
       return makeDemo(work.order, hooks);
     case "turn":
       return makeTurned(work.order, hooks);
+    case "demo-specimen":
+      return makeDemoSpecimen(work.order, hooks);
+    case "demo-study-logs":
+      return demoStudyLogs();
     case "demo-passes":
       return demoPasses(work.sha256);
     case "labels":

@@ -4,6 +4,7 @@ import type { ProjectionsAnswer, ProjectionsRequest } from "#shared/api/projecti
 import type { IntakeRequest, LookRequest, ScanLookAnswer } from "#shared/api/routes.ts";
 import type { SpecimenRecord, SpecimenVolume } from "#shared/api/specimen.ts";
 import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
+import type { LogRecord } from "#shared/log/records.ts";
 import type { Turn } from "#shared/study/turn.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 
@@ -39,6 +40,15 @@ export interface DemoPass {
   readonly file: ChordaeFile;
 }
 
+/** An invented annotator's pass of the demo study as its log; the specimen goes by its name. */
+export interface DemoStudyLog {
+  readonly specimen: string;
+  readonly annotator: string;
+  readonly pass: number;
+  /** A whole log, header first; its ids of pass and specimen mean nothing here. */
+  readonly records: readonly LogRecord[];
+}
+
 /** What the entry points bring in from the engine's and the intake's folders. */
 export interface Abilities {
   readonly engine: Engine;
@@ -55,6 +65,13 @@ export interface Abilities {
   runTurned(order: TurnedScanOrder, hooks: WorkHooks): Promise<{ readonly record: SpecimenRecord }>;
   /** The demo valve's passes alone; its stored voxels have this hash. */
   runDemoPasses(sha256: string): Promise<readonly DemoPass[]>;
+  /** Makes one of the demo study's small specimens, which goes by its name. */
+  runDemoSpecimen(
+    order: SpecimenOrder & { readonly name: string },
+    hooks: WorkHooks,
+  ): Promise<{ readonly record: SpecimenRecord }>;
+  /** The logs of all passes of the demo study. */
+  runDemoStudyLogs(hooks: Pick<WorkHooks, "signal">): Promise<readonly DemoStudyLog[]>;
   /** Writes trees as a label volume (NRRD, gzip) to a file that is not there yet; resolves once it is on the disk. */
   runLabels(file: ChordaeFile, path: string): Promise<void>;
   /** Asks the engine to let go of a specimen's store before its folder is removed. */

@@ -78,7 +78,7 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
       hello: () => ({ name: "Tautline", version: options.version, shell: options.shell, library: root }),
       library,
       engine: abilities.engine,
-      jobs: specimenJobs({ root, library, abilities, jobs, newId, now, emit }),
+      jobs: specimenJobs({ root, library, abilities, jobs, studies: study.store, newId, now, emit }),
       scans: scanLooks(abilities, jobs),
       folders: folders(),
       exports: exportTrees({ library, files, softwareVersion: options.version, runLabels: abilities.runLabels, newId }),

@@ -5,6 +5,7 @@ import type { JobState } from "#shared/api/routes.ts";
 const TITLES: Readonly<Record<JobState["what"], string>> = {
   intake: "Taking in a scan",
   demo: "Making the demo valve",
+  "demo-study": "Making the demo study",
   look: "Looking through a scan",
   search: "Searching a scan for strings",
   export: "Writing files",

@@ -22,6 +22,7 @@ export const ROUTES = {
   projections: { method: "GET", path: "/api/scans/projections/:job" }, // -> ProjectionsAnswer of a job that is done
   startIntake: { method: "POST", path: "/api/intake" }, // IntakeRequest -> {job}
   openDemo: { method: "POST", path: "/api/demo" }, // {} -> {job} (specimen id in the job's result; at once when it exists)
+  openDemoStudy: { method: "POST", path: "/api/demo-study" }, // {} -> {job} (study id in the job's result; the demo valve is made with it)
   cancelJob: { method: "POST", path: "/api/jobs/:job/cancel" }, // {} -> {}
   specimen: { method: "GET", path: "/api/specimens/:specimen" }, // -> SpecimenRecord
   changeSpecimen: { method: "PATCH", path: "/api/specimens/:specimen" }, // SpecimenPatch -> SpecimenRecord
@@ -235,7 +236,7 @@ export type ServerEvent =
 
 export interface JobState {
   readonly id: string;
-  readonly what: "intake" | "demo" | "look" | "search" | "export" | "packets" | "take-in" | "return";
+  readonly what: "intake" | "demo" | "demo-study" | "look" | "search" | "export" | "packets" | "take-in" | "return";
   readonly state: "running" | "done" | "failed" | "cancelled";
   /** 0-1 */
   readonly progress: number;
@@ -251,6 +252,8 @@ export interface JobState {
 export interface JobResult {
   /** The specimen of an intake, of the demo valve, or of an assignment or pass that was taken in. */
   readonly specimen?: string;
+  /** The demo study. */
+  readonly study?: string;
   /** Packets that were written. */
   readonly packets?: readonly MadePacket[];
   /** The packet that was taken in. */

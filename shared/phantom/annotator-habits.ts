@@ -90,3 +90,10 @@ export const DEMO_HABITS: readonly AnnotatorHabits[] = [
     radiusFactor: 1.08,
   },
 ];
+
+/** How fast an annotator of the demo study works, and what share of trees is taken back once and drawn again. */
+export const DEMO_PACE: Readonly<Record<string, { readonly secondsPerTree: number; readonly takenBack: number }>> = {
+  "AN-1": { secondsPerTree: 48, takenBack: 0.1 },
+  "AN-2": { secondsPerTree: 30, takenBack: 0.05 },
+  "AN-3": { secondsPerTree: 40, takenBack: 0.25 },
+};

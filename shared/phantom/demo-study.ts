@@ -2,7 +2,7 @@ import type { StudyFile } from "#shared/agreement/study/study.ts";
 import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
 import { DEMO_HABITS } from "#shared/phantom/annotator-habits.ts";
 import { blockPhantom } from "#shared/phantom/block-phantom.ts";
-import { demoValve } from "#shared/phantom/demo-valve.ts";
+import { DEMO_VALVE_NAME, demoValve } from "#shared/phantom/demo-valve.ts";
 import { type Chances, chancesOf, habitualPass, type StudyMistake } from "#shared/phantom/habitual-pass.ts";
 import { PHANTOM_DATE, type PhantomSpecimen } from "#shared/phantom/phantom-specimen.ts";
 
@@ -31,10 +31,26 @@ export interface DemoStudy {
   readonly chances: ReadonlyMap<string, Chances>;
 }
 
-/** The specimens of the demo study: HB-07 is the demo valve, HB-08 to HB-11 are blocks cut out of such a valve. */
+/** Seeds of the small specimens, by name. */
+const BLOCK_SEEDS: ReadonlyMap<string, number> = new Map([
+  ["HB-08", 8],
+  ["HB-09", 9],
+  ["HB-10", 10],
+  ["HB-11", 11],
+]);
+
+/** Names of the demo study's specimens: HB-07 is the demo valve, the others are blocks cut out of such a valve. */
+export const DEMO_STUDY_NAMES: readonly string[] = [DEMO_VALVE_NAME, ...BLOCK_SEEDS.keys()];
+
+/** One of the small specimens; undefined for another name. */
+export function demoBlock(name: string): PhantomSpecimen | undefined {
+  const seed = BLOCK_SEEDS.get(name);
+  return seed === undefined ? undefined : blockPhantom({ ...BLOCK, name, seed });
+}
+
+/** The specimens of the demo study, in the order of their names. */
 export function demoStudySpecimens(): PhantomSpecimen[] {
-  const blocks = [8, 9, 10, 11].map((seed) => blockPhantom({ ...BLOCK, name: `HB-${String(seed).padStart(2, "0")}`, seed }));
-  return [demoValve(), ...blocks];
+  return [demoValve(), ...[...BLOCK_SEEDS.keys()].map((name) => demoBlock(name)!)];
 }
 
 /**

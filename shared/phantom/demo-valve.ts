@@ -17,6 +17,8 @@ const BOX = { from: [-15, -13, 0], size: [30, 27.6, 34] } as const;
 /** Voxels of the demo: coarse enough to be made and taken in within seconds; the generator makes finer ones as well. */
 const DEMO_SPACING_MM = 0.1;
 const DEMO_SEED = 7;
+/** Name of the demo specimen. */
+export const DEMO_VALVE_NAME = "HB-07";
 /** Least gap between the surfaces of trees that are not meant to touch, millimetres. */
 const GAP_MM = 0.25;
 
@@ -32,7 +34,7 @@ export interface DemoValve extends PhantomSpecimen {
  * generator, the same bytes every time.
  */
 export function demoValve(): DemoValve {
-  const specimen = valvePhantom({ name: "HB-07", seed: DEMO_SEED, spacingMm: DEMO_SPACING_MM, noise: 0.045 });
+  const specimen = valvePhantom({ name: DEMO_VALVE_NAME, seed: DEMO_SEED, spacingMm: DEMO_SPACING_MM, noise: 0.045 });
   const { passes, errors } = humanPasses(specimen, DEMO_SEED);
   return { ...specimen, passes, errors, note: "Synthetic valve made by the program's generator, voxels of 100 um." };
 }

@@ -51,14 +51,18 @@ export function readReturnedLog(about: ReturnPacket, log: string, trees: string,
     throw unreadable(`${packet}, pass.chordae.json`, "the trees that the log ends with", "others", undefined, next);
   }
   const records = chained.map(({ record }) => record);
-  const edits = records.filter(({ kind }) => kind === "op");
-  return {
-    records,
-    history,
-    facts: documentFacts(history.document),
-    effort: passEffort(records),
-    drawn: edits.length === 0 ? null : { from: Math.min(...edits.map(({ t }) => t)), to: Math.max(...edits.map(({ t }) => t)) },
-  };
+  const { effort, drawn, ...facts } = factsOfLog(records, history.document);
+  return { records, history, facts, effort, drawn };
+}
+
+/** What a study keeps of a returned pass beside its place: counts, effort and when it was drawn. @param document the log's fold */
+export function factsOfLog(
+  records: readonly LogRecord[],
+  document: TreeDocument,
+): ReturnedLog["facts"] & Pick<ReturnedLog, "effort" | "drawn"> {
+  const times = records.filter(({ kind }) => kind === "op").map(({ t }) => t);
+  const drawn = times.length === 0 ? null : { from: Math.min(...times), to: Math.max(...times) };
+  return { ...documentFacts(document), effort: passEffort(records), drawn };
 }
 
 /** The part of a tree file that was drawn. */

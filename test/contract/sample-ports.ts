@@ -88,6 +88,7 @@ export async function samplePorts(): Promise<SamplePorts> {
         return { job };
       },
       openDemo: async () => ({ job }),
+      openDemoStudy: async () => ({ job }),
       cancel: async (id) => jobs.cancel(id),
       jobs: () => jobs.states(),
     },

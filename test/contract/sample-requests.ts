@@ -43,6 +43,7 @@ export function sampleRequests(
       },
     },
     openDemo: { body: {} },
+    openDemoStudy: { body: {} },
     cancelJob: { path: { job }, body: {} },
     specimen: { path: { specimen: SPECIMEN } },
     changeSpecimen: {

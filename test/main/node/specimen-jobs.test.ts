@@ -2,6 +2,7 @@ import { describe, expect, it } from "vitest";
 import type { Abilities, DemoPass } from "#main/node/abilities.ts";
 import { Jobs } from "#main/node/jobs.ts";
 import { specimenJobs } from "#main/node/specimen-jobs.ts";
+import { StudyStore } from "#main/node/study/study-store.ts";
 import type { IntakeRequest } from "#shared/api/routes.ts";
 import { unreadable } from "#shared/errors.ts";
 import { CHORDAE_FORMAT, type ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
@@ -63,6 +64,7 @@ function begun(change: Partial<Abilities> = {}) {
     library,
     abilities,
     jobs,
+    studies: new StudyStore({ files, layout: library.layout, mayWrite: async () => {} }),
     newId,
     now: () => 1,
     emit: (event) => void events.push(event),

@@ -5,7 +5,6 @@ import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { demoStudyLogs } from "#main/intake/make-demo-study.ts";
 import type { DemoStudyLog } from "#main/node/abilities.ts";
 import { DEMO_STUDY_ID, plantDemoStudy } from "#main/node/study/plant-demo-study.ts";
-import { TautlineError } from "#shared/errors.ts";
 import { DEMO_PACE } from "#shared/phantom/annotator-habits.ts";
 import { DEMO_STUDY_NAMES, demoStudy } from "#shared/phantom/demo-study.ts";
 import { plainGrid } from "#shared/volume/grid.ts";
@@ -25,7 +24,10 @@ afterAll(() => rm(root, { recursive: true, force: true }));
 async function begun(name: string) {
   const place = await studyPlace(join(root, name), { now: Date.parse("2027-02-01T09:00:00Z") });
   let made = 0;
-  const scan = (specimen: string) => putScan(place, specimen, plainGrid([8, 8, 8], [0.1, 0.1, 0.1]), (made += 1));
+  const scan = (specimen: string) => {
+    made += 1;
+    return putScan(place, specimen, plainGrid([8, 8, 8], [0.1, 0.1, 0.1]), made);
+  };
   const valve = await scan(DEMO_STUDY_NAMES[0]!);
   const synthetic: string[] = [];
   const plant = (signal = new AbortController().signal) =>
@@ -101,7 +103,7 @@ describe("the demo study in a library", () => {
     const takeIn = place.library.passes.takeIn.bind(place.library.passes);
     let left = 7;
     place.library.passes.takeIn = async (...args) => {
-      if (left === 0) throw new TautlineError("disk-full", "No space is left.", { file: "journal.jsonl" });
+      if (left === 0) throw new Error("No space is left.");
       left -= 1;
       return takeIn(...args);
     };
