@@ -10,7 +10,7 @@ export interface ShelfMessages {
 }
 
 /** What the shelf asks of the server. */
-export type ShelfClient = Pick<Client, "shelf" | "onEvent" | "openDemo" | "cancelJob"> & {
+export type ShelfClient = Pick<Client, "shelf" | "onEvent" | "openDemo" | "openDemoStudy" | "cancelJob"> & {
   readonly studies: Pick<Client["studies"], "all">;
 };
 
@@ -22,6 +22,8 @@ export class ShelfModel {
   private readonly jobsSignal = signal<readonly JobState[]>([]);
   /** The specimen that a finished job made last; its row is shown first to the person. */
   private readonly madeSignal = signal<string | null>(null);
+  /** The study that a finished job made last; the shelf goes there when it is looked at. */
+  private readonly madeStudySignal = signal<string | null>(null);
   private readonly putAway = new Set<string>();
   /** Jobs that this page began or saw running: only their ends are news. */
   private readonly seenRunning = new Set<string>();
@@ -52,6 +54,10 @@ export class ShelfModel {
     return this.madeSignal;
   }
 
+  get madeStudy(): ReadonlySignal<string | null> {
+    return this.madeStudySignal;
+  }
+
   /** Loads, and follows the events; the returned function stops. */
   start(): () => void {
     void this.load();
@@ -61,9 +67,10 @@ export class ShelfModel {
     });
   }
 
-  /** The person has gone on: the specimen made last is no news any more. */
+  /** The person has gone on: what was made last is no news any more. */
   forgetMade(): void {
     this.madeSignal.value = null;
+    this.madeStudySignal.value = null;
   }
 
   /** Reads the shelf again; a call while one is under way makes one more afterwards. */
@@ -91,6 +98,15 @@ export class ShelfModel {
   async openDemo(): Promise<void> {
     try {
       const { job } = await this.client.openDemo();
+      this.begun(job);
+    } catch (error) {
+      this.messages.failed(error);
+    }
+  }
+
+  async openDemoStudy(): Promise<void> {
+    try {
+      const { job } = await this.client.openDemoStudy();
       this.begun(job);
     } catch (error) {
       this.messages.failed(error);
@@ -125,6 +141,7 @@ export class ShelfModel {
     if (job.state === "running") this.seenRunning.add(job.id);
     else if (ours && job.state === "done") {
       this.madeSignal.value = job.result?.specimen ?? null;
+      this.madeStudySignal.value = job.result?.study ?? null;
       void this.load();
     } else if (ours && job.state === "cancelled") {
       this.messages.news("Stopped. Nothing of it is left in the library.");

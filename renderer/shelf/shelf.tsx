@@ -47,6 +47,10 @@ export function Shelf({ services, handBack }: ShelfProps) {
     void model.load();
     return () => model.forgetMade();
   }, [model]);
+  const madeStudy = model.madeStudy.value;
+  useEffect(() => {
+    if (madeStudy !== null) services.goTo({ screen: "study", study: madeStudy, part: "report" });
+  }, [services, madeStudy]);
   const [adding, setAdding] = useState<{ readonly path: string } | null>(null);
   const [about, setAbout] = useState(false);
   const [asking, setAsking] = useState<"packet" | "study" | null>(null);
@@ -62,6 +66,7 @@ export function Shelf({ services, handBack }: ShelfProps) {
   const jobs = model.jobs.value.filter(({ id, state }) => (state === "running" || state === "failed") && !told.has(id));
   const things = (answer?.specimens.length ?? 0) + (studies?.studies.length ?? 0) + taken.size;
   const isEmpty = answer !== null && things === 0 && jobs.length === 0;
+  const demoStudyRuns = jobs.some(({ what, state }) => what === "demo-study" && state === "running");
   const demoRuns = jobs.some(({ what, state }) => what === "demo" && state === "running");
 
   const drop = (event: DragEvent) => {
@@ -104,6 +109,9 @@ export function Shelf({ services, handBack }: ShelfProps) {
           </button>
           <button type="button" class="button" disabled={demoRuns} onClick={() => void model.openDemo()}>
             Open the demo valve
+          </button>
+          <button type="button" class="button" disabled={demoStudyRuns} onClick={() => void model.openDemoStudy()}>
+            Open the demo study
           </button>
           <button type="button" class="button plain" onClick={() => setTheme(theme.value === "dark" ? "light" : "dark")}>
             {theme.value === "dark" ? "Light theme" : "Dark theme"}

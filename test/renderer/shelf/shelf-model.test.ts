@@ -35,6 +35,7 @@ beforeEach(() => {
       };
     },
     openDemo: async () => ({ job: "j1" }),
+    openDemoStudy: async () => ({ job: "j1" }),
     cancelJob: async () => undefined,
     studies: { all: async () => ({ studies: [], assignments: [], problems: [] }) },
   } as ShelfClient;
@@ -119,4 +120,15 @@ test("a stopped job is told in a word", () => {
   tell(job({ state: "cancelled" }));
   expect(model.jobs.value).toEqual([]);
   expect(said.join()).toContain("Nothing of it is left");
+});
+
+test("the demo study that this page began is known once it is made, until the person has gone on", async () => {
+  model.start();
+  await model.openDemoStudy();
+  tell(job({ what: "demo-study", progress: 0.5 }));
+  expect(model.madeStudy.value).toBeNull();
+  tell(job({ what: "demo-study", state: "done", result: { study: "st1" } }));
+  expect(model.madeStudy.value).toBe("st1");
+  model.forgetMade();
+  expect(model.madeStudy.value).toBeNull();
 });

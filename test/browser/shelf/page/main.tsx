@@ -57,6 +57,7 @@ const client = {
     return () => listeners.delete(listener);
   },
   openDemo: async () => ({ job: "demo-1" }),
+  openDemoStudy: async () => ({ job: "demo-study-1" }),
   studies: { all: async () => (query.has("studies") ? studiesOfTwo() : { studies: [], assignments: [], problems: [] }) },
   cancelJob: async (job: string) => asked.push({ what: "cancel", detail: job }),
   hello: async () => ({ name: "Tautline", version: "0.1.0", shell: "loopback", library: "/data/library" }),
