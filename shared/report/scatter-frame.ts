@@ -12,8 +12,9 @@ export interface ScatterFrame {
   readonly axes: string;
 }
 
-/** Sides of a plot: two of them stand beside each other on an A4 page. */
+/** Width of a plot: two of them stand beside each other on an A4 page. */
 export const PLOT_WIDTH = 330;
+/** Height of a plot. */
 export const PLOT_HEIGHT = 236;
 
 /**

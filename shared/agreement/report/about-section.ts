@@ -1,5 +1,5 @@
-import type { ReportInput } from "#shared/agreement/report/agreement-report.ts";
 import type { ReportBlock, ReportSection } from "#shared/agreement/report/report-data.ts";
+import type { ReportInput } from "#shared/agreement/report/report-input.ts";
 import { TableOf, text } from "#shared/agreement/report/report-text.ts";
 import { nodeTolerance } from "#shared/agreement/study/study.ts";
 import { REPORT_CAUTIONS } from "#shared/report/html-page.ts";

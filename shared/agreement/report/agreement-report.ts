@@ -12,22 +12,13 @@ import { ownSection } from "#shared/agreement/report/own-section.ts";
 import { pairwiseSection } from "#shared/agreement/report/pairwise-section.ts";
 import { placesSection } from "#shared/agreement/report/places-section.ts";
 import type { AgreementReport, ReportContext } from "#shared/agreement/report/report-data.ts";
+import type { ReportInput } from "#shared/agreement/report/report-input.ts";
 import { spreadOf } from "#shared/agreement/report/spread.ts";
 import { spreadSection } from "#shared/agreement/report/spread-section.ts";
 import { tolerancesSection } from "#shared/agreement/report/tolerances-section.ts";
 import { totalsSection } from "#shared/agreement/report/totals-section.ts";
-import type { Agreement, AgreeOptions } from "#shared/agreement/study/agree.ts";
-import { itemsAt, type Study } from "#shared/agreement/study/study.ts";
+import { itemsAt } from "#shared/agreement/study/study.ts";
 import { quantitiesOf } from "#shared/agreement/study/study-quantities.ts";
-
-/** Everything that a section may draw on. */
-export interface ReportInput {
-  readonly study: Study;
-  readonly options: AgreeOptions;
-  /** The agreement of this study with these options. */
-  readonly found: Agreement;
-  readonly context: ReportContext;
-}
 
 /** What a report knows of a study whose passes are tree files alone. */
 export function contextOfFiles(software: ReportContext["software"], madeAt: string | null): ReportContext {

@@ -1,14 +1,9 @@
-import type { ReportInput } from "#shared/agreement/report/agreement-report.ts";
 import { differencePlots } from "#shared/agreement/report/difference-plots.ts";
 import type { ReportBlock, ReportSection } from "#shared/agreement/report/report-data.ts";
-import { basisOf, ends, fixed, percent, TableOf, text } from "#shared/agreement/report/report-text.ts";
+import type { ReportInput } from "#shared/agreement/report/report-input.ts";
+import { basisOf, digitsOf, ends, fixed, percent, TableOf, text } from "#shared/agreement/report/report-text.ts";
 import type { ContinuousAgreement, StudyQuantity } from "#shared/agreement/study/continuous.ts";
 import type { ComponentName } from "#shared/agreement/variance-components.ts";
-
-/** Decimals of a quantity by its unit. */
-export function digitsOf(unit: string): number {
-  return unit === "mm" ? 3 : unit === "count" ? 2 : 1;
-}
 
 /** Lengths, radii and angles: an overview, then each quantity with all forms, errors and plots. */
 export function continuousSection({ found, context }: ReportInput, quantities: readonly StudyQuantity[]): ReportSection {

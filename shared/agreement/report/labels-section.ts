@@ -1,5 +1,5 @@
-import type { ReportInput } from "#shared/agreement/report/agreement-report.ts";
 import type { ReportBlock, ReportSection } from "#shared/agreement/report/report-data.ts";
+import type { ReportInput } from "#shared/agreement/report/report-input.ts";
 import { ends, fixed, TableOf, text } from "#shared/agreement/report/report-text.ts";
 import type { CategoricalAgreement } from "#shared/agreement/study/categorical.ts";
 

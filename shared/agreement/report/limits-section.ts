@@ -1,6 +1,6 @@
 import { ENOUGH_SPECIMENS, FEWEST_SPECIMENS } from "#shared/agreement/interval.ts";
-import type { ReportInput } from "#shared/agreement/report/agreement-report.ts";
 import type { ReportSection } from "#shared/agreement/report/report-data.ts";
+import type { ReportInput } from "#shared/agreement/report/report-input.ts";
 import { text } from "#shared/agreement/report/report-text.ts";
 
 /** What a reader may want to know and these passes cannot say, in one place. */

@@ -1,6 +1,6 @@
 import type { Equivalence } from "#shared/agreement/equivalence.ts";
-import type { ReportInput } from "#shared/agreement/report/agreement-report.ts";
 import type { ReportBlock, ReportSection } from "#shared/agreement/report/report-data.ts";
+import type { ReportInput } from "#shared/agreement/report/report-input.ts";
 import { fixed, TableOf, text } from "#shared/agreement/report/report-text.ts";
 
 /** A computed method held against the annotators, with what has to be refused. */

@@ -1,7 +1,6 @@
-import type { ReportInput } from "#shared/agreement/report/agreement-report.ts";
-import { digitsOf } from "#shared/agreement/report/continuous-section.ts";
 import type { ReportBlock, ReportSection } from "#shared/agreement/report/report-data.ts";
-import { fixed, TableOf, text } from "#shared/agreement/report/report-text.ts";
+import type { ReportInput } from "#shared/agreement/report/report-input.ts";
+import { digitsOf, fixed, TableOf, text } from "#shared/agreement/report/report-text.ts";
 
 /** Each annotator against the same annotator's later pass: agreement with oneself, and drift. */
 export function ownSection({ found, context }: ReportInput): ReportSection {

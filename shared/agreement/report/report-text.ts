@@ -8,6 +8,11 @@ export function fixed(value: number, digits: number): string {
   return Number(text) === 0 ? text.slice(1) : `\u2212${text.slice(1)}`;
 }
 
+/** Decimals of a quantity by its unit. */
+export function digitsOf(unit: string): number {
+  return unit === "mm" ? 3 : unit === "count" ? 2 : 1;
+}
+
 /** A share as per cent. */
 export function percent(share: number, digits = 0): string {
   return `${fixed(100 * share, digits)} %`;

@@ -1,5 +1,5 @@
-import type { ReportInput } from "#shared/agreement/report/agreement-report.ts";
 import type { ReportBlock, ReportSection } from "#shared/agreement/report/report-data.ts";
+import type { ReportInput } from "#shared/agreement/report/report-input.ts";
 import { fixed, percent, TableOf, text } from "#shared/agreement/report/report-text.ts";
 import type { PlacedDistance, SpecimenSpread } from "#shared/agreement/report/spread.ts";
 import { percentile } from "#shared/compare/overlap.ts";

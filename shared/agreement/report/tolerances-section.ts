@@ -1,5 +1,5 @@
-import type { ReportInput } from "#shared/agreement/report/agreement-report.ts";
 import type { ReportSection } from "#shared/agreement/report/report-data.ts";
+import type { ReportInput } from "#shared/agreement/report/report-input.ts";
 import { TableOf, text } from "#shared/agreement/report/report-text.ts";
 
 /** The main results at half, once and twice the matching tolerance. */
