@@ -148,7 +148,7 @@ export async function makeSpecimen(
         handedness: options.handedness,
         blurFwhmMm: options.blurFwhmMm === undefined ? made.blurFwhmMm : options.blurFwhmMm,
         range: made.range,
-        ...(region && made.wholeSha256 ? { derivedFrom: { sha256: made.wholeSha256, crop: region.crop, bin: region.bin } } : {}),
+        ...(made.derivedFrom ? { derivedFrom: made.derivedFrom } : {}),
         ...(options.isPacked ? { packing: "gzip" } : {}),
         ...(options.inPlace ? { inPlace: options.inPlace } : {}),
       },

@@ -3,6 +3,7 @@ import type { Polarity } from "#shared/tracing/strand-request.ts";
 import type { Landmarks } from "#shared/trees/document.ts";
 import type { SourceDtype, StoredDtype } from "#shared/volume/dtype.ts";
 import type { FrameName } from "#shared/volume/grid.ts";
+import type { Derivation } from "#shared/volume/region/region.ts";
 
 export type Handedness = "confirmed" | "unknown";
 
@@ -19,7 +20,7 @@ export interface SpecimenVolume {
   readonly handedness: Handedness;
   readonly blurFwhmMm: number | null;
   readonly range: { readonly min: number; readonly max: number };
-  readonly derivedFrom?: { readonly sha256: string; readonly crop?: readonly number[]; readonly bin?: number };
+  readonly derivedFrom?: Derivation;
   /** How the bricks of the store are packed; absent: not at all. */
   readonly packing?: "gzip";
   /** Set when the finest level is read where the scan lies; the store holds the coarser ones. */

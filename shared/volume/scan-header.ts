@@ -11,6 +11,7 @@ import {
 import type { SourceDtype } from "#shared/volume/dtype.ts";
 import type { FrameName, VolumeGrid } from "#shared/volume/grid.ts";
 import { toMm } from "#shared/volume/length-unit.ts";
+import type { Derivation } from "#shared/volume/region/region.ts";
 
 export type ScanFamily =
   | "NRRD"
@@ -51,6 +52,8 @@ export interface ScanHeader {
   readonly frame: FrameName;
   /** What a header without a whole voxel size does say about it, one sentence. */
   readonly spacingRemark?: string;
+  /** Of a store that this program wrote: the whole scan that it is a part of. */
+  readonly derivedFrom?: Derivation;
   /** Where there is more than one channel or time point. */
   readonly readings?: ScanReadings;
   /** Other things a person should know, one sentence each. */

@@ -11,7 +11,7 @@ import { BYTES_OF_DTYPE, createStored, type StoredArray, type StoredDtype } from
 import type { VolumeGrid } from "#shared/volume/grid.ts";
 import { type PyramidLevel, pyramidLevels } from "#shared/volume/pyramid.ts";
 import { RegionKeeper } from "#shared/volume/region/keep-region.ts";
-import type { Region } from "#shared/volume/region/region.ts";
+import { type Derivation, derivedTwice, type Region } from "#shared/volume/region/region.ts";
 import { CHUNK_SIDE, levelFolder } from "#shared/volume/store/layout.ts";
 import { arrayMetadata, groupMetadata } from "#shared/volume/store/store-metadata.ts";
 import { convertInto } from "#shared/volume/stored-type.ts";
@@ -47,8 +47,8 @@ export interface StoreOrder {
 export interface StoreResult {
   /** SHA-256 (hex) of the stored level 0: C order z, y, x, little-endian. */
   readonly sha256: string;
-  /** The same of the whole scan, had it been stored; null when it was. */
-  readonly wholeSha256: string | null;
+  /** The whole scan that this is a part of; null when it is whole. */
+  readonly derivedFrom: Derivation | null;
   readonly range: { readonly min: number; readonly max: number };
   readonly display: { readonly low: number; readonly high: number };
   readonly suggestedPolarity: "bright" | "dark";
@@ -118,7 +118,8 @@ export async function writeStore(order: StoreOrder): Promise<StoreResult> {
   }
   await order.at("levels-written");
   const sha256 = hash.digest("hex");
-  await writeMetadata(order, levels.slice(firstLevel), packing, sha256);
+  const derivedFrom = derivationOf(order, whole?.digest("hex") ?? null);
+  await writeMetadata(order, levels.slice(firstLevel), packing, sha256, derivedFrom);
   await order.at("metadata-written");
   for (const made of folders) await files.syncFolder(made);
   const facts = survey.facts();
@@ -126,7 +127,7 @@ export async function writeStore(order: StoreOrder): Promise<StoreResult> {
   const blur = edges?.estimate() ?? null;
   return {
     sha256,
-    wholeSha256: whole?.digest("hex") ?? null,
+    derivedFrom,
     range: { min: facts.min, max: facts.max },
     display: displayWindow(sample),
     suggestedPolarity: suggestPolarity(sample),
@@ -140,18 +141,29 @@ function bytesIn(array: StoredArray): Uint8Array {
   return new Uint8Array(array.buffer, array.byteOffset, array.byteLength);
 }
 
+/** A part of a part counts in the same whole; mirrored, or with voxels of another size, it lies elsewhere. */
+function derivationOf({ source, grid, region, mirror }: StoreOrder, wholeSha256: string | null): Derivation | null {
+  const { headerSpacing, derivedFrom } = source.header;
+  const bin = region?.bin ?? 1;
+  const staysInPlace = !mirror && headerSpacing?.every((side, k) => Math.abs((side * bin) / grid.spacing[k]! - 1) < 1e-6);
+  const before = staysInPlace ? derivedFrom : undefined;
+  if (!region || wholeSha256 === null) return before ?? null;
+  return (before && derivedTwice(before, region)) ?? { sha256: wholeSha256, crop: region.crop, bin: region.bin };
+}
+
 async function writeMetadata(
   order: StoreOrder,
   levels: readonly PyramidLevel[],
   packing: "plain" | "gzip",
   sha256: string,
+  derivedFrom: Derivation | null,
 ): Promise<void> {
   if (levels.length === 0) return; // a small scan in place: all of it lies there
   for (const level of levels) {
     const text = JSON.stringify(arrayMetadata(level, order.dtype, packing), null, 2);
     await writeWhole(order.files, `${order.folder}/${levelFolder(level.level)}/zarr.json`, text);
   }
-  const group = groupMetadata(order.name, order.grid, levels, sha256);
+  const group = groupMetadata(order.name, order.grid, levels, sha256, derivedFrom);
   await writeWhole(order.files, `${order.folder}/zarr.json`, JSON.stringify(group, null, 2));
 }
 

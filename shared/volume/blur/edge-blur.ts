@@ -47,7 +47,10 @@ export class EdgeBlurSurvey {
   add(z: number, plane: StoredArray): void {
     const near = [z - 1, z, z + 1].some((middle) => this.#middles.has(middle));
     if (!near) return;
-    this.#kept = [...this.#kept.filter((slice) => slice.z >= z - 2), { z, plane: plane.slice() }];
+    // Slices no longer needed are written over: at wide planes garbage would weigh more than all else.
+    const spare = this.#kept.find((slice) => slice.z < z - 2)?.plane;
+    spare?.set(plane);
+    this.#kept = [...this.#kept.filter((slice) => slice.z >= z - 2), { z, plane: spare ?? plane.slice() }];
     const [a, b, c] = this.#kept;
     if (!a || !b || !c || a.z !== z - 2 || b.z !== z - 1 || !this.#middles.has(z - 1)) return;
     this.#look([a.plane, b.plane, c.plane]);
@@ -96,7 +99,8 @@ function contrastOf(plane: StoredArray): number {
 
 /** Places where the slices change most along u (nine profiles averaged), at most {@link EDGES}, evenly drawn from all. */
 function steepPlaces(planes: readonly StoredArray[], way: Way, contrast: number): (readonly [number, number])[] {
-  const found: (readonly [number, number])[] = [];
+  // As v * nu + u: in a noisy scan there are millions.
+  const found: number[] = [];
   const reach = REACHES[REACHES.length - 1]!;
   const least = 0.15 * contrast;
   const profile = new Float64Array(way.nu);
@@ -108,11 +112,14 @@ function steepPlaces(planes: readonly StoredArray[], way: Way, contrast: number)
     const rise = (u: number) => Math.abs(profile[u + 1]! - profile[u - 1]!);
     for (let u = reach + 1; u < way.nu - reach - 1; u++) {
       const here = rise(u);
-      if (here >= least && here >= rise(u - 1) && here > rise(u + 1)) found.push([u, v]);
+      if (here >= least && here >= rise(u - 1) && here > rise(u + 1)) found.push(v * way.nu + u);
     }
   }
   const stride = Math.max(1, found.length / EDGES);
-  return Array.from({ length: Math.min(EDGES, found.length) }, (_, k) => found[Math.floor(k * stride)]!);
+  return Array.from({ length: Math.min(EDGES, found.length) }, (_, k) => {
+    const place = found[Math.floor(k * stride)]!;
+    return [place % way.nu, Math.floor(place / way.nu)];
+  });
 }
 
 /** Sigma of the edge at a place, millimetres; null when no length of profile shows a plain edge there. */

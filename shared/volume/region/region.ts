@@ -67,6 +67,29 @@ export function regionInMirror(region: Region, slices: number): Region {
   return { ...region, crop: [x0, y0, slices - z1, x1, y1, slices - z0] };
 }
 
+/** The whole scan that a part was made from, with the part counted in its voxels. */
+export interface Derivation {
+  /** SHA-256 (hex) of the whole scan's stored array. */
+  readonly sha256: string;
+  readonly crop?: readonly number[];
+  readonly bin?: number;
+}
+
+/**
+ * The derivation of a part of a scan that is itself a part: counted in the same whole scan. Null where the first part's own
+ * place is not known.
+ */
+export function derivedTwice(first: Derivation, region: Region): Derivation | null {
+  const { sha256, crop, bin } = first;
+  if (crop?.length !== 6 || bin === undefined) return null;
+  const edge = (k: number) => {
+    const axis = k % 3;
+    const at = crop[axis]! + region.crop[k]! * bin;
+    return k < 3 ? at : Math.min(at, crop[axis + 3]!);
+  };
+  return { sha256, crop: [0, 1, 2, 3, 4, 5].map(edge), bin: bin * region.bin };
+}
+
 /** The sentence that says what was kept of a scan. */
 export function regionSentence(region: Region): string {
   const { crop, bin } = region;

@@ -2,6 +2,7 @@ import { IDENTITY3 } from "#shared/geometry/types.ts";
 import type { StoredDtype } from "#shared/volume/dtype.ts";
 import type { VolumeGrid } from "#shared/volume/grid.ts";
 import type { PyramidLevel } from "#shared/volume/pyramid.ts";
+import type { Derivation } from "#shared/volume/region/region.ts";
 import { CHUNK_SIDE, levelFolder, SHARD_ZYX } from "#shared/volume/store/layout.ts";
 
 const LITTLE = { name: "bytes", configuration: { endian: "little" } } as const;
@@ -52,6 +53,7 @@ export function groupMetadata(
   grid: VolumeGrid,
   levels: readonly PyramidLevel[],
   sha256: string,
+  derivedFrom: Derivation | null = null,
 ): Record<string, unknown> {
   const plain = grid.direction.every((value, k) => value === IDENTITY3[k]);
   const zyx = (v: readonly number[]) => [v[2]!, v[1]!, v[0]!];
@@ -71,9 +73,10 @@ export function groupMetadata(
   const description = "Each voxel is the mean of its existing children; integers are rounded half up.";
   const multiscale = { name, axes, datasets, type: "mean", metadata: { description } };
   const { frame, origin, direction } = grid;
+  const own = { frame, origin, direction, sha256, ...(derivedFrom ? { derivedFrom } : {}) };
   return {
     zarr_format: 3,
     node_type: "group",
-    attributes: { ome: { version: "0.5", multiscales: [multiscale] }, tautline: { frame, origin, direction, sha256 } },
+    attributes: { ome: { version: "0.5", multiscales: [multiscale] }, tautline: own },
   };
 }

@@ -173,6 +173,35 @@ describe("a part of a scan", () => {
     expect(away).toBeCloseTo(Math.hypot(...SPACING) / 2, 9);
   });
 
+  it("of a part is a part of the same whole, also when it is used in place", async () => {
+    const folder = await scratchFolder();
+    const size: Vec3 = [40, 36, 32];
+    const values = Array.from({ length: size[0] * size[1] * size[2] }, (_, k) => (k * 7919) % 3000);
+    const path = await writeNrrd(folder, "a.nrrd", { sizes: size, type: "ushort", dtype: "uint16", values, lines: LINES });
+    const take = async (from: string, id: string, more: Partial<SpecimenOptions>) => {
+      const source = await openScan(from);
+      const { record } = await makeSpecimen(source, { ...options(folder), spacing: source.header.headerSpacing!, id, ...more });
+      await source.close();
+      return record.volume;
+    };
+    const home = (id: string) => join(folder, "specimens", id);
+    const first = await take(path, "firstaaaaaaaaaaaaaaa", { region: { crop: [3, 2, 1, 38, 33, 32], bin: 2 } });
+    // Sides of 35, 31 and 31 voxels halved: 18 x 16 x 16. Two of those along x, from the third on, are four of the whole from 7 on.
+    const second = await take(home("firstaaaaaaaaaaaaaaa"), "secondaaaaaaaaaaaaaa", {
+      region: { crop: [2, 0, 0, 18, 16, 16], bin: 2 },
+    });
+    expect(second.derivedFrom).toEqual({ sha256: sha(values, "uint16"), crop: [7, 2, 1, 38, 33, 32], bin: 4 });
+    const places = [second, first].map(({ origin, spacing, direction }) => place(origin, spacing, direction, [0, 0, 0]));
+    const whole = (i: Vec3) => place(ORIGIN, SPACING, DIRECTION, i);
+    // The middle of voxels 7 to 10, 2 to 5 and 1 to 4 of the whole.
+    for (const k of [0, 1, 2]) expect(places[0]![k]).toBeCloseTo(whole([8.5, 3.5, 2.5])[k]!, 9);
+    for (const k of [0, 1, 2]) expect(places[1]![k]).toBeCloseTo(whole([3.5, 2.5, 1.5])[k]!, 9);
+    const copied = await take(home("firstaaaaaaaaaaaaaaa"), "copiedaaaaaaaaaaaaaa", {});
+    expect(copied).toEqual(first);
+    const mirrored = await take(home("firstaaaaaaaaaaaaaaa"), "mirroraaaaaaaaaaaaaa", { mirror: true });
+    expect(mirrored.derivedFrom).toBeUndefined();
+  });
+
   it("is the whole scan, without a word, when the box is all of it", async () => {
     const folder = await scratchFolder();
     const values = Array.from({ length: 60 }, (_, k) => k);
