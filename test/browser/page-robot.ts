@@ -12,9 +12,15 @@ import { SHARES, type StringToDraw } from "#test/tools/tracing-robot/strings-to-
 
 type Pixel = readonly [number, number];
 
-/** A preview counts when the readout has said the same for so long; until it is fine a person waits no longer than the second. */
+/**
+ * A preview counts when the readout has said the same for so long. The robot waits for a fine one much longer than a person needs
+ * to, so that what it does is the same on a busy machine.
+ */
 const STEADY_MS = 250;
-const LONGEST_WAIT_MS = 12_000;
+const LONGEST_WAIT_MS = 60_000;
+/** Planes that one turn of the wheel goes at most, and the travel of one: as a wheel that is flicked. */
+const FLICK_PLANES = 10;
+const NOTCH_PX = 110;
 /** Below this image fit a person sets a pin nearer by. */
 const GOOD_FIT = 0.5;
 
@@ -100,7 +106,7 @@ export class PageRobot {
     const plane = this.planes[this.shown];
     const { corner, right, down, normal, stepMm } = plane;
     const steps = Math.round(dot(subtract(place, corner), normal) / stepMm);
-    for (let n = 0; n < Math.abs(steps); n++) await this.page.mouse.wheel(0, 100 * Math.sign(steps));
+    await turnWheel(this.page, steps);
     this.effort.wheelSteps += Math.abs(steps);
     const moved = add(corner, scale(normal, steps * stepMm));
     this.planes[this.shown] = { ...plane, corner: moved };
@@ -182,10 +188,10 @@ async function lookAtPlane(
   const down = scale(subtract(atC, atA), 1 / (c[1] - a[1]));
   const normal = normalise(cross(right, down));
   const before = await placeAt(page, a);
-  for (let n = 0; n < 10; n++) await page.mouse.wheel(0, 100);
+  await turnWheel(page, 10);
   await page.waitForTimeout(STEADY_MS);
   const moved = subtract(await placeAt(page, a), before);
-  for (let n = 0; n < 10; n++) await page.mouse.wheel(0, -100);
+  await turnWheel(page, -10);
   await page.waitForTimeout(STEADY_MS);
   const stepMm = dot(moved, normal) / 10;
   return { corner: cornerOf({ right, down }, atA, a), right, down, normal, stepMm };
@@ -194,6 +200,15 @@ async function lookAtPlane(
 /** Where the page's own corner would lie. */
 function cornerOf({ right, down }: Pick<ShownPlane, "right" | "down">, at: Vec3, [x, y]: Pixel): Vec3 {
   return subtract(at, add(scale(right, x), scale(down, y)));
+}
+
+/** Steps so many planes away from the viewer. */
+async function turnWheel(page: Page, planes: number): Promise<void> {
+  for (let left = planes; left !== 0; ) {
+    const now = Math.sign(left) * Math.min(FLICK_PLANES, Math.abs(left));
+    await page.mouse.wheel(0, NOTCH_PX * now);
+    left -= now;
+  }
 }
 
 async function placeAt(page: Page, [x, y]: Pixel): Promise<Vec3> {

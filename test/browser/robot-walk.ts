@@ -46,7 +46,9 @@ export async function walkDemoValve(names: readonly string[], told: (line: strin
     await page.getByRole("button", { name: "Open the demo valve" }).first().click();
     await page.getByRole("button", { name: /^Open AN-1/ }).waitFor({ timeout: 300_000 });
     await startPass(page, "AN-4");
+    told("desk open");
     const robot = await PageRobot.on(page, new SeededRandom(SEED));
+    told("planes looked at");
     const chosen = truth.trees.filter(({ name }) => names.includes(name!));
     const efforts: Effort[] = [];
     for (const tree of chosen) {
