@@ -263,6 +263,23 @@ export function createEngine(options: EngineOptions): LocalEngine {
     async closeFollow(session) {
       endRun(session);
     },
+    async searchLevel(specimen, polarity) {
+      checkParameters({ polarity, blurFwhmMm: null });
+      return pool.run("search-level", await storeOf(specimen), polarity, { workers: job });
+    },
+    async searchBlock(specimen, polarity, block) {
+      checkWhole("block", block, 0, Number.MAX_SAFE_INTEGER);
+      const input = { polarity, block };
+      // Guides keep their worker; the others search when nobody else wants them.
+      const order = { workers: alone ? [job[0]!, ...show] : job, background: true };
+      return pool.run("search-block", await storeOf(specimen), input, order);
+    },
+    async stretches({ specimen, polarity, found, lines, minimumMm }) {
+      return pool.run("stretches", await storeOf(specimen), { polarity, found, lines, minimumMm }, { workers: job });
+    },
+    endSearch() {
+      pool.tell({ type: "end-search" });
+    },
     async forget(specimen) {
       const opened = stores.get(specimen);
       stores.delete(specimen);

@@ -5,11 +5,13 @@ import { GuideSessions } from "#main/engine/guide-sessions.ts";
 import { PlanesAhead } from "#main/engine/planes-ahead.ts";
 import type { RidgeStore } from "#main/engine/ridge-store.ts";
 import { RidgesAhead } from "#main/engine/ridges-ahead.ts";
+import { Searches } from "#main/engine/searches.ts";
 import type { EngineTasks, StoreRef, TaskKind } from "#main/engine/tasks.ts";
 import { TraceContexts } from "#main/engine/trace-contexts.ts";
 import type { SolvedCurve } from "#shared/api/engine.ts";
 import { TautlineError } from "#shared/errors.ts";
 import { snap } from "#shared/tracing/guide/snap.ts";
+import { searchLevel } from "#shared/tracing/overlooked/search-block.ts";
 import { solveStrand } from "#shared/tracing/solve-strand.ts";
 import type { TracedCurve } from "#shared/tracing/strand-request.ts";
 import { scanHistogram } from "#shared/volume/scan-histogram.ts";
@@ -31,6 +33,7 @@ export class TaskRunner {
   readonly #contexts: TraceContexts;
   readonly guides: GuideSessions;
   readonly follows: FollowSessions;
+  readonly searches = new Searches();
   readonly planes = new PlanesAhead();
   readonly ridges = new RidgesAhead();
 
@@ -83,6 +86,18 @@ export class TaskRunner {
         // Its strands are solved with fronts of their own; both at once would not fit the limit.
         this.guides.rest();
         return this.follows.more((input as Input<"more-follow">).session, signal);
+      case "search-level": {
+        const { pyramid: searched } = this.searches.context(store.number, pyramid, input as Input<"search-level">);
+        return searched.levels[searchLevel(searched)]!;
+      }
+      case "search-block": {
+        const { polarity, block } = input as Input<"search-block">;
+        return this.searches.block(store.number, pyramid, polarity, block, signal);
+      }
+      case "stretches": {
+        const { polarity, found, lines, minimumMm } = input as Input<"stretches">;
+        return this.searches.stretches(store.number, pyramid, polarity, found, lines, minimumMm);
+      }
       case "warm":
         this.ridges.warm(this.#contexts.of(store.number, pyramid, store.polarity), (input as Input<"warm">).backwards);
         return null;
@@ -100,6 +115,7 @@ export class TaskRunner {
   #forget(store: number): null {
     this.guides.forget(store);
     this.follows.forget(store);
+    this.searches.rest();
     this.planes.forget();
     this.ridges.forget();
     this.#contexts.forget(store);

@@ -22,7 +22,11 @@ import type { SpecimenVolume } from "#shared/api/specimen.ts";
 import type { ErrorBody } from "#shared/errors.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
 import type { ImpassableString } from "#shared/tracing/guide/impassable.ts";
+import type { ExplainingLine } from "#shared/tracing/overlooked/find-stretches.ts";
+import type { FoundPoints } from "#shared/tracing/overlooked/search-block.ts";
+import type { OverlookedStretch } from "#shared/tracing/overlooked/stretch.ts";
 import type { Polarity, TraceParameters } from "#shared/tracing/strand-request.ts";
+import type { PyramidLevel } from "#shared/volume/pyramid.ts";
 
 /** A specimen's store as workers know it; a store that is forgotten and opened again has another number. */
 export interface StoreRef {
@@ -67,6 +71,12 @@ export interface EngineTasks {
   "preview-guide": { input: { guide: GuideRef; to: PointMm }; answer: GuidePreviewAnswer };
   "open-follow": { input: FollowRef; answer: null };
   "more-follow": { input: { session: string }; answer: FollowAnswer };
+  "search-level": { input: Polarity; answer: PyramidLevel };
+  "search-block": { input: { polarity: Polarity; block: number }; answer: FoundPoints };
+  stretches: {
+    input: { polarity: Polarity; found: readonly FoundPoints[]; lines: readonly ExplainingLine[]; minimumMm: number };
+    answer: readonly OverlookedStretch[];
+  };
   figures: { input: null; answer: CacheFigures };
   forget: { input: null; answer: null };
 }
@@ -82,7 +92,9 @@ export type ToWorker =
       readonly store: StoreRef | null;
       readonly input: unknown;
     }
-  | { readonly type: "close-guide" | "close-follow"; readonly session: string };
+  | { readonly type: "close-guide" | "close-follow"; readonly session: string }
+  /** No search goes on: what was kept for it may go. */
+  | { readonly type: "end-search" };
 
 /** Messages from a worker. */
 export type FromWorker =

@@ -13,6 +13,8 @@ export interface TaskOrder {
   readonly number?: number;
   /** Goes before what is queued already: tiny tasks whose answer the pointer waits for. */
   readonly urgent?: boolean;
+  /** Work that nobody waits for: where another task needs its worker it is broken off, and begun again afterwards. */
+  readonly background?: boolean;
 }
 
 interface Task {
@@ -24,6 +26,8 @@ interface Task {
   readonly reject: (error: unknown) => void;
   /** Answered already (superseded); only its worker is still busy with it. */
   settled: boolean;
+  /** Told to stop so that another task gets its worker. */
+  givesWay: boolean;
 }
 
 interface Seat {
@@ -78,7 +82,16 @@ export class WorkerPool {
     return new Promise((resolve, reject) => {
       if (this.#closed) return reject(closedError());
       const id = this.#nextId();
-      const task: Task = { id, kind, message: { type: "run", id, kind, store, input }, order, resolve, reject, settled: false };
+      const task: Task = {
+        id,
+        kind,
+        message: { type: "run", id, kind, store, input },
+        order,
+        resolve,
+        reject,
+        settled: false,
+        givesWay: false,
+      };
       if (order.line !== undefined && this.#supersede(task)) return;
       if (order.urgent) this.#waiting.unshift(task);
       else this.#waiting.push(task);
@@ -143,6 +156,7 @@ export class WorkerPool {
       const able = workers.filter((worker) => !this.#seats[worker]!.broken);
       const free = able.find((worker) => this.#seats[worker]!.running === null);
       if (able.length > 0 && free === undefined) {
+        if (!task.order.background) this.#makeRoom(able);
         n++;
         continue;
       }
@@ -156,6 +170,24 @@ export class WorkerPool {
       this.#calls.come(free);
       seat.thread.postMessage(task.message);
     }
+  }
+
+  /** Breaks off background work on one of the workers, unless one is giving way already. */
+  #makeRoom(able: readonly number[]): void {
+    const seats = able.map((worker) => ({ worker, running: this.#seats[worker]!.running }));
+    if (seats.some(({ running }) => running?.givesWay)) return;
+    const background = seats.find(({ running }) => running?.order.background && !running.settled);
+    if (!background) return;
+    background.running!.givesWay = true;
+    this.#calls.stop(background.worker, background.running!.id);
+  }
+
+  /** A task that gave way waits again, behind what is waiting, under a new number: the old one is to stop. */
+  #again(task: Task): void {
+    const { message, order, resolve, reject, kind } = task;
+    if (message.type !== "run") return;
+    const id = this.#nextId();
+    this.#waiting.push({ id, kind, message: { ...message, id }, order, resolve, reject, settled: false, givesWay: false });
   }
 
   #spawn(n: number): Worker {
@@ -181,7 +213,8 @@ export class WorkerPool {
     if (task === null || task.id !== message.id) return;
     seat.running = null;
     seat.deaths = 0;
-    if (!task.settled) {
+    if (task.givesWay && !task.settled && message.type === "failed" && message.error.tag === "cancelled") this.#again(task);
+    else if (!task.settled) {
       task.settled = true;
       if (message.type === "done") task.resolve(message.answer as never);
       else task.reject(decodeError(message.error));

@@ -61,7 +61,8 @@ function idleSoon(): void {
 port.on("message", (message: ToWorker) => {
   if (message.type === "run") run(message);
   else if (message.type === "close-guide") runner.guides.close(message.session);
-  else runner.follows.close(message.session);
+  else if (message.type === "close-follow") runner.follows.close(message.session);
+  else runner.searches.rest();
   idleSoon();
 });
 post({ type: "ready" });

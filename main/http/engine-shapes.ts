@@ -1,4 +1,17 @@
-import { list, matching, nullable, number, object, oneOf, optional, type Shape, text, triple, whole } from "#main/http/shape.ts";
+import {
+  flag,
+  list,
+  matching,
+  nullable,
+  number,
+  object,
+  oneOf,
+  optional,
+  type Shape,
+  text,
+  triple,
+  whole,
+} from "#main/http/shape.ts";
 import type {
   FilmRequest,
   GuideOpenRequest,
@@ -12,6 +25,7 @@ import type {
   Ticket,
 } from "#shared/api/engine.ts";
 import type { FollowMoreRequest, FollowOpenRequest } from "#shared/api/follow.ts";
+import type { OverlookedRequest, SearchRequest } from "#shared/api/overlooked.ts";
 import { type PointMm, pointMm } from "#shared/geometry/types.ts";
 import type { StrandRequest, TraceParameters } from "#shared/tracing/strand-request.ts";
 
@@ -93,6 +107,15 @@ export const followOpenRequest: Shape<FollowOpenRequest> = object({
   traced: optional(list(flatPoints, 10_000)),
 });
 export const followMoreRequest: Shape<FollowMoreRequest> = object({ ticket, session: text(128, 1) });
+const corners = object({ from: point, to: point });
+export const searchRequest: Shape<SearchRequest> = object({ polarity, region: optional(corners) });
+export const overlookedRequest: Shape<OverlookedRequest> = object({
+  specimen: id,
+  pass: id,
+  polarity,
+  minimumMm: optional(number(0, 1e3)),
+  withDismissed: optional(flag),
+});
 export const solveRequest: Shape<SolveRequest> = object({ ticket, specimen: id, strands: list(strand, 1_000), parameters });
 export const stripRequest: Shape<StripRequest> = object({
   ticket,

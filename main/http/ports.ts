@@ -1,4 +1,5 @@
 import type { Engine } from "#shared/api/engine.ts";
+import type { OverlookedAnswer, OverlookedRequest, SearchRequest } from "#shared/api/overlooked.ts";
 import type { ProjectionsAnswer, ProjectionsRequest } from "#shared/api/projections.ts";
 import type {
   AppendAnswer,
@@ -93,6 +94,13 @@ export interface JobsPort {
   jobs(): readonly JobState[];
 }
 
+/** The search for strings that no strand explains. */
+export interface SearchPort {
+  /** Begins the search of a scan, or goes on with it; the job that runs already when one does. */
+  start(specimen: string, request: SearchRequest): Promise<{ job: string }>;
+  overlooked(request: OverlookedRequest): Promise<OverlookedAnswer>;
+}
+
 export interface ScansPort {
   look(request: LookRequest): Promise<ScanLookAnswer>;
   startProjections(request: ProjectionsRequest): Promise<{ job: string }>;
@@ -127,6 +135,7 @@ export interface Ports {
   readonly library: LibraryPort;
   readonly engine: Engine;
   readonly jobs: JobsPort;
+  readonly search: SearchPort;
   readonly scans: ScansPort;
   readonly folders: FoldersPort;
   readonly exports: ExportPort;

@@ -1,5 +1,5 @@
 import { bytesAnswer, jsonAnswer } from "#main/http/answers.ts";
-import { id, windowName } from "#main/http/engine-shapes.ts";
+import { id, overlookedRequest, searchRequest, windowName } from "#main/http/engine-shapes.ts";
 import { EventStreams } from "#main/http/event-stream.ts";
 import { COMMON_HEADERS } from "#main/http/headers.ts";
 import {
@@ -18,7 +18,7 @@ import { LOST_HEADER } from "#shared/api/routes.ts";
 
 /** Scans on this computer, long work, export, and the life of a window. */
 export function workRoutes(ports: Ports): RouteHandlers {
-  const { folders, scans, jobs, exports } = ports;
+  const { folders, scans, search, jobs, exports } = ports;
   const streams = new EventStreams(ports);
   return {
     listFolder: async (c) => jsonAnswer(await folders.list((await readJson(c.req.raw, folderRequest)).path)),
@@ -26,6 +26,9 @@ export function workRoutes(ports: Ports): RouteHandlers {
     startProjections: async (c) => jsonAnswer(await scans.startProjections(await readJson(c.req.raw, projectionsRequest))),
     projections: async (c) => jsonAnswer(await scans.projections(id(c.req.param("job"), "path.job"))),
     startIntake: async (c) => jsonAnswer(await jobs.startIntake(await readJson(c.req.raw, intakeRequest))),
+    startSearch: async (c) =>
+      jsonAnswer(await search.start(id(c.req.param("specimen"), "path.specimen"), await readJson(c.req.raw, searchRequest))),
+    overlooked: async (c) => jsonAnswer(await search.overlooked(await readJson(c.req.raw, overlookedRequest))),
     openDemo: async (c) => {
       await readJson(c.req.raw, emptyRequest);
       return jsonAnswer(await jobs.openDemo());

@@ -13,6 +13,7 @@ import { processFacts, takeLease } from "#main/node/lease.ts";
 import { Library } from "#main/node/library.ts";
 import { pageFiles } from "#main/node/page-files.ts";
 import { scanLooks } from "#main/node/scan-looks.ts";
+import { Searches } from "#main/node/searches.ts";
 import { specimenJobs } from "#main/node/specimen-jobs.ts";
 import { studyPorts } from "#main/node/study/study-ports.ts";
 import { WindowLife } from "#main/node/window-life.ts";
@@ -62,15 +63,23 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
       now,
       mayWrite,
       emit,
-      onRemove: async (specimen) => abilities.forgetSpecimen?.(specimen),
+      onRemove: async (specimen) => {
+        await search.forget(specimen);
+        await abilities.forgetSpecimen?.(specimen);
+      },
     });
     await library.removeLeftovers();
     const abilities = await options.abilities(library);
     const jobs = new Jobs({ now, newId, emit, onFault });
+    const search = new Searches({ library, files, engine: abilities.engine, jobs, now, mayWrite });
     const windows = new WindowLife({
       graceMs: options.graceMs,
       onLeft: (window) => library.claims.releaseAll(window),
-      onAllLeft: () => void jobs.idle().then(() => windows.open === 0 && options.onAllLeft()),
+      onAllLeft: () => {
+        // A search goes on where it stopped when a page is opened again; nobody waits for it now.
+        search.stop();
+        void jobs.idle().then(() => windows.open === 0 && options.onAllLeft());
+      },
     });
     const study = studyPorts({ library, files, jobs, abilities, random, now, mayWrite, emit, softwareVersion: options.version });
     await study.store.removeLeftovers();
@@ -79,6 +88,7 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
       library,
       engine: abilities.engine,
       jobs: specimenJobs({ root, library, abilities, jobs, studies: study.store, newId, now, emit }),
+      search,
       scans: scanLooks(abilities, jobs),
       folders: folders(),
       exports: exportTrees({ library, files, softwareVersion: options.version, runLabels: abilities.runLabels, newId }),
@@ -94,6 +104,7 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
       async close() {
         windows.stop();
         await jobs.close();
+        await search.close();
         await abilities.engine.close();
         await library.close();
         await lease.release();

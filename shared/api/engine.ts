@@ -1,22 +1,16 @@
 import type { FollowAnswer, FollowMoreRequest, FollowOpenRequest } from "#shared/api/follow.ts";
 import type { BinaryFrame } from "#shared/api/frame.ts";
+import type { Lane, Ticket } from "#shared/api/ticket.ts";
 import type { PointMm, Vec3 } from "#shared/geometry/types.ts";
 import type { ImpassableString } from "#shared/tracing/guide/impassable.ts";
+import type { ExplainingLine } from "#shared/tracing/overlooked/find-stretches.ts";
+import type { FoundPoints } from "#shared/tracing/overlooked/search-block.ts";
+import type { OverlookedStretch } from "#shared/tracing/overlooked/stretch.ts";
 import type { Polarity, StrandRequest, TraceParameters } from "#shared/tracing/strand-request.ts";
 import type { MadeBy } from "#shared/trees/document.ts";
+import type { PyramidLevel } from "#shared/volume/pyramid.ts";
 
-export type Lane = "section" | "guide" | "space" | "job";
-
-/**
- * Every heavy request says whose it is. A newer number of the same window, lane and kind of request (section, strip, snap,
- * preview ...) supersedes an older one that is not answered yet; kinds do not drop each other, so each may be counted by
- * itself. In the lane `job` nothing is superseded.
- */
-export interface Ticket {
-  readonly window: string;
-  readonly lane: Lane;
-  readonly number: number;
-}
+export type { Lane, Ticket };
 
 /** A pane's plane: the centre of pixel (i, j) lies at origin + (i + 0.5) u + (j + 0.5) v. */
 export interface PlaneMm {
@@ -196,6 +190,15 @@ export interface SurfaceHeader {
   readonly threshold: number;
 }
 
+/** Points that a search found, and the strands that explain some of them. */
+export interface StretchesRequest {
+  readonly specimen: string;
+  readonly polarity: Polarity;
+  readonly found: readonly FoundPoints[];
+  readonly lines: readonly ExplainingLine[];
+  readonly minimumMm: number;
+}
+
 /** What the engine can do; the request handler and the command line both speak to this. */
 export interface Engine {
   section(request: SectionRequest): Promise<BinaryFrame<SectionHeader>>;
@@ -211,6 +214,14 @@ export interface Engine {
   /** @throws not-found when the run is over or made way for a newer one */
   moreFollow(request: FollowMoreRequest): Promise<FollowAnswer>;
   closeFollow(session: string): Promise<void>;
+  /** The level that a scan is searched on, whose blocks `blockCounts` tells. */
+  searchLevel(specimen: string, polarity: Polarity): Promise<PyramidLevel>;
+  /** The string points of one block; gives way to everything that a person waits for. */
+  searchBlock(specimen: string, polarity: Polarity, block: number): Promise<FoundPoints>;
+  /** What no line explains among the points found; see `findStretches`. */
+  stretches(request: StretchesRequest): Promise<readonly OverlookedStretch[]>;
+  /** Lets go of what was kept for a search. */
+  endSearch(): void;
   strip(request: StripRequest): Promise<BinaryFrame<StripHeader>>;
   film(request: FilmRequest): Promise<BinaryFrame<FilmHeader>>;
   surface(request: SurfaceRequest): Promise<BinaryFrame<SurfaceHeader>>;

@@ -1,4 +1,4 @@
-import type { Ticket } from "#shared/api/engine.ts";
+import type { Ticket } from "#shared/api/ticket.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
 import type { FollowProposal } from "#shared/tracing/follow/proposal.ts";
 import type { TraceParameters } from "#shared/tracing/strand-request.ts";
@@ -9,8 +9,8 @@ import type { TraceParameters } from "#shared/tracing/strand-request.ts";
  * (asking no more is enough, a session that nobody asks for ends by itself). The end result does not depend on how often
  * was asked. A newer follow of the same window takes the place of an older one, whose next `moreFollow` is answered `not-found`.
  *
- * To accept: `proposalDocument(proposal, kept)` (`#shared/tracing/follow/accept-proposal.ts`) gives a document of the kept part for
- * `takeInTrees`; one operation, one undo.
+ * To accept: `partOfProposal` (`#shared/tracing/follow/part-of-proposal.ts`) leaves out what the person does not want, and
+ * `proposalDocument` (`accept-proposal.ts` beside it) gives a document for `takeInTrees`; one operation, one undo.
  */
 export interface FollowOpenRequest {
   readonly ticket: Ticket;

@@ -47,6 +47,8 @@ export const ROUTES = {
   openFollow: { method: "POST", path: "/api/engine/follow/open" }, // FollowOpenRequest (`follow.ts`) -> {session}
   moreFollow: { method: "POST", path: "/api/engine/follow/more" }, // FollowMoreRequest -> FollowAnswer, until `done`
   closeFollow: { method: "POST", path: "/api/engine/follow/close" }, // {session} -> {}
+  startSearch: { method: "POST", path: "/api/specimens/:specimen/search" }, // SearchRequest (`overlooked.ts`) -> {job}; cancelJob stops it
+  overlooked: { method: "POST", path: "/api/overlooked" }, // OverlookedRequest -> OverlookedAnswer
   strip: { method: "POST", path: "/api/engine/strip" },
   film: { method: "POST", path: "/api/engine/film" },
   surface: { method: "POST", path: "/api/engine/surface" },

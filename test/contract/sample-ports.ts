@@ -92,6 +92,16 @@ export async function samplePorts(): Promise<SamplePorts> {
       cancel: async (id) => jobs.cancel(id),
       jobs: () => jobs.states(),
     },
+    search: {
+      start: async (specimen, request) => {
+        asked.set("search", { specimen, request });
+        return { job };
+      },
+      overlooked: async (request) => {
+        asked.set("overlooked", request);
+        return { stretches: [], search: { polarity: request.polarity, done: 0, total: 1, job: null } };
+      },
+    },
     scans: {
       startProjections: async (request) => {
         asked.set("projections", request);
@@ -174,6 +184,15 @@ function sampleEngine(asked: Map<string, unknown>): Engine {
     openFollow: note("openFollow", { session: "f1" }),
     moreFollow: note("moreFollow", { done: true, growing: [], lengthMm: 0, proposal: null }),
     closeFollow: note("closeFollow", undefined),
+    searchLevel: async () => ({ level: 0, size: [64, 64, 64], spacing: [1, 1, 1], factor: [1, 1, 1] }) as never,
+    searchBlock: async () => ({
+      voxels: new Int32Array(0),
+      strengths: new Float32Array(0),
+      radii: new Float32Array(0),
+      shares: new Float32Array(0),
+    }),
+    stretches: note("stretches", []),
+    endSearch: () => {},
     strip: note("strip", frame({ dtype: "uint8", width: 2, height: 2, lengthMm: 1 })),
     film: note("film", frame({ dtype: "uint8", count: 1, side: 2, at: [0] })),
     surface: note("surface", frame({ dtype: "float32", count: 0, level: 0, threshold: 0 })),

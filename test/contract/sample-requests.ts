@@ -72,6 +72,11 @@ export function sampleRequests(
     openFollow: { body: engine({ at: [0, 0, 0], parameters, traced: [points] }) },
     moreFollow: { body: { ticket, session: "f1" } },
     closeFollow: { body: { session: "f1" } },
+    startSearch: {
+      path: { specimen: SPECIMEN },
+      body: { polarity: "bright", region: { from: [0, 0, 0], to: [1, 1, 1] } },
+    },
+    overlooked: { body: { specimen: SPECIMEN, pass, polarity: "bright", minimumMm: 2, withDismissed: true } },
     strip: { body: engine({ points, width: 2, height: 2, halfWidthMm: 1, turn: 90, ...grey }) },
     film: { body: engine({ points, count: 1, side: 2, halfWidthMm: 1, ...grey }) },
     surface: { body: engine({ limit: 100, polarity: "bright" }) },

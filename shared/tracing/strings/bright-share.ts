@@ -1,5 +1,5 @@
 import type { Vec3 } from "#shared/geometry/types.ts";
-import { perpendicularFrame } from "#shared/geometry/vec3.ts";
+import { dot, normalise, perpendicularFrame } from "#shared/geometry/vec3.ts";
 import { localToIndex } from "#shared/tracing/local-frame.ts";
 import type { TraceContext } from "#shared/tracing/trace-context.ts";
 
@@ -44,6 +44,74 @@ export function brightShare(context: TraceContext, at: Vec3, radiusMm: number): 
     if (sum > 3 * BRIGHT * middle) bright++;
   }
   return bright / DIRECTIONS.length;
+}
+
+/** Radius of the wide shell, in radii of the string. */
+const WIDE_RADII = 4.5;
+/** Off the axis: more than 50 degrees from it. */
+const OFF_AXIS = 0.64;
+
+/**
+ * Share of a wide sphere shell about a place that is bright, and off the axis on which most of its brightness lies, 0 to 1: nothing on
+ * a string, whatever crosses it and also when others run beside it; 0.05 and more on the rim of a sheet or in one.
+ * @param at millimetres along the voxel axes. @param radiusMm radius of the string, its ridge scale.
+ * @source own derivation: half a sheet's band on the shell lies off the axis, a string's two ends lie on it.
+ */
+export function offAxisShare(context: TraceContext, at: Vec3, radiusMm: number): number {
+  const { voxelMm, excess } = looker(context, radiusMm);
+  const least = 3 * BRIGHT * excess(at[0], at[1], at[2]);
+  const shell = WIDE_RADII * radiusMm + SHELL_VOXELS * voxelMm;
+  const bright: Vec3[] = [];
+  for (const direction of DIRECTIONS) {
+    const [x, y, z] = direction;
+    let sum = 0;
+    for (let step = -1; step <= 1; step++) {
+      const far = shell + (step * voxelMm) / 2;
+      sum += excess(at[0] + far * x, at[1] + far * y, at[2] + far * z);
+    }
+    if (sum > least) bright.push(direction);
+  }
+  // The axis: power iteration on the second moments, from the brightest side on.
+  let axis: Vec3 = bright[0] ?? [0, 0, 1];
+  for (let round = 0; round < 24 && bright.length > 0; round++) {
+    const next = [0, 0, 0];
+    for (const direction of bright) {
+      const along = dot(direction, axis);
+      for (let c = 0; c < 3; c++) next[c] = next[c]! + along * direction[c]!;
+    }
+    axis = normalise([next[0]!, next[1]!, next[2]!]);
+  }
+  return bright.filter((direction) => Math.abs(dot(direction, axis)) < OFF_AXIS).length / DIRECTIONS.length;
+}
+
+/** Distances at which a ray that stays in a sheet is looked at, in radii of the string. */
+const SHEET_RADII = [1.5, 2, 2.5, 3, 3.5, 4.5];
+/** Rays that look for a sheet: it is thin where the last of these distances is long. */
+const SHEET_RAYS = 64;
+
+/**
+ * Share of the rays across a string that stay bright (half as bright as the string, or more) from its flank to 4.5 radii away, 0
+ * to 1: nothing beside other strings, which such a ray leaves again; something all along the rim of a sheet.
+ * @param direction unit vector along the string.
+ */
+export function sheetShare(context: TraceContext, at: Vec3, direction: Vec3, radiusMm: number): number {
+  const { voxelMm, excess } = looker(context, radiusMm);
+  const [u, v] = perpendicularFrame(direction);
+  const least = BRIGHT * excess(at[0], at[1], at[2]);
+  let staying = 0;
+  for (let n = 0; n < SHEET_RAYS; n++) {
+    const c = Math.cos((2 * Math.PI * n) / SHEET_RAYS);
+    const s = Math.sin((2 * Math.PI * n) / SHEET_RAYS);
+    const stays = SHEET_RADII.every((radii) => {
+      const far = radii * radiusMm + SHELL_VOXELS * voxelMm;
+      return (
+        excess(at[0] + far * (c * u[0] + s * v[0]), at[1] + far * (c * u[1] + s * v[1]), at[2] + far * (c * u[2] + s * v[2])) >
+        least
+      );
+    });
+    if (stays) staying++;
+  }
+  return staying / SHEET_RAYS;
 }
 
 /**
