@@ -3,6 +3,7 @@ import { holds, isBoolean, isCount, isText, listOf, objectOf, oneOf, orNull } fr
 import { checked, isDrawingRules } from "#shared/study/parse-study.ts";
 import type { DrawingRules } from "#shared/study/protocol.ts";
 
+/** Name in `assignment.json`. */
 export const ASSIGNMENT_FORMAT = "tautline-assignment";
 
 /** `assignment.json` beside a specimen in the annotator's library: what its packet said, and where the work stands. */

@@ -5,7 +5,9 @@ import type { DrawingRules } from "#shared/study/protocol.ts";
 
 // What a packet says about itself, in `packet.json` of its payload. Names of people, specimens and studies stand in none.
 
+/** Name in `packet.json`. */
 export const PACKET_FORMAT = "tautline-packet";
+/** Newest version of `packet.json` that this program writes and reads. */
 export const PACKET_VERSION = 1;
 /** Name of the file, below the payload's folder. */
 export const PACKET_FILE = "packet.json";

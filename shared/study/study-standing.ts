@@ -2,6 +2,7 @@ import type { ProtocolVersion } from "#shared/study/protocol.ts";
 import { sameDrawing } from "#shared/study/protocol-change.ts";
 import type { Assignment, StudyRecord } from "#shared/study/study-record.ts";
 
+/** Milliseconds of a day. */
 export const DAY_MS = 86_400_000;
 
 /** The newest version of the protocol, frozen or not. */

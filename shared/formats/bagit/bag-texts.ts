@@ -3,9 +3,13 @@ import { unreadable } from "#shared/errors.ts";
 // The tag files of a bag, BagIt 1.0 (RFC 8493). A bag: `bagit.txt`, `bag-info.txt`, `manifest-sha256.txt` over everything below
 // `data/`, `tagmanifest-sha256.txt` over the tag files.
 
+/** Name of the file that says what a bag is. */
 export const BAG_DECLARATION = "bagit.txt";
+/** Name of the file that says what is in the bag. */
 export const BAG_INFO = "bag-info.txt";
+/** Name of the list of payload files with their SHA-256. */
 export const PAYLOAD_MANIFEST = "manifest-sha256.txt";
+/** Name of the list of tag files with their SHA-256. */
 export const TAG_MANIFEST = "tagmanifest-sha256.txt";
 /** Everything a bag carries lies below it. */
 export const PAYLOAD_FOLDER = "data/";

@@ -91,7 +91,7 @@ describe.each(Object.entries(DIRECTIONS))("a scan along %s", (_, direction) => {
     for (const turn of proper) {
       const frame = turnedFrame(scan, turn);
       const places = Array.from({ length: 4 }, () => onGrid(random));
-      const [a, b, c, d] = places.map((place) => shownFromTrue(frame, place)) as [Vec3, Vec3, Vec3, Vec3];
+      const [a, b, c, d] = places.map((place) => shownFromTrue(frame, place)) as unknown as [Vec3, Vec3, Vec3, Vec3];
       const volume = (p: Vec3, q: Vec3, r: Vec3, s: Vec3) => {
         const [u, v, w] = [q, r, s].map((x) => x.map((value, k) => value - p[k]!)) as [number[], number[], number[]];
         return (
@@ -100,7 +100,7 @@ describe.each(Object.entries(DIRECTIONS))("a scan along %s", (_, direction) => {
           u[2]! * (v[0]! * w[1]! - v[1]! * w[0]!)
         );
       };
-      const [p, q, r, s] = places as [Vec3, Vec3, Vec3, Vec3];
+      const [p, q, r, s] = places as unknown as [Vec3, Vec3, Vec3, Vec3];
       // A tetrahedron's signed volume changes its sign in a mirror and only there.
       expect(volume(a, b, c, d)).toBeCloseTo(volume(p, q, r, s), 6);
       expect(Math.hypot(a[0] - b[0], a[1] - b[1], a[2] - b[2])).toBeCloseTo(Math.hypot(p[0] - q[0], p[1] - q[1], p[2] - q[2]), 9);

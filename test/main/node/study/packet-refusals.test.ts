@@ -249,6 +249,24 @@ describe("an assignment", () => {
       true,
     );
     await refused(ANNOTATOR, () => takenIn(annotator, other), /a scan with the SHA-256/);
+    const elsewhere = await repacked(
+      path,
+      (inside) => {
+        const record = JSON.parse(inside["data/scan/specimen.json"]!);
+        record.volume.inPlace = {
+          path: "/etc",
+          array: "0",
+          metadata: "zarr.json",
+          selection: [null, null, null],
+          files: 1,
+          bytes: 1,
+          changed: 1,
+        };
+        inside["data/scan/specimen.json"] = JSON.stringify(record);
+      },
+      true,
+    );
+    await refused(ANNOTATOR, () => takenIn(annotator, elsewhere), /a scan within the packet, found one that lies elsewhere/);
   });
 
   it("of a newer packet format, or a bag of something else, is refused with its sentence", async () => {
