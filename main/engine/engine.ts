@@ -294,6 +294,7 @@ export function createEngine(options: EngineOptions): LocalEngine {
       const cache = await pool.run("figures", null, null, { workers: show, urgent: true });
       return { ...cache, waiting: pool.load.waiting, running: pool.load.running };
     },
+    load: () => pool.load,
     kill: (worker) => pool.kill(worker),
     async close() {
       clearInterval(sweep);

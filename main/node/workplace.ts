@@ -84,7 +84,10 @@ export async function openWorkplace(options: WorkplaceOptions): Promise<Workplac
     const study = studyPorts({ library, files, jobs, abilities, random, now, mayWrite, emit, softwareVersion: options.version });
     await study.store.removeLeftovers();
     const ports: Ports = {
-      hello: () => ({ name: "Tautline", version: options.version, shell: options.shell, library: root }),
+      hello: () => {
+        const { version, shell } = options;
+        return { name: "Tautline", version, shell, library: root, work: abilities.engine.load() };
+      },
       library,
       engine: abilities.engine,
       jobs: specimenJobs({ root, library, abilities, jobs, studies: study.store, newId, now, emit }),

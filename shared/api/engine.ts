@@ -199,6 +199,12 @@ export interface StretchesRequest {
   readonly minimumMm: number;
 }
 
+/** Requests that the engine has queued, and that it works on now (those no longer wanted that have not stopped yet included). */
+export interface EngineLoad {
+  readonly waiting: number;
+  readonly running: number;
+}
+
 /** What the engine can do; the request handler and the command line both speak to this. */
 export interface Engine {
   section(request: SectionRequest): Promise<BinaryFrame<SectionHeader>>;
@@ -225,5 +231,6 @@ export interface Engine {
   strip(request: StripRequest): Promise<BinaryFrame<StripHeader>>;
   film(request: FilmRequest): Promise<BinaryFrame<FilmHeader>>;
   surface(request: SurfaceRequest): Promise<BinaryFrame<SurfaceHeader>>;
+  load(): EngineLoad;
   close(): Promise<void>;
 }

@@ -1,3 +1,4 @@
+import type { EngineLoad } from "#shared/api/engine.ts";
 import type { ReadingChoice } from "#shared/api/projections.ts";
 import type { Handedness, ShelfSpecimen, SpecimenFacts } from "#shared/api/specimen.ts";
 import type { MadePacket, TakenPacket } from "#shared/api/study.ts";
@@ -94,6 +95,7 @@ export interface HelloAnswer {
   readonly version: string;
   readonly shell: "electron" | "loopback";
   readonly library: string;
+  readonly work: EngineLoad;
 }
 
 export interface ShelfAnswer {

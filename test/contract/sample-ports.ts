@@ -79,7 +79,10 @@ export async function samplePorts(): Promise<SamplePorts> {
     softwareVersion: "0.0.0",
   });
   const ports: Ports = {
-    hello: () => ({ name: "Tautline", version: "0.0.0", shell: "loopback", library: "/library" }),
+    hello: () => {
+      const work = { waiting: 0, running: 0 };
+      return { name: "Tautline", version: "0.0.0", shell: "loopback", library: "/library", work };
+    },
     library,
     engine: sampleEngine(asked),
     jobs: {
@@ -196,6 +199,7 @@ function sampleEngine(asked: Map<string, unknown>): Engine {
     strip: note("strip", frame({ dtype: "uint8", width: 2, height: 2, lengthMm: 1 })),
     film: note("film", frame({ dtype: "uint8", count: 1, side: 2, at: [0] })),
     surface: note("surface", frame({ dtype: "float32", count: 0, level: 0, threshold: 0 })),
+    load: () => ({ waiting: 0, running: 0 }),
     close: async () => {},
   };
 }
