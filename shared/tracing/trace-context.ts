@@ -3,6 +3,7 @@ import { type GreyLevels, greyLevels } from "#shared/tracing/grey-levels.ts";
 import { createRidgeTiles, type RidgeTileStore, type RidgeTiles } from "#shared/tracing/ridge/ridge-tiles.ts";
 import { finestSpacing } from "#shared/tracing/ridge/scales.ts";
 import { createSampler, type Sampler } from "#shared/tracing/sampler.ts";
+import type { StopSwitch } from "#shared/tracing/stop-switch.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 
@@ -16,12 +17,11 @@ export interface TraceContext {
   readonly sampler: Sampler;
   /** The level that paths are searched on. */
   readonly workingLevel: number;
+  /** All work in this context stops when the signal in it says so; the pieces that are done are kept. */
+  readonly stop: StopSwitch;
 }
 
-/** Something that tells long work to stop; an AbortSignal is one. */
-export interface StopSignal {
-  readonly aborted: boolean;
-}
+export { type StopSignal, stopIfTracingStopped } from "#shared/tracing/stop-switch.ts";
 
 /** Finest strings have 0.1 to 0.15 mm: two to three voxels of this size see them, finer ones add only work. */
 const WORKING_SPACING_MM = 0.05;
@@ -39,13 +39,15 @@ export interface TraceCaches {
 /** The context of a scan and polarity; keep it as long as the scan is in use: it holds the ridge tiles already made. */
 export function createTraceContext(scan: VoxelPyramid, polarity: Polarity, caches: TraceCaches = {}): TraceContext {
   const pyramid = extendedPyramid(scan);
+  const stop: StopSwitch = { signal: null };
   return {
     pyramid,
     sign: polarity === "bright" ? 1 : -1,
     levels: greyLevels(pyramid, polarity),
-    ridges: createRidgeTiles(pyramid, polarity, caches.ridgeTiles, caches.ridgeStore),
+    ridges: createRidgeTiles(pyramid, polarity, caches.ridgeTiles, caches.ridgeStore, stop),
     sampler: createSampler(pyramid, caches.bricks),
     workingLevel: workingLevel(pyramid),
+    stop,
   };
 }
 

@@ -1,6 +1,7 @@
 import { gaussianKernels } from "#shared/tracing/ridge/gaussian-kernels.ts";
 import { type BlockScale, createRidgeKernel } from "#shared/tracing/ridge/ridge-kernel.ts";
 import { type RidgeScale, ridgeScales, sigmaVoxels } from "#shared/tracing/ridge/scales.ts";
+import { checkStop, type StopSwitch } from "#shared/tracing/stop-switch.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 
@@ -67,12 +68,14 @@ interface OwnAnswer {
  * The ridge tiles of a pyramid, computed when asked for and kept, up to `keepTiles` in all; those used longest ago make room.
  * Scales of coarser levels are computed on their own grid and carried to the working grid by linear interpolation.
  * @param store shared with others that work on the same scan and polarity; the tiles are the same numbers with it or without.
+ * @param stop looked at after each scale, so that a tile asked for again and again is done in the end.
  */
 export function createRidgeTiles(
   pyramid: VoxelPyramid,
   polarity: Polarity,
   keepTiles = 512,
   store: RidgeTileStore | null = null,
+  stop: StopSwitch = { signal: null },
 ): RidgeTiles {
   const sign = polarity === "bright" ? 1 : -1;
   const kernel = createRidgeKernel();
@@ -81,6 +84,8 @@ export function createRidgeTiles(
   const ownTiles = Math.floor(keepTiles * (store ? OWN_BESIDE_STORE : 0.5));
   const kept = new KeptTiles(keepTiles - ownTiles);
   const own = new KeptTiles(ownTiles);
+  /** The tile that was being made when the work was stopped, and the number of its scales that are in it. */
+  let begun: (OwnAnswer & { readonly key: string; readonly done: number }) | null = null;
 
   const scales = (level: number) => {
     const known = scalesOfLevel.get(level);
@@ -118,16 +123,18 @@ export function createRidgeTiles(
     if (known) return known;
     const made = own.take();
     const [gx, gy, gz] = pyramid.levels[level]!.size.map((side) => Math.ceil(side / RIDGE_TILE_SIDE)) as [number, number, number];
-    const compute = (strength: Float32Array, scale: Uint8Array) => computeOwn(list, here, level, [i, j, k], strength, scale);
+    const compute = (strength: Float32Array, scale: Uint8Array) => computeOwn(key, list, here, level, [i, j, k], strength, scale);
     if (store && i >= 0 && j >= 0 && k >= 0 && i < gx && j < gy && k < gz)
       store.tileInto({ working, count: here.length, level, number: (k * gy + j) * gx + i }, made.strength, made.scale, compute);
     else compute(made.strength, made.scale);
     own.keep(key, made);
+    checkStop(stop);
     return made;
   };
 
   /** Writes the strongest answer over one tile of the scales numbered `here`, all of the level. */
   const computeOwn = (
+    key: string,
     list: readonly RidgeScale[],
     here: readonly number[],
     level: number,
@@ -135,8 +142,16 @@ export function createRidgeTiles(
     strength: Float32Array,
     scale: Uint8Array,
   ): void => {
-    strength.fill(0);
-    scale.fill(here[0]!);
+    let done = 0;
+    if (begun?.key === key) {
+      strength.set(begun.strength);
+      scale.set(begun.scale);
+      done = begun.done;
+    } else {
+      strength.fill(0);
+      scale.fill(here[0]!);
+    }
+    begun = null;
     // Only what lies inside the level is computed: on coarse levels that is often a small part of a tile.
     const { size: whole } = pyramid.levels[level]!;
     const n = RIDGE_TILE_SIDE;
@@ -161,7 +176,7 @@ export function createRidgeTiles(
         size,
         kernel.block(size[0] * size[1] * size[2]),
       );
-    for (const index of empty ? [] : here) {
+    for (const index of empty ? [] : here.slice(done)) {
       const answer = kernel.run(inside, pad, blockScale(list[index]!), sign);
       let from = 0;
       for (let z = 0; z < inside[2]; z++)
@@ -173,6 +188,11 @@ export function createRidgeTiles(
               scale[v] = index;
             }
         }
+      done++;
+      if (done < here.length && stop.signal?.aborted) {
+        begun = { key, done, strength: strength.slice(), scale: scale.slice() };
+        checkStop(stop);
+      }
     }
   };
 
