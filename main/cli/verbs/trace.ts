@@ -1,16 +1,15 @@
-import { stat } from "node:fs/promises";
-import { basename, dirname } from "node:path";
+import { basename } from "node:path";
 import { wordOption } from "#main/cli/number-option.ts";
 import { type OpenVoxels, openVoxels } from "#main/cli/open-voxels.ts";
 import { readTreeFile } from "#main/cli/read-tree-file.ts";
 import { givenSpacing, SPACING_HELP, SPACING_OPTIONS } from "#main/cli/spacing-option.ts";
 import { traceFile } from "#main/cli/trace-file.ts";
+import { refuseOtherScan, refuseUnwritable } from "#main/cli/trees-on-scan.ts";
 import type { Verb, VerbCall } from "#main/cli/verb.ts";
 import { diskFiles } from "#main/node/disk-files.ts";
 import { writeWhole } from "#main/node/whole-file.ts";
 import { TautlineError, unreadable } from "#shared/errors.ts";
 import { type ChordaeFile, frameOf } from "#shared/formats/chordae/chordae-file.ts";
-import { relationOfScans } from "#shared/formats/chordae/same-scan.ts";
 import { writeChordaeFile } from "#shared/formats/chordae/write-chordae-file.ts";
 import { isInside } from "#shared/volume/grid.ts";
 
@@ -48,7 +47,7 @@ ${SPACING_HELP}
     const pins = await readTreeFile(pinsPath);
     const voxels = await openVoxels(positionals[0]!, given, call);
     try {
-      refuseOtherScan(pins, pinsPath, voxels, options["other-scan"] === true, say);
+      refuseOtherScan(pins, pinsPath, voxels, options["other-scan"] === true, "traced", say);
       refuseOutside(pins, pinsPath, voxels);
       if (pins.frame !== undefined && frameOf(pins) !== voxels.pyramid.grid.frame)
         say(
@@ -88,39 +87,6 @@ function pathOption(options: VerbCall["options"], name: string): string {
   if (typeof value === "string" && value !== "") return value;
   const what = `trace needs --${name} with the name of a tree file.`;
   throw new TautlineError("misuse", what, { what });
-}
-
-/** Said before hours of work rather than after. */
-async function refuseUnwritable(path: string): Promise<void> {
-  const folder = await stat(dirname(path)).catch(() => undefined);
-  const found = await stat(path).catch(() => undefined);
-  if (folder?.isDirectory() && !found?.isDirectory()) return;
-  const what = found?.isDirectory()
-    ? `--out ${path} is a folder; name a file.`
-    : `--out ${path}: there is no folder ${dirname(path)}.`;
-  throw new TautlineError("misuse", what, { what });
-}
-
-function refuseOtherScan(
-  pins: ChordaeFile,
-  path: string,
-  voxels: OpenVoxels,
-  allowed: boolean,
-  say: (line: string) => void,
-): void {
-  const expected = pins.volume?.sha256 ?? null;
-  if (expected === null) {
-    say(`${path}: does not say which scan it belongs to; taken as belonging to this one.`);
-    return;
-  }
-  const found = { sha256: voxels.sha256, derivedFrom: { sha256: voxels.derivedFrom } };
-  if (relationOfScans(pins.volume, found) === "same") return;
-  if (allowed) {
-    say(`${path}: belongs to another scan; traced on this one as asked.`);
-    return;
-  }
-  const message = `${path}: its trees belong to the scan ${expected.slice(0, 12)}..., this scan is ${voxels.sha256.slice(0, 12)}... Name the right scan, or give --other-scan to trace on this one.`;
-  throw new TautlineError("other-scan", message, { file: path, expected, found: voxels.sha256 });
 }
 
 function refuseOutside(pins: ChordaeFile, path: string, voxels: OpenVoxels): void {
