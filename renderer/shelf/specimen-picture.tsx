@@ -5,8 +5,15 @@ import type { SectionHeader } from "#shared/api/engine.ts";
 import type { BinaryFrame } from "#shared/api/frame.ts";
 import type { ShelfSpecimen } from "#shared/api/specimen.ts";
 
+export interface SpecimenPictureProps {
+  readonly client: Pick<Client, "picture">;
+  readonly shown: ShelfSpecimen;
+  /** Why there is no picture, in a sentence; null once there is one. */
+  readonly tell?: (why: string | null) => void;
+}
+
 /** The small projection of a specimen, asked for once it can be there. */
-export function SpecimenPicture({ client, shown }: { readonly client: Pick<Client, "picture">; readonly shown: ShelfSpecimen }) {
+export function SpecimenPicture({ client, shown, tell }: SpecimenPictureProps) {
   const [frame, setFrame] = useState<BinaryFrame<SectionHeader> | null>(null);
   const [missing, setMissing] = useState(false);
   const { id, name } = shown.specimen;
@@ -15,9 +22,17 @@ export function SpecimenPicture({ client, shown }: { readonly client: Pick<Clien
     setMissing(false);
     client
       .picture(id)
-      .then((answer) => current && setFrame(answer))
+      .then((answer) => {
+        if (!current) return;
+        setFrame(answer);
+        tell?.(null);
+      })
       // A picture is an ornament: without it the row says so and stays usable.
-      .catch(() => current && setMissing(true));
+      .catch((error) => {
+        if (!current) return;
+        setMissing(true);
+        tell?.(error instanceof Error ? error.message : String(error));
+      });
     return () => {
       current = false;
     };

@@ -4,7 +4,7 @@ import { HandednessSheet } from "#renderer/shelf/handedness-sheet.tsx";
 import { NewPass } from "#renderer/shelf/new-pass.tsx";
 import { RemoveSheet } from "#renderer/shelf/remove-sheet.tsx";
 import { SpecimenPicture } from "#renderer/shelf/specimen-picture.tsx";
-import { dateWords, factsWords, passWords, sidesWords, spacingWords, voxelsWords } from "#renderer/shelf/words.ts";
+import { dateWords, factsWords, keptWords, passWords, sidesWords, spacingWords, voxelsWords } from "#renderer/shelf/words.ts";
 import { SidesSheet } from "#renderer/study/side-by-side/sides-sheet.tsx";
 import type { PassSummary, ShelfSpecimen } from "#shared/api/specimen.ts";
 
@@ -28,6 +28,8 @@ export function SpecimenRow({ shown, services, fresh, reload }: SpecimenRowProps
   }, [fresh]);
   const { specimen, passes, incomplete } = shown;
   const { volume } = specimen;
+  const [fault, setFault] = useState<string | null>(null);
+  const kept = keptWords(volume);
   const facts = factsWords(specimen.facts);
   const open = (pass: PassSummary) => services.goTo({ screen: "desk", specimen: specimen.id, pass: pass.id });
   const known = [
@@ -47,7 +49,7 @@ export function SpecimenRow({ shown, services, fresh, reload }: SpecimenRowProps
   const close = () => setAsking(null);
   return (
     <li ref={row} class={fresh ? "shelf-row pane fresh" : "shelf-row pane"} aria-labelledby={`specimen-${specimen.id}`}>
-      <SpecimenPicture client={services.client} shown={shown} />
+      <SpecimenPicture client={services.client} shown={shown} tell={setFault} />
       <div class="shelf-about">
         <h2 id={`specimen-${specimen.id}`}>
           {specimen.name}
@@ -58,6 +60,13 @@ export function SpecimenRow({ shown, services, fresh, reload }: SpecimenRowProps
           {voxelsWords(volume.size)} of {spacingWords(volume.spacing)}
         </p>
         <p>{sidesWords(volume.size, volume.spacing)}</p>
+        {kept === "" ? null : <p class="soft">{kept}</p>}
+        {/* A scan of the library's own is there or the library is damaged; one that is used in place may have been moved. */}
+        {volume.inPlace && fault !== null ? (
+          <p class="warn" role="alert">
+            {fault}
+          </p>
+        ) : null}
         {facts === "" ? null : <p class="soft">{facts}</p>}
         {volume.handedness === "unknown" ? (
           <p class="soft">

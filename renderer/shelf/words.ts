@@ -1,4 +1,4 @@
-import type { PassSummary, SpecimenFacts } from "#shared/api/specimen.ts";
+import type { PassSummary, SpecimenFacts, SpecimenVolume } from "#shared/api/specimen.ts";
 
 /** Between thousands, as in "1 040": narrow and never broken. */
 const NARROW = "\u202f";
@@ -93,6 +93,17 @@ export function factsWords(facts: SpecimenFacts): string {
 }
 
 /** Day and minute on this computer's clock: "2026-12-01 13:05". */
+/** What of the scan was kept and how, where it is not a plain copy of the whole: "a box of the scan, halved · packed". */
+export function keptWords({
+  derivedFrom,
+  packing,
+  inPlace,
+}: Pick<SpecimenVolume, "derivedFrom" | "packing" | "inPlace">): string {
+  const bin = derivedFrom?.bin ?? 1;
+  const part = derivedFrom ? (bin > 1 ? `part of a scan, ${bin} times as coarse` : "part of a scan") : null;
+  return [part, packing ? "packed" : null, inPlace ? "used where it lies" : null].filter((word) => word !== null).join(" · ");
+}
+
 export function dateWords(utcMs: number): string {
   const d = new Date(utcMs);
   const two = (n: number) => String(n).padStart(2, "0");

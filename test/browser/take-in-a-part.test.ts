@@ -1,5 +1,5 @@
 import { createHash } from "node:crypto";
-import { readdir, readFile } from "node:fs/promises";
+import { cp, readdir, readFile, rename, rm } from "node:fs/promises";
 import { join } from "node:path";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { deskReady, startPass } from "#test/browser/desk-steps.ts";
@@ -18,7 +18,8 @@ describe("a part of a scan, taken in through the window", () => {
   });
   afterAll(async () => {
     await open?.close();
-    await program?.stop();
+    await program?.kill();
+    if (program) await rm(program.folder, { recursive: true, force: true });
   });
 
   it("is drawn on projections of the scan, packed, and opens on the desk where it lies", async () => {
@@ -64,5 +65,37 @@ describe("a part of a scan, taken in through the window", () => {
     expect(volume.size).toEqual([x1 - x0, y1 - y0, z1 - z0]);
     for (const [axis, from] of [x0, y0, z0].entries()) expect(volume.origin[axis]).toBeCloseTo(from * SPACING_MM, 9);
     expect(open.faults).toEqual([]);
+  });
+
+  it("is used where it lies by another specimen, which says so when it was moved, and opens again once it is back", async () => {
+    const [id] = await readdir(join(program.library, "specimens"));
+    const store = join(program.folder, "valve.ome.zarr");
+    await cp(join(program.library, "specimens", id!, "scan.ome.zarr"), store, { recursive: true });
+    const { page } = open;
+    await page.goto(program.url);
+    await page.getByRole("button", { name: "Add a scan", exact: true }).click();
+    await page.getByLabel("Path of the file or folder").fill(store);
+    await page.getByRole("button", { name: "Look at it" }).click();
+    await page.getByLabel("where it lies").check();
+    await page.getByLabel("Name of the specimen").fill("HB-IN-PLACE");
+    const checked = page.getByLabel("I have checked that this voxel size is right");
+    if (await checked.count()) await checked.check();
+    await page.getByRole("button", { name: "Take it in" }).click();
+    const row = page.locator(".shelf-row", { hasText: "HB-IN-PLACE" });
+    await row.getByText("part of a scan · used where it lies").waitFor({ timeout: 60_000 });
+    await row.locator("canvas").waitFor({ timeout: 60_000 });
+
+    await open.close();
+    await program.kill();
+    await rename(store, `${store}-away`);
+    const { folder } = program;
+    program = await startProgram(folder);
+    open = await openPage(program.url, join(folder, "profile"));
+    const again = open.page.locator(".shelf-row", { hasText: "HB-IN-PLACE" });
+    await again.getByText("Put it back where it was").waitFor({ timeout: 60_000 });
+    await rename(`${store}-away`, store);
+    await open.page.reload();
+    await again.locator("canvas").waitFor({ timeout: 60_000 });
+    expect(await again.getByRole("alert").count()).toBe(0);
   });
 });

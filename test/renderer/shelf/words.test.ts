@@ -3,6 +3,7 @@ import {
   bytesWords,
   countWords,
   factsWords,
+  keptWords,
   passWords,
   sidesWords,
   spacingWords,
@@ -62,4 +63,21 @@ test("times and sizes are rounded to what a person uses", () => {
 test("facts that nobody gave leave no gap", () => {
   expect(plain(factsWords({ species: "porcine", pressure: 0, state: "" }))).toBe("porcine · 0 mmHg");
   expect(factsWords({})).toBe("");
+});
+
+test("what was kept of a scan and how is said only where it is not a plain copy of the whole", () => {
+  expect(keptWords({})).toBe("");
+  const whole = { sha256: "0".repeat(64), crop: [0, 0, 0, 4, 4, 4] };
+  expect(keptWords({ derivedFrom: { ...whole, bin: 1 } })).toBe("part of a scan");
+  expect(keptWords({ derivedFrom: { ...whole, bin: 2 }, packing: "gzip" })).toBe("part of a scan, 2 times as coarse · packed");
+  const inPlace = {
+    path: "/a",
+    array: "0",
+    metadata: "zarr.json",
+    selection: [null, null, null],
+    files: 1,
+    bytes: 1,
+    changed: 0,
+  } as const;
+  expect(keptWords({ inPlace })).toBe("used where it lies");
 });
