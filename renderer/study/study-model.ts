@@ -13,6 +13,8 @@ export class StudyModel {
   private readonly busySignal = signal(false);
   private protocol: { readonly version: number; readonly editing: ProtocolEditing } | null = null;
   readonly report = new ReportRun(pageReportWorker);
+  /** The report was begun once by opening its part. */
+  reportOpened = false;
   /** A computed method to be held against the annotators; null = none. */
   readonly method: Signal<MethodFiles | null> = signal<MethodFiles | null>(null);
   private loading = false;

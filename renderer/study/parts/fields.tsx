@@ -7,11 +7,10 @@ interface FieldProps {
   readonly set: (value: string) => void;
   /** A sentence under the field that says what to put in and why. */
   readonly help?: ComponentChildren;
-  readonly disabled?: boolean;
 }
 
 /** One line of text with its label and help. */
-export function TextField({ label, value, set, help, disabled = false, wide = false }: FieldProps & { readonly wide?: boolean }) {
+export function TextField({ label, value, set, help, wide = false }: FieldProps & { readonly wide?: boolean }) {
   const helpId = useId();
   return (
     <div class={wide ? "study-field wide" : "study-field"}>
@@ -21,7 +20,6 @@ export function TextField({ label, value, set, help, disabled = false, wide = fa
           class="field"
           value={value}
           maxLength={200}
-          disabled={disabled}
           aria-describedby={help === undefined ? undefined : helpId}
           onInput={(event) => set(event.currentTarget.value)}
         />
@@ -32,7 +30,7 @@ export function TextField({ label, value, set, help, disabled = false, wide = fa
 }
 
 /** A number, kept as typed until it is used; its unit stands behind the field. */
-export function NumberField({ label, value, set, help, disabled = false, unit }: FieldProps & { readonly unit?: string }) {
+export function NumberField({ label, value, set, help, unit }: FieldProps & { readonly unit?: string }) {
   const helpId = useId();
   return (
     <div class="study-field">
@@ -46,7 +44,6 @@ export function NumberField({ label, value, set, help, disabled = false, unit }:
           inputMode="decimal"
           value={value}
           maxLength={20}
-          disabled={disabled}
           aria-describedby={help === undefined ? undefined : helpId}
           onInput={(event) => set(event.currentTarget.value)}
         />
@@ -57,7 +54,7 @@ export function NumberField({ label, value, set, help, disabled = false, unit }:
 }
 
 /** Several lines of text with its label and help. */
-export function LongField({ label, value, set, help, disabled = false }: FieldProps) {
+export function LongField({ label, value, set, help }: FieldProps) {
   const helpId = useId();
   return (
     <div class="study-field wide">
@@ -68,7 +65,6 @@ export function LongField({ label, value, set, help, disabled = false }: FieldPr
           rows={3}
           value={value}
           maxLength={2000}
-          disabled={disabled}
           aria-describedby={help === undefined ? undefined : helpId}
           onInput={(event) => set(event.currentTarget.value)}
         />
@@ -84,7 +80,6 @@ export function ChoiceField<Value extends string>({
   value,
   set,
   help,
-  disabled = false,
   choices,
 }: Omit<FieldProps, "value" | "set"> & {
   readonly value: Value;
@@ -99,7 +94,6 @@ export function ChoiceField<Value extends string>({
         <select
           class="field"
           value={value}
-          disabled={disabled}
           aria-describedby={help === undefined ? undefined : helpId}
           onChange={(event) => set(event.currentTarget.value as Value)}
         >

@@ -37,7 +37,7 @@ export function PassGridTable({ view, training, selected, select }: PassGridTabl
             ))}
           </tr>
         </thead>
-        <tbody>
+        <tbody onKeyDown={moveAmongCells}>
           {rows.map(({ specimen, cells }) => (
             <tr key={specimen.id}>
               <th scope="row">{specimen.name}</th>
@@ -52,6 +52,34 @@ export function PassGridTable({ view, training, selected, select }: PassGridTabl
       </table>
     </section>
   );
+}
+
+const STEPS: Readonly<Record<string, readonly [number, number]>> = {
+  ArrowLeft: [0, -1],
+  ArrowRight: [0, 1],
+  ArrowUp: [-1, 0],
+  ArrowDown: [1, 0],
+};
+
+/** Arrow keys go from cell to cell, over those that are not drawn. */
+function moveAmongCells(event: KeyboardEvent & { readonly currentTarget: HTMLElement }): void {
+  const step = STEPS[event.key];
+  const from = event.target instanceof Element ? event.target.closest("td") : null;
+  if (step === undefined || from === null) return;
+  event.preventDefault();
+  const rows = [...event.currentTarget.querySelectorAll("tr")].map((row) => [...row.querySelectorAll("td")]);
+  let row = rows.findIndex((cells) => cells.includes(from));
+  let column = rows[row]!.indexOf(from);
+  for (;;) {
+    row += step[0];
+    column += step[1];
+    const cell = rows[row]?.[column];
+    if (cell === undefined) return;
+    const button = cell.querySelector("button");
+    if (button === null) continue;
+    button.focus();
+    return;
+  }
 }
 
 function Cell({

@@ -13,11 +13,10 @@ const KNOWN = ["leaflet", "segment", "zone", "cleft", "strut", "muscle", "head",
 export interface LabelRowsProps {
   readonly labels: readonly LabelDraft[];
   readonly set: (labels: readonly LabelDraft[]) => void;
-  readonly disabled: boolean;
 }
 
 /** The labels that annotators set: a row for each. */
-export function LabelRows({ labels, set, disabled }: LabelRowsProps) {
+export function LabelRows({ labels, set }: LabelRowsProps) {
   const change = (k: number, part: Partial<LabelDraft>) =>
     set(labels.map((label, i) => (i === k ? { ...label, ...part } : label)));
   return (
@@ -37,7 +36,6 @@ export function LabelRows({ labels, set, disabled }: LabelRowsProps) {
               list="known-labels"
               value={label.label}
               maxLength={40}
-              disabled={disabled}
               onInput={(event) => change(k, { label: event.currentTarget.value })}
             />
           </label>
@@ -46,7 +44,6 @@ export function LabelRows({ labels, set, disabled }: LabelRowsProps) {
             <select
               class="field"
               value={label.on}
-              disabled={disabled}
               onChange={(event) => change(k, { on: event.currentTarget.value as LabelPlace })}
             >
               {PLACES.map((place) => (
@@ -63,7 +60,6 @@ export function LabelRows({ labels, set, disabled }: LabelRowsProps) {
               value={label.values}
               maxLength={400}
               placeholder={KNOWN.includes(label.label) ? "as the program has them" : "free text"}
-              disabled={disabled}
               onInput={(event) => change(k, { values: event.currentTarget.value })}
             />
           </label>
@@ -71,30 +67,25 @@ export function LabelRows({ labels, set, disabled }: LabelRowsProps) {
             <input
               type="checkbox"
               checked={label.required}
-              disabled={disabled}
               onChange={(event) => change(k, { required: event.currentTarget.checked })}
             />
             <span>required</span>
           </label>
-          {disabled ? null : (
-            <button type="button" class="button plain" onClick={() => set(labels.filter((_, i) => i !== k))}>
-              Take out<span class="unseen"> label {label.label === "" ? k + 1 : label.label}</span>
-            </button>
-          )}
+          <button type="button" class="button plain" onClick={() => set(labels.filter((_, i) => i !== k))}>
+            Take out<span class="unseen"> label {label.label === "" ? k + 1 : label.label}</span>
+          </button>
         </div>
       ))}
       {labels.length === 0 ? <p class="soft">No labels are asked for.</p> : null}
-      {disabled ? null : (
-        <div>
-          <button
-            type="button"
-            class="button"
-            onClick={() => set([...labels, { label: "", on: "insertion", values: "", required: false }])}
-          >
-            Add a label
-          </button>
-        </div>
-      )}
+      <div>
+        <button
+          type="button"
+          class="button"
+          onClick={() => set([...labels, { label: "", on: "insertion", values: "", required: false }])}
+        >
+          Add a label
+        </button>
+      </div>
     </div>
   );
 }

@@ -9,14 +9,13 @@ export interface PointRowsProps {
   /** A kept picture as a PNG. */
   readonly readPicture: (sha256: string) => Promise<Blob>;
   readonly failed: (error: unknown) => void;
-  readonly disabled: boolean;
 }
 
 /** Points that every protocol says something about. */
 const ALWAYS = ["origin", "insertion", "fork"];
 
 /** Where exactly a point is set: a sentence and a still picture for each. */
-export function PointRows({ points, set, keepPicture, readPicture, failed, disabled }: PointRowsProps) {
+export function PointRows({ points, set, keepPicture, readPicture, failed }: PointRowsProps) {
   const change = (k: number, part: Partial<PointRule>) => set(points.map((rule, i) => (i === k ? { ...rule, ...part } : rule)));
   const choose = async (k: number, file: File | undefined) => {
     if (file === undefined) return;
@@ -44,7 +43,6 @@ export function PointRows({ points, set, keepPicture, readPicture, failed, disab
                 class="field"
                 value={rule.point}
                 maxLength={40}
-                disabled={disabled}
                 onInput={(event) => change(k, { point: event.currentTarget.value })}
               />
             </label>
@@ -56,7 +54,6 @@ export function PointRows({ points, set, keepPicture, readPicture, failed, disab
               rows={3}
               value={rule.text}
               maxLength={1000}
-              disabled={disabled}
               onInput={(event) => change(k, { text: event.currentTarget.value })}
             />
           </label>
@@ -66,40 +63,36 @@ export function PointRows({ points, set, keepPicture, readPicture, failed, disab
             ) : (
               <StillPicture sha256={rule.picture} read={readPicture} label={`Still picture: ${rule.point}`} />
             )}
-            {disabled ? null : (
-              <div class="row">
-                <label class="button still-choice">
-                  {rule.picture === null ? "Choose a picture" : "Another picture"}
-                  <input
-                    class="unseen"
-                    type="file"
-                    accept="image/png"
-                    aria-label={`Still picture for the ${rule.point || "point"} (PNG)`}
-                    onChange={(event) => void choose(k, event.currentTarget.files?.[0])}
-                  />
-                </label>
-                {rule.picture === null ? null : (
-                  <button type="button" class="button plain" onClick={() => change(k, { picture: null })}>
-                    Without<span class="unseen"> a picture for the {rule.point}</span>
-                  </button>
-                )}
-                {ALWAYS.includes(rule.point) ? null : (
-                  <button type="button" class="button plain" onClick={() => set(points.filter((_, i) => i !== k))}>
-                    Take out<span class="unseen"> the rule for {rule.point}</span>
-                  </button>
-                )}
-              </div>
-            )}
+            <div class="row">
+              <label class="button still-choice">
+                {rule.picture === null ? "Choose a picture" : "Another picture"}
+                <input
+                  class="unseen"
+                  type="file"
+                  accept="image/png"
+                  aria-label={`Still picture for the ${rule.point || "point"} (PNG)`}
+                  onChange={(event) => void choose(k, event.currentTarget.files?.[0])}
+                />
+              </label>
+              {rule.picture === null ? null : (
+                <button type="button" class="button plain" onClick={() => change(k, { picture: null })}>
+                  Without<span class="unseen"> a picture for the {rule.point}</span>
+                </button>
+              )}
+              {ALWAYS.includes(rule.point) ? null : (
+                <button type="button" class="button plain" onClick={() => set(points.filter((_, i) => i !== k))}>
+                  Take out<span class="unseen"> the rule for {rule.point}</span>
+                </button>
+              )}
+            </div>
           </div>
         </div>
       ))}
-      {disabled ? null : (
-        <div>
-          <button type="button" class="button" onClick={() => set([...points, { point: "", text: "", picture: null }])}>
-            Add a rule
-          </button>
-        </div>
-      )}
+      <div>
+        <button type="button" class="button" onClick={() => set([...points, { point: "", text: "", picture: null }])}>
+          Add a rule
+        </button>
+      </div>
     </div>
   );
 }

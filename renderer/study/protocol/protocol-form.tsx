@@ -8,40 +8,34 @@ import { PRIMARY_QUANTITIES, type PrimaryQuantity } from "#shared/study/protocol
 export interface ProtocolFormProps extends Pick<PointRowsProps, "keepPicture" | "readPicture" | "failed"> {
   readonly draft: ProtocolDraft;
   readonly change: (part: Partial<ProtocolDraft>) => void;
-  readonly disabled: boolean;
 }
 
-/** Everything a protocol says, to fill in; the same form shows a frozen one. */
-export function ProtocolForm({ draft, change, disabled, ...pictures }: ProtocolFormProps) {
+/** Everything a protocol says, to fill in. */
+export function ProtocolForm({ draft, change, ...pictures }: ProtocolFormProps) {
   return (
     <>
       <section class="study-group" aria-labelledby="protocol-points">
         <h3 id="protocol-points">Where points are set</h3>
         <p class="soft">Annotators differ most where this is vague. The still picture shows it on a section of a scan.</p>
-        <PointRows points={draft.points} set={(points) => change({ points })} disabled={disabled} {...pictures} />
+        <PointRows points={draft.points} set={(points) => change({ points })} {...pictures} />
       </section>
       <section class="study-group" aria-labelledby="protocol-labels">
         <h3 id="protocol-labels">Labels</h3>
-        <LabelRows labels={draft.labels} set={(labels) => change({ labels })} disabled={disabled} />
+        <LabelRows labels={draft.labels} set={(labels) => change({ labels })} />
       </section>
-      <Limits draft={draft} change={change} disabled={disabled} />
-      <Analysis draft={draft} change={change} disabled={disabled} />
+      <Limits draft={draft} change={change} />
+      <Analysis draft={draft} change={change} />
       <section class="study-group" aria-labelledby="protocol-remarks">
         <h3 id="protocol-remarks">Remarks</h3>
-        <LongField
-          label="Anything else an annotator must know"
-          value={draft.remarks}
-          set={(remarks) => change({ remarks })}
-          disabled={disabled}
-        />
+        <LongField label="Anything else an annotator must know" value={draft.remarks} set={(remarks) => change({ remarks })} />
       </section>
     </>
   );
 }
 
-type PartProps = Pick<ProtocolFormProps, "draft" | "change" | "disabled">;
+type PartProps = Pick<ProtocolFormProps, "draft" | "change">;
 
-function Limits({ draft, change, disabled }: PartProps) {
+function Limits({ draft, change }: PartProps) {
   return (
     <section class="study-group" aria-labelledby="protocol-limits">
       <h3 id="protocol-limits">What is drawn</h3>
@@ -51,7 +45,6 @@ function Limits({ draft, change, disabled }: PartProps) {
           unit="mm"
           value={draft.minimumDiameter}
           set={(minimumDiameter) => change({ minimumDiameter })}
-          disabled={disabled}
           help="Thinner strings are not drawn. Empty: no limit, and no overlap above a diameter (OT)."
         />
         <NumberField
@@ -59,14 +52,12 @@ function Limits({ draft, change, disabled }: PartProps) {
           unit="mm"
           value={draft.minimumLength}
           set={(minimumLength) => change({ minimumLength })}
-          disabled={disabled}
           help="Shorter stretches are not drawn and not called overlooked. Empty: no limit."
         />
         <NumberField
           label="Most branches at a fork"
           value={draft.mostBranches}
           set={(mostBranches) => change({ mostBranches })}
-          disabled={disabled}
           help="More are shown as a finding. Empty: no limit."
         />
       </div>
@@ -78,7 +69,6 @@ function Limits({ draft, change, disabled }: PartProps) {
               key={code}
               label={code}
               value={draft.severities[code] ?? ""}
-              disabled={disabled}
               set={(severity) => {
                 const { [code]: _, ...others } = draft.severities;
                 change({ severities: severity === "" ? others : { ...others, [code]: severity } });
@@ -96,7 +86,7 @@ function Limits({ draft, change, disabled }: PartProps) {
   );
 }
 
-function Analysis({ draft, change, disabled }: PartProps) {
+function Analysis({ draft, change }: PartProps) {
   return (
     <section class="study-group" aria-labelledby="protocol-analysis">
       <h3 id="protocol-analysis">What the numbers will be</h3>
@@ -105,7 +95,6 @@ function Analysis({ draft, change, disabled }: PartProps) {
         <ChoiceField
           label="Primary quantity"
           value={draft.primary}
-          disabled={disabled}
           set={(primary) => change({ primary })}
           help="The one quantity that the study is about. All others are descriptive."
           choices={[
@@ -118,7 +107,6 @@ function Analysis({ draft, change, disabled }: PartProps) {
           unit="mm"
           value={draft.tolerance}
           set={(tolerance) => change({ tolerance })}
-          disabled={disabled}
           help="Strands match within it, nodes within twice of it. Results are repeated at half and at twice."
         />
         <NumberField
@@ -126,7 +114,6 @@ function Analysis({ draft, change, disabled }: PartProps) {
           unit="mm"
           value={draft.merge}
           set={(merge) => change({ merge })}
-          disabled={disabled}
           help="Forks joined by a shorter strand are one fork."
         />
         <NumberField
@@ -134,7 +121,6 @@ function Analysis({ draft, change, disabled }: PartProps) {
           unit="mm"
           value={draft.positionScale}
           set={(positionScale) => change({ positionScale })}
-          disabled={disabled}
           help="Scale of the edit distance between two passes."
         />
         <NumberField
@@ -142,7 +128,6 @@ function Analysis({ draft, change, disabled }: PartProps) {
           unit="mm"
           value={draft.margin}
           set={(margin) => change({ margin })}
-          disabled={disabled}
           help="A method within it of the annotators counts as equivalent. Empty: no verdict on a method."
         />
         <NumberField
@@ -150,7 +135,6 @@ function Analysis({ draft, change, disabled }: PartProps) {
           unit="days"
           value={draft.washoutDays}
           set={(washoutDays) => change({ washoutDays })}
-          disabled={disabled}
           help="From a returned pass to the next assignment of the same specimen to the same annotator."
         />
       </div>

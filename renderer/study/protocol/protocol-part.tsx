@@ -3,7 +3,7 @@ import { Sheet } from "#renderer/app/sheet.tsx";
 import { dateWords } from "#renderer/shelf/words.ts";
 import { LongField } from "#renderer/study/parts/fields.tsx";
 import { FreezeSheet } from "#renderer/study/protocol/freeze-sheet.tsx";
-import { draftOf } from "#renderer/study/protocol/protocol-draft.ts";
+import { FrozenProtocol } from "#renderer/study/protocol/frozen-protocol.tsx";
 import type { KeptState } from "#renderer/study/protocol/protocol-editing.ts";
 import { ProtocolForm } from "#renderer/study/protocol/protocol-form.tsx";
 import type { StudyModel } from "#renderer/study/study-model.ts";
@@ -60,14 +60,17 @@ export function ProtocolPart({ model, view }: PartProps) {
         </ul>
       )}
       <div class="pane study-part">
-        <ProtocolForm
-          draft={frozen ? draftOf(protocol.content) : editing.draft.value}
-          change={(part) => editing.change(part)}
-          disabled={frozen}
-          keepPicture={model.keepPicture}
-          readPicture={model.readPicture}
-          failed={(error) => model.services.notices.failed(error)}
-        />
+        {frozen ? (
+          <FrozenProtocol content={protocol.content} readPicture={model.readPicture} />
+        ) : (
+          <ProtocolForm
+            draft={editing.draft.value}
+            change={(part) => editing.change(part)}
+            keepPicture={model.keepPicture}
+            readPicture={model.readPicture}
+            failed={(error) => model.services.notices.failed(error)}
+          />
+        )}
       </div>
       <Versions view={view} />
       {asking === "freeze" ? <FreezeSheet model={model} view={view} close={() => setAsking(null)} /> : null}

@@ -47,6 +47,14 @@ export function ReportPart({ model, view }: PartProps) {
       },
       madeFrom(view, method),
     );
+  const canMake = analysis !== null && analysis.refusal === null;
+  useEffect(() => {
+    // Who opens this part wants the report; whoever stops it has it begun by hand again.
+    if (canMake && !model.reportOpened) {
+      model.reportOpened = true;
+      void make();
+    }
+  }, [model, canMake]);
   if (failure !== null) {
     return (
       <p class="study-refusal" role="alert">
