@@ -2,9 +2,11 @@ import { performance } from "node:perf_hooks";
 import type { GuideRef } from "#main/engine/tasks.ts";
 import type { TraceContexts } from "#main/engine/trace-contexts.ts";
 import type { GuidePreviewAnswer } from "#shared/api/engine.ts";
+import { isTautlineError } from "#shared/errors.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
 import { type GuideFronts, growGuideFronts, isAwaited, openGuideFronts } from "#shared/tracing/guide/guide-fronts.ts";
 import { previewGuide } from "#shared/tracing/guide/guide-preview.ts";
+import { type StopSignal, stoppable } from "#shared/tracing/stop-switch.ts";
 import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 
 /** How long a preview may wait for each front, finest first; together well under what feels slow. */
@@ -43,29 +45,25 @@ export class GuideSessions {
     return this.#session !== null && isAwaited(this.#session.guide);
   }
 
-  open(store: number, pyramid: VoxelPyramid, ref: GuideRef): Session {
+  open(store: number, pyramid: VoxelPyramid, ref: GuideRef, signal: StopSignal): Session {
     if (this.#session && this.#name === ref.session) return this.#session;
     // Let go before the next fronts are made, so that both are not held at once.
     this.#session = null;
     const context = this.#contexts.of(store, pyramid, ref.parameters.polarity);
-    this.#session = { guide: openGuideFronts(context, ref.from, this.#bytes, ref.impassable), store, growing: true };
+    const open = () => openGuideFronts(context, ref.from, this.#bytes, ref.impassable);
+    this.#session = { guide: stoppable(context.stop, signal, open), store, growing: true };
     this.#name = ref.session;
     return this.#session;
   }
 
-  preview(
-    store: number,
-    pyramid: VoxelPyramid,
-    ref: GuideRef,
-    to: PointMm,
-    signal: { readonly aborted: boolean },
-  ): GuidePreviewAnswer {
-    const { guide } = this.open(store, pyramid, ref);
+  preview(store: number, pyramid: VoxelPyramid, ref: GuideRef, to: PointMm, signal: StopSignal): GuidePreviewAnswer {
+    const { guide } = this.open(store, pyramid, ref, signal);
     const until: number[] = [];
-    return previewGuide(guide, to, (front) => {
+    const isLate = (front: number) => {
       until[front] ??= performance.now() + (PATIENCE_MS[front] ?? 0);
       return signal.aborted || performance.now() > until[front]!;
-    });
+    };
+    return stoppable(guide.context.stop, signal, () => previewGuide(guide, to, isLate));
   }
 
   /** Lets go of the fronts' memory; they grow anew when the session is used again. */
@@ -74,13 +72,20 @@ export class GuideSessions {
   }
 
   /** Lets the fronts grow for some milliseconds, or until `signal`. */
-  grow(signal: { readonly aborted: boolean }): void {
+  grow(signal: StopSignal): void {
     const session = this.#session;
     if (!session?.growing) return;
     const until = performance.now() + SLICE_MS;
     // A fault stops the growth; the next preview meets it again and reports it to the person who asked.
     session.growing = false;
-    session.growing = growGuideFronts(session.guide, () => signal.aborted || performance.now() > until);
+    const isOver = () => signal.aborted || performance.now() > until;
+    try {
+      session.growing = stoppable(session.guide.context.stop, signal, () => growGuideFronts(session.guide, isOver));
+    } catch (error) {
+      // Called away in the middle of a ridge tile: it grows on later.
+      session.growing = isTautlineError(error, "cancelled");
+      if (!session.growing) throw error;
+    }
   }
 
   close(session: string): void {

@@ -1,6 +1,8 @@
+import { isTautlineError } from "#shared/errors.ts";
 import type { PointMm } from "#shared/geometry/types.ts";
 import { localToIndex, toLocal } from "#shared/tracing/local-frame.ts";
 import { RIDGE_TILE_SIDE } from "#shared/tracing/ridge/ridge-tiles.ts";
+import { type StopSignal, stoppable } from "#shared/tracing/stop-switch.ts";
 import type { TraceContext } from "#shared/tracing/trace-context.ts";
 
 /** Most tiles of a coarse level that are made for a whole scan; larger levels are left to the pins. */
@@ -61,10 +63,18 @@ export class RidgesAhead {
     this.#around = tiles.sort((a, b) => b.away - a.away);
   }
 
-  /** Makes the next tile. */
-  makeNext(): void {
-    const tile = this.#around.pop() ?? this.#warm.pop();
-    tile?.context.ridges.tile(tile.level, ...tile.at);
+  /** Makes the next tile; when called away meanwhile, it stays the next one. */
+  makeNext(signal: StopSignal): void {
+    const list = this.#around.length > 0 ? this.#around : this.#warm;
+    const tile = list.pop();
+    if (tile === undefined) return;
+    const { context, level, at } = tile;
+    try {
+      stoppable(context.stop, signal, () => context.ridges.tile(level, ...at));
+    } catch (error) {
+      if (!isTautlineError(error, "cancelled")) throw error;
+      list.push(tile);
+    }
   }
 
   forget(): void {

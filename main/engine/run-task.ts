@@ -13,6 +13,7 @@ import { TautlineError } from "#shared/errors.ts";
 import { snap } from "#shared/tracing/guide/snap.ts";
 import { searchLevel } from "#shared/tracing/overlooked/search-block.ts";
 import { solveStrand } from "#shared/tracing/solve-strand.ts";
+import { stoppable } from "#shared/tracing/stop-switch.ts";
 import type { TracedCurve } from "#shared/tracing/strand-request.ts";
 import { scanHistogram } from "#shared/volume/scan-histogram.ts";
 import { section } from "#shared/volume/section.ts";
@@ -68,7 +69,7 @@ export class TaskRunner {
       case "snap": {
         const request = input as Input<"snap">;
         const context = this.#contexts.of(store.number, pyramid, request.polarity);
-        const found = snap(context, request, signal);
+        const found = stoppable(context.stop, signal, () => snap(context, request, signal));
         this.ridges.around(context, request.at);
         return found;
       }
@@ -102,7 +103,7 @@ export class TaskRunner {
         this.ridges.warm(this.#contexts.of(store.number, pyramid, store.polarity), (input as Input<"warm">).backwards);
         return null;
       case "open-guide":
-        this.guides.open(store.number, pyramid, input as Input<"open-guide">);
+        this.guides.open(store.number, pyramid, input as Input<"open-guide">, signal);
         return null;
       case "preview-guide": {
         const { guide, to } = input as Input<"preview-guide">;

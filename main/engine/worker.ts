@@ -43,7 +43,7 @@ function idle(): void {
   try {
     if (runner.guides.growing) runner.guides.grow(signal);
     else if (runner.planes.busy) runner.planes.fetch(signal);
-    else runner.ridges.makeNext();
+    else runner.ridges.makeNext(signal);
   } catch (error) {
     // Nobody asked for this work: the request that needs it meets the same error and reports it.
     if (!isTautlineError(error)) console.error(error);

@@ -26,6 +26,9 @@ export interface RidgeTile {
   readonly scale: Uint8Array;
 }
 
+/** Unfinished tiles kept: what a moving pointer, a guide and work ahead may be at in turns. */
+const MOST_BEGUN = 4;
+
 /** Gives ridge tiles; the same tile is the same numbers, however and whenever it was made, so any cache may stand between. */
 export interface RidgeTiles {
   readonly polarity: Polarity;
@@ -84,8 +87,8 @@ export function createRidgeTiles(
   const ownTiles = Math.floor(keepTiles * (store ? OWN_BESIDE_STORE : 0.5));
   const kept = new KeptTiles(keepTiles - ownTiles);
   const own = new KeptTiles(ownTiles);
-  /** The tile that was being made when the work was stopped, and the number of its scales that are in it. */
-  let begun: (OwnAnswer & { readonly key: string; readonly done: number }) | null = null;
+  /** Tiles that were being made when the work was stopped, and the number of their scales that are in them. */
+  const begun = new Map<string, OwnAnswer & { readonly done: number }>();
 
   const scales = (level: number) => {
     const known = scalesOfLevel.get(level);
@@ -143,15 +146,16 @@ export function createRidgeTiles(
     scale: Uint8Array,
   ): void => {
     let done = 0;
-    if (begun?.key === key) {
-      strength.set(begun.strength);
-      scale.set(begun.scale);
-      done = begun.done;
+    const before = begun.get(key);
+    if (before) {
+      strength.set(before.strength);
+      scale.set(before.scale);
+      done = before.done;
     } else {
       strength.fill(0);
       scale.fill(here[0]!);
     }
-    begun = null;
+    begun.delete(key);
     // Only what lies inside the level is computed: on coarse levels that is often a small part of a tile.
     const { size: whole } = pyramid.levels[level]!;
     const n = RIDGE_TILE_SIDE;
@@ -190,7 +194,8 @@ export function createRidgeTiles(
         }
       done++;
       if (done < here.length && stop.signal?.aborted) {
-        begun = { key, done, strength: strength.slice(), scale: scale.slice() };
+        begun.set(key, { done, strength: strength.slice(), scale: scale.slice() });
+        if (begun.size > MOST_BEGUN) begun.delete(begun.keys().next().value!);
         checkStop(stop);
       }
     }

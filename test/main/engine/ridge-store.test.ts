@@ -92,7 +92,7 @@ describe("Ridges made ahead", () => {
     ahead.around(context, pointMm(1.7, 1.7, 1.7));
     let steps = 0;
     while (ahead.busy && steps < 1000) {
-      ahead.makeNext();
+      ahead.makeNext({ aborted: false });
       steps++;
     }
     expect(ahead.busy).toBe(false);

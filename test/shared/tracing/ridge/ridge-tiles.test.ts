@@ -1,7 +1,9 @@
 import { describe, expect, it } from "vitest";
+import { isTautlineError } from "#shared/errors.ts";
 import { extendedPyramid } from "#shared/tracing/extended-pyramid.ts";
 import { createRidgeTiles } from "#shared/tracing/ridge/ridge-tiles.ts";
 import { allSigmasMm, radiusOfSigma, ridgeScales, sigmaVoxels } from "#shared/tracing/ridge/scales.ts";
+import type { StopSwitch } from "#shared/tracing/stop-switch.ts";
 import { plainGrid } from "#shared/volume/grid.ts";
 import { memoryPyramid } from "#shared/volume/memory-pyramid.ts";
 import { drawTubes, line, seeded } from "#test/shared/tracing/tube-phantom.ts";
@@ -43,6 +45,23 @@ describe("ridge tiles", () => {
     [...places].reverse().forEach(([i, j, k], n) => {
       expect(forgetful.tile(0, i, j, k).strength).toEqual(first[places.length - 1 - n]);
     });
+  });
+
+  it("are the same numbers when the work is called away after every scale, and come to an end", () => {
+    const stop: StopSwitch = { signal: null };
+    const tiles = createRidgeTiles(pyramid, "bright", 64, null, stop);
+    stop.signal = { aborted: true };
+    let [given, calledAway]: [Float32Array | null, number] = [null, 0];
+    while (given === null)
+      try {
+        given = tiles.tile(0, 1, 1, 0).strength;
+      } catch (error) {
+        expect(isTautlineError(error, "cancelled")).toBe(true);
+        calledAway++;
+        expect(calledAway).toBeLessThan(200);
+      }
+    expect(calledAway).toBeGreaterThan(tiles.scales(0).length / 2);
+    expect(given).toEqual(createRidgeTiles(pyramid, "bright").tile(0, 1, 1, 0).strength);
   });
 
   it("have no seams: neighbouring tiles equal one another's scan moved by whole tiles", () => {
