@@ -86,6 +86,7 @@ export function analysisAnswer(study: StudyRecord): AnalysisAnswer {
   if (waived > 0) notes.push(`The days between repeats were waived for ${waived} packets.`);
   const late = study.protocols.slice(1).filter(({ frozen }) => frozen).length;
   if (late > 0) notes.push(`The protocol was changed ${late} times after it was first frozen.`);
+  notes.push(...clocksBack(study));
   return {
     refusal: refusalOf(study, passes),
     protocol: current.frozen && { version: current.version, sha256: current.frozen.sha256 },
@@ -94,6 +95,18 @@ export function analysisAnswer(study: StudyRecord): AnalysisAnswer {
     awaited,
     notes,
   };
+}
+
+/** Sentences on repeats that were drawn before the pass before by the annotator's own clock: the days between are not known. */
+function clocksBack({ assignments, specimens }: StudyRecord): string[] {
+  return assignments.flatMap(({ annotator, specimen, pass, returned }) => {
+    const before = assignments.find((one) => one.annotator === annotator && one.specimen === specimen && one.pass === pass - 1);
+    if (!returned?.drawn || !before?.returned?.drawn || returned.drawn.from >= before.returned.drawn.to) return [];
+    const name = specimens.find(({ id }) => id === specimen)?.name ?? specimen;
+    return [
+      `By ${annotator}'s own clock, pass ${pass} over ${name} was drawn before pass ${pass - 1}: the days between them are not known.`,
+    ];
+  });
 }
 
 function refusalOf(study: StudyRecord, passes: AnalysisAnswer["passes"]): string | null {

@@ -1,4 +1,4 @@
-import { basename } from "node:path";
+import { basename, isAbsolute } from "node:path";
 import type { PacketPort } from "#main/http/ports.ts";
 import type { Abilities } from "#main/node/abilities.ts";
 import { readOrTell } from "#main/node/disk-fault.ts";
@@ -46,10 +46,15 @@ export function packets(options: PacketsOptions): PacketPort & {
       }
     };
   };
-  const open = (path: string): Promise<OpenBag> =>
-    openBag(files, path).catch((error) => {
+  const open = async (path: string): Promise<OpenBag> => {
+    if (!isAbsolute(path)) {
+      const what = "a whole path was expected";
+      throw new TautlineError("bad-request", `The packet cannot be opened: ${what}.`, { what, where: "body.path" });
+    }
+    return openBag(files, path).catch((error) => {
       throw hideFolders(systemFault(error, path), path);
     });
+  };
 
   return {
     async makePackets(study, request) {

@@ -86,8 +86,8 @@ export function studies(options: StudiesOptions): StudyPort {
     study: async (id) => view(await store.read(id)),
     change: (id, patch) =>
       change(id, async (study) => {
-        const own = study.specimens.map((one) => one.id);
-        const facts = await factsOf([...new Set([...own, ...(patch.specimens ?? []), ...(patch.training ?? [])])]);
+        const own = (training: boolean) => study.specimens.filter((one) => one.training === training).map(({ id: one }) => one);
+        const facts = await factsOf([...(patch.specimens ?? own(false)), ...(patch.training ?? own(true))]);
         return changedStudy(study, patch, facts, now());
       }),
     async remove(id) {

@@ -12,15 +12,9 @@ import { analysisAnswer } from "#shared/study/study-view.ts";
  * @throws conflict while the analysis is refused, with the sentence why
  */
 export async function studyFiles(library: Library, study: StudyRecord, softwareVersion: string): Promise<StudyFile[]> {
-  const { refusal, passes, protocol } = analysisAnswer(study);
-  if (refusal !== null || protocol === null) {
-    const sentence = refusal ?? "The protocol is not frozen.";
-    throw new TautlineError("conflict", sentence, {
-      what: "analysis",
-      expected: "a frozen protocol and passes",
-      found: sentence,
-    });
-  }
+  const { refusal, passes } = analysisAnswer(study);
+  if (refusal !== null)
+    throw new TautlineError("conflict", refusal, { what: "analysis", expected: "a frozen protocol and passes", found: refusal });
   const files: StudyFile[] = [];
   for (const { assignment, specimen: id, annotator, pass } of passes) {
     const { returned } = study.assignments.find((one) => one.id === assignment)!;
@@ -30,12 +24,19 @@ export async function studyFiles(library: Library, study: StudyRecord, softwareV
     const created = new Date(history.changed).toISOString();
     const header = {
       ...headerOfSpecimen(specimen, { annotator, pass, created, softwareVersion }),
-      protocol: { id: study.id, version: protocol.version, sha256: protocol.sha256 },
+      protocol: drawnUnder(study, returned!.protocolVersion),
     };
-    const name = `${[specimen.name, annotator, String(pass)].map(plainName).join("-")}.chordae.json`;
+    const stem = [specimen.name, annotator, String(pass)].map(plainName).join("-");
+    // Two specimens may go by one name.
+    const taken = files.some((one) => one.name === `${stem}.chordae.json`);
+    const name = `${taken ? `${stem}-${plainName(id)}` : stem}.chordae.json`;
     files.push({ name, file: fileFromDocument(history.document, header) });
   }
   return files;
+}
+
+function drawnUnder({ id, protocols }: StudyRecord, version: number) {
+  return { id, version, sha256: protocols.find((one) => one.version === version)?.frozen?.sha256 ?? "" };
 }
 
 function plainName(name: string): string {

@@ -3,6 +3,8 @@ import { mkdtemp, readdir, readFile, rm } from "node:fs/promises";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
+import { readTreeFile } from "#main/cli/read-tree-file.ts";
+import { studyOf } from "#shared/agreement/study/study.ts";
 import type { SpecimenRecord } from "#shared/api/specimen.ts";
 import type { AssignmentCell, StudyView } from "#shared/api/study.ts";
 import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
@@ -306,6 +308,14 @@ describe("the passes that came back", () => {
       expect(JSON.stringify(file)).not.toContain(code);
     }
     expect(files.map(({ file }) => file.pass).sort()).toEqual([1, 1, 2]);
+    // The command line's reading of the same files: sorted by scan, annotator and pass.
+    const { written } = await lead.studies.exportPasses(study.id, { folder: join(folder, "exported") });
+    const read = await Promise.all(written.map(async (name) => ({ name, file: await readTreeFile(name) })));
+    const sorted = studyOf(read, 0.3, null);
+    expect(sorted.warnings).toEqual([]);
+    expect(sorted.specimens.map((one) => [one.name, one.passes.map(({ pass: number }) => number)]).sort()).toEqual(
+      specimens.map(({ name, id: one }) => [name, one === specimen ? [1, 2] : [1]]).sort(),
+    );
   });
 });
 
