@@ -1,3 +1,4 @@
+import { basename } from "node:path";
 import { COMPARE_HELP, COMPARE_OPTIONS } from "#main/cli/compare-options.ts";
 import { realOption, wholeOption } from "#main/cli/number-option.ts";
 import { readTreeFile } from "#main/cli/read-tree-file.ts";
@@ -124,7 +125,11 @@ function writeText(path: string, text: string): Promise<void> {
 }
 
 function readAll(paths: readonly string[]): Promise<StudyFile[]> {
-  return Promise.all([...new Set(paths)].map(async (name) => ({ name, file: await readTreeFile(name) })));
+  const all = [...new Set(paths)];
+  const names = all.map((path) => basename(path));
+  // A file goes by its name alone where no other has it: a report is no place for the folders of a computer.
+  const nameOf = (path: string, k: number) => (names.indexOf(names[k]!) === names.lastIndexOf(names[k]!) ? names[k]! : path);
+  return Promise.all(all.map(async (path, k) => ({ name: nameOf(path, k), file: await readTreeFile(path) })));
 }
 
 function misuse(what: string): TautlineError<"misuse"> {

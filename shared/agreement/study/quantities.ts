@@ -80,8 +80,8 @@ export function matchedRows(specimen: StudySpecimen, items: SpecimenItems, compa
   ];
 }
 
-/** Mean radius along canonical strands, weighted by the length of those that have one. */
-function meanRadius(pass: StudyPass, strands: readonly number[]): number | null {
+/** Mean radius along canonical strands, weighted by the length of those that have one, millimetres; null where none has. @param strands indices of the pass's strands */
+export function meanRadius(pass: StudyPass, strands: readonly number[]): number | null {
   const wanted = new Set(
     strands.flatMap((k) => {
       const { tree, strand } = pass.canonical.strands[k]!;
