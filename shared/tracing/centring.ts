@@ -1,8 +1,11 @@
 import { type CrossPatch, createCrossPatch } from "#shared/tracing/cross-patch.ts";
 import { crossSection, samplePatchInto } from "#shared/tracing/cross-section.ts";
+import { freeCircle, TOUCHED } from "#shared/tracing/edge-circle.ts";
 import { arcLengths, interpolateAlong, resample, tangents } from "#shared/tracing/polyline.ts";
+import { edgesOf, levelsOf, sampleRays } from "#shared/tracing/radial-profiles.ts";
 import type { Sampler } from "#shared/tracing/sampler.ts";
 import { smoothInto } from "#shared/tracing/smooth.ts";
+import { checkStop, type StopSwitch } from "#shared/tracing/stop-switch.ts";
 
 /** Planes averaged to each side of the cutting plane. */
 const SLICES = 1;
@@ -22,6 +25,8 @@ export interface CentredCurve {
   readonly radii: Float64Array;
   /** shape [n]; the largest radius the string may have. */
   readonly widestMm: Float64Array;
+  /** shape [n], 0 to 1; share of the rays that run into a neighbour (see `measureHalfWidths`); 0 = none, or not known. */
+  readonly contact: Float64Array;
 }
 
 export interface CentringOptions {
@@ -36,17 +41,19 @@ export interface CentringOptions {
   readonly zonesMm: readonly [number, number];
   /** shape [m, 3]; the path that was found: places far from it belong to another string. */
   readonly path: Float64Array;
+  readonly stop: StopSwitch;
 }
 
 /**
  * The curve moved to the middle of its string: at each point a plane normal to the tangent, in it the maximum of the image
  * smoothed at half a radius (a Newton search of bounded step), then a smooth curve through the maxima, weighted by
- * how clearly each stands out; repeated. The ends stay where they are.
+ * how clearly each stands out; repeated. Where a neighbour touches, which draws the maximum towards it, the middle is that of the
+ * circle through the free side's edges. The ends stay where they are.
  * @source own derivation on Lindeberg 1998 (ridges of the image at scale r / sqrt 2) and penalised smoothing.
  */
 export function centreCurve(sampler: Sampler, start: CentredCurve, options: CentringOptions): CentredCurve {
   const patch = createCrossPatch();
-  let { points, radii, widestMm } = start;
+  let { points, radii, widestMm, contact } = start;
   for (let round = 0; round < options.rounds; round++) {
     const n = points.length / 3;
     const directions = tangents(points);
@@ -60,7 +67,11 @@ export function centreCurve(sampler: Sampler, start: CentredCurve, options: Cent
     for (let i = 0; i < n; i++) {
       lambdas[i] = (smoothingLength(radii[i]!, options.stepMm) / step) ** 4;
       if (i === 0 || i === n - 1) continue;
-      weights[i] = centreAt(sampler, points, directions, i, radii[i]!, share, options, patch, targets);
+      checkStop(options.stop);
+      weights[i] =
+        contact[i]! >= TOUCHED
+          ? centreBesideNeighbour(sampler, points, directions, i, radii[i]!, options.sign, targets)
+          : centreAt(sampler, points, directions, i, radii[i]!, share, options, patch, targets);
       if (!isNear(options.path, targets, i, FARTHEST_RADII * radii[i]! + options.stepMm)) weights[i] = 0;
       if (arc[i]! < options.zonesMm[0] || length - arc[i]! < options.zonesMm[1]) weights[i] = weights[i]! * IN_ZONE;
     }
@@ -70,9 +81,10 @@ export function centreCurve(sampler: Sampler, start: CentredCurve, options: Cent
     const to = arcLengths(next);
     radii = interpolateAlong(from, radii, to);
     widestMm = interpolateAlong(from, widestMm, to);
+    contact = interpolateAlong(from, contact, to);
     points = next;
   }
-  return { points, radii, widestMm };
+  return { points, radii, widestMm, contact };
 }
 
 /** Weight of what is seen inside a fork: next to nothing, so that the strand runs on smoothly from where it is clear to its node. */
@@ -97,9 +109,12 @@ function isNear(path: Float64Array, targets: Float64Array, i: number, distanceMm
   return false;
 }
 
-/** How far smoothing reaches along the curve: about a radius, and never less than two voxels. */
+/**
+ * How far smoothing reaches along the curve: half a radius (a thick string's middle is little moved by noise, and its bends are not
+ * to be cut), and never less than two voxels.
+ */
 function smoothingLength(radiusMm: number, stepMm: number): number {
-  return Math.max(1.2 * radiusMm, 2.5 * stepMm);
+  return Math.max(0.6 * radiusMm, 2.5 * stepMm);
 }
 
 /** True when a third of the curve or more runs along the bottom of a hollow at the narrow scale: a dark core. */
@@ -124,6 +139,28 @@ function isHollow(
     looked++;
   }
   return 3 * hollow >= looked && hollow > 0;
+}
+
+/** Weight of a middle found by edges beside a neighbour, and of a place kept because none was found. */
+const BY_EDGES = 0.5;
+const KEPT = 0.02;
+
+/** Writes the middle of the circle through point i's free edges into `targets`; returns its weight. */
+function centreBesideNeighbour(
+  sampler: Sampler,
+  points: Float64Array,
+  directions: Float64Array,
+  i: number,
+  radiusMm: number,
+  sign: 1 | -1,
+  targets: Float64Array,
+): number {
+  const { profiles, section } = sampleRays(sampler, points, directions, i, radiusMm, sign);
+  const { inside, outside, rimMm } = levelsOf(profiles, radiusMm);
+  const circle = freeCircle(edgesOf(profiles, (inside + outside) / 2, rimMm), profiles.spacingMm);
+  if (!circle || Math.hypot(circle.u, circle.v) > 0.8 * radiusMm + profiles.spacingMm) return KEPT;
+  for (let c = 0; c < 3; c++) targets[3 * i + c] = points[3 * i + c]! + circle.u * section.uMm[c]! + circle.v * section.vMm[c]!;
+  return BY_EDGES;
 }
 
 /** Writes the centre found about point i into `targets`; returns its weight, 0 to 1. */

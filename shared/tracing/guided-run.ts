@@ -30,7 +30,8 @@ function knotStep(context: TraceContext, radii: Float64Array): number {
  * Centres a path in its string and measures it: rounds of centring with the radii of the ridge's scales, then with the
  * measured half widths.
  * @param widestMm shape [n], the largest radius the string may have at each place of the path.
- * @param path shape [n, 3], from voxel to voxel, n >= 2. @param from, to where the curve begins and ends exactly.
+ * @param onOwnString the path is known to run along the string itself, so that what blocks rays is a neighbour.
+ * @param path shape [n, 3], n >= 2, in even steps. @param from, to where the curve begins and ends exactly.
  */
 export function centrePath(
   context: TraceContext,
@@ -39,6 +40,7 @@ export function centrePath(
   to: Vec3,
   nodeRadiiMm: readonly [number, number],
   widestMm: Float64Array,
+  onOwnString: boolean,
   fwhmMm: number | null,
 ): MeasuredCurve {
   const level = context.workingLevel;
@@ -77,18 +79,23 @@ export function centrePath(
     stepMm,
     zonesMm: nodeZones(arc, steady, nodeRadiiMm),
     path,
+    stop: context.stop,
   } as const;
   const least = 0.75 * finestSpacing(context.pyramid, 0);
+  const radii = interpolateAlong(arcLengths(start), steady, arcLengths(points));
   let curve = centreCurve(
     context.sampler,
     {
       points,
-      radii: interpolateAlong(arcLengths(start), steady, arcLengths(points)),
+      radii,
       widestMm: interpolateAlong(arcLengths(start), widestMm, arcLengths(points)),
+      contact: onOwnString
+        ? measureHalfWidths(context.sampler, points, radii, context.sign).contact
+        : new Float64Array(points.length / 3),
     },
     { ...options, rounds: 3 },
   );
-  const first = measureHalfWidths(context.sampler, curve.points, curve.radii, context.sign);
+  const first = measureHalfWidths(context.sampler, curve.points, curve.radii, context.sign, context.stop);
   const half = Math.max(3, Math.round(medianOf([...curve.radii]) / stepMm));
   const measured = runningMedian(first.halfWidths, 2 * half);
   const refined = curve.radii.map((guess, i) =>
@@ -96,8 +103,12 @@ export function centrePath(
       ? Math.max(least, Math.min(Math.max(measured[i]!, 0.5 * guess), 1.6 * guess, curve.widestMm[i]!))
       : guess,
   );
-  curve = centreCurve(context.sampler, { ...curve, radii: refined }, { ...options, rounds: 2 });
-  const final = measureHalfWidths(context.sampler, curve.points, curve.radii, context.sign);
+  curve = centreCurve(
+    context.sampler,
+    { ...curve, radii: refined, contact: onOwnString ? first.contact : curve.contact },
+    { ...options, rounds: 2 },
+  );
+  const final = measureHalfWidths(context.sampler, curve.points, curve.radii, context.sign, context.stop);
   return {
     points: curve.points,
     radii: radiiOf(final, stepMm, fwhmMm),
@@ -142,8 +153,8 @@ export function radiiAlong(context: TraceContext, points: Float64Array, fwhmMm: 
   const stepMm = knotStep(context, guesses(points));
   const knots = resample(points, stepMm);
   let radii = runningMedian(guesses(knots), 6);
-  const first = runningMedian(measureHalfWidths(context.sampler, knots, radii, context.sign).halfWidths, 4);
+  const first = runningMedian(measureHalfWidths(context.sampler, knots, radii, context.sign, context.stop).halfWidths, 4);
   radii = radii.map((guess, i) => (Number.isFinite(first[i]!) ? Math.min(Math.max(first[i]!, 0.5 * guess), 1.6 * guess) : guess));
-  const measured = radiiOf(measureHalfWidths(context.sampler, knots, radii, context.sign), stepMm, fwhmMm);
+  const measured = radiiOf(measureHalfWidths(context.sampler, knots, radii, context.sign, context.stop), stepMm, fwhmMm);
   return interpolateAlong(arcLengths(knots), measured, arcLengths(points));
 }

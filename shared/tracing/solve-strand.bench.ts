@@ -67,7 +67,7 @@ export function bench(print: (line: string) => void, cpuMs: () => number): void 
   const widest = new Float64Array(path.length / 3).fill(expected.widestRadiusMm);
   for (const round of ["first", "second", "third"]) {
     start = cpuMs();
-    const curve = centrePath(context, path, from, to, [pin.radiusMm, pin.radiusMm], widest, parameters.blurFwhmMm);
+    const curve = centrePath(context, path, from, to, [pin.radiusMm, pin.radiusMm], widest, true, parameters.blurFwhmMm);
     const checksum = curve.points.reduce((a, b) => a + b, 0) + curve.radii.filter(Number.isFinite).reduce((a, b) => a + b, 0);
     print(`centring and radius of 15 mm, ${round} time  ${(cpuMs() - start).toFixed(0)} ms  checksum ${checksum.toFixed(6)}`);
   }

@@ -3,13 +3,15 @@ import { roundMm, type Vec3 } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
 import { centrePath, type MeasuredCurve, radiiAlong } from "#shared/tracing/guided-run.ts";
 import { meanFit } from "#shared/tracing/image-fit.ts";
-import { type LegPath, legPath } from "#shared/tracing/leg-path.ts";
+import { legPath } from "#shared/tracing/leg-path.ts";
 import { fromLocal, localToIndex, toLocal } from "#shared/tracing/local-frame.ts";
+import { ownStringPath } from "#shared/tracing/own-string/own-string-path.ts";
 import { passNearPin } from "#shared/tracing/pass-near-pin.ts";
 import { followableStrength, type PinRidge, ridgeAtVoxel, ridgeNearPin } from "#shared/tracing/pin-ridge.ts";
 import { arcLengths, interpolateAlong, resample } from "#shared/tracing/polyline.ts";
+import { type StopSignal, stopIfTracingStopped, stoppable } from "#shared/tracing/stop-switch.ts";
 import type { StrandRequest, TracedCurve, TraceParameters } from "#shared/tracing/strand-request.ts";
-import { createTraceContext, type StopSignal, type TraceContext } from "#shared/tracing/trace-context.ts";
+import { createTraceContext, type TraceContext } from "#shared/tracing/trace-context.ts";
 import type { MadeBy } from "#shared/trees/document.ts";
 import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 
@@ -43,6 +45,16 @@ export function solveStrand(
   signal: StopSignal = { aborted: false },
   context: TraceContext = createTraceContext(pyramid, parameters.polarity),
 ): TracedCurve {
+  return stoppable(context.stop, signal, () => solve(pyramid, request, parameters, signal, context));
+}
+
+function solve(
+  pyramid: VoxelPyramid,
+  request: StrandRequest,
+  parameters: TraceParameters,
+  signal: StopSignal,
+  context: TraceContext,
+): TracedCurve {
   const pins = [request.from, ...request.via, request.to];
   const legs = request.legs ?? pins.slice(1).map(() => "guide" as const);
   if (legs.length !== pins.length - 1) {
@@ -52,7 +64,7 @@ export function solveStrand(
   const local = pins.map((pin) => toLocal(pyramid.grid, pin));
   const outStepMm = Math.min(...pyramid.grid.spacing) / 2;
   let followed = true;
-  const paths: (LegPath | "straight")[] = [];
+  const paths: (FollowedLeg | "straight")[] = [];
   const ridges = local.map((pin, i) =>
     legs[i] === "guide" || legs[i - 1] === "guide" ? ridgeNearPin(context, context.workingLevel, pin) : null,
   );
@@ -62,7 +74,7 @@ export function solveStrand(
       continue;
     }
     const path = guidedLeg(context, local, ridges, legs, leg, signal);
-    stopIfAborted(signal);
+    stopIfTracingStopped(signal);
     if (!path) followed = false;
     paths.push(path ?? "straight");
   }
@@ -75,18 +87,22 @@ export function solveStrand(
     }
     let end = leg;
     while (end < paths.length && paths[end] !== "straight") end++;
-    stretches.push(guidedStretch(context, local, ridges, paths.slice(leg, end) as Float64Array[], leg, parameters, outStepMm));
-    stopIfAborted(signal);
+    stretches.push(guidedStretch(context, local, ridges, paths.slice(leg, end) as FollowedLeg[], leg, parameters, outStepMm));
+    stopIfTracingStopped(signal);
     leg = end;
   }
   return assemble(pyramid, request, stretches, followed);
 }
 
-function stopIfAborted(signal: StopSignal): void {
-  if (signal.aborted) throw new TautlineError("cancelled", "Tracing was stopped.", { what: "trace" });
+/** A guided leg as it was followed. */
+interface FollowedLeg {
+  /** shape [n, 3], millimetres along the voxel axes. */
+  readonly points: Float64Array;
+  /** shape [n]; about the radius of the leg's own string, millimetres, Infinity where not known; null when none was seen. */
+  readonly radii: Float64Array | null;
 }
 
-/** The path of one guided leg, or null when the image does not show a string between its pins. */
+/** One guided leg, or null when the image does not show a string between its pins. */
 function guidedLeg(
   context: TraceContext,
   local: readonly Vec3[],
@@ -94,7 +110,7 @@ function guidedLeg(
   legs: readonly string[],
   leg: number,
   signal: StopSignal,
-): LegPath {
+): FollowedLeg | null {
   // Pins between two guided legs only show the way; nodes and pins beside a straight leg are where the path must begin.
   const anchor = (pin: number, otherLeg: number): Vec3 => (legs[otherLeg] === "guide" ? ridges[pin]!.at : local[pin]!);
   const from = anchor(leg, leg - 1);
@@ -107,8 +123,10 @@ function guidedLeg(
     widestRadiusMm: a.found && b.found ? ROOM_FOR_RADIUS * Math.max(a.radiusMm, b.radiusMm) : ANY_RADIUS_MM,
   };
   const path = legPath(context, context.workingLevel, from, to, expected, signal);
-  if (!path || path.length < 6) return path && Float64Array.of(...from, ...to);
-  return followedShare(context, path) >= FOLLOWED_SHARE ? path : null;
+  if (!path) return null;
+  if (path.length < 6) return { points: Float64Array.of(...from, ...to), radii: null };
+  if (followedShare(context, path) < FOLLOWED_SHARE) return null;
+  return ownStringPath(context, path, signal) ?? { points: path, radii: null };
 }
 
 /** Share of a path's points whose ridge answer is that of a string. */
@@ -137,29 +155,30 @@ function guidedStretch(
   context: TraceContext,
   local: readonly Vec3[],
   ridges: readonly (PinRidge | null)[],
-  paths: readonly Float64Array[],
+  legs: readonly FollowedLeg[],
   firstLeg: number,
   parameters: TraceParameters,
   stepMm: number,
 ): Stretch {
-  const lastPin = firstLeg + paths.length;
-  const joined = new Float64Array(paths.reduce((sum, path) => sum + path.length, -3 * (paths.length - 1)));
+  const lastPin = firstLeg + legs.length;
+  const joined = new Float64Array(legs.reduce((sum, leg) => sum + leg.points.length, -3 * (legs.length - 1)));
   let at = 0;
-  paths.forEach((path, i) => {
-    const part = i === 0 ? path : path.subarray(3);
+  legs.forEach(({ points }, i) => {
+    const part = i === 0 ? points : points.subarray(3);
     joined.set(part, at);
     at += part.length;
   });
   const nodeRadii = [ridges[firstLeg]!.radiusMm, ridges[lastPin]!.radiusMm] as const;
-  // The widest radius at each place of the path, leg by leg, straight from pin to pin.
+  // The widest radius at each place, leg by leg: straight from pin to pin, and by what the string itself shows.
   const widest = new Float64Array(joined.length / 3);
   let place = 0;
-  paths.forEach((path, i) => {
+  legs.forEach((leg, i) => {
     const [a, b] = [ridges[firstLeg + i]!, ridges[firstLeg + i + 1]!].map((pin) =>
       pin.found ? ROOM_FOR_RADIUS * pin.radiusMm : ANY_RADIUS_MM,
     ) as [number, number];
-    const steps = path.length / 3 - 1;
-    for (let k = i === 0 ? 0 : 1; k <= steps; k++, place++) widest[place] = a + ((b - a) * k) / steps;
+    const steps = leg.points.length / 3 - 1;
+    for (let k = i === 0 ? 0 : 1; k <= steps; k++, place++)
+      widest[place] = Math.min(a + ((b - a) * k) / steps, ROOM_FOR_RADIUS * (leg.radii?.[k] ?? ANY_RADIUS_MM));
   });
   const curve: MeasuredCurve = centrePath(
     context,
@@ -168,6 +187,7 @@ function guidedStretch(
     local[lastPin]!,
     nodeRadii,
     widest,
+    legs.every((leg) => leg.radii !== null),
     parameters.blurFwhmMm,
   );
   let points = resample(curve.points, stepMm);
