@@ -24,7 +24,7 @@ export function DeskScreen({ model }: { readonly model: DeskModel }) {
   return (
     <div class="desk">
       <HeadLine model={model} context={context} />
-      <AssignmentLine model={model} />
+      <AssignmentLine model={model} context={context} />
       <WhyReadOnly model={model} />
       <PlaybackBar model={model} />
       <main class="desk-panes">

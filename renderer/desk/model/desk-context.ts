@@ -1,4 +1,5 @@
 import { setTheme, theme } from "#renderer/app/theme-choice.ts";
+import { handBack } from "#renderer/desk/model/assignment.ts";
 import type { DeskModel, SheetName } from "#renderer/desk/model/desk-model.ts";
 import { setPassState } from "#renderer/desk/model/finish-pass.ts";
 import { stepFinding } from "#renderer/desk/model/go-to-finding.ts";
@@ -39,6 +40,9 @@ export function deskContext(model: DeskModel): DeskContext {
       toggleTheme: () => setTheme(theme.value === "dark" ? "light" : "dark"),
       backToShelf: () => services.goTo({ screen: "shelf" }),
       finishPass: () => void setPassState(model, model.pass.value.state === "finished" ? "under-way" : "finished"),
+      isAssignment: () => model.assignment.value !== null,
+      openRules: open("rules"),
+      handBack: () => void handBack(model),
       setRadius: (at) => openRadiusSheet(model, at),
       playBack: () => playBack(model, null),
       stepFinding: (by) => stepFinding(model, by),

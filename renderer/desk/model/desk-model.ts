@@ -1,5 +1,6 @@
 import { computed, effect, type ReadonlySignal, type Signal, signal } from "@preact/signals";
 import type { Services } from "#renderer/app/services.ts";
+import { findAssignment } from "#renderer/desk/model/assignment.ts";
 import { type ShownFinding, shownFindings } from "#renderer/desk/model/findings.ts";
 import { type LineFacts, lineFacts, selectedLine } from "#renderer/desk/model/line-facts.ts";
 import { OverlookedModel } from "#renderer/desk/model/overlooked-model.ts";
@@ -13,6 +14,7 @@ import { Editor } from "#renderer/editor/editor.ts";
 import type { PassKeeper } from "#renderer/editor/session/pass-keeper.ts";
 import type { RecoveredEdits, RecoveredLogs } from "#renderer/storage/recovered-logs.ts";
 import type { PassSummary, SpecimenRecord } from "#shared/api/specimen.ts";
+import type { AssignmentView } from "#shared/api/study.ts";
 import { arcLengths } from "#shared/geometry/polyline.ts";
 import { type Measures, measureTrees } from "#shared/measure/measure-trees.ts";
 import type { TraceParameters } from "#shared/tracing/strand-request.ts";
@@ -30,7 +32,9 @@ export type SheetName =
   | "rename"
   | "dismiss"
   | "upright"
-  | "radius";
+  | "radius"
+  | "rules"
+  | "open-ends";
 
 /** What the side panel lists. */
 export type SideTab = "trees" | "findings" | "overlooked";
@@ -57,6 +61,8 @@ export class DeskModel {
   readonly historyShown = signal(false);
   /** Where the radius sheet sets a radius. */
   readonly radiusPlace: Signal<PlaceOnStrand | null> = signal(null);
+  /** What an assignment of a study is drawn by; null for any other pass. */
+  readonly assignment: Signal<AssignmentView | null> = signal(null);
   readonly recoveredLogs: RecoveredLogs;
   /** Edits that this browser set aside, as last looked at. */
   readonly recovered: Signal<readonly RecoveredEdits[]> = signal([]);
@@ -118,6 +124,7 @@ export class DeskModel {
       }),
     ];
     void lookAtRecovered(this);
+    void findAssignment(this);
   }
 
   /** The line that across and along planes follow: the live guide, else the line that the strip shows. */

@@ -1,5 +1,6 @@
 import { AboutSheet } from "#renderer/app/about-sheet.tsx";
 import type { DeskModel } from "#renderer/desk/model/desk-model.ts";
+import { OpenEndsSheet, RulesSheet } from "#renderer/desk/sheets/assignment-sheets.tsx";
 import { DismissSheet } from "#renderer/desk/sheets/dismiss-sheet.tsx";
 import { ExportSheet } from "#renderer/desk/sheets/export-sheet.tsx";
 import { KeySheet } from "#renderer/desk/sheets/key-sheet.tsx";
@@ -37,6 +38,10 @@ export function DeskSheets({ model, context }: { readonly model: DeskModel; read
       return <DismissSheet {...props} />;
     case "radius":
       return <RadiusSheet {...props} />;
+    case "rules":
+      return <RulesSheet {...props} />;
+    case "open-ends":
+      return <OpenEndsSheet {...props} />;
     case "upright":
       return <UprightSheet {...props} />;
     case "mark":

@@ -21,6 +21,11 @@ export interface ScreenControl {
   readonly setRadius: (at: { readonly strand: StrandId; readonly near: PointMm } | null) => void;
   /** Plays the history back, from the beginning; goes on or rests while it is played. */
   readonly playBack: () => void;
+  /** The pass is an assignment of a study. */
+  readonly isAssignment: () => boolean;
+  /** The rules that an assignment is drawn by. */
+  readonly openRules: () => void;
+  readonly handBack: () => void;
   readonly nameMark: () => void;
   readonly renameTree: () => void;
   /** The next (+1) or previous (-1) finding. */

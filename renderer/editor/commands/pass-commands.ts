@@ -113,6 +113,22 @@ export const PASS_COMMANDS: readonly Command<DeskContext>[] = [
     perform: ({ screen }) => screen.finishPass(),
   },
   {
+    name: "rules",
+    group: "Pass",
+    label: "Rules of the assignment",
+    keys: [],
+    enabled: ({ screen }) => screen.isAssignment(),
+    perform: ({ screen }) => screen.openRules(),
+  },
+  {
+    name: "hand-back",
+    group: "Pass",
+    label: "Hand the assignment back",
+    keys: [],
+    enabled: (context) => context.screen.isAssignment() && isOurs(context) && !isPlaying(context),
+    perform: ({ screen }) => screen.handBack(),
+  },
+  {
     name: "shelf",
     group: "Pass",
     label: "Back to the shelf",
