@@ -11,6 +11,7 @@ import type { TraceParameters } from "#shared/tracing/strand-request.ts";
 import { type GrownString, growString } from "#shared/tracing/strings/grow-string.ts";
 import { leastStrength } from "#shared/tracing/strings/least-strength.ts";
 import { outwardBranches } from "#shared/tracing/strings/outward.ts";
+import { partContacts, withoutInnerSpurs } from "#shared/tracing/strings/part-contacts.ts";
 import { createStringField, type StringField, type StringPoint } from "#shared/tracing/strings/string-field.ts";
 import { type ThinPath, thinTree } from "#shared/tracing/strings/thin-tree.ts";
 import type { StopSignal, TraceContext } from "#shared/tracing/trace-context.ts";
@@ -72,8 +73,13 @@ export function* followString(
     yield { lines: () => thinLines(grown, scan, voxelMm) };
   }
   const points = placed(grown);
-  const paths = thinTree(points, SHORTEST_VOXELS * voxelMm);
-  if (paths.length === 0) return null;
+  const thin = withoutInnerSpurs(thinTree(points, SHORTEST_VOXELS * voxelMm), points.places, points.radii);
+  if (thin.length === 0) return null;
+  const { paths, copies, contacts } = partContacts(thin, points.places, points.radii, voxelMm);
+  for (const of of copies.values()) {
+    points.places.push(points.places[of]!);
+    points.radii.push(points.radii[of]!);
+  }
   const branches = outwardBranches(paths, nearestOnPaths(points.places, paths, click));
   const trimmed = trimBranches(context, points, branches);
   const graph = stringGraph(branches, trimmed);
@@ -81,7 +87,7 @@ export function* followString(
   placeForks(graph, voxelMm);
   const meets = meetings(graph, lines, field);
   const rough = graph.strands.map(({ places }) => flatInFrame(smoothed(places, voxelMm), scan));
-  const solving = propose(scan, context, parameters, graph, doubtfulPlaces(grown, voxelMm), click, meets, signal);
+  const solving = propose(scan, context, parameters, graph, doubtfulPlaces(grown, contacts, voxelMm), click, meets, signal);
   for (;;) {
     const step = solving.next();
     if (step.done) return step.value;
@@ -177,15 +183,20 @@ function nearestOnPaths(places: readonly Vec3[], paths: readonly ThinPath[], to:
 }
 
 /** Gaps that only brightness bridges are doubtful, where neither end is a fork's flank. */
-function doubtfulPlaces({ points, links }: GrownString, voxelMm: number): DoubtfulPlace[] {
+function doubtfulPlaces({ points, links }: GrownString, contacts: readonly Vec3[], voxelMm: number): DoubtfulPlace[] {
   const byId = new Map(points.map((point) => [point.id, point]));
-  return links.flatMap(({ a, b, bridge }): DoubtfulPlace[] => {
+  const touching = contacts.map((at): DoubtfulPlace => {
+    const nearest = points.reduce((best, point) => (distance(point.at, at) < distance(best.at, at) ? point : best));
+    return { at, reachMm: 2 * nearest.radiusMm + 2 * voxelMm, reason: "touches" };
+  });
+  const gaps = links.flatMap(({ a, b, bridge }): DoubtfulPlace[] => {
     if (!bridge) return [];
     const [one, other] = [byId.get(a)!, byId.get(b)!];
     const apart = distance(one.at, other.at);
     if (apart <= Math.max(one.radiusMm, other.radiusMm) + 2 * voxelMm) return [];
     return [{ at: mix(one.at, other.at, 0.5), reachMm: apart / 2 + voxelMm, reason: "faint" }];
   });
+  return [...gaps, ...touching];
 }
 
 /** Ends beside a traced strand, with all between them bright: node number to the number of the line. */

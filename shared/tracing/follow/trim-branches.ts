@@ -24,8 +24,10 @@ export interface PlacedPoints {
 }
 
 /** The outline is not separate any more where it is this many times as wide as it was before, and a part of a voxel besides. */
-const JOINED_WIDTH = 1.5;
-const JOINED_VOXELS = 0.75;
+const JOINED_WIDTH = 1.35;
+const JOINED_VOXELS = 0.6;
+/** Beside a fork the other arms widen the outline; there it is not separate from this many times its own width on. */
+const JOINED_FORK_WIDTH = 2.2;
 /** Outlines are looked for this far, in radii of the string, and voxels besides. */
 const REACH_RADII = 2.4;
 const REACH_VOXELS = 3;
@@ -39,6 +41,8 @@ const BEYOND_RADII = 3;
 const BEYOND_VOXELS = 4;
 /** The string has faded where less than this share of its excess is left. */
 const FADED_SHARE = 0.45;
+/** How deep into the tissue at an end is looked. */
+const DEEPEST_MM = 3;
 
 /**
  * Cuts branches at the last place where the string's outline is separate from muscle and leaflet, and draws those that end before
@@ -57,9 +61,9 @@ export function trimBranches(context: TraceContext, points: PlacedPoints, branch
     }
     const places = branch.points.map((n) => points.places[n]!);
     const radii = branch.points.map((n) => points.radii[n]!);
-    const memory = new BranchMemory(context, places, radii, branch.parent >= 0);
-    const parts = { outer: isParent.has(number) };
-    const cut = joinedFrom(memory, parts);
+    const reachesFork = isParent.has(number);
+    const memory = new BranchMemory(context, places, radii, branch.parent >= 0, reachesFork);
+    const cut = joinedFrom(memory);
     if (cut >= 0) {
       gone.add(number);
       const last = Math.max(cut - 1, 0);
@@ -68,7 +72,7 @@ export function trimBranches(context: TraceContext, points: PlacedPoints, branch
       const reason = kindBeyond(context, places[last]!, inward, radius, memory.excessAt(last), voxelMm);
       // A branch of which nothing is left was no branch; its parent ends here unless other branches remain.
       out.push({ number, places: places.slice(0, last + 1), radii: radii.slice(0, last + 1), reason });
-    } else if (parts.outer) out.push({ number, places, radii, reason: null });
+    } else if (reachesFork) out.push({ number, places, radii, reason: null });
     else out.push({ number, ...drawnOn(context, memory, voxelMm) });
   });
   return out;
@@ -82,17 +86,20 @@ class BranchMemory {
   readonly outlines: number[] = [];
   /** Length from the inner end along which the fork there is seen and not this string alone. */
   readonly forkMm: number;
+  readonly outerForkMm: number;
 
   constructor(
     private readonly context: TraceContext,
     readonly places: readonly Vec3[],
     readonly radii: readonly number[],
     leavesFork: boolean,
+    reachesFork: boolean,
   ) {
     this.arc = new Float64Array(places.length);
     for (let i = 1; i < places.length; i++) this.arc[i] = this.arc[i - 1]! + distance(places[i - 1]!, places[i]!);
     const own = medianOf([...radii].slice(radii.length >> 1));
     this.forkMm = leavesFork ? Math.min(FORK_RADII * Math.max(radii[0]!, own), this.arc[this.arc.length - 1]! / 2) : 0;
+    this.outerForkMm = reachesFork ? FORK_RADII * radii[radii.length - 1]! : 0;
     this.excesses = places.map((at, i) => excessAt(context, at, radii[i]!));
     places.forEach((at, i) => {
       this.outlines.push(this.outlineAt(at, directionAt(places, i, Math.max(2 * radii[i]!, 3 * this.voxelMm)), i));
@@ -116,9 +123,15 @@ class BranchMemory {
     );
   }
 
+  /** True where the outline is that of a fork. */
+  isAtFork(i: number): boolean {
+    return this.arc[i]! < this.forkMm || this.arc[i]! > this.arc[this.arc.length - 1]! - this.outerForkMm;
+  }
+
   /** True when an outline is wider than that of the string before place `i`. */
   isJoined(outline: number, i: number): boolean {
-    return outline > JOINED_WIDTH * this.medianBefore(i, this.outlines) + JOINED_VOXELS * this.voxelMm;
+    const width = this.isAtFork(i) ? JOINED_FORK_WIDTH : JOINED_WIDTH;
+    return outline > width * this.medianBefore(i, this.outlines) + JOINED_VOXELS * this.voxelMm;
   }
 
   /** Median radius over the stretch before a place (of the branch's beginning, where there is none). */
@@ -142,18 +155,13 @@ class BranchMemory {
 }
 
 /** Number of the first place from which on the string is not separate from what surrounds it; -1 when it is throughout. */
-function joinedFrom(memory: BranchMemory, parts: { readonly outer: boolean }): number {
-  const { places, radii, arc } = memory;
-  const n = places.length;
-  const length = arc[n - 1]!;
-  const from = memory.forkMm;
-  const to = parts.outer ? length - FORK_RADII * radii[n - 1]! : length;
+function joinedFrom(memory: BranchMemory): number {
+  const { outlines, arc } = memory;
   let first = -1;
-  for (let i = 0; i < n; i++) {
-    if (arc[i]! < from || arc[i]! > to) continue;
-    if (memory.isJoined(memory.outlines[i]!, i)) {
+  for (let i = 0; i < arc.length; i++) {
+    if (memory.isJoined(outlines[i]!, i)) {
       if (first < 0) first = i;
-      if (arc[i]! - arc[first]! >= memory.radiusAt(i) || i === n - 1) return first;
+      if (arc[i]! - arc[first]! >= memory.radiusAt(i) || i === arc.length - 1) return first;
     } else first = -1;
   }
   return first;
@@ -192,7 +200,7 @@ function drawnOn(
   return { places: [...places, ...further], radii: [...radii, ...further.map(() => radius)], reason };
 }
 
-/** What lies beyond an end: looks along the string for the brightest place within a few radii. */
+/** What lies beyond an end: looks along the string into the tissue, to the middle of it or 1.5 mm deep. */
 function kindBeyond(
   context: TraceContext,
   at: Vec3,
@@ -201,13 +209,13 @@ function kindBeyond(
   excess: number,
   voxelMm: number,
 ): FollowReason {
-  let inside: Vec3 | null = null;
-  for (let far = 0.5; far <= 2.5; far += 0.5) {
-    const place = add(at, scale(direction, far * (radius + voxelMm)));
+  let deep = 0;
+  for (let far = voxelMm; far <= DEEPEST_MM; far += voxelMm) {
+    const place = add(at, scale(direction, far));
     if (!isInScan(context, place) || excessAt(context, place, radius) < FADED_SHARE * excess) break;
-    inside = place;
+    deep = far;
   }
-  return inside ? contactKind(context, inside, radius) : "leaflet";
+  return contactKind(context, add(at, scale(direction, deep / 2)), radius);
 }
 
 function isInScan({ pyramid }: TraceContext, at: Vec3): boolean {

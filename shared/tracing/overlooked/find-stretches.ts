@@ -41,6 +41,8 @@ const SHORTEST_VOXELS = 3;
 const CLEAR = 1.25;
 /** A stretch is at least this many times as long as it is thick. */
 const LEAST_SLENDER = 2;
+/** Its ends are at least this share of its length apart. */
+const LEAST_CHORD = 0.3;
 /** Outside all tubes at least this share of the minimum. */
 const LEAST_OUTSIDE = 0.25;
 /** The rim of a sheet has it beside it along three quarters of its length. */
@@ -268,6 +270,8 @@ function stretchOf(
   const line = [...(before ? [before] : []), ...outside, ...(after ? [after] : [])];
   const lengthMm = lengthOf(line);
   if (lengthMm < Math.max(minimumMm, LEAST_SLENDER * 2 * radiusMm)) return null;
+  // Out of a tube and back into it is the strand's own flank.
+  if (distance(line[0]!, line.at(-1)!) < LEAST_CHORD * lengthMm) return null;
   const places: PointMm[] = line.map((at) => roundPoint(fromLocal(context.pyramid.grid, at)));
   return {
     lengthMm: roundMm(lengthMm),

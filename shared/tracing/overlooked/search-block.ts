@@ -1,8 +1,8 @@
 import { pointMm, type Vec3 } from "#shared/geometry/types.ts";
 import { indexToLocal } from "#shared/tracing/local-frame.ts";
 import { RIDGE_TILE_SIDE } from "#shared/tracing/ridge/ridge-tiles.ts";
-import { finestSpacing, LARGEST_DIAMETER_MM } from "#shared/tracing/ridge/scales.ts";
-import { brightShare, offAxisShare, STRING_SHARE } from "#shared/tracing/strings/bright-share.ts";
+import { finestSpacing } from "#shared/tracing/ridge/scales.ts";
+import { brightShare, isRimOrMuscle, STRING_SHARE } from "#shared/tracing/strings/bright-share.ts";
 import { leastStrength } from "#shared/tracing/strings/least-strength.ts";
 import { type RidgePoints, ridgePointsOfTile } from "#shared/tracing/strings/ridge-points.ts";
 import type { StopSignal, TraceContext } from "#shared/tracing/trace-context.ts";
@@ -21,9 +21,6 @@ const SEARCH_SPACING_MM = 0.08;
 const EXCESS_PER_STRENGTH = 1.5;
 /** The thinnest string that is looked for, as a share of a voxel's radius. */
 const THINNEST_VOXELS = 0.75;
-/** On the rim of a sheet this much of a near shell is bright, and this much of a wide one off the rim's axis. */
-const RIM_SHARE = 0.2;
-const RIM_OFF_AXIS = 0.05;
 /** Voxels around a block that its answers depend on. */
 const HALO = 6;
 
@@ -109,12 +106,9 @@ export function searchBlock(context: TraceContext, block: number, signal: StopSi
           for (let n = 0; n < found.strengths.length; n++) {
             const voxel = [found.voxels[3 * n]!, found.voxels[3 * n + 1]!, found.voxels[3 * n + 2]!] as const;
             const radius = found.radii[n]!;
-            // The widest scale answers to everything that is thicker than a string.
-            if (2 * radius > LARGEST_DIAMETER_MM) continue;
             const at = indexToLocal(grid, voxel);
             const share = brightShare(context, at, radius);
-            if (share > STRING_SHARE) continue;
-            if (share >= RIM_SHARE && offAxisShare(context, at, radius) >= RIM_OFF_AXIS) continue;
+            if (share > STRING_SHARE || isRimOrMuscle(context, at, radius, share)) continue;
             voxels.push(...voxel);
             strengths.push(found.strengths[n]!);
             radii.push(found.radii[n]!);

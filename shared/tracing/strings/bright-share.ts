@@ -1,6 +1,7 @@
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { dot, normalise, perpendicularFrame } from "#shared/geometry/vec3.ts";
 import { localToIndex } from "#shared/tracing/local-frame.ts";
+import { LARGEST_DIAMETER_MM } from "#shared/tracing/ridge/scales.ts";
 import type { TraceContext } from "#shared/tracing/trace-context.ts";
 
 /** Directions of a sphere shell, spread evenly: unit vectors. @source Vogel 1979 (golden-angle spiral), on the sphere. */
@@ -82,6 +83,19 @@ export function offAxisShare(context: TraceContext, at: Vec3, radiusMm: number):
     axis = normalise([next[0]!, next[1]!, next[2]!]);
   }
   return bright.filter((direction) => Math.abs(dot(direction, axis)) < OFF_AXIS).length / DIRECTIONS.length;
+}
+
+/** On the rim of a sheet this much of a near shell is bright, and this much of a wide one off the rim's axis. */
+const RIM_SHARE = 0.2;
+const RIM_OFF_AXIS = 0.05;
+
+/**
+ * True for a place on the rim of a sheet, or in something thicker than any string.
+ * @param share see {@link brightShare}. @param radiusMm the place's ridge scale; the widest answers to everything that is thicker.
+ */
+export function isRimOrMuscle(context: TraceContext, at: Vec3, radiusMm: number, share: number): boolean {
+  if (2 * radiusMm > LARGEST_DIAMETER_MM) return true;
+  return share >= RIM_SHARE && offAxisShare(context, at, radiusMm) >= RIM_OFF_AXIS;
 }
 
 /** Distances at which a ray that stays in a sheet is looked at, in radii of the string. */

@@ -6,14 +6,14 @@ import type { TraceContext } from "#shared/tracing/trace-context.ts";
 const WIDEST_MM = 4;
 const GROWTH = 1.25;
 /** The shell is wide enough when this share of it or less is bright. */
-const NARROW_SHARE = 0.5;
+const NARROW_SHARE = 0.4;
 /** Difference of the two smaller second moments: about a half in a sheet, nothing in a cone or half a space. */
-const FLAT = 0.2;
+const FLAT = 0.18;
 const BRIGHT = 0.5;
 
 /**
  * What a string runs into: `leaflet` when the tissue about the place is a sheet, else `muscle`. The shells about a place inside
- * it grow until half of one or less is bright; the bright directions then lie in a plane (a sheet) or to one side.
+ * it grow until two fifths of one or less are bright; the bright directions then lie in a plane (a sheet) or to one side.
  * @param inside a place in the tissue, millimetres along the voxel axes. @param radiusMm radius of the string.
  * @source own derivation: second moments of the bright directions.
  */

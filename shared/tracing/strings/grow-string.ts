@@ -93,7 +93,7 @@ export function* growString(
       const mean = [0, 0, 0];
       let count = 0;
       for (const other of near(point, reach)) {
-        if (distance(other.at, point.at) > reach) continue;
+        if (distance(other.at, point.at) > reach || !usable(other)) continue;
         count++;
         for (let c = 0; c < 3; c++) mean[c] = mean[c]! + other.at[c]!;
       }

@@ -1,7 +1,7 @@
 import type { Vec3 } from "#shared/geometry/types.ts";
 import { indexToLocal } from "#shared/tracing/local-frame.ts";
 import { RIDGE_TILE_SIDE } from "#shared/tracing/ridge/ridge-tiles.ts";
-import { brightShare, STRING_SHARE } from "#shared/tracing/strings/bright-share.ts";
+import { brightShare, isRimOrMuscle, STRING_SHARE } from "#shared/tracing/strings/bright-share.ts";
 import { ridgePointsOfTile } from "#shared/tracing/strings/ridge-points.ts";
 import type { TraceContext } from "#shared/tracing/trace-context.ts";
 
@@ -59,7 +59,7 @@ export function createStringField(context: TraceContext, level: number, least: (
       const at = indexToLocal(grid, voxel);
       const radiusMm = found.radii[n]!;
       const share = brightShare(context, at, radiusMm);
-      if (share > STRING_SHARE) continue;
+      if (share > STRING_SHARE || isRimOrMuscle(context, at, radiusMm, share)) continue;
       const point = { id: points.length, voxel, at, strength: found.strengths[n]!, radiusMm, share };
       points.push(point);
       const box = keyOf(voxel[0] >> BOX_SHIFT, voxel[1] >> BOX_SHIFT, voxel[2] >> BOX_SHIFT);
