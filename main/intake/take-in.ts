@@ -1,9 +1,11 @@
 import { basename } from "node:path";
 import { placeVerdict } from "#main/intake/in-place/in-place-scan.ts";
+import { renewPlace } from "#main/intake/in-place/renew-place.ts";
 import type { IntakeOrder, IntakeOutcome } from "#main/intake/intake-messages.ts";
 import { type IntakeHooks, makeSpecimen } from "#main/intake/make-specimen.ts";
 import { openScan } from "#main/intake/open-scan.ts";
 import type { ScanChoice } from "#main/intake/slice-source.ts";
+import { diskFiles } from "#main/intake/store/write-files.ts";
 import type { InPlaceScan } from "#shared/api/specimen.ts";
 import { TautlineError } from "#shared/errors.ts";
 import { FITS_IN_PLACE } from "#shared/volume/store/zarr-layout.ts";
@@ -19,7 +21,7 @@ export async function takeIn(order: IntakeOrder, hooks: IntakeHooks = {}): Promi
   const source = await openScan(order.path, choice);
   try {
     const inPlace = order.keep === "in-place" ? await placeOf(order, choice) : null;
-    return await makeSpecimen(
+    const made = await makeSpecimen(
       source,
       {
         library: order.library,
@@ -38,6 +40,7 @@ export async function takeIn(order: IntakeOrder, hooks: IntakeHooks = {}): Promi
       },
       hooks,
     );
+    return inPlace ? await renewPlace(order.library, made, hooks.files ?? diskFiles) : made;
   } finally {
     await source.close();
   }

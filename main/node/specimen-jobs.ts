@@ -92,6 +92,8 @@ export function specimenJobs(options: SpecimenJobsOptions): JobsPort {
       return jobs.start("intake", async (onProgress, signal) => {
         try {
           const { record } = await abilities.runIntake({ ...request, ...order() }, { onProgress, signal });
+          // An earlier specimen may have been given the scan's new place: what was opened at the old one is let go.
+          await abilities.forgetSpecimen?.(record.id);
           emit({ event: "shelf" });
           return { specimen: record.id };
         } catch (error) {

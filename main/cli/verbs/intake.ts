@@ -107,6 +107,8 @@ It is only read, and has to stay where it is, unchanged; that is checked each ti
       if (keep === "packed") await tellCost(path, choice, call);
       const made = await runIntake(order, { signal: io.signal, onProgress: progressLine(say) });
       const { record } = made;
+      if (record.id !== order.id)
+        say(`${source.name}: ${record.name} (${record.id}) missed this scan and was given its new place; its passes stay.`);
       const json = {
         specimen: record.id,
         sha256: record.volume.sha256,

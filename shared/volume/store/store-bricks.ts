@@ -114,7 +114,7 @@ const inPlaceAdvice =
 /** The scan that a specimen uses in place is not where it was. */
 export function goneFromPlace(scan: InPlaceScan): TautlineError<"unreadable-input"> {
   const next =
-    "The specimen uses its scan where it lies. Put it back where it was (specimen.json says where), or take it in again from where it is now; passes can be exported and taken in there without a question, since its voxels have the same hash.";
+    "The specimen uses its scan where it lies. Put it back where it was (specimen.json says where), or take it in again, in place, from where it is now: when the voxels are the same, the specimen is given the new place and keeps its passes.";
   return unreadable(nameOf(scan), "the scan of this specimen in its place", "nothing there", undefined, next);
 }
 

@@ -191,6 +191,30 @@ describe("a scan that was used in place", () => {
     expect(await said(checkInPlace(scan))).toBe("nothing");
   });
 
+  it("and was moved gets its new place when it is taken in again from there, and keeps its id", async () => {
+    const { path, home, scan } = await placed();
+    const library = join(home, "..", "..");
+    const again = (id: string, from: string) => takeIn({ ...order(library, from, id), name: "again", keep: "in-place" });
+    // While it is there a second specimen is a second specimen.
+    expect((await again("secondaaaaaaaaaaaaaa", path)).record.id).toBe("secondaaaaaaaaaaaaaa");
+    await rm(join(library, "specimens", "secondaaaaaaaaaaaaaa"), { recursive: true });
+    const away = join(path, "..", "moved.zarr");
+    await rename(path, away);
+    const { record } = await again("thirdaaaaaaaaaaaaaaa", away);
+    expect([record.id, record.name, record.volume.inPlace]).toEqual([home.split("/").at(-1), "HB-07", { ...scan, path: away }]);
+    expect(JSON.parse(await readFile(join(home, "specimen.json"), "utf8"))).toEqual(record);
+    expect([await readdir(join(library, "specimens")), (await readdir(home)).sort()]).toEqual([
+      [record.id],
+      ["scan.ome.zarr", "specimen.json"],
+    ]);
+    expect(await said(wholeLevel(home, 0))).toBe("nothing");
+    // Other voxels are another specimen.
+    await rename(away, path);
+    const values = valuesOf("uint16", 40 * 34 * 36).reverse();
+    const other = await writeZarr({ version: "0.5", dtype: "uint16", shape: [40, 34, 36], chunks: [20, 34, 36], values });
+    expect((await again("fourthaaaaaaaaaaaaaa", other)).record.id).toBe("fourthaaaaaaaaaaaaaa");
+  });
+
   it("and was changed is found, by its files, bytes and times", async () => {
     const { path, home, scan } = await placed();
     const chunk = join(path, "s0", "c", "1", "0", "0");
