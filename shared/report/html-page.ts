@@ -32,7 +32,7 @@ td.whole, th.whole { white-space: nowrap; }
 .refusal { border-left: 3px double var(--ink); padding-left: .7rem; font-style: italic; }
 h3 { font-size: 1rem; margin: 1.6rem 0 .3rem; break-after: avoid; }
 nav ol { columns: 2; column-gap: 2rem; max-width: 46rem; padding-left: 1.5rem; }
-nav a { color: inherit; }
+nav a { color: inherit; display: inline-block; padding: .2rem 0; }
 figure { margin: 1rem 0; break-inside: avoid; }
 figcaption { color: var(--quiet); max-width: 46rem; }
 svg { max-width: 100%; height: auto; }
@@ -66,7 +66,9 @@ export function htmlPage(title: string, body: string): string {
 <style>${STYLE}</style>
 </head>
 <body>
+<main>
 ${body}
+</main>
 </body>
 </html>
 `;

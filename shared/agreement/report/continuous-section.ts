@@ -64,7 +64,7 @@ function oneQuantity(one: ContinuousAgreement, study: StudyQuantity, annotators:
     ),
   ];
   if (reasons.completeRows) blocks.push(text(reasons.completeRows, "refusal"));
-  if (coverage) blocks.push(coverageTable(coverage, annotators));
+  if (coverage) blocks.push(coverageTable(quantity, coverage, annotators));
   const table = new TableOf(`Intraclass correlations of ${quantity}, ${title}`, [
     { name: "form", words: true },
     { name: "also called", words: true },
@@ -98,8 +98,8 @@ function oneQuantity(one: ContinuousAgreement, study: StudyQuantity, annotators:
   return blocks;
 }
 
-function coverageTable(coverage: NonNullable<ContinuousAgreement["coverage"]>, annotators: readonly string[]) {
-  const table = new TableOf("Share of each pass's length that lies on common paths", [
+function coverageTable(quantity: string, coverage: NonNullable<ContinuousAgreement["coverage"]>, annotators: readonly string[]) {
+  const table = new TableOf(`Share of each pass's length that lies on common paths (${quantity})`, [
     { name: "specimen", words: true },
     ...annotators,
   ]);
