@@ -62,10 +62,12 @@ export function NewStudySheet({ services, specimens, close }: NewStudySheetProps
 /** What is missing, one line each. */
 export function MissingList({ missing }: { readonly missing: readonly string[] }) {
   return missing.length === 0 ? null : (
-    <ul class="study-refusal" role="alert">
-      {missing.map((sentence) => (
-        <li key={sentence}>{sentence}</li>
-      ))}
-    </ul>
+    <div class="study-refusal" role="alert">
+      <ul>
+        {missing.map((sentence) => (
+          <li key={sentence}>{sentence}</li>
+        ))}
+      </ul>
+    </div>
   );
 }

@@ -91,11 +91,13 @@ function Kept({ state, retry }: { readonly state: KeptState; readonly retry: () 
       return <p role="status">saving</p>;
     case "problems":
       return (
-        <ul class="study-refusal" role="alert">
-          {state.problems.map((problem) => (
-            <li key={problem}>{problem}</li>
-          ))}
-        </ul>
+        <div class="study-refusal" role="alert">
+          <ul>
+            {state.problems.map((problem) => (
+              <li key={problem}>{problem}</li>
+            ))}
+          </ul>
+        </div>
       );
     case "failed":
       return (

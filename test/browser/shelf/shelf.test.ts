@@ -247,3 +247,45 @@ test("the first steps stay away once they were put away", async () => {
   expect(await page.getByRole("heading", { name: "Three steps to the first tree" }).count()).toBe(0);
   await page.context().close();
 });
+
+test("studies and assignments stand in rows of their own, with what can be done next, in both themes", async () => {
+  for (const query of ["?studies&later", "?studies&later&theme=light"]) {
+    const page = await open(query);
+    await page.getByRole("heading", { name: /^Harrow Bay agreement/ }).waitFor();
+    expect(await faults(page)).toEqual([]);
+    expect(await cutTexts(page)).toEqual([]);
+    await page.getByText("1 study, 2 assignments").waitFor();
+    await page.getByRole("button", { name: "Open assignment K7Q2" }).waitFor();
+    await page.getByRole("button", { name: "Open it again to mend it M3XD" }).waitFor();
+    await page.getByRole("button", { name: /^Hand it back.*K7Q2/ }).click();
+    await page.getByRole("button", { name: "Report of Harrow Bay agreement" }).click();
+    expect(await asked(page, "go")).toEqual([
+      { screen: "shelf", handBack: "a1" },
+      { screen: "study", study: "st1", part: "report" },
+    ]);
+    await page.context().close();
+  }
+});
+
+test("a study is put together from the keyboard, and told what is missing", async () => {
+  const page = await open("?later");
+  await page.getByRole("button", { name: "New study" }).focus();
+  await page.keyboard.press("Enter");
+  await page.getByRole("heading", { name: "New study" }).waitFor();
+  // The first field has the focus.
+  await page.keyboard.type("Pilot");
+  await page.keyboard.press("Enter");
+  await page.getByText("Choose at least one specimen that counts.").waitFor();
+  await page.getByText("Name at least one annotator.").waitFor();
+  expect(await faults(page)).toEqual([]);
+  expect(await cutTexts(page)).toEqual([]);
+  await page.keyboard.press("Tab");
+  await page.keyboard.press("ArrowDown");
+  await page.getByText("1 × 0 × 2: 0 passes that count.").waitFor();
+  await page.keyboard.press("Escape");
+  await page.getByRole("dialog").waitFor({ state: "detached" });
+  expect(await page.getByRole("button", { name: "New study" }).evaluate((button) => button === document.activeElement)).toBe(
+    true,
+  );
+  await page.context().close();
+});
