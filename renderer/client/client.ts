@@ -182,11 +182,11 @@ export class Client {
   closeFollow = (session: string): Promise<unknown> => this.json("closeFollow", { body: { session } }, RANK.plain);
   /** What no strand of a pass explains, from what was searched so far. */
   overlooked(request: OverlookedRequest): Newest<OverlookedAnswer> {
-    return this.newest.run("overlooked", () => this.json("overlooked" as RouteName, { body: request }, RANK.plain));
+    return this.newest.run("overlooked", () => this.json("overlooked", { body: request }, RANK.plain));
   }
   /** Starts the search of a scan for strings, or goes on with it. */
   startSearch = (specimen: string, request: SearchRequest): Promise<{ job: string }> =>
-    this.json("startSearch" as RouteName, { params: { specimen }, body: request });
+    this.json("startSearch", { params: { specimen }, body: request });
   /** Committed curves. Never superseded: each call stands in a line of its own. */
   solve(
     specimen: string,

@@ -3,13 +3,13 @@ import { Editor } from "#renderer/editor/editor.ts";
 import { adviceWords } from "#renderer/editor/tracing/guide-advice.ts";
 import { pointMm, type Vec3 } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
-import { at, FakeServer, MemoryKeeper, NOTHING_LEFT } from "#test/renderer/editor/fake-places.ts";
+import { at, FakeServer, MemoryKeeper } from "#test/renderer/editor/fake-places.ts";
 
 /** An editor whose guide runs through the places given, in steps of 0.1 mm; it keeps what it was told to keep closed. */
 function editorWithGuide(way: () => readonly Vec3[]) {
   const server = new FakeServer();
   const keeper = new MemoryKeeper();
-  const places = server.places(keeper, NOTHING_LEFT);
+  const places = server.places(keeper);
   const closed: number[] = [];
   const editor = new Editor({
     ...places,

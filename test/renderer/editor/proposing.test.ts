@@ -5,7 +5,7 @@ import { pointMm, type Vec3 } from "#shared/geometry/types.ts";
 import { distance } from "#shared/geometry/vec3.ts";
 import type { FollowProposal, ProposedNode, ProposedStrand } from "#shared/tracing/follow/proposal.ts";
 import type { NodeKind } from "#shared/trees/document.ts";
-import { at, FakeServer, MemoryKeeper, NOTHING_LEFT } from "#test/renderer/editor/fake-places.ts";
+import { at, FakeServer, MemoryKeeper } from "#test/renderer/editor/fake-places.ts";
 
 const node = (id: string, kind: NodeKind, x: number, y: number, meets: number | null = null): ProposedNode => ({
   id,
@@ -56,7 +56,7 @@ function editorThatFollows(answers: FollowAnswer[]) {
   const asked: { at: Vec3; traced: number }[] = [];
   const closed: string[] = [];
   const editor = new Editor({
-    ...server.places(keeper, NOTHING_LEFT),
+    ...server.places(keeper),
     follow: {
       open: async (place, traced) => {
         asked.push({ at: place, traced: traced.length });
