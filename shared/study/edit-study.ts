@@ -1,5 +1,6 @@
 import type { StudyDraft, StudyPatch } from "#shared/api/study.ts";
 import { TautlineError } from "#shared/errors.ts";
+import { counted } from "#shared/study/count-words.ts";
 import { drawAssignments } from "#shared/study/draw-assignments.ts";
 import { beginningProtocol, missingFromProtocol, type ProtocolContent } from "#shared/study/protocol.ts";
 import { protocolHash } from "#shared/study/protocol-change.ts";
@@ -115,7 +116,7 @@ export function frozenStudy(study: StudyRecord, facts: SpecimenFactsOf, now: num
   const withFreeze = noted({ ...frozen, assignments }, { at: now, what: "protocol-frozen", text });
   const fresh = assignments.length - study.assignments.length;
   if (fresh === 0) return withFreeze;
-  return noted(withFreeze, { at: now, what: "drawn", text: `${fresh} assignments were drawn: ${planText(withFreeze)}.` });
+  return noted(withFreeze, { at: now, what: "drawn", text: `${counted(fresh, "assignment")} drawn: ${planText(withFreeze)}.` });
 }
 
 /** The study with the next version of its protocol, a copy of the frozen one, open for changes. @throws conflict */
@@ -136,9 +137,9 @@ export function noted(study: StudyRecord, event: StudyEvent): StudyRecord {
 
 function planText({ specimens, annotators, passes }: StudyRecord): string {
   const training = specimens.filter((one) => one.training).length;
-  const counted = specimens.length - training;
-  const round = training === 0 ? "" : `, and ${training} specimens of training`;
-  return `${counted} specimens, ${annotators.length} annotators, ${passes} passes each${round}`;
+  const main = specimens.length - training;
+  const round = training === 0 ? "" : `, and ${counted(training, "specimen")} of training`;
+  return `${counted(main, "specimen")}, ${counted(annotators.length, "annotator")}, ${counted(passes, "pass", "passes")} each${round}`;
 }
 
 function entriesOf({ specimens, training }: StudyDraft, facts: SpecimenFactsOf): StudySpecimenEntry[] {

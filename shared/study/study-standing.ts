@@ -63,7 +63,7 @@ export function packetObstacle(
   const left = Math.ceil((earliestOut(study, assignment)! - now) / DAY_MS);
   if (left <= 0) return null;
   const days = currentProtocol(study).content.schedule.washoutDays;
-  return { why: `${left} of the ${days} days between repeats are still to pass.`, waivable: true };
+  return { why: `Of the ${days} days between repeats, ${left} ${left === 1 ? "is" : "are"} still to pass.`, waivable: true };
 }
 
 /** Whether a returned pass takes part in the analysis, and if not why; null while there is none. */

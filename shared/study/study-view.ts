@@ -77,15 +77,15 @@ export function analysisAnswer(study: StudyRecord): AnalysisAnswer {
   );
   const awaited = study.assignments.filter(({ training, returned }) => !training && !returned).length;
   const notes: string[] = [];
-  if (awaited > 0) notes.push(`${awaited} of the passes planned have not come back.`);
+  if (awaited > 0) notes.push(`Passes planned that have not come back: ${awaited}.`);
   const openEnds = study.assignments.filter(({ returned }) => returned && returned.openEnds > 0).length;
-  if (openEnds > 0) notes.push(`${openEnds} of the passes were taken in with open ends.`);
+  if (openEnds > 0) notes.push(`Passes that were taken in with open ends: ${openEnds}.`);
   const setAside = study.assignments.reduce((sum, one) => sum + one.setAside.length, 0);
-  if (setAside > 0) notes.push(`${setAside} returned passes were set aside by the lead; their reasons stand in the study.`);
+  if (setAside > 0) notes.push(`Returned passes that the lead set aside: ${setAside}; the reasons stand in the study.`);
   const waived = study.events.filter(({ what }) => what === "washout-waived").length;
-  if (waived > 0) notes.push(`The days between repeats were waived for ${waived} packets.`);
+  if (waived > 0) notes.push(`Packets sent before the days between repeats had passed: ${waived}.`);
   const late = study.protocols.slice(1).filter(({ frozen }) => frozen).length;
-  if (late > 0) notes.push(`The protocol was changed ${late} times after it was first frozen.`);
+  if (late > 0) notes.push(`Versions of the protocol after the first that was frozen: ${late}.`);
   notes.push(...clocksBack(study));
   return {
     refusal: refusalOf(study, passes),

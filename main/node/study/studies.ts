@@ -13,6 +13,7 @@ import type { StudyStore } from "#main/node/study/study-store.ts";
 import type { ServerEvent } from "#shared/api/routes.ts";
 import type { PacketRequest, StudyView } from "#shared/api/study.ts";
 import { isTautlineError, TautlineError } from "#shared/errors.ts";
+import { counted } from "#shared/study/count-words.ts";
 import {
   changedStudy,
   frozenStudy,
@@ -94,10 +95,10 @@ export function studies(options: StudiesOptions): StudyPort {
       await store.remove(id, (study) => {
         const out = study.assignments.filter((one) => one.out || one.returned || one.setAside.length > 0).length;
         if (out === 0) return;
-        const what = `study with ${out} packets out or returned`;
+        const what = `study with ${counted(out, "packet")} out or returned`;
         throw new TautlineError(
           "conflict",
-          `The study has ${out} packets out or returned; without it they could not be taken in.`,
+          `The study has ${counted(out, "packet")} out or returned; without it none could be taken in.`,
           {
             what,
             expected: "no packet made",

@@ -15,6 +15,7 @@ import type { TakenPacket } from "#shared/api/study.ts";
 import { isTautlineError, TautlineError, unreadable } from "#shared/errors.ts";
 import { PAYLOAD_FOLDER } from "#shared/formats/bagit/bag-texts.ts";
 import { ASSIGNMENT_FORMAT, type AssignmentRecord } from "#shared/study/assignment-record.ts";
+import { counted } from "#shared/study/count-words.ts";
 import { type AssignmentPacket, PICTURE_FOLDER, SCAN_FOLDER, type ScanPacket } from "#shared/study/packet.ts";
 import { STORE_NAME } from "#shared/volume/store/layout.ts";
 
@@ -126,7 +127,7 @@ async function again(
   const { edits } = await library.passes.summary(packet.assignment, known.pass);
   if (edits > 0 || known.returned) {
     const [expected, found] = [`version ${known.protocol.version}`, `version ${packet.protocol.version}`];
-    const sentence = `${packet.code} was begun under ${expected} of the protocol and this packet holds ${found}: its ${edits} edits followed other rules. Nothing was changed; ask the lead.`;
+    const sentence = `${packet.code} was begun under ${expected} of the protocol and this packet holds ${found}: its ${counted(edits, "edit")} followed other rules. Nothing was changed; ask the lead.`;
     throw new TautlineError("conflict", sentence, { what: packet.code, expected, found });
   }
   await bringPictures(options, bag, packet);

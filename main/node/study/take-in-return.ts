@@ -9,6 +9,7 @@ import { writeWhole } from "#main/node/whole-file.ts";
 import type { TakenPacket } from "#shared/api/study.ts";
 import { isTautlineError, TautlineError } from "#shared/errors.ts";
 import { PAYLOAD_FOLDER } from "#shared/formats/bagit/bag-texts.ts";
+import { counted } from "#shared/study/count-words.ts";
 import { noted } from "#shared/study/edit-study.ts";
 import { PACKET_FILE, RETURN_FILES, type ReturnPacket } from "#shared/study/packet.ts";
 import { openEndsOf, type ReturnedLog, readReturnedLog } from "#shared/study/returned-log.ts";
@@ -78,8 +79,8 @@ export async function takeInReturn(
   if (open.length > 0 && !allowOpenEnds) {
     const names = open.map(({ treeName, node }) => `${treeName} (${node})`);
     const shown = names.length > 12 ? `${names.slice(0, 12).join(", ")} and ${names.length - 12} more` : names.join(", ");
-    const sentence = `${packet.code} has ${open.length} open ends: ${shown}. It was not taken in: have them finished, or allow them.`;
-    throw conflict(packet.code, sentence, "no open end", `${open.length} open ends`);
+    const sentence = `${packet.code} has ${counted(open.length, "open end")}: ${shown}. It was not taken in: have them finished, or allow them.`;
+    throw conflict(packet.code, sentence, "no open end", counted(open.length, "open end"));
   }
   const { volume, synthetic } = await library.specimen(assignment.specimen);
   const frame = turnedFrame(volume, assignment.turn);
@@ -137,7 +138,11 @@ function withReturn(study: StudyRecord, id: string, returned: ReturnedPass, open
   };
   changed = noted(changed, { at, what: "pass-taken-in", text: `${whose} was taken in, ${signed}.${note ? ` ${note}` : ""}` });
   if (openEnds > 0)
-    changed = noted(changed, { at, what: "open-ends-allowed", text: `${whose} was taken in with ${openEnds} open ends.` });
+    changed = noted(changed, {
+      at,
+      what: "open-ends-allowed",
+      text: `${whose} was taken in with ${counted(openEnds, "open end")}.`,
+    });
   return { study: changed, note };
 }
 

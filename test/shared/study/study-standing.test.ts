@@ -64,7 +64,7 @@ describe("an assignment", () => {
     const came = withPlaces(record, ({ pass, place }) => (pass === 1 && place < 4 ? { returned: back(100 * DAY_MS) } : {}));
     expect(earliestOut(came, at(came, 4))).toBe(114 * DAY_MS);
     expect(packetObstacle(came, at(came, 4), 113.5 * DAY_MS)).toEqual({
-      why: "1 of the 14 days between repeats are still to pass.",
+      why: "Of the 14 days between repeats, 1 is still to pass.",
       waivable: true,
     });
     expect(packetObstacle(came, at(came, 4), 114 * DAY_MS)).toBeNull();
@@ -107,7 +107,7 @@ describe("a pass that came back", () => {
     expect(analysisAnswer(redrawn)).toMatchObject({ refusal: "No specimen has two passes that count yet.", passes: [] });
     const counted = next({ ...first!.content, analysis: { ...analysis, toleranceMm: 0.25 } });
     expect(analysisAnswer(counted)).toMatchObject({ refusal: null, protocol: { version: 2 } });
-    expect(analysisAnswer(counted).notes).toContain("The protocol was changed 1 times after it was first frozen.");
+    expect(analysisAnswer(counted).notes).toContain("Versions of the protocol after the first that was frozen: 1.");
   });
 
   it("that was drawn before the pass before by the annotator's own clock is told", () => {

@@ -256,11 +256,11 @@ describe("an assignment on its way", () => {
   });
 
   it("goes out as a repeat only after the days of the protocol, by the lead's clock alone, or when the lead waives them", async () => {
-    expect(cell(3)).toMatchObject({ why: "14 of the 14 days between repeats are still to pass.", waivable: true });
+    expect(cell(3)).toMatchObject({ why: "Of the 14 days between repeats, 14 are still to pass.", waivable: true });
     await expect(sendOut(3, "zip")).rejects.toMatchObject({ tag: "conflict" });
     leadClock.now = LEAD_NOW + 13 * DAY + 1;
     study = await lead.studies.study(study.id);
-    expect(cell(3)).toMatchObject({ why: "1 of the 14 days between repeats are still to pass.", earliest: LEAD_NOW + 14 * DAY });
+    expect(cell(3)).toMatchObject({ why: "Of the 14 days between repeats, 1 is still to pass.", earliest: LEAD_NOW + 14 * DAY });
     leadClock.now = LEAD_NOW + 14 * DAY;
     study = await lead.studies.study(study.id);
     expect(cell(3)).toMatchObject({ why: null });

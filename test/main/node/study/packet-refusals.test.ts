@@ -159,14 +159,14 @@ describe("a returned pass", () => {
     await refused(
       ANNOTATOR,
       () => takenIn(annotator, newer),
-      /was begun under version 1 of the protocol and this packet holds version 2: its 1 edits/,
+      /was begun under version 1 of the protocol and this packet holds version 2: its 1 edit /,
     );
     expect(pass).toBe((await annotator.packets.assignment(specimen)).pass);
   });
 
   it("with open ends is refused, naming them, unless the lead allows it, which is noted", async () => {
     const { path } = await roundTrip(1, "open");
-    await refused(LEAD, () => takenIn(lead, path), /has 1 open ends: ALPM-01 \(n2\). It was not taken in/);
+    await refused(LEAD, () => takenIn(lead, path), /has 1 open end: ALPM-01 \(n2\). It was not taken in/);
     expect(await takenIn(lead, path, { allowOpenEnds: true })).toMatchObject({ outcome: "taken" });
     study = await lead.studies.study(study.id);
     expect(study.events.map(({ what }) => what)).toContain("open-ends-allowed");
@@ -323,7 +323,7 @@ describe("an assignment", () => {
 
   it("keeps the study from being removed and its annotator from being left out", async () => {
     await packetOut(lead, study, 1);
-    await refused(LEAD, () => lead.studies.remove(study.id), /has 1 packets out or returned/);
+    await refused(LEAD, () => lead.studies.remove(study.id), /has 1 packet out or returned/);
     await refused(LEAD, () => lead.studies.change(study.id, { annotators: ["AN-2"] }), /is out already/);
     study = await lead.studies.change(study.id, { annotators: ["AN-1", "AN-2"] });
     expect(study.assignments).toHaveLength(4);
