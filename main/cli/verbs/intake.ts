@@ -157,7 +157,7 @@ async function tellCost(path: string, choice: ScanChoice, { io, say }: VerbCall)
   const share = Math.round(sample.ratio * 100);
   const mbPerSecond = Math.round(sample.packedBytesPerSecond / 1e6);
   const costs = `packing takes a second of one core for ${mbPerSecond} MB, a brick opens ${sample.unpackMs.toFixed(2)} ms later`;
-  say(`--compress: ${share} % of a plain store, measured on ${sample.bricks} bricks of the scan; ${costs}.`);
+  say(`--compress: ${share} % of a plain store, measured on ${sample.bricks} bricks of the whole scan; ${costs}.`);
 }
 
 /** CPU time of all threads of this process so far. */

@@ -83,7 +83,7 @@ function packedWords(bytes: number, about: string, sample: PackingSample | null 
   const share = Math.round(sample.ratio * 100);
   const wait = Math.round(sample.unpackMs * BRICKS_OF_A_PLANE);
   const time = wait >= 100 ? `${(wait / 1000).toFixed(1)} s` : `${wait} ms`;
-  return `${about} ${bytesWords(bytes * sample.ratio)} on disk (${share} % of the plain copy, measured on ${sample.bricks} bricks of it). A plane that is not in memory yet opens up to ${time} of one core later`;
+  return `${about} ${bytesWords(bytes * sample.ratio)} on disk (${share} % of the plain copy, measured on ${sample.bricks} bricks of the whole scan). A plane that is not in memory yet opens up to ${time} of one core later`;
 }
 
 function placeWords(inPlace: InPlaceVerdict, isChanged: boolean): string {
