@@ -85,19 +85,23 @@ export function* growString(
     }
   };
 
-  /** Where the string ends at a point: the direction it ends in; null when it goes on. Looks at all points, grown or not. */
+  /** Where the string ends at a point: the direction it ends in; null when it goes on. Looks at grown points and others alike. */
   const tipAt = (point: StringPoint): Vec3 | null => {
     let known = tips.get(point.id);
     if (known === undefined) {
       const reach = Math.max(4 * finest, point.radiusMm);
+      // Only what hangs together with the point: the string beside it says nothing of where this one ends.
+      const own = [point];
+      const seen = new Set([point.id]);
+      for (const one of own)
+        for (const other of near(one, 0)) {
+          if (seen.has(other.id) || distance(other.at, point.at) > reach || !usable(other)) continue;
+          seen.add(other.id);
+          own.push(other);
+        }
       const mean = [0, 0, 0];
-      let count = 0;
-      for (const other of near(point, reach)) {
-        if (distance(other.at, point.at) > reach || !usable(other)) continue;
-        count++;
-        for (let c = 0; c < 3; c++) mean[c] = mean[c]! + other.at[c]!;
-      }
-      const away = subtract(point.at, [mean[0]! / count, mean[1]! / count, mean[2]! / count]);
+      for (const { at } of own) for (let c = 0; c < 3; c++) mean[c] = mean[c]! + at[c]! / own.length;
+      const away = subtract(point.at, [mean[0]!, mean[1]!, mean[2]!]);
       known = Math.hypot(...away) > 0.3 * reach ? normalise(away) : null;
       tips.set(point.id, known);
     }
