@@ -147,6 +147,7 @@ export class Library implements LibraryPort {
 
   async appendLog(specimen: string, pass: string, request: AppendRequest): Promise<AppendAnswer> {
     await this.assignments.refuseSealed(specimen);
+    await this.passes.refuseReturned(specimen, pass);
     // After a restart nobody has a claim: the window that writes first gets it.
     if (!this.claims.claim(specimen, pass, request.window)) {
       throw new TautlineError("held-elsewhere", "Another window is writing to this pass; this one is for reading only.", {
@@ -187,6 +188,7 @@ export class Library implements LibraryPort {
 
   async setPassState(specimen: string, pass: string, state: PassState): Promise<PassSummary> {
     await this.assignments.refuseSealed(specimen);
+    await this.passes.refuseReturned(specimen, pass);
     await this.#changes.take(() => this.passes.changeFile(specimen, pass, (file) => ({ ...file, state })));
     this.#options.emit({ event: "shelf" });
     return this.passes.summary(specimen, pass);

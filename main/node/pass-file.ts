@@ -11,6 +11,8 @@ export interface PassFile {
   readonly synthetic: boolean;
   /** Name of a recovered branch. */
   readonly name?: string;
+  /** Set on a pass that came back from an annotator: it stays as it was handed over. */
+  readonly returned?: { readonly study: string; readonly assignment: string };
 }
 
 export const NEW_PASS: PassFile = { format: "tautline-pass", version: 1, state: "under-way", synthetic: false };

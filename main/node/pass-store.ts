@@ -47,6 +47,8 @@ export class PassStore {
   readonly #options: PassStoreOptions;
   readonly #journals = new Map<string, Promise<Journal>>();
   readonly #folds: PassFolds;
+  /** Whether a pass came back from an annotator, by the path of its file; asked for with every edit. */
+  readonly #returned = new Map<string, boolean>();
   readonly #summaries = new Map<string, { key: string; summary: PassSummary }>();
 
   constructor(options: PassStoreOptions) {
@@ -84,6 +86,20 @@ export class PassStore {
   /** The history of a pass as it stands on disk. @throws not-found, unreadable-input */
   async history(specimen: string, pass: string): Promise<PassHistory> {
     return this.#folds.history(this.#options.layout.pass(specimen, pass), await this.journal(specimen, pass));
+  }
+
+  /** @throws conflict for a pass that came back from an annotator */
+  async refuseReturned(specimen: string, pass: string): Promise<void> {
+    const { files, layout } = this.#options;
+    const path = layout.passFile(specimen, pass);
+    const isReturned = this.#returned.get(path) ?? (await readPassFile(files, path)).returned !== undefined;
+    this.#returned.set(path, isReturned);
+    if (!isReturned) return;
+    throw new TautlineError("conflict", "This pass came back from an annotator of a study and stays as it was handed over.", {
+      what: "pass",
+      expected: "a pass of this library",
+      found: "a returned pass",
+    });
   }
 
   /** Appends to a pass's journal; see {@link Journal.append}. A snapshot follows when one is due. */
@@ -177,6 +193,7 @@ export class PassStore {
   async close(specimen?: string): Promise<void> {
     const within = specimen === undefined ? "" : `${this.#options.layout.specimen(specimen)}${sep}`;
     this.#folds.forget(within);
+    for (const path of this.#returned.keys()) if (path.startsWith(within)) this.#returned.delete(path);
     for (const key of this.#summaries.keys())
       if (specimen === undefined || key.startsWith(`${specimen}/`)) this.#summaries.delete(key);
     for (const [path, journal] of this.#journals) {
@@ -202,6 +219,7 @@ export class PassStore {
     await mayWrite();
     await makeFolder(files, layout.pass(specimen, pass));
     files.reach("pass:after-folder");
+    this.#returned.delete(layout.passFile(specimen, pass));
     // The journal comes last: a folder without one is no pass, so a killed process leaves none half-made.
     if (file !== NEW_PASS) await writeJson(files, layout.passFile(specimen, pass), file);
     const path = layout.journal(specimen, pass);

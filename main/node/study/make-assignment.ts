@@ -22,6 +22,7 @@ import {
 } from "#shared/study/packet.ts";
 import type { Assignment, StudyRecord } from "#shared/study/study-record.ts";
 import { currentProtocol, packetObstacle } from "#shared/study/study-standing.ts";
+import { STORE_NAME } from "#shared/volume/store/layout.ts";
 
 export interface MakeAssignmentsOptions {
   readonly library: Library;
@@ -198,7 +199,6 @@ async function turnedScan(options: MakeAssignmentsOptions, assignment: Assignmen
   );
   const folder = join(scratch, "specimens", assignment.id);
   const payload: PayloadFile[] = [jsonPayload(`${SCAN_FOLDER}/specimen.json`, record)];
-  const store = library.layout.store(assignment.id).slice(library.layout.specimen(assignment.id).length + 1);
   const walk = async (path: string, inside: string): Promise<void> => {
     for (const { name } of (await files.list(path)) ?? []) {
       const facts = await files.facts(join(path, name));
@@ -206,7 +206,7 @@ async function turnedScan(options: MakeAssignmentsOptions, assignment: Assignmen
       else payload.push({ path: `${inside}/${name}`, file: join(path, name), size: facts?.bytes ?? 0 });
     }
   };
-  await walk(join(folder, store), `${SCAN_FOLDER}/${store}`);
+  await walk(join(folder, STORE_NAME), `${SCAN_FOLDER}/${STORE_NAME}`);
   return { sha256: record.volume.sha256, payload };
 }
 

@@ -82,7 +82,7 @@ export async function takeInReturn(
     const sentence = `${packet.code} has ${counted(open.length, "open end")}: ${shown}. It was not taken in: have them finished, or allow them.`;
     throw conflict(packet.code, sentence, "no open end", counted(open.length, "open end"));
   }
-  const { volume, synthetic } = await library.specimen(assignment.specimen);
+  const { volume } = await library.specimen(assignment.specimen);
   const frame = turnedFrame(volume, assignment.turn);
   await keepAsItCame(options, study.id, bag, content);
   files.reach("take-in:after-evidence");
@@ -94,7 +94,7 @@ export async function takeInReturn(
       annotator: assignment.annotator,
       records: log.records.map((record) => recordInTrueFrame(record, frame)),
     },
-    { ...NEW_PASS, state: "finished", synthetic },
+    { ...NEW_PASS, state: "finished", returned: { study: study.id, assignment: assignment.id } },
   );
   files.reach("take-in:after-returned-pass");
   const at = options.now();

@@ -84,6 +84,15 @@ describe("a returned pass", () => {
     expect(await diskBelow(LEAD)).toEqual(before);
   });
 
+  it("stays as it was handed over, and keeps its specimen from being removed", async () => {
+    const { path } = await roundTrip();
+    const { specimen, pass } = await takenIn(lead, path);
+    const touch = () => drawTree(lead, specimen, pass!, "insertion", 8_000_000);
+    await refused(LEAD, touch, /came back from an annotator of a study and stays as it was handed over/);
+    await refused(LEAD, () => lead.library.setPassState(specimen, pass!, "under-way"), /stays as it was handed over/);
+    await refused(LEAD, () => lead.library.removeSpecimen(specimen, false), /hold 1 edits/);
+  });
+
   it("that was tampered with is refused, naming the file, what was expected and what was found", async () => {
     const { path } = await roundTrip();
     const tampered = await repacked(path, (inside) => {
