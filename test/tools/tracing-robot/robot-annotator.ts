@@ -15,11 +15,11 @@ const OUTSIDE_VOXELS = 1;
 
 /** The fixed plane in which trees lie best: the one whose line of sight they extend along least. */
 export function bestPlane(trees: readonly FileTree[]): FixedPlane {
-  const points = trees.flatMap((tree) => tree.strands.flatMap((strand) => strand.points!));
-  const extent = [0, 1, 2].map((axis) => {
-    const values = points.map((point) => point[axis]!);
+  const extentOf = (tree: FileTree, axis: number) => {
+    const values = tree.strands.flatMap((strand) => strand.points!.map((point) => point[axis]!));
     return Math.max(...values) - Math.min(...values);
-  });
+  };
+  const extent = [0, 1, 2].map((axis) => trees.reduce((sum, tree) => sum + extentOf(tree, axis), 0));
   return (["side", "front", "flat"] as const)[extent.indexOf(Math.min(...extent))]!;
 }
 
@@ -34,16 +34,14 @@ export function thickestFirst(trees: readonly FileTree[]): FileTree[] {
   return [...trees].sort((a, b) => radius(b) - radius(a));
 }
 
-async function drawString(desk: RobotDesk, string: StringToDraw, isBranch: boolean): Promise<void> {
+export async function drawString(desk: RobotDesk, string: StringToDraw, isBranch: boolean): Promise<void> {
   const { editor } = desk;
   const { line } = string;
   const whole = polylineLength(line);
   const begin = async () => {
     await desk.pointAt(line[0]!);
-    if (isBranch) {
-      await desk.key("B");
-      return;
-    }
+    // Where nothing passes that was drawn, the branch becomes a tree of its own: what went before it has gone astray.
+    if (isBranch && (await desk.key("B"))) return;
     await chooseInDepth(desk, string);
     await desk.click();
   };
@@ -111,7 +109,7 @@ function straightAhead(desk: RobotDesk, string: StringToDraw, from: number): num
  * Takes the next string in depth until the place that the pointer snapped to lies on the string meant, as it is seen; where none
  * does, the snap is released.
  */
-async function chooseInDepth(desk: RobotDesk, string: StringToDraw): Promise<void> {
+export async function chooseInDepth(desk: RobotDesk, string: StringToDraw): Promise<void> {
   for (let n = 0; ; n++) {
     const snapped = desk.editor.snapped.value;
     if (snapped === null || snapped.candidates === 0 || isOn(desk, snapped.point, string)) return;

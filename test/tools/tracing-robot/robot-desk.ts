@@ -4,7 +4,6 @@ import { signal } from "@preact/signals";
 import type { DeskContext } from "#renderer/editor/commands/desk-context.ts";
 import { TRACE_COMMANDS } from "#renderer/editor/commands/trace-commands.ts";
 import { Editor, type EditorPlaces } from "#renderer/editor/editor.ts";
-import type { FollowSource } from "#renderer/editor/tracing/follower.ts";
 import { NOTHING } from "#renderer/editor/tracing/under-way.ts";
 import type { Pointing } from "#renderer/editor/view-control.ts";
 import { fixedAxes, planeStepMm } from "#renderer/section/planes.ts";
@@ -13,6 +12,8 @@ import type { SolvedCurve } from "#shared/api/engine.ts";
 import { pointMm, type Vec3 } from "#shared/geometry/types.ts";
 import { add, dot, scale, subtract } from "#shared/geometry/vec3.ts";
 import type { SeededRandom } from "#shared/random/seeded-random.ts";
+import { followWhole } from "#shared/tracing/follow/follow-string.ts";
+import type { FollowProposal } from "#shared/tracing/follow/proposal.ts";
 import { type GuideFronts, openGuideFronts } from "#shared/tracing/guide/guide-fronts.ts";
 import { previewGuide } from "#shared/tracing/guide/guide-preview.ts";
 import { snap } from "#shared/tracing/guide/snap.ts";
@@ -48,13 +49,12 @@ export class RobotDesk {
     private readonly pyramid: VoxelPyramid,
     parameters: TraceParameters,
     private readonly random: SeededRandom,
-    follow?: FollowSource,
   ) {
     const { grid } = pyramid;
     this.voxelMm = Math.min(...grid.spacing);
     this.axes = fixedAxes("flat", grid.direction, null);
     this.depth = this.middleDepth();
-    this.editor = new Editor(placesOf(pyramid, parameters, this.failures, follow));
+    this.editor = new Editor(placesOf(pyramid, parameters, this.failures));
   }
 
   /** Another plane, by its key. */
@@ -90,18 +90,19 @@ export class RobotDesk {
     await this.editor.settled();
   }
 
-  /** A key of the desk's own command table. */
-  async key(key: string): Promise<void> {
+  /** A key of the desk's own command table; false when it does nothing now. */
+  async key(key: string): Promise<boolean> {
     this.effort.keys++;
     if (key === "Ctrl+Z") this.editor.undo();
     else {
       const command = TRACE_COMMANDS.find(({ keys }) => keys.includes(key));
       if (command === undefined) throw new Error(`no command has the key ${key}`);
       const context = { editor: this.editor, view: { pointing: this.pointing } } as unknown as DeskContext;
-      if (!command.enabled(context)) throw new Error(`the key ${key} does nothing now`);
+      if (!command.enabled(context)) return false;
       await command.perform(context);
     }
     await this.editor.settled();
+    return true;
   }
 
   /** Next string in depth; settles when the pointer has been answered. */
@@ -131,14 +132,10 @@ export class RobotDesk {
 }
 
 /** The engine's kernels as the editor asks for them; every answer is complete before it is given. */
-function placesOf(pyramid: VoxelPyramid, parameters: TraceParameters, failures: unknown[], follow?: FollowSource): EditorPlaces {
+function placesOf(pyramid: VoxelPyramid, parameters: TraceParameters, failures: unknown[]): EditorPlaces {
   const context = createTraceContext(pyramid, parameters.polarity);
   const guides = new Map<string, GuideFronts>();
-  const nothing: FollowSource = {
-    open: async () => null,
-    more: async () => null,
-    close: async () => undefined,
-  };
+  let followed: FollowProposal | null = null;
   return {
     keeper: new MemoryKeeper(),
     solve: async (strands) =>
@@ -161,7 +158,14 @@ function placesOf(pyramid: VoxelPyramid, parameters: TraceParameters, failures: 
       },
       close: async () => undefined,
     },
-    follow: follow ?? nothing,
+    follow: {
+      open: async (at, traced) => {
+        followed = followWhole(pyramid, context, parameters, at, { traced });
+        return { session: "f" };
+      },
+      more: async () => ({ done: true, growing: [], lengthMm: followed?.lengthMm ?? 0, proposal: followed }),
+      close: async () => undefined,
+    },
     serverBack: async () => undefined,
     failed: (error) => void failures.push(error),
     keepWaiting: () => undefined,
