@@ -27,6 +27,7 @@ th.words, td.words { text-align: left; }
 td.whole, th.whole { white-space: nowrap; }
 .table { overflow-x: auto; margin: .75rem 0 1.25rem; }
 .table > table { margin: 0; }
+.caption { color: var(--quiet); margin: 0 0 .3rem; }
 .notes { list-style: none; margin: .35rem 0 0; padding: 0; color: var(--quiet); font-size: .86em; max-width: 52rem; }
 .notes li { padding-left: 1.6em; text-indent: -1.6em; }
 .refusal { border-left: 3px double var(--ink); padding-left: .7rem; font-style: italic; }
@@ -37,10 +38,12 @@ figure { margin: 1rem 0; break-inside: avoid; }
 figcaption { color: var(--quiet); max-width: 46rem; }
 svg { max-width: 100%; height: auto; }
 .row { display: flex; flex-wrap: wrap; gap: 1.25rem; }
-@page { size: A4; margin: 16mm; }
+@page { size: A4; margin: 16mm 16mm 18mm; @bottom-left { content: "Research use only"; font: 8pt system-ui, sans-serif; color: #57616b; } @bottom-right { content: "page " counter(page) " of " counter(pages); font: 8pt system-ui, sans-serif; color: #57616b; } }
 @media print {
   body { padding: 0; max-width: none; font-size: 9.5pt; }
   a { color: inherit; text-decoration: none; }
+  nav { break-inside: avoid; }
+  nav a { padding: 0; }
   p, ul, .notes, figcaption { max-width: none; orphans: 3; widows: 3; }
   table { font-size: 8pt; }
   th, td { padding: .18rem .4rem; }
@@ -48,7 +51,7 @@ svg { max-width: 100%; height: auto; }
   .table { overflow: visible; }
   p:has(+ .table.short), p:has(+ figure) { break-after: avoid; break-inside: avoid; }
   .table.short, tr, figure, .cautions, li { break-inside: avoid; }
-  caption { break-after: avoid; }
+  caption, .caption { break-after: avoid; }
   thead { display: table-header-group; }
   .row svg[width="330"] { width: 48.5%; }
 }

@@ -46,7 +46,9 @@ export function passesSection({ found, context }: ReportInput): ReportSection {
   for (const specimen of new Set(found.passes.map((pass) => pass.specimen))) {
     const cells = people.map((name) => {
       const own = found.passes.filter((pass) => pass.specimen === specimen && pass.annotator === name);
-      const days = own.map(({ pass, created }) => `pass\u00a0${pass}:\u00a0${created?.slice(0, 10) ?? "day not said"}`);
+      const days = own.map(
+        ({ pass, created }) => `pass\u00a0${pass}:\u00a0${created?.slice(0, 10).replaceAll("-", "\u2011") ?? "day not said"}`,
+      );
       return days.length === 0 ? "not done" : days.join("; ");
     });
     table.row(specimen, ...cells);

@@ -20,13 +20,13 @@ export function continuousSection({ found, context }: ReportInput, quantities: r
       : text(`Primary quantity, set beforehand: ${primary}. All others are descriptive; no p-value is given.`),
   ];
   if (list.length === 0) blocks.push(text("There is no quantity to speak of.", "refusal"));
-  else blocks.push(overview(list));
+  else blocks.push(overview(list, found.items));
   for (const one of list)
     blocks.push(...oneQuantity(one, quantities.find(({ quantity }) => quantity === one.quantity)!, found.annotators));
   return { id: "continuous", title: "Lengths, radii and angles", blocks };
 }
 
-function overview(list: readonly ContinuousAgreement[]) {
+function overview(list: readonly ContinuousAgreement[], items: ReportInput["found"]["items"]) {
   const table = new TableOf("Overview: all annotators' first passes", [
     { name: "quantity", words: true },
     { name: "rests on", words: true },
@@ -52,6 +52,9 @@ function overview(list: readonly ContinuousAgreement[]) {
   table.note(
     "SEM and SDC are of absolute agreement: systematic differences between annotators enter. Krippendorff's alpha rests on all rows, also incomplete ones.",
   );
+  const near =
+    items.nearGateShare === null ? "" : `; ${percent(items.nearGateShare)} of the pairs lie within 10 % of the matching gate`;
+  table.note(`Numbers on matched items rest on ${items.matched} of ${items.union} strands and on nodes matched likewise${near}.`);
   return table.table;
 }
 

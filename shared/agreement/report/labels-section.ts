@@ -47,6 +47,9 @@ function overview(caption: string, list: readonly CategoricalAgreement[]) {
       table.number(ac1.value, 3, ac1.reasons.value),
       ac2 ? table.number(ac2.value, 3, ac2.reasons.value) : table.number(null, 3, unordered),
     );
+    const known = overSpecimens.perSpecimen.filter((value) => value !== null);
+    if (!overSpecimens.jackknife && known.length > 1)
+      table.note(`${label}, alpha of single specimens: ${known.map((value) => fixed(value, 2)).join(", ")}.`);
     if (overSpecimens.bootstrap) table.note(`${label}, ${overSpecimens.bootstrap.method}: ${ends(overSpecimens.bootstrap, 3)}.`);
   }
   return table.table;

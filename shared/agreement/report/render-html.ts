@@ -55,5 +55,5 @@ function renderTable({ caption, columns, rows, notes }: ReportTable): string {
   const under = notes.length > 0 ? `<ul class="notes">${notes.map((note) => `<li>${escapeHtml(note)}</li>`).join("")}</ul>` : "";
   // A wide table can be moved within its frame, also by keyboard.
   const frame = `class="table${rows.length <= SHORT_TABLE ? " short" : ""}" tabindex="0" role="region" aria-label="${escapeHtml(caption)}"`;
-  return `<div ${frame}><table><caption>${escapeHtml(caption)}</caption><thead><tr>${head}</tr></thead><tbody>\n${body}\n</tbody></table>${under}</div>`;
+  return `<div ${frame}><p class="caption">${escapeHtml(caption)}</p><table><thead><tr>${head}</tr></thead><tbody>\n${body}\n</tbody></table>${under}</div>`;
 }
