@@ -18,7 +18,7 @@ export function packedHere(bytes: Uint8Array): Uint8Array {
   return gzipSync(bytes, { level: PACK_LEVEL });
 }
 
-/** The inverse, in this thread. @throws RangeError when more than `most` bytes come out; Error when the stream is damaged. */
+/** The inverse, in this thread, as the engine does it. @throws RangeError when more than `most` bytes come out; Error when the stream is damaged. */
 export function unpackedHere(bytes: Uint8Array, most: number): Uint8Array {
-  return gunzipSync(bytes, { maxOutputLength: most });
+  return gunzipSync(bytes, { maxOutputLength: most, chunkSize: most + 1 });
 }

@@ -4,9 +4,8 @@ import { BYTES_OF_DTYPE } from "#shared/volume/dtype.ts";
 import type { ChunkFile, ChunkFiles, ChunkSource } from "#shared/volume/store/chunk-files.ts";
 import { type ChunkedArray, indexBytes } from "#shared/volume/store/chunked-array.ts";
 import { ABSENT } from "#shared/volume/store/layout.ts";
+import type { UnpackedChunks } from "#shared/volume/store/unpacked-chunks.ts";
 
-/** Unpacked chunks that a reader keeps: neighbouring bricks come out of the same ones. */
-const UNPACKED_BYTES = 8 * 1024 * 1024;
 /** A packed chunk is hardly ever larger than its voxels; anything far above is no chunk. */
 const MOST_GROWTH = 1.1;
 
@@ -19,7 +18,7 @@ interface Place {
 
 /**
  * Reads bricks out of a chunked array, whatever the size of its chunks. Calls block. Of plain chunks only rows are read, of
- * packed ones whole chunks, a few of which are kept unpacked (to 8 MB).
+ * packed ones whole chunks, the last few of which are kept unpacked where several bricks come out of one.
  */
 export class BrickReader {
   readonly #array: ChunkedArray;
@@ -28,13 +27,13 @@ export class BrickReader {
   readonly #folder: string;
   readonly #voxel: number;
   readonly #chunkBytes: number;
-  /** By chunk number; least recently used first. */
-  readonly #unpacked = new Map<number, Uint8Array>();
+  readonly #unpacked: UnpackedChunks;
   #rows = new Uint8Array(0);
 
-  /** @param folder tells this array's files apart from those of others in `files`. */
-  constructor(array: ChunkedArray, folder: string, files: ChunkFiles, source: ChunkSource) {
+  /** @param folder tells this array's files and chunks apart from those of others in `files` and `unpacked`. */
+  constructor(array: ChunkedArray, folder: string, files: ChunkFiles, source: ChunkSource, unpacked: UnpackedChunks) {
     this.#array = array;
+    this.#unpacked = unpacked;
     this.#folder = folder;
     this.#files = files;
     this.#source = source;
@@ -52,10 +51,12 @@ export class BrickReader {
     const [cz, cy, cx] = chunk;
     const bytes = depth * BRICK_SIDE * BRICK_SIDE * this.#voxel;
     const out = into.subarray(0, bytes);
-    if (packing === "plain" && cx === BRICK_SIDE && cy === BRICK_SIDE && cz % depth === 0) {
+    const isBricks = cx === BRICK_SIDE && cy === BRICK_SIDE && cz % depth === 0;
+    if (isBricks && (packing === "plain" || cz === depth)) {
       // A brick is a whole chunk, or some of its slices in one piece.
       const place = this.#place(Math.floor(z0 / cz), y0 / cy, x0 / cx);
       if (place === null) this.#fill(out);
+      else if (packing !== "plain") out.set(this.#unpackHere(place));
       else {
         this.#refuseCut(place, this.#chunkBytes);
         place.file.readInto(out, place.offset + (z0 % cz) * BRICK_SIDE * BRICK_SIDE * this.#voxel);
@@ -108,15 +109,16 @@ export class BrickReader {
   }
 
   #unpack(k: readonly [number, number, number], place: Place): Uint8Array {
-    const { shape, chunk, packing } = this.#array;
-    const [across, down] = [Math.ceil(shape[2] / chunk[2]), Math.ceil(shape[1] / chunk[1])];
-    const number = (k[0] * down + k[1]) * across + k[2];
-    const known = this.#unpacked.get(number);
-    if (known) {
-      this.#unpacked.delete(number);
-      this.#unpacked.set(number, known);
-      return known;
-    }
+    const key = `${this.#folder} ${k[0]} ${k[1]} ${k[2]}`;
+    const known = this.#unpacked.get(key);
+    if (known) return known;
+    const plain = this.#unpackHere(place);
+    this.#unpacked.set(key, plain);
+    return plain;
+  }
+
+  #unpackHere(place: Place): Uint8Array {
+    const { packing } = this.#array;
     const most = Math.ceil(this.#chunkBytes * MOST_GROWTH) + 1024;
     if (place.length > most) throw this.#damaged(place, `at most ${most} packed bytes`, `${place.length}`);
     const bytes = new Uint8Array(place.length);
@@ -130,11 +132,6 @@ export class BrickReader {
     }
     if (plain.length !== this.#chunkBytes)
       throw this.#damaged(place, `a chunk of ${this.#chunkBytes} bytes`, `${plain.length} bytes`);
-    this.#unpacked.set(number, plain);
-    for (const oldest of this.#unpacked.keys()) {
-      if (this.#unpacked.size * this.#chunkBytes <= UNPACKED_BYTES || this.#unpacked.size === 1) break;
-      this.#unpacked.delete(oldest);
-    }
     return plain;
   }
 

@@ -6,6 +6,7 @@ import { ChunkFiles } from "#shared/volume/store/chunk-files.ts";
 import { type ChunkedArray, ownArray } from "#shared/volume/store/chunked-array.ts";
 import { levelFolder } from "#shared/volume/store/layout.ts";
 import { chunkFolder, readText, type SyncDisk } from "#shared/volume/store/sync-disk.ts";
+import { UnpackedChunks } from "#shared/volume/store/unpacked-chunks.ts";
 import { layoutOfArray } from "#shared/volume/store/zarr-layout.ts";
 
 /** Files kept open by one store. */
@@ -21,6 +22,7 @@ export type KeptVolume = Pick<SpecimenVolume, "dtype" | "size" | "packing" | "in
  */
 export class StoreBricks {
   readonly #files = new ChunkFiles(MOST_OPEN);
+  readonly #unpacked = new UnpackedChunks();
   readonly #readers: (BrickReader | undefined)[] = [];
   readonly #disk: SyncDisk;
   readonly #folder: string;
@@ -47,6 +49,7 @@ export class StoreBricks {
 
   close(): void {
     this.#files.close();
+    this.#unpacked.clear();
     this.#readers.length = 0;
   }
 
@@ -55,7 +58,8 @@ export class StoreBricks {
     if (level === 0 && inPlace) return this.#openInPlace(inPlace);
     const folder = `${this.#folder}/${levelFolder(level)}`;
     const array = ownArray(level, this.#levels[level]!.size, dtype, packing ?? "plain");
-    return new BrickReader(array, folder, this.#files, chunkFolder(this.#disk, folder, { advice: DAMAGED }));
+    const source = chunkFolder(this.#disk, folder, { advice: DAMAGED });
+    return new BrickReader(array, folder, this.#files, source, this.#unpacked);
   }
 
   #openInPlace(scan: InPlaceScan): BrickReader {
@@ -69,7 +73,7 @@ export class StoreBricks {
         if (Math.floor(changed) > scan.changed) throw changedInPlace(scan, "a chunk that was written since");
       },
     });
-    return new BrickReader(array, folder, this.#files, source);
+    return new BrickReader(array, folder, this.#files, source, this.#unpacked);
   }
 
   #layoutInPlace(scan: InPlaceScan): ChunkedArray {

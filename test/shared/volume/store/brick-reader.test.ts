@@ -5,6 +5,7 @@ import { isTautlineError } from "#shared/errors.ts";
 import { BrickReader } from "#shared/volume/store/brick-reader.ts";
 import { type ChunkFile, ChunkFiles, type ChunkSource } from "#shared/volume/store/chunk-files.ts";
 import type { ChunkedArray, Packing } from "#shared/volume/store/chunked-array.ts";
+import { UnpackedChunks } from "#shared/volume/store/unpacked-chunks.ts";
 import { seeded } from "#test/shared/tracing/tube-phantom.ts";
 
 type Zyx = readonly [number, number, number];
@@ -122,7 +123,7 @@ describe("bricks", () => {
         ["end", 16],
       ] as const) {
         const { array, files } = written(chunk, packing, shardAt);
-        expect(wrongVoxels(new BrickReader(array, "a", new ChunkFiles(3), sourceOf(files)), depth)).toBe(0);
+        expect(wrongVoxels(new BrickReader(array, "a", new ChunkFiles(3), sourceOf(files), new UnpackedChunks()), depth)).toBe(0);
       }
     });
 
@@ -130,8 +131,8 @@ describe("bricks", () => {
     const { array, files } = written([16, 25, 35], "gzip", null);
     files.delete("1/0/1");
     const isOut = (z: number, y: number, x: number) => z >= 16 && z < 32 && y < 25 && x >= 35;
-    expect(wrongVoxels(new BrickReader(array, "a", new ChunkFiles(3), sourceOf(files)), 32, isOut)).toBe(0);
-    const strict = new BrickReader({ ...array, fill: null }, "a", new ChunkFiles(3), sourceOf(files));
+    expect(wrongVoxels(new BrickReader(array, "a", new ChunkFiles(3), sourceOf(files), new UnpackedChunks()), 32, isOut)).toBe(0);
+    const strict = new BrickReader({ ...array, fill: null }, "a", new ChunkFiles(3), sourceOf(files), new UnpackedChunks());
     expect(() => wrongVoxels(strict, 32)).toThrow(/1\/0\/1.*Mend it/);
   });
 
@@ -139,7 +140,7 @@ describe("bricks", () => {
     const { array, files } = written([8, 50, 70], "plain", null);
     const opened: string[] = [];
     const open = new ChunkFiles(2);
-    wrongVoxels(new BrickReader(array, "a", open, sourceOf(files, opened)), 32);
+    wrongVoxels(new BrickReader(array, "a", open, sourceOf(files, opened), new UnpackedChunks()), 32);
     expect(opened.filter((entry) => !entry.startsWith("closed")).length).toBe(
       opened.filter((entry) => entry.startsWith("closed")).length + 2,
     );
@@ -169,7 +170,13 @@ describe("bricks", () => {
       }
       const files = new Map([[path, bytes]]);
       try {
-        new BrickReader(array, "a", new ChunkFiles(3), sourceOf(files)).readBrick(0, 0, 0, 32, new Uint8Array(65536));
+        new BrickReader(array, "a", new ChunkFiles(3), sourceOf(files), new UnpackedChunks()).readBrick(
+          0,
+          0,
+          0,
+          32,
+          new Uint8Array(65536),
+        );
       } catch (error) {
         expect(isTautlineError(error, "unreadable-input")).toBe(true);
       }
