@@ -40,6 +40,13 @@ async function drawnFor(library: string): Promise<Map<string, Drawn>> {
   );
 }
 
+/** SHA-256 of the only specimen's stored voxels. */
+async function scanHash(library: string): Promise<string> {
+  const [specimen] = await readdir(join(library, "specimens"));
+  const text = await readFile(join(library, "specimens", specimen!, "specimen.json"), "utf8");
+  return (JSON.parse(text) as { volume: { sha256: string } }).volume.sha256;
+}
+
 /** Traces the trunk and both upper branches; with `all`, the left branch too. */
 async function traceTree(page: Page, { plane, toShown }: Drawn, all: boolean): Promise<void> {
   await page.getByRole("button", { name: plane, exact: true }).click();
@@ -70,6 +77,10 @@ describe("an agreement study, from the lead to the annotator and back", () => {
   let packets: Map<string, string>;
   let drawn: Map<string, Drawn>;
   let returned: string;
+  /** Every answer in words that the annotator's window was given. */
+  const heard: Promise<string>[] = [];
+  /** What must not reach an annotator: names, and the hash of the scan itself. */
+  let kept: readonly string[];
 
   const inBothThemes = async (page: Page, where: string) => {
     for (const theme of ["light", "dark"]) {
@@ -87,6 +98,9 @@ describe("an agreement study, from the lead to the annotator and back", () => {
     };
     lead = await start();
     annotator = await start();
+    annotator.open.page.on("response", (answer) => {
+      if (answer.headers()["content-type"]?.includes("application/json")) heard.push(answer.text().catch(() => ""));
+    });
     out = join(lead.program.folder, "stick");
     await mkdir(join(out, "back"), { recursive: true });
   });
@@ -106,10 +120,11 @@ describe("an agreement study, from the lead to the annotator and back", () => {
     const paths = await makePackets(page, out);
     expect(paths).toHaveLength(2);
     drawn = await drawnFor(lead.program.library);
+    kept = ["small-tree", "Harrow Bay", "AN-1", "AN-2", await scanHash(lead.program.library)];
     packets = new Map([...drawn].map(([name, { code }]) => [name, paths.find((path) => path.includes(code))!] as const));
     for (const path of packets.values()) {
       const text = await wholeText(path);
-      for (const word of ["small-tree", "Harrow Bay", "AN-1", "AN-2"]) expect(text).not.toContain(word);
+      for (const word of kept) expect(text).not.toContain(word);
     }
     await page.locator(".pass-cell").first().getByText("out", { exact: true }).waitFor();
   });
@@ -129,7 +144,7 @@ describe("an agreement study, from the lead to the annotator and back", () => {
     await inBothThemes(page, "rules");
     await page.keyboard.press("Escape");
     const text = await page.evaluate(() => document.body.textContent);
-    for (const word of ["small-tree", "Harrow Bay", "AN-1", "AN-2"]) expect(text).not.toContain(word);
+    for (const word of kept) expect(text).not.toContain(word);
   });
 
   it("is not handed back with an open end without that end being named, and the lead refuses it", async () => {
@@ -280,6 +295,13 @@ describe("an agreement study, from the lead to the annotator and back", () => {
     await inBothThemes(page, "new study");
     await page.keyboard.press("Escape");
     await inBothThemes(page, "shelf with a study");
+  });
+
+  it("never told the annotator's window a name of the study, or the scan's own hash", async () => {
+    const all = await Promise.all(heard);
+    // Both assignments were worked on, so that their answers are among these.
+    for (const { code } of drawn.values()) expect(all.some((text) => text.includes(code))).toBe(true);
+    for (const word of kept) expect(all.filter((text) => text.includes(word))).toEqual([]);
   });
 
   it("met no fault on the way but the refusals it was made to meet", () => {

@@ -46,6 +46,7 @@ export async function takePictures(folder: string, say: (line: string) => void):
     await settled(page);
     await page.screenshot({ path: join(folder, "tracing.png") });
     say("tracing.png");
+    await demoStudy(page, picture);
   } finally {
     await close();
     await program.stop();
@@ -58,6 +59,22 @@ async function sideBySide(page: Page): Promise<void> {
   await page.getByRole("button", { name: "Compare", exact: true }).click();
   await page.locator(".difference-row").first().waitFor({ timeout: PATIENCE_MS });
   for (let k = 0; k < 2; k++) await page.keyboard.press("q");
+}
+
+/** The demo study's passes, and its report where it says in space how far annotators differ. */
+async function demoStudy(page: Page, picture: (name: string) => Promise<void>): Promise<void> {
+  await page
+    .getByRole("link", { name: "shelf" })
+    .or(page.getByRole("button", { name: "shelf" }))
+    .first()
+    .click();
+  await page.getByRole("button", { name: "Open the demo study" }).first().click();
+  await page.locator(".report-view").waitFor({ timeout: 5 * PATIENCE_MS });
+  await page.getByRole("button", { name: "Totals of each specimen" }).click();
+  await picture("study-report");
+  await page.getByRole("tab", { name: "Passes" }).click();
+  await page.locator(".pass-cell").first().click();
+  await picture("study");
 }
 
 /** Nothing on the page is waiting any more, as far as can be seen. */

@@ -1,3 +1,5 @@
+import { useEffect, useRef } from "preact/hooks";
+import { drawingOf } from "#renderer/study/report/drawing.ts";
 import type { ReportBlock, ReportTable } from "#shared/agreement/report/report-data.ts";
 
 /** One block of a report as the page shows it; the HTML file shows the same. */
@@ -19,8 +21,7 @@ export function Block({ block }: { readonly block: ReportBlock }) {
       return (
         <figure class="report-figure">
           {block.svgs.map((svg) => (
-            // Drawn by the program itself from numbers and escaped names; the same text goes into the HTML file.
-            <div key={svg} class="report-drawing" dangerouslySetInnerHTML={{ __html: svg }} />
+            <Drawing key={svg} svg={svg} />
           ))}
           <figcaption class="soft">{block.caption}</figcaption>
         </figure>
@@ -28,6 +29,14 @@ export function Block({ block }: { readonly block: ReportBlock }) {
     case "table":
       return <Table table={block} />;
   }
+}
+
+function Drawing({ svg }: { readonly svg: string }) {
+  const host = useRef<HTMLDivElement>(null);
+  useEffect(() => {
+    host.current!.replaceChildren(drawingOf(svg) ?? "This drawing cannot be shown.");
+  }, [svg]);
+  return <div ref={host} class="report-drawing" />;
 }
 
 function Table({ table }: { readonly table: ReportTable }) {
