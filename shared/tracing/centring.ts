@@ -110,11 +110,11 @@ function isNear(path: Float64Array, targets: Float64Array, i: number, distanceMm
 }
 
 /**
- * How far smoothing reaches along the curve: half a radius (a thick string's middle is little moved by noise, and its bends are not
+ * How far smoothing reaches along the curve: a third of a radius (a thick string's middle is little moved by noise, and its bends are not
  * to be cut), and never less than two voxels.
  */
 function smoothingLength(radiusMm: number, stepMm: number): number {
-  return Math.max(0.6 * radiusMm, 2.5 * stepMm);
+  return Math.max(0.3 * radiusMm, 2.5 * stepMm);
 }
 
 /** True when a third of the curve or more runs along the bottom of a hollow at the narrow scale: a dark core. */

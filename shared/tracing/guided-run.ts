@@ -20,10 +20,10 @@ export interface MeasuredCurve {
   readonly fits: Float64Array;
 }
 
-/** Points across a bend: the curve is centred at steps of a voxel, or a quarter of a thick string's radius. */
+/** Points across a bend: the curve is centred at steps of a voxel, or an eighth of a thick string's radius. */
 function knotStep(context: TraceContext, radii: Float64Array): number {
   const typical = medianOf([...radii].filter(Number.isFinite));
-  return Math.max(finestSpacing(context.pyramid, 0), 0.25 * typical);
+  return Math.max(finestSpacing(context.pyramid, 0), 0.125 * typical);
 }
 
 /**

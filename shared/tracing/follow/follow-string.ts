@@ -1,17 +1,20 @@
 import { SegmentIndex } from "#shared/geometry/segment-index.ts";
 import type { PointMm, Vec3 } from "#shared/geometry/types.ts";
 import { distance, mix } from "#shared/geometry/vec3.ts";
+import { oneOrigin } from "#shared/tracing/follow/one-origin.ts";
 import type { FollowProposal } from "#shared/tracing/follow/proposal.ts";
 import { type DoubtfulPlace, propose } from "#shared/tracing/follow/propose.ts";
 import { placeForks, type StringGraph, smoothed, stringGraph } from "#shared/tracing/follow/string-graph.ts";
 import { trimBranches } from "#shared/tracing/follow/trim-branches.ts";
 import { fromLocal, localToIndex, toLocal } from "#shared/tracing/local-frame.ts";
 import { ridgeNearPin } from "#shared/tracing/pin-ridge.ts";
+import { medianOf } from "#shared/tracing/polyline.ts";
 import type { TraceParameters } from "#shared/tracing/strand-request.ts";
 import { type GrownString, growString } from "#shared/tracing/strings/grow-string.ts";
 import { leastStrength } from "#shared/tracing/strings/least-strength.ts";
 import { outwardBranches } from "#shared/tracing/strings/outward.ts";
 import { partContacts, withoutInnerSpurs } from "#shared/tracing/strings/part-contacts.ts";
+import { isRim } from "#shared/tracing/strings/rim.ts";
 import { createStringField, type StringField, type StringPoint } from "#shared/tracing/strings/string-field.ts";
 import { type ThinPath, thinTree } from "#shared/tracing/strings/thin-tree.ts";
 import type { StopSignal, TraceContext } from "#shared/tracing/trace-context.ts";
@@ -73,7 +76,10 @@ export function* followString(
     yield { lines: () => thinLines(grown, scan, voxelMm) };
   }
   const points = placed(grown);
-  const thin = withoutInnerSpurs(thinTree(points, SHORTEST_VOXELS * voxelMm), points.places, points.radii);
+  const whole = withoutInnerSpurs(thinTree(points, SHORTEST_VOXELS * voxelMm), points.places, points.radii);
+  const thin = whole.filter(
+    (path) => !isRim(context, placesAt(points.places, path), medianOf(path.map((n) => points.radii[n]!))),
+  );
   if (thin.length === 0) return null;
   const { paths, copies, contacts } = partContacts(thin, points.places, points.radii, voxelMm);
   for (const of of copies.values()) {
@@ -82,12 +88,22 @@ export function* followString(
   }
   const branches = outwardBranches(paths, nearestOnPaths(points.places, paths, click));
   const trimmed = trimBranches(context, points, branches);
-  const graph = stringGraph(branches, trimmed);
-  if (graph.strands.length === 0) return null;
+  const found = stringGraph(branches, trimmed);
+  if (found.strands.length === 0) return null;
+  const { graph, cuts } = oneOrigin(found, click);
   placeForks(graph, voxelMm);
   const meets = meetings(graph, lines, field);
   const rough = graph.strands.map(({ places }) => flatInFrame(smoothed(places, voxelMm), scan));
-  const solving = propose(scan, context, parameters, graph, doubtfulPlaces(grown, contacts, voxelMm), click, meets, signal);
+  const solving = propose(
+    scan,
+    context,
+    parameters,
+    graph,
+    doubtfulPlaces(grown, [...contacts, ...cuts], voxelMm),
+    click,
+    meets,
+    signal,
+  );
   for (;;) {
     const step = solving.next();
     if (step.done) return step.value;
@@ -135,6 +151,10 @@ function seedNear(field: StringField, at: Vec3, radiusMm: number, allowed: (poin
     if (!best || distance(point.at, at) < distance(best.at, at)) best = point;
   }
   return best;
+}
+
+function placesAt(places: readonly Vec3[], path: ThinPath): Vec3[] {
+  return path.map((n) => places[n]!);
 }
 
 function placed({ points, links }: GrownString) {

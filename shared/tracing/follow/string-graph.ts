@@ -65,7 +65,7 @@ export function stringGraph(branches: readonly OutwardBranch[], trimmed: readonl
       .filter((_, n) => n !== short)
       .map((strand) => ({ ...strand, a: strand.a === b ? a : strand.a, b: strand.b === b ? a : strand.b }));
   }
-  return compact(nodes, strands);
+  return compactGraph(nodes, strands);
 }
 
 function degree(strands: readonly GraphStrand[], node: number): number {
@@ -73,7 +73,7 @@ function degree(strands: readonly GraphStrand[], node: number): number {
 }
 
 /** Joins the two strands of every node that has two. */
-function passedThrough(from: readonly GraphStrand[]): GraphStrand[] {
+export function passedThrough(from: readonly GraphStrand[]): GraphStrand[] {
   const strands = [...from];
   for (let joined = true; joined; ) {
     joined = false;
@@ -111,7 +111,8 @@ export function turned({ a, b, places, radii }: GraphStrand): GraphStrand {
   return { a: b, b: a, places: [...places].reverse(), radii: [...radii].reverse() };
 }
 
-function compact(nodes: readonly GraphNode[], strands: readonly GraphStrand[]): StringGraph {
+/** The nodes that strands still end at, and those strands, numbered anew. */
+export function compactGraph(nodes: readonly GraphNode[], strands: readonly GraphStrand[]): StringGraph {
   const used = [...new Set(strands.flatMap(({ a, b }) => [a, b]))].sort((a, b) => a - b);
   const number = new Map(used.map((node, n) => [node, n]));
   return {

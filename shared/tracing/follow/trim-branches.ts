@@ -26,8 +26,6 @@ export interface PlacedPoints {
 /** The outline is not separate any more where it is this many times as wide as it was before, and a part of a voxel besides. */
 const JOINED_WIDTH = 1.35;
 const JOINED_VOXELS = 0.6;
-/** Beside a fork the other arms widen the outline; there it is not separate from this many times its own width on. */
-const JOINED_FORK_WIDTH = 2.2;
 /** Outlines are looked for this far, in radii of the string, and voxels besides. */
 const REACH_RADII = 2.4;
 const REACH_VOXELS = 3;
@@ -123,15 +121,14 @@ class BranchMemory {
     );
   }
 
-  /** True where the outline is that of a fork. */
+  /** True where the outline is that of a fork, whose other arms widen it. */
   isAtFork(i: number): boolean {
     return this.arc[i]! < this.forkMm || this.arc[i]! > this.arc[this.arc.length - 1]! - this.outerForkMm;
   }
 
   /** True when an outline is wider than that of the string before place `i`. */
   isJoined(outline: number, i: number): boolean {
-    const width = this.isAtFork(i) ? JOINED_FORK_WIDTH : JOINED_WIDTH;
-    return outline > width * this.medianBefore(i, this.outlines) + JOINED_VOXELS * this.voxelMm;
+    return outline > JOINED_WIDTH * this.medianBefore(i, this.outlines) + JOINED_VOXELS * this.voxelMm;
   }
 
   /** Median radius over the stretch before a place (of the branch's beginning, where there is none). */
@@ -159,6 +156,7 @@ function joinedFrom(memory: BranchMemory): number {
   const { outlines, arc } = memory;
   let first = -1;
   for (let i = 0; i < arc.length; i++) {
+    if (memory.isAtFork(i)) continue;
     if (memory.isJoined(outlines[i]!, i)) {
       if (first < 0) first = i;
       if (arc[i]! - arc[first]! >= memory.radiusAt(i) || i === arc.length - 1) return first;

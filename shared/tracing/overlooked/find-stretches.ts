@@ -6,10 +6,9 @@ import { type FoundPoints, searchLevel } from "#shared/tracing/overlooked/search
 import type { OverlookedStretch } from "#shared/tracing/overlooked/stretch.ts";
 import { medianOf, resample } from "#shared/tracing/polyline.ts";
 import { smoothInto } from "#shared/tracing/smooth.ts";
-import { sheetShare } from "#shared/tracing/strings/bright-share.ts";
 import { isRippleOf } from "#shared/tracing/strings/grow-string.ts";
 import { leastStrength } from "#shared/tracing/strings/least-strength.ts";
-import { directionAt } from "#shared/tracing/strings/outward.ts";
+import { isRim } from "#shared/tracing/strings/rim.ts";
 import { type ThinPath, thinTree } from "#shared/tracing/strings/thin-tree.ts";
 import type { TraceContext } from "#shared/tracing/trace-context.ts";
 import type { VolumeGrid } from "#shared/volume/grid.ts";
@@ -45,8 +44,6 @@ const LEAST_SLENDER = 2;
 const LEAST_CHORD = 0.3;
 /** Outside all tubes at least this share of the minimum. */
 const LEAST_OUTSIDE = 0.25;
-/** The rim of a sheet has it beside it along three quarters of its length. */
-const RIM_QUANTILE = 0.25;
 /** Median bright share of a stretch, at most: more is the rim of a sheet. */
 const MOST_SHARE = 0.24;
 
@@ -280,13 +277,6 @@ function stretchOf(
     points: places.flat(),
     radiusMm: roundMm(radiusMm),
   };
-}
-
-/** True when a sheet hangs on the line along three quarters of its length or more. */
-function isRim(context: TraceContext, line: readonly Vec3[], radiusMm: number): boolean {
-  const shares = line.map((at, n) => sheetShare(context, at, directionAt(line, n, 3 * radiusMm), radiusMm));
-  shares.sort((a, b) => a - b);
-  return shares[Math.floor(RIM_QUANTILE * shares.length)]! > 0;
 }
 
 function smoothedLine(spots: readonly Vec3[], voxelMm: number): Vec3[] {
