@@ -1,5 +1,6 @@
 import type { Page } from "playwright-core";
 import { afterAll, beforeAll, expect, test } from "vitest";
+import { seriousViolations } from "#test/browser/axe-violations.ts";
 import { openTestPage, type TestPage } from "#test/browser/views/open-page.ts";
 // @ts-expect-error a plain script without types
 import { bringBrowser } from "#test/tools/browser.mjs";
@@ -16,8 +17,8 @@ const asked = (page: Page, what: string) =>
   page.evaluate((name) => window.shelf.asked.filter((entry) => entry.what === name).map((entry) => entry.detail), what);
 
 /** The sheet over a made-up scan of 1040 x 1040 x 1310 voxels. */
-async function sheet(path: string, query = "?later"): Promise<Page> {
-  const page = await pages.open(query);
+async function sheet(path: string, query = "?later", size = { width: 1280, height: 800 }): Promise<Page> {
+  const page = await pages.open(query, size);
   await page.getByRole("button", { name: "Add a scan" }).first().click();
   await page.getByLabel("Path of the file").fill(path);
   await page.keyboard.press("Enter");
@@ -136,4 +137,44 @@ test("a packed copy shows what it gains and costs once it is measured; a store i
   expect(await other.getByLabel("where it lies").isDisabled()).toBe(true);
   await other.getByText("packed with blosc").waitFor();
   await other.context().close();
+});
+
+/** Parts of the form that lie over each other, run out of it, or are smaller than 24 px (WCAG 2.2, 2.5.8). */
+function faultsOfLayout(page: Page): Promise<string[]> {
+  return page.evaluate(() => {
+    const form = document.querySelector(".scan-form")!.getBoundingClientRect();
+    const parts = [...document.querySelectorAll(".scan-form :is(input, select, button, .part-frame)")].map((part) => {
+      // A choice is hit by its whole label.
+      const target = part.closest("label.scan-choice") ?? part;
+      return { name: target.outerHTML.slice(0, 60), box: target.getBoundingClientRect() };
+    });
+    const faults: string[] = [];
+    for (const [n, { name, box }] of parts.entries()) {
+      if (box.left < form.left - 1 || box.right > form.right + 1) faults.push(`out of the form: ${name}`);
+      if (box.width < 24 || box.height < 24) faults.push(`small: ${name}`);
+      for (const other of parts.slice(n + 1)) {
+        const across = Math.min(box.right, other.box.right) - Math.max(box.left, other.box.left);
+        const down = Math.min(box.bottom, other.box.bottom) - Math.max(box.top, other.box.top);
+        if (across > 1 && down > 1) faults.push(`over each other: ${name} and ${other.name}`);
+      }
+    }
+    return faults;
+  });
+}
+
+test("everything open at once is right by axe, and nothing lies over anything, in both themes and sizes", async () => {
+  for (const [theme, width, height] of [
+    ["dark", 1280, 800],
+    ["light", 1920, 1080],
+  ] as const) {
+    const page = await sheet("/scans/several-store.zarr", `?later&theme=${theme}`, { width, height });
+    await page.getByLabel("only a box of it").check();
+    await page.getByText("124 of 1 310 slices").waitFor();
+    await page.getByLabel("Box, x to").fill("2000");
+    await page.getByRole("alert").waitFor();
+    await page.getByLabel("as a packed copy").check();
+    expect(await seriousViolations(page)).toEqual([]);
+    expect(await faultsOfLayout(page)).toEqual([]);
+    await page.context().close();
+  }
 });

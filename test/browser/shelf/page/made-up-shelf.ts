@@ -107,6 +107,7 @@ export function projectionsOf(): ProjectionsAnswer {
 
 /** What some made-up scans have besides. */
 export function extrasOf(path: string): Partial<ScanLookAnswer> {
+  if (path.includes("several-store")) return { readings: { channels: 3, times: 200 }, inPlace: { fits: true } };
   if (path.includes("several")) return { readings: { channels: 3, times: 1 } };
   if (path.includes("store")) return { inPlace: { fits: true } };
   if (path.includes("blosc"))
