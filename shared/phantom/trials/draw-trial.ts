@@ -15,6 +15,7 @@ const THICK_VOXELS = 24;
 /** Streams of random numbers of one seed. */
 const RING_STREAM = 2;
 const NOISE_STREAM = 1;
+const TABLE_STREAM = 3;
 
 /**
  * The scan of a trial volume, shape [nz, ny, nx], x fastest: solids by 27 sub-samples a voxel (the highest level where they
@@ -37,17 +38,25 @@ export function drawTrial(spec: TrialSpec, seed: number): Uint16Array {
   }
   addRings(levels, sizeVoxels, look, seed);
   addStreaks(levels, spec);
+  const noise = normalTable(seed);
+  const bits = new Uint32Array(1 << 12);
   const random = new SeededRandom(seed, NOISE_STREAM);
   const sign = look.polarity === "bright" ? 1 : -1;
   const out = new Uint16Array(levels.length);
+  const deviation = STRING_CONTRAST / look.contrastToNoise;
   for (let i = 0; i < out.length; i++) {
-    const value =
-      BACKGROUND[look.polarity] +
-      sign * STRING_CONTRAST * levels[i]! +
-      (STRING_CONTRAST / look.contrastToNoise) * random.normal();
+    if (i % bits.length === 0) random.fill(bits);
+    const lot = noise[bits[i % bits.length]! & (noise.length - 1)]!;
+    const value = BACKGROUND[look.polarity] + sign * STRING_CONTRAST * levels[i]! + deviation * lot;
     out[i] = Math.min(65535, Math.max(0, Math.round(value)));
   }
   return out;
+}
+
+/** Normal numbers to draw noise from: a power of two of them. */
+function normalTable(seed: number): Float32Array {
+  const random = new SeededRandom(seed, TABLE_STREAM);
+  return Float32Array.from({ length: 1 << 14 }, () => random.normal());
 }
 
 /** Level at a share of the radius; what lies beyond share 1 is not of the string. */
@@ -206,6 +215,7 @@ function drawBody(canvas: Canvas, body: TrialBody): void {
       canvas.add([body.one[i]!, body.other[i]!], [body.widthMm / 2, body.widthMm / 2], () => body.level);
 }
 
+/** Blurs along one axis in place; beyond the sides all goes on as it is at them: strings that leave the scan do so. */
 function blurAlong(
   values: Float32Array,
   size: readonly [number, number, number],
@@ -214,18 +224,20 @@ function blurAlong(
 ): void {
   if (taps.length === 1) return;
   const halo = taps.length >> 1;
-  const stride = axis === 0 ? 1 : axis === 1 ? size[0] : size[0] * size[1];
   const n = size[axis];
-  const row = new Float64Array(n + 2 * halo);
-  const lines = values.length / n;
-  for (let line = 0; line < lines; line++) {
-    const start = Math.floor(line / stride) * stride * n + (line % stride);
-    // What lies beyond the sides goes on as it is at them: strings that leave the scan do so.
-    for (let i = -halo; i < n + halo; i++) row[i + halo] = values[start + Math.min(n - 1, Math.max(0, i)) * stride]!;
+  // Rows of neighbours that move together: along x single voxels, along y lines, along z planes.
+  const row = axis === 0 ? 1 : axis === 1 ? size[0] : size[0] * size[1];
+  const source = new Float32Array(n * row);
+  for (let from = 0; from < values.length; from += n * row) {
+    source.set(values.subarray(from, from + n * row));
     for (let i = 0; i < n; i++) {
-      let sum = 0;
-      for (let k = 0; k < taps.length; k++) sum += taps[k]! * row[i + k]!;
-      values[start + i * stride] = sum;
+      const to = from + i * row;
+      values.fill(0, to, to + row);
+      for (let k = -halo; k <= halo; k++) {
+        const weight = taps[k + halo]!;
+        const at = Math.min(n - 1, Math.max(0, i + k)) * row;
+        for (let q = 0; q < row; q++) values[to + q] = values[to + q]! + weight * source[at + q]!;
+      }
     }
   }
 }

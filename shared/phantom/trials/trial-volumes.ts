@@ -56,9 +56,9 @@ function string(name: string, line: Line, diameter: number, end = diameter): Tri
 }
 
 /** A string through the middle, about 80 voxels long; sizes in voxels. */
-function lineIn(f: Frame, random: SeededRandom, bend: Bend, beside: Vec3 = [0, 0, 0], length = 80): Line {
+function lineIn(f: Frame, random: SeededRandom, bend: Bend, length = 80): Line {
   const bent = { sagMm: bend.sagMm * f.voxel, waveMm: bend.waveMm * f.voxel };
-  return bentLine(add(f.middle, scale(beside, f.voxel)), nearX(0.15, random), length * f.voxel, bent, f.voxel, random);
+  return bentLine(f.middle, nearX(0.15, random), length * f.voxel, bent, f.voxel, random);
 }
 
 const STRAIGHT: Bend = { sagMm: 0, waveMm: 0 };
@@ -75,17 +75,18 @@ function pair(voxel: number, bend: Bend, gap: number, diameters: readonly [numbe
   };
 }
 
-function one(f: Frame, bend: Bend, diameter: number, end = diameter) {
-  return (random: SeededRandom) => volume(f, [string("one", lineIn(f, random, bend), diameter * f.voxel, end * f.voxel)]);
+function one(f: Frame, bend: Bend, diameter: number, end = diameter, length = 80) {
+  return (random: SeededRandom) => volume(f, [string("one", lineIn(f, random, bend, length), diameter * f.voxel, end * f.voxel)]);
 }
 
-/** A thick string straight through a volume cropped about it. */
-function strut(voxel: number, diameterMm: number, lengthMm: number) {
+/** A thick string that leaves a volume cropped about it at both ends. Two thirds of the volume are background. */
+function strut(voxel: number, diameterMm: number) {
   return (random: SeededRandom): TrialSpec => {
-    const across = Math.ceil((diameterMm * 1.35) / voxel / 2) * 2;
+    const lengthMm = 2.3 * diameterMm;
+    const across = Math.ceil((1.4 * diameterMm) / voxel / 2) * 2;
     const f = frame(voxel, {}, [Math.ceil(lengthMm / voxel), across, across]);
     const bend = { sagMm: 0.03 * lengthMm, waveMm: 0 };
-    const line = bentLine(f.middle, nearX(0.03, random), 0.9 * lengthMm, bend, Math.max(voxel, diameterMm / 12), random);
+    const line = bentLine(f.middle, nearX(0.03, random), 0.96 * lengthMm, bend, diameterMm / 4, random);
     return volume(f, [string("strut", line, diameterMm)]);
   };
 }
@@ -246,7 +247,7 @@ export const TRIAL_VOLUMES: readonly TrialVolume[] = [
     about: "one string of 3 mm at 100 um",
     topic: "plain",
     hard: false,
-    spec: one(frame(0.1, {}, [108, 72, 72]), { sagMm: 6, waveMm: 0 }, 30),
+    spec: one(frame(0.1, {}, [124, 66, 66]), { sagMm: 6, waveMm: 0 }, 30, 30, 110),
   },
   {
     name: "flattened",
@@ -323,21 +324,21 @@ export const TRIAL_VOLUMES: readonly TrialVolume[] = [
     about: "2 mm at 40 um",
     topic: "thick",
     hard: false,
-    spec: strut(0.04, 2, 5),
+    spec: strut(0.04, 2),
   },
   {
     name: "strut-20",
     about: "2 mm at 20 um",
     topic: "thick",
     hard: false,
-    spec: strut(0.02, 2, 3),
+    spec: strut(0.02, 2),
   },
   {
     name: "strut-10",
     about: "2 mm at 10 um",
     topic: "thick",
     hard: false,
-    spec: strut(0.01, 2, 1.6),
+    spec: strut(0.01, 2),
   },
   {
     name: "touching-straight",

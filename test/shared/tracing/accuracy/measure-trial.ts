@@ -25,8 +25,8 @@ export interface StrandAccuracy {
   readonly onString: number;
 }
 
-/** A node hides this many of the thickest of its strands' diameters. */
-const NODE_DIAMETERS = 1.5;
+/** A node hides its surroundings up to this many of the thickest of its strands' diameters, as in radius statistics. */
+const NODE_DIAMETERS = 1;
 
 /** Solves every strand of a trial volume from the clicks on its nodes alone. */
 export function measureTrial(made: TrialPhantom): { strands: StrandAccuracy[]; curves: Map<string, TracedCurve> } {
@@ -67,7 +67,8 @@ function accuracyOf(made: TrialPhantom, own: FileStrand, all: readonly FileStran
     if (2 * radius >= 2 * made.parameters.blurFwhmMm!)
       radiusErrors.push(Number.isFinite(curve.radii[i]!) ? Math.abs(curve.radii[i]! / radius - 1) : 1);
     const others = all.filter((strand) => strand !== own);
-    if (near.distance < radius && others.every((other) => nearestOnPolyline(other.points!, p).distance > near.distance)) onString++;
+    if (near.distance < radius && others.every((other) => nearestOnPolyline(other.points!, p).distance > near.distance))
+      onString++;
   }
   const length = flatLength(curve.points);
   return {
