@@ -62,7 +62,7 @@ describe("After the hand has stopped", { timeout: 300_000 }, () => {
   }
 
   const requests = async (from: number) =>
-    (await readLog(page, from)).filter(({ what }) => !["pointermove", "pointerup", "wheel"].includes(what));
+    (await readLog(page, from)).filter(({ what }) => !["pointermove", "pointerup", "wheel", "click"].includes(what));
 
   /** The most requests of one kind that were under way at once. */
   function mostAtOnce(log: readonly Logged[], what: string): number {

@@ -20,8 +20,15 @@ export async function logRequests(page: Page): Promise<void> {
   await page.addInitScript(() => {
     const log: Record<string, unknown>[] = [];
     Object.assign(window, { feelLog: log });
-    for (const what of ["pointermove", "pointerup", "wheel"]) {
-      addEventListener(what, () => log.push({ what, sent: performance.now() }), { capture: true, passive: true });
+    for (const what of ["pointermove", "pointerup", "wheel", "click"]) {
+      const note = () => {
+        const entry: Record<string, unknown> = { what, sent: performance.now() };
+        log.push(entry);
+        // The second frame from now: what the first one drew is on the screen then.
+        if (what === "pointerup" || what === "click")
+          requestAnimationFrame(() => requestAnimationFrame(() => Object.assign(entry, { painted: performance.now() })));
+      };
+      addEventListener(what, note, { capture: true, passive: true });
     }
     const send = window.fetch;
     window.fetch = async (input, init) => {
