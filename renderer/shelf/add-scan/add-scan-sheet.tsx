@@ -1,3 +1,4 @@
+import "#renderer/shelf/add-scan/add-scan.css";
 import { useEffect, useRef, useState } from "preact/hooks";
 import { Sheet } from "#renderer/app/sheet.tsx";
 import type { Client } from "#renderer/client/client.ts";
