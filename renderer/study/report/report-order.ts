@@ -38,7 +38,7 @@ export function reportOrder(
     files: [...files, ...(methodFiles ?? [])],
     options: optionsOf(view, method),
     context: contextOf(view, analysis, software, madeAt),
-    notes: [...analysis.notes, ...leftOut(view, analysis)],
+    notes: [...analysis.notes, ...leftOut(view, analysis), ...setAside(view), ...laterVersions(view)],
     budgetMs: BUDGET_MS,
   };
 }
@@ -114,6 +114,26 @@ function leftOut(view: StudyView, analysis: AnalysisAnswer): string[] {
     if (cell === undefined || cell.training) return [];
     return [`${names.get(cell.specimen) ?? cell.specimen}, ${cell.annotator}, pass ${cell.pass} takes no part. ${reason}`];
   });
+}
+
+/** Returned passes that the lead set aside, with the lead's reasons. */
+function setAside(view: StudyView): string[] {
+  const names = new Map(view.specimens.map(({ id, name }) => [id, name]));
+  return view.assignments.flatMap(({ specimen, annotator, pass, setAside: aside }) =>
+    aside.map(
+      ({ reason }) =>
+        `${names.get(specimen) ?? specimen}, ${annotator}, pass ${pass}: a returned pass was set aside. Why: ${reason}`,
+    ),
+  );
+}
+
+/** Frozen versions of the protocol after the first, with their reasons. */
+function laterVersions({ versions }: StudyView): string[] {
+  return versions.flatMap(({ version, frozen, reason }) =>
+    version > 1 && frozen !== null
+      ? [`Version ${version} of the protocol was frozen on ${new Date(frozen.at).toISOString().slice(0, 10)}. Why: ${reason}`]
+      : [],
+  );
 }
 
 /** Names what a report is made of: another text means that something has changed since. */

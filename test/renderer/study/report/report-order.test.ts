@@ -16,6 +16,7 @@ const cell = (change: object) =>
     out: { at: 1, protocolVersion: 2 },
     returned,
     counts: { yes: true, reason: null },
+    setAside: [],
     ...change,
   }) as unknown as AssignmentCell;
 const view = (assignments: readonly AssignmentCell[]): StudyView =>
@@ -32,6 +33,10 @@ const view = (assignments: readonly AssignmentCell[]): StudyView =>
         drawing: { ...content.drawing, limits: { ...content.drawing.limits, minimumDiameterMm: 0.15 } },
       },
     },
+    versions: [
+      { version: 1, frozen: { at: Date.UTC(2026, 10, 1), sha256: "0" }, reason: "" },
+      { version: 2, frozen: { at: Date.UTC(2026, 11, 1), sha256: "f00d" }, reason: "Forks were vague." },
+    ],
     assignments,
   }) as unknown as StudyView;
 const analysis = (change: Partial<AnalysisAnswer>): AnalysisAnswer =>
@@ -77,7 +82,16 @@ describe("what a study's report is made of", () => {
       { assignment: "a3", reason: "Training." },
     ];
     const { notes } = order(view(cells), analysis({ leftOut, notes: ["One was waived."] }));
-    expect(notes).toEqual(["One was waived.", "HB-07, AN-1, pass 2 takes no part. Other rules."]);
+    expect(notes.slice(0, 2)).toEqual(["One was waived.", "HB-07, AN-1, pass 2 takes no part. Other rules."]);
+    expect(notes.join()).not.toContain("Training.");
+  });
+
+  it("says why a pass was set aside and why the protocol was changed", () => {
+    const cells = [cell({ setAside: [{ pass: "p", reason: "The wrong stick.", setAsideAt: 1 }] })];
+    expect(order(view(cells), analysis({})).notes).toEqual([
+      "HB-07, AN-1, pass 1: a returned pass was set aside. Why: The wrong stick.",
+      "Version 2 of the protocol was frozen on 2026-12-01. Why: Forks were vague.",
+    ]);
   });
 
   it("gives a method's files the method's name, whatever they say themselves", () => {
