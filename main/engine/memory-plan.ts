@@ -5,12 +5,14 @@ const MB = 2 ** 20;
 /** The engine's limit when nothing is set. */
 export const DEFAULT_MEMORY_MB = 512;
 /** With less there is no room for what a solve and the program itself take. */
-export const LEAST_MEMORY_MB = 384;
+export const LEAST_MEMORY_MB = 448;
 export const MOST_MEMORY_MB = 65_536;
 
 /** What is not the engine's to choose: the program's code and heap with answers under way, and those of each thread. */
 const PROGRAM_BYTES = 70 * MB;
 const THREAD_BYTES = 16 * MB;
+/** What a search of the scan keeps in each thread but the guide's. */
+const SEARCH_BYTES = 20 * MB;
 /** A solve's boxes: what it needs follows from its pins, never from a setting, so that the same pins give the same curve. */
 const SOLVE_BYTES = 150 * MB;
 
@@ -41,7 +43,8 @@ const FRONTS = 0.28;
  * @param tracing threads that guide or solve.
  */
 export function planMemory(limitBytes: number, threads: number, tracing: number): MemoryPlan {
-  return shareOut(limitBytes - PROGRAM_BYTES - threads * THREAD_BYTES - SOLVE_BYTES, tracing);
+  const taken = PROGRAM_BYTES + threads * THREAD_BYTES + (threads - 1) * SEARCH_BYTES + SOLVE_BYTES;
+  return shareOut(limitBytes - taken, tracing);
 }
 
 /** Shares out what may be kept, without the rest of the program. */

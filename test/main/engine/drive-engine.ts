@@ -5,7 +5,7 @@ import { pyramidLevels } from "#shared/volume/pyramid.ts";
 
 type Place = readonly number[];
 
-/** Asks the engine of a running program. */
+/** Asks a running program; the path is that of a route under `/api/`. */
 export type Ask = (path: string, body: object) => Promise<{ readonly status: number; readonly answer: unknown }>;
 
 /** One kind of work for an engine. */
@@ -38,7 +38,7 @@ export function allDemands(ask: Ask, record: SpecimenRecord, truth: ChordaeFile)
   let number = 0;
   const of = (lane: string) => ({ specimen: record.id, ticket: { window: "w1", lane, number: ++number } });
   const must = async (path: string, body: object): Promise<unknown> => {
-    const { status, answer } = await ask(path, body);
+    const { status, answer } = await ask(`engine/${path}`, body);
     if (status !== 200) throw new Error(`${path} answered ${status}: ${JSON.stringify(answer)}`);
     return answer;
   };
@@ -87,14 +87,14 @@ export function allDemands(ask: Ask, record: SpecimenRecord, truth: ChordaeFile)
   const ridges: Demand = {
     name: "ridges around places far apart",
     async run() {
-      for (const at of [...middles, ...nodes.filter((_, n) => n % 6 === 0)])
+      for (const at of [...middles, ...nodes.filter((_, n) => n % 10 === 0)])
         await must("snap", { ...of("guide"), at, normal: [0, 0, 1], slabMm: 2, reachMm: 0.4, polarity: "bright" });
     },
   };
   const guides: Demand = {
     name: "guides across the valve, each left to grow",
     async run() {
-      for (const from of middles.slice(0, 3)) {
+      for (const from of middles.slice(0, 2)) {
         const { session } = (await must("guide/open", { ...of("guide"), from, parameters })) as { session: string };
         const far = farthest(from);
         for (let n = 1; n <= 8; n++) {
@@ -105,12 +105,26 @@ export function allDemands(ask: Ask, record: SpecimenRecord, truth: ChordaeFile)
       }
     },
   };
+  const follows: Demand = {
+    name: "a search of the whole scan begun; strings followed beside it",
+    async run() {
+      await ask(`specimens/${record.id}/search`, { polarity: "bright" });
+      for (const at of middles.slice(0, 1)) {
+        const { session } = (await must("follow/open", { ...of("job"), at, parameters })) as { session: string };
+        for (let turn = 0; turn < 12; turn++) {
+          const { done } = (await must("follow/more", { ticket: of("job").ticket, session })) as { done: boolean };
+          if (done) break;
+        }
+        await ask("engine/follow/close", { session });
+      }
+    },
+  };
   const solves: Demand = {
-    name: "solves from end to end, and between places that no string joins",
+    name: "beside the search: solves from end to end, and between places that no string joins",
     async run() {
       const pairs = [...longest.slice(0, 1).map((points) => [points[0]!, points.at(-1)!]), [middles[0]!, farthest(middles[0]!)]];
       for (const [from, to] of pairs) await must("solve", { ...of("job"), parameters, strands: [{ from, via: [], to }] });
     },
   };
-  return [...planes, views, ridges, guides, solves];
+  return [...planes, views, ridges, guides, follows, solves];
 }

@@ -36,7 +36,7 @@ describe.runIf(linux)("The program's memory", { timeout: 600_000 }, () => {
     const pid = server.child.pid!;
     const ask = async (path: string, body: object) => {
       const headers = { [TOKEN_HEADER]: server.token };
-      const response = await fetch(`${server.origin}/api/engine/${path}`, {
+      const response = await fetch(`${server.origin}/api/${path}`, {
         method: "POST",
         headers,
         body: JSON.stringify(body),

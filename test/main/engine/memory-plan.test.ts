@@ -11,7 +11,7 @@ describe("The engine's memory limit", () => {
   });
 
   test("is refused with its name and range when it is no number of MB, or too small to work with", () => {
-    for (const text of ["383", "0", "-5", "1e3", "512 MB", "9999999"])
+    for (const text of ["447", "0", "-5", "1e3", "512 MB", "9999999"])
       expect(() => memoryLimit(text, {})).toThrow(new RegExp(`^--memory must be .* from ${LEAST_MEMORY_MB} .*found '${text}'`));
     expect(() => memoryLimit(undefined, { TAUTLINE_MEMORY: "lots" })).toThrow(/^TAUTLINE_MEMORY .*'lots'/);
   });
@@ -24,7 +24,7 @@ describe("The engine's memory limit", () => {
       for (const part of ["bricks", "ridges", "ownRidges", "fronts"] as const) expect(plan[part]).toBeGreaterThan(before[part]);
       before = plan;
     }
-    // Enough for a plane that touches some 250 bricks of 64 KB in each of two showing threads, with the least limit too.
+    // Enough for the 250 bricks of 64 KB that a plane touches in each of two showing threads, with the least limit too.
     expect(planMemory(LEAST_MEMORY_MB * MB, MOST_THREADS, 2).bricks).toBeGreaterThan(2 * 250 * 65536);
   });
 });
