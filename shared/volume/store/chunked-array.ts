@@ -1,8 +1,8 @@
 import type { StoredDtype } from "#shared/volume/dtype.ts";
 import { CHUNK_SIDE, CHUNKS_ZYX, levelFolder, shardPath } from "#shared/volume/store/layout.ts";
 
-/** How a chunk's bytes are packed: not at all, as gzip (RFC 1952) or as zlib (RFC 1950). */
-export type Packing = "plain" | "gzip" | "zlib";
+/** How a chunk's bytes are packed: not at all, as gzip (RFC 1952), as zlib (RFC 1950), or as a Blosc frame with LZ4 inside. */
+export type Packing = "plain" | "gzip" | "zlib" | "blosc";
 
 type Zyx = readonly [number, number, number];
 

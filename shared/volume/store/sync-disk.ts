@@ -1,4 +1,5 @@
 import { unreadable } from "#shared/errors.ts";
+import { unpackBlosc } from "#shared/volume/store/blosc.ts";
 import type { ChunkFile, ChunkSource } from "#shared/volume/store/chunk-files.ts";
 
 /** The blocking calls that reading a store takes, as Node's `fs` and `zlib` have them. */
@@ -29,6 +30,7 @@ export function chunkFolder({ fs, zlib }: SyncDisk, folder: string, rules: Chunk
   return {
     advice: rules.advice,
     unpack(packing, bytes, most) {
+      if (packing === "blosc") return unpackBlosc(bytes, most);
       // One buffer of the right size instead of many small ones that are joined; a byte more tells a chunk that is too long.
       const options = { maxOutputLength: most, chunkSize: most + 1 };
       return packing === "gzip" ? zlib.gunzipSync(bytes, options) : zlib.inflateSync(bytes, options);

@@ -12,7 +12,7 @@ export const LEAST_SIDE = 8;
 
 /** What stores can be read where they lie, for messages and help. */
 export const FITS_IN_PLACE =
-  "voxels of uint8, uint16, int16 or float32, little-endian; chunks of 8 voxels a side or more, plain (to 8 MB) or packed with gzip or zlib (to 64 x 64 x 64 voxels), single or in shards";
+  "voxels of uint8, uint16, int16 or float32, little-endian; chunks of 8 voxels a side or more, plain (to 8 MB) or packed with gzip, zlib or blosc with LZ4 inside (to 64 x 64 x 64 voxels), single or in shards";
 
 export type LayoutVerdict = { readonly array: ChunkedArray } | { readonly why: string };
 
@@ -96,7 +96,8 @@ function layoutOfV2(metadata: Json, selection: readonly ("space" | number)[]): C
   if (metadata.order !== "C") unfit("its chunks are stored x-slowest ('order' is not C).");
   if (Array.isArray(metadata.filters) && metadata.filters.length > 0) unfit("its chunks go through filters.");
   const id = metadata.compressor == null ? null : isObject(metadata.compressor) ? metadata.compressor.id : "?";
-  if (id !== null && id !== "gzip" && id !== "zlib") unfit(packedWith(id));
+  if (id === "blosc") refuseOtherBlosc(metadata.compressor as Json, dtype);
+  else if (id !== null && id !== "gzip" && id !== "zlib") unfit(packedWith(id));
   const shape = sides(metadata.shape, selection.length);
   const chunks = sides(metadata.chunks, selection.length);
   return {
@@ -129,12 +130,21 @@ function packingOf(codecs: readonly Named[], dtype: StoredDtype): Packing {
     unfit(first?.name === "transpose" ? "its axes are stored in another order." : packedWith(first?.name));
   if (first!.configuration.endian === "big" && BYTES_OF_DTYPE[dtype] > 1) unfit("its voxels are big-endian.");
   if (!second) return "plain";
-  if (second.name !== "gzip") unfit(packedWith(second.name));
+  if (second.name === "blosc") refuseOtherBlosc(second.configuration, dtype);
+  else if (second.name !== "gzip") unfit(packedWith(second.name));
   if (codecs.length > 2) unfit(packedWith(codecs[2]!.name));
-  return "gzip";
+  return second.name as "gzip" | "blosc";
 }
 
-const packedWith = (name: unknown) => `its chunks are packed with ${short(name)}; plain, gzip and zlib ones can be read.`;
+/** Of what blosc can hold, LZ4 is read, with bytes shuffled or not; -1 leaves it to the writer, which shuffles bits of bytes alone. */
+function refuseOtherBlosc({ cname, shuffle }: Json, dtype: StoredDtype): void {
+  if (cname !== "lz4" && cname !== "lz4hc") unfit(packedWith(`blosc (${short(cname)})`));
+  if (shuffle === 2 || shuffle === "bitshuffle" || (shuffle === -1 && dtype === "uint8"))
+    unfit(packedWith("blosc (shuffled bits)"));
+}
+
+const packedWith = (name: unknown) =>
+  `its chunks are packed with ${short(name)}; plain ones, gzip, zlib and blosc with LZ4 can be read.`;
 
 function dtypeOf(value: unknown): StoredDtype {
   if (!DTYPES.includes(String(value))) unfit(`its voxels are of type '${short(value)}'; ${DTYPES.join(", ")} can be read.`);

@@ -133,9 +133,9 @@ test("a packed copy shows what it gains and costs once it is measured; a store i
   await expect.poll(() => asked(page, "intake")).toHaveLength(1);
   expect((await asked(page, "intake"))[0]).toMatchObject({ keep: "in-place" });
   await page.context().close();
-  const other = await sheet("/scans/blosc.zarr");
+  const other = await sheet("/scans/zstd.zarr");
   expect(await other.getByLabel("where it lies").isDisabled()).toBe(true);
-  await other.getByText("packed with blosc").waitFor();
+  await other.getByText("packed with zstd").waitFor();
   await other.context().close();
 });
 

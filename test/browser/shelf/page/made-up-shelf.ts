@@ -110,9 +110,9 @@ export function extrasOf(path: string): Partial<ScanLookAnswer> {
   if (path.includes("several-store")) return { readings: { channels: 3, times: 200 }, inPlace: { fits: true } };
   if (path.includes("several")) return { readings: { channels: 3, times: 1 } };
   if (path.includes("store")) return { inPlace: { fits: true } };
-  if (path.includes("blosc"))
+  if (path.includes("zstd"))
     return {
-      inPlace: { fits: false, why: "its chunks are packed with blosc; plain, gzip and zlib chunks can be read in place." },
+      inPlace: { fits: false, why: "its chunks are packed with zstd; plain ones, gzip, zlib and blosc with LZ4 can be read." },
     };
   return {};
 }

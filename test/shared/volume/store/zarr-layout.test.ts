@@ -93,7 +93,12 @@ describe("the layout of a Zarr array", () => {
     ["an irregular grid", v3({ chunk_grid: { name: "rectilinear", configuration: {} } }), "'rectilinear'"],
     ["blosc", v3({ codecs: [LITTLE, { name: "blosc" }] }), "packed with blosc"],
     ["zstd in shards", sharded({}, [LITTLE, { name: "zstd" }]), "packed with zstd"],
-    ["blosc (v2)", v2({ compressor: { id: "blosc", cname: "lz4" } }), "packed with blosc"],
+    ["another blosc (v2)", v2({ compressor: { id: "blosc", cname: "zstd", shuffle: 1 } }), "packed with blosc (zstd)"],
+    [
+      "blosc with shuffled bits",
+      v2({ compressor: { id: "blosc", cname: "lz4", shuffle: 2 } }),
+      "packed with blosc (shuffled bits)",
+    ],
     ["filters (v2)", v2({ filters: [{ id: "delta" }] }), "filters"],
     ["column-major (v2)", v2({ order: "F" }), "x-slowest"],
     ["transposed", v3({ codecs: [{ name: "transpose", configuration: { order: [2, 1, 0] } }, LITTLE] }), "another order"],
@@ -123,6 +128,17 @@ describe("the layout of a Zarr array", () => {
     ["an odd fill", v3({ fill_value: "0x00" }), "fill value"],
   ])("gives the reason for %s", (_, metadata, sentence) => {
     expect(why(metadata)).toContain(sentence);
+  });
+
+  test("knows blosc with LZ4 inside, by either version", () => {
+    expect(layout(v2({ compressor: { id: "blosc", cname: "lz4", clevel: 5, shuffle: 1, blocksize: 0 } })).packing).toBe("blosc");
+    const codec = { name: "blosc", configuration: { cname: "lz4", clevel: 5, shuffle: "shuffle", typesize: 2, blocksize: 0 } };
+    expect(layout(v3({ codecs: [LITTLE, codec] })).packing).toBe("blosc");
+    expect(layout(sharded({}, [LITTLE, codec])).packing).toBe("blosc");
+    // Left to the writer, the bits of one-byte voxels are shuffled, the bytes of others.
+    const auto = { compressor: { id: "blosc", cname: "lz4", shuffle: -1 } };
+    expect(layout(v2(auto)).packing).toBe("blosc");
+    expect(why(v2({ ...auto, dtype: "|u1" }))).toContain("shuffled bits");
   });
 
   test("a thin array may have thin chunks", () => {
