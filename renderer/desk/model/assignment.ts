@@ -4,18 +4,6 @@ import type { OpenEnd } from "#shared/api/study.ts";
 import { openEndsOf } from "#shared/study/returned-log.ts";
 import type { NodeId } from "#shared/trees/document.ts";
 
-/** Learns whether the specimen is an assignment of a study; most are not. */
-export async function findAssignment(model: Pick<DeskModel, "services" | "specimen" | "assignment">): Promise<void> {
-  const { services, specimen, assignment } = model;
-  const { id } = specimen.value;
-  try {
-    const { assignments } = await services.client.studies.all();
-    if (assignments.some((one) => one.specimen === id)) assignment.value = await services.client.studies.assignment(id);
-  } catch (error) {
-    services.notices.failed(error);
-  }
-}
-
 /** The way to hand an assignment back: what is unfinished is named first, else the shelf asks where to. */
 export async function handBack(model: DeskModel): Promise<void> {
   const { editor, services, specimen } = model;

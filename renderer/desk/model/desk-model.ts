@@ -1,6 +1,6 @@
 import { computed, effect, type ReadonlySignal, type Signal, signal } from "@preact/signals";
 import type { Services } from "#renderer/app/services.ts";
-import { findAssignment } from "#renderer/desk/model/assignment.ts";
+import { findAssignment } from "#renderer/desk/model/find-assignment.ts";
 import { type ShownFinding, shownFindings } from "#renderer/desk/model/findings.ts";
 import { type LineFacts, lineFacts, selectedLine } from "#renderer/desk/model/line-facts.ts";
 import { OverlookedModel } from "#renderer/desk/model/overlooked-model.ts";
@@ -124,7 +124,9 @@ export class DeskModel {
       }),
     ];
     void lookAtRecovered(this);
-    void findAssignment(this);
+    void findAssignment(services, specimen.id).then((found) => {
+      this.assignment.value = found;
+    });
   }
 
   /** The line that across and along planes follow: the live guide, else the line that the strip shows. */
