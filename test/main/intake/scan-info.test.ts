@@ -1,7 +1,8 @@
 import { writeFile } from "node:fs/promises";
 import { join } from "node:path";
 import { describe, expect, it } from "vitest";
-import { lookAtScan } from "#main/intake/scan-info.ts";
+import { lookAtScan, scanInfo } from "#main/intake/scan-info.ts";
+import { niftiBytes } from "#test/main/intake/nifti/nifti-by-hand.ts";
 import { type HandNrrd, SETTLED, scratchFolder, writeNrrd } from "#test/main/intake/written-by-hand.ts";
 
 const order = (sizes: number[], value: (x: number, y: number, z: number) => number, more: Partial<HandNrrd> = {}): HandNrrd => {
@@ -57,5 +58,20 @@ describe("looking at a scan", () => {
     const { info, conversions } = await lookAtScan(path);
     expect(info.range).toEqual({ min: 0, max: 70000, sampled: true }); // the last slice is always looked at
     expect(conversions.join()).toMatch(/will be kept as int16, uint16 or float32/);
+  });
+
+  it("of several time points and channels is at the first, says how many there are, and goes to the chosen one", async () => {
+    const sizes = [4, 3, 2, 3, 2];
+    const values = Array.from({ length: 4 * 3 * 2 * 3 * 2 }, (_, k) => k);
+    const path = join(await scratchFolder(), "several.nii");
+    await writeFile(path, niftiBytes({ sizes, dtype: "uint16", values }));
+    const first = await lookAtScan(path);
+    expect([first.readings, first.info.range.min]).toEqual([{ channels: 2, times: 3 }, 0]);
+    // Volumes follow each other: time points first, then channels, 24 voxels each.
+    const chosen = await lookAtScan(path, { choice: { time: 2, channel: 1 } });
+    expect([chosen.readings, chosen.info.range.min]).toEqual([{ channels: 2, times: 3 }, 24 * (3 + 2)]);
+    await expect(lookAtScan(path, { choice: { time: 3 } })).rejects.toThrow(/time point from 0 to 2/);
+    // A person has to choose before it is taken in; the command line's info asks as well.
+    await expect(scanInfo(path)).rejects.toThrow(/--time 0 to 2/);
   });
 });
