@@ -5,7 +5,7 @@ import { pointFits } from "#shared/tracing/image-fit.ts";
 import { localToIndex } from "#shared/tracing/local-frame.ts";
 import { ridgeAtVoxel } from "#shared/tracing/pin-ridge.ts";
 import { arcLengths, interpolateAlong, medianOf, resample, runningMedian } from "#shared/tracing/polyline.ts";
-import { measureHalfWidths, radiiOf } from "#shared/tracing/radius.ts";
+import { contactAlong, measureHalfWidths, radiiOf } from "#shared/tracing/radius.ts";
 import { finestSpacing, scalesUpTo } from "#shared/tracing/ridge/scales.ts";
 import { smoothInto } from "#shared/tracing/smooth.ts";
 import type { TraceContext } from "#shared/tracing/trace-context.ts";
@@ -89,13 +89,11 @@ export function centrePath(
       points,
       radii,
       widestMm: interpolateAlong(arcLengths(start), widestMm, arcLengths(points)),
-      contact: onOwnString
-        ? measureHalfWidths(context.sampler, points, radii, context.sign).contact
-        : new Float64Array(points.length / 3),
+      contact: onOwnString ? contactAlong(context.sampler, points, radii, context.sign) : new Float64Array(points.length / 3),
     },
     { ...options, rounds: 3 },
   );
-  const first = measureHalfWidths(context.sampler, curve.points, curve.radii, context.sign, context.stop);
+  const first = measureHalfWidths(context.sampler, curve.points, curve.radii, context.sign, context.stop, fwhmMm);
   const half = Math.max(3, Math.round(medianOf([...curve.radii]) / stepMm));
   const measured = runningMedian(first.halfWidths, 2 * half);
   const refined = curve.radii.map((guess, i) =>
@@ -108,7 +106,7 @@ export function centrePath(
     { ...curve, radii: refined, contact: onOwnString ? first.contact : curve.contact },
     { ...options, rounds: 2 },
   );
-  const final = measureHalfWidths(context.sampler, curve.points, curve.radii, context.sign, context.stop);
+  const final = measureHalfWidths(context.sampler, curve.points, curve.radii, context.sign, context.stop, fwhmMm);
   return {
     points: curve.points,
     radii: radiiOf(final, stepMm, fwhmMm),
@@ -153,8 +151,8 @@ export function radiiAlong(context: TraceContext, points: Float64Array, fwhmMm: 
   const stepMm = knotStep(context, guesses(points));
   const knots = resample(points, stepMm);
   let radii = runningMedian(guesses(knots), 6);
-  const first = runningMedian(measureHalfWidths(context.sampler, knots, radii, context.sign, context.stop).halfWidths, 4);
+  const first = runningMedian(measureHalfWidths(context.sampler, knots, radii, context.sign, context.stop, fwhmMm).halfWidths, 4);
   radii = radii.map((guess, i) => (Number.isFinite(first[i]!) ? Math.min(Math.max(first[i]!, 0.5 * guess), 1.6 * guess) : guess));
-  const measured = radiiOf(measureHalfWidths(context.sampler, knots, radii, context.sign, context.stop), stepMm, fwhmMm);
+  const measured = radiiOf(measureHalfWidths(context.sampler, knots, radii, context.sign, context.stop, fwhmMm), stepMm, fwhmMm);
   return interpolateAlong(arcLengths(knots), measured, arcLengths(points));
 }

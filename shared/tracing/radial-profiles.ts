@@ -66,6 +66,33 @@ function meanProfile({ values, samples }: RadialProfiles): Float64Array {
   return out;
 }
 
+/**
+ * The level of a bright rim itself, above what blur left of it at its crest: a plate between core and surroundings as thick as the
+ * crest's width at half height on both sides, which depends on the level in turn.
+ * @param mean shape [samples], the mean profile; @param crest its highest sample. @param sigma blur, samples.
+ * @source own derivation: c = L - (2 L - core - outside) Q(t / 2 sigma), Q the upper tail of the normal distribution.
+ */
+function rimLevel(mean: Float64Array, crest: number, core: number, outside: number, sigma: number): number {
+  let level = mean[crest]!;
+  for (let round = 0; sigma > 0 && round < 3; round++) {
+    let outer = crest;
+    while (outer + 1 < mean.length && mean[outer]! > (level + outside) / 2) outer++;
+    let inner = crest;
+    while (inner > 0 && mean[inner]! > (level + core) / 2) inner--;
+    // The crossings lie between two samples each: half a sample less on both sides, on average.
+    const tail = Math.min(0.25, upperTail((outer - inner - 1) / (2 * sigma)));
+    level = (mean[crest]! - (core + outside) * tail) / (1 - 2 * tail);
+  }
+  return level;
+}
+
+/** Share of a normal distribution above z >= 0. @source Abramowitz & Stegun 1964, 26.2.17 (error below 7.5e-8). */
+function upperTail(z: number): number {
+  const t = 1 / (1 + 0.2316419 * z);
+  const series = t * (0.31938153 + t * (-0.356563782 + t * (1.781477937 + t * (-1.821255978 + t * 1.330274429))));
+  return (Math.exp((-z * z) / 2) / Math.sqrt(2 * Math.PI)) * series;
+}
+
 /** Grey levels of a string and of what surrounds it. */
 export interface ProfileLevels {
   readonly inside: number;
@@ -74,8 +101,11 @@ export interface ProfileLevels {
   readonly rimMm: number;
 }
 
-/** The levels that a point's profiles show, for a string of about a radius. */
-export function levelsOf(profiles: RadialProfiles, radiusMm: number): ProfileLevels {
+/**
+ * The levels that a point's profiles show, for a string of about a radius.
+ * @param blurSigmaMm the scan's blur, which lowers a thin rim's crest; 0 = not known.
+ */
+export function levelsOf(profiles: RadialProfiles, radiusMm: number, blurSigmaMm = 0): ProfileLevels {
   const { values, samples, spacingMm } = profiles;
   const mean = meanProfile(profiles);
   const ringMean = (from: number, to: number) => {
@@ -101,12 +131,12 @@ export function levelsOf(profiles: RadialProfiles, radiusMm: number): ProfileLev
   }
   rays.sort((a, b) => a - b);
   const outside = (rays[Math.floor(RAYS * 0.3)]! + rays[Math.floor(RAYS * 0.4)]! + rays[Math.floor(RAYS * 0.5)]!) / 3;
-  // A rim that stands above the core: uneven stain. Its crest is then the inside.
+  // A rim that stands above the core: uneven stain. Its own level is then the inside.
   let crest = 0;
   for (let k = 0; k < samples && k * spacingMm <= 1.1 * radiusMm; k++) if (mean[k]! > mean[crest]!) crest = k;
   const crestLevel = mean[crest]!;
   if (crest * spacingMm > 0.35 * radiusMm && crestLevel - outside > 1.3 * (core - outside))
-    return { inside: crestLevel, outside, rimMm: crest * spacingMm };
+    return { inside: rimLevel(mean, crest, core, outside, blurSigmaMm / spacingMm), outside, rimMm: crest * spacingMm };
   return { inside: core, outside, rimMm: 0 };
 }
 

@@ -23,6 +23,7 @@ export interface RadialMeasure {
  * each ray between samples. The mean of their squares makes the radius area-equivalent; where a neighbour touches, it is that of the
  * circle through the free side.
  * @param points shape [n, 3], millimetres along the voxel axes. @param radii shape [n], first guesses, millimetres.
+ * @param fwhmMm blur of the scan, to which a bright rim's level is corrected; null = unknown.
  * @source own derivation (half-height edges); Hoffmann et al. 2002 on half-height widths of narrow vessels.
  */
 export function measureHalfWidths(
@@ -31,6 +32,7 @@ export function measureHalfWidths(
   radii: Float64Array,
   sign: 1 | -1,
   stop: StopSwitch = { signal: null },
+  fwhmMm: number | null = null,
 ): RadialMeasure {
   const n = points.length / 3;
   const directions = tangents(points);
@@ -44,7 +46,8 @@ export function measureHalfWidths(
     const made = sampleRays(sampler, points, directions, i, radii[i]!, sign);
     profiles.push(made.profiles);
     samplingVariance[i] = made.variance;
-    const levels = levelsOf(made.profiles, radii[i]!);
+    const blurSigmaMm = fwhmMm === null ? 0 : Math.sqrt((fwhmMm / FWHM_PER_SIGMA) ** 2 + made.variance);
+    const levels = levelsOf(made.profiles, radii[i]!, blurSigmaMm);
     inside[i] = levels.inside;
     outside[i] = levels.outside;
     rim[i] = levels.rimMm;
@@ -80,6 +83,26 @@ function areaRadius(edges: Float64Array, spacingMm: number): number {
     sum += value * value;
   }
   return Math.sqrt(sum / RAYS);
+}
+
+/** Contact is looked for at every so many points of a curve that is not measured. */
+const CONTACT_EVERY = 3;
+
+/**
+ * Where neighbours touch along a curve, as `contact` of {@link measureHalfWidths}, looked for at every third point.
+ * @param points shape [n, 3], millimetres along the voxel axes. @param radii shape [n], about the string's, millimetres.
+ */
+export function contactAlong(sampler: Sampler, points: Float64Array, radii: Float64Array, sign: 1 | -1): Float64Array {
+  const n = points.length / 3;
+  const directions = tangents(points);
+  const seen = Float64Array.from({ length: Math.ceil(n / CONTACT_EVERY) }, (_, k) => {
+    const i = k * CONTACT_EVERY;
+    const { profiles } = sampleRays(sampler, points, directions, i, radii[i]!, sign);
+    const { inside, outside, rimMm } = levelsOf(profiles, radii[i]!);
+    return inside > outside ? blockedShare(edgesOf(profiles, (inside + outside) / 2, rimMm)) : 0;
+  });
+  const steady = runningMedian(seen, 1);
+  return Float64Array.from({ length: n }, (_, i) => steady[Math.min(steady.length - 1, Math.round(i / CONTACT_EVERY))]!);
 }
 
 /**

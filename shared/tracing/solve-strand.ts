@@ -15,7 +15,7 @@ import { createTraceContext, type TraceContext } from "#shared/tracing/trace-con
 import type { MadeBy } from "#shared/trees/document.ts";
 import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 
-/** A leg must stand out from the noise along this share of its length, or it counts as not followed. */
+/** A leg on which no string is seen along itself must stand out from the noise on this share of its length, or it is not followed. */
 const FOLLOWED_SHARE = 0.5;
 
 /** A string between two pins is at most this much thicker than at the thicker pin. */
@@ -125,8 +125,9 @@ function guidedLeg(
   const path = legPath(context, context.workingLevel, from, to, expected, signal);
   if (!path) return null;
   if (path.length < 6) return { points: Float64Array.of(...from, ...to), radii: null };
-  if (followedShare(context, path) < FOLLOWED_SHARE) return null;
-  return ownStringPath(context, path, signal) ?? { points: path, radii: null };
+  const own = ownStringPath(context, path, signal);
+  if (own) return own;
+  return followedShare(context, path) >= FOLLOWED_SHARE ? { points: path, radii: null } : null;
 }
 
 /** Share of a path's points whose ridge answer is that of a string. */

@@ -9,19 +9,24 @@ import { smoothInto } from "#shared/tracing/smooth.ts";
 import type { StopSignal, TraceContext } from "#shared/tracing/trace-context.ts";
 import { stopIfAborted } from "#shared/volume/section/sample-lattice.ts";
 
-/** Samples to each side of the curve: 7 radii of the string that the step suits. */
-const HALF = 9;
+/** Samples to each side of the curve: seven radii of the string that the step suits, and half as many about a string already found. */
+const WIDE_HALF = 9;
+const NARROW_HALF = 6;
 /** Scale of the search across and along the string, samples. Along it strings change little, so that more noise can be taken out. */
 const SIGMA = 1.1;
 const SIGMA_ALONG = 2.5;
 /** Finest step, voxels of the working level: keeps strings of three voxels apart that touch. */
 const FINEST_STEP = 0.9;
-/** Rounds at each step: the first finds the string beside a path that may run along its neighbour, the second runs along the string. */
-const ROUNDS = 2;
+/** Rounds until the string is found: the first finds it beside a path that may run along its neighbour, the second runs along it. */
+const FIRST_ROUNDS = 2;
 /** How far the path is smoothed before it is straightened, steps. */
 const SMOOTHING = 8;
-/** A string is seen when half the way answers at least this share of what a solid cylinder of the scan's contrast would. */
+/**
+ * A string is seen when half the way answers at least this share of what a solid cylinder of the scan's contrast would, and this
+ * multiple of the noise: the cheapest thread through noise alone answers a tenth of it, a string at contrast-to-noise 3 half of it.
+ */
 const SEEN = 0.15;
+const SEEN_IN_NOISE = 0.2;
 /** The step suits a string of at most so many steps' radius; thicker ones are looked at in larger steps. */
 const MOST_RADIUS = 1.7;
 /** Scales among which the string's own is looked for, samples, and how much more the next one must answer to be better. */
@@ -50,30 +55,37 @@ export interface OwnStringPath {
  */
 export function ownStringPath(context: TraceContext, path: Float64Array, signal: StopSignal): OwnStringPath | null {
   const finest = finestSpacing(context.pyramid, context.workingLevel);
-  const least = SEEN * CYLINDER_PEAK * context.levels.contrast;
+  const least = Math.max(SEEN * CYLINDER_PEAK * context.levels.contrast, SEEN_IN_NOISE * context.levels.noise);
   let best: OwnStringPath | null = null;
   let start = path;
   for (let stepMm = FINEST_STEP * finest; stepMm * MOST_RADIUS < LARGEST_DIAMETER_MM / 2; stepMm *= Math.SQRT2) {
     let found: Thread | null = null;
-    for (let round = 0; round < ROUNDS; round++) {
+    const half = best ? NARROW_HALF : WIDE_HALF;
+    for (let round = 0; round < (best ? 1 : FIRST_ROUNDS); round++) {
       stopIfAborted(signal);
-      found = threadAtStep(context, found?.points ?? start, stepMm, least);
+      found = threadAtStep(context, found?.points ?? start, stepMm, half, least);
       if (!found) return best;
     }
     if (found!.answer < least) continue;
-    best = found;
-    start = found!.points;
-    if (medianOf([...found!.radii]) <= MOST_RADIUS * stepMm) return best;
+    const radii = radiiAlongThread(found!.volume, found!.places);
+    best = { points: found!.points, radii };
+    start = best.points;
+    if (medianOf([...radii]) <= MOST_RADIUS * stepMm) return best;
   }
   return best;
 }
 
-/** A way found at one step, and the answer that half of it reaches. */
-interface Thread extends OwnStringPath {
+/** A way found at one step. */
+interface Thread {
+  readonly points: Float64Array;
+  /** What half of the way answers at least. */
   readonly answer: number;
+  readonly volume: StraightVolume;
+  /** shape [n]; its place in each plane. */
+  readonly places: Int32Array;
 }
 
-function threadAtStep(context: TraceContext, path: Float64Array, stepMm: number, least: number): Thread | null {
+function threadAtStep(context: TraceContext, path: Float64Array, stepMm: number, half: number, least: number): Thread | null {
   const n = path.length / 3;
   const arc = arcLengths(path);
   const pathStep = arc[n - 1]! / (n - 1);
@@ -81,24 +93,24 @@ function threadAtStep(context: TraceContext, path: Float64Array, stepMm: number,
   const smooth = path.slice();
   smoothInto(path, new Float64Array(n).fill(1), new Float64Array(n).fill(((SMOOTHING * stepMm) / pathStep) ** 4), smooth);
   const points = resample(smooth, stepMm);
-  const volume = smoothAlong(straighten(context.sampler, points, stepMm, HALF, context.sign), SIGMA_ALONG);
+  const volume = smoothAlong(straighten(context.sampler, points, stepMm, half, context.sign), SIGMA_ALONG);
   const { count, u, v } = volume;
   if (count < 3) return null;
-  const side = 2 * HALF + 1;
+  const side = 2 * half + 1;
   const ridge = planeRidge(volume, SIGMA);
   const expected = Math.max(Math.min(answerNearEnd(ridge, count, side, 0), answerNearEnd(ridge, count, side, count - 1)), least);
-  const thread = cheapestThread(ridge, count, side, expected / 2);
+  const places = cheapestThread(ridge, count, side, expected / 2);
   const out = points.slice();
   const answers: number[] = [];
   for (let i = 0; i < count; i++) {
-    const at = i * side * side + thread[i]!;
+    const at = i * side * side + places[i]!;
     answers.push(ridge[at]!);
     if (i === 0 || i === count - 1) continue;
-    const du = (thread[i]! % side) - HALF + crestOffset(ridge, at, 1);
-    const dv = Math.floor(thread[i]! / side) - HALF + crestOffset(ridge, at, side);
+    const du = (places[i]! % side) - half + crestOffset(ridge, at, 1);
+    const dv = Math.floor(places[i]! / side) - half + crestOffset(ridge, at, side);
     for (let c = 0; c < 3; c++) out[3 * i + c] = points[3 * i + c]! + stepMm * (du * u[3 * i + c]! + dv * v[3 * i + c]!);
   }
-  return { points: out, radii: radiiAlongThread(volume, thread), answer: medianOf(answers) };
+  return { points: out, answer: medianOf(answers), volume, places };
 }
 
 /** What the string answers close to one end of the path: the median over a few planes of the best about the middle. */
@@ -126,11 +138,11 @@ function crestOffset(ridge: Float64Array, at: number, step: number): number {
  * The radius that each place's own scale is tuned to: the finest from which on the next one adds next to nothing. A wider one may
  * answer more again where strings touch, for it sees two as one.
  */
-function radiiAlongThread(volume: StraightVolume, thread: Int32Array): Float64Array {
+function radiiAlongThread(volume: StraightVolume, places: Int32Array): Float64Array {
   const answers = RADIUS_SIGMAS.map((sigma) => {
     const at = new Float64Array(volume.count);
     const kernels = gaussianKernels(sigma);
-    for (let i = 0; i < volume.count; i++) at[i] = sigma * sigma * ridgeAtPlace(volume, i, thread[i]!, kernels);
+    for (let i = 0; i < volume.count; i++) at[i] = sigma * sigma * ridgeAtPlace(volume, i, places[i]!, kernels);
     return runningMean(at, RADIUS_WINDOW);
   });
   return Float64Array.from({ length: volume.count }, (_, i) => {
