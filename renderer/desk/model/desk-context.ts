@@ -1,8 +1,8 @@
 import { setTheme, theme } from "#renderer/app/theme-choice.ts";
-import { handBack } from "#renderer/desk/model/assignment.ts";
 import type { DeskModel, SheetName } from "#renderer/desk/model/desk-model.ts";
 import { setPassState } from "#renderer/desk/model/finish-pass.ts";
 import { stepFinding } from "#renderer/desk/model/go-to-finding.ts";
+import { handBack } from "#renderer/desk/model/hand-back.ts";
 import { openRadiusSheet } from "#renderer/desk/model/open-radius-sheet.ts";
 import { playBack } from "#renderer/desk/model/play-back.ts";
 import { whatToDismiss } from "#renderer/desk/model/what-to-dismiss.ts";

@@ -1,6 +1,6 @@
 import { useCallback } from "preact/hooks";
 import { Sheet } from "#renderer/app/sheet.tsx";
-import { goToOpenEnd } from "#renderer/desk/model/assignment.ts";
+import { goToOpenEnd } from "#renderer/desk/model/hand-back.ts";
 import type { DeskSheetProps } from "#renderer/desk/sheets/sheet-props.ts";
 import { countOf } from "#renderer/editor/session/words.ts";
 import { OpenEndList } from "#renderer/study/packets/open-end-list.tsx";
