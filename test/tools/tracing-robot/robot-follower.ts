@@ -39,11 +39,13 @@ export async function followTree(desk: RobotDesk, tree: FileTree): Promise<void>
     if (now.kind !== "ready" || now.leftOut.has(id) || editor.proposedAt() === null) continue;
     await desk.click();
   }
+  const { edits } = editor.keeper;
   const before = new Set(editor.document.value.strands.keys());
   await desk.key("F");
   const root = tree.strands.find(({ from }) => from === tree.root)!;
   if (!isDrawn(desk, { line: root.points!, radii: root.radii!.map((radius) => radius ?? 0) })) {
-    await desk.key("Ctrl+Z");
+    // A proposal that was refused has changed nothing.
+    if (editor.keeper.edits > edits) await desk.key("Ctrl+Z");
     return drawTree(desk, tree);
   }
   for (const string of stringsToDraw(tree).slice(1)) {
