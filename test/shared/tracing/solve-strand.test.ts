@@ -193,6 +193,19 @@ describe("the answer does not depend on what it should not depend on", () => {
     expect(phantom.grid.direction).toEqual(IDENTITY3);
   });
 
+  it("grows with the scan's spacing", () => {
+    // Scales are set in millimetres, an octave apart every second one: at half the spacing the same string is seen at the same ones in voxels.
+    const half = S / 2;
+    const small = solveStrand(
+      memoryPyramid(plainGrid(SIZE, [half, half, half]), phantom.voxels),
+      request(bow.map((p): Vec3 => [p[0] / 2, p[1] / 2, p[2] / 2])),
+      { ...BRIGHT, blurFwhmMm: FWHM / 2 },
+    );
+    expect(farthest(plain, small, (p) => [2 * p[0], 2 * p[1], 2 * p[2]])).toBeLessThan(0.25);
+    const middle = (radii: Float64Array) => [...radii].sort((a, b) => a - b)[radii.length >> 1]!;
+    expect(Math.abs((2 * middle(small.radii)) / middle(plain.radii) - 1)).toBeLessThan(0.03);
+  });
+
   it("is the same in a larger scan around the same voxels", () => {
     const [nx, ny, nz] = SIZE;
     const wide = [nx + 64, ny, nz] as const;
