@@ -73,14 +73,19 @@ class Desk {
   async open(): Promise<void> {
     await startPass(this.page, "AN-4");
     const began = (await readLog(this.page)).filter(({ what }) => what === "click").at(-1)!.sent;
-    const first = (await readLog(this.page, began)).find(({ what, painted }) => what === "section" && Number.isFinite(painted));
-    this.table.note(
-      "desk usable after opening a specimen",
-      "2 s",
-      first ? `${(first.painted - began).toFixed(0)} ms` : "no plane shown",
-    );
+    const ms = (await this.firstPlane(began)) - began;
+    this.table.note("desk usable after opening a specimen", "2 s", `${ms.toFixed(0)} ms`);
     await this.page.getByRole("button", { name: "front", exact: true }).click();
     await this.page.waitForTimeout(1500);
+  }
+
+  /** When the first plane after `from` was on the screen. */
+  private async firstPlane(from: number): Promise<number> {
+    for (;;) {
+      const shown = (await readLog(this.page, from)).find(({ what, painted }) => what === "section" && Number.isFinite(painted));
+      if (shown) return shown.painted;
+      await this.page.waitForTimeout(50);
+    }
   }
 
   /** Steps through planes by the wheel at about 60 a second, without a slab, then once sharp with a slab of 0.4 mm. */
@@ -109,7 +114,11 @@ class Desk {
     const seconds = (last - from) / 1000;
     const rate = moving.filter(({ answered }) => answered <= last).length / seconds;
     table.note("planes a second while stepping", "20", `${rate.toFixed(0)} (${(wheels.length / seconds).toFixed(0)} asked for)`);
-    table.note("planes answered after the stop", "at most 1", `${moving.filter(({ answered }) => answered > last).length}`);
+    table.note(
+      "planes answered after the stop (one under way, one waiting)",
+      "at most 2",
+      `${moving.filter(({ answered }) => answered > last).length}`,
+    );
     table.note("section sharp when still, from memory", "90 ms", figures(await this.sharp(12)));
     await this.slab(0.4);
     table.note("slab of 0.4 mm, sharp", "400 ms", figures(await this.sharp(12)));
