@@ -11,6 +11,7 @@ import { type OpenPage, openPage, type RunningProgram, startProgram } from "#tes
 import { SectionHand } from "#test/browser/section-hand.ts";
 import { TRUE_NODES, TRUE_STRANDS, writeSmallScan } from "#test/browser/small-scan.ts";
 import { makeFrozenStudy, makePackets, refusalOf, takeIn, writeReturn } from "#test/browser/study-steps.ts";
+import { samplePng } from "#test/main/node/study/sample-png.ts";
 
 type Place = readonly [number, number, number];
 
@@ -121,7 +122,7 @@ describe("an agreement study, from the lead to the annotator and back", () => {
     const { page } = lead.open;
     await addScan(page, await writeSmallScan(lead.program.folder));
     await page.getByRole("button", { name: /^New pass/ }).waitFor({ timeout: 60_000 });
-    await makeFrozenStudy(page, "Harrow Bay agreement", ["small-tree"], ["AN-1", "AN-2"]);
+    await makeFrozenStudy(page, "Harrow Bay agreement", ["small-tree"], ["AN-1", "AN-2"], samplePng("AN-1"));
     await page.getByText("Next: make packets").waitFor();
     const paths = await makePackets(page, out);
     expect(paths).toHaveLength(2);
@@ -147,6 +148,7 @@ describe("an agreement study, from the lead to the annotator and back", () => {
     await deskReady(page);
     await page.getByRole("button", { name: "Rules", exact: true }).click();
     await page.getByText("The last cross-section whose outline is separate from muscle.").waitFor();
+    await page.getByRole("img", { name: "Still picture: origin" }).waitFor();
     await inBothThemes(page, "rules");
     await page.keyboard.press("Escape");
     const text = await page.evaluate(() => document.body.textContent);

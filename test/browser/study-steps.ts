@@ -1,11 +1,15 @@
 import type { Page } from "playwright-core";
 
-/** Makes a study of the specimens named, and freezes its protocol; the grid of passes is open then. */
+/**
+ * Makes a study of the specimens named, and freezes its protocol; the grid of passes is open then.
+ * @param still PNG that shows where an origin is set.
+ */
 export async function makeFrozenStudy(
   page: Page,
   name: string,
   specimens: readonly string[],
   annotators: readonly string[],
+  still: Uint8Array,
 ): Promise<void> {
   await page.getByRole("button", { name: "New study" }).click();
   await page.getByLabel("Name of the study").fill(name);
@@ -14,6 +18,10 @@ export async function makeFrozenStudy(
   await page.getByLabel("Annotators, a name a line").fill(annotators.join("\n"));
   await page.getByLabel("Passes of each annotator over each specimen").fill("1");
   await page.getByRole("button", { name: "Make the study" }).click();
+  await page
+    .getByLabel("Still picture for the origin (PNG)")
+    .setInputFiles({ name: "origin.png", mimeType: "image/png", buffer: Buffer.from(still) });
+  await page.getByRole("img", { name: "Still picture: origin" }).waitFor();
   await page.getByLabel("Primary quantity").selectOption("total length");
   await page.getByText("saved", { exact: true }).waitFor();
   await page.getByRole("button", { name: "Freeze it" }).click();
