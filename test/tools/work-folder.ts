@@ -23,8 +23,12 @@ export async function withWorkFolder<T>(needed: number, work: (folder: string) =
   }
 }
 
+/** Where all benchmarks run, none named, each takes one small size, GB. */
+const SMALL_GB = 0.05;
+
 /** Sizes given after the benchmark's name (`npm run bench -- growth 0.5 1`), bytes; else the usual ones, GB. */
 export function sizesOr(usual: readonly number[]): number[] {
+  if (process.argv[2] === undefined) return [SMALL_GB * 1e9];
   const given = process.argv.slice(3).flatMap((text) => text.split(","));
   const sizes = given.length > 0 ? given.map(Number) : usual;
   const wrong = sizes.find((size) => !(size >= 0.01 && size <= 64));
