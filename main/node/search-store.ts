@@ -2,6 +2,7 @@ import { Buffer } from "node:buffer";
 import { join } from "node:path";
 import { writeFault } from "#main/node/disk-fault.ts";
 import type { AppendFile, FilePort } from "#main/node/file-port.ts";
+import { Turns } from "#main/node/turns.ts";
 import { type FoundPoints, SEARCH_VERSION } from "#shared/tracing/overlooked/search-block.ts";
 import type { Polarity } from "#shared/tracing/strand-request.ts";
 
@@ -20,6 +21,8 @@ export class SearchStore {
   readonly #path: string;
   readonly #header: string;
   readonly blocks = new Map<number, FoundPoints>();
+  /** Lines are written one after the other, whoever found them. */
+  readonly #turns = new Turns();
   #file: AppendFile | null = null;
   #whole = 0;
   #unsynced = 0;
@@ -39,15 +42,24 @@ export class SearchStore {
   }
 
   /** Keeps a block's points. @throws write-failed, disk-full */
-  async add(block: number, points: FoundPoints): Promise<void> {
+  add(block: number, points: FoundPoints): Promise<void> {
     this.blocks.set(block, points);
+    return this.#turns.take(() => this.#append(block, points));
+  }
+
+  async #append(block: number, points: FoundPoints): Promise<void> {
     const line = `${JSON.stringify({ block, points: packed(points) })}\n`;
     try {
       this.#file ??= await this.#openForWriting();
-      await this.#file.append(new TextEncoder().encode(line));
+      const bytes = new TextEncoder().encode(line);
+      await this.#file.append(bytes);
+      this.#whole += bytes.length;
       this.#unsynced += 1;
       if (this.#unsynced >= SYNC_EVERY) await this.sync();
     } catch (error) {
+      // Part of the line may stand there: opened again, the file is cut to its last whole line.
+      await this.#file?.close().catch(() => undefined);
+      this.#file = null;
       throw await writeFault(this.#files, this.#path, error, line.length);
     }
   }
@@ -58,17 +70,22 @@ export class SearchStore {
     await this.#file?.sync();
   }
 
-  async close(): Promise<void> {
-    const file = this.#file;
-    this.#file = null;
-    await file?.sync();
-    await file?.close();
+  /** Resolves once all that was added is on the disk and the file is closed; what is added later opens it again. */
+  close(): Promise<void> {
+    return this.#turns.take(async () => {
+      const file = this.#file;
+      this.#file = null;
+      await file?.sync();
+      await file?.close();
+    });
   }
 
   async #openForWriting(): Promise<AppendFile> {
     if (this.#whole === 0) {
       await this.#files.remove(this.#path);
-      await this.#files.create(this.#path, new TextEncoder().encode(`${this.#header}\n`));
+      const header = new TextEncoder().encode(`${this.#header}\n`);
+      await this.#files.create(this.#path, header);
+      this.#whole = header.length;
       return this.#files.openAppend(this.#path);
     }
     const file = await this.#files.openAppend(this.#path);
