@@ -15,7 +15,9 @@ import { createTraceContext, type TraceContext } from "#shared/tracing/trace-con
 import type { MadeBy } from "#shared/trees/document.ts";
 import type { VoxelPyramid } from "#shared/volume/pyramid.ts";
 
-/** A leg on which no string is seen along itself must stand out from the noise on this share of its length, or it is not followed. */
+/** A leg is followed when its string is seen along itself on this share of the way, noise or not. */
+const SEEN_SHARE = 0.8;
+/** Any other leg must stand out from the noise on this share of its length. */
 const FOLLOWED_SHARE = 0.5;
 
 /** A string between two pins is at most this much thicker than at the thicker pin. */
@@ -126,8 +128,8 @@ function guidedLeg(
   if (!path) return null;
   if (path.length < 6) return { points: Float64Array.of(...from, ...to), radii: null };
   const own = ownStringPath(context, path, signal);
-  if (own) return own;
-  return followedShare(context, path) >= FOLLOWED_SHARE ? { points: path, radii: null } : null;
+  if (own && own.seen >= SEEN_SHARE) return own;
+  return followedShare(context, path) >= FOLLOWED_SHARE ? (own ?? { points: path, radii: null }) : null;
 }
 
 /** Share of a path's points whose ridge answer is that of a string. */

@@ -41,6 +41,8 @@ export interface OwnStringPath {
   readonly points: Float64Array;
   /** shape [n]; about the string's radius, millimetres; Infinity where it is thicker than can be told. */
   readonly radii: Float64Array;
+  /** Share of the way along which the string is seen, 0 to 1. */
+  readonly seen: number;
 }
 
 /**
@@ -58,6 +60,7 @@ export function ownStringPath(context: TraceContext, path: Float64Array, signal:
   const least = Math.max(SEEN * CYLINDER_PEAK * context.levels.contrast, SEEN_IN_NOISE * context.levels.noise);
   let best: OwnStringPath | null = null;
   let start = path;
+  let mostSeen = 0;
   for (let stepMm = FINEST_STEP * finest; stepMm * MOST_RADIUS < LARGEST_DIAMETER_MM / 2; stepMm *= Math.SQRT2) {
     let found: Thread | null = null;
     const half = best ? NARROW_HALF : WIDE_HALF;
@@ -66,9 +69,11 @@ export function ownStringPath(context: TraceContext, path: Float64Array, signal:
       found = threadAtStep(context, found?.points ?? start, stepMm, half, least);
       if (!found) return best;
     }
-    if (found!.answer < least) continue;
+    const seen = found!.answers.filter((answer) => answer >= least).length / found!.answers.length;
+    if (seen < 0.5) continue;
+    mostSeen = Math.max(mostSeen, seen);
     const radii = radiiAlongThread(found!.volume, found!.places);
-    best = { points: found!.points, radii };
+    best = { points: found!.points, radii, seen: mostSeen };
     start = best.points;
     if (medianOf([...radii]) <= MOST_RADIUS * stepMm) return best;
   }
@@ -78,8 +83,8 @@ export function ownStringPath(context: TraceContext, path: Float64Array, signal:
 /** A way found at one step. */
 interface Thread {
   readonly points: Float64Array;
-  /** What half of the way answers at least. */
-  readonly answer: number;
+  /** shape [n]; what the string answers at each place. */
+  readonly answers: Float64Array;
   readonly volume: StraightVolume;
   /** shape [n]; its place in each plane. */
   readonly places: Int32Array;
@@ -101,16 +106,16 @@ function threadAtStep(context: TraceContext, path: Float64Array, stepMm: number,
   const expected = Math.max(Math.min(answerNearEnd(ridge, count, side, 0), answerNearEnd(ridge, count, side, count - 1)), least);
   const places = cheapestThread(ridge, count, side, expected / 2);
   const out = points.slice();
-  const answers: number[] = [];
+  const answers = new Float64Array(count);
   for (let i = 0; i < count; i++) {
     const at = i * side * side + places[i]!;
-    answers.push(ridge[at]!);
+    answers[i] = ridge[at]!;
     if (i === 0 || i === count - 1) continue;
     const du = (places[i]! % side) - half + crestOffset(ridge, at, 1);
     const dv = Math.floor(places[i]! / side) - half + crestOffset(ridge, at, side);
     for (let c = 0; c < 3; c++) out[3 * i + c] = points[3 * i + c]! + stepMm * (du * u[3 * i + c]! + dv * v[3 * i + c]!);
   }
-  return { points: out, answer: medianOf(answers), volume, places };
+  return { points: out, answers, volume, places };
 }
 
 /** What the string answers close to one end of the path: the median over a few planes of the best about the middle. */
