@@ -11,6 +11,8 @@ import { type StringToDraw, stringsToDraw } from "#test/tools/tracing-robot/stri
 
 /** A strand is drawn when so much of it is; less of a trunk is worth nothing. */
 const DRAWN_SHARE = 0.8;
+/** Its end is reached when it is so near, voxels: two ends of a thick string lie within its radius of one line. */
+const END_VOXELS = 8;
 /** A proposed strand runs elsewhere when more than this share of it does. */
 const ELSEWHERE_SHARE = 0.4;
 /** How far beside its radius a line may run and still be seen on its string, voxels. */
@@ -87,7 +89,9 @@ function isDrawn(desk: RobotDesk, { line, radii }: Pick<StringToDraw, "line" | "
     const radius = radii[nearestOnPolyline(line, place).segment]!;
     return drawn.some((each) => nearestOnPolyline(each, place).distance <= radius + BESIDE_VOXELS * desk.voxelMm);
   };
-  return places.filter(isNear).length >= DRAWN_SHARE * places.length;
+  const end = line.at(-1)!;
+  const reached = Math.min(...drawn.map((each) => nearestOnPolyline(each, end).distance));
+  return reached <= END_VOXELS * desk.voxelMm && places.filter(isNear).length >= DRAWN_SHARE * places.length;
 }
 
 /** Share of a line that runs on one of the strands. */
