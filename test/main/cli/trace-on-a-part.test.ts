@@ -61,7 +61,7 @@ beforeAll(async () => {
   // Every string lies 8 voxels or more inside the box.
   await specimen("crop", { crop: [8, 8, 10, 80, 56, 50], bin: 1 });
   await specimen("binned", { crop: [8, 8, 10, 80, 56, 50], bin: 2 });
-});
+}, 120_000);
 afterAll(() => rm(folder, { recursive: true, force: true }));
 
 /** Traces the pins on a specimen's scan; the pins say that they belong to `of`. */
