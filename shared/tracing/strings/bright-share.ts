@@ -152,13 +152,15 @@ export function outlineRadius(
     const x = c * u[0] + s * v[0];
     const y = c * u[1] + s * v[1];
     const z = c * u[2] + s * v[2];
-    let far = step;
+    let edge = most;
     // Two samples in a row below, so that one voxel of noise is no edge.
-    for (let below = 0; far < most; far += step) {
+    for (let far = step, below = 0; far < most; far += step) {
       below = excess(at[0] + far * x, at[1] + far * y, at[2] + far * z) < least ? below + 1 : 0;
-      if (below === 2) break;
+      if (below < 2) continue;
+      edge = Math.max(far - 1.5 * step, 0);
+      break;
     }
-    rays.push(Math.min(most, Math.max(far - 1.5 * step, 0)));
+    rays.push(edge);
   }
   rays.sort((a, b) => a - b);
   return rays[RING / 2]!;
