@@ -35,7 +35,7 @@ function scan(): Uint16Array {
 export function bench(print: (line: string) => void, cpuMs: () => number): void {
   const context = createTraceContext(memoryPyramid(plainGrid(SIZE, [SPACING, SPACING, SPACING]), scan()), "bright");
   const path = Float64Array.from(Array.from({ length: 401 }, (_, i) => place(i / 400)).flat());
-  const sum = (values: Float64Array | Int32Array) => values.reduce((a: number, b: number) => a + b, 0);
+  const sum = (values: ArrayLike<number>) => Array.from(values).reduce((a, b) => a + b, 0);
   for (const round of ["first", "second", "third"]) {
     let start = cpuMs();
     const lap = () => {
