@@ -64,7 +64,7 @@ describe("a proposed string in the real page", () => {
   it("is taken up to the pointer, and stays open there", async () => {
     await hand.key(middleOf(0), "f");
     await note(page, "proposed:").waitFor({ timeout: FOLLOWED_MS });
-    await hand.key(middleOf(1), "Shift+T");
+    await hand.key(middleOf(1), "Shift+G");
     await allSaved(page);
     const taken = await headLine(page);
     expect(taken).toMatchObject({ edits: 1, trees: 1, open: 1 });

@@ -136,7 +136,7 @@ export const TRACE_COMMANDS: readonly Command<DeskContext>[] = [
     name: "take-to-here",
     group: "Trace",
     label: "Take what is proposed, up to the pointer",
-    keys: ["Shift+T"],
+    keys: ["Shift+G"],
     enabled: (context) => canEdit(context) && context.editor.proposedAt(context.view.pointing.value) !== null,
     perform: ({ editor, view }) => editor.proposing.take(editor.proposedAt(view.pointing.value)),
     foot: (context) =>
