@@ -100,7 +100,13 @@ describe("the desktop program's main process", () => {
       ["..%2fpackage.json", 400],
     ]);
     expect(answers[0]![3]).toContain("<!doctype html>");
-    expect(JSON.parse(answers[1]![3] as string)).toEqual({ name: "Tautline", version: "1.2.3", shell: "electron", library });
+    expect(JSON.parse(answers[1]![3] as string)).toEqual({
+      name: "Tautline",
+      version: "1.2.3",
+      shell: "electron",
+      library,
+      work: { waiting: 0, running: 0 },
+    });
   });
 
   it("closes everything before it ends: bridge, scheme, library", async () => {
