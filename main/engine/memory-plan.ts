@@ -14,7 +14,7 @@ const THREAD_BYTES = 16 * MB;
 /** What a search of the scan keeps in each thread but the guide's. */
 const SEARCH_BYTES = 20 * MB;
 /** A solve's boxes: what it needs follows from its pins, never from a setting, so that the same pins give the same curve. */
-const SOLVE_BYTES = 150 * MB;
+const SOLVE_BYTES = 120 * MB;
 
 /** Threads that are started by themselves: one to guide, one to solve, two to show. More would take memory and bring little. */
 export const MOST_THREADS = 4;
@@ -32,10 +32,10 @@ export interface MemoryPlan {
 }
 
 /** Shares of what may be kept. */
-const BRICKS = 0.38;
-const RIDGES = 0.14;
-const OWN_RIDGES = 0.2;
-const FRONTS = 0.28;
+const BRICKS = 0.3;
+const RIDGES = 0.12;
+const OWN_RIDGES = 0.18;
+const FRONTS = 0.4;
 
 /**
  * Shares a limit on the whole resident memory of the program (while nothing is being taken in) among what the engine keeps.

@@ -17,7 +17,7 @@ type Pixel = readonly [number, number];
  * to, so that what it does is the same on a busy machine.
  */
 const STEADY_MS = 250;
-const LONGEST_WAIT_MS = 60_000;
+const LONGEST_WAIT_MS = 12_000;
 /** Planes that one turn of the wheel goes at most, and the travel of one: as a wheel that is flicked. */
 const FLICK_PLANES = 10;
 const NOTCH_PX = 110;
@@ -133,18 +133,15 @@ export class PageRobot {
 
   /** Takes the next string in depth until the one that lies in the plane looked at is taken, when it is among those there. */
   private async chooseInDepth(): Promise<void> {
-    const depths: number[] = [];
-    for (;;) {
+    const depths = new Map<number, number>();
+    // The readout may lag behind a key, so a number can come twice or not at all: no person would go on for ever.
+    for (let keys = 0; keys < MOST_DEPTH_KEYS; keys++) {
       const [, sign, depth, number, count] = /depth ([+−])([\d.]+) mm(?: \((\d+) of (\d+)\))?/.exec(await this.readout()) ?? [];
       if (count === undefined) return;
-      if (depths.length === Number(count)) {
-        // All were seen: on to the nearest.
-        const nearest = depths.indexOf(Math.min(...depths));
-        if (Number(number) - 1 === nearest) return;
-      } else {
-        depths[Number(number) - 1] = Math.abs(Number(`${sign === "−" ? "-" : ""}${depth}`));
-        if (depths[Number(number) - 1]! <= IN_PLANE_MM) return;
-      }
+      const away = Math.abs(Number(`${sign === "−" ? "-" : ""}${depth}`));
+      depths.set(Number(number), away);
+      // In the plane, or all were seen and this is the nearest.
+      if (away <= IN_PLANE_MM || (depths.size === Number(count) && away === Math.min(...depths.values()))) return;
       await this.key("d");
     }
   }
@@ -168,6 +165,8 @@ export class PageRobot {
   }
 }
 
+/** Three strings in depth, each seen twice, are more than any place of a valve holds. */
+const MOST_DEPTH_KEYS = 8;
 /** A snapped place so near to the plane is that of the string looked at. */
 const IN_PLANE_MM = 0.25;
 

@@ -13,9 +13,9 @@ import type { PyramidLevel } from "#shared/volume/pyramid.ts";
 /** Bytes a voxel of a front's box takes once it is visited: distance, mark and cost. */
 const BYTES_PER_VOXEL = 13;
 /** Shares of a session's bytes for the working level, the next coarser one and the one after that. */
-const SHARES = [0.35, 0.25, 0.15];
+const SHARES = [0.3, 0.2, 0.15];
 /** Share of the front between pin and pointer. */
-const NEAR_SHARE = 0.25;
+const NEAR_SHARE = 0.35;
 /** Room around pin and pointer, as for a committed stretch: millimetres, or a share of their distance. */
 const NEAR_MARGIN_MM = 1;
 const NEAR_MARGIN_SHARE = 0.3;
