@@ -156,7 +156,7 @@ describe("The engine over worker threads", { timeout: 240_000 }, () => {
 
   test("many workers at once over a cache of few slots: every picture right, slots reused, nothing pinned afterwards", async () => {
     // 86 slots for four workers; the scan has 100 bricks and the vast one far more.
-    start({ workers: 4, cacheBytes: 12 * MIB });
+    start({ workers: 4, cacheBytes: 14 * MIB });
     const asked = Array.from({ length: 60 }, (_, n) =>
       sectionRequest(n % 12, { ticket: ticket("job"), slabMm: n % 5 === 0 ? 0.3 : 0, plane: plane(n % 12, 200, 180) }),
     );
@@ -177,7 +177,7 @@ describe("The engine over worker threads", { timeout: 240_000 }, () => {
     const figures = await engine!.figures();
     expect(figures.evictions).toBeGreaterThan(100);
     expect(figures.used).toBeLessThanOrEqual(figures.slots);
-    expect(figures.slots * 65_536).toBeLessThanOrEqual(0.45 * 12 * MIB);
+    expect(figures.slots * 65_536).toBeLessThanOrEqual(0.45 * 14 * MIB);
     await quiet();
     expect((await engine!.figures()).pinned).toBe(0);
   });
@@ -287,7 +287,7 @@ describe("The engine over worker threads", { timeout: 240_000 }, () => {
   });
 
   test("workers killed again and again in the middle of loading leave a cache that still gives right pictures", async () => {
-    start({ workers: 4, cacheBytes: 12 * MIB });
+    start({ workers: 4, cacheBytes: 14 * MIB });
     const random = seeded(8);
     for (let round = 0; round < 6; round++) {
       const asked = Array.from({ length: 12 }, (_, n) => sectionRequest(n, { ticket: ticket("job") }));
