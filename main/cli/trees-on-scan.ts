@@ -2,7 +2,7 @@ import { stat } from "node:fs/promises";
 import { dirname } from "node:path";
 import type { OpenVoxels } from "#main/cli/open-voxels.ts";
 import { TautlineError } from "#shared/errors.ts";
-import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
+import { type ChordaeFile, frameOf } from "#shared/formats/chordae/chordae-file.ts";
 import { relationOfScans } from "#shared/formats/chordae/same-scan.ts";
 
 /**
@@ -31,6 +31,13 @@ export function refuseOtherScan(
   }
   const message = `${path}: its trees belong to the scan ${expected.slice(0, 12)}..., this scan is ${voxels.sha256.slice(0, 12)}... Name the right scan, or give --other-scan to use them on this one.`;
   throw new TautlineError("other-scan", message, { file: path, expected, found: voxels.sha256 });
+}
+
+/** Says so when the places of trees are in another frame than the scan's; they are taken as they are. */
+export function tellOtherFrame(trees: ChordaeFile, path: string, voxels: OpenVoxels, say: (line: string) => void): void {
+  const { frame } = voxels.pyramid.grid;
+  if (trees.frame === undefined || frameOf(trees) === frame) return;
+  say(`${path}: its places are in frame ${frameOf(trees)}, the scan's in ${frame}; taken as they are.`);
 }
 
 /** Refuses a name that no file can be written under, before hours of work rather than after. @throws misuse */

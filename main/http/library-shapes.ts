@@ -2,7 +2,6 @@ import { id, point, polarity, windowName } from "#main/http/engine-shapes.ts";
 import {
   flag,
   list,
-  matching,
   nullable,
   number,
   object,
@@ -14,6 +13,7 @@ import {
   triple,
   whole,
 } from "#main/http/shape.ts";
+import { sha256 as hash, line, path } from "#main/http/text-shapes.ts";
 import type { ProjectionsRequest } from "#shared/api/projections.ts";
 import type { AppendRequest, ExportRequest, IntakeRequest, LookRequest, SpecimenPatch } from "#shared/api/routes.ts";
 import type { SpecimenFacts } from "#shared/api/specimen.ts";
@@ -21,13 +21,7 @@ import type { LogHead } from "#shared/log/records.ts";
 import type { Landmarks, UnknownKeys } from "#shared/trees/document.ts";
 import type { Bin, Crop, Region } from "#shared/volume/region/region.ts";
 
-/** A path on this computer; the shell's own folders rule decides whether it may be read. */
-const path = text(4096, 1);
-/** What a person types into one line; control characters would break lists and reports. */
-const line = (most: number) =>
-  matching(new RegExp(`^[^\\u0000-\\u001f\\u007f]{1,${most}}$`, "u"), `one line of 1 to ${most} characters`);
 const words = text(500);
-const hash = matching(/^[0-9a-f]{64}$/, "a SHA-256 in hexadecimal");
 
 export const annotatorRequest = object({ annotator: line(80) });
 export const windowRequest = object({ window: windowName });

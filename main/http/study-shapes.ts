@@ -13,6 +13,7 @@ import {
   text,
   whole,
 } from "#main/http/shape.ts";
+import { line, path, sha256 } from "#main/http/text-shapes.ts";
 import type {
   ExportPassesRequest,
   PacketRequest,
@@ -26,15 +27,12 @@ import type {
 } from "#shared/api/study.ts";
 import { type DrawingLimits, PRIMARY_QUANTITIES, type ProtocolContent } from "#shared/study/protocol.ts";
 
-const path = text(4096, 1);
-const line = (most: number) =>
-  matching(new RegExp(`^[^\\u0000-\\u001f\\u007f]{1,${most}}$`, "u"), `one line of 1 to ${most} characters`);
 /** Text of several lines. */
 const words = (most: number) => text(most);
 const reason = line(500);
 const form = oneOf("folder", "zip");
 /** Name of a picture of a protocol. */
-export const pictureName = matching(/^[0-9a-f]{64}$/, "a SHA-256 in hexadecimal");
+export const pictureName = sha256;
 
 const specimens = list(id, 1000);
 const annotators = list(line(80), 100);

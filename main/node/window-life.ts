@@ -1,6 +1,3 @@
-/** How long after the last page has gone the server stays: a reload is not a close. */
-export const GRACE_MS = 10_000;
-
 export interface WindowLifeOptions {
   readonly graceMs: number;
   /** A window's last event stream has ended. */

@@ -8,23 +8,21 @@ import { Playback } from "#renderer/editor/session/playback.ts";
 import { type Stage, settlePlace } from "#renderer/editor/session/stage.ts";
 import { afterLabelling, type Sticky, stickyOf } from "#renderer/editor/session/sticky-labels.ts";
 import { type AskSolve, StrandSolver } from "#renderer/editor/session/strand-solver.ts";
+import { Aiming, sightOf } from "#renderer/editor/tracing/aiming.ts";
 import type { FollowSource } from "#renderer/editor/tracing/follower.ts";
 import type { ForkProposal } from "#renderer/editor/tracing/guide-advice.ts";
 import { type Guide, GuideFollower, type GuideSource } from "#renderer/editor/tracing/guide-follower.ts";
 import type { IntentPlace } from "#renderer/editor/tracing/intent-place.ts";
-import { passing } from "#renderer/editor/tracing/passing.ts";
 import { type Projection, project, tipOf } from "#renderer/editor/tracing/projection.ts";
 import { Proposing } from "#renderer/editor/tracing/proposing.ts";
-import { type Aim, type AskSnap, type Snapped, Snapper } from "#renderer/editor/tracing/snapper.ts";
+import { type AskSnap, type Snapped, Snapper } from "#renderer/editor/tracing/snapper.ts";
 import { StringsBeside } from "#renderer/editor/tracing/strings-beside.ts";
 import { isUnfinished, NOTHING, type UnderWay } from "#renderer/editor/tracing/under-way.ts";
 import type { Pointing, Under } from "#renderer/editor/view-control.ts";
 import { type PointMm, roundPoint } from "#shared/geometry/types.ts";
-import { distance } from "#shared/geometry/vec3.ts";
 import type { PlaceOnProposal } from "#shared/tracing/follow/part-of-proposal.ts";
 import { otherEnd, strandsAt } from "#shared/trees/adjacency.ts";
-import type { EndKind, NodeId, StrandId, TreeDocument } from "#shared/trees/document.ts";
-import type { Anchor } from "#shared/trees/edits/anchor.ts";
+import type { EndKind, NodeId, TreeDocument } from "#shared/trees/document.ts";
 import type { LineId } from "#shared/trees/edits/edit-plan.ts";
 import type { NodeLabels } from "#shared/trees/edits/node-labels.ts";
 
@@ -56,12 +54,8 @@ export type Carried =
   | { readonly kind: "node"; readonly id: NodeId }
   | { readonly kind: "pin"; readonly line: LineId; readonly index: number };
 
-/** The pointer snaps to strings within so many screen pixels. */
-const REACH_PX = 9;
 /** A bright place of the space view is a voxel of a coarse level: the string lies this near, millimetres. */
 const BRIGHT_REACH_MM = 0.8;
-/** Nearer to the last pin than this on the screen, an end key means that pin itself. */
-const AT_PIN_PX = 10;
 
 /** One pass being edited: what is under way, what waits, what is shown. It knows no screen and no server. */
 export class Editor {
@@ -87,11 +81,7 @@ export class Editor {
   private readonly snapper: Snapper;
   private readonly stage: Stage;
   private readonly disposers: (() => void)[] = [];
-  private pointing: Pointing | null = null;
-  /** The document in which the pointer's surroundings were seen. */
-  private pointedDocument: TreeDocument | null = null;
-  /** Which candidate in depth, and where the pointer was when it was chosen. */
-  private candidate: { readonly index: number; readonly at: Pointing } | null = null;
+  private readonly aiming: Aiming;
 
   constructor(places: EditorPlaces) {
     const { keeper } = places;
@@ -102,6 +92,7 @@ export class Editor {
     this.guideFollower = new GuideFollower(places.guide, (from) => this.beside.closedFor(from));
     this.beside = new StringsBeside(this.documentSignal, this.underWaySignal, this.guideFollower.guide);
     this.snapper = new Snapper(places.snap);
+    this.aiming = new Aiming(this.documentSignal, this.snapper);
     this.proposing = new Proposing({
       source: places.follow,
       document: () => this.documentSignal.peek(),
@@ -171,7 +162,7 @@ export class Editor {
   }
   /** Edits that wait come first: they would change the history while it is played. */
   get canPlayBack(): boolean {
-    return this.keeper.edits > 0 && this.queue.waiting.value.length === 0;
+    return this.keeper.edits > 0 && !this.hasWaiting;
   }
 
   /** Asks for an edit. It is carried out in its turn; nothing is lost while the server is slow or away. */
@@ -185,16 +176,17 @@ export class Editor {
 
   /** The pointer or keyboard cursor is here; null = it left the section. */
   async point(pointing: Pointing | null): Promise<void> {
-    this.pointing = pointing;
-    this.pointedDocument = this.documentSignal.value;
+    this.aiming.look(pointing);
     if (pointing === null) {
       this.snapper.leave();
       await this.guideFollower.point(null);
       return;
     }
-    const snapped = await this.snapper.aimAt(this.aimOf(pointing));
-    // Also when the pointer has gone on meanwhile: a hand that never rests would else see no guide.
-    if (snapped !== null && this.pointing !== null) await this.guideFollower.point(snapped.point);
+    const snapped = await this.snapper.aimAt(this.aiming.aim(pointing, this.isGuided));
+    if (snapped === null || this.aiming.pointing === null) return;
+    // A hand that never rests would see no guide if only its last place counted; but one place passed by is enough at a time.
+    const hasGoneOn = this.aiming.pointing !== pointing;
+    if (!(hasGoneOn && this.guideFollower.isAsking)) await this.guideFollower.point(snapped.point);
   }
 
   /** A click, or the key for one: puts down what is carried, sets a pin, goes on with an open end, selects, or starts a tree. */
@@ -226,7 +218,7 @@ export class Editor {
 
   /** The fork that the guide suggests, when it can be taken at once. */
   proposedFork(): ForkProposal | null {
-    return this.readOnly || this.queue.waiting.value.length > 0 ? null : this.beside.fork.value;
+    return this.readOnly || this.hasWaiting ? null : this.beside.fork.value;
   }
 
   /** Takes the fork that the guide suggests: the branch starts there, or the end under way is joined there. */
@@ -246,17 +238,17 @@ export class Editor {
   }
 
   /** The proposed strand under the pointer and the place on it; what is drawn already goes before. */
-  proposedAt(pointing: Pointing | null = this.pointing): PlaceOnProposal | null {
+  proposedAt(pointing: Pointing | null = this.aiming.pointing): PlaceOnProposal | null {
     if (pointing === null || pointing.under !== null || this.projection.value.kind !== "nothing") return null;
-    const { at, normal, mmPerPx, slabMm } = pointing;
-    return this.proposing.placeSeen({ at, normal, mmPerPx, slabMm });
+    return this.proposing.placeSeen(sightOf(pointing));
   }
 
   /** Proposes the whole string that the pointer is on; from Space or a list, the string at a place given. */
   async propose(at: PointMm | null = null): Promise<void> {
-    if (this.readOnly || (at === null && this.pointing === null)) return;
+    const { pointing } = this.aiming;
+    if (this.readOnly || (at === null && pointing === null)) return;
     // What was snapped last may belong to where the pointer was before.
-    await this.proposing.start(at ?? (await settlePlace(this.stage, this.placeOf(this.pointing!))));
+    await this.proposing.start(at ?? (await settlePlace(this.stage, this.placeOf(pointing!))));
   }
 
   /** Proposes the string nearest to a bright place of the space view; nothing while something is drawn or proposed. */
@@ -280,44 +272,20 @@ export class Editor {
 
   /** True when an end key would end at the last pin rather than at the pointer. */
   endsAtPin(): boolean {
-    const { pointing } = this;
     const tip = tipOf(this.projection.value);
-    return pointing === null || tip === null || distance(pointing.at, tip) <= AT_PIN_PX * pointing.mmPerPx;
+    return tip === null || this.aiming.isAtPin(tip);
   }
 
-  /**
-   * Where a branch, join or link would be attached: what lies under the pointer, else what passes nearest to it (at a fork the
-   * traced curve cuts the corner), else the selected node. While edits wait, what is there is decided when its turn comes.
-   */
+  /** Where a branch, join or link would be attached: what the pointer is on or near to, else the selected node. */
   leavePlace(): LeavePlace | null {
-    const { pointing } = this;
-    if (pointing !== null) {
-      const { at, normal, mmPerPx, slabMm } = pointing;
-      const sight = { at, normal, mmPerPx, slabMm };
-      if (this.queue.waiting.value.length > 0) return { passing: sight };
-      // What was seen under the pointer holds for the document it was seen in: a strand's id may stand for half of it since.
-      const isCurrent = this.pointedDocument === this.documentSignal.value;
-      const here = pointing.under === null || !isCurrent ? null : anchorOf(pointing.under, pointing);
-      if (here !== null) return here;
-      const near = passing(this.documentSignal.value, sight);
-      if (near !== null) return near;
-    }
+    const aimed = this.aiming.attachTo(this.hasWaiting);
     const { node } = this.selection.value;
-    return node === undefined ? null : { node };
+    return aimed ?? (node === undefined ? null : { node });
   }
 
-  /**
-   * The strand under the pointer and the place on it; when it may have been divided since it was seen, the sight of it, by which
-   * it is found again when its turn comes. Null when the pointer is on none.
-   */
+  /** The strand under the pointer and the place on it; null when the pointer is on none. */
   strandPlace(): StrandPlace | null {
-    const { pointing } = this;
-    const under = pointing?.under;
-    if (pointing == null || under?.kind !== "strand" || !under.id.startsWith("s")) return null;
-    const isCurrent = this.queue.waiting.value.length === 0 && this.pointedDocument === this.documentSignal.value;
-    if (isCurrent) return { strand: under.id as StrandId, near: under.point };
-    const { at, normal, mmPerPx, slabMm } = pointing;
-    return { passing: { at, normal, mmPerPx, slabMm } };
+    return this.aiming.strandPlace(this.hasWaiting);
   }
 
   /** Plays the current path back from an edit on (null = the first). Nothing is written and nothing can be edited meanwhile. */
@@ -342,11 +310,7 @@ export class Editor {
 
   /** Takes the next candidate along the line of sight. */
   nextCandidate(): void {
-    const { pointing } = this;
-    if (pointing === null) return;
-    const index = (this.candidateFor(pointing) ?? 0) + 1;
-    this.candidate = { index, at: pointing };
-    void this.point(pointing);
+    if (this.aiming.next()) void this.point(this.aiming.pointing);
   }
 
   /** Takes hold of a pin of the strand under way, by its place in the projection; nothing while it still waits. */
@@ -412,7 +376,7 @@ export class Editor {
 
   private endPlace(): IntentPlace | null {
     if (this.endsAtPin()) return null;
-    const at = this.placeOf(this.pointing!);
+    const at = this.placeOf(this.aiming.pointing!);
     this.pinDetour(at);
     return at;
   }
@@ -426,28 +390,16 @@ export class Editor {
   }
 
   private placeOf(pointing: Pointing): IntentPlace {
-    const aim = this.aimOf(pointing);
-    const known = aim.snap ? this.snapper.known(aim) : null;
-    if (known !== null) return { point: known.point };
-    return aim.snap ? { aim } : { point: roundPoint(pointing.at) };
+    return this.aiming.placeOf(pointing, this.isGuided);
   }
 
-  private aimOf(pointing: Pointing): Aim {
-    return {
-      at: pointing.at,
-      normal: pointing.normal,
-      slabMm: pointing.slabMm,
-      reachMm: REACH_PX * pointing.mmPerPx,
-      snap: !pointing.released && this.projection.value.leg === "guide",
-      candidate: this.candidateFor(pointing) ?? 0,
-    };
+  /** The next stretch follows the image, so the pointer snaps to it. */
+  private get isGuided(): boolean {
+    return this.projection.value.leg === "guide";
   }
 
-  /** The chosen candidate holds while the pointer stays where it was chosen. */
-  private candidateFor(pointing: Pointing): number | null {
-    const chosen = this.candidate;
-    if (chosen === null) return null;
-    return distance(chosen.at.at, pointing.at) <= REACH_PX * pointing.mmPerPx ? chosen.index : null;
+  private get hasWaiting(): boolean {
+    return this.queue.waiting.value.length > 0;
   }
 
   private historyChanged(): void {
@@ -464,12 +416,4 @@ export class Editor {
       this.selection.value = stillThere(document, this.selection.peek());
     });
   }
-}
-
-/** The place to attach something at what lies under the pointer; null on a cross-link, which carries no branches. */
-function anchorOf(under: Under, pointing: Pointing): Anchor | null {
-  if (under.kind === "node") return { node: under.id };
-  const line = under.kind === "strand" ? under.id : under.strand;
-  if (!line.startsWith("s")) return null;
-  return { strand: line as `s${number}`, near: under.kind === "strand" ? under.point : pointing.at };
 }

@@ -3,9 +3,6 @@ import type { Matrix3, PointMm, SizeXyz, SpacingMm, Vec3 } from "#shared/geometr
 import { frontDirection, type ValveAxes } from "#shared/geometry/valve-axes.ts";
 import { cross, dot, norm, normalise, perpendicularFrame, scale, subtract } from "#shared/geometry/vec3.ts";
 
-/** `flat front side`: the valve's own planes once it stands upright, the scan's before. `across` and `along` follow a strand. */
-export const PLANE_KINDS = ["flat", "front", "side", "across", "along"] as const;
-export type PlaneKind = (typeof PLANE_KINDS)[number];
 export type FixedPlaneKind = "flat" | "front" | "side";
 
 /** Where the scan lies, as far as planes need it. */
@@ -83,9 +80,4 @@ export function planeStepMm(axes: PlaneAxes, grid: ScanGrid): number {
 /** The plane `steps` voxels farther from the viewer. */
 export function steppedBy(plane: ViewPlane, steps: number, grid: ScanGrid): ViewPlane {
   return stepped(plane, steps * planeStepMm(plane, grid));
-}
-
-/** The plane with `at` in the middle of the pane (and on the plane). */
-export function centredOn(plane: ViewPlane, at: PointMm): ViewPlane {
-  return { ...plane, centre: at };
 }

@@ -154,9 +154,3 @@ function squaredDistance(t: Float64Array, at: number, px: number, py: number, pz
   away[2] = ez;
   return ex * ex + ey * ey + ez * ez;
 }
-
-/** Distance of a place to a triangle given by its three corners, in their unit. */
-export function distanceToTriangle(corners: readonly number[], x: number, y: number, z: number): number {
-  const t = readyTriangles([...corners, 0]);
-  return Math.sqrt(squaredDistance(t, 0, x - corners[0]!, y - corners[1]!, z - corners[2]!, new Float64Array(3)));
-}

@@ -10,11 +10,6 @@ export function currentProtocol({ protocols }: StudyRecord): ProtocolVersion {
   return protocols[protocols.length - 1]!;
 }
 
-/** The newest frozen version; null before the first freeze. */
-export function frozenProtocol({ protocols }: StudyRecord): ProtocolVersion | null {
-  return [...protocols].reverse().find(({ frozen }) => frozen !== null) ?? null;
-}
-
 /** Why a packet cannot be made now. */
 export interface PacketObstacle {
   /** One sentence. */

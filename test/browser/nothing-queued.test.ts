@@ -78,13 +78,8 @@ describe("After the hand has stopped", { timeout: 300_000 }, () => {
     const stop = (await readLog(page, from)).filter(({ what }) => ["pointermove", "wheel"].includes(what)).at(-1)!.sent;
     const log = await settled(from);
     for (const kind of new Set(log.map(({ what }) => what))) {
-      const own = log.filter(({ what }) => what === kind);
-      // A guide that was answered coarsely is asked for again, one at a time, until it is fine: that is no queue.
-      const isAskedAgain = (n: number) => own[n - 1]?.coarse === true && own[n - 1]!.answered <= own[n]!.sent;
-      const after = own.filter(({ sent }, n) => sent > stop && !isAskedAgain(n)).length;
-      // The snap under way and the one waiting each lead to a preview, beside the one that waited already.
-      const most = kind === "guide/preview" ? MOST_AFTER_STOP + 1 : MOST_AFTER_STOP;
-      expect(after, `${kind} sent after the stop`).toBeLessThanOrEqual(most);
+      const after = log.filter(({ what, sent }) => what === kind && sent > stop).length;
+      expect(after, `${kind} sent after the stop`).toBeLessThanOrEqual(MOST_AFTER_STOP);
     }
     for (const kind of kinds) {
       expect(log.filter(({ what }) => what === kind).length, `${kind} asked for at all`).toBeGreaterThan(2);

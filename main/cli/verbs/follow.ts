@@ -1,7 +1,7 @@
 import { basename } from "node:path";
 import { setImmediate as nextTurn } from "node:timers/promises";
-import { wordOption } from "#main/cli/number-option.ts";
 import { type OpenVoxels, openVoxels } from "#main/cli/open-voxels.ts";
+import { givenPolarity, POLARITY_HELP, POLARITY_OPTION, settledPolarity } from "#main/cli/polarity-option.ts";
 import { givenSpacing, SPACING_HELP, SPACING_OPTIONS } from "#main/cli/spacing-option.ts";
 import { refuseUnwritable } from "#main/cli/trees-on-scan.ts";
 import type { Verb, VerbCall } from "#main/cli/verb.ts";
@@ -31,15 +31,15 @@ Exit 1 when no string is near the point: the tree is null then, and nothing is w
 
   --at x,y,z          the point, millimetres in the frame of the scan (or --at=x,y,z, when x is negative)
   --out T             tree file to write; written whole or not at all
-  --polarity P        bright or dark strings (as the values suggest when not given)
+${POLARITY_HELP}
 ${SPACING_HELP}`,
-  options: { at: { type: "string" }, out: { type: "string" }, polarity: { type: "string" }, ...SPACING_OPTIONS },
+  options: { at: { type: "string" }, out: { type: "string" }, ...POLARITY_OPTION, ...SPACING_OPTIONS },
   positionals: [1, 1],
   async run(call) {
     const { positionals, options, say } = call;
     const at = placeOption(options);
     const out = options.out === undefined ? null : String(options.out);
-    const polarityGiven = wordOption(options, "polarity", ["bright", "dark"] as const);
+    const polarityGiven = givenPolarity(options);
     const given = givenSpacing(options);
     if (out !== null) await refuseUnwritable(out);
     const path = positionals[0]!;
@@ -48,8 +48,7 @@ ${SPACING_HELP}`,
       const { grid } = voxels.pyramid;
       if (!isInside(grid, at))
         throw unreadable("--at", "a place inside the scan", `(${at.join(", ")}) mm, which is outside`, undefined, OUTSIDE_ADVICE);
-      const polarity = polarityGiven ?? voxels.suggestedPolarity;
-      if (!polarityGiven) say(`strings are taken to be ${polarity}; --polarity says otherwise.`);
+      const polarity = settledPolarity(polarityGiven, voxels, say);
       const parameters: TraceParameters = { polarity, blurFwhmMm: voxels.blurFwhmMm ?? null };
       if (parameters.blurFwhmMm === null) say("blur of the scan unknown: radii stay as measured.");
       const proposal = await run(voxels, parameters, at, call.io.signal);

@@ -1,12 +1,13 @@
 import { setImmediate as nextTurn } from "node:timers/promises";
-import { realOption, wordOption } from "#main/cli/number-option.ts";
+import { realOption } from "#main/cli/number-option.ts";
 import { openVoxels } from "#main/cli/open-voxels.ts";
+import { givenPolarity, POLARITY_HELP, POLARITY_OPTION, settledPolarity } from "#main/cli/polarity-option.ts";
 import { readTreeFile } from "#main/cli/read-tree-file.ts";
 import { givenSpacing, SPACING_HELP, SPACING_OPTIONS } from "#main/cli/spacing-option.ts";
-import { refuseOtherScan } from "#main/cli/trees-on-scan.ts";
+import { refuseOtherScan, tellOtherFrame } from "#main/cli/trees-on-scan.ts";
 import type { Verb, VerbCall } from "#main/cli/verb.ts";
 import { TautlineError } from "#shared/errors.ts";
-import { type ChordaeFile, frameOf } from "#shared/formats/chordae/chordae-file.ts";
+import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
 import { type ExplainingLine, findStretches } from "#shared/tracing/overlooked/find-stretches.ts";
 import { blockCounts, type FoundPoints, searchBlock, searchLevel } from "#shared/tracing/overlooked/search-block.ts";
 import { createTraceContext, type TraceContext } from "#shared/tracing/trace-context.ts";
@@ -25,13 +26,13 @@ first. Sheets (leaflets) and muscle are no strings. The result depends on scan, 
 
   --trees T           tree file; strands without points explain the straight lines between their pins
   --minimum L         leave out stretches shorter than this, mm (${MINIMUM_MM} when not given)
-  --polarity P        bright or dark strings (as the values suggest when not given)
+${POLARITY_HELP}
 ${SPACING_HELP}
   --other-scan        search even though T belongs to another scan`,
   options: {
     trees: { type: "string" },
     minimum: { type: "string" },
-    polarity: { type: "string" },
+    ...POLARITY_OPTION,
     ...SPACING_OPTIONS,
     "other-scan": { type: "boolean" },
   },
@@ -39,17 +40,15 @@ ${SPACING_HELP}
   async run(call) {
     const { positionals, options, say } = call;
     const path = treesOption(options);
-    const polarityGiven = wordOption(options, "polarity", ["bright", "dark"] as const);
+    const polarityGiven = givenPolarity(options);
     const minimumMm = realOption(options, "minimum", MINIMUM_MM);
     const given = givenSpacing(options);
     const trees = await readTreeFile(path);
     const voxels = await openVoxels(positionals[0]!, given, call);
     try {
       refuseOtherScan(trees, path, voxels, options["other-scan"] === true, "used", say);
-      if (trees.frame !== undefined && frameOf(trees) !== voxels.pyramid.grid.frame)
-        say(`${path}: its places are in frame ${frameOf(trees)}, the scan's in ${voxels.pyramid.grid.frame}; taken as they are.`);
-      const polarity = polarityGiven ?? voxels.suggestedPolarity;
-      if (!polarityGiven) say(`strings are taken to be ${polarity}; --polarity says otherwise.`);
+      tellOtherFrame(trees, path, voxels, say);
+      const polarity = settledPolarity(polarityGiven, voxels, say);
       const context = createTraceContext(voxels.pyramid, polarity);
       const found = await searched(context, call);
       const stretches = findStretches(context, found, linesOf(trees), { minimumMm });

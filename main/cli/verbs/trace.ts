@@ -1,15 +1,15 @@
 import { basename } from "node:path";
-import { wordOption } from "#main/cli/number-option.ts";
 import { type OpenVoxels, openVoxels } from "#main/cli/open-voxels.ts";
+import { givenPolarity, POLARITY_HELP, POLARITY_OPTION, settledPolarity } from "#main/cli/polarity-option.ts";
 import { readTreeFile } from "#main/cli/read-tree-file.ts";
 import { givenSpacing, SPACING_HELP, SPACING_OPTIONS } from "#main/cli/spacing-option.ts";
 import { traceFile } from "#main/cli/trace-file.ts";
-import { refuseOtherScan, refuseUnwritable } from "#main/cli/trees-on-scan.ts";
+import { refuseOtherScan, refuseUnwritable, tellOtherFrame } from "#main/cli/trees-on-scan.ts";
 import type { Verb, VerbCall } from "#main/cli/verb.ts";
 import { diskFiles } from "#main/node/disk-files.ts";
 import { writeWhole } from "#main/node/whole-file.ts";
 import { TautlineError, unreadable } from "#shared/errors.ts";
-import { type ChordaeFile, frameOf } from "#shared/formats/chordae/chordae-file.ts";
+import type { ChordaeFile } from "#shared/formats/chordae/chordae-file.ts";
 import { writeChordaeFile } from "#shared/formats/chordae/write-chordae-file.ts";
 import { isInside } from "#shared/volume/grid.ts";
 
@@ -25,13 +25,13 @@ Exit 1 when a strand could not be followed and was written straight.
 
   --pins P            tree file whose strands need not have points
   --out T             tree file to write; written whole or not at all
-  --polarity P        bright or dark strings (as the values suggest when not given)
+${POLARITY_HELP}
 ${SPACING_HELP}
   --other-scan        trace even though P belongs to another scan`,
   options: {
     pins: { type: "string" },
     out: { type: "string" },
-    polarity: { type: "string" },
+    ...POLARITY_OPTION,
     ...SPACING_OPTIONS,
     "other-scan": { type: "boolean" },
   },
@@ -41,7 +41,7 @@ ${SPACING_HELP}
     const began = performance.now();
     const pinsPath = pathOption(options, "pins");
     const outPath = pathOption(options, "out");
-    const polarityGiven = wordOption(options, "polarity", ["bright", "dark"] as const);
+    const polarityGiven = givenPolarity(options);
     const given = givenSpacing(options);
     await refuseUnwritable(outPath);
     const pins = await readTreeFile(pinsPath);
@@ -49,12 +49,8 @@ ${SPACING_HELP}
     try {
       refuseOtherScan(pins, pinsPath, voxels, options["other-scan"] === true, "traced", say);
       refuseOutside(pins, pinsPath, voxels);
-      if (pins.frame !== undefined && frameOf(pins) !== voxels.pyramid.grid.frame)
-        say(
-          `${pinsPath}: its places are in frame ${frameOf(pins)}, the scan's in ${voxels.pyramid.grid.frame}; taken as they are.`,
-        );
-      const polarity = polarityGiven ?? voxels.suggestedPolarity;
-      if (!polarityGiven) say(`strings are taken to be ${polarity}; --polarity says otherwise.`);
+      tellOtherFrame(pins, pinsPath, voxels, say);
+      const polarity = settledPolarity(polarityGiven, voxels, say);
       const blurFwhmMm = voxels.blurFwhmMm !== undefined ? voxels.blurFwhmMm : (pins.volume?.blurFwhm ?? null);
       say(
         blurFwhmMm === null

@@ -4,13 +4,13 @@ import type { PlaneName, Pointing, ViewControl } from "#renderer/editor/view-con
 import { acrossAxes, alongAxes, fixedAxes, planeStepMm, steppedBy } from "#renderer/section/planes.ts";
 import type { ShownRuler } from "#renderer/section/section-content.ts";
 import type { SectionView } from "#renderer/section/section-view.ts";
-import { awayFrom, type PlaneAxes, type ViewPlane, ZOOM_LIMITS, zoomed } from "#renderer/section/view-plane.ts";
+import { type PlaneAxes, type ViewPlane, ZOOM_LIMITS, zoomed } from "#renderer/section/view-plane.ts";
 import type { HistogramAnswer } from "#shared/api/engine.ts";
 import type { SpecimenRecord } from "#shared/api/specimen.ts";
 import { arcLengths, nearestOnPolyline, pointAt, polylineLength } from "#shared/geometry/polyline.ts";
 import { type PointMm, pointMm, type Vec3 } from "#shared/geometry/types.ts";
 import { valveAxes } from "#shared/geometry/valve-axes.ts";
-import { add, dot, norm, scale, subtract } from "#shared/geometry/vec3.ts";
+import { add, norm, scale, subtract } from "#shared/geometry/vec3.ts";
 import { indexToMm } from "#shared/volume/grid.ts";
 
 /** The line that `across` and `along` planes follow, and where its image fit falls (arc lengths, millimetres). */
@@ -273,9 +273,4 @@ export function tangentAt(points: readonly Vec3[], at: number): Vec3 {
   const b = pointAt(points, Math.min(total, at + TANGENT_MM));
   const direction = subtract(b, a);
   return norm(direction) > 0 ? direction : subtract(points.at(-1)!, points[0]!);
-}
-
-/** Distance of a place behind (+) or before (-) a plane, millimetres. */
-export function depthOf(plane: ViewPlane, at: Vec3): number {
-  return dot(subtract(at, plane.centre), awayFrom(plane));
 }

@@ -83,7 +83,7 @@ export const GO_COMMANDS: readonly Command<DeskContext>[] = [
   {
     name: "next-finding",
     group: "Go",
-    label: "Next finding",
+    label: "Next finding or overlooked stretch",
     keys: ["Q"],
     enabled: always,
     perform: ({ screen }) => screen.stepFinding(1),
@@ -91,7 +91,7 @@ export const GO_COMMANDS: readonly Command<DeskContext>[] = [
   {
     name: "previous-finding",
     group: "Go",
-    label: "Previous finding",
+    label: "Previous finding or overlooked stretch",
     keys: ["Shift+Q"],
     enabled: always,
     perform: ({ screen }) => screen.stepFinding(-1),
@@ -99,7 +99,7 @@ export const GO_COMMANDS: readonly Command<DeskContext>[] = [
   {
     name: "dismiss-finding",
     group: "Go",
-    label: "Dismiss the finding, with a reason",
+    label: "Dismiss the finding or the stretch, with a reason",
     keys: ["Shift+X"],
     enabled: ({ editor }) => !editor.readOnly,
     perform: ({ screen }) => screen.dismissFinding(),

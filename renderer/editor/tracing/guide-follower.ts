@@ -43,6 +43,8 @@ export class GuideFollower {
   /** Settles when no preview of the session is under way any more. */
   private previews: Promise<unknown> = Promise.resolve();
 
+  /** Previews asked for and not answered yet. */
+  private asked = 0;
   private nextAsk: ReturnType<typeof setTimeout> | undefined;
 
   /** @param impassable strings that a guide from this pin may not enter. */
@@ -53,6 +55,11 @@ export class GuideFollower {
 
   get guide(): ReadonlySignal<Guide | null> {
     return this.guideSignal;
+  }
+
+  /** True while a preview is on its way. */
+  get isAsking(): boolean {
+    return this.asked > 0;
   }
 
   /** Sets the pin that the guide starts from (null = none), and how the stretch runs. */
@@ -115,6 +122,7 @@ export class GuideFollower {
 
   private async ask(from: PointMm, to: PointMm, again = true): Promise<GuidePreviewAnswer | null> {
     if (this.session === null) this.openSession(from);
+    this.asked += 1;
     try {
       const session = await this.session;
       if (session === null || this.from !== from) return null;
@@ -128,6 +136,8 @@ export class GuideFollower {
       if (again && isTautlineError(error, "not-found")) return this.ask(from, to, false);
       this.guideSignal.value = null;
       return null;
+    } finally {
+      this.asked -= 1;
     }
   }
 

@@ -67,5 +67,3 @@ export const COLUMNS = {
 } as const satisfies Record<string, readonly Column[]>;
 
 export type TableName = keyof typeof COLUMNS;
-/** Names of the tables, in the order they are written. */
-export const TABLE_NAMES = Object.keys(COLUMNS) as TableName[];

@@ -20,8 +20,6 @@ const BRIGHT = 0.5;
 
 /** Up to this share of a shell a place is that of strings: two ends of one take 0.1, the arms of a fork 0.2. */
 export const STRING_SHARE = 0.3;
-/** From this share on a shell lies in tissue without a shape, muscle. */
-export const MUSCLE_SHARE = 0.55;
 
 /**
  * Share of a sphere shell about a place that is as bright as the place (half as much above the background, or more), 0 to 1: about

@@ -24,4 +24,37 @@ describe("the guide of a strand under way", () => {
     expect(editor.guide.value).toBeNull();
     editor.dispose();
   });
+
+  it("asks for no place passed by while a preview is on its way, and always for the last", async () => {
+    const snaps: (() => void)[] = [];
+    const previews: { readonly x: number; readonly answer: () => void }[] = [];
+    const fake = new FakeServer().places(new MemoryKeeper());
+    const editor = new Editor({
+      ...fake,
+      snap: () => new Promise((resolve) => snaps.push(() => resolve({ candidates: [] }))),
+      guide: {
+        ...fake.guide,
+        preview: (_, to) =>
+          new Promise((resolve) =>
+            previews.push({
+              x: to[0],
+              answer: () => resolve({ points: [0, 0, 0, ...to], coarse: false, imageFit: 0.9, doubtful: [] }),
+            }),
+          ),
+      },
+    });
+    editor.do({ do: "pin", at: { point: at(0, 0).at } });
+    await editor.settled();
+    const moves = [1, 2, 3].map((x) => editor.point(at(x, 0)));
+    for (let turn = 0; turn < 3; turn++) {
+      snaps.shift()!();
+      await new Promise((next) => setTimeout(next));
+    }
+    // The first place was passed by, but nothing was on its way; the second was passed by while it was.
+    expect(previews.map(({ x }) => x)).toEqual([1, 3]);
+    for (const { answer } of previews) answer();
+    await Promise.all(moves);
+    expect(editor.guide.value?.points.at(-1)).toEqual([3, 0, 0]);
+    editor.dispose();
+  });
 });
